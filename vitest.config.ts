@@ -1,0 +1,13 @@
+import { defineConfig } from 'vitest/config'
+
+export default defineConfig({
+  test: {
+    include: ['test/**/*.test.ts', 'test/**/*.test.tsx'],
+    globalSetup: ['test/support/build.ts'],
+    setupFiles: ['test/support/require-all.ts'],
+    testTimeout: 20_000,
+    hookTimeout: 60_000,
+    pool: 'forks',
+  },
+  oxc: { jsx: { runtime: 'automatic', importSource: 'preact' } },
+})
