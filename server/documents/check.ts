@@ -1,0 +1,93 @@
+import type { z } from 'zod'
+import { shownValue } from './problem.ts'
+import type { Problem } from './problem.ts'
+
+/** A checked document, or every problem it has. */
+export type Checked<T> = { document: T; problems?: undefined } | { document?: undefined; problems: Problem[] }
+
+type Issue = z.core.$ZodIssue
+
+/** Most problems listed for one document; a table of ten thousand wrong cells needs no ten thousand lines. */
+export const MOST_PROBLEMS = 100
+
+/**
+ * What a document means once its defaults are filled in, or every problem with field, value and expectation.
+ *
+ * @param schema  one of the document schemas
+ * @param input   what somebody sent, already parsed from JSON
+ */
+export function checkDocument<S extends z.ZodType>(schema: S, input: unknown): Checked<z.output<S>> {
+  const result = schema.safeParse(input)
+  if (result.success) return { document: result.data }
+  return { problems: result.error.issues.flatMap((issue) => problemsOf(issue, input)).slice(0, MOST_PROBLEMS) }
+}
+
+function problemsOf(issue: Issue, input: unknown): Problem[] {
+  const path = issue.path as (string | number)[]
+  if (issue.code === 'unrecognized_keys')
+    return issue.keys.map((key) => ({
+      field: fieldName([...path, key]),
+      detail: 'unknown field; expected none of this name',
+    }))
+  if (issue.code === 'invalid_union') {
+    const closest = closestBranch(issue.errors as Issue[][], path, input)
+    if (closest.length > 0) return closest
+  }
+  const value = shownValue(valueAt(input, path) ?? (issue.code === 'custom' ? issue.input : undefined))
+  return [{ field: fieldName(path), ...(value === undefined ? {} : { value }), detail: expectation(issue) }]
+}
+
+/** Of a union's branches the one that fails with the fewest, deepest problems is what the author meant. */
+function closestBranch(branches: Issue[][], path: (string | number)[], input: unknown): Problem[] {
+  const depth = (issues: Issue[]) => Math.max(...issues.map((i) => i.path.length))
+  const best = [...branches].sort((a, b) => a.length - b.length || depth(b) - depth(a))[0] ?? []
+  return best.flatMap((issue) => problemsOf({ ...issue, path: [...path, ...issue.path] } as Issue, input))
+}
+
+function expectation(issue: Issue): string {
+  switch (issue.code) {
+    case 'invalid_type':
+      return `expected ${TYPE_NAMES[issue.expected] ?? issue.expected}`
+    case 'too_small':
+      return `expected ${bound(issue.origin, issue.inclusive === false ? 'more than' : 'at least', issue.minimum)}`
+    case 'too_big':
+      return `expected ${bound(issue.origin, issue.inclusive === false ? 'less than' : 'at most', issue.maximum)}`
+    case 'invalid_value':
+      return `expected ${issue.values.map((v) => JSON.stringify(v)).join(' or ')}`
+    default:
+      return `expected ${issue.message}`
+  }
+}
+
+const TYPE_NAMES: Record<string, string> = {
+  number: 'a number',
+  int: 'a whole number',
+  string: 'a text',
+  boolean: 'true or false',
+  array: 'a list',
+  object: 'an object',
+  record: 'an object',
+}
+
+function bound(origin: string, comparison: string, limit: number | bigint): string {
+  if (origin === 'array') return `${comparison} ${limit} entries`
+  if (origin === 'string') return `${comparison} ${limit} characters`
+  return `${comparison} ${limit}`
+}
+
+/** `['panels', 2, 'pitchDeg']` as `panels[2].pitchDeg`; the document itself is `document`. */
+export function fieldName(path: readonly PropertyKey[]): string {
+  if (path.length === 0) return 'document'
+  return path
+    .map((step, i) => (typeof step === 'number' ? `[${step}]` : `${i === 0 ? '' : '.'}${String(step)}`))
+    .join('')
+}
+
+function valueAt(input: unknown, path: readonly PropertyKey[]): unknown {
+  let value = input
+  for (const step of path) {
+    if (value === null || typeof value !== 'object' || !Object.hasOwn(value, step)) return undefined
+    value = (value as Record<PropertyKey, unknown>)[step]
+  }
+  return value
+}

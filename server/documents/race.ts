@@ -1,0 +1,111 @@
+import { z } from 'zod'
+import { count, date, label, quantity, slug, timeOfDay } from './quantity.ts'
+
+const window = z
+  .strictObject({ from: timeOfDay('start, local time'), to: timeOfDay('end, local time') })
+  .refine((w) => w.to > w.from, { path: ['to'], error: 'later than from' })
+
+const chargingWindow = z
+  .strictObject({
+    from: timeOfDay('start, local time'),
+    to: timeOfDay('end, local time'),
+    lift: z.boolean().describe('whether the array may be lifted to the sun').default(true),
+  })
+  .refine((w) => w.to > w.from, { path: ['to'], error: 'later than from' })
+
+const stop = z.strictObject({
+  minutes: quantity(0, 600, 'length of the stop [min]'),
+  opensAt: timeOfDay('when the stop opens, local time').optional(),
+  closesAt: timeOfDay('latest arrival, local time').optional(),
+  clockStarts: z
+    .enum(['on-arrival', 'at-opening'])
+    .describe('for a car that comes before the stop opens: whether its minutes run from arrival or from the opening')
+    .default('on-arrival'),
+  lift: z.boolean().describe('whether the array may be lifted to the sun').default(true),
+  raiseMin: quantity(0, 60, 'minutes to lift the array').default(2),
+  lowerMin: quantity(0, 60, 'minutes to lower it again').default(2),
+})
+
+const stage = z
+  .strictObject({
+    id: slug('name of the stage for machines, unique in the race'),
+    name: label('name of the stage for people'),
+    route: slug('route that the stage runs on'),
+    fromKm: quantity(0, 50_000, 'where on the route it starts [km]').default(0),
+    toKm: quantity(0, 50_000, 'where on the route it ends; left out: at the end [km]').optional(),
+    start: label('place where it starts'),
+    finish: label('place where it ends'),
+    stop: stop.optional().describe('the timed stop at its finish, before the next stage'),
+  })
+  .refine((s) => s.toKm === undefined || s.toKm > s.fromKm, { path: ['toKm'], error: 'more than fromKm' })
+
+const charge = (meaning: string) => quantity(0, 100, meaning)
+
+const day = z
+  .strictObject({
+    date: date('day of the calendar at the place of the race'),
+    zone: label('time zone of this day, where it differs from the race').optional(),
+    release: timeOfDay('when the car leaves impound, local time').optional(),
+    driving: window.describe('driving hours, local time'),
+    charging: z.array(chargingWindow).max(6).default([]).describe('when a parked car may charge'),
+    raiseMin: quantity(0, 60, 'minutes to lift the array in a charging window').default(2),
+    lowerMin: quantity(0, 60, 'minutes to lower it again').default(2),
+    impound: timeOfDay('when the car is locked away, local time').optional(),
+    openingPct: charge('measured charge at the start of the day, where it is known [%]').optional(),
+    targetPct: charge('charge wanted when the day ends [%]').optional(),
+    stages: z.array(stage).max(30).default([]).describe('stages that may start on this day'),
+  })
+  .superRefine((d, context) => {
+    const issue = (path: (string | number)[], message: string, input: unknown) =>
+      context.addIssue({ code: 'custom', path, message, input })
+    d.charging.forEach((w, i) => {
+      if (d.release !== undefined && w.from < d.release)
+        issue(['charging', i, 'from'], `not before the release (${d.release})`, w.from)
+      if (d.impound !== undefined && w.to > d.impound)
+        issue(['charging', i, 'to'], `not after the impound (${d.impound})`, w.to)
+      if (i > 0 && w.from < d.charging[i - 1].to)
+        issue(['charging', i, 'from'], `not before the window before it ends (${d.charging[i - 1].to})`, w.from)
+    })
+    if (d.release !== undefined && d.driving.from < d.release)
+      issue(['driving', 'from'], `not before the release (${d.release})`, d.driving.from)
+    if (d.impound !== undefined && d.driving.to > d.impound)
+      issue(['driving', 'to'], `not after the impound (${d.impound})`, d.driving.to)
+  })
+
+/** The rules and the days of a race; every rule is a parameter here, none is in the code. */
+export const raceDocument = z
+  .strictObject({
+    name: label('name of the race'),
+    zone: label('time zone of the race, for example Africa/Windhoek'),
+    openingPct: charge('charge of the pack when the first day opens [%]'),
+    days: z.array(day).min(1).max(40),
+    penalties: z
+      .strictObject({
+        lateMinPerMin: quantity(0, 1000, 'penalty minutes per minute that a stop is reached after it closes').default(
+          0,
+        ),
+        unfinishedMinPerKm: quantity(0, 1000, 'penalty minutes per km not driven when the last day ends').default(0),
+        mostLateMin: count(0, 10_000, 'latest arrival after the closing that is still counted [min]').optional(),
+      })
+      .default({ lateMinPerMin: 0, unfinishedMinPerKm: 0 }),
+  })
+  .superRefine((race, context) => {
+    const issue = (path: (string | number)[], message: string, input: unknown) =>
+      context.addIssue({ code: 'custom', path, message, input })
+    const seen = new Set<string>()
+    race.days.forEach((d, i) => {
+      if (i > 0 && d.date <= race.days[i - 1].date)
+        issue(['days', i, 'date'], `a day after the one before it (${race.days[i - 1].date})`, d.date)
+      d.stages.forEach((s, j) => {
+        if (seen.has(s.id)) issue(['days', i, 'stages', j, 'id'], 'an id used once in the race', s.id)
+        seen.add(s.id)
+      })
+    })
+    if (seen.size === 0) issue(['days', 0, 'stages'], 'at least one stage in the race', 0)
+  })
+  .meta({ title: 'Race' })
+
+export type RaceDocument = z.output<typeof raceDocument>
+export type RaceInput = z.input<typeof raceDocument>
+export type DayDocument = RaceDocument['days'][number]
+export type StageDocument = DayDocument['stages'][number]
