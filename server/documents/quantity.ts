@@ -45,3 +45,17 @@ export const timeOfDay = (meaning: string) =>
     .string()
     .regex(/^(?:[01]\d|2[0-3]):[0-5]\d(?::[0-5]\d)?$/, 'a local time as HH:MM or HH:MM:SS')
     .describe(meaning)
+
+/** A time zone by its IANA name. */
+export const zoneName = (meaning: string) =>
+  label(meaning).refine(isZone, 'an IANA time zone, for example Africa/Windhoek')
+
+function isZone(name: string): boolean {
+  try {
+    return (
+      /^(?:UTC|[A-Za-z_]+(?:\/[A-Za-z0-9_+-]+)+)$/.test(name) && Intl.DateTimeFormat('en', { timeZone: name }) !== null
+    )
+  } catch {
+    return false
+  }
+}

@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { count, date, label, quantity, slug, timeOfDay } from './quantity.ts'
+import { count, date, label, quantity, slug, timeOfDay, zoneName } from './quantity.ts'
 
 const window = z
   .strictObject({ from: timeOfDay('start, local time'), to: timeOfDay('end, local time') })
@@ -44,7 +44,7 @@ const charge = (meaning: string) => quantity(0, 100, meaning)
 const day = z
   .strictObject({
     date: date('day of the calendar at the place of the race'),
-    zone: label('time zone of this day, where it differs from the race').optional(),
+    zone: zoneName('time zone of this day, where it differs from the race').optional(),
     release: timeOfDay('when the car leaves impound, local time').optional(),
     driving: window.describe('driving hours, local time'),
     charging: z.array(chargingWindow).max(6).default([]).describe('when a parked car may charge'),
@@ -76,7 +76,7 @@ const day = z
 export const raceDocument = z
   .strictObject({
     name: label('name of the race'),
-    zone: label('time zone of the race, for example Africa/Windhoek'),
+    zone: zoneName('time zone of the race, for example Africa/Windhoek'),
     openingPct: charge('charge of the pack when the first day opens [%]'),
     days: z.array(day).min(1).max(40),
     penalties: z
