@@ -1,0 +1,220 @@
+import { checkArray, checkSteps } from './array-check.ts'
+import { type Cooling, heatLoss } from './cell-temperature.ts'
+import { type IncidenceLaw, incidenceTable } from './incidence.ts'
+import {
+  type AimAlong,
+  BLOCK_STEPS,
+  fillSky,
+  type LightAlong,
+  type LitPanel,
+  type PoseAlong,
+  panelLight,
+  skyBlock,
+} from './panel-light.ts'
+import { bestOfCells, exactBestOfCells, type PowerTable, powerTable } from './power-table.ts'
+import { aimAtSun, type Stand } from './stand.ts'
+import { type StringModel, stringBest, stringPowerAtV } from './string.ts'
+
+/** One flat facet of the array. */
+export interface Panel {
+  /** Tips the normal forward. [rad] */
+  pitchRad: number
+  /** Tips the normal to the right. [rad] */
+  rollRad: number
+  /** Goes up with the stand when the array is lifted. */
+  lifts: boolean
+  cooling: Cooling
+  /** Law by which the cover loses slanting beams. */
+  incidence: IncidenceLaw
+  /** Law for sky and ground; where left out 'martin-ruiz', or 'none' where the beam loses nothing. */
+  diffuseIncidence?: 'none' | 'martin-ruiz'
+}
+
+/** The array as a whole. */
+export interface ArrayModel {
+  panels: Panel[]
+  stand: Stand | null
+  strings: StringModel[]
+  /** Share of light that the ground throws back, 0..1. */
+  albedo: number
+  skyModel: 'hay-davies' | 'perez'
+}
+
+/** A checked array with its tables. */
+export interface PreparedArray {
+  model: ArrayModel
+  panels: LitPanel[]
+  /** Table of a string's cells; null for strings that span panels. */
+  tables: (PowerTable | null)[]
+  /** Index of the first string that is just like this one. */
+  firstAlike: number[]
+}
+
+/** Steps to work out: weather and the car's pose. */
+export interface ArraySteps extends PoseAlong {
+  weather: LightAlong
+  /** Solves every step exactly instead of reading tables. */
+  exact?: boolean
+}
+
+/** What the array gives: per string and per panel, one value a step. */
+export interface ArrayHarvest {
+  bestW: Float64Array[]
+  bestV: Float64Array[]
+  /** Before incidence losses. */
+  planeWm2: Float64Array[]
+  /** After incidence losses, before soiling. */
+  effectiveWm2: Float64Array[]
+  cellC: Float64Array[]
+  /** NaN where the array is not lifted. */
+  aimTiltRad: Float64Array
+  aimAzimuthRad: Float64Array
+}
+
+/**
+ * Checks an array and builds its tables: one a kind of cell, one a cover.
+ *
+ * @throws InputError that names the first wrong field
+ */
+export function prepareArray(model: ArrayModel): PreparedArray {
+  checkArray(model)
+  const tables = new Map<string, PowerTable>()
+  const tableOf = (string: StringModel): PowerTable | null => {
+    if (string.groups.length > 1) return null
+    const key = JSON.stringify(string.cell)
+    const table = tables.get(key) ?? powerTable(string.cell)
+    tables.set(key, table)
+    return table
+  }
+  const kinds = model.strings.map((string) => JSON.stringify({ ...string, name: '' }))
+  return {
+    model,
+    panels: model.panels.map((panel) => ({
+      pitchRad: panel.pitchRad,
+      rollRad: panel.rollRad,
+      lifts: panel.lifts,
+      beamTable: panel.incidence === 'none' ? null : incidenceTable(panel.incidence),
+      losesDiffuse: panel.incidence !== 'none' && panel.diffuseIncidence !== 'none',
+      loss: heatLoss(panel.cooling),
+    })),
+    tables: model.strings.map(tableOf),
+    firstAlike: kinds.map((kind) => kinds.indexOf(kind)),
+  }
+}
+
+/**
+ * What every string could give at its best point, step by step, and the light and warmth of every panel.
+ *
+ * Beam, sky and ground on each panel from the apparent sun; cells warmed by all light on the plane; power of one-panel
+ * strings from tables (within 0.04 %), of strings over several panels solved exactly with their bypass diodes. Lifted,
+ * the car's own up direction is turned to the sun within the stand's limits, and lifting panels keep their pitch and
+ * roll on it; the stand holds the array, so grade does not count. Darkness gives exactly 0 W.
+ *
+ * @throws InputError when a list has another length than the weather, or steps are lifted without a stand
+ */
+export function arrayHarvest(array: PreparedArray, steps: ArraySteps): ArrayHarvest {
+  const count = steps.weather.dniWm2.length
+  checkSteps(array.model, steps, count)
+  const perPanel = (): Float64Array[] => array.panels.map(() => new Float64Array(count))
+  const perString = (): Float64Array[] => array.tables.map(() => new Float64Array(count))
+  const harvest = {
+    bestW: perString(),
+    bestV: perString(),
+    planeWm2: perPanel(),
+    effectiveWm2: perPanel(),
+    cellC: perPanel(),
+    aimTiltRad: new Float64Array(count).fill(Number.NaN),
+    aimAzimuthRad: new Float64Array(count).fill(Number.NaN),
+  }
+  lightPanels(array, steps, harvest)
+  array.tables.forEach((_, index) => fillString(array, index, harvest, steps.exact === true))
+  return harvest
+}
+
+function lightPanels(array: PreparedArray, steps: ArraySteps, harvest: ArrayHarvest): void {
+  const { albedo, skyModel, stand } = array.model
+  const count = harvest.aimTiltRad.length
+  const block = skyBlock()
+  const aim = { tiltRad: harvest.aimTiltRad, azimuthRad: harvest.aimAzimuthRad }
+  for (let from = 0; from < count; from += BLOCK_STEPS) {
+    const to = Math.min(count, from + BLOCK_STEPS)
+    fillSky(skyModel, steps.weather, from, to, block)
+    if (stand !== null) fillAim(stand, steps.lifted, { from, to, block }, aim)
+    array.panels.forEach((panel, p) =>
+      panelLight(
+        panel,
+        { light: steps.weather, pose: steps, aim },
+        { from, to, block, albedo },
+        { planeWm2: harvest.planeWm2[p], effectiveWm2: harvest.effectiveWm2[p], cellC: harvest.cellC[p] },
+      ),
+    )
+  }
+}
+
+function fillAim(
+  stand: Stand,
+  lifted: Uint8Array,
+  range: { from: number; to: number; block: ReturnType<typeof skyBlock> },
+  aim: AimAlong,
+): void {
+  const { sunEast, sunNorth, sunUp } = range.block
+  for (let i = range.from, b = 0; i < range.to; i++, b++) {
+    if (lifted[i] !== 1) continue
+    const { tiltRad, azimuthRad } = aimAtSun(stand, sunEast[b], sunNorth[b], sunUp[b])
+    aim.tiltRad[i] = tiltRad
+    aim.azimuthRad[i] = azimuthRad
+  }
+}
+
+function fillString(array: PreparedArray, index: number, harvest: ArrayHarvest, exact: boolean): void {
+  const out = { W: harvest.bestW[index], V: harvest.bestV[index] }
+  const first = array.firstAlike[index]
+  if (first !== index) {
+    out.W.set(harvest.bestW[first])
+    out.V.set(harvest.bestV[first])
+    return
+  }
+  const string = array.model.strings[index]
+  const table = array.tables[index]
+  if (table === null) return fillSpanningString(string, harvest, out)
+  const { panel, cellsInSeries } = string.groups[0]
+  const scale = {
+    cleanFraction: 1 - string.soilingFraction,
+    cellsInSeries,
+    cells: cellsInSeries * string.cellsInParallel,
+  }
+  const light = { effectiveWm2: harvest.effectiveWm2[panel], cellC: harvest.cellC[panel] }
+  if (exact) exactBestOfCells(string.cell, scale, light, out)
+  else bestOfCells(table, scale, light, out)
+}
+
+function fillSpanningString(
+  string: StringModel,
+  harvest: ArrayHarvest,
+  out: { W: Float64Array; V: Float64Array },
+): void {
+  for (let i = 0; i < out.W.length; i++) {
+    const best = stringBest(string, lightAt(harvest.effectiveWm2, i), lightAt(harvest.cellC, i))
+    out.W[i] = best.W
+    out.V[i] = best.V
+  }
+}
+
+const lightAt = (perPanel: Float64Array[], step: number): number[] => perPanel.map((steps) => steps[step])
+
+/**
+ * Power of a string at a step when its tracker holds it at a voltage off its best; exact.
+ *
+ * @param volts  voltage over the string, ≥ 0. [V]
+ * @returns power of the string, 0 at and above its open-circuit voltage. [W]
+ */
+export function offBestW(
+  array: PreparedArray,
+  stringIndex: number,
+  stepIndex: number,
+  harvest: ArrayHarvest,
+  volts: number,
+): number {
+  const string = array.model.strings[stringIndex]
+  return stringPowerAtV(string, lightAt(harvest.effectiveWm2, stepIndex), lightAt(harvest.cellC, stepIndex), volts)
+}

@@ -1,0 +1,196 @@
+import { type HeatLoss, heatLossWm2K } from './cell-temperature.ts'
+import { beamShareAt, martinRuizGround, martinRuizSky } from './incidence.ts'
+import { hayDavies, panelNormal, perez, sinOf } from './plane.ts'
+
+/** What the array needs of the weather, one value a step; `weatherAlong` gives it. */
+export interface LightAlong {
+  /** True direction towards the sun, length 1. */
+  sun: { east: Float64Array; north: Float64Array; up: Float64Array }
+  apparentZenithRad: Float64Array
+  extraWm2: Float64Array
+  /** Relative. */
+  airMass: Float64Array
+  ghiWm2: Float64Array
+  dniWm2: Float64Array
+  dhiWm2: Float64Array
+  airC: Float64Array
+}
+
+/** Where the car stands and what air it meets, one value a step. */
+export interface PoseAlong {
+  headingRad: Float64Array
+  gradeRad: Float64Array
+  /** Speed of the air over the panels. [m/s] */
+  airSpeedMps: Float64Array
+  /** 1 where the array is lifted. */
+  lifted: Uint8Array
+}
+
+/** A run of steps that is worked at once, small enough to stay near: apparent sun and sky shares. */
+export interface SkyBlock {
+  sunEast: Float64Array
+  sunNorth: Float64Array
+  sunUp: Float64Array
+  aroundSunWm2: Float64Array
+  domeWm2: Float64Array
+  horizonWm2: Float64Array
+}
+
+export const BLOCK_STEPS = 1024
+
+/** Room for the sky of one block. */
+export const skyBlock = (): SkyBlock => ({
+  sunEast: new Float64Array(BLOCK_STEPS),
+  sunNorth: new Float64Array(BLOCK_STEPS),
+  sunUp: new Float64Array(BLOCK_STEPS),
+  aroundSunWm2: new Float64Array(BLOCK_STEPS),
+  domeWm2: new Float64Array(BLOCK_STEPS),
+  horizonWm2: new Float64Array(BLOCK_STEPS),
+})
+
+/** Fills a block with the apparent sun (true azimuth, apparent zenith) and the sky's shares at steps from..to−1. */
+export function fillSky(
+  model: 'hay-davies' | 'perez',
+  light: LightAlong,
+  from: number,
+  to: number,
+  block: SkyBlock,
+): void {
+  const split = model === 'perez' ? perez : hayDavies
+  const shares = { aroundSunWm2: 0, domeWm2: 0, horizonWm2: 0 }
+  const sky = { dniWm2: 0, dhiWm2: 0, extraWm2: 0, cosZenith: 0, apparentZenithRad: 0, airMass: 0 }
+  for (let i = from, b = 0; i < to; i++, b++) {
+    const east = light.sun.east[i]
+    const north = light.sun.north[i]
+    const level = Math.sqrt(east * east + north * north)
+    const cosZenith = Math.cos(light.apparentZenithRad[i])
+    const stretch = level > 0 ? sinOf(cosZenith) / level : 0
+    block.sunEast[b] = east * stretch
+    block.sunNorth[b] = north * stretch
+    block.sunUp[b] = cosZenith
+    sky.dniWm2 = light.dniWm2[i]
+    sky.dhiWm2 = light.dhiWm2[i]
+    sky.extraWm2 = light.extraWm2[i]
+    sky.cosZenith = cosZenith
+    sky.apparentZenithRad = light.apparentZenithRad[i]
+    sky.airMass = light.airMass[i]
+    split(sky, shares)
+    block.aroundSunWm2[b] = shares.aroundSunWm2
+    block.domeWm2[b] = shares.domeWm2
+    block.horizonWm2[b] = shares.horizonWm2
+  }
+}
+
+/** A panel made ready for `panelLight`. */
+export interface LitPanel {
+  pitchRad: number
+  rollRad: number
+  lifts: boolean
+  /** Share of the beam by cos θ; null where nothing is lost. */
+  beamTable: Float64Array | null
+  /** Martin and Ruiz on sky and ground, the beam's law on light from around the sun; else diffuse light loses nothing. */
+  losesDiffuse: boolean
+  loss: HeatLoss
+}
+
+/** Where the lifted array faces, one value a step; NaN where it is not lifted. */
+export interface AimAlong {
+  tiltRad: Float64Array
+  azimuthRad: Float64Array
+}
+
+/** Results of one panel, one value a step. */
+export interface PanelLight {
+  planeWm2: Float64Array
+  effectiveWm2: Float64Array
+  cellC: Float64Array
+}
+
+/** A panel's normal on the lifted array: the level car's array tilted about a level axis towards the aim's azimuth. */
+export function liftedNormal(
+  panel: { pitchRad: number; rollRad: number },
+  headingRad: number,
+  tiltRad: number,
+  azimuthRad: number,
+): [east: number, north: number, up: number] {
+  const [east, north, up] = panelNormal(panel.pitchRad, panel.rollRad, headingRad, 0)
+  const sinA = Math.sin(azimuthRad)
+  const cosA = Math.cos(azimuthRad)
+  const towards = east * sinA + north * cosA
+  const aside = east * cosA - north * sinA
+  const tipped = towards * Math.cos(tiltRad) + up * Math.sin(tiltRad)
+  return [
+    tipped * sinA + aside * cosA,
+    tipped * cosA - aside * sinA,
+    up * Math.cos(tiltRad) - towards * Math.sin(tiltRad),
+  ]
+}
+
+/**
+ * Light on one panel, light that reaches its cells, and their temperature, at steps from..to−1.
+ *
+ * The normal is worked out only when heading or grade change; the angle between sun and panel is a dot product.
+ *
+ * @param block   sky of the same steps
+ * @param albedo  share of light that the ground throws back, 0..1
+ * @param out     overwritten at those steps
+ */
+export function panelLight(
+  panel: LitPanel,
+  steps: { light: LightAlong; pose: PoseAlong; aim: AimAlong },
+  range: { from: number; to: number; block: SkyBlock; albedo: number },
+  out: PanelLight,
+): void {
+  const { ghiWm2, dniWm2, airC } = steps.light
+  const { headingRad, gradeRad, airSpeedMps, lifted } = steps.pose
+  const { from, to, block, albedo } = range
+  const { beamTable, losesDiffuse, lifts, loss } = panel
+  let normal: [number, number, number] = [0, 0, 1]
+  let [east, north, up] = normal
+  let [sinTilt, keptSky, keptGround] = [0, 1, 1]
+  let lastHeading = Number.NaN
+  let lastGrade = Number.NaN
+  let wasUp = false
+  let lastAirSpeed = Number.NaN
+  let heating = 0
+  for (let i = from, b = 0; i < to; i++, b++) {
+    const isUp = lifts && lifted[i] === 1
+    if (isUp || wasUp || headingRad[i] !== lastHeading || gradeRad[i] !== lastGrade) {
+      lastHeading = headingRad[i]
+      lastGrade = gradeRad[i]
+      wasUp = isUp
+      normal = isUp
+        ? liftedNormal(panel, lastHeading, steps.aim.tiltRad[i], steps.aim.azimuthRad[i])
+        : panelNormal(panel.pitchRad, panel.rollRad, lastHeading, lastGrade)
+      east = normal[0]
+      north = normal[1]
+      up = normal[2]
+      sinTilt = sinOf(up)
+      if (losesDiffuse) {
+        keptSky = martinRuizSky(up)
+        keptGround = martinRuizGround(up)
+      }
+    }
+    if (airSpeedMps[i] !== lastAirSpeed) {
+      lastAirSpeed = airSpeedMps[i]
+      heating = loss.heatFraction / heatLossWm2K(loss, lastAirSpeed)
+    }
+    const cos = Math.min(1, Math.max(0, east * block.sunEast[b] + north * block.sunNorth[b] + up * block.sunUp[b]))
+    const beam = dniWm2[i] * cos
+    const aroundSun = block.aroundSunWm2[b] * cos
+    const even = block.domeWm2[b] * 0.5 * (1 + up) + block.horizonWm2[b] * sinTilt
+    const sky = Math.max(0, aroundSun + even)
+    const ground = ghiWm2[i] * albedo * 0.5 * (1 - up)
+    const plane = beam + sky + ground
+    let effective = plane
+    if (beamTable !== null) {
+      const kept = beamShareAt(beamTable, cos)
+      effective = losesDiffuse
+        ? beam * kept + Math.max(0, aroundSun * kept + even * keptSky) + ground * keptGround
+        : beam * kept + sky + ground
+    }
+    out.planeWm2[i] = plane
+    out.effectiveWm2[i] = effective
+    out.cellC[i] = airC[i] + plane * heating
+  }
+}
