@@ -168,7 +168,11 @@ export function sunAlong(path: SunPath, along: Along): SunDirections {
 }
 
 const outsidePath = (path: SunPath, atMs: number, step: number): InputError =>
-  new InputError('out-of-range', `along.atMs[${step}]`, `is ${atMs}, the sun's path covers ${path.fromMs}..${path.toMs}`)
+  new InputError(
+    'out-of-range',
+    `along.atMs[${step}]`,
+    `is ${atMs}, the sun's path covers ${path.fromMs}..${path.toMs}`,
+  )
 
 /**
  * Irradiance on a plane facing the sun above the air, for the UTC day of the instant.
@@ -185,8 +189,7 @@ export function extraterrestrialWm2(atMs: number): number {
 
 /** Days since 1 January of the same year, 0..365, of a day counted from 1970-01-01. */
 function dayOfYear(day: number): number {
-  const firstOf = (year: number): number =>
-    (year - 1970) * 365 + leapsBefore(year) - leapsBefore(1970)
+  const firstOf = (year: number): number => (year - 1970) * 365 + leapsBefore(year) - leapsBefore(1970)
   const guess = 1970 + Math.floor(day / 365.2425)
   const year = day < firstOf(guess) ? guess - 1 : day >= firstOf(guess + 1) ? guess + 1 : guess
   return day - firstOf(year)
