@@ -1,0 +1,122 @@
+import * as fc from 'fast-check'
+import { describe, expect, it } from 'vitest'
+import { type BenchPoint, fitLosses } from '../../server/engine/loss-fit.ts'
+import { type Tracker, type TrackerLosses, trackerOutputW } from '../../server/engine/tracker.ts'
+
+const LOSSES: TrackerLosses = { standingW: 0.6, switchingFraction: 0.004, conductionOhm: 0.05, rectifierV: 0.4 }
+
+/** A bench with these losses: three voltages in, three out, six powers. */
+function bench(losses: TrackerLosses, error: (k: number) => number = () => 0): BenchPoint[] {
+  const window = {
+    inputMinV: 0,
+    inputMaxV: 200,
+    inputMaxA: 50,
+    outputMinV: 0,
+    outputMaxV: 200,
+    outputMaxA: 50,
+    maxW: 900,
+  }
+  const tracker: Tracker = { name: 'bench', window, losses, trackingEfficiency: 1 }
+  const points: BenchPoint[] = []
+  for (const inputV of [35, 50, 65]) {
+    for (const outputV of [80, 100, 125]) {
+      for (const inputW of [20, 50, 100, 150, 220, 300]) {
+        const outputW = trackerOutputW(tracker, inputW, inputV, outputV) + error(points.length)
+        points.push({ inputV, outputV, inputW, outputW: Math.min(outputW, inputW) })
+      }
+    }
+  }
+  return points
+}
+
+describe('losses from a bench', () => {
+  it('come back from clean points at several voltages', () => {
+    const { losses, rmsW } = fitLosses(bench(LOSSES))
+    for (const name of ['standingW', 'switchingFraction', 'conductionOhm', 'rectifierV'] as const) {
+      expect(losses[name] / LOSSES[name]).toBeCloseTo(1, 9)
+    }
+    expect(rmsW).toBeLessThan(1e-9)
+  })
+
+  it('come back from efficiencies as well as from powers', () => {
+    const points = bench(LOSSES).map(({ outputW = 0, ...rest }) => ({ ...rest, efficiency: outputW / rest.inputW }))
+    expect(fitLosses(points).losses.conductionOhm).toBeCloseTo(0.05, 9)
+  })
+
+  it('leave a term at nothing that the bench does not show', () => {
+    const { losses } = fitLosses(bench({ ...LOSSES, rectifierV: 0, standingW: 0 }))
+    expect(losses.rectifierV).toBe(0)
+    expect(losses.standingW).toBe(0)
+    expect(losses.switchingFraction).toBeCloseTo(0.004, 9)
+  })
+
+  it('are never negative, and no other choice of terms fits better, whatever the readings', () => {
+    const between = (min: number, max: number) => fc.double({ min, max, noNaN: true })
+    fc.assert(
+      fc.property(fc.array(between(-2, 2), { minLength: 54, maxLength: 54 }), (errors) => {
+        const points = bench(LOSSES, (k) => errors[k])
+        const { losses, rmsW } = fitLosses(points)
+        const rmsOf = (own: TrackerLosses): number => {
+          const left = points.map(({ inputV, outputV, inputW, outputW = 0 }) => {
+            const inputA = inputW / inputV
+            const modelW = own.standingW + own.switchingFraction * inputA * outputV + own.conductionOhm * inputA ** 2
+            return inputW - outputW - modelW - own.rectifierV * (outputW / outputV)
+          })
+          return Math.sqrt(left.reduce((sum, value) => sum + value * value, 0) / left.length)
+        }
+        expect(rmsOf(losses)).toBeCloseTo(rmsW, 9)
+        for (const name of ['standingW', 'switchingFraction', 'conductionOhm', 'rectifierV'] as const) {
+          expect(losses[name]).toBeGreaterThanOrEqual(0)
+          for (const nudge of [0.9, 1.1]) {
+            expect(rmsOf({ ...losses, [name]: losses[name] * nudge })).toBeGreaterThanOrEqual(rmsW - 1e-9)
+          }
+          const step = LOSSES[name] * 0.01
+          expect(rmsOf({ ...losses, [name]: losses[name] + step })).toBeGreaterThanOrEqual(rmsW - 1e-9)
+        }
+      }),
+      { numRuns: 200 },
+    )
+  })
+
+  it('of one pair of voltages go to as few terms as explain them', () => {
+    const points = bench(LOSSES).filter(({ inputV, outputV }) => inputV === 50 && outputV === 100)
+    const { losses, rmsW } = fitLosses(points)
+    expect(rmsW).toBeLessThan(0.01)
+    expect(losses.standingW).toBeCloseTo(0.6, 1)
+  })
+
+  it('a curve that wants a negative slope gets none: efficiencies 0.93, 0.975, 0.97 of 1000 W', () => {
+    // The exact polynomial through these has b = −0.00041667, worked by hand.
+    const points = [
+      [0.1, 0.93],
+      [0.5, 0.975],
+      [1, 0.97],
+      [1, 0.97],
+    ].map(([share, efficiency]) => ({
+      inputV: 80,
+      outputV: 100,
+      inputW: 1000 * share,
+      efficiency,
+    }))
+    const { losses } = fitLosses(points)
+    expect(losses.switchingFraction).toBe(0)
+    expect(losses.standingW / 1000).toBeCloseTo(0.0068, 3)
+    expect((losses.conductionOhm * 1000) / 80 ** 2).toBeCloseTo(0.0233, 3)
+  })
+})
+
+describe('a wrong bench point is refused by name', () => {
+  const good: BenchPoint = { inputV: 50, outputV: 100, inputW: 100, outputW: 96 }
+  it.each([
+    ['points[2].inputV', { ...good, inputV: 0 }],
+    ['points[2].inputW', { ...good, inputW: Number.NaN }],
+    ['points[2].outputW', { ...good, outputW: 101 }],
+    ['points[2].efficiency', { ...good, outputW: undefined, efficiency: 1.2 }],
+    ['points[2]', { ...good, efficiency: 0.96 }],
+    ['points[2]', { ...good, outputW: undefined }],
+  ])('%s', (field, point) => {
+    expect(() => fitLosses([good, good, point, good])).toThrowError(expect.objectContaining({ field }))
+  })
+
+  it('three points are too few', () => expect(() => fitLosses([good, good, good])).toThrowError(/3 given, at least 4/))
+})
