@@ -1,0 +1,119 @@
+import type { Fragment, Sql } from './guarded-sql.ts'
+import { checkField, isUuid, isVersion, json, saving, utc } from './storable.ts'
+import { StoreError } from './store-error.ts'
+
+/** What a forecast was reckoned from, and its outcome. */
+export interface NewForecast {
+  /** A UUID made by the caller, so that a repeat is harmless; made by the database when left out. */
+  id?: string
+  raceId: string
+  raceVersion: number
+  carId: string
+  carVersion: number
+  skyId: string
+  skyVersion: number
+  /** Version of each route used, by the route's id. */
+  routeVersions: Record<string, number>
+  speeds: unknown
+  inputsHash: string
+  engineVersion: string
+  budget: unknown
+}
+
+/** A saved forecast without its budget. `createdAt` is ISO 8601 in UTC. */
+export interface ForecastEntry extends Omit<NewForecast, 'id' | 'budget'> {
+  id: string
+  createdAt: string
+}
+
+export interface StoredForecast extends ForecastEntry {
+  budget: unknown
+}
+
+export interface SavedForecast {
+  id: string
+  createdAt: string
+}
+
+export interface ForecastStore {
+  /** Saves once: the same id with the same inputs again gives back what was saved. */
+  save(forecast: NewForecast): Promise<SavedForecast>
+  get(id: string): Promise<StoredForecast | null>
+  /** The race's last 50, newest first. */
+  list(raceId: string): Promise<ForecastEntry[]>
+  /** The newest forecast from exactly these inputs by this engine. */
+  findByInputs(inputsHash: string, engineVersion: string): Promise<StoredForecast | null>
+}
+
+/**
+ * Forecasts as they were given, never changed.
+ *
+ * @throws StoreError field-not-storable or forecast-id-taken from `save`
+ */
+export function forecastStore(sql: Sql): ForecastStore {
+  const createdAt = (): Fragment => sql`${utc(sql, 'created_at')} as "createdAt"`
+
+  const entry = (): Fragment => sql`
+    id, race_id as "raceId", race_version as "raceVersion", car_id as "carId", car_version as "carVersion",
+    sky_id as "skyId", sky_version as "skyVersion", route_versions as "routeVersions", speeds,
+    inputs_hash as "inputsHash", engine_version as "engineVersion", ${createdAt()}`
+
+  const get = async (id: string): Promise<StoredForecast | null> => {
+    if (!isUuid(id)) return null
+    const rows = await sql<StoredForecast[]>`select ${entry()}, budget from forecasts where id = ${id}`
+    return rows[0] ?? null
+  }
+
+  const insert = (f: NewForecast): Promise<SavedForecast[]> =>
+    saving(
+      { ...f },
+      () =>
+        sql<SavedForecast[]>`
+        insert into forecasts (
+          id, race_id, race_version, car_id, car_version, sky_id, sky_version,
+          route_versions, speeds, inputs_hash, engine_version, budget
+        ) values (
+          ${f.id ?? sql`gen_random_uuid()`}, ${f.raceId}, ${f.raceVersion}, ${f.carId}, ${f.carVersion},
+          ${f.skyId}, ${f.skyVersion}, ${json(sql, 'routeVersions', f.routeVersions)}, ${json(sql, 'speeds', f.speeds)},
+          ${f.inputsHash}, ${f.engineVersion}, ${json(sql, 'budget', f.budget)}
+        )
+        on conflict (id) do nothing
+        returning id, ${createdAt()}`,
+    )
+
+  return {
+    async save(forecast) {
+      const { id } = forecast
+      checkField('id', id, id === undefined || isUuid(id), 'a UUID')
+      for (const field of ['raceVersion', 'carVersion', 'skyVersion'] as const) {
+        checkField(field, forecast[field], isVersion(forecast[field]), 'a whole number from 1 to 2147483647')
+      }
+      const rows = await insert(forecast)
+      if (rows.length > 0) return rows[0]
+      const saved = id === undefined ? null : await get(id)
+      if (saved?.inputsHash === forecast.inputsHash && saved.engineVersion === forecast.engineVersion) {
+        return { id: saved.id, createdAt: saved.createdAt }
+      }
+      throw new StoreError(
+        'forecast-id-taken',
+        `id: '${id}' is taken by a forecast from other inputs; expected a new UUID.`,
+      )
+    },
+
+    get,
+
+    async list(raceId) {
+      const rows = await sql<ForecastEntry[]>`
+        select ${entry()} from forecasts where race_id = ${raceId} order by save_number desc limit 50`
+      return rows
+    },
+
+    async findByInputs(inputsHash, engineVersion) {
+      const rows = await sql<StoredForecast[]>`
+        select ${entry()}, budget from forecasts
+        where inputs_hash = ${inputsHash} and engine_version = ${engineVersion}
+        order by save_number desc limit 1`
+      return rows[0] ?? null
+    },
+  }
+}
