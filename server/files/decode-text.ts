@@ -1,0 +1,63 @@
+import type { Problem } from '../documents/problem.ts'
+import { overLimit } from './file-reading.ts'
+
+export type Decoded = { text: string; problems?: undefined } | { text?: undefined; problems: Problem[] }
+
+/**
+ * The text of a file's bytes: UTF-8, or UTF-16 in either order, with or without a byte order mark.
+ * Bytes that are no such text and files over the limit are refused.
+ */
+export function decodeText(bytes: Uint8Array): Decoded {
+  const tooLarge = overLimit(bytes.length)
+  if (tooLarge !== null) return { problems: [tooLarge] }
+  const encoding = encodingOf(bytes)
+  const text = decoded(bytes, encoding)
+  if (text !== null) return { text }
+  return { problems: [badBytes(bytes, encoding)] }
+}
+
+type Encoding = 'utf-8' | 'utf-16le' | 'utf-16be'
+
+/** By the byte order mark; without one a zero byte beside the first character tells UTF-16. */
+function encodingOf(bytes: Uint8Array): Encoding {
+  const [a, b] = bytes
+  if (bytes.length < 2) return 'utf-8'
+  if ((a === 0xff && b === 0xfe) || (a !== 0 && b === 0)) return 'utf-16le'
+  if ((a === 0xfe && b === 0xff) || (a === 0 && b !== 0)) return 'utf-16be'
+  return 'utf-8'
+}
+
+function decoded(bytes: Uint8Array, encoding: Encoding, isWhole = true): string | null {
+  try {
+    return new TextDecoder(encoding, { fatal: true }).decode(bytes, { stream: !isWhole })
+  } catch {
+    return null
+  }
+}
+
+/** The first byte that does not fit, found by halving: a prefix decodes exactly when it ends before it. */
+function badBytes(bytes: Uint8Array, encoding: Encoding): Problem {
+  let good = 0
+  let bad = bytes.length + 1
+  while (bad - good > 1) {
+    const middle = (good + bad) >> 1
+    if (decoded(bytes.subarray(0, middle), encoding, middle > bytes.length) === null) bad = middle
+    else good = middle
+  }
+  const before = (decoded(bytes.subarray(0, good), encoding, false) ?? '').split(/\r\n|\r|\n/)
+  return {
+    field: 'file',
+    value: good < bytes.length ? `byte 0x${bytes[good].toString(16).padStart(2, '0')}` : 'the end of the file',
+    detail: `expected text as UTF-8 or UTF-16; this byte is not ${encoding.toUpperCase()}. Save the file as UTF-8`,
+    line: before.length,
+    column: before[before.length - 1].length + 1,
+  }
+}
+
+/** What a text is by its content: GPX, a table, or neither. */
+export function looksLike(text: string): 'gpx' | 'csv' | 'unknown' {
+  const start = text.slice(0, 65_536).replace(/^\uFEFF/, '')
+  if (/^\s*</.test(start)) return /<(?:[\w.-]+:)?gpx[\s>]/.test(start) ? 'gpx' : 'unknown'
+  const header = start.split(/\r\n|\r|\n/).find((line) => line.trim() !== '' && !line.startsWith('#'))
+  return header !== undefined && /[,;\t|]/.test(header) ? 'csv' : 'unknown'
+}
