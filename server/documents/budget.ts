@@ -98,7 +98,16 @@ const series = z.strictObject({
 })
 
 const outcome = z.strictObject({
-  kind: z.enum(['done', 'parked', 'cut-off', 'below-reserve', 'runs-flat', 'stop-missed', 'no-speed-meets-target']),
+  kind: z.enum([
+    'done',
+    'parked',
+    'cut-off',
+    'below-reserve',
+    'runs-flat',
+    'too-steep',
+    'stop-missed',
+    'no-speed-meets-target',
+  ]),
   text: z.string().describe('one sentence for people'),
   at: at('when it happens').nullable(),
   km: km('where it happens').nullable(),

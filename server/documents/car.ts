@@ -16,7 +16,8 @@ const cooling = z.discriminatedUnion('kind', [
   z.strictObject({
     kind: z.literal('car-body'),
     lengthM: quantity(0.1, 6, 'length of the surface along the airflow [m]').default(2),
-    parkedWm2PerC: quantity(5, 60, 'heat loss when parked [W/(m²·°C)]').default(17),
+    parkedWm2PerC: quantity(5, 60, 'least heat loss, parked in still air [W/(m²·°C)]').default(17),
+    heatPct: quantity(10, 100, 'share of the light that turns to heat: absorbed less made into power [%]').default(67),
   }),
   z.strictObject({
     kind: z.literal('faiman'),
@@ -30,7 +31,7 @@ const panel = z.strictObject({
   pitchDeg: quantity(-60, 60, 'pitch on the car, positive tips the face forward [°]').default(0),
   rollDeg: quantity(-60, 60, 'roll on the car, positive tips the face to the right [°]').default(0),
   lifts: z.boolean().describe('whether the panel is lifted to the sun when parked').default(false),
-  cooling: cooling.default({ kind: 'car-body', lengthM: 2, parkedWm2PerC: 17 }),
+  cooling: cooling.default({ kind: 'car-body', lengthM: 2, parkedWm2PerC: 17, heatPct: 67 }),
   glass: z
     .enum(['martin-ruiz', 'physical', 'ashrae', 'none'])
     .describe('incidence-angle modifier; none: no loss at any angle')
@@ -107,7 +108,7 @@ const pack = z
       .min(2)
       .max(200)
       .describe('rested cell voltage by charge, from 0 to 100 %'),
-    cellOhm: quantity(0, 1, 'resistance of one cell [Ω]'),
+    cellOhm: quantity(1e-5, 1, 'resistance of one cell [Ω]'),
     leadsOhm: quantity(0, 1, 'resistance of leads and contactors [Ω]').default(0),
     cellMaxV: quantity(0.5, 5, 'highest cell voltage [V]'),
     cellMinV: quantity(0.1, 5, 'lowest cell voltage [V]'),

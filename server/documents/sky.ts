@@ -4,6 +4,9 @@ import { instant, label, quantity } from './quantity.ts'
 /** Most rows that one place of a sky may hold: 60 days of 15-minute values. */
 export const MAX_SKY_ROWS = 6000
 
+/** Longest time between two stamps: beyond it a forecast says nothing of the hours between. */
+const MAX_SKY_GAP_MS = 6 * 3_600_000
+
 const cells = (min: number, max: number, meaning: string) =>
   z.array(z.number().min(min).max(max).nullable()).max(MAX_SKY_ROWS).describe(meaning).optional()
 
@@ -63,6 +66,10 @@ const place = z
     }
     const late = p.at.findIndex((at, i) => i > 0 && Date.parse(at) <= Date.parse(p.at[i - 1]))
     if (late > 0) issue(['at', late], `later than the stamp before it (${p.at[late - 1]})`, p.at[late])
+    const wide = p.at.findIndex((at, i) => i > 0 && Date.parse(at) - Date.parse(p.at[i - 1]) > MAX_SKY_GAP_MS)
+    if (wide > 0) issue(['at', wide], `at most 6 h after the stamp before it (${p.at[wide - 1]})`, p.at[wide])
+    for (const name of SKY_COLUMNS)
+      if (p[name]?.every((value) => value === null)) issue([name], 'at least one value in the column', 'none')
     if (p.airTempC === undefined) issue(['airTempC'], 'a column of air temperatures [°C]', undefined)
     if (p.cloudPct === undefined && p.ghiWm2 === undefined && (p.dniWm2 === undefined || p.dhiWm2 === undefined))
       issue(['cloudPct'], 'cloud cover, or GHI, or DNI with DHI', undefined)

@@ -1,0 +1,169 @@
+import type { Race, DayForecast } from '../engine/forecast.ts'
+import { storedJ } from '../engine/battery.ts'
+import { ledger } from '../engine/ledger.ts'
+import type { DayBudget } from './budget.ts'
+import { ledgerDocument } from './budget-ledger.ts'
+import { outcomeOf } from './budget-outcome.ts'
+import { seriesDocument } from './budget-series.ts'
+import { localIso, offsetMin } from './local-time.ts'
+import type { PlacedStage } from './race-model.ts'
+import { stageBudgets } from './budget-stages.ts'
+
+const WH = 1 / 3600
+
+/** One day of a race with its forecast, as the documents describe it. */
+export interface ForecastDay {
+  race: Race
+  stages: PlacedStage[]
+  dayIndex: number
+  date: string
+  zone: string
+  forecast: DayForecast
+  heldKmh: number | null
+  search: { tried: number; meetsTarget: boolean } | null
+  /** Charge wanted at the close, null where none is. */
+  targetCharge: number | null
+  penalties: { lateMinPerMin: number; unfinishedMinPerKm: number; mostLateMin?: number }
+}
+
+/** Stored energy and charge at the end of a step; -1 is the opening. */
+export function balanceAt(day: ForecastDay, step: number) {
+  const { forecast } = day
+  const charge = step < 0 ? forecast.openingCharge : forecast.balance.charge[step]
+  const J = step < 0 ? forecast.openingJ : forecast.balance.storedJ[step]
+  return { wh: J * WH, chargePct: charge * 100 }
+}
+
+const atCharge = (race: Race, charge: number) => ({ wh: storedJ(race.car.pack, charge) * WH, chargePct: charge * 100 })
+
+/** Name of a place: a stage's start or finish when the car stands on one, else its distance. */
+export function placeName(day: ForecastDay, placeM: number): string {
+  const { course, stages } = day.race
+  const here = (m: number) => Math.abs(m - placeM) < 1
+  const at = course.stages.findIndex((s) => here(s.toM))
+  if (at >= 0) return stages[at].finish
+  const from = course.stages.findIndex((s) => here(s.fromM))
+  return from >= 0 ? stages[from].start : `km ${(placeM / 1000).toFixed(0)}`
+}
+
+/** A day's forecast as the budget that people read. */
+export function dayBudget(day: ForecastDay): DayBudget {
+  const { forecast, race, zone } = day
+  const { spans } = forecast.timetable
+  const closing = { wh: forecast.closingJ * WH, chargePct: forecast.closing.charge * 100 }
+  const reserve = atCharge(race, race.car.reserveCharge)
+  const target = day.targetCharge === null ? null : atCharge(race, day.targetCharge)
+  const lowest = lowestOf(day)
+  const whole = ledger(
+    spans,
+    forecast.balance.spans,
+    spans.map((_, i) => i),
+    forecast,
+  )
+  return {
+    date: day.date,
+    zone,
+    utcOffsetMin: offsetMin(race.days[day.dayIndex].opensMs, zone),
+    outcome: outcomeOf(day, { closing, lowest, reserve, target }),
+    heldKmh: day.heldKmh,
+    speedsTried: day.search?.tried ?? 0,
+    drivenKm: spans.reduce((sum, s) => sum + s.toM - s.fromM, 0) / 1000,
+    opening: balanceAt(day, -1),
+    closing,
+    reserve,
+    capacityWh: storedJ(race.car.pack, 1) * WH,
+    lowest,
+    marginWh: lowest.wh - reserve.wh,
+    target,
+    targetMarginWh: target === null ? null : closing.wh - target.wh,
+    ledger: ledgerDocument(whole, race.stages, day.stages),
+    stages: stageBudgets(day),
+    gates: gatesOf(day),
+    spans: spans.map((s) => ({
+      kind: s.kind,
+      name: s.kind === 'drive' ? race.stages[s.stage].name : placeName(day, s.fromM),
+      from: localIso(s.fromMs, zone),
+      to: localIso(s.toMs, zone),
+      fromKm: s.fromM / 1000,
+      toKm: s.toM / 1000,
+    })),
+    trackers: trackersOf(day),
+    penaltyMin: penaltyMin(day),
+    series: seriesDocument(day),
+  }
+}
+
+function lowestOf(day: ForecastDay): DayBudget['lowest'] {
+  const { forecast, zone, race } = day
+  const step = forecast.lowestStep
+  const atMs = step < 0 ? race.days[day.dayIndex].opensMs : forecast.steps.toMs[step]
+  const placeM = step < 0 ? forecast.steps.fromM[0] : forecast.steps.toM[step]
+  return { ...balanceAt(day, step), at: localIso(atMs, zone), km: placeM / 1000, place: placeName(day, placeM) }
+}
+
+/** The places and times at which a crew compares its battery with the budget. */
+function gatesOf(day: ForecastDay): DayBudget['gates'] {
+  const { forecast, zone } = day
+  const { spans, isCutOff } = forecast.timetable
+  const { steps } = forecast
+  const lastDrive = spans.findLastIndex((s) => s.kind === 'drive')
+  const gates: DayBudget['gates'] = []
+  const push = (kind: DayBudget['gates'][number]['kind'], atMs: number, placeM: number): void => {
+    const balance = balanceAt(day, stepBefore(steps.toMs, steps.count, atMs))
+    gates.push({ kind, name: placeName(day, placeM), at: localIso(atMs, zone), km: placeM / 1000, ...balance })
+  }
+  const first = spans[0]
+  if (first === undefined) return gates
+  push('dawn', first.fromMs, first.fromM)
+  let hasStarted = false
+  spans.forEach((span, i) => {
+    if (span.kind === 'drive' && !hasStarted) {
+      hasStarted = true
+      push('start', span.fromMs, span.fromM)
+    }
+    if (span.kind === 'stop') push('depart', span.toMs, span.toM)
+    if (span.kind !== 'drive') return
+    if (i < lastDrive || spans[i + 1]?.kind === 'stop') push('arrive', span.toMs, span.toM)
+    else push(isCutOff ? 'camp' : 'finish', span.toMs, span.toM)
+  })
+  const last = spans[spans.length - 1]
+  push('dusk', last.toMs, last.toM)
+  return gates
+}
+
+/** Last step that ends at or before an instant, -1 where none does. */
+export function stepBefore(toMs: Float64Array, count: number, atMs: number): number {
+  let low = -1
+  let high = count - 1
+  while (low < high) {
+    const middle = (low + high + 1) >> 1
+    if (toMs[middle] <= atMs + 1) low = middle
+    else high = middle - 1
+  }
+  return low
+}
+
+function trackersOf(day: ForecastDay): DayBudget['trackers'] {
+  const { car } = day.race
+  return day.forecast.balance.trackers.map((t, i) => ({
+    name: car.trackers[i].name,
+    string: car.array.model.strings[i].name,
+    inputWh: t.inputJ * WH,
+    lossWh: t.lossJ * WH,
+    deniedWh: t.deniedJ * WH,
+    limits: [...t.limits].map(([limit, sum]) => ({
+      limit,
+      minutes: sum.durationS / 60,
+      deniedWh: sum.deniedJ * WH,
+    })),
+  }))
+}
+
+/** Late arrivals and, on the last day, road not driven. */
+function penaltyMin(day: ForecastDay): number {
+  const { timetable } = day.forecast
+  const lateMin = timetable.late.reduce((sum, l) => sum + l.byS / 60, 0)
+  const isLast = day.dayIndex === day.race.days.length - 1
+  const leftKm = isLast ? (day.race.course.lengthM - timetable.evening.placeM) / 1000 : 0
+  return lateMin * day.penalties.lateMinPerMin + leftKm * day.penalties.unfinishedMinPerKm
+}

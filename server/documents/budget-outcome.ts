@@ -1,0 +1,98 @@
+import type { DayBudget } from './budget.ts'
+import { placeName } from './budget-day.ts'
+import type { ForecastDay } from './budget-day.ts'
+import { clock, localIso } from './local-time.ts'
+
+type Outcome = DayBudget['outcome']
+interface Figures {
+  closing: DayBudget['closing']
+  lowest: DayBudget['lowest']
+  reserve: DayBudget['reserve']
+  target: DayBudget['target']
+}
+
+/** How a day ends, worst news first: what it is called and one sentence that says it. */
+export function outcomeOf(day: ForecastDay, figures: Figures): Outcome {
+  return (
+    runsFlat(day) ??
+    tooSteep(day) ??
+    noSpeed(day, figures) ??
+    stopMissed(day) ??
+    belowReserve(figures) ??
+    cutOff(day) ??
+    arrived(day)
+  )
+}
+
+function runsFlat(day: ForecastDay): Outcome | null {
+  const { balance, steps } = day.forecast
+  const i = balance.firstShort
+  if (i < 0) return null
+  const place = placeName(day, steps.fromM[i])
+  const isEmpty = balance.charge[i] < 0.005
+  const what = isEmpty ? 'The pack runs flat' : 'The pack cannot give the power asked of it'
+  return outcome('runs-flat', `${what} at ${place}, ${clock(steps.fromMs[i], day.zone)}.`, day, i)
+}
+
+function tooSteep(day: ForecastDay): Outcome | null {
+  const { blockedPiece, timetable, steps } = day.forecast
+  if (blockedPiece < 0) return null
+  const km = (timetable.evening.placeM / 1000).toFixed(1)
+  const gradePct = (Math.tan(day.race.course.pieces.gradeRad[blockedPiece]) * 100).toFixed(1)
+  const text = `The motor cannot pull the car on at km ${km}: the grade there is ${gradePct} %.`
+  return outcome('too-steep', text, day, steps.count - 1)
+}
+
+function noSpeed(day: ForecastDay, { closing, target, reserve, lowest }: Figures): Outcome | null {
+  if (day.search === null || day.search.meetsTarget) return null
+  const wanted = target ?? reserve
+  const short = Math.max(wanted.wh - closing.wh, reserve.wh - lowest.wh)
+  const miss = short > 0 ? `${Math.round(short)} Wh short` : 'late at a stop'
+  const text = `No speed meets the day’s target. Closest: ${day.heldKmh} km/h, ${miss}.`
+  return { kind: 'no-speed-meets-target', text, at: lowest.at, km: lowest.km }
+}
+
+function stopMissed(day: ForecastDay): Outcome | null {
+  const { late } = day.forecast.timetable
+  const missed = late.find((l) => l.byS / 60 > (day.penalties.mostLateMin ?? 0))
+  if (missed === undefined) return null
+  const { finish } = day.race.stages[missed.stage]
+  const text = `${finish} is reached ${clock(missed.atMs, day.zone)}, ${Math.ceil(missed.byS / 60)} min after it closes.`
+  const km = day.race.course.stages[missed.stage].toM / 1000
+  return { kind: 'stop-missed', text, at: localIso(missed.atMs, day.zone), km }
+}
+
+function belowReserve({ lowest, reserve }: Figures): Outcome | null {
+  if (lowest.wh >= reserve.wh) return null
+  const text = `The balance falls ${Math.round(reserve.wh - lowest.wh)} Wh below the reserve at ${lowest.place}.`
+  return { kind: 'below-reserve', text, at: lowest.at, km: lowest.km }
+}
+
+function cutOff(day: ForecastDay): Outcome | null {
+  const { timetable } = day.forecast
+  if (!timetable.isCutOff) return null
+  const { stopLeftS, placeM, stage } = timetable.evening
+  const km = placeM / 1000
+  const at = localIso(day.race.days[day.dayIndex].drivingToMs, day.zone)
+  if (stopLeftS > 0) {
+    const text = `The driving hours end in the stop at ${placeName(day, placeM)}; ${Math.ceil(stopLeftS / 60)} min of it are left for the next day.`
+    return { kind: 'cut-off', text, at, km }
+  }
+  const leftKm = (day.race.course.stages[stage].toM - placeM) / 1000
+  const text = `The driving hours end at km ${km.toFixed(0)}, ${leftKm.toFixed(0)} km before ${day.race.stages[stage].finish}.`
+  return { kind: 'cut-off', text, at, km }
+}
+
+function arrived(day: ForecastDay): Outcome {
+  const { spans } = day.forecast.timetable
+  const last = spans.findLast((s) => s.kind === 'drive')
+  if (last === undefined) return { kind: 'parked', text: 'The car is not driven on this day.', at: null, km: null }
+  const place = placeName(day, last.toM)
+  const text = `${place} is reached ${clock(last.toMs, day.zone)}.`
+  return { kind: 'done', text, at: localIso(last.toMs, day.zone), km: last.toM / 1000 }
+}
+
+function outcome(kind: Outcome['kind'], text: string, day: ForecastDay, step: number): Outcome {
+  const { steps } = day.forecast
+  return { kind, text, at: localIso(steps.fromMs[step], day.zone), km: steps.fromM[step] / 1000 }
+}

@@ -1,0 +1,148 @@
+import { z } from 'zod'
+import { forecastDay } from '../engine/forecast.ts'
+import type { DayForecast, Opening, Race } from '../engine/forecast.ts'
+import { InputError } from '../engine/input-error.ts'
+import { fastestThatMeets } from '../engine/search.ts'
+import { ENGINE_VERSION } from '../engine/version.ts'
+import type { BudgetDocument } from './budget.ts'
+import { dayBudget } from './budget-day.ts'
+import { carDocument } from './car.ts'
+import { carModel } from './car-model.ts'
+import { date, slug } from './quantity.ts'
+import { dayRules, placedStages, raceCourse, stageRules, zoneOf } from './race-model.ts'
+import type { PlacedStage } from './race-model.ts'
+import { raceDocument } from './race.ts'
+import type { RaceDocument } from './race.ts'
+import { routeDocument } from './route.ts'
+import { skyDocument } from './sky.ts'
+import { coverageNotes, skyModel } from './sky-model.ts'
+import { wantedMps } from './speeds-model.ts'
+import { speedsDocument } from './speeds.ts'
+
+/** Everything a forecast needs, as whole documents. */
+export const forecastRequest = z
+  .strictObject({
+    car: carDocument,
+    race: raceDocument,
+    routes: z.record(slug('id of a route that a stage names'), routeDocument),
+    sky: skyDocument,
+    speeds: speedsDocument,
+    date: date('the one day wanted; earlier days are still worked out for its opening').optional(),
+  })
+  .meta({ title: 'Forecast request' })
+
+export type ForecastRequest = z.output<typeof forecastRequest>
+
+/**
+ * The budget of a race, day by day.
+ *
+ * @throws InputError when the documents do not fit together: field, value and what was expected
+ */
+export function forecastDocuments(request: ForecastRequest): BudgetDocument {
+  const { car, race: document, sky: skyDoc, speeds } = request
+  const lastDay = dayWanted(document, request.date)
+  const { sky, assumptions } = skyModel(skyDoc)
+  const course = raceCourse(document, request.routes)
+  const model = carModel(car, { groundAlbedo: meanAlbedo(request), skyModel: 'perez' })
+  checkWindHeight(request)
+  const race: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
+  const stages = placedStages(document)
+  const days: BudgetDocument['days'] = []
+  const notes = [...roadNotes(request), ...assumptions]
+  let opening: Opening = {
+    standing: { stage: 0, placeM: 0, stopLeftS: 0 },
+    charge: document.openingPct / 100,
+  }
+  for (let d = 0; d <= lastDay; d++) {
+    const { openingPct: measured, targetPct } = document.days[d]
+    if (measured !== undefined) opening = { ...opening, charge: measured / 100 }
+    notes.push(...coverageNotes(sky, race.days[d], zoneOf(document, d)))
+    const driven = driveDay(race, document, { dayIndex: d, opening, speeds, stages })
+    opening = driven.forecast.closing
+    if (request.date === undefined || d === lastDay)
+      days.push(
+        dayBudget({
+          race,
+          stages,
+          dayIndex: d,
+          date: document.days[d].date,
+          zone: zoneOf(document, d),
+          targetCharge: targetPct === undefined ? null : targetPct / 100,
+          penalties: document.penalties,
+          ...driven,
+        }),
+      )
+  }
+  return {
+    engineVersion: ENGINE_VERSION,
+    race: document.name,
+    car: car.name,
+    sky: { name: skyDoc.name, source: skyDoc.source, issuedAt: skyDoc.issuedAt },
+    assumptions: [...new Set(notes)],
+    lengthKm: course.lengthM / 1000,
+    days,
+  }
+}
+
+function dayWanted(race: RaceDocument, wanted: string | undefined): number {
+  if (wanted === undefined) return race.days.length - 1
+  const index = race.days.findIndex((day) => day.date === wanted)
+  if (index >= 0) return index
+  throw new InputError(
+    'unknown-date',
+    'date',
+    `${wanted} given; expected a day of the race (${race.days.map((day) => day.date).join(', ')})`,
+  )
+}
+
+interface Driven {
+  forecast: DayForecast
+  heldKmh: number | null
+  search: { tried: number; meetsTarget: boolean } | null
+}
+
+/** One day at the speeds given, or at the fastest that meets its target. */
+function driveDay(
+  race: Race,
+  document: RaceDocument,
+  day: { dayIndex: number; opening: Opening; speeds: ForecastRequest['speeds']; stages: PlacedStage[] },
+): Driven {
+  const { dayIndex, opening, speeds, stages } = day
+  const isDrivingDay = stages.some((s, i) => s.dayIndex <= dayIndex && i >= opening.standing.stage)
+  if (speeds.kind === 'meet-target' && isDrivingDay) {
+    const targetPct = document.days[dayIndex].targetPct
+    const target = targetPct === undefined ? race.car.reserveCharge : targetPct / 100
+    const { speedKmh, forecast, tried, meetsTarget } = fastestThatMeets(race, dayIndex, opening, target, speeds)
+    return { forecast, heldKmh: speedKmh, search: { tried, meetsTarget } }
+  }
+  const given = speeds.kind === 'meet-target' ? { kind: 'constant' as const, speedKmh: speeds.lowestKmh } : speeds
+  const dates = document.days.map((d) => d.date)
+  const wanted = wantedMps(given, race.course, stages, { date: dates[dayIndex], dates })
+  const heldKmh = given.kind === 'constant' && isDrivingDay ? given.speedKmh : null
+  return { forecast: forecastDay(race, dayIndex, opening, wanted), heldKmh, search: null }
+}
+
+/** One ground for the whole race: the mean over the routes that its stages use. */
+function meanAlbedo({ race, routes }: ForecastRequest): number {
+  const used = placedStages(race).flatMap(({ stage }) =>
+    Object.hasOwn(routes, stage.route) ? [routes[stage.route]] : [],
+  )
+  return used.reduce((sum, route) => sum + route.groundAlbedo, 0) / Math.max(used.length, 1)
+}
+
+function roadNotes({ race, routes }: ForecastRequest): string[] {
+  const flat = new Set(placedStages(race).map(({ stage }) => stage.route))
+  return [...flat]
+    .filter((id) => routes[id].points.elevationM === undefined)
+    .map((id) => `${routes[id].name} has no heights: a level road at sea level is assumed.`)
+}
+
+function checkWindHeight({ car, race, routes }: ForecastRequest): void {
+  for (const { stage } of placedStages(race))
+    if (routes[stage.route].roughnessM >= car.body.windHeightM)
+      throw new InputError(
+        'out-of-range',
+        `routes[${JSON.stringify(stage.route)}].roughnessM`,
+        `${routes[stage.route].roughnessM} given; expected less than the car's windHeightM (${car.body.windHeightM})`,
+      )
+}

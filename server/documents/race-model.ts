@@ -1,0 +1,156 @@
+import { course } from '../engine/course.ts'
+import type { Course, StageRoad } from '../engine/course.ts'
+import type { DayRules, StageRule } from '../engine/day-rules.ts'
+import { InputError } from '../engine/input-error.ts'
+import { cumulativeM } from '../engine/route.ts'
+import type { RoadPoints, Stretch } from '../engine/route.ts'
+import { instantMs } from './local-time.ts'
+import type { DayDocument, RaceDocument, StageDocument } from './race.ts'
+import type { RouteDocument } from './route.ts'
+
+const DEG = Math.PI / 180
+
+/** A stage of a race with the field it stands in. */
+export interface PlacedStage {
+  stage: StageDocument
+  dayIndex: number
+  field: string
+}
+
+/** All stages in the order they are driven. */
+export const placedStages = (race: RaceDocument): PlacedStage[] =>
+  race.days.flatMap((day, dayIndex) =>
+    day.stages.map((stage, i) => ({ stage, dayIndex, field: `race.days[${dayIndex}].stages[${i}]` })),
+  )
+
+/** The zone that a day's clock runs in. */
+export const zoneOf = (race: RaceDocument, dayIndex: number): string => race.days[dayIndex].zone ?? race.zone
+
+/**
+ * The road of a race: its stages' stretches of their routes, joined.
+ *
+ * @throws InputError when a stage names a route that is not given, or leaves its route
+ */
+export function raceCourse(race: RaceDocument, routes: Record<string, RouteDocument>): Course {
+  const points = new Map<string, { points: RoadPoints; lengthM: number }>()
+  const roads = placedStages(race).map(({ stage, field }): StageRoad => {
+    if (!Object.hasOwn(routes, stage.route))
+      throw new InputError(
+        'unknown-route',
+        `${field}.route`,
+        `${JSON.stringify(stage.route)} given; expected one of ${
+          Object.keys(routes)
+            .map((id) => JSON.stringify(id))
+            .join(', ') || 'the given routes, of which there are none'
+        }`,
+      )
+    const route = routes[stage.route]
+    const road = points.get(stage.route) ?? roadOf(route)
+    points.set(stage.route, road)
+    return {
+      field: `${field}.toKm`,
+      points: road.points,
+      stretches: stretchesOf(route, stage.route, road.lengthM),
+      fromM: stage.fromKm * 1000,
+      toM: stage.toKm === undefined ? road.lengthM : Math.min(stage.toKm * 1000, nearEnd(stage.toKm, road.lengthM)),
+      roughnessM: route.roughnessM,
+      limitMps: route.limitKmh / 3.6,
+    }
+  })
+  return course(roads)
+}
+
+/** People round lengths: a stage may end up to 100 m beyond the last point and then ends on it. */
+const nearEnd = (toKm: number, lengthM: number): number =>
+  toKm * 1000 <= lengthM + 100 ? lengthM : Number.POSITIVE_INFINITY
+
+function roadOf(route: RouteDocument): { points: RoadPoints; lengthM: number } {
+  const { latDeg, lonDeg, elevationM } = route.points
+  const points = {
+    latRad: Float64Array.from(latDeg, (deg) => deg * DEG),
+    lonRad: Float64Array.from(lonDeg, (deg) => deg * DEG),
+    altM: elevationM === undefined ? new Float64Array(latDeg.length) : Float64Array.from(elevationM),
+  }
+  const along = cumulativeM(points)
+  return { points, lengthM: along[along.length - 1] }
+}
+
+function stretchesOf(route: RouteDocument, id: string, lengthM: number): Stretch[] {
+  return route.stretches.map((s, i) => {
+    if (s.fromKm * 1000 >= lengthM)
+      throw new InputError(
+        'off-the-route',
+        `routes[${JSON.stringify(id)}].stretches[${i}].fromKm`,
+        `${s.fromKm} given; expected less than the length of the route (${(lengthM / 1000).toFixed(3)} km)`,
+      )
+    return {
+      fromM: s.fromKm * 1000,
+      toM: s.toKm * 1000,
+      ...(s.limitKmh === undefined ? {} : { limitMps: s.limitKmh / 3.6 }),
+      ...(s.surfaceFactor === undefined ? {} : { surfaceFactor: s.surfaceFactor }),
+      ...(s.haltsPerKm === undefined ? {} : { haltsPerM: s.haltsPerKm / 1000 }),
+    }
+  })
+}
+
+/** Stops and names of all stages; opening hours are given for every day that the car may come. */
+export function stageRules(race: RaceDocument): StageRule[] {
+  return placedStages(race).map(({ stage, field }) => {
+    const { stop } = stage
+    const on = (time: string | undefined, name: string): Float64Array =>
+      Float64Array.from(race.days, (day, d) =>
+        time === undefined ? Number.NaN : instantMs(day.date, time, zoneOf(race, d), `${field}.stop.${name}`),
+      )
+    return {
+      name: stage.name,
+      start: stage.start,
+      finish: stage.finish,
+      stop:
+        stop === undefined
+          ? null
+          : {
+              name: stage.finish,
+              lengthS: stop.minutes * 60,
+              runsFromOpening: stop.clockStarts === 'at-opening',
+              lifts: stop.lift,
+              raiseS: stop.raiseMin * 60,
+              lowerS: stop.lowerMin * 60,
+              opensMs: on(stop.opensAt, 'opensAt'),
+              closesMs: on(stop.closesAt, 'closesAt'),
+            },
+    }
+  })
+}
+
+/** Hours of every day as instants. */
+export function dayRules(race: RaceDocument): DayRules[] {
+  const stages = placedStages(race)
+  return race.days.map((day, d) => {
+    const zone = zoneOf(race, d)
+    const at = (time: string, name: string) => instantMs(day.date, time, zone, `race.days[${d}].${name}`)
+    const opens = firstTime(day)
+    const closes = lastTime(day)
+    return {
+      opensMs: at(opens, 'release'),
+      closesMs: at(closes, 'impound'),
+      drivingFromMs: at(day.driving.from, 'driving.from'),
+      drivingToMs: at(day.driving.to, 'driving.to'),
+      charging: day.charging.map((w, i) => ({
+        fromMs: at(w.from, `charging[${i}].from`),
+        toMs: at(w.to, `charging[${i}].to`),
+        lifts: w.lift,
+      })),
+      raiseS: day.raiseMin * 60,
+      lowerS: day.lowerMin * 60,
+      stages: stages.flatMap((s, i) => (s.dayIndex === d ? [i] : [])),
+    }
+  })
+}
+
+/** The day opens with the release, or with the first thing that may happen. */
+const firstTime = (day: DayDocument): string =>
+  day.release ?? [day.driving.from, ...day.charging.map((w) => w.from)].reduce((a, b) => (a < b ? a : b))
+
+/** The day closes with the impound, or with the last thing that may happen. */
+const lastTime = (day: DayDocument): string =>
+  day.impound ?? [day.driving.to, ...day.charging.map((w) => w.to)].reduce((a, b) => (a > b ? a : b))

@@ -1,0 +1,130 @@
+import { stationFromSeaLevelPa, vapourFromDewPointPa, vapourFromHumidityPa } from '../engine/air.ts'
+import { InputError } from '../engine/input-error.ts'
+import { prepareSky, skyCoverage } from '../engine/sky.ts'
+import type { Sky, SkyPlaceInput } from '../engine/sky.ts'
+import { localIso } from './local-time.ts'
+import type { SkyColumn, SkyDocument, SkyPlace } from './sky.ts'
+
+const DEG = Math.PI / 180
+
+/** Linke turbidity where a sky brings none: dry rural air. Common practice, no source. */
+export const LINKE_DEFAULT = 3
+
+/** The engine's column for each column of the document. */
+const ENGINE_COLUMNS = {
+  cloudPct: 'cloudFraction',
+  ghiWm2: 'ghiWm2',
+  dniWm2: 'dniWm2',
+  dhiWm2: 'dhiWm2',
+  airTempC: 'airC',
+  humidityPct: 'vapourPa',
+  dewPointC: 'vapourPa',
+  windMps: 'windMps',
+  gustMps: 'gustMps',
+  windFromDeg: 'windFromRad',
+  pressureHpa: 'pressurePa',
+  turbidity: 'linke',
+} as const satisfies Record<SkyColumn, string>
+
+/** Light and cloud are means over the interval before their stamp unless the document says otherwise. */
+const PRECEDING: ReadonlySet<SkyColumn> = new Set(['cloudPct', 'ghiWm2', 'dniWm2', 'dhiWm2'])
+
+/** A sky as the engine needs it, and what was assumed where the document is silent. */
+export function skyModel(sky: SkyDocument): { sky: Sky; assumptions: string[] } {
+  const prepared = prepareSky({
+    places: sky.places.map((place) => placeInput(sky, place)),
+    linkeDefault: LINKE_DEFAULT,
+  })
+  return { sky: prepared, assumptions: [...silences(sky), ...corrections(sky, prepared)] }
+}
+
+function placeInput(sky: SkyDocument, place: SkyPlace): SkyPlaceInput {
+  const at = Float64Array.from(place.at, Date.parse)
+  const input: SkyPlaceInput = {
+    latRad: place.latDeg * DEG,
+    lonRad: place.lonDeg * DEG,
+    altM: place.elevationM,
+    ...intervals(at, 'instant'),
+    intervalOf: {},
+  }
+  for (const [name, column] of Object.entries(ENGINE_COLUMNS) as [SkyColumn, (typeof ENGINE_COLUMNS)[SkyColumn]][]) {
+    const values = place[name]
+    if (values === undefined) continue
+    input[column] = Float64Array.from(values, (value, i) =>
+      value === null ? Number.NaN : toEngine(sky, place, name, value, i),
+    )
+    const convention = sky.averaging[name] ?? (PRECEDING.has(name) ? 'preceding' : 'instant')
+    if (convention !== 'instant') (input.intervalOf ??= {})[column] = intervals(at, convention)
+  }
+  return input
+}
+
+/** One cell in the engine's unit; what depends on the air temperature of its row is missing where that is. */
+function toEngine(sky: SkyDocument, place: SkyPlace, name: SkyColumn, value: number, row: number): number {
+  const airC = place.airTempC?.[row] ?? Number.NaN
+  switch (name) {
+    case 'cloudPct':
+      return value / 100
+    case 'humidityPct':
+      return vapourFromHumidityPa(airC, value / 100)
+    case 'dewPointC':
+      return vapourFromDewPointPa(value)
+    case 'windFromDeg':
+      return value * DEG
+    case 'pressureHpa':
+      return sky.pressureIs === 'station' ? value * 100 : stationFromSeaLevelPa(value * 100, place.elevationM, airC)
+    default:
+      return value
+  }
+}
+
+function intervals(at: Float64Array, convention: 'preceding' | 'following' | 'instant') {
+  if (convention === 'instant') return { fromMs: at, toMs: at }
+  const last = at.length - 1
+  if (convention === 'preceding')
+    return { fromMs: at.map((ms, i) => (i > 0 ? at[i - 1] : ms - (at[1] - at[0]))), toMs: at }
+  return { fromMs: at, toMs: at.map((ms, i) => (i < last ? at[i + 1] : ms + (at[last] - at[last - 1]))) }
+}
+
+function silences(sky: SkyDocument): string[] {
+  const lacks = (...names: SkyColumn[]) => sky.places.some((p) => names.every((name) => p[name] === undefined))
+  return [
+    ...(lacks('windMps') ? ['The sky brings no wind: still air is assumed.'] : []),
+    ...(lacks('pressureHpa') ? ['The sky brings no air pressure: the standard atmosphere is assumed.'] : []),
+    ...(lacks('humidityPct', 'dewPointC') ? ['The sky brings no humidity: dry air is assumed.'] : []),
+    ...(lacks('turbidity') ? [`The sky brings no turbidity: Linke ${LINKE_DEFAULT} is assumed.`] : []),
+  ]
+}
+
+/** Rows that the engine could not take as they stood. */
+function corrections(sky: SkyDocument, prepared: Sky): string[] {
+  return sky.places.flatMap((place, p) => {
+    const rows = new Set(prepared.notes.filter((note) => note.place === p).map((note) => note.row))
+    if (rows.size === 0) return []
+    return [
+      `${place.name}: irradiance of ${rows.size} ${rows.size === 1 ? 'row does' : 'rows do'} not fit the sun and was limited.`,
+    ]
+  })
+}
+
+/** The sky may end up to an hour inside a day; its nearest values then hold. */
+const HOLDS_MS = 3_600_000
+
+/**
+ * Says where a sky's nearest values are held because it does not reach to the ends of a day.
+ *
+ * @throws InputError when it leaves more than an hour of the day uncovered
+ */
+export function coverageNotes(sky: Sky, day: { opensMs: number; closesMs: number }, zone: string): string[] {
+  const { fromMs, toMs } = skyCoverage(sky)
+  if (fromMs - day.opensMs > HOLDS_MS || day.closesMs - toMs > HOLDS_MS)
+    throw new InputError(
+      'sky-too-short',
+      'sky.places',
+      `the sky covers ${localIso(fromMs, zone)} to ${localIso(toMs, zone)}; expected the day from ${localIso(day.opensMs, zone)} to ${localIso(day.closesMs, zone)}`,
+    )
+  if (fromMs <= day.opensMs && toMs >= day.closesMs) return []
+  return [
+    `The sky covers ${localIso(fromMs, zone)} to ${localIso(toMs, zone)}; its nearest values hold for the rest of the day.`,
+  ]
+}

@@ -1,0 +1,103 @@
+import { InputError } from './input-error.ts'
+import { pieces } from './route.ts'
+import type { Pieces, RoadPoints, Stretch } from './route.ts'
+
+/** One stage of the race before it is cut into pieces. */
+export interface StageRoad {
+  /** Field of the caller's document, for messages. */
+  field: string
+  points: RoadPoints
+  stretches: Stretch[]
+  /** Part of the route that the stage runs on. [M] */
+  fromM: number
+  toM: number
+  roughnessM: number
+  /** Limit where no stretch has one. [Mps] */
+  limitMps: number
+}
+
+/** A stage on the course: a run of pieces. */
+export interface CourseStage {
+  firstPiece: number
+  endPiece: number
+  /** Start and end from the start of the race. [M] */
+  fromM: number
+  toM: number
+}
+
+/** The roads of all stages one behind the other; distances run from the start of the race. */
+export interface Course {
+  pieces: Pieces
+  roughnessM: Float64Array
+  stages: CourseStage[]
+  lengthM: number
+}
+
+/** Longest piece of road with one grade, heading and limit. [M] */
+export const PIECE_M = 1000
+
+const COLUMNS = [
+  'lengthM',
+  'latRad',
+  'lonRad',
+  'altM',
+  'startAltM',
+  'endAltM',
+  'gradeRad',
+  'headingRad',
+  'limitMps',
+  'surfaceFactor',
+  'haltsPerM',
+] as const
+
+/**
+ * The stages' roads joined into one course of pieces of at most about 1 km.
+ *
+ * @param roads  one per stage, in the order they are driven
+ * @throws InputError when a stage has no road under it
+ */
+export function course(roads: StageRoad[]): Course {
+  const cut = roads.map(stagePieces)
+  const count = cut.reduce((sum, p) => sum + p.count, 0)
+  const joined = Object.fromEntries(['fromM', ...COLUMNS].map((name) => [name, new Float64Array(count)]))
+  const roughnessM = new Float64Array(count)
+  const stages: CourseStage[] = []
+  let at = 0
+  let startM = 0
+  cut.forEach((part, s) => {
+    for (const name of COLUMNS) joined[name].set(part[name], at)
+    roughnessM.fill(roads[s].roughnessM, at, at + part.count)
+    const fromM = startM
+    for (let i = 0; i < part.count; i++) {
+      joined.fromM[at + i] = startM
+      startM += part.lengthM[i]
+    }
+    stages.push({ firstPiece: at, endPiece: at + part.count, fromM, toM: startM })
+    at += part.count
+  })
+  return { pieces: { count, ...joined } as Pieces, roughnessM, stages, lengthM: startM }
+}
+
+/** The pieces of one stage: the route's, cut at the stage's ends. */
+function stagePieces(road: StageRoad): Pieces {
+  const all = pieces(road.points, road.stretches, { cutsM: [road.fromM, road.toM], lengthM: PIECE_M })
+  const endM = all.fromM[all.count - 1] + all.lengthM[all.count - 1]
+  if (!(road.toM > road.fromM) || road.toM > endM + 0.5)
+    throw new InputError(
+      'off-the-route',
+      road.field,
+      `the stage runs from ${road.fromM} m to ${road.toM} m; expected a stretch of the route, which is ${Math.round(endM)} m long`,
+    )
+  const inside: number[] = []
+  for (let i = 0; i < all.count; i++) {
+    const middleM = all.fromM[i] + all.lengthM[i] / 2
+    if (middleM > road.fromM && middleM < road.toM) inside.push(i)
+  }
+  const part = Object.fromEntries(
+    ['fromM', ...COLUMNS].map((name) => [name, Float64Array.from(inside, (i) => all[name as 'fromM'][i])]),
+  )
+  part.limitMps.forEach((limit, i) => {
+    if (limit === Number.POSITIVE_INFINITY) part.limitMps[i] = road.limitMps
+  })
+  return { count: inside.length, ...part } as Pieces
+}

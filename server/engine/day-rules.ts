@@ -1,0 +1,50 @@
+/** The timed stop at the end of a stage. Instants are given for every day of the race, NaN where there is none. */
+export interface StopRule {
+  name: string
+  lengthS: number
+  /** For a car that comes early: the length runs from the opening rather than from the arrival. */
+  runsFromOpening: boolean
+  lifts: boolean
+  raiseS: number
+  lowerS: number
+  opensMs: Float64Array
+  closesMs: Float64Array
+}
+
+/** A stage as the timetable needs it. */
+export interface StageRule {
+  name: string
+  start: string
+  finish: string
+  stop: StopRule | null
+}
+
+export interface ChargingWindow {
+  fromMs: number
+  toMs: number
+  lifts: boolean
+}
+
+/** The hours of one day. */
+export interface DayRules {
+  opensMs: number
+  closesMs: number
+  drivingFromMs: number
+  drivingToMs: number
+  /** Ascending, not overlapping, inside the day. */
+  charging: ChargingWindow[]
+  raiseS: number
+  lowerS: number
+  /** Stages that may start on this day; those left over from earlier days go first. */
+  stages: number[]
+}
+
+/** Where the car stands between two days. */
+export interface Standing {
+  /** The stage it is on, or the one it will drive next. */
+  stage: number
+  /** Place from the start of the race. [M] */
+  placeM: number
+  /** What is left of a stop that the end of the day cut in two. [S] */
+  stopLeftS: number
+}

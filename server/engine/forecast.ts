@@ -1,0 +1,155 @@
+import { arrayHarvest } from './array.ts'
+import { balance } from './balance.ts'
+import type { Balance, Car } from './balance.ts'
+import { storedJ } from './battery.ts'
+import type { Course } from './course.ts'
+import type { DayRules, StageRule, Standing } from './day-rules.ts'
+import { airAlong, limitByMotor, pieceTimesS } from './motion.ts'
+import type { Air } from './motion.ts'
+import { weatherAlong } from './sky.ts'
+import type { Sky, Weather } from './sky.ts'
+import { steps } from './steps.ts'
+import type { Steps } from './steps.ts'
+import { sunPath } from './sun.ts'
+import type { SunPath } from './sun.ts'
+import { timetable } from './timetable.ts'
+import type { Timetable } from './timetable.ts'
+
+/** Everything that stays the same from day to day. */
+export interface Race {
+  car: Car
+  course: Course
+  stages: StageRule[]
+  days: DayRules[]
+  sky: Sky
+}
+
+/** Where the car stands and what its pack holds when a day opens. */
+export interface Opening {
+  standing: Standing
+  charge: number
+}
+
+/** What one day is expected to bring and cost. */
+export interface DayForecast {
+  openingCharge: number
+  openingJ: number
+  timetable: Timetable
+  steps: Steps
+  weather: Weather
+  air: Air
+  aim: { tiltRad: Float64Array; azimuthRad: Float64Array }
+  /** Warmest panel in each step. [C] */
+  cellC: Float64Array
+  balance: Balance
+  closing: Opening
+  closingJ: number
+  /** Step at whose end the pack holds least; -1 when it never holds less than at the opening. */
+  lowestStep: number
+  /** Piece that the motor cannot climb, where the day ended on one; -1 otherwise. */
+  blockedPiece: number
+}
+
+/** Rounds of laying the day out anew after the motor lowered a speed; the weather then shifts by seconds. */
+const MOTOR_ROUNDS = 3
+
+/**
+ * The main path: speeds → timetable → steps → sky → harvest → balance, for one day.
+ *
+ * @param race       car, course, stages, days and sky
+ * @param dayIndex   which day
+ * @param opening    where the car stands and its charge
+ * @param wantedMps  speed wanted on each piece; limits and the motor may lower it. [Mps] (pieces)
+ * @param path       the sun over that day, where the caller has it already
+ */
+export function forecastDay(
+  race: Race,
+  dayIndex: number,
+  opening: Opening,
+  wantedMps: Float64Array,
+  path: SunPath = daySun(race.days[dayIndex]),
+): DayForecast {
+  const { car } = race
+  const speedMps = underLimits(race.course, wantedMps)
+  let laid = layOut(race, dayIndex, opening.standing, speedMps, path)
+  for (let round = 0; round < MOTOR_ROUNDS && limitByMotor(car, laid, speedMps); round++)
+    laid = layOut(race, dayIndex, opening.standing, speedMps, path)
+  const harvest = arrayHarvest(car.array, {
+    weather: laid.weather,
+    headingRad: laid.steps.headingRad,
+    gradeRad: laid.steps.gradeRad,
+    airSpeedMps: laid.air.overPanelsMps,
+    lifted: laid.steps.lifted,
+  })
+  const energy = balance(car, { ...laid, spans: laid.timetable.spans, harvest }, opening.charge)
+  const last = laid.steps.count - 1
+  const charge = last < 0 ? opening.charge : energy.charge[last]
+  return {
+    openingCharge: opening.charge,
+    openingJ: storedJ(car.pack, opening.charge),
+    timetable: laid.timetable,
+    steps: laid.steps,
+    weather: laid.weather,
+    air: laid.air,
+    aim: { tiltRad: harvest.aimTiltRad, azimuthRad: harvest.aimAzimuthRad },
+    cellC: warmest(harvest.cellC, laid.steps.count),
+    balance: energy,
+    closing: { standing: laid.timetable.evening, charge },
+    closingJ: storedJ(car.pack, charge),
+    lowestStep: lowestStep(energy.storedJ, storedJ(car.pack, opening.charge)),
+    blockedPiece: blockedPiece(race.course, laid, speedMps),
+  }
+}
+
+/** The sun over a day, to be shared by all forecasts of that day. */
+export const daySun = (day: DayRules): SunPath => sunPath(day.opensMs, day.closesMs)
+
+interface Laid {
+  course: Course
+  timetable: Timetable
+  steps: Steps
+  weather: Weather
+  air: Air
+}
+
+/** Timetable, steps, weather and air at given speeds. */
+function layOut(race: Race, dayIndex: number, standing: Standing, speedMps: Float64Array, path: SunPath): Laid {
+  const { course } = race
+  const pieceS = pieceTimesS(course, speedMps)
+  const table = timetable(course, race.stages, race.days[dayIndex], { dayIndex, standing, pieceS })
+  const cut = steps(course, table.spans, speedMps, pieceS)
+  const weather = weatherAlong(race.sky, path, cut)
+  return { course, timetable: table, steps: cut, weather, air: airAlong(course, cut, weather, race.car.windHeightM) }
+}
+
+function underLimits(course: Course, wantedMps: Float64Array): Float64Array {
+  const { limitMps } = course.pieces
+  return wantedMps.map((wanted, i) => Math.min(wanted, limitMps[i]))
+}
+
+function warmest(panels: Float64Array[], count: number): Float64Array {
+  const most = new Float64Array(count).fill(Number.NEGATIVE_INFINITY)
+  for (const panel of panels) for (let i = 0; i < count; i++) if (panel[i] > most[i]) most[i] = panel[i]
+  return most
+}
+
+function lowestStep(stored: Float64Array, openingJ: number): number {
+  let lowest = -1
+  let leastJ = openingJ
+  for (let i = 0; i < stored.length; i++)
+    if (stored[i] < leastJ) {
+      leastJ = stored[i]
+      lowest = i
+    }
+  return lowest
+}
+
+/** The piece in front of which the car stands because the motor cannot climb it. */
+function blockedPiece(course: Course, laid: Laid, speedMps: Float64Array): number {
+  if (!laid.timetable.isCutOff) return -1
+  const { placeM } = laid.timetable.evening
+  const piece = course.pieces.fromM.findIndex(
+    (fromM, i) => fromM + course.pieces.lengthM[i] > placeM + 1e-6 && fromM <= placeM + 1e-6,
+  )
+  return piece >= 0 && pieceTimesS(course, speedMps)[piece] === Number.POSITIVE_INFINITY ? piece : -1
+}

@@ -1,0 +1,156 @@
+import type { Course } from './course.ts'
+import { pieceAt } from './timetable.ts'
+import type { Span } from './timetable.ts'
+
+/** Longest step of a parked car. [S] */
+export const PARKED_STEP_S = 120
+
+/** The day cut into steps with one pose and one speed; every array has `count` entries. */
+export interface Steps {
+  count: number
+  fromMs: Float64Array
+  toMs: Float64Array
+  /** Middle of the step, at which sun and weather are taken. */
+  atMs: Float64Array
+  /** Place at its start and its end, from the start of the race. [M] */
+  fromM: Float64Array
+  toM: Float64Array
+  latRad: Float64Array
+  lonRad: Float64Array
+  altM: Float64Array
+  headingRad: Float64Array
+  gradeRad: Float64Array
+  /** 0 when parked. */
+  speedMps: Float64Array
+  /** 1 where the array stands lifted. */
+  lifted: Uint8Array
+  /** 1 where the trackers may take what the strings give. */
+  charging: Uint8Array
+  span: Int32Array
+  piece: Int32Array
+}
+
+const FLOATS = [
+  'fromMs',
+  'toMs',
+  'atMs',
+  'fromM',
+  'toM',
+  'latRad',
+  'lonRad',
+  'altM',
+  'headingRad',
+  'gradeRad',
+  'speedMps',
+] as const
+
+/**
+ * The spans of a day cut into steps: one per piece of road while driving, at most two minutes when parked.
+ *
+ * @param course    roads of all stages
+ * @param spans     the day's timetable
+ * @param speedMps  held speed per piece, without halts. [Mps] (pieces)
+ * @param pieceS    time per piece, halts included. [S] (pieces)
+ */
+export function steps(course: Course, spans: Span[], speedMps: Float64Array, pieceS: Float64Array): Steps {
+  const out = emptySteps(spans.reduce((sum, span) => sum + stepsIn(course, span), 0))
+  spans.forEach((span, index) => {
+    if (span.kind === 'drive') driveSteps(out, course, { span, index, speedMps, pieceS })
+    else parkedSteps(out, course, span, index)
+  })
+  return out
+}
+
+function emptySteps(most: number): Steps {
+  const floats = Object.fromEntries(FLOATS.map((name) => [name, new Float64Array(most)]))
+  const marks = { lifted: new Uint8Array(most), charging: new Uint8Array(most) }
+  return { count: 0, ...floats, ...marks, span: new Int32Array(most), piece: new Int32Array(most) } as unknown as Steps
+}
+
+/** Exact number of steps of a span, so that the arrays have no slack. */
+function stepsIn(course: Course, span: Span): number {
+  if (span.kind === 'drive') return lastPiece(course, span) - pieceAt(course, span.fromM) + 1
+  return parkedEdgesMs(span).length - 1
+}
+
+/** The piece in which a drive ends; one that ends on an edge ends in the piece before it. */
+function lastPiece(course: Course, span: Span): number {
+  const piece = pieceAt(course, span.toM)
+  return piece > pieceAt(course, span.fromM) && course.pieces.fromM[piece] >= span.toM ? piece - 1 : piece
+}
+
+function driveSteps(
+  out: Steps,
+  course: Course,
+  leg: { span: Span; index: number; speedMps: Float64Array; pieceS: Float64Array },
+): void {
+  const { span, index, speedMps, pieceS } = leg
+  const { pieces } = course
+  const last = lastPiece(course, span)
+  let nowMs = span.fromMs
+  let placeM = span.fromM
+  for (let piece = pieceAt(course, placeM); piece <= last; piece++) {
+    const toM = piece === last ? span.toM : pieces.fromM[piece + 1]
+    const toMs = piece === last ? span.toMs : nowMs + ((toM - placeM) / pieces.lengthM[piece]) * pieceS[piece] * 1000
+    const i = push(out, course, { fromMs: nowMs, toMs, fromM: placeM, toM, piece, index })
+    out.speedMps[i] = speedMps[piece]
+    out.charging[i] = 1
+    nowMs = toMs
+    placeM = toM
+  }
+}
+
+/** Edges of a parked span: where the array is raised and lowered, and even steps between. */
+function parkedEdgesMs(span: Span): number[] {
+  const isLifted = span.liftedToMs > span.liftedFromMs
+  const marks = isLifted ? [span.fromMs, span.liftedFromMs, span.liftedToMs, span.toMs] : [span.fromMs, span.toMs]
+  const edges = [marks[0]]
+  for (let m = 1; m < marks.length; m++) {
+    const lengthMs = marks[m] - marks[m - 1]
+    const parts = Math.ceil(lengthMs / 1000 / PARKED_STEP_S)
+    for (let i = 1; i <= parts; i++) edges.push(marks[m - 1] + (lengthMs * i) / parts)
+  }
+  return edges
+}
+
+function parkedSteps(out: Steps, course: Course, span: Span, index: number): void {
+  const edges = parkedEdgesMs(span)
+  const piece = Math.max(pieceAt(course, span.fromM), 0)
+  const isAtEnd = span.fromM >= course.pieces.fromM[piece] + course.pieces.lengthM[piece] / 2
+  for (let e = 1; e < edges.length; e++) {
+    const i = push(out, course, {
+      fromMs: edges[e - 1],
+      toMs: edges[e],
+      fromM: span.fromM,
+      toM: span.fromM,
+      piece,
+      index,
+    })
+    out.altM[i] = isAtEnd ? course.pieces.endAltM[piece] : course.pieces.startAltM[piece]
+    out.gradeRad[i] = 0
+    out.charging[i] = span.kind === 'parked' ? 0 : 1
+    out.lifted[i] = out.atMs[i] > span.liftedFromMs && out.atMs[i] < span.liftedToMs ? 1 : 0
+  }
+}
+
+function push(
+  out: Steps,
+  course: Course,
+  step: { fromMs: number; toMs: number; fromM: number; toM: number; piece: number; index: number },
+): number {
+  const i = out.count++
+  const { pieces } = course
+  out.fromMs[i] = step.fromMs
+  out.toMs[i] = step.toMs
+  out.atMs[i] = (step.fromMs + step.toMs) / 2
+  out.fromM[i] = step.fromM
+  out.toM[i] = step.toM
+  out.latRad[i] = pieces.latRad[step.piece]
+  out.lonRad[i] = pieces.lonRad[step.piece]
+  out.altM[i] = pieces.altM[step.piece]
+  out.headingRad[i] = pieces.headingRad[step.piece]
+  out.gradeRad[i] = pieces.gradeRad[step.piece]
+  out.span[i] = step.index
+  out.piece[i] = step.piece
+  return i
+}
