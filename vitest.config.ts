@@ -4,7 +4,7 @@ export default defineConfig({
   test: {
     include: ['test/**/*.test.ts', 'test/**/*.test.tsx'],
     globalSetup: ['test/support/build.ts'],
-    setupFiles: ['test/support/require-all.ts'],
+    reporters: ['default', './test/support/require-all.ts'],
     testTimeout: 20_000,
     hookTimeout: 60_000,
     pool: 'forks',

@@ -1,13 +1,12 @@
-import { afterAll } from 'vitest'
+import type { Reporter, TestModule } from 'vitest/node'
 
-/** Under REQUIRE_ALL=1 a skipped test is a failure: what CI did not run, it must not pass. */
-afterAll((suite) => {
-  if (process.env.REQUIRE_ALL !== '1') return
-  const skipped: string[] = []
-  const walk = (task: { type: string; mode: string; name: string; tasks?: unknown[] }): void => {
-    if (task.mode === 'skip' || task.mode === 'todo') skipped.push(task.name)
-    for (const child of task.tasks ?? []) walk(child as typeof task)
+/** Under REQUIRE_ALL=1 a skipped test is a failure: what did not run must not pass. */
+export default class RequireAll implements Reporter {
+  onTestRunEnd(modules: readonly TestModule[]): void {
+    if (process.env.REQUIRE_ALL !== '1') return
+    const skipped = modules.flatMap((module) => [...module.children.allTests('skipped')].map((test) => test.fullName))
+    if (skipped.length === 0) return
+    console.error(`REQUIRE_ALL=1, but ${skipped.length} tests were skipped:\n  ${skipped.join('\n  ')}`)
+    process.exitCode = 1
   }
-  walk(suite as never)
-  if (skipped.length > 0) throw new Error(`REQUIRE_ALL=1, but these were skipped: ${skipped.join('; ')}`)
-})
+}
