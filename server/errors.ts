@@ -21,6 +21,7 @@ export const ERRORS = {
   'request-timeout': { status: 408, title: 'The request did not arrive in time' },
   'version-changed': { status: 412, title: 'The document has changed since it was read' },
   'too-large': { status: 413, title: 'The body is too large' },
+  'too-complex': { status: 413, title: 'The body is too much work' },
   'address-too-long': { status: 414, title: 'The address is too long' },
   'unsupported-media-type': { status: 415, title: 'This kind of content is not read here' },
   'invalid-document': { status: 422, title: 'The document has errors' },

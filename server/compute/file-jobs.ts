@@ -1,0 +1,57 @@
+import type { Problem } from '../documents/problem.ts'
+import { counted, Fault } from '../errors.ts'
+import { decodeText } from '../files/decode-text.ts'
+import type { FileReading, Notice } from '../files/file-reading.ts'
+import { readGpxRoute } from '../files/gpx-route.ts'
+import { DOCUMENTS, type Kind } from './documents.ts'
+import { checked, readJson } from './read-json.ts'
+
+/** How a body is written. */
+export type Format = 'json' | 'gpx' | 'csv'
+
+export interface BodyInput {
+  kind: Kind
+  format: Format
+  bytes: Uint8Array
+  /** Options of the reader, from the query. */
+  options: Record<string, unknown>
+}
+
+/** A checked document with what was noticed on the way; `summary` only for files. */
+export interface ReadDocument {
+  name: string
+  document: object
+  notices: Notice[]
+  summary?: unknown
+}
+
+/**
+ * The document in a body: JSON, or a file of another format.
+ *
+ * @throws Fault 'empty-body', 'bad-json', 'invalid-document' or 'invalid-file' with every problem
+ */
+export function readDocument(input: BodyInput): ReadDocument {
+  if (input.format !== 'json') return readFile(input)
+  const document = checked(DOCUMENTS[input.kind], readJson(input.bytes), input.kind)
+  return { name: document.name, document, notices: [] }
+}
+
+function readFile({ kind, format, bytes, options }: BodyInput): ReadDocument {
+  if (bytes.length === 0) throw new Fault('empty-body', 'The request has no body; expected a file.')
+  const { text, problems } = decodeText(bytes)
+  if (text === undefined) throw refused(problems)
+  const reading = read(kind, format, text, options)
+  if (reading.problems !== undefined) throw refused(reading.problems)
+  const { document, notices, summary } = reading
+  return { name: document.name, document, notices, summary }
+}
+
+const refused = (problems: Problem[]): Fault =>
+  new Fault('invalid-file', `The file has ${counted(problems.length, 'problem')}.`, { errors: problems })
+
+type Reading = FileReading<object & { name: string }, unknown>
+
+function read(kind: Kind, format: Format, text: string, options: Record<string, unknown>): Reading {
+  if (kind === 'route' && format === 'gpx') return readGpxRoute(text, options)
+  throw new Fault('unsupported-media-type', `A ${kind} is not read from ${format}.`)
+}

@@ -1,0 +1,77 @@
+import { z } from 'zod'
+import { type ForecastRequest, forecastDocuments } from '../documents/forecast.ts'
+import { carDocument } from '../documents/car.ts'
+import { date, slug } from '../documents/quantity.ts'
+import { raceDocument } from '../documents/race.ts'
+import { routeDocument } from '../documents/route.ts'
+import { skyDocument } from '../documents/sky.ts'
+import { speedsDocument } from '../documents/speeds.ts'
+import { InputError } from '../engine/input-error.ts'
+import { Fault } from '../errors.ts'
+import { fingerprint } from './fingerprint.ts'
+import { checked, readJson } from './read-json.ts'
+
+/** A document that is stored already. */
+export const storedReference = (what: string) => z.strictObject({ id: slug(`a stored ${what}`) })
+
+export type Reference = z.output<ReturnType<typeof storedReference>>
+
+/** A forecast request whose documents stand in it or are named by their ids. */
+export const openRequest = z
+  .strictObject({
+    car: z.union([carDocument, storedReference('car')]),
+    race: z.union([raceDocument, storedReference('race')]),
+    sky: z.union([skyDocument, storedReference('sky')]),
+    routes: z
+      .record(slug('id of a route that a stage names'), routeDocument)
+      .describe('routes by id; those that are not given are taken from the store')
+      .optional(),
+    speeds: speedsDocument,
+    date: date('the one day wanted; earlier days are still worked out for its opening').optional(),
+  })
+  .meta({ title: 'Forecast request' })
+
+export type OpenRequest = z.output<typeof openRequest>
+
+/** The forecast request in a body, checked; documents that it only names are left as `{ id }`. */
+export function readForecastRequest(input: { bytes: Uint8Array }): OpenRequest {
+  const body = readJson(input.bytes)
+  const schema = openRequest.extend({
+    car: meant(body, 'car', carDocument),
+    race: meant(body, 'race', raceDocument),
+    sky: meant(body, 'sky', skyDocument),
+  })
+  return checked(schema, body, 'forecast request')
+}
+
+/** A union would name the problems of both its sides; which one is meant shows at a glance. */
+function meant<W extends z.ZodType>(body: unknown, name: string, whole: W) {
+  const given = member(body, name)
+  const isReference = member(given, 'id') !== undefined && member(given, 'name') === undefined
+  return isReference ? storedReference(name) : whole
+}
+
+const member = (value: unknown, name: string): unknown =>
+  typeof value === 'object' && value !== null ? Object.entries(value).find(([key]) => key === name)?.[1] : undefined
+
+/** The budget of documents that were checked before, as JSON. */
+export function forecastJson(input: ForecastRequest): string {
+  try {
+    return JSON.stringify(forecastDocuments(input))
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error
+    const { field, detail } = error
+    throw new Fault('cannot-forecast', `${field}: ${detail}.`, { errors: [{ field, detail }] })
+  }
+}
+
+/** One hash over the content of everything that a forecast is made from. */
+export const inputsHash = (input: ForecastRequest): string =>
+  fingerprint({
+    car: input.car,
+    race: input.race,
+    routes: input.routes,
+    sky: input.sky,
+    speeds: input.speeds,
+    date: input.date,
+  })

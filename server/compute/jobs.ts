@@ -1,0 +1,13 @@
+import { type BodyInput, readDocument } from './file-jobs.ts'
+import { forecastJson, inputsHash, readForecastRequest } from './forecast-jobs.ts'
+import type { ComputePool } from './pool.ts'
+
+/** Everything that is too heavy for the event loop, by name. */
+export const JOBS = {
+  'read-document': (input: BodyInput) => readDocument(input),
+  'read-forecast-request': readForecastRequest,
+  'inputs-hash': inputsHash,
+  forecast: forecastJson,
+}
+
+export type Compute = ComputePool<typeof JOBS>
