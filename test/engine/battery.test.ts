@@ -110,6 +110,17 @@ describe('limits have names', () => {
     expect(dischargeLimitW(bare, 0.5, 0)).toBeCloseTo(109.8 ** 2 / 4 / pack.resistanceOhm, 6)
   })
 
+  it.each([
+    ['charge-voltage', 0.55, 60_000, 126],
+    ['discharge-voltage', 0.45, -60_000, 90],
+  ])('a long step across several points of the OCV table ends at the limit: %s', (limit, charge, powerW, endV) => {
+    const strong = preparePack({ ...INPUT, chargeMaxA: 1000, dischargeMaxA: 1000, dischargeMinV: 90 })
+    const step = stepPack(strong, charge, powerW, 600)
+    expect(step.limit).toBe(limit)
+    expect(Math.abs(step.charge - charge)).toBeGreaterThan(0.15)
+    expect(openCircuitV(strong, step.charge) + step.currentA * strong.resistanceOhm).toBeCloseTo(endV, 9)
+  })
+
   it('a taper judged at the end of a ten-minute step gives up 54 Wh of what one-second steps take, of one minute 7 Wh', () => {
     const filled = (stepS: number): number => {
       let charge = 0.95
