@@ -1,0 +1,69 @@
+import type { SpeedsInput } from '../server/documents/speeds.ts'
+import { dateIn } from './format.ts'
+
+/** What a page of the client shows: kept in its address, so that a crew can send it and a reload keeps it. */
+export interface Choice {
+  view: 'day' | 'set-up'
+  race: string
+  car: string
+  sky: string
+  date: string
+  speeds: SpeedsInput
+}
+
+export const LOWEST_KMH = 5
+export const HIGHEST_KMH = 200
+const FASTEST: SpeedsInput = { kind: 'meet-target' }
+
+/** The choice that an address holds; anything unreadable in it is left at its default. */
+export function choiceOf(hash: string): Choice {
+  const [view, query = ''] = hash.replace(/^#\/?/, '').split('?')
+  const params = new URLSearchParams(query)
+  const text = (name: string): string => params.get(name) ?? ''
+  return {
+    view: view === 'set-up' ? 'set-up' : 'day',
+    race: text('race'),
+    car: text('car'),
+    sky: text('sky'),
+    date: /^\d{4}-\d{2}-\d{2}$/.test(text('date')) ? text('date') : '',
+    speeds: speedsOf(text('kmh'), text('legs')),
+  }
+}
+
+/** The address of a choice. */
+export function hashOf(choice: Choice): string {
+  const params = new URLSearchParams()
+  for (const name of ['race', 'car', 'sky', 'date'] as const) if (choice[name] !== '') params.set(name, choice[name])
+  const { speeds } = choice
+  if (speeds.kind === 'constant' || speeds.kind === 'legs') params.set('kmh', String(speeds.speedKmh))
+  if (speeds.kind === 'legs') params.set('legs', speeds.legs.map((leg) => `${leg.stage}:${leg.speedKmh}`).join(','))
+  const query = params.toString()
+  return `#/${choice.view}${query === '' ? '' : `?${query}`}`
+}
+
+function speedsOf(kmh: string, legs: string): SpeedsInput {
+  const speedKmh = Number(kmh)
+  if (!isSpeed(speedKmh)) return FASTEST
+  const list = legs
+    .split(',')
+    .map((leg) => leg.split(':'))
+    .filter(([stage, speed]) => /^[a-z0-9-]+$/.test(stage) && isSpeed(Number(speed)))
+    .map(([stage, speed]) => ({ stage, speedKmh: Number(speed) }))
+  return list.length === 0 ? { kind: 'constant', speedKmh } : { kind: 'legs', speedKmh, legs: list }
+}
+
+/** Whether a number is a speed that may be asked for. */
+export const isSpeed = (kmh: number): boolean => kmh >= LOWEST_KMH && kmh <= HIGHEST_KMH
+
+/** A typed speed as the steppers keep it: a whole number in range, or null. */
+export function typedSpeed(text: string): number | null {
+  const kmh = Math.round(Number(text.replace(',', '.')))
+  return text.trim() !== '' && isSpeed(kmh) ? kmh : null
+}
+
+/** The day asked for, else today’s, else the next one, else the first; empty where there is none. */
+export function dayToShow(items: { date: string; zone: string }[], wanted: string, atMs: number): string {
+  const found = items.find((day) => day.date === wanted)
+  const next = items.find((day) => day.date >= dateIn(day.zone, atMs))
+  return (found ?? next ?? items[0])?.date ?? ''
+}

@@ -1,0 +1,135 @@
+import { Mark } from '../charts/mark.tsx'
+import { Rulings } from '../charts/bar.tsx'
+import { ageAmount, clockAt, dayText, offsetText, zoneOffsetMin } from '../format.ts'
+import { choice, days, isHeard, lastHeardMs, lists, nowMs, worked, workingSinceMs } from '../state.ts'
+import { DayView } from './day.tsx'
+import { SetUp } from './set-up.tsx'
+import { Wh } from './figures.tsx'
+import { Disc } from '../charts/disc.tsx'
+
+/** The strip of lost contact shows after this time. [ms] */
+const STRIP_AFTER_MS = 15_000
+/** Work shorter than this is not worth a word. [ms] */
+const QUIET_MS = 700
+
+export const App = () => (
+  <>
+    <Rulings />
+    <Top />
+    <Strip />
+    <main id="main" class="phone">
+      {choice.value.view === 'day' ? <DayView /> : <SetUp />}
+    </main>
+    <Tabs />
+  </>
+)
+
+function Top() {
+  const race = lists.value?.races.find((item) => item.id === choice.value.race)
+  const day = days.value.find((item) => item.date === choice.value.date)
+  const offsetMin =
+    day === undefined ? -new Date(nowMs.value).getTimezoneOffset() : zoneOffsetMin(day.zone, nowMs.value)
+  const where = [race?.name ?? 'Stagewatt', ...(day === undefined ? [] : [dayText(day.date)])].join(', ')
+  return (
+    <header class="top">
+      <Mark />
+      <span class="where">{where}</span>
+      <span class="clock">
+        {clockAt(Math.floor(nowMs.value / 60_000) * 60_000, offsetMin)}
+        <span class="u">{offsetText(offsetMin)}</span>
+      </span>
+    </header>
+  )
+}
+
+/** Lost contact, or work that takes long enough to say so. */
+function Strip() {
+  const lostMs = nowMs.value - lastHeardMs.value
+  const since = workingSinceMs.value
+  return (
+    <div role="status">
+      {!isHeard.value && lostMs > STRIP_AFTER_MS && <Lost ms={lostMs} />}
+      {isHeard.value && since !== null && nowMs.value - since > QUIET_MS && <Working ms={nowMs.value - since} />}
+    </div>
+  )
+}
+
+function Lost({ ms }: { ms: number }) {
+  const { text, unit } = ageAmount(ms)
+  return (
+    <p class="link">
+      <svg
+        width="20"
+        height="20"
+        viewBox="0 0 20 20"
+        fill="none"
+        stroke="var(--ink)"
+        stroke-width="1.8"
+        stroke-linecap="round"
+        aria-hidden="true"
+      >
+        <path d="M2.5 8.5a10 10 0 0 1 4-2.4M17.5 8.5a10 10 0 0 0-4-2.4M5.5 12a6 6 0 0 1 2-1.3M14.5 12a6 6 0 0 0-2-1.3" />
+        <circle cx="10" cy="15.5" r="1.3" fill="var(--ink)" stroke="none" />
+        <path d="M10 3v8.5" stroke-dasharray=".1 3.8" stroke-width="2" />
+      </svg>
+      <span>
+        <b>
+          Offline <Wh text={text} unit={unit} />
+        </b>
+        , showing what was last worked out
+      </span>
+    </p>
+  )
+}
+
+function Working({ ms }: { ms: number }) {
+  const { text, unit } = ageAmount(ms)
+  const last = worked.value
+  return (
+    <p class="link ok">
+      <Disc age="ageing" />
+      <span>
+        Working out the day, <Wh text={text} unit={unit} />
+        {last !== null && `; shown is ${clockAt(last.atMs, last.day.utcOffsetMin)}`}
+      </span>
+    </p>
+  )
+}
+
+const TABS = [
+  { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },
+  { view: 'set-up', name: 'Set-up', icon: 'M6 3h14v20H6zM6 9h14M6 13.5h14M6 18h14M10 3v20' },
+] as const
+
+function Tabs() {
+  const { view } = choice.value
+  return (
+    <nav class="tabs" aria-label="Screens">
+      <ul>
+        {TABS.map((tab) => (
+          <li>
+            <a
+              href={`#/${tab.view}${location.hash.replace(/^[^?]*/, '')}`}
+              aria-current={view === tab.view ? 'page' : undefined}
+            >
+              <svg
+                width="26"
+                height="26"
+                viewBox="0 0 26 26"
+                fill="none"
+                stroke="currentColor"
+                stroke-width="2"
+                stroke-linejoin="round"
+                stroke-linecap="round"
+                aria-hidden="true"
+              >
+                <path d={tab.icon} />
+              </svg>
+              <span>{tab.name}</span>
+            </a>
+          </li>
+        ))}
+      </ul>
+    </nav>
+  )
+}

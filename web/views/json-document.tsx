@@ -1,0 +1,77 @@
+import { useSignal } from '@preact/signals'
+import { documentOf, exampleOf, type Item, type Kind, type Refusal } from '../api.ts'
+import { download } from '../download.ts'
+import { parseDocument } from '../json-problem.ts'
+import { Conflict } from './conflict.tsx'
+import { Field, FileField, SelectField } from './field.tsx'
+import { Problems } from './problems.tsx'
+import { SaveForm } from './save-form.tsx'
+
+interface JsonProps {
+  kind: Kind
+  word: 'car' | 'race'
+  items: Item[]
+  onSaved: (id: string) => void
+}
+
+/** A document as JSON: from a file, typed, from the worked example or from one that is stored. */
+export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
+  const text = useSignal('')
+  const refused = useSignal<Refusal | null>(null)
+  const parsed = text.value.trim() === '' ? null : parseDocument(text.value)
+  const document = parsed !== null && 'document' in parsed ? parsed.document : null
+  const from = async (id: string): Promise<void> => {
+    const stored = id === '' ? await exampleOf(word) : await documentOf(kind, id)
+    refused.value = stored.refusal ?? null
+    if (stored.value === undefined) return
+    const found = id === '' ? stored.value : (stored.value as { document: unknown }).document
+    text.value = JSON.stringify(found, null, 2)
+  }
+  return (
+    <details class="more" data-add={kind}>
+      <summary>Add or change a {word} as JSON</summary>
+      <div class="form">
+        <FileField
+          label={`File of the ${word}`}
+          accept=".json,application/json"
+          hint="A JSON document; every field is explained in the docs."
+          onFile={(file) => void file.text().then((content) => (text.value = content))}
+        />
+        <SelectField
+          label="Or start from"
+          value="-"
+          options={[
+            ['-', 'Choose one'],
+            ['', 'The worked example'],
+            ...items.map((item) => [item.id, item.name] as const),
+          ]}
+          onChange={(id) => id !== '-' && void from(id)}
+        />
+        {refused.value !== null && <Conflict refusal={refused.value} />}
+        <Field label={`The ${word} as JSON`}>
+          <textarea
+            spellcheck={false}
+            value={text.value}
+            aria-invalid={parsed !== null && document === null}
+            onInput={(event) => (text.value = event.currentTarget.value)}
+          />
+        </Field>
+        {parsed !== null && 'problem' in parsed && <Problems problems={[parsed.problem]} />}
+        {document !== null && (
+          <>
+            <button type="button" class="quiet" onClick={() => download(`${word}.json`, text.value)}>
+              Download this text
+            </button>
+            <SaveForm
+              key={String(document.name)}
+              kind={kind}
+              document={document}
+              name={typeof document.name === 'string' ? document.name : ''}
+              onSaved={onSaved}
+            />
+          </>
+        )}
+      </div>
+    </details>
+  )
+}

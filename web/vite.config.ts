@@ -1,0 +1,19 @@
+import { fileURLToPath } from 'node:url'
+import { defineConfig } from 'vite'
+
+const inWeb = (path: string): string => fileURLToPath(new URL(path, import.meta.url))
+
+export default defineConfig({
+  root: inWeb('.'),
+  base: './',
+  resolve: { alias: [{ find: /^d3-interpolate$/, replacement: inWeb('charts/interpolate-numbers.ts') }] },
+  oxc: { jsx: { runtime: 'automatic', importSource: 'preact' } },
+  build: {
+    outDir: '../dist/web',
+    emptyOutDir: true,
+    target: 'es2022',
+    // Nothing is inlined as data: the service's content policy allows its own files only.
+    assetsInlineLimit: 0,
+    modulePreload: { polyfill: false },
+  },
+})
