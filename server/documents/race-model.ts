@@ -142,7 +142,7 @@ export function dayRules(race: RaceDocument): DayRules[] {
       })),
       raiseS: day.raiseMin * 60,
       lowerS: day.lowerMin * 60,
-      stages: stages.flatMap((s, i) => (s.dayIndex === d ? [i] : [])),
+      lastStage: stages.findLastIndex((s) => s.dayIndex <= d),
     }
   })
 }

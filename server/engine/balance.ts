@@ -100,8 +100,9 @@ export function balance(car: Car, day: BalanceDay, charge: number): Balance {
     else resetRoad(road)
     if (steps.charging[i] === 1) taken.take(i, packV)
     else taken.rest()
-    const netW = fitToPack(car, taken, road, { charge, packV, durationS, loadW: road.busJ / durationS + auxW })
-    stepPack(car.pack, charge, netW, durationS, pack)
+    const packS = Math.max(durationS, road.changeS)
+    const netJ = fitToPack(car, taken, road, { charge, packV, durationS, packS, loadW: road.busJ / durationS + auxW })
+    stepPack(car.pack, charge, netJ / packS, packS, pack)
     if (pack.shortJ > 0 && out.firstShort < 0) out.firstShort = i
     book(sums, road, pack, auxW * durationS)
     out.deniedW[i] = taken.book(out.trackers, sums, durationS) / durationS
@@ -134,30 +135,31 @@ function roadStep(steps: Steps, i: number, durationS: number) {
 }
 
 function resetRoad(road: RoadEnergy): void {
-  road.busJ = road.rollingJ = road.dragJ = road.climbingJ = road.brakedJ = road.lossJ = 0
+  road.busJ = road.rollingJ = road.dragJ = road.climbingJ = road.brakedJ = road.lossJ = road.changeS = 0
 }
 
 /**
- * Power that goes to the pack: outputs less load, and no more than the pack takes. A full pack makes
- * the trackers take less; regeneration that is left over then goes to the brakes.
+ * Energy that goes to the pack: outputs less load, and no more than the pack takes. A full pack makes
+ * the trackers take less; regeneration that is left over then goes to the brakes. [J]
  */
 function fitToPack(
   car: Car,
   taken: Takers,
   road: RoadEnergy,
-  now: { charge: number; packV: number; durationS: number; loadW: number },
+  now: { charge: number; packV: number; durationS: number; packS: number; loadW: number },
 ): number {
-  const netW = taken.outputW() - now.loadW
-  if (!(netW > 0)) return netW
-  const mostW = chargeLimitW(car.pack, now.charge, now.durationS)
-  if (netW <= mostW) return netW
+  const { durationS, packS, loadW } = now
+  const netW = taken.outputW() - loadW
+  if (!(netW > 0)) return netW * durationS
+  const mostW = (chargeLimitW(car.pack, now.charge, packS) * packS) / durationS
+  if (netW <= mostW) return netW * durationS
   taken.reduceBy(netW - mostW, now.packV)
-  const leftW = taken.outputW() - now.loadW - mostW
+  const leftW = taken.outputW() - loadW - mostW
   if (leftW > 0) {
-    road.brakedJ += leftW * now.durationS
-    road.busJ += leftW * now.durationS
+    road.brakedJ += leftW * durationS
+    road.busJ += leftW * durationS
   }
-  return Math.min(taken.outputW() - now.loadW, mostW)
+  return Math.min(taken.outputW() - loadW, mostW) * durationS
 }
 
 function emptyBalance(car: Car, count: number, spans: number): Balance {

@@ -35,8 +35,8 @@ export interface DayRules {
   charging: ChargingWindow[]
   raiseS: number
   lowerS: number
-  /** Stages that may start on this day; those left over from earlier days go first. */
-  stages: number[]
+  /** The last stage that may be driven by the end of this day; -1 before the first. Stages run in their order. */
+  lastStage: number
 }
 
 /** Where the car stands between two days. */

@@ -14,10 +14,20 @@ export interface RoadEnergy {
   climbingJ: number
   brakedJ: number
   lossJ: number
+  /** How long a change of speed in this step really takes, 0 where there is none; may be longer than the step. [S] */
+  changeS: number
 }
 
 /** A result to fill again and again. */
-export const newRoadEnergy = (): RoadEnergy => ({ busJ: 0, rollingJ: 0, dragJ: 0, climbingJ: 0, brakedJ: 0, lossJ: 0 })
+export const newRoadEnergy = (): RoadEnergy => ({
+  busJ: 0,
+  rollingJ: 0,
+  dragJ: 0,
+  climbingJ: 0,
+  brakedJ: 0,
+  lossJ: 0,
+  changeS: 0,
+})
 
 /** Deceleration to a halt. [m/s²] Common practice, no source. */
 export const BRAKING_MPS2 = 1
@@ -33,7 +43,8 @@ const bus: BusPower = { busW: 0, lossW: 0, brakedW: 0 }
  *
  * The work at the wheels is rolling, drag, climbing and the change of kinetic energy against the step
  * before; a drive starts from rest and is braked to rest at its end. Each expected halt brakes to rest
- * and accelerates again. The power of an acceleration is spread over its step.
+ * and accelerates again. `changeS` says how long a change of speed takes: in a step shorter than that the pack
+ * sees the energy over that time, not as a blow.
  *
  * @param step  which step, its length, the speed in the step before (0 at a start), whether the car halts at its end
  * @param out   is filled and returned
@@ -60,6 +71,9 @@ export function roadEnergy(
   out.busJ = bus.busW * durationS
   out.lossJ = bus.lossW * durationS
   out.brakedJ = bus.brakedW * durationS
+  const gainMps = speedMps - step.beforeMps
+  out.changeS = gainMps > 0 ? gainMps / STARTING_MPS2 : -gainMps / BRAKING_MPS2
+  if (step.endsInHalt) out.changeS += speedMps / BRAKING_MPS2
   const halts = course.pieces.haltsPerM[piece] * lengthM
   if (halts > 0) addChange(out, drive, { kineticJ: kinetic, overS: speedMps / STARTING_MPS2, times: halts })
   const stops = halts + (step.endsInHalt ? 1 : 0)

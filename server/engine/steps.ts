@@ -3,7 +3,7 @@ import { pieceAt } from './timetable.ts'
 import type { Span } from './timetable.ts'
 
 /** Longest step of a parked car. [S] */
-export const PARKED_STEP_S = 120
+export const PARKED_STEP_S = 60
 
 /** The day cut into steps with one pose and one speed; every array has `count` entries. */
 export interface Steps {
@@ -45,7 +45,7 @@ const FLOATS = [
 ] as const
 
 /**
- * The spans of a day cut into steps: one per piece of road while driving, at most two minutes when parked.
+ * The spans of a day cut into steps: one per piece of road while driving, at most one minute when parked.
  *
  * @param course    roads of all stages
  * @param spans     the day's timetable

@@ -52,7 +52,6 @@ export function timetable(
   const late: Timetable['late'] = []
   parkedSpans(spans, day, { fromMs: day.opensMs, toMs: day.drivingFromMs, placeM, kind: 'morning-charge' })
   let nowMs = day.drivingFromMs
-  const lastStage = Math.max(stage - 1, ...day.stages)
 
   const stand = (rule: StopRule, atStage: number, wantedS: number): void => {
     const toMs = Math.min(nowMs + wantedS * 1000, day.drivingToMs)
@@ -65,7 +64,7 @@ export function timetable(
     const rule = stages[stage - 1].stop as StopRule
     stand(rule, stage - 1, stopLeftS)
   }
-  while (stopLeftS === 0 && stage <= lastStage && nowMs < day.drivingToMs) {
+  while (stopLeftS === 0 && stage <= day.lastStage && nowMs < day.drivingToMs) {
     const leg = drive(course, stage, { placeM, nowMs, untilMs: day.drivingToMs, pieceS: context.pieceS })
     if (leg.toMs > nowMs)
       spans.push({ kind: 'drive', stage, fromMs: nowMs, toMs: leg.toMs, fromM: placeM, toM: leg.placeM, ...FLAT })
@@ -80,7 +79,7 @@ export function timetable(
     }
     stage++
   }
-  const isCutOff = stage <= lastStage || stopLeftS > 0
+  const isCutOff = stage <= day.lastStage || stopLeftS > 0
   parkedSpans(spans, day, { fromMs: nowMs, toMs: day.closesMs, placeM, kind: 'evening-charge' })
   return { spans, evening: { stage, placeM, stopLeftS }, late, isCutOff }
 }
