@@ -64,6 +64,26 @@ export function documentStore(sql: Sql): DocumentStore {
     return version === null ? 'missing' : { conflict: version }
   }
 
+  const create: DocumentStore['create'] = async (kind, id, name, body) => {
+    checkField('id', id, isSlug(id), '1 to 64 lower-case letters, digits or hyphens')
+    return saving({ name, body }, async () => {
+      const rows = await sql<Saved[]>`
+        with head as (
+          insert into documents as d (kind, id, version) values (${kind}, ${id}, 1)
+          on conflict (kind, id) do update set version = d.version + 1, removed_at = null
+          where d.removed_at is not null
+          returning version
+        )
+        insert into document_versions (kind, id, version, name, body)
+        select ${kind}, ${id}, version, ${name}, ${json(sql, 'body', body)} from head
+        returning version, ${savedAt()}`
+      if (rows.length > 0) return rows[0]
+      const holds = await conflictOrMissing(kind, id)
+      // Removed between the two statements: it is free again.
+      return holds === 'missing' ? create(kind, id, name, body) : holds
+    })
+  }
+
   return {
     async list(kind) {
       const rows = await sql<DocumentEntry[]>`
@@ -84,25 +104,7 @@ export function documentStore(sql: Sql): DocumentStore {
       return rows[0] ?? null
     },
 
-    async create(kind, id, name, body) {
-      checkField('id', id, isSlug(id), '1 to 64 lower-case letters, digits or hyphens')
-      return saving({ name, body }, async () => {
-        const rows = await sql<Saved[]>`
-          with head as (
-            insert into documents as d (kind, id, version) values (${kind}, ${id}, 1)
-            on conflict (kind, id) do update set version = d.version + 1, removed_at = null
-            where d.removed_at is not null
-            returning version
-          )
-          insert into document_versions (kind, id, version, name, body)
-          select ${kind}, ${id}, version, ${name}, ${json(sql, 'body', body)} from head
-          returning version, ${savedAt()}`
-        if (rows.length > 0) return rows[0]
-        const holds = await conflictOrMissing(kind, id)
-        // Removed between the two statements: it is free again.
-        return holds === 'missing' ? this.create(kind, id, name, body) : holds
-      })
-    },
+    create,
 
     replace(kind, id, expectedVersion, name, body) {
       if (!isSlug(id) || !isVersion(expectedVersion)) return conflictOrMissing(kind, id)

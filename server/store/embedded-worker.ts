@@ -9,6 +9,7 @@ const MEMORY_BYTES = 128 * 1024 * 1024
 const CHECKPOINT_EVERY_MS = 5 * 60_000
 const CHECKPOINT_EVERY_BYTES = 16 * 1024 * 1024
 const VACUUM_EVERY_MS = 60 * 60_000
+const WORTH_A_VACUUM_BYTES = 256 * 1024
 const TIDY_LIMIT_MS = 10 * 60_000
 
 const task: WorkerTask = workerData
@@ -28,12 +29,15 @@ const open = (): Promise<PGlite> =>
     startParams,
   })
 
+// How much the clients have sent: a cheap measure of how much they may have written.
 let bytesSinceCheckpoint = 0
+let bytesSinceVacuum = 0
 
 function session(engine: PGlite): Session {
   return {
     async run(bytes, limitMs) {
       bytesSinceCheckpoint += bytes.length
+      bytesSinceVacuum += bytes.length
       const parts: Buffer[] = []
       Atomics.store(counters, COUNTER.limitMs, limitMs)
       Atomics.add(counters, COUNTER.turn, 1)
@@ -51,33 +55,30 @@ function session(engine: PGlite): Session {
   }
 }
 
+async function checkpoint(shared: Bridge): Promise<void> {
+  if (bytesSinceCheckpoint === 0) return
+  bytesSinceCheckpoint = 0
+  await shared.tidy('CHECKPOINT', TIDY_LIMIT_MS)
+  bytesSinceCheckpoint = 0
+}
+
+async function vacuum(shared: Bridge): Promise<void> {
+  if (bytesSinceVacuum < WORTH_A_VACUUM_BYTES) return
+  bytesSinceVacuum = 0
+  await shared.tidy('VACUUM ANALYZE', TIDY_LIMIT_MS)
+}
+
 /** The engine has neither checkpointer nor autovacuum: without these its log grows and its tables swell. */
 function keepTidy(shared: Bridge): void {
-  let hasWork = false
-  let isBusy = false
-  const checkpoint = async (): Promise<void> => {
-    if (isBusy || bytesSinceCheckpoint === 0) return
-    isBusy = true
-    await shared.tidy('CHECKPOINT', TIDY_LIMIT_MS)
-    bytesSinceCheckpoint = 0
-    hasWork = true
-    isBusy = false
-  }
-  const vacuum = async (): Promise<void> => {
-    if (!hasWork) return
-    await shared.tidy('VACUUM ANALYZE', TIDY_LIMIT_MS)
-    hasWork = false
-  }
-  setInterval(() => void checkpoint(), CHECKPOINT_EVERY_MS).unref()
-  setInterval(() => void (bytesSinceCheckpoint > CHECKPOINT_EVERY_BYTES && checkpoint()), 1000).unref()
-  setInterval(() => void vacuum(), VACUUM_EVERY_MS).unref()
+  const checkLog = (): void => void (bytesSinceCheckpoint > CHECKPOINT_EVERY_BYTES && checkpoint(shared))
+  setInterval(checkLog, 1000).unref()
+  setInterval(() => void checkpoint(shared), CHECKPOINT_EVERY_MS).unref()
+  setInterval(() => void vacuum(shared), VACUUM_EVERY_MS).unref()
 }
 
 async function stop(engine: PGlite, shared: Bridge): Promise<never> {
-  if (bytesSinceCheckpoint > 0) {
-    await shared.tidy('VACUUM ANALYZE', TIDY_LIMIT_MS)
-    await shared.tidy('CHECKPOINT', TIDY_LIMIT_MS)
-  }
+  await vacuum(shared)
+  await checkpoint(shared)
   await engine.close()
   process.exit(0)
 }
