@@ -2,7 +2,11 @@ import type { Problem } from '../documents/problem.ts'
 import { counted, Fault } from '../errors.ts'
 import { decodeText } from '../files/decode-text.ts'
 import type { FileReading, Notice } from '../files/file-reading.ts'
+import { readCsvRoute } from '../files/csv-route.ts'
+import { readCsvSky } from '../files/csv-sky.ts'
 import { readGpxRoute } from '../files/gpx-route.ts'
+import { routeTableOptions } from '../files/route-table.ts'
+import { skyTableOptions } from '../files/sky-table.ts'
 import { DOCUMENTS, type Kind } from './documents.ts'
 import { checked, readJson } from './read-json.ts'
 
@@ -53,5 +57,7 @@ type Reading = FileReading<object & { name: string }, unknown>
 
 function read(kind: Kind, format: Format, text: string, options: Record<string, unknown>): Reading {
   if (kind === 'route' && format === 'gpx') return readGpxRoute(text, options)
+  if (kind === 'route') return readCsvRoute(text, routeTableOptions.parse(options))
+  if (kind === 'sky') return readCsvSky(text, skyTableOptions.parse(options))
   throw new Fault('unsupported-media-type', `A ${kind} is not read from ${format}.`)
 }

@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { type ForecastRequest, forecastDocuments } from '../documents/forecast.ts'
+import { forecastDocuments, forecastRequest } from '../documents/forecast.ts'
 import { carDocument } from '../documents/car.ts'
 import { date, slug } from '../documents/quantity.ts'
 import { raceDocument } from '../documents/race.ts'
@@ -54,10 +54,25 @@ function meant<W extends z.ZodType>(body: unknown, name: string, whole: W) {
 const member = (value: unknown, name: string): unknown =>
   typeof value === 'object' && value !== null ? Object.entries(value).find(([key]) => key === name)?.[1] : undefined
 
-/** The budget of documents that were checked before, as JSON. */
-export function forecastJson(input: ForecastRequest): string {
+/** Whole documents of a forecast; they were checked when they came in, perhaps by an earlier version. */
+export interface ForecastInputs {
+  car: unknown
+  race: unknown
+  routes: Record<string, unknown>
+  sky: unknown
+  speeds: unknown
+  date?: string
+}
+
+/**
+ * The budget of whole documents, as JSON.
+ *
+ * @throws Fault 'invalid-document', or 'cannot-forecast' where the documents do not fit together
+ */
+export function forecastJson(input: ForecastInputs): string {
+  const request = checked(forecastRequest, input, 'forecast request')
   try {
-    return JSON.stringify(forecastDocuments(input))
+    return JSON.stringify(forecastDocuments(request))
   } catch (error) {
     if (!(error instanceof InputError)) throw error
     const { field, detail } = error
@@ -66,7 +81,7 @@ export function forecastJson(input: ForecastRequest): string {
 }
 
 /** One hash over the content of everything that a forecast is made from. */
-export const inputsHash = (input: ForecastRequest): string =>
+export const inputsHash = (input: ForecastInputs): string =>
   fingerprint({
     car: input.car,
     race: input.race,

@@ -1,0 +1,31 @@
+import type { SpeedsInput } from '../../documents/speeds.ts'
+import { carExample } from './car.ts'
+import { raceExample } from './race.ts'
+import { routeExample } from './route.ts'
+import { skyExample } from './sky.ts'
+
+export interface Example {
+  title: string
+  document: object
+}
+
+const speedsExample: SpeedsInput = { kind: 'constant', speedKmh: 62 }
+
+/** Worked examples of everything that people write, invented; together they give a forecast. */
+export const EXAMPLES: Record<string, Example> = {
+  car: { title: 'A car with four panels', document: carExample },
+  route: { title: 'A short road', document: routeExample },
+  race: { title: 'One day with two stages and a stop', document: raceExample },
+  sky: { title: 'An hourly forecast for one place', document: skyExample },
+  speeds: { title: 'One held speed', document: speedsExample },
+  'forecast-request': {
+    title: 'A forecast of whole documents',
+    document: {
+      car: carExample,
+      race: raceExample,
+      routes: { 'saltpan-twin-wells': routeExample },
+      sky: skyExample,
+      speeds: speedsExample,
+    },
+  },
+}

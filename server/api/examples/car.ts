@@ -1,0 +1,69 @@
+import type { CarInput } from '../../documents/car.ts'
+
+const TRACKER_WINDOW = { inputMinV: 15, inputMaxV: 100, inputMaxA: 8, outputMaxV: 160, outputMinV: 70, maxW: 350 }
+const TRACKER_LOSSES = { standingW: 1.2, switchingPct: 0.35, conductionOhm: 0.045, rectifierV: 0.6 }
+
+/** An invented car with four flat panels, one string and one tracker each. */
+export const carExample: CarInput = {
+  name: 'Weaver 2',
+  body: { massKg: 248, rotatingFactor: 1.03, dragAreaM2: 0.115, rollingCoefficient: 0.0048, rollingPerKmh: 0.000008 },
+  drive: {
+    efficiencyPct: 94,
+    regenerationPct: 60,
+    motorMaxW: 5000,
+    motorMaxNm: 110,
+    wheelRadiusM: 0.278,
+    regenerationMaxW: 2500,
+  },
+  auxiliaries: { drivingW: 28, parkedW: 6 },
+  panels: [
+    { name: 'nose', pitchDeg: 8, lifts: true },
+    { name: 'left', rollDeg: -5, lifts: true },
+    { name: 'right', rollDeg: 5, lifts: true },
+    { name: 'tail', pitchDeg: -6, lifts: true },
+  ],
+  stand: { tiltMaxDeg: 70 },
+  cellTypes: {
+    'high desert mono': {
+      lightCurrentA: 6.3,
+      saturationCurrentA: 3e-12,
+      seriesOhm: 0.0032,
+      shuntOhm: 40,
+      idealityFactor: 1,
+      lightCurrentAPerC: 0.0032,
+    },
+  },
+  strings: ['nose', 'left', 'right', 'tail'].map((panel) => ({
+    name: panel,
+    tracker: `${panel} tracker`,
+    cellType: 'high desert mono',
+    cells: [{ panel, inSeries: 64 }],
+    soilingPct: 2,
+  })),
+  trackers: ['nose', 'left', 'right', 'tail'].map((panel) => ({
+    name: `${panel} tracker`,
+    window: TRACKER_WINDOW,
+    losses: TRACKER_LOSSES,
+  })),
+  pack: {
+    seriesCells: 35,
+    parallelCells: 12,
+    cellAh: 3.4,
+    cellOcv: [
+      { chargePct: 0, restingV: 3.0 },
+      { chargePct: 10, restingV: 3.35 },
+      { chargePct: 30, restingV: 3.55 },
+      { chargePct: 50, restingV: 3.67 },
+      { chargePct: 70, restingV: 3.85 },
+      { chargePct: 90, restingV: 4.05 },
+      { chargePct: 100, restingV: 4.17 },
+    ],
+    cellOhm: 0.032,
+    leadsOhm: 0.012,
+    cellMaxV: 4.2,
+    cellMinV: 2.8,
+    cellChargeMaxA: 1.7,
+    cellDischargeMaxA: 6.8,
+    reservePct: 15,
+  },
+}

@@ -1,0 +1,40 @@
+import type { RaceInput } from '../../documents/race.ts'
+
+/** One day of the Plateau Run: two stages on one road with a stop between them. */
+export const raceExample: RaceInput = {
+  name: 'Plateau Run, short Saturday',
+  zone: 'Africa/Windhoek',
+  openingPct: 62,
+  days: [
+    {
+      date: '2026-10-17',
+      release: '06:00',
+      driving: { from: '08:00', to: '17:00' },
+      charging: [
+        { from: '06:15', to: '07:50' },
+        { from: '17:00', to: '18:40' },
+      ],
+      impound: '19:00',
+      targetPct: 70,
+      stages: [
+        {
+          id: 'saltpan-old-pump',
+          name: 'Saltpan to Old Pump',
+          route: 'saltpan-twin-wells',
+          toKm: 52,
+          start: 'Saltpan',
+          finish: 'Old Pump',
+          stop: { minutes: 30 },
+        },
+        {
+          id: 'old-pump-twin-wells',
+          name: 'Old Pump to Twin Wells',
+          route: 'saltpan-twin-wells',
+          fromKm: 52,
+          start: 'Old Pump',
+          finish: 'Twin Wells',
+        },
+      ],
+    },
+  ],
+}

@@ -1,0 +1,56 @@
+import { z } from 'zod'
+import { type OpenRequest, openRequest, type Reference } from '../compute/forecast-jobs.ts'
+import type { Kind } from '../compute/documents.ts'
+import { budgetDocument } from '../documents/budget.ts'
+import { raceDocument } from '../documents/race.ts'
+import type { Store } from '../store/store.ts'
+import { answers, COMPUTE_ERRORS, STORE_ERRORS, WRITE_ERRORS } from './answers.ts'
+import { type Api, clientGone, DOCUMENT_LIMIT, type Needs } from './api.ts'
+import { bytesOf, takeBodies } from './content.ts'
+import { named, routesOf } from './gather.ts'
+
+/** A forecast of documents that come with the request, or are named in it; nothing is saved. */
+export function statelessForecastRoute(api: Api, { store, compute }: Needs): void {
+  takeBodies(api, ['json'])
+  const schema = {
+    tags: ['forecasts'],
+    summary: 'Forecast whole documents; nothing is saved',
+    description: 'Each document stands in the body or is named as { "id": "…" }; routes not given come from the store.',
+    querystring: z.strictObject({}),
+    body: openRequest,
+    response: answers({ 200: { description: 'the budget', schema: budgetDocument } }, [
+      'bad-query',
+      'bad-json',
+      'empty-body',
+      'invalid-document',
+      'missing-document',
+      'missing-route',
+      'cannot-forecast',
+      ...WRITE_ERRORS,
+      ...COMPUTE_ERRORS,
+      ...STORE_ERRORS,
+    ]),
+  }
+  api.post('/forecast', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
+    const signal = clientGone(reply)
+    const read = await compute.run('read-forecast-request', { bytes: bytesOf(request.body) }, signal)
+    const budget = await compute.run('forecast', await whole(store, read), signal)
+    return reply.type('application/json; charset=utf-8').send(budget)
+  })
+}
+
+/** The request with every document that it names. */
+async function whole(store: Store, request: OpenRequest) {
+  const [car, race, sky] = await Promise.all([
+    documentOf(store, 'car', request.car),
+    documentOf(store, 'race', request.race),
+    documentOf(store, 'sky', request.sky),
+  ])
+  const given = request.routes ?? {}
+  const stored = await routesOf(store, raceDocument.parse(race), given)
+  const routes = { ...Object.fromEntries([...stored].map(([id, { body }]) => [id, body])), ...given }
+  return { car, race, sky, routes, speeds: request.speeds, date: request.date }
+}
+
+const documentOf = async (store: Store, kind: Kind, given: object | Reference): Promise<unknown> =>
+  'id' in given ? (await named(store, kind, given.id, `${kind}.id`)).body : given
