@@ -36,6 +36,10 @@ export function balanceAt(day: ForecastDay, step: number) {
 
 const atCharge = (race: Race, charge: number) => ({ wh: storedJ(race.car.pack, charge) * WH, chargePct: charge * 100 })
 
+/** Distance of a place from where the day starts. [km] */
+export const dayKm = (day: ForecastDay, placeM: number): number =>
+  (placeM - (day.forecast.timetable.spans[0]?.fromM ?? placeM)) / 1000
+
 /** Name of a place: a stage's start or finish when the car stands on one, else its distance. */
 export function placeName(day: ForecastDay, placeM: number): string {
   const { course, stages } = day.race
@@ -43,7 +47,7 @@ export function placeName(day: ForecastDay, placeM: number): string {
   const at = course.stages.findIndex((s) => here(s.toM))
   if (at >= 0) return stages[at].finish
   const from = course.stages.findIndex((s) => here(s.fromM))
-  return from >= 0 ? stages[from].start : `km ${(placeM / 1000).toFixed(0)}`
+  return from >= 0 ? stages[from].start : `km ${dayKm(day, placeM).toFixed(0)}`
 }
 
 /** A day's forecast as the budget that people read. */
@@ -84,8 +88,8 @@ export function dayBudget(day: ForecastDay): DayBudget {
       name: s.kind === 'drive' ? race.stages[s.stage].name : placeName(day, s.fromM),
       from: localIso(s.fromMs, zone),
       to: localIso(s.toMs, zone),
-      fromKm: s.fromM / 1000,
-      toKm: s.toM / 1000,
+      fromKm: dayKm(day, s.fromM),
+      toKm: dayKm(day, s.toM),
     })),
     trackers: trackersOf(day),
     penaltyMin: penaltyMin(day),
@@ -98,7 +102,7 @@ function lowestOf(day: ForecastDay): DayBudget['lowest'] {
   const step = forecast.lowestStep
   const atMs = step < 0 ? race.days[day.dayIndex].opensMs : forecast.steps.toMs[step]
   const placeM = step < 0 ? forecast.steps.fromM[0] : forecast.steps.toM[step]
-  return { ...balanceAt(day, step), at: localIso(atMs, zone), km: placeM / 1000, place: placeName(day, placeM) }
+  return { ...balanceAt(day, step), at: localIso(atMs, zone), km: dayKm(day, placeM), place: placeName(day, placeM) }
 }
 
 /** The places and times at which a crew compares its battery with the budget. */
@@ -110,7 +114,7 @@ function gatesOf(day: ForecastDay): DayBudget['gates'] {
   const gates: DayBudget['gates'] = []
   const push = (kind: DayBudget['gates'][number]['kind'], atMs: number, placeM: number): void => {
     const balance = balanceAt(day, stepBefore(steps.toMs, steps.count, atMs))
-    gates.push({ kind, name: placeName(day, placeM), at: localIso(atMs, zone), km: placeM / 1000, ...balance })
+    gates.push({ kind, name: placeName(day, placeM), at: localIso(atMs, zone), km: dayKm(day, placeM), ...balance })
   }
   const first = spans[0]
   if (first === undefined) return gates

@@ -1,5 +1,5 @@
 import type { DayBudget } from './budget.ts'
-import { placeName } from './budget-day.ts'
+import { dayKm, placeName } from './budget-day.ts'
 import type { ForecastDay } from './budget-day.ts'
 import { clock, localIso } from './local-time.ts'
 
@@ -37,7 +37,7 @@ function runsFlat(day: ForecastDay): Outcome | null {
 function tooSteep(day: ForecastDay): Outcome | null {
   const { blockedPiece, timetable, steps } = day.forecast
   if (blockedPiece < 0) return null
-  const km = (timetable.evening.placeM / 1000).toFixed(1)
+  const km = dayKm(day, timetable.evening.placeM).toFixed(1)
   const gradePct = (Math.tan(day.race.course.pieces.gradeRad[blockedPiece]) * 100).toFixed(1)
   const text = `The motor cannot pull the car on at km ${km}: the grade there is ${gradePct} %.`
   return outcome('too-steep', text, day, steps.count - 1)
@@ -58,7 +58,7 @@ function stopMissed(day: ForecastDay): Outcome | null {
   if (missed === undefined) return null
   const { finish } = day.race.stages[missed.stage]
   const text = `${finish} is reached ${clock(missed.atMs, day.zone)}, ${Math.ceil(missed.byS / 60)} min after it closes.`
-  const km = day.race.course.stages[missed.stage].toM / 1000
+  const km = dayKm(day, day.race.course.stages[missed.stage].toM)
   return { kind: 'stop-missed', text, at: localIso(missed.atMs, day.zone), km }
 }
 
@@ -72,7 +72,7 @@ function cutOff(day: ForecastDay): Outcome | null {
   const { timetable } = day.forecast
   if (!timetable.isCutOff) return null
   const { stopLeftS, placeM, stage } = timetable.evening
-  const km = placeM / 1000
+  const km = dayKm(day, placeM)
   const at = localIso(day.race.days[day.dayIndex].drivingToMs, day.zone)
   if (stopLeftS > 0) {
     const text = `The driving hours end in the stop at ${placeName(day, placeM)}; ${Math.ceil(stopLeftS / 60)} min of it are left for the next day.`
@@ -89,10 +89,10 @@ function arrived(day: ForecastDay): Outcome {
   if (last === undefined) return { kind: 'parked', text: 'The car is not driven on this day.', at: null, km: null }
   const place = placeName(day, last.toM)
   const text = `${place} is reached ${clock(last.toMs, day.zone)}.`
-  return { kind: 'done', text, at: localIso(last.toMs, day.zone), km: last.toM / 1000 }
+  return { kind: 'done', text, at: localIso(last.toMs, day.zone), km: dayKm(day, last.toM) }
 }
 
 function outcome(kind: Outcome['kind'], text: string, day: ForecastDay, step: number): Outcome {
   const { steps } = day.forecast
-  return { kind, text, at: localIso(steps.fromMs[step], day.zone), km: steps.fromM[step] / 1000 }
+  return { kind, text, at: localIso(steps.fromMs[step], day.zone), km: dayKm(day, steps.fromM[step]) }
 }

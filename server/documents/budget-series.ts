@@ -1,4 +1,5 @@
 import type { DayBudget } from './budget.ts'
+import { dayKm } from './budget-day.ts'
 import type { ForecastDay } from './budget-day.ts'
 
 const DEG = 180 / Math.PI
@@ -21,7 +22,10 @@ export function seriesDocument(day: ForecastDay): DayBudget['series'] {
   return {
     fromMs: column(steps.fromMs, 0),
     toMs: column(steps.toMs, 0),
-    km: column(steps.toM, 3, 1e-3),
+    km: column(
+      steps.toM.map((m) => dayKm(day, m)),
+      3,
+    ),
     heightM: column(steps.altM, 1),
     speedKmh: column(steps.speedMps, 2, 3.6),
     limitKmh: column(limitMps, 1, 3.6),

@@ -1,6 +1,6 @@
 import { ledger } from '../engine/ledger.ts'
 import type { DayBudget } from './budget.ts'
-import { balanceAt, stepBefore } from './budget-day.ts'
+import { balanceAt, dayKm, stepBefore } from './budget-day.ts'
 import type { ForecastDay } from './budget-day.ts'
 import { ledgerDocument } from './budget-ledger.ts'
 import { localIso } from './local-time.ts'
@@ -36,8 +36,8 @@ function stageBudget(day: ForecastDay, stage: number): DayBudget['stages'][numbe
     name: race.stages[stage].name,
     start: race.stages[stage].start,
     finish: race.stages[stage].finish,
-    fromKm: leg.fromM / 1000,
-    toKm: leg.toM / 1000,
+    fromKm: dayKm(day, leg.fromM),
+    toKm: dayKm(day, leg.toM),
     drivenKm,
     isFinished,
     departAt: localIso(leg.fromMs, zone),

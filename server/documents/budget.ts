@@ -3,7 +3,7 @@ import { z } from 'zod'
 const wh = (meaning: string) => z.number().describe(`${meaning} [Wh]`)
 const pct = (meaning: string) => z.number().describe(`${meaning} [% of charge]`)
 const at = (meaning: string) => z.string().describe(`${meaning} (ISO 8601, local offset)`)
-const km = (meaning: string) => z.number().describe(`${meaning} [km from the start of the race]`)
+const km = (meaning: string) => z.number().describe(`${meaning} [km from where the day starts]`)
 
 const balance = z.strictObject({ wh: wh('stored energy'), chargePct: pct('charge') })
 
@@ -79,7 +79,7 @@ const column = (meaning: string) => z.array(z.number()).describe(meaning)
 const series = z.strictObject({
   fromMs: column('start of the step [ms since 1970, UTC]'),
   toMs: column('end of the step [ms since 1970, UTC]'),
-  km: column('place at its end [km from the start of the race]'),
+  km: column('place at its end [km from where the day starts]'),
   heightM: column('road height at its middle [m]'),
   speedKmh: column('speed, 0 when parked [km/h]'),
   limitKmh: column('speed limit there, 0 when parked [km/h]'),
