@@ -45,6 +45,8 @@ export interface LitGroup {
 interface Run {
   on: LitGroup[]
   lostV: number
+  /** The run's highest current. [A] */
+  mostA: number
   /** Junction voltages of the weakest group at the run's highest and lowest current. [V] */
   lowX: number
   highX: number
@@ -62,6 +64,8 @@ interface Point {
 
 const NOTHING: OperatingPoint = { W: 0, V: 0, A: 0 }
 const MOST_STEPS = 100
+/** Newton's last move over the thermal voltage: its square is the error left. */
+const CLOSE_ENOUGH = 1e-8
 
 /**
  * The string's groups in the light and temperature that each panel has.
@@ -90,6 +94,7 @@ function runsOf(groups: LitGroup[]): Run[] {
     runs.push({
       on: ranked.slice(0, k + 1).map((each) => each.group),
       lostV: ranked.slice(k + 1).reduce((sum, each) => sum + each.group.dropV, 0),
+      mostA: pastA,
       lowX: pastA * group.diode.seriesOhm - group.dropV / group.cells,
       highX: junctionV(group.diode, nextA),
     })
@@ -129,7 +134,7 @@ function fallingRoot(run: Run, f: (point: Point) => { value: number; slope: numb
     if (!(next > lowX && next < highX)) next = 0.5 * (lowX + highX)
     const move = next - x
     x = next
-    if (Math.abs(move) <= 1e-11 * scale) break
+    if (Math.abs(move) <= CLOSE_ENOUGH * scale) break
   }
   return pointOf(run, x)
 }
@@ -144,7 +149,8 @@ function growth({ I, Ix, Ixx, V, VI, VII }: Point): { value: number; slope: numb
  * Best point of cells in series in unequal light: the best over every set of groups that can carry the current.
  *
  * A group gives way to its bypass diodes when the current would push its voltage below their drop. Between such currents
- * power has one hill; the highest hill is the answer. Exact; one group alone is its cells' own best point.
+ * power has one hill; the highest hill is the answer, and hills that cannot be higher are not climbed. Exact; one group
+ * alone is its cells' own best point.
  *
  * @returns point of one row of cells: W, V over the whole series, A. All dark gives exactly 0 W
  * @source Bishop 1988 for the cell's curve; bypass rule worked by hand
@@ -155,7 +161,8 @@ export function bestOfGroups(groups: LitGroup[]): OperatingPoint {
     return { W: best.W * groups[0].cells, V: best.V * groups[0].cells, A: best.A }
   }
   let best = NOTHING
-  for (const run of runsOf(groups)) {
+  for (const run of runsOf(groups).reverse()) {
+    if (run.mostA * pointOf(run, run.highX).V <= best.W) continue
     const a = run.on[run.on.length - 1].diode.thermalV
     const top = fallingRoot(run, growth, run.highX - a * Math.log1p(Math.max(0, run.highX) / a))
     if (top.I * top.V > best.W) best = { W: top.I * top.V, V: top.V, A: top.I }

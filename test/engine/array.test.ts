@@ -264,6 +264,9 @@ describe('the lifted array', () => {
     const nose = liftedNormal({ pitchRad: 10 * RAD, rollRad: 0 }, 0, 90 * RAD, 90 * RAD)
     const want = [Math.cos(10 * RAD), Math.sin(10 * RAD), 0]
     nose.forEach((part, i) => expect(part).toBeCloseTo(want[i], 12))
+    const leaning = liftedNormal({ pitchRad: 10 * RAD, rollRad: 0 }, 0, 40 * RAD, 0)
+    const wantLeaning = [0, Math.sin(50 * RAD), Math.cos(50 * RAD)]
+    leaning.forEach((part, i) => expect(part).toBeCloseTo(wantLeaning[i], 12))
     const panels = [panel(), panel({ lifts: false })]
     const got = harvestOf(array({ panels }), [{ zenithDeg: 60, dhi: 0, ghi: 450, lifted: true }])
     expect(got.planeWm2[0][0]).toBeCloseTo(900, 9)
@@ -286,9 +289,10 @@ describe('the strings of the array', () => {
   ])
   const strings = [string([{ panel: 0, cellsInSeries: 38 }]), string([{ panel: 1, cellsInSeries: 38 }]), spanning]
 
-  it('read their panel’s light and warmth; equal strings give the same, tables within 0.04 % of exact', () => {
+  it('read their panel’s light and warmth, dust and rows; equal strings give the same, tables within 0.04 % of exact', () => {
     const instants = [{ headingDeg: 20 }, { headingDeg: 200 }, { zenithDeg: 80, dni: 200, dhi: 40, ghi: 75 }]
-    const model = array({ panels, strings: [...strings, { ...strings[1], name: 'twin' }] })
+    const dusty = string([{ panel: 1, cellsInSeries: 20 }], { cellsInParallel: 2, soilingFraction: 0.07 })
+    const model = array({ panels, strings: [...strings, { ...strings[1], name: 'twin' }, dusty] })
     const table = harvestOf(model, instants)
     const exact = harvestOf(model, instants, true)
     expect(table.bestW[3]).toEqual(table.bestW[1])
@@ -304,6 +308,7 @@ describe('the strings of the array', () => {
         expect(Math.abs(exact.bestW[s][i] / best.W - 1)).toBeLessThan(1e-12)
         expect(Math.abs(exact.bestV[s][i] / best.V - 1)).toBeLessThan(1e-12)
         expect(Math.abs(table.bestW[s][i] / best.W - 1)).toBeLessThan(4e-4)
+        expect(Math.abs(table.bestV[s][i] / best.V - 1)).toBeLessThan(4e-4)
       }),
     )
   })
