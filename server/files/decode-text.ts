@@ -12,7 +12,7 @@ export function decodeText(bytes: Uint8Array): Decoded {
   if (tooLarge !== null) return { problems: [tooLarge] }
   const encoding = encodingOf(bytes)
   const text = decoded(bytes, encoding)
-  if (text !== null) return { text }
+  if (text !== null) return { text: text.replace(/^\uFEFF/, '') }
   return { problems: [badBytes(bytes, encoding)] }
 }
 
@@ -29,7 +29,7 @@ function encodingOf(bytes: Uint8Array): Encoding {
 
 function decoded(bytes: Uint8Array, encoding: Encoding, isWhole = true): string | null {
   try {
-    return new TextDecoder(encoding, { fatal: true }).decode(bytes, { stream: !isWhole })
+    return new TextDecoder(encoding, { fatal: true, ignoreBOM: true }).decode(bytes, { stream: !isWhole })
   } catch {
     return null
   }
@@ -44,10 +44,13 @@ function badBytes(bytes: Uint8Array, encoding: Encoding): Problem {
     if (decoded(bytes.subarray(0, middle), encoding, middle > bytes.length) === null) bad = middle
     else good = middle
   }
-  const before = (decoded(bytes.subarray(0, good), encoding, false) ?? '').split(/\r\n|\r|\n/)
+  // The last byte of the prefix may begin the letter that goes wrong; whole letters end at `whole`.
+  const text = decoded(bytes.subarray(0, good), encoding, false) ?? ''
+  const whole = encoding === 'utf-8' ? new TextEncoder().encode(text).length : text.length * 2
+  const before = text.replace(/^\uFEFF/, '').split(/\r\n|\r|\n/)
   return {
     field: 'file',
-    value: good < bytes.length ? `byte 0x${bytes[good].toString(16).padStart(2, '0')}` : 'the end of the file',
+    value: `byte 0x${bytes[Math.min(whole, bytes.length - 1)].toString(16).padStart(2, '0')}`,
     detail: `expected text as UTF-8 or UTF-16; this byte is not ${encoding.toUpperCase()}. Save the file as UTF-8`,
     line: before.length,
     column: before[before.length - 1].length + 1,

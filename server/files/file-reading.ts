@@ -44,16 +44,20 @@ export function problemList(): ProblemList {
   }
 }
 
+export interface NoticeList {
+  add(notice: Notice): void
+  list(): Notice[]
+}
+
 /** Collects notices; after the first hundred one last notice says how many more there are. */
-export function noticeList(): { add(notice: Notice): void; list(): Notice[] } {
+export function noticeList(): NoticeList {
   const kept: Notice[] = []
   let count = 0
   return {
     add(notice) {
       if (++count <= MOST_PROBLEMS) kept.push(notice)
     },
-    list: () =>
-      count <= MOST_PROBLEMS ? kept : [...kept, { detail: `and ${count - MOST_PROBLEMS} more notices of this kind` }],
+    list: () => (count <= MOST_PROBLEMS ? kept : [...kept, { detail: `and ${count - MOST_PROBLEMS} more notices` }]),
   }
 }
 

@@ -1,5 +1,5 @@
 import { asLabel } from './file-reading.ts'
-import type { Notice } from './file-reading.ts'
+import type { NoticeList } from './file-reading.ts'
 import type { Waypoint } from './gpx-points.ts'
 import type { PlaceOnRoute } from './route-reading.ts'
 import { eastwardDeg, rad } from './trace.ts'
@@ -12,7 +12,7 @@ const MOST_PLACES = 300
 const M_PER_DEG = 111_195
 
 /** Brings waypoints to the nearest point of the road; of a road that passes twice the first pass counts. */
-export function placesOnRoute(waypoints: Waypoint[], notices: { add(notice: Notice): void }) {
+export function placesOnRoute(waypoints: Waypoint[], notices: NoticeList) {
   return (trace: Trace, along: Float64Array): PlaceOnRoute[] => {
     if (waypoints.length > MOST_PLACES)
       notices.add({ detail: `${waypoints.length} waypoints: only the first ${MOST_PLACES} are looked at` })

@@ -2,7 +2,7 @@ import { routeDocument } from '../documents/route.ts'
 import type { RouteDocument, RouteInput } from '../documents/route.ts'
 import { climbM, fillHeights, smoothHeights } from './elevation.ts'
 import { checkedReading } from './file-reading.ts'
-import type { FileReading, Notice, ProblemList } from './file-reading.ts'
+import type { FileReading, NoticeList, ProblemList } from './file-reading.ts'
 import { alongM, boundsOf, checkTrace, chosen, repeatsNotice, withoutRepeats } from './trace.ts'
 import type { Bounds, Trace } from './trace.ts'
 
@@ -37,7 +37,7 @@ export interface RouteParts {
 export function routeOf(
   raw: Trace,
   parts: RouteParts,
-  found: { notices: { add(n: Notice): void; list(): Notice[] }; problems: ProblemList },
+  found: { notices: NoticeList; problems: ProblemList },
 ): RouteReading {
   const { notices, problems } = found
   const kept = withoutRepeats(raw)
@@ -53,6 +53,7 @@ export function routeOf(
     ...(heights && { elevation: heights.elevation }),
     stretches: parts.stretches?.(along, kept) ?? [],
   }
+  if (problems.count > 0) return { problems: problems.list() }
   const summary: RouteSummary = {
     lengthKm: along[along.length - 1] / 1000,
     points: trace.latDeg.length,
@@ -64,7 +65,7 @@ export function routeOf(
   return checkedReading(routeDocument, input, { notices: notices.list(), summary })
 }
 
-function heightsOf(trace: Trace, along: Float64Array, notices: { add(n: Notice): void }) {
+function heightsOf(trace: Trace, along: Float64Array, notices: NoticeList) {
   if (trace.elevationM.every(Number.isNaN)) {
     notices.add({ detail: 'no heights in the file: the route has none, and no climb' })
     return undefined

@@ -75,7 +75,10 @@ export function walkXml(text: string, root: string, listener: XmlListener, probl
     if (!isOver && closed !== undefined) listener.close(closed.at.path, closed.text, closed.place)
   })
 
-  for (let i = 0; i < text.length && !isOver; i += CHUNK) parser.write(text.slice(i, i + CHUNK))
+  for (let i = 0; i < text.length; i += CHUNK) {
+    if (isOver) return
+    parser.write(text.slice(i, i + CHUNK))
+  }
   if (!isOver) parser.close()
 }
 

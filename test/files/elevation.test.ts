@@ -1,4 +1,4 @@
-import fc from 'fast-check'
+import * as fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
 import { climbM, fillHeights, smoothHeights } from '../../server/files/elevation.ts'
 import { smoothingSpline } from '../../server/files/smoothing-spline.ts'
@@ -79,7 +79,7 @@ describe('the smoothing of recorded heights', () => {
   it('takes a car at rest as one point', () => {
     const along = Float64Array.from([
       ...evenly(50, 10),
-      ...new Array<number>(500).fill(490.5),
+      ...Array.from({ length: 500 }, () => 490.5),
       ...evenly(50, 10).map((s) => s + 500),
     ])
     const recorded = along.map((s, i) => 100 + 0.02 * s + (i >= 50 && i < 550 ? (i % 2) - 0.5 : 0))

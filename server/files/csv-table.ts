@@ -1,0 +1,69 @@
+import { shownValue } from '../documents/problem.ts'
+import type { CsvRow } from './csv-cells.ts'
+import { csvRows } from './csv-cells.ts'
+import { overLimit, problemList } from './file-reading.ts'
+import type { ProblemList } from './file-reading.ts'
+
+export const DELIMITERS = [',', ';', '\t', '|'] as const
+export type Delimiter = (typeof DELIMITERS)[number]
+
+export interface Table {
+  delimiter: Delimiter
+  header: CsvRow
+  rows: CsvRow[]
+}
+
+const SNIFFED_ROWS = 20
+
+/** The table of a text, its delimiter found or given; null when there is none, and the problems say why. */
+export function csvTable(text: string, given: Delimiter | undefined, problems: ProblemList): Table | null {
+  const tooLarge = overLimit(text.length)
+  if (tooLarge !== null) {
+    problems.add(tooLarge)
+    return null
+  }
+  const body = text.replace(/^\uFEFF/, '')
+  const delimiter = given ?? sniffed(body)
+  const [header, ...rows] = csvRows(body, delimiter, problems)
+  if (problems.count > 0) return null
+  if (header === undefined || header.cells.length < 2) {
+    problems.add({
+      field: 'table',
+      value: shownValue(header?.cells[0]),
+      detail: 'expected a first line with the names of at least 2 columns, parted by comma, semicolon, tab or |',
+      line: header?.line ?? 1,
+      column: 1,
+    })
+    return null
+  }
+  for (const row of rows) checkWidth(row, header, problems)
+  if (rows.length === 0)
+    problems.add({ field: 'table', detail: 'expected rows under the header', line: header.line, column: 1 })
+  return problems.count > 0 ? null : { delimiter, header, rows }
+}
+
+/** The delimiter that gives the first rows the header's width, and of several the one that parts most. */
+function sniffed(text: string): Delimiter {
+  const scores = DELIMITERS.map((delimiter) => {
+    const [header, ...rows] = csvRows(text, delimiter, problemList(), SNIFFED_ROWS + 1)
+    const width = header?.cells.length ?? 0
+    if (width < 2) return { delimiter, share: -1, width }
+    const share = rows.filter((row) => row.cells.length === width).length / Math.max(rows.length, 1)
+    return { delimiter, share, width }
+  })
+  return scores.sort((a, b) => b.share - a.share || b.width - a.width)[0].delimiter
+}
+
+/** Cells too many are let pass when they are empty: some programs end each line with a delimiter. */
+function checkWidth(row: CsvRow, header: CsvRow, problems: ProblemList): void {
+  const { length } = row.cells
+  const wanted = header.cells.length
+  if (length === wanted || (length > wanted && row.cells.slice(wanted).every((cell) => cell === ''))) return
+  problems.add({
+    field: 'table',
+    value: `${length} cells`,
+    detail: `expected ${wanted} cells as in the header; a name or value with the delimiter in it must stand in quotes`,
+    line: row.line,
+    column: row.columns[Math.min(wanted, length - 1)],
+  })
+}
