@@ -48,11 +48,9 @@ export function raceCourse(race: RaceDocument, routes: Record<string, RouteDocum
     const road = points.get(stage.route) ?? roadOf(route)
     points.set(stage.route, road)
     return {
-      field: `${field}.toKm`,
       points: road.points,
       stretches: stretchesOf(route, stage.route, road.lengthM),
-      fromM: stage.fromKm * 1000,
-      toM: stage.toKm === undefined ? road.lengthM : Math.min(stage.toKm * 1000, nearEnd(stage.toKm, road.lengthM)),
+      ...stretchOfRoad(stage, field, road.lengthM),
       roughnessM: route.roughnessM,
       limitMps: route.limitKmh / 3.6,
     }
@@ -60,9 +58,24 @@ export function raceCourse(race: RaceDocument, routes: Record<string, RouteDocum
   return course(roads)
 }
 
-/** People round lengths: a stage may end up to 100 m beyond the last point and then ends on it. */
-const nearEnd = (toKm: number, lengthM: number): number =>
-  toKm * 1000 <= lengthM + 100 ? lengthM : Number.POSITIVE_INFINITY
+/** People round lengths: a stage may end so far beyond the last point and then ends on it. [M] */
+const ROUNDING_M = 100
+
+function stretchOfRoad(stage: StageDocument, field: string, lengthM: number): { fromM: number; toM: number } {
+  const check = (name: 'fromKm' | 'toKm', isGood: boolean): void => {
+    if (!isGood)
+      throw new InputError(
+        'off-the-route',
+        `${field}.${name}`,
+        `${stage[name]} given; expected a place on the route, which is ${(lengthM / 1000).toFixed(3)} km long`,
+      )
+  }
+  const fromM = stage.fromKm * 1000
+  const toM = stage.toKm === undefined ? lengthM : stage.toKm * 1000
+  check('fromKm', fromM < lengthM)
+  check('toKm', toM <= lengthM + ROUNDING_M)
+  return { fromM, toM: Math.min(toM, lengthM) }
+}
 
 function roadOf(route: RouteDocument): { points: RoadPoints; lengthM: number } {
   const { latDeg, lonDeg, elevationM } = route.points

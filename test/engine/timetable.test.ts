@@ -16,7 +16,6 @@ function road(stages: number): Course {
   const lengthM = 111_319.49
   return course(
     Array.from({ length: stages }, (_, i) => ({
-      field: `stage ${i}`,
       points,
       stretches: [],
       fromM: i * lengthM,
