@@ -86,6 +86,13 @@ export function prepareArray(model: ArrayModel): PreparedArray {
     tables.set(key, table)
     return table
   }
+  const covers = new Map<IncidenceLaw, Float64Array>()
+  const coverOf = (law: IncidenceLaw): Float64Array | null => {
+    if (law === 'none') return null
+    const table = covers.get(law) ?? incidenceTable(law)
+    covers.set(law, table)
+    return table
+  }
   const kinds = model.strings.map((string) => JSON.stringify({ ...string, name: '' }))
   return {
     model,
@@ -93,7 +100,7 @@ export function prepareArray(model: ArrayModel): PreparedArray {
       pitchRad: panel.pitchRad,
       rollRad: panel.rollRad,
       lifts: panel.lifts,
-      beamTable: panel.incidence === 'none' ? null : incidenceTable(panel.incidence),
+      beamTable: coverOf(panel.incidence),
       losesDiffuse: panel.incidence !== 'none' && panel.diffuseIncidence !== 'none',
       loss: heatLoss(panel.cooling),
     })),

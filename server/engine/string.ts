@@ -161,7 +161,9 @@ export function bestOfGroups(groups: LitGroup[]): OperatingPoint {
     return { W: best.W * groups[0].cells, V: best.V * groups[0].cells, A: best.A }
   }
   let best = NOTHING
-  for (const run of runsOf(groups).reverse()) {
+  const runs = runsOf(groups)
+  for (let r = runs.length - 1; r >= 0; r--) {
+    const run = runs[r]
     if (run.mostA * pointOf(run, run.highX).V <= best.W) continue
     const a = run.on[run.on.length - 1].diode.thermalV
     const top = fallingRoot(run, growth, run.highX - a * Math.log1p(Math.max(0, run.highX) / a))
