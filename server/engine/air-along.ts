@@ -76,9 +76,9 @@ function liftedAlong(columns: Given[], { lapseCPerM }: AirSource, along: Along, 
 /** `standardPressurePa` at each step. */
 function standardPressureAlong({ count, altM }: Along): Float64Array {
   const pressurePa = new Float64Array(count)
-  const slots = nearbySlots(2)
+  const slots = nearbySlots(7)
   for (let i = 0; i < count; i++)
-    pressurePa[i] = 100 * powerNear(slots, 0, (44331.514 - altM[i]) / 11880.516, 1 / 0.1902632)
+    pressurePa[i] = 100 * powerNear(slots, 0, (44331.514 - altM[i]) * (1 / 11880.516), 1 / 0.1902632)
   return pressurePa
 }
 

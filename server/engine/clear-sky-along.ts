@@ -1,7 +1,8 @@
 import { asinNear, cotNear, expNear, nearbySlots, powerNear } from './nearby.ts'
-import { type Along, extraterrestrialWm2, refractionScale } from './sun.ts'
+import { type Along, extraterrestrialWm2, refractionScale, type SunDirections } from './sun.ts'
 
 const DEG = 180 / Math.PI
+const RAD = Math.PI / 180
 const HALF_TURN = Math.PI / 2
 const DAY_MS = 86_400_000
 /** Sine of the altitude below which SPA has no refraction: -0.83337 deg. */
@@ -32,28 +33,16 @@ export interface AirAlong {
  * Apparent sun, air mass and clear sky at each step: `refractionRad`, `relativeAirMass` and `clearSkyWm2` in one
  * pass, each costly function followed by a series around a recent value (`nearby.ts`); within 1e-7 of them.
  *
- * @param up     sine of the sun's true altitude (count)
+ * @param sun    true direction towards the sun (count)
  * @param along  instants and heights
  * @param air    pressure, temperature and Linke turbidity (count each)
  * @source see refractionRad, relativeAirMass, clearSkyWm2
  */
-export function clearSkyAlong(up: Float64Array, along: Along, air: AirAlong): ClearSkyAlong {
+export function clearSkyAlong(sun: SunDirections, along: Along, air: AirAlong): ClearSkyAlong {
   const sky = emptySky(along.count)
-  const horizon = nearbySlots(12)
-  const light = nearbySlots(12)
-  let day = Number.NaN
-  let extraWm2 = 0
-  for (let i = 0; i < along.count; i++) {
-    if (Math.floor(along.atMs[i] / DAY_MS) !== day) {
-      day = Math.floor(along.atMs[i] / DAY_MS)
-      extraWm2 = extraterrestrialWm2(along.atMs[i])
-    }
-    sky.extraWm2[i] = extraWm2
-    const cosZenith = apparentSun(sky, i, up[i], refractionScale(air.pressurePa[i], air.airC[i]), horizon)
-    if (!(cosZenith > 0)) continue
-    const airMass = (sky.airMass[i] * air.pressurePa[i]) / 101_325
-    clearLight(sky, i, light, cosZenith, airMass, air.linke[i], along.altM[i])
-  }
+  const cosZenith = apparentSunAlong(sky, sun, air)
+  setExtraterrestrial(sky.extraWm2, along.atMs)
+  setClearLight(sky, cosZenith, along.altM, air)
   return sky
 }
 
@@ -66,43 +55,65 @@ const emptySky = (count: number): ClearSkyAlong => ({
   dhiWm2: new Float64Array(count),
 })
 
-/** Sets apparent zenith and air mass of a step; returns the cosine of the apparent zenith. */
-function apparentSun(sky: ClearSkyAlong, i: number, up: number, scale: number, slots: Float64Array): number {
-  const flat = Math.sqrt(Math.max(1 - up * up, 0))
-  const altitude = asinNear(slots, 0, up, flat)
-  const deg = altitude * DEG
-  const lift =
-    up < REFRACTION_ENDS ? 0 : scale * REFRACTION_RAD * cotNear(slots, 3, (deg + 10.3 / (deg + 5.11)) / DEG)
-  const zenith = Math.abs(HALF_TURN - altitude - lift)
-  const q = lift * lift
-  const cosZenith = up * (1 - q * (0.5 - q / 24)) + flat * lift * (1 - q / 6)
-  sky.apparentZenithRad[i] = zenith
-  sky.airMass[i] =
-    cosZenith > 0
-      ? 1 / (cosZenith + 0.50572 * powerNear(slots, 5, 96.07995 - zenith * DEG, -1.6364))
-      : HORIZON_AIR_MASS
+function setExtraterrestrial(extraWm2: Float64Array, atMs: Float64Array): void {
+  let dayMs = Number.NaN
+  let now = 0
+  for (let i = 0; i < extraWm2.length; i++) {
+    const since = atMs[i] - dayMs
+    if (!(since >= 0 && since < DAY_MS)) {
+      dayMs = Math.floor(atMs[i] / DAY_MS) * DAY_MS
+      now = extraterrestrialWm2(atMs[i])
+    }
+    extraWm2[i] = now
+  }
+}
+
+/** Sets apparent zenith and air mass; returns the cosine of the apparent zenith at each step. */
+function apparentSunAlong(sky: ClearSkyAlong, sun: SunDirections, air: AirAlong): Float64Array {
+  const { apparentZenithRad, airMass } = sky
+  const { east, north, up } = sun
+  const { pressurePa, airC } = air
+  const cosZenith = new Float64Array(up.length)
+  const slots = nearbySlots(12)
+  for (let i = 0; i < up.length; i++) {
+    const flat = Math.sqrt(east[i] * east[i] + north[i] * north[i])
+    const altitude = asinNear(slots, 0, up[i], flat)
+    const deg = altitude * DEG
+    const lift =
+      up[i] < REFRACTION_ENDS
+        ? 0
+        : refractionScale(pressurePa[i], airC[i]) *
+          REFRACTION_RAD *
+          cotNear(slots, 3, (deg + 10.3 / (deg + 5.11)) * RAD)
+    const q = lift * lift
+    const cosine = up[i] * (1 - q * (1 / 2 - q * (1 / 24))) + flat * lift * (1 - q * (1 / 6))
+    const zenith = Math.abs(HALF_TURN - altitude - lift)
+    cosZenith[i] = cosine
+    apparentZenithRad[i] = zenith
+    airMass[i] =
+      cosine > 0 ? 1 / (cosine + 0.50572 * powerNear(slots, 5, 96.07995 - zenith * DEG, -1.6364)) : HORIZON_AIR_MASS
+  }
   return cosZenith
 }
 
-/** Sets the clear sky's irradiance of a step; the equations stand in `clearSkyWm2`. */
-function clearLight(
-  sky: ClearSkyAlong,
-  i: number,
-  slots: Float64Array,
-  cosZenith: number,
-  airMass: number,
-  linke: number,
-  altM: number,
-): void {
-  const extraWm2 = sky.extraWm2[i]
-  const fh1 = expNear(slots, 0, -altM / 8000)
-  const fh2 = expNear(slots, 2, -altM / 1250)
-  const depth = (3.92e-5 * altM + 0.0387) * airMass * (fh1 + fh2 * (linke - 1))
-  const ghi = (5.09e-5 * altM + 0.868) * extraWm2 * cosZenith * expNear(slots, 4, -depth)
-  const direct = extraWm2 * (0.664 + 0.163 / fh1) * expNear(slots, 6, -0.09 * airMass * (linke - 1))
-  const scattered = (0.1 - 0.2 * expNear(slots, 8, -linke)) / (0.1 + 0.882 / fh1)
-  const horizontal = Math.min(direct * cosZenith, ghi * Math.max(1 - scattered, 0))
-  sky.ghiWm2[i] = ghi
-  sky.dniWm2[i] = horizontal / cosZenith
-  sky.dhiWm2[i] = ghi - horizontal
+/** Sets the clear sky's irradiance while the sun is up; the equations stand in `clearSkyWm2`. */
+function setClearLight(sky: ClearSkyAlong, cosZenith: Float64Array, altM: Float64Array, air: AirAlong): void {
+  const { airMass, extraWm2, ghiWm2, dniWm2, dhiWm2 } = sky
+  const { pressurePa, linke } = air
+  const slots = nearbySlots(10)
+  for (let i = 0; i < cosZenith.length; i++) {
+    if (!(cosZenith[i] > 0)) continue
+    const absolute = airMass[i] * pressurePa[i] * (1 / 101_325)
+    const fh1 = expNear(slots, 0, altM[i] * (-1 / 8000))
+    const fh2 = expNear(slots, 2, altM[i] * (-1 / 1250))
+    const depth = (3.92e-5 * altM[i] + 0.0387) * absolute * (fh1 + fh2 * (linke[i] - 1))
+    const ghi = (5.09e-5 * altM[i] + 0.868) * extraWm2[i] * cosZenith[i] * expNear(slots, 4, -depth)
+    const direct = extraWm2[i] * (0.664 + 0.163 / fh1) * expNear(slots, 6, -0.09 * absolute * (linke[i] - 1))
+    const scattered = ((0.1 - 0.2 * expNear(slots, 8, -linke[i])) * fh1) / (0.1 * fh1 + 0.882)
+    const limit = ghi * Math.max(1 - scattered, 0)
+    const isDirect = direct * cosZenith[i] <= limit
+    ghiWm2[i] = ghi
+    dniWm2[i] = isDirect ? direct : limit / cosZenith[i]
+    dhiWm2[i] = ghi - (isDirect ? direct * cosZenith[i] : limit)
+  }
 }

@@ -84,7 +84,7 @@ function clearSkyAt(source: LightSource, times: number[]): { clear: ClearSkyAlon
     altM: all(place.altM),
   }
   const air = airAlong({ places: [place], weights: null, linkeDefault, lapseCPerM }, along)
-  return { clear: clearSkyAlong(sunAlong(source.path, along).up, along, air), air }
+  return { clear: clearSkyAlong(sunAlong(source.path, along), along, air), air }
 }
 
 /** The lit parts between the times of a scan, cut at sunrise and sunset; an instant gives a stretch of no length. */

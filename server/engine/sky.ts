@@ -159,7 +159,7 @@ export function weatherAlong(sky: Sky, path: SunPath, along: Along): Weather {
   const source = { ...sky, weights: placeWeights(sky.places, along) }
   const sun = sunAlong(path, along)
   const { linke, ...air } = airAlong(source, along)
-  const clear: ClearSkyAlong = clearSkyAlong(sun.up, along, { ...air, linke })
+  const clear: ClearSkyAlong = clearSkyAlong(sun, along, { ...air, linke })
   lightAlong(source, along, sun.up, clear)
   const densityKgM3 = new Float64Array(along.count)
   for (let i = 0; i < along.count; i++) densityKgM3[i] = airDensityKgM3(air.pressurePa[i], air.airC[i], air.vapourPa[i])

@@ -88,7 +88,7 @@ export function refractionRad(trueAltitudeRad: number, pressurePa: number, airC:
 
 /** Local air's refraction over that of Saemundsson's air (1010 hPa, 10 °C). */
 export const refractionScale = (pressurePa: number, airC: number): number =>
-  (pressurePa / 101_000) * (283 / (273 + airC))
+  (pressurePa * (283 / 101_000)) / (273 + airC)
 
 /**
  * The sun's direction in the earth's frame, ready for `sunAlong`.
@@ -159,7 +159,7 @@ export function sunAlong(path: SunPath, along: Along): SunDirections {
     turnNear(slots, 5, lonRad[i])
     const outward = slots[9] * x + slots[8] * y
     const geocentricUp = slots[4] * outward + slots[3] * z
-    const toUnit = 1 + PARALLAX_RAD * geocentricUp
+    const toUnit = (1.5 - 0.5 * (x * x + y * y + z * z)) * (1 + PARALLAX_RAD * geocentricUp)
     east[i] = (slots[9] * y - slots[8] * x) * toUnit
     north[i] = (slots[4] * z - slots[3] * outward) * toUnit
     up[i] = (geocentricUp - PARALLAX_RAD) * toUnit
