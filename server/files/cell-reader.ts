@@ -13,8 +13,8 @@ const UNITLESS = new Set<UnitKind>(['factor', 'turbidity'])
 export interface CellRules {
   /** Seconds that an energy per interval is spread over; NaN where the table has no even interval. [s] */
   intervalS?: number
-  /** How far out of range a value may lie and still be taken as the end of the range, in the document's unit. */
-  slack?: number
+  /** How far under and over the range a value may lie and still be taken as its end, in the document's unit. */
+  slack?: readonly [number, number]
   /** Told of each value that was brought to the end of the range. */
   onClamp?: () => void
 }
@@ -29,8 +29,8 @@ export function cellReader(decimal: Decimal, problems: ProblemList) {
     const value = tidy((raw * factor + offset) / (isPerInterval ? (rules.intervalS ?? Number.NaN) : 1))
     const [min, max] = [range.minValue ?? -Infinity, range.maxValue ?? Infinity]
     if (value >= min && value <= max) return value
-    const { slack = 0 } = rules
-    if (value >= min - slack && value <= max + slack) {
+    const [under, over] = rules.slack ?? [0, 0]
+    if (value >= min - under && value <= max + over) {
       rules.onClamp?.()
       return value < min ? min : max
     }

@@ -24,7 +24,8 @@ export function csvTable(text: string, given: Delimiter | undefined, problems: P
   }
   const body = text.replace(/^\uFEFF/, '')
   const delimiter = given ?? sniffed(body)
-  const [header, ...rows] = csvRows(body, delimiter, problems)
+  const [first, ...rows] = csvRows(body, delimiter, problems)
+  const header = headerFor(first, rows, delimiter)
   if (problems.count > 0) return null
   if (header === undefined || header.cells.length < 2) {
     problems.add({
@@ -45,13 +46,36 @@ export function csvTable(text: string, given: Delimiter | undefined, problems: P
 /** The delimiter that gives the first rows the header's width, and of several the one that parts most. */
 function sniffed(text: string): Delimiter {
   const scores = DELIMITERS.map((delimiter) => {
-    const [header, ...rows] = csvRows(text, delimiter, problemList(), SNIFFED_ROWS + 1)
+    const [first, ...rows] = csvRows(text, delimiter, problemList(), SNIFFED_ROWS + 1)
+    const header = headerFor(first, rows, delimiter)
     const width = header?.cells.length ?? 0
     if (width < 2) return { delimiter, share: -1, width }
     const share = rows.filter((row) => row.cells.length === width).length / Math.max(rows.length, 1)
     return { delimiter, share, width }
   })
   return scores.sort((a, b) => b.share - a.share || b.width - a.width)[0].delimiter
+}
+
+/**
+ * The header with names joined again that a delimiter inside brackets parted, like `GHI (W/m2, preceding hour)`, where
+ * that gives the width of the rows.
+ */
+function headerFor(header: CsvRow | undefined, rows: CsvRow[], delimiter: Delimiter): CsvRow | undefined {
+  const width = rows[0]?.cells.length
+  if (header === undefined || width === undefined || header.cells.length <= width) return header
+  const joined: CsvRow = { line: header.line, cells: [], columns: [] }
+  let isOpen = false
+  header.cells.forEach((cell, i) => {
+    if (isOpen) joined.cells[joined.cells.length - 1] += `${delimiter} ${cell}`
+    else {
+      joined.cells.push(cell)
+      joined.columns.push(header.columns[i])
+    }
+    const last = joined.cells[joined.cells.length - 1]
+    isOpen =
+      Math.max(last.lastIndexOf('('), last.lastIndexOf('[')) > Math.max(last.lastIndexOf(')'), last.lastIndexOf(']'))
+  })
+  return joined.cells.length === width ? joined : header
 }
 
 /** Cells too many are let pass when they are empty: some programs end each line with a delimiter. */

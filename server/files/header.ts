@@ -37,7 +37,7 @@ const MOST_UNIT_WORDS = 4
 export function matchHeader(header: string, spec: FieldSpec): HeaderMatch | null {
   const { words, parts } = headerParts(header)
   const said = conventionIn(words.join(' '))
-  const cut = said === undefined ? words : wordsBefore(words, said)
+  const cut = said === undefined ? words : wordsBeside(words, said)
   for (const candidate of said === undefined ? [words] : [words, cut]) {
     const named = nameAndUnit(candidate, spec)
     if (named === null) continue
@@ -77,14 +77,12 @@ function headerParts(header: string): { words: string[]; parts: string[] } {
 const conventionIn = (text: string): Averaging | undefined =>
   CONVENTIONS.find(([, pattern]) => pattern.test(text.toLowerCase()))?.[0]
 
-function wordsBefore(words: string[], said: Averaging): string[] {
+const FILLERS = new Set(['mean', 'average', 'avg', 'hour', 'hourly', 'minutes', 'min', 'interval', 'of', 'the', 'over'])
+
+/** The words without those that state the convention. */
+function wordsBeside(words: string[], said: Averaging): string[] {
   const pattern = CONVENTIONS.find(([name]) => name === said)?.[1] ?? /$^/
-  const before = words.slice(
-    0,
-    words.findIndex((word) => pattern.test(word)),
-  )
-  while (['mean', 'average', 'avg', 'hour', 'hourly', 'of', 'the'].includes(before[before.length - 1])) before.pop()
-  return before
+  return words.filter((word) => !pattern.test(word) && !FILLERS.has(word))
 }
 
 function nameAndUnit(words: string[], spec: FieldSpec): { unit?: Unit } | null {

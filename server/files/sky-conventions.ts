@@ -15,6 +15,7 @@ type Conventions = Partial<Record<SkyColumn, Averaging>>
 
 /**
  * What each column's stamps speak for: as the options say for the column, else its header, else the options' default.
+ * P10 and P90 go with their column.
  * Light and cloud without any of these are problems, since an hour's shift of the sun is no small error; other columns
  * are taken as of the instant.
  */
@@ -24,13 +25,15 @@ export function conventions(
   found: { problems: ProblemList; notices: NoticeList },
 ): Conventions {
   const result: Conventions = {}
-  for (const [field, column] of columns) {
+  const basesFirst = [...columns].sort(([a], [b]) => Number(baseOf(a) !== a) - Number(baseOf(b) !== b))
+  for (const [field, column] of basesFirst) {
     const base = baseOf(field)
     const wished = wishes.perColumn?.[base]
     const place = { line: column.line, column: column.column }
     if (wished !== undefined && column.convention !== undefined && wished !== column.convention)
       found.notices.add({ detail: `${column.header}: taken as ${wished}, as wished`, ...place })
-    const convention = wished ?? column.convention ?? wishes.default ?? (LIGHT.has(base) ? undefined : 'instant')
+    const convention =
+      wished ?? column.convention ?? result[base] ?? wishes.default ?? (LIGHT.has(base) ? undefined : 'instant')
     const problem = convention === undefined ? unstated(base) : doubt(convention, result[base], column)
     if (problem !== null)
       found.problems.add({ field: base, value: shownValue(column.header), detail: problem, ...place })

@@ -10,7 +10,12 @@ import { skyRange } from './sky-table.ts'
 import type { SkyValue } from './sky-table.ts'
 
 /** Sensors read a little under zero at night and a little over full damp; farther out is a fault of the table. */
-const SLACK: Partial<Record<SkyValue, number>> = { ghiWm2: 20, dniWm2: 20, dhiWm2: 20, humidityPct: 5 }
+const SLACK: Partial<Record<SkyValue, readonly [number, number]>> = {
+  ghiWm2: [20, 0],
+  dniWm2: [20, 0],
+  dhiWm2: [20, 0],
+  humidityPct: [0, 5],
+}
 
 const COMPASS = 'N NNE NE ENE E ESE SE SSE S SSW SW WSW W WNW NW NNW'.split(' ')
 const NO_DIRECTION = new Set(['CALM', 'C', 'VRB', 'VAR'])
