@@ -1,7 +1,11 @@
 import type { BudgetDocument } from '../server/documents/budget.ts'
 import type { Problem } from '../server/documents/problem.ts'
 import type { StageDocument } from '../server/documents/race.ts'
+import type { RouteDocument } from '../server/documents/route.ts'
+import type { SkyDocument } from '../server/documents/sky.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
+import type { RouteSummary } from '../server/files/route-reading.ts'
+import type { SkyTableOptions } from '../server/files/sky-table.ts'
 
 export type Kind = 'cars' | 'races' | 'skies' | 'routes'
 
@@ -38,11 +42,14 @@ export interface Notice {
 }
 
 /** What became of a file: the document in it with what was noticed on the way. */
-export interface ReadFile {
-  document: Record<string, unknown> & { name: string }
+export interface ReadFile<D, S> {
+  document: D
   notices: Notice[]
-  summary?: Record<string, unknown>
+  summary?: S
 }
+
+export type ReadRoute = ReadFile<RouteDocument, RouteSummary>
+export type ReadSky = ReadFile<SkyDocument, unknown>
 
 export interface Saved extends Item {
   notices?: Notice[]
@@ -68,39 +75,52 @@ const NO_CONTACT: Refusal = {
 /** Called after every exchange: whether the service answered at all. */
 export const contact = { heard: (_isHeard: boolean): void => {} }
 
-async function ask<T>(path: string, init?: RequestInit): Promise<Answer<T>> {
-  let response: Response
+type Exchange = { response: Response; refusal?: undefined } | { response?: undefined; refusal: Refusal }
+
+async function exchange(path: string, init?: RequestInit): Promise<Exchange> {
   try {
-    response = await fetch(path, init)
+    const response = await fetch(path, init)
+    contact.heard(true)
+    return response.ok ? { response } : { refusal: await refusalOf(response) }
   } catch (error) {
-    if (init?.signal?.aborted === true) return { refusal: { ...NO_CONTACT, code: 'given-up' } }
-    contact.heard(false)
-    return { refusal: { ...NO_CONTACT, detail: error instanceof Error ? error.message : NO_CONTACT.detail } }
+    return { refusal: lost(error, init) }
   }
-  contact.heard(true)
-  const text = await response.text().catch(() => '')
-  const body = parsed(text)
-  if (response.ok) return { value: body as T }
-  return { refusal: refusalOf(response, body) }
 }
 
-function parsed(text: string): unknown {
+function lost(error: unknown, init?: RequestInit): Refusal {
+  if (init?.signal?.aborted === true) return { ...NO_CONTACT, code: 'given-up' }
+  contact.heard(false)
+  return { ...NO_CONTACT, detail: error instanceof Error ? error.message : NO_CONTACT.detail }
+}
+
+/** Asks for something that comes as JSON. */
+async function ask<T extends object>(path: string, init?: RequestInit): Promise<Answer<T>> {
+  const got = await exchange(path, init)
+  if (got.response === undefined) return got
   try {
-    return text === '' ? null : JSON.parse(text)
-  } catch {
-    return null
+    const value: T = await got.response.json()
+    return { value }
+  } catch (error) {
+    return { refusal: lost(error, init) }
   }
 }
 
-function refusalOf(response: Response, body: unknown): Refusal {
-  const told = (body ?? {}) as Partial<Refusal>
-  return {
+/** Asks for something to be done that has no answer of its own. */
+async function tell(path: string, init: RequestInit): Promise<Answer<true>> {
+  const got = await exchange(path, init)
+  return got.response === undefined ? got : { value: true }
+}
+
+async function refusalOf(response: Response): Promise<Refusal> {
+  const plain = {
     status: response.status,
-    code: told.code ?? `status-${response.status}`,
-    title: told.title ?? 'The service refused this',
-    detail: told.detail ?? `It answered ${response.status} ${response.statusText}.`,
-    errors: Array.isArray(told.errors) ? told.errors : [],
+    code: `status-${response.status}`,
+    title: 'The service refused this',
+    detail: `It answered ${response.status} ${response.statusText}.`,
+    errors: [],
   }
+  const told: Partial<Refusal> | null = await response.json().catch(() => null)
+  return { ...plain, ...told, errors: told?.errors ?? [] }
 }
 
 const json = (body: unknown, headers: Record<string, string> = {}): RequestInit => ({
@@ -117,13 +137,13 @@ async function itemsOf<T>(path: string): Promise<Answer<T[]>> {
   return answer.value === undefined ? answer : { value: answer.value.items }
 }
 
-export const documentOf = (kind: Kind, id: string): Promise<Answer<Item & { document: Record<string, unknown> }>> =>
+export const documentOf = (kind: Kind, id: string): Promise<Answer<Item & { document: object }>> =>
   ask(`${BASE}/${kind}/${id}`)
 
 export const budgetOf = (request: ForecastRequest, signal: AbortSignal): Promise<Answer<BudgetDocument>> =>
   ask(`${BASE}/forecast`, { method: 'POST', signal, ...json(request) })
 
-export const exampleOf = (kind: string): Promise<Answer<unknown>> => ask(`${BASE}/examples/${kind}`)
+export const exampleOf = (kind: string): Promise<Answer<object>> => ask(`${BASE}/examples/${kind}`)
 
 /** Saves a document: as a new one without a version, over that version with one. */
 export const save = (kind: Kind, id: string, document: unknown, version: number | null): Promise<Answer<Saved>> =>
@@ -132,20 +152,17 @@ export const save = (kind: Kind, id: string, document: unknown, version: number 
     ...json(document, version === null ? {} : { 'if-match': `"${version}"` }),
   })
 
-export const remove = (kind: Kind, item: Item): Promise<Answer<null>> =>
-  ask(`${BASE}/${kind}/${item.id}`, { method: 'DELETE', headers: { 'if-match': `"${item.version}"` } })
+export const remove = (kind: Kind, item: Item): Promise<Answer<true>> =>
+  tell(`${BASE}/${kind}/${item.id}`, { method: 'DELETE', headers: { 'if-match': `"${item.version}"` } })
 
 /** Reads a file without storing anything: its document, or every problem with line and column. */
-export const readFile = (
-  kind: 'routes' | 'skies',
-  file: Blob,
-  type: string,
-  options: Record<string, string> = {},
-): Promise<Answer<ReadFile>> =>
-  ask(`${BASE}/${kind}/read?${new URLSearchParams(options)}`, {
-    method: 'POST',
-    headers: { 'content-type': type },
-    body: file,
-  })
+const read = <T extends object>(kind: Kind, file: Blob, type: string, query: URLSearchParams): Promise<Answer<T>> =>
+  ask(`${BASE}/${kind}/read?${query}`, { method: 'POST', headers: { 'content-type': type }, body: file })
 
-export const isServiceUp = (): Promise<Answer<unknown>> => ask('/api/health', { cache: 'no-store' })
+export const readRoute = (file: Blob, type: string): Promise<Answer<ReadRoute>> =>
+  read('routes', file, type, new URLSearchParams())
+
+export const readSky = (file: Blob, type: string, options: SkyTableOptions | null): Promise<Answer<ReadSky>> =>
+  read('skies', file, type, new URLSearchParams(options === null ? {} : { options: JSON.stringify(options) }))
+
+export const isServiceUp = (): Promise<Answer<true>> => tell('/api/health', { cache: 'no-store' })

@@ -94,7 +94,7 @@ export const shownMarginWh = (day: DayBudget): number => round10(day.lowest.wh) 
 function above(day: DayBudget): Phrase {
   const shownWh = shownMarginWh(day)
   if (shownWh < 10) return [', down to the reserve on the way']
-  return [', never less than ', energy(day.marginWh, shownWh), ' above the reserve']
+  return [', at least ', energy(day.marginWh, shownWh), ' above reserve']
 }
 
 /** Where the clock stops the car: on the road, or in a stop that goes on the next day. */

@@ -111,7 +111,7 @@ async function work(question: string): Promise<void> {
   running?.abort()
   const mine = new AbortController()
   running = mine
-  const { race, car, sky, date, speeds } = JSON.parse(question) as Choice
+  const { race, car, sky, date, speeds }: Choice = JSON.parse(question)
   workingSinceMs.value = Date.now()
   const answer = await budgetOf({ race: { id: race }, car: { id: car }, sky: { id: sky }, date, speeds }, mine.signal)
   if (mine.signal.aborted) return
@@ -137,8 +137,11 @@ const noDay = (date: string): Refusal => ({
 
 function isSameTrip(last: Worked | null, question: string): boolean {
   if (last === null) return false
-  const [a, b] = [last.question, question].map((text) => ({ ...(JSON.parse(text) as Choice), speeds: null }))
-  return JSON.stringify(a) === JSON.stringify(b)
+  const [a, b] = [last.question, question].map((text) => {
+    const { race, car, sky, date }: Choice = JSON.parse(text)
+    return [race, car, sky, date].join(' ')
+  })
+  return a === b
 }
 
 const question = computed(() => {

@@ -1,6 +1,6 @@
 import { scaleLinear } from 'd3-scale'
 import type { DayBudget } from '../../server/documents/budget.ts'
-import { clockAt, grouped } from '../format.ts'
+import { clockAt, grouped, THIN } from '../format.ts'
 
 export type AxisMode = 'time' | 'distance'
 
@@ -134,5 +134,6 @@ function distanceTicks(kms: { km: number; x: number }[], roadKm: number, roadWid
     for (let km = Math.ceil(from.km / everyKm) * everyKm; km <= to.km; km += everyKm)
       ticks.push({ x: from.x + (km - from.km) * perKm, text: grouped(km) })
   }
+  if (ticks.length > 0) ticks[ticks.length - 1].text += `${THIN}km`
   return ticks
 }

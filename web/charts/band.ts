@@ -19,8 +19,8 @@ export interface Bin {
 const BIN_MS = 10 * 60_000
 const NEAR_MS = 4 * 60_000
 
-const path = line<Point>()
-const steps = line<Point>().curve(curveStepAfter)
+const path = line()
+const steps = line().curve(curveStepAfter)
 
 /** Bins of ten minutes, cut where the car starts and stops, each the mean of its own energy. */
 export function powerBins(day: DayBudget): Bin[] {
@@ -73,11 +73,11 @@ function binEdges(day: DayBudget): number[] {
 /** Highest power of the bins, in or out: both share one scale. */
 export const mostW = (bins: Bin[]): number => Math.max(100, ...bins.map((bin) => Math.max(bin.inW, bin.outW)))
 
-/** Watts to pixels away from the zero line; the tallest bin leaves a tenth of the half free. */
+/** Watts to pixels away from the zero line; the tallest bin ends before a usual reserve, which is no power limit. */
 export const powerScale = (bins: Bin[]): ((w: number) => number) =>
   scaleLinear()
     .domain([0, mostW(bins)])
-    .range([0, PLOT.half * 0.9])
+    .range([0, PLOT.half * 0.74])
 
 /** Percent of charge to its height in the plot: 100 % at the top, 0 % at the bottom. */
 export const chargeY = (top: number): ((pct: number) => number) =>

@@ -10,7 +10,8 @@ import { textWidth } from './text-width.ts'
 
 type Gate = DayBudget['gates'][number]
 
-const RIGHT = 36
+/** Room beside the plot for the battery’s scale. [px] */
+const scaleRoom = (): number => Math.ceil(textWidth(`100${THIN}%`, '400 12px')) + 7
 
 /** Harvest, spending and battery on one axis from dawn to dusk, over the road’s height. */
 export function DayBand({ day }: { day: DayBudget }) {
@@ -20,12 +21,12 @@ export function DayBand({ day }: { day: DayBudget }) {
   const frame = useRef<HTMLDivElement>(null)
   useLayoutEffect(() => {
     const element = frame.current
-    if (element === null) return
+    if (element === null) return undefined
     const watch = new ResizeObserver(() => (width.value = Math.max(240, element.clientWidth)))
     watch.observe(element)
     return () => watch.disconnect()
   }, [])
-  const axis = useMemo(() => bandAxis(day, mode.value, width.value - RIGHT), [day, mode.value, width.value])
+  const axis = useMemo(() => bandAxis(day, mode.value, width.value - scaleRoom()), [day, mode.value, width.value])
   const at = readMs.value !== null && readMs.value >= axis.fromMs && readMs.value <= axis.toMs ? readMs.value : null
   const reading = at === null ? null : readingAt(day, at)
   return (
@@ -106,9 +107,9 @@ function Plot({ day, axis, width, reading, onRead }: PlotProps) {
   const top = lane.tiers * TIER_PX + 4
   const zero = top + PLOT.half
   const height = top + PLOT.foot
-  const read = (event: PointerEvent): void => {
-    const box = (event.currentTarget as SVGSVGElement).getBoundingClientRect()
-    onRead(axis.atMs(Math.min(axis.width, Math.max(0, ((event.clientX - box.left) / box.width) * width))))
+  const read = (clientX: number, plot: SVGSVGElement): void => {
+    const box = plot.getBoundingClientRect()
+    onRead(axis.atMs(Math.min(axis.width, Math.max(0, ((clientX - box.left) / box.width) * width))))
   }
   return (
     <svg
@@ -118,8 +119,10 @@ function Plot({ day, axis, width, reading, onRead }: PlotProps) {
       role="img"
       aria-label={bandText(day)}
       class="band"
-      onPointerDown={read}
-      onPointerMove={(event) => (event.buttons > 0 || event.pointerType === 'mouse') && read(event)}
+      onPointerDown={(event) => read(event.clientX, event.currentTarget)}
+      onPointerMove={(event) =>
+        (event.buttons > 0 || event.pointerType === 'mouse') && read(event.clientX, event.currentTarget)
+      }
     >
       <Stops day={day} axis={axis} top={top} />
       <Power day={day} axis={axis} zero={zero} />

@@ -1,5 +1,5 @@
 import { useSignal } from '@preact/signals'
-import { type Answer, type ReadFile, readFile } from '../api.ts'
+import { type Answer, type ReadRoute, readRoute } from '../api.ts'
 import { fileType } from '../files.ts'
 import { grouped, kmText } from '../format.ts'
 import { Conflict } from './conflict.tsx'
@@ -10,7 +10,7 @@ import { SaveForm } from './save-form.tsx'
 
 interface Read {
   file: string
-  answer: Answer<ReadFile>
+  answer: Answer<ReadRoute>
 }
 
 /** A route from a GPX or CSV file: read first, shown with what was found, then saved. */
@@ -20,7 +20,7 @@ export function AddRoute() {
   const take = async (file: File): Promise<void> => {
     reading.value = file.name
     read.value = null
-    const answer = await readFile('routes', file, fileType(file.name))
+    const answer = await readRoute(file, fileType(file.name))
     if (reading.value !== file.name) return
     reading.value = null
     read.value = { file: file.name, answer }
@@ -51,20 +51,20 @@ export function AddRoute() {
   )
 }
 
-function Preview({ file, read }: { file: string; read: ReadFile }) {
-  const { document, summary = {}, notices } = read
-  const elevation = document.elevation as { method: string } | undefined
-  const places = Array.isArray(summary.places) ? (summary.places as { name: string; km: number }[]) : []
+function Preview({ file, read }: { file: string; read: ReadRoute }) {
+  const { document, summary, notices } = read
+  const { elevation } = document
+  const places = summary?.places ?? []
   return (
     <div class="preview" data-preview>
       <p>
         <b>{file}</b> is readable. Nothing is stored yet.
       </p>
       <dl>
-        <Fact label="Length" value={summary.lengthKm} unit="km" text={kmText} />
-        <Fact label="Points" value={summary.points} unit="" text={grouped} />
-        <Fact label="Climb as recorded" value={summary.climbBeforeM} unit="m" text={grouped} />
-        <Fact label="Climb after smoothing" value={summary.climbAfterM} unit="m" text={grouped} />
+        <Fact label="Length" value={summary?.lengthKm} unit="km" text={kmText} />
+        <Fact label="Points" value={summary?.points} unit="" text={grouped} />
+        <Fact label="Climb as recorded" value={summary?.climbBeforeM} unit="m" text={grouped} />
+        <Fact label="Climb after smoothing" value={summary?.climbAfterM} unit="m" text={grouped} />
       </dl>
       {elevation === undefined ? (
         <p class="note">No heights in the file: the road is taken as level.</p>
@@ -82,7 +82,7 @@ function Preview({ file, read }: { file: string; read: ReadFile }) {
 
 interface FactProps {
   label: string
-  value: unknown
+  value: number | null | undefined
   unit: string
   text: (value: number) => string
 }

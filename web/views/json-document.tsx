@@ -1,7 +1,7 @@
 import { useSignal } from '@preact/signals'
-import { documentOf, exampleOf, type Item, type Kind, type Refusal } from '../api.ts'
+import { type Answer, documentOf, exampleOf, type Item, type Kind, type Refusal } from '../api.ts'
 import { download } from '../download.ts'
-import { parseDocument } from '../json-problem.ts'
+import { parseDocument } from '../json-document.ts'
 import { Conflict } from './conflict.tsx'
 import { Field, FileField, SelectField } from './field.tsx'
 import { Problems } from './problems.tsx'
@@ -21,11 +21,9 @@ export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
   const parsed = text.value.trim() === '' ? null : parseDocument(text.value)
   const document = parsed !== null && 'document' in parsed ? parsed.document : null
   const from = async (id: string): Promise<void> => {
-    const stored = id === '' ? await exampleOf(word) : await documentOf(kind, id)
-    refused.value = stored.refusal ?? null
-    if (stored.value === undefined) return
-    const found = id === '' ? stored.value : (stored.value as { document: unknown }).document
-    text.value = JSON.stringify(found, null, 2)
+    const got = id === '' ? await exampleOf(word) : await stored(kind, id)
+    refused.value = got.refusal ?? null
+    if (got.value !== undefined) text.value = JSON.stringify(got.value, null, 2)
   }
   return (
     <details class="more" data-add={kind}>
@@ -74,4 +72,9 @@ export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
       </div>
     </details>
   )
+}
+
+async function stored(kind: Kind, id: string): Promise<Answer<object>> {
+  const got = await documentOf(kind, id)
+  return got.value === undefined ? got : { value: got.value.document }
 }

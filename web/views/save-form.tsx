@@ -8,7 +8,7 @@ import { Notices } from './problems.tsx'
 
 interface SaveProps {
   kind: Kind
-  document: Record<string, unknown>
+  document: object
   name: string
   onSaved?: (id: string) => void
 }

@@ -2,7 +2,7 @@ import type { DayBudget } from '../../server/documents/budget.ts'
 import type { SpeedsInput } from '../../server/documents/speeds.ts'
 import { legSpeed, ownSpeed, withLeg } from '../legs.ts'
 import { comparison } from '../sentence.ts'
-import { before, choice, trySpeeds, worked, workingSinceMs } from '../state.ts'
+import { before, choice, trySpeeds, workingSinceMs } from '../state.ts'
 import { Stepper } from './stepper.tsx'
 
 type Way = 'meet-target' | 'constant' | 'legs'
@@ -36,7 +36,7 @@ export function SpeedPanel({ day }: { day: DayBudget }) {
         </div>
       </div>
       {speeds.kind === 'legs' ? <Legs day={day} speeds={speeds} /> : <OneSpeed day={day} speeds={speeds} />}
-      <Change />
+      <Change day={day} />
     </section>
   )
 }
@@ -53,19 +53,11 @@ function turnedTo(way: Way, speeds: SpeedsInput, day: DayBudget): SpeedsInput {
 /** One speed for the day; taking a step away from the fastest one holds that speed. */
 function OneSpeed({ day, speeds }: { day: DayBudget; speeds: SpeedsInput }) {
   return (
-    <>
-      <Stepper
-        label="Speed to hold"
-        kmh={ownSpeed(speeds, day.heldKmh, day.stages)}
-        onChange={(speedKmh) => trySpeeds({ kind: 'constant', speedKmh })}
-      />
-      {speeds.kind === 'meet-target' && (
-        <p class="note">
-          The fastest that meets the {day.target === null ? 'reserve' : 'target'}
-          {day.speedsTried > 0 && `, of ${day.speedsTried} speeds tried`}. A step holds another.
-        </p>
-      )}
-    </>
+    <Stepper
+      label="Speed to hold"
+      kmh={ownSpeed(speeds, day.heldKmh, day.stages)}
+      onChange={(speedKmh) => trySpeeds({ kind: 'constant', speedKmh })}
+    />
   )
 }
 
@@ -76,7 +68,7 @@ function Legs({ day, speeds }: { day: DayBudget; speeds: Extract<SpeedsInput, { 
         <li key={stage.id}>
           <span>
             {stage.name}
-            <span class="note"> to {stage.finish}</span>
+            {!stage.name.includes(stage.finish) && <span class="note"> to {stage.finish}</span>}
           </span>
           <Stepper
             label={`Speed on ${stage.name}`}
@@ -89,14 +81,18 @@ function Legs({ day, speeds }: { day: DayBudget; speeds: Extract<SpeedsInput, { 
   )
 }
 
-/** What the last try changed, in the place where it was made. */
-function Change() {
-  const now = worked.value?.day
-  const text = now === undefined || workingSinceMs.value !== null ? null : comparison(before.value, now)
-  const last = now === undefined ? null : comparison(before.value, now)
+/** What the last try changed, or what the speed shown is. */
+function Change({ day }: { day: DayBudget }) {
+  const text = comparison(before.value, day)
+  const isWaiting = workingSinceMs.value !== null
   return (
-    <p class={text === null ? 'change waits' : 'change'} role="status" id="change">
-      {last ?? 'Try a speed: the day follows.'}
+    <p class={isWaiting || text === null ? 'change waits' : 'change'} role="status" id="change">
+      {text ?? standing(day)}
     </p>
   )
 }
+
+const standing = (day: DayBudget): string =>
+  day.speedsTried > 0 && day.outcome.kind !== 'no-speed-meets-target'
+    ? `Fastest that meets the ${day.target === null ? 'reserve' : 'target'}; step to try another.`
+    : 'Step to try another speed.'

@@ -37,7 +37,8 @@ function StageRow({ stage }: { stage: Stage }) {
   return (
     <li>
       <p class="what">
-        <b>{stage.name}</b> {stage.start} to {stage.finish}
+        <b>{stage.name}</b>
+        {!stage.name.includes(stage.finish) && ` ${stage.start} to ${stage.finish}`}
       </p>
       <p class="when">
         <span class="n">{clock(stage.departAt)}</span>–<span class="n">{clock(stage.arriveAt)}</span>

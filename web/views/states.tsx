@@ -7,14 +7,14 @@ import { Problems } from './problems.tsx'
 export const Ruling = () => <div class="ruling" aria-hidden="true" />
 
 const NAMES = { races: 'a race', cars: 'a car', skies: 'a sky' } as const
+const KINDS = ['races', 'cars', 'skies'] as const
 
 /** Nothing to work out yet: what is missing, what is in, one main step. */
 export function Empty() {
   const { races = [], cars = [], skies = [] } = lists.value ?? {}
   const counts = { races: races.length, cars: cars.length, skies: skies.length }
-  const kinds = Object.keys(NAMES) as (keyof typeof NAMES)[]
-  const missing = kinds.filter((kind) => counts[kind] === 0).map((kind) => NAMES[kind])
-  const present = kinds.filter((kind) => counts[kind] > 0).map((kind) => NAMES[kind])
+  const missing = KINDS.filter((kind) => counts[kind] === 0).map((kind) => NAMES[kind])
+  const present = KINDS.filter((kind) => counts[kind] > 0).map((kind) => NAMES[kind])
   return (
     <div class="pad">
       <h1 class="say">No budget yet.</h1>
