@@ -1,0 +1,35 @@
+// Figures for people; what is timed is checked by the measures of the tests, and nothing passes or fails by its time.
+import { execFileSync } from 'node:child_process'
+import { readdirSync, readFileSync } from 'node:fs'
+import { fileURLToPath } from 'node:url'
+import { gzipSync } from 'node:zlib'
+
+const START = fileURLToPath(new URL('../../server/start.mjs', import.meta.url))
+const ASSETS = new URL('../../dist/web/', import.meta.url)
+
+execFileSync(process.execPath, [START, '--build-only'], { stdio: ['ignore', 'ignore', 'inherit'] })
+const { chainBench } = await import('./chain.mjs')
+const { dayBench } = await import('./day.mjs')
+const { startUpBench } = await import('./start-up.mjs')
+
+const say = (what, figure, note) => console.log(`${what.padEnd(46)} ${figure.padStart(12)}  ${note}`)
+const ms = (value) => `${value.toFixed(2)} ms`
+
+const chain = chainBench()
+say(
+  'chain day at 1 s steps, one thread',
+  ms(chain.ms),
+  `${chain.steps} steps, 3 panels, ${chain.totalWh.toFixed(2)} Wh`,
+)
+const modified = chainBench('physical')
+say('the same with incidence losses', ms(modified.ms), `${modified.totalWh.toFixed(2)} Wh`)
+const day = dayBench()
+say('forecast of a 600 km day, one thread', ms(day.ms), `${day.steps} steps, 3 strings`)
+say('fastest speed that meets the target', ms(day.searchMs), `${day.tried} speeds tried`)
+say('chain day over 600 km day', (chain.ms / day.ms).toFixed(2), 'ratio in this run')
+const { firstS, secondS } = await startUpBench()
+say('first start, demo race loaded', `${firstS.toFixed(1)} s`, 'empty data folder, already built')
+say('second start', `${secondS.toFixed(1)} s`, '')
+const files = readdirSync(ASSETS, { recursive: true }).filter((name) => /\.(js|css)$/.test(name))
+const bytes = files.reduce((sum, name) => sum + gzipSync(readFileSync(new URL(name, ASSETS))).length, 0)
+say('client, JS and CSS, gzip', `${(bytes / 1000).toFixed(1)} kB`, `${files.length} files`)
