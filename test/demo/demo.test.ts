@@ -22,7 +22,7 @@ function read(entry: Entry): unknown {
   const { kind, file, query = {} } = entry
   if (file.endsWith('.json')) return demoJson(file)
   const reading =
-    kind === 'skies'
+    kind === 'sky'
       ? readCsvSky(demoText(file), skyTableOptions.parse(query))
       : file.endsWith('.gpx')
         ? readGpxRoute(demoText(file), query)
@@ -35,10 +35,10 @@ function demoBudget(speeds: unknown): BudgetDocument {
   const entries = demoJson('demo.json') as Entry[]
   const of = (kind: string) => entries.filter((e) => e.kind === kind)
   const { document, problems } = checkDocument(forecastRequest, {
-    car: read(of('cars')[0]),
-    race: read(of('races')[0]),
-    routes: Object.fromEntries(of('routes').map((e) => [e.id, read(e)])),
-    sky: read(of('skies')[0]),
+    car: read(of('car')[0]),
+    race: read(of('race')[0]),
+    routes: Object.fromEntries(of('route').map((e) => [e.id, read(e)])),
+    sky: read(of('sky')[0]),
     speeds,
   })
   if (document === undefined) throw new Error(JSON.stringify(problems))
