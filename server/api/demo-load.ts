@@ -1,0 +1,56 @@
+import { existsSync } from 'node:fs'
+import { readFile } from 'node:fs/promises'
+import { join } from 'node:path'
+import { z } from 'zod'
+import { checkDocument } from '../documents/check.ts'
+import { slug } from '../documents/quantity.ts'
+import type { Store } from '../store/store.ts'
+import type { Api } from './api.ts'
+import { pathOf } from './kinds.ts'
+
+const manifest = z.array(
+  z.strictObject({
+    kind: z.enum(['car', 'route', 'race', 'sky']),
+    id: slug('id to save under'),
+    file: z.string().regex(/^[\w.-]+$/, 'a file name beside the manifest'),
+    contentType: z.string(),
+    query: z.record(z.string(), z.string()).optional(),
+  }),
+)
+
+type Entry = z.output<typeof manifest>[number]
+
+/**
+ * Offers the demo race on an empty store: saves the files of `demo.json`, in order, through the same
+ * doors that a person uses. What goes wrong is said and stops nothing.
+ *
+ * @param warn  told one readable line
+ * @returns documents saved
+ */
+export async function loadDemo(app: Api, store: Store, demoDir: string, warn: (line: string) => void): Promise<number> {
+  const path = join(demoDir, 'demo.json')
+  if (!existsSync(path) || !(await store.isEmpty())) return 0
+  let saved = 0
+  try {
+    const { document: entries, problems } = checkDocument(manifest, JSON.parse(await readFile(path, 'utf8')))
+    if (problems !== undefined) throw new Error(problems.map(({ field, detail }) => `${field}: ${detail}`).join('; '))
+    for (const entry of entries) if (await saveEntry(app, entry, demoDir)) saved++
+  } catch (error) {
+    warn(`The demo race could not be loaded: ${error instanceof Error ? error.message : String(error)}`)
+  }
+  return saved
+}
+
+/** False where another process that starts at the same time was faster. */
+async function saveEntry(app: Api, { kind, id, file, contentType, query }: Entry, demoDir: string): Promise<boolean> {
+  const answer = await app.inject({
+    method: 'PUT',
+    url: `/api/v1/${pathOf(kind)}/${id}`,
+    query: query ?? {},
+    headers: { 'content-type': contentType },
+    payload: await readFile(join(demoDir, file)),
+  })
+  if (answer.statusCode === 428) return false
+  if (answer.statusCode === 201) return true
+  throw new Error(`${file} was answered ${answer.statusCode}: ${answer.body.slice(0, 500)}`)
+}

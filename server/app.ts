@@ -1,0 +1,143 @@
+import { existsSync } from 'node:fs'
+import { createServer, type RequestListener } from 'node:http'
+import { createServer as createTlsServer } from 'node:https'
+import { join } from 'node:path'
+import { constants } from 'node:zlib'
+import compress from '@fastify/compress'
+import helmet from '@fastify/helmet'
+import serveFiles from '@fastify/static'
+import underPressure from '@fastify/under-pressure'
+import Fastify from 'fastify'
+import type { ZodTypeProvider } from 'fastify-type-provider-zod'
+import type { ZodType } from 'zod'
+import { type Api, type Needs, SMALL_LIMIT } from './api/api.ts'
+import { dayRoutes } from './api/days.ts'
+import { docsRoutes } from './api/docs.ts'
+import { documentRoutes } from './api/documents.ts'
+import { exampleRoutes } from './api/examples.ts'
+import { checkPart } from './api/fault-of.ts'
+import { answerClientError, answerFaults, sendFault } from './api/faults.ts'
+import { forecastRoutes } from './api/forecasts.ts'
+import { guardChanges } from './api/guard.ts'
+import { healthRoutes } from './api/health.ts'
+import { KINDS } from './api/kinds.ts'
+import { describeApi } from './api/openapi.ts'
+import { previewRoute } from './api/previews.ts'
+import { statelessForecastRoute } from './api/stateless-forecast.ts'
+import { answerUnknown } from './api/unknown-address.ts'
+import { Fault } from './errors.ts'
+
+/** What the service is put together from. */
+export interface Parts extends Needs {
+  /** Address that is listened on. */
+  host: string
+  publicOrigin: string | null
+  tls: { cert: Buffer; key: Buffer } | null
+  /** Folder of the built client; null where there is none. */
+  webDir: string | null
+  /** Stylesheet of the page that describes the API. */
+  docsCss: string
+  logLevel: string
+}
+
+/** Longest time for a request to arrive: 24 MB at 1 Mbit/s take 192 s. [ms] */
+const REQUEST_MS = 300_000
+/** Delay of the event loop above which new work is refused. [ms] */
+const MOST_DELAY_MS = 2_000
+
+/** The service without a port: every route, its guards and its errors. */
+export async function buildApp(parts: Parts): Promise<Api> {
+  const app: Api = Fastify({
+    logger: { level: parts.logLevel, stream: process.stderr },
+    bodyLimit: SMALL_LIMIT,
+    return503OnClosing: false,
+    forceCloseConnections: 'idle',
+    frameworkErrors: sendFault,
+    serverFactory: (handler) => newServer(handler, parts.tls),
+    routerOptions: { maxParamLength: 100, ignoreTrailingSlash: false },
+  }).withTypeProvider<ZodTypeProvider>()
+  app.setValidatorCompiler<ZodType>(({ schema, httpPart }) => checkPart(schema, httpPart))
+  app.setSerializerCompiler(() => (data) => JSON.stringify(data))
+  answerFaults(app)
+  answerUnknown(app)
+  guardChanges(app, parts)
+  await protect(app, parts)
+  await describeApi(app, parts.version)
+  await app.register(async (api: Api) => addRoutes(api, parts), { prefix: '/api/v1' })
+  healthRoutes(app, parts)
+  docsRoutes(app, parts.docsCss)
+  await serveClient(app, parts.webDir)
+  await app.ready()
+  return app
+}
+
+function newServer(handler: RequestListener, tls: Parts['tls']) {
+  const options = { requestTimeout: REQUEST_MS, keepAliveTimeout: 72_000 }
+  const server = tls === null ? createServer(options, handler) : createTlsServer({ ...options, ...tls }, handler)
+  server.on('clientError', answerClientError)
+  return server
+}
+
+async function protect(app: Api, { tls }: Parts): Promise<void> {
+  let isStopping = false
+  app.addHook('preClose', async () => {
+    isStopping = true
+  })
+  app.addHook('onRequest', async () => {
+    if (isStopping) throw new Fault('stopping', 'The service is stopping; try again in a moment.')
+  })
+  await app.register(helmet, {
+    strictTransportSecurity: tls !== null,
+    contentSecurityPolicy: { useDefaults: false, directives: POLICY },
+  })
+  await app.register(compress, { brotliOptions: { params: { [constants.BROTLI_PARAM_QUALITY]: 4 } } })
+  await app.register(underPressure, {
+    maxEventLoopDelay: MOST_DELAY_MS,
+    // Whether the service runs is answered even then.
+    pressureHandler: async ({ url }) => {
+      if (url !== '/api/health') throw new Fault('overloaded', 'The service has too much to do; try again in a moment.')
+    },
+  })
+}
+
+const SELF = ["'self'"]
+
+/** Nothing from elsewhere, and no script or style inside a page. */
+const POLICY = {
+  defaultSrc: ["'none'"],
+  scriptSrc: SELF,
+  styleSrc: SELF,
+  imgSrc: ["'self'", 'data:'],
+  fontSrc: SELF,
+  connectSrc: SELF,
+  workerSrc: SELF,
+  manifestSrc: SELF,
+  baseUri: ["'none'"],
+  formAction: SELF,
+  frameAncestors: ["'none'"],
+}
+
+/** Each scope takes its own kinds of body. */
+function addRoutes(api: Api, needs: Needs): void {
+  for (const kind of KINDS) {
+    void api.register(async (scope: Api) => documentRoutes(scope, needs, kind))
+    if (kind.formats.length > 1) void api.register(async (scope: Api) => previewRoute(scope, needs, kind))
+  }
+  void api.register(async (scope: Api) => forecastRoutes(scope, needs))
+  void api.register(async (scope: Api) => statelessForecastRoute(scope, needs))
+  dayRoutes(api, needs)
+  exampleRoutes(api)
+}
+
+/** The client: files with a hash in their name never change, everything else is asked for again. */
+async function serveClient(app: Api, webDir: string | null): Promise<void> {
+  if (webDir === null || !existsSync(join(webDir, 'index.html'))) return
+  await app.register(serveFiles, {
+    root: webDir,
+    cacheControl: false,
+    setHeaders: (reply, path) => {
+      const isHashed = /[\\/]assets[\\/].*-[\w-]{8,}\.\w+$/.test(path)
+      reply.header('cache-control', isHashed ? 'public, max-age=31536000, immutable' : 'no-cache')
+    },
+  })
+}
