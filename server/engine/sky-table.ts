@@ -16,7 +16,8 @@ const COLUMN_RANGE = {
 } as const
 
 export type SkyColumn = keyof typeof COLUMN_RANGE
-export const SKY_COLUMNS = Object.keys(COLUMN_RANGE) as SkyColumn[]
+const isColumn = (name: string): name is SkyColumn => name in COLUMN_RANGE
+export const SKY_COLUMNS = Object.keys(COLUMN_RANGE).filter(isColumn)
 
 /** The time each row of a column speaks for; an instant has equal ends. */
 export interface Intervals {

@@ -1,4 +1,3 @@
-/// <reference path="./suncalc.d.ts" />
 import { getPosition } from 'suncalc'
 import { InputError } from './input-error.ts'
 import { nearbySlots, turnNear } from './nearby.ts'

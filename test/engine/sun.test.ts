@@ -32,6 +32,7 @@ describe.each(['solpos.csv', 'solpos_bands.csv'])('the sun agrees with NREL SPA 
     const lift = refractionRad(altitudeDeg * RAD, Number(row.pressure_pa), Number(row.temp_c)) / RAD
     return {
       altitudeDeg,
+      above: sun.altitudeRad / RAD - altitudeDeg,
       altitudeError: Math.abs(sun.altitudeRad / RAD - altitudeDeg),
       azimuthError: Math.abs(turnDeg(sun.azimuthRad / RAD, Number(row.azimuth_deg)) * Math.cos(altitudeDeg * RAD)),
       liftError: Math.abs(lift - (Number(row.app_elevation_deg) - altitudeDeg)),
@@ -45,6 +46,11 @@ describe.each(['solpos.csv', 'solpos_bands.csv'])('the sun agrees with NREL SPA 
 
   it('in true altitude within 0.02 degrees', () => {
     expect(worst(rows.map((row) => row.altitudeError))).toBeLessThan(0.02)
+  })
+
+  it('on average in altitude within 0.001 degrees, so that parallax (0.0024 degrees) is in it', () => {
+    const mean = rows.reduce((sum, row) => sum + row.above, 0) / rows.length
+    expect(Math.abs(mean)).toBeLessThan(0.001)
   })
 
   it('in azimuth times the cosine of altitude within 0.015 degrees', () => {
