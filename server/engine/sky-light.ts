@@ -6,7 +6,7 @@ import { type Along, refractionRad, type SunPath, sunAlong, trueSun } from './su
 import type { Span } from './time-curve.ts'
 
 /** Longest stretch integrated by one Gauss–Legendre rule of four points. [ms] */
-const CHUNK_MS = 900_000
+const CHUNK_MS = 1_800_000
 /** @source Abramowitz & Stegun, table 25.4, n = 4 */
 const GAUSS_AT = [-0.861136311594053, -0.339981043584856, 0.339981043584856, 0.861136311594053]
 const GAUSS_WEIGHT = [0.347854845137454, 0.652145154862546, 0.652145154862546, 0.347854845137454]
