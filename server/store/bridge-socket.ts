@@ -7,15 +7,11 @@ export interface EngineLine {
   leave(): void
 }
 
-// Long enough for the client to roll a transaction back while the socket still answers.
-const GRACE_MS = 25
-
 /**
  * The client's end of a connection to the embedded engine.
  *
- * When the engine stops, what is unanswered is answered by an error, and so is what the client sends in
- * the short time after; only then the socket closes. (The client cannot bear a socket that closes under a
- * statement: it would write its ROLLBACK to none.)
+ * When the engine stops, what is unanswered is answered by an error and the socket closes at once, before
+ * the client's callers hear of it: what they ask next goes to a new connection.
  */
 export class BridgeSocket extends Duplex {
   /** Read by the client before it says goodbye. */
@@ -24,7 +20,7 @@ export class BridgeSocket extends Duplex {
   #line: EngineLine | null
   #unanswered: Batch[] = []
   #stopped: { code: string; message: string } | null = null
-  #hasErred = false
+  #isUsed = false
   #isOver = false
 
   constructor(connect: (socket: BridgeSocket) => EngineLine | null) {
@@ -39,18 +35,21 @@ export class BridgeSocket extends Duplex {
     if (bytes.length > 0) this.push(Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength))
   }
 
-  /** The engine has stopped: refuses everything with this SQLSTATE code and message, then closes. */
+  /** The engine has stopped, or there is none: refuses with this SQLSTATE code and message, then closes. */
   stop(code: string, message: string): void {
     this.#line = null
     this.#stopped = { code, message }
-    for (const batch of this.#unanswered.splice(0)) this.#refuse(batch)
-    setTimeout(() => this.destroy(), GRACE_MS)
+    // A new connection's first message is still to come; its answer is the refusal.
+    if (this.#isUsed) this.#refuse()
   }
 
   override _read(): void {}
 
   override _write(bytes: Buffer, _encoding: string, done: (error?: Error | null) => void): void {
-    for (const batch of this.#cut(bytes)) this.#pass(batch)
+    // Not at once: the client cannot bear an answer before its call of `write` has returned.
+    queueMicrotask(() => {
+      for (const batch of this.#cut(bytes)) this.#pass(batch)
+    })
     done()
   }
 
@@ -70,17 +69,25 @@ export class BridgeSocket extends Duplex {
 
   #pass(batch: Batch): void {
     if (batch.isFarewell) return this.#leave()
-    if (this.#stopped !== null) return this.#refuse(batch)
+    this.#isUsed = true
     this.#unanswered.push(batch)
+    if (this.#stopped !== null) return this.#refuse()
     this.#line?.send(batch)
   }
 
-  /** One error for each group of batches that a Sync ends, as PostgreSQL does. */
-  #refuse(batch: Batch): void {
+  /** Answers each group of batches that a Sync ends by one error, as PostgreSQL does, and closes. */
+  #refuse(): void {
     if (this.#stopped === null || this.#isOver) return
-    if (!this.#hasErred) this.push(errorFrame(this.#stopped.code, this.#stopped.message))
-    this.#hasErred = !batch.isSync
-    if (batch.isSync) this.push(READY)
+    const { code, message } = this.#stopped
+    let isNew = true
+    for (const { isSync } of this.#unanswered.splice(0)) {
+      if (isNew) this.push(errorFrame(code, message))
+      if (isSync) this.push(READY)
+      isNew = isSync
+    }
+    // Read already, as a rule; where not, destroying would throw the answer away.
+    if (this.readableLength === 0) this.destroy()
+    else setImmediate(() => this.destroy())
   }
 
   #leave(): void {

@@ -42,6 +42,8 @@ export async function createDatabase(settings: EngineSettings): Promise<void> {
 
 /** Starts the engine's thread; resolves when the database is open. */
 export async function startEngine(settings: EngineSettings): Promise<EngineThread> {
+  // A thread that was ended at work has left the turn odd.
+  Atomics.store(new Int32Array(settings.counters), COUNTER.turn, 0)
   const worker = spawn(settings, 'serve')
   const sockets = new Map<number, BridgeSocket>()
   const say = (message: ToWorker): void => worker.postMessage(message, [])

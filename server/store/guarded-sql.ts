@@ -12,6 +12,8 @@ export type TransactionSql = postgres.TransactionSql
 /** One transaction of this process. */
 interface Scope {
   isOpen: boolean
+  /** What its work failed by, if it did. */
+  failure: { error: unknown } | null
 }
 
 /** What the client runs a statement by; internal to it, hence the narrow look. */
@@ -54,11 +56,19 @@ export function guardSql(raw: Sql): Sql {
 }
 
 async function begin(raw: Sql, first: string | Work, second?: Work): Promise<unknown> {
-  const scope: Scope = { isOpen: true }
-  const run = (work: Work) => (tx: TransactionSql) => scopes.run(scope, () => settled(scope, tx, work))
+  const scope: Scope = { isOpen: true, failure: null }
+  const note = (error: unknown): void => {
+    scope.failure = { error }
+  }
+  const run = (work: Work) => (tx: TransactionSql) => scopes.run(scope, () => settled(scope, tx, work, note))
   try {
     if (typeof first === 'function') return await raw.begin(run(first))
     return await raw.begin(first, run(second ?? (() => null)))
+  } catch (error) {
+    scope.isOpen = false
+    // A lost connection ends the transaction before its work hears why; the why says more.
+    await turn()
+    throw scope.failure === null ? error : scope.failure.error
   } finally {
     scope.isOpen = false
   }
@@ -68,30 +78,37 @@ async function begin(raw: Sql, first: string | Work, second?: Work): Promise<unk
  * The work's outcome; none at all when the connection was lost meanwhile, because the client would
  * answer any outcome by writing COMMIT or ROLLBACK to a closed socket.
  */
-async function settled(scope: Scope, tx: TransactionSql, work: Work): Promise<unknown> {
+async function settled(scope: Scope, tx: TransactionSql, work: Work, note: (error: unknown) => void): Promise<unknown> {
   const run = async (): Promise<unknown> => {
     const value = await work(guardTransaction(tx, scope))
     return Array.isArray(value) ? Promise.all(value) : value
   }
   const outcome = await run().then(
     (value) => () => value,
-    (error: unknown) => () => {
-      throw error
+    (error: unknown) => {
+      note(error)
+      return () => {
+        throw error
+      }
     },
   )
   // The loss of the connection is known one turn later than its failed statement.
-  await new Promise((resolve) => setImmediate(resolve))
+  await turn()
   if (!scope.isOpen) await new Promise(() => {})
   return outcome()
 }
 
 function guardTransaction(tx: TransactionSql, scope: Scope): TransactionSql {
-  const run = (work: Work) => (inner: TransactionSql) => settled(scope, inner, work)
+  // A savepoint's failure is its caller's to judge.
+  const run = (work: Work) => (inner: TransactionSql) => settled(scope, inner, work, () => {})
   return watched(tx, afterTransaction(scope), {
     savepoint: (first: string | Work, second?: Work) =>
       typeof first === 'function' ? tx.savepoint(run(first)) : tx.savepoint(first, run(second ?? (() => null))),
   })
 }
+
+/** One turn of the event loop. */
+const turn = (): Promise<void> => new Promise((resolve) => setImmediate(resolve))
 
 /** The client with a check before each statement, and with some of its members replaced. */
 function watched<T extends Sql | TransactionSql>(

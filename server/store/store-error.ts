@@ -51,9 +51,13 @@ const FAULTS: [codes: RegExp, code: StoreErrorCode, message: string][] = [
   [/^53100$/, 'data-folder-full', 'The disk of the database is full. Free some space, then try again.'],
   [/^57014$/, 'query-too-long', 'The database did not answer in time. Try again; if it stays so, look at its load.'],
   [/^25P03$/, 'transaction-ended', 'A transaction waited too long between two statements and was rolled back.'],
-  [/^57P0[1-5]$/, 'database-stopped', 'The database stopped and is starting again. Try again in a few seconds.'],
   [
-    /^(08...|53300|ECONN.*|EPIPE|ETIMEDOUT|EHOSTUNREACH|ENETUNREACH|ENOTFOUND|EAI_AGAIN|CONNECT_TIMEOUT|CONNECTION_.*)$/,
+    /^(57P0[1-5]|ECONNRESET|EPIPE|CONNECTION_(CLOSED|DESTROYED|ENDED))$/,
+    'database-stopped',
+    'The connection to the database was lost. Try again in a few seconds.',
+  ],
+  [
+    /^(08...|53300|ECONN.*|ETIMEDOUT|EHOSTUNREACH|ENETUNREACH|ENOTFOUND|EAI_AGAIN|CONNECT_TIMEOUT)$/,
     'database-unreachable',
     'The database cannot be reached. Check that it runs and that DATABASE_URL points at it, then try again.',
   ],
