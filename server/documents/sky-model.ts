@@ -96,15 +96,21 @@ function silences(sky: SkyDocument): string[] {
   ]
 }
 
-/** Rows that the engine could not take as they stood. */
+/** What the crew is told of rows that the engine could not take as they stood. */
+const ROW_NOTES = {
+  'light-while-dark': 'brings light while the sun is down; is its UTC offset right?',
+  'index-limited': 'brings more light than the sun can and was limited.',
+  'beam-over-global': 'brings more beam than global light; the beam was cut.',
+} as const
+
 function corrections(sky: SkyDocument, prepared: Sky): string[] {
-  return sky.places.flatMap((place, p) => {
-    const rows = new Set(prepared.notes.filter((note) => note.place === p).map((note) => note.row))
-    if (rows.size === 0) return []
-    return [
-      `${place.name}: irradiance of ${rows.size} ${rows.size === 1 ? 'row does' : 'rows do'} not fit the sun and was limited.`,
-    ]
-  })
+  return sky.places.flatMap((place, p) =>
+    (Object.keys(ROW_NOTES) as (keyof typeof ROW_NOTES)[]).flatMap((what) => {
+      const rows = new Set(prepared.notes.filter((n) => n.place === p && n.what === what).map((n) => n.row))
+      if (rows.size === 0) return []
+      return [`${place.name}: ${rows.size === 1 ? 'one row' : `${rows.size} rows, each`} ${ROW_NOTES[what]}`]
+    }),
+  )
 }
 
 /** The sky may end up to an hour inside a day; its nearest values then hold. */
