@@ -1,6 +1,7 @@
 import type { Race, DayForecast } from '../engine/forecast.ts'
 import { storedJ } from '../engine/battery.ts'
 import { ledger } from '../engine/ledger.ts'
+import type { Ledger } from '../engine/ledger.ts'
 import type { DayBudget } from './budget.ts'
 import { ledgerDocument } from './budget-ledger.ts'
 import { outcomeOf } from './budget-outcome.ts'
@@ -58,12 +59,6 @@ export function dayBudget(day: ForecastDay): DayBudget {
   const reserve = atCharge(race, race.car.reserveCharge)
   const target = day.targetCharge === null ? null : atCharge(race, day.targetCharge)
   const lowest = lowestOf(day)
-  const whole = ledger(
-    spans,
-    forecast.balance.spans,
-    spans.map((_, i) => i),
-    forecast,
-  )
   return {
     date: day.date,
     zone,
@@ -80,22 +75,30 @@ export function dayBudget(day: ForecastDay): DayBudget {
     marginWh: lowest.wh - reserve.wh,
     target,
     targetMarginWh: target === null ? null : closing.wh - target.wh,
-    ledger: ledgerDocument(whole, race.stages, day.stages),
+    ledger: ledgerDocument(wholeDay(forecast), race.stages, day.stages),
     stages: stageBudgets(day),
     gates: gatesOf(day),
-    spans: spans.map((s) => ({
-      kind: s.kind,
-      name: s.kind === 'drive' ? race.stages[s.stage].name : placeName(day, s.fromM),
-      from: localIso(s.fromMs, zone),
-      to: localIso(s.toMs, zone),
-      fromKm: dayKm(day, s.fromM),
-      toKm: dayKm(day, s.toM),
-    })),
+    spans: spansOf(day),
     trackers: trackersOf(day),
     penaltyMin: penaltyMin(day),
     series: seriesDocument(day),
   }
 }
+
+function wholeDay({ timetable, balance, openingJ, closingJ }: DayForecast): Ledger {
+  const { spans } = timetable
+  return ledger(spans, balance.spans, [...spans.keys()], { openingJ, closingJ })
+}
+
+const spansOf = (day: ForecastDay): DayBudget['spans'] =>
+  day.forecast.timetable.spans.map((s) => ({
+    kind: s.kind,
+    name: s.kind === 'drive' ? day.race.stages[s.stage].name : placeName(day, s.fromM),
+    from: localIso(s.fromMs, day.zone),
+    to: localIso(s.toMs, day.zone),
+    fromKm: dayKm(day, s.fromM),
+    toKm: dayKm(day, s.toM),
+  }))
 
 function lowestOf(day: ForecastDay): DayBudget['lowest'] {
   const { forecast, zone, race } = day
@@ -107,41 +110,43 @@ function lowestOf(day: ForecastDay): DayBudget['lowest'] {
 
 /** The places and times at which a crew compares its battery with the budget. */
 function gatesOf(day: ForecastDay): DayBudget['gates'] {
-  const { forecast, zone } = day
-  const { spans, isCutOff } = forecast.timetable
-  const { steps } = forecast
+  const { spans } = day.forecast.timetable
+  const gates = [gate(day, 'dawn', 0, 'start')]
+  const firstDrive = spans.findIndex((s) => s.kind === 'drive')
   const lastDrive = spans.findLastIndex((s) => s.kind === 'drive')
-  const gates: DayBudget['gates'] = []
-  const push = (kind: DayBudget['gates'][number]['kind'], atMs: number, placeM: number): void => {
-    const balance = balanceAt(day, stepBefore(steps.toMs, steps.count, atMs))
-    gates.push({ kind, name: placeName(day, placeM), at: localIso(atMs, zone), km: dayKm(day, placeM), ...balance })
-  }
-  const first = spans[0]
-  if (first === undefined) return gates
-  push('dawn', first.fromMs, first.fromM)
-  let hasStarted = false
   spans.forEach((span, i) => {
-    if (span.kind === 'drive' && !hasStarted) {
-      hasStarted = true
-      push('start', span.fromMs, span.fromM)
-    }
-    if (span.kind === 'stop') push('depart', span.toMs, span.toM)
+    if (i === firstDrive) gates.push(gate(day, 'start', i, 'start'))
+    if (span.kind === 'stop') gates.push(gate(day, isLeft(day, i) ? 'depart' : 'camp', i, 'end'))
     if (span.kind !== 'drive') return
-    if (i < lastDrive || spans[i + 1]?.kind === 'stop') push('arrive', span.toMs, span.toM)
-    else push(isCutOff ? 'camp' : 'finish', span.toMs, span.toM)
+    const isArrival = i < lastDrive || spans[i + 1]?.kind === 'stop'
+    const ending = day.forecast.timetable.isCutOff ? 'camp' : 'finish'
+    gates.push(gate(day, isArrival ? 'arrive' : ending, i, 'end'))
   })
-  const last = spans[spans.length - 1]
-  push('dusk', last.toMs, last.toM)
-  return gates
+  return [...gates, gate(day, 'dusk', spans.length - 1, 'end')]
 }
 
-/** Last step that ends at or before an instant, -1 where none does. */
-export function stepBefore(toMs: Float64Array, count: number, atMs: number): number {
+/** Whether a stop was stood to its end; the day's last may be cut in two by the end of the driving hours. */
+export function isLeft(day: ForecastDay, span: number): boolean {
+  const { spans, evening } = day.forecast.timetable
+  return evening.stopLeftS === 0 || spans.findLastIndex((s) => s.kind === 'stop') > span
+}
+
+function gate(day: ForecastDay, kind: DayBudget['gates'][number]['kind'], span: number, end: 'start' | 'end') {
+  const { fromMs, toMs, fromM, toM } = day.forecast.timetable.spans[span]
+  const [atMs, placeM, step] =
+    end === 'start' ? [fromMs, fromM, lastStepOf(day, span - 1)] : [toMs, toM, lastStepOf(day, span)]
+  const name = placeName(day, placeM)
+  return { kind, name, at: localIso(atMs, day.zone), km: dayKm(day, placeM), ...balanceAt(day, step) }
+}
+
+/** Last step of a span of the timetable; the one before its first step is the last of the span before. */
+export function lastStepOf(day: ForecastDay, span: number): number {
+  const { steps } = day.forecast
   let low = -1
-  let high = count - 1
+  let high = steps.count - 1
   while (low < high) {
     const middle = (low + high + 1) >> 1
-    if (toMs[middle] <= atMs + 1) low = middle
+    if (steps.span[middle] <= span) low = middle
     else high = middle - 1
   }
   return low

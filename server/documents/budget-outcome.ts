@@ -31,16 +31,19 @@ function runsFlat(day: ForecastDay): Outcome | null {
   const place = placeName(day, steps.fromM[i])
   const isEmpty = balance.charge[i] < 0.005
   const what = isEmpty ? 'The pack runs flat' : 'The pack cannot give the power asked of it'
-  return outcome('runs-flat', `${what} at ${place}, ${clock(steps.fromMs[i], day.zone)}.`, day, i)
+  const text = `${what} at ${place}, ${clock(steps.fromMs[i], day.zone)}.`
+  return { kind: 'runs-flat', text, at: localIso(steps.fromMs[i], day.zone), km: dayKm(day, steps.fromM[i]) }
 }
 
 function tooSteep(day: ForecastDay): Outcome | null {
-  const { blockedPiece, timetable, steps } = day.forecast
+  const { blockedPiece, timetable } = day.forecast
   if (blockedPiece < 0) return null
-  const km = dayKm(day, timetable.evening.placeM).toFixed(1)
+  const km = dayKm(day, timetable.evening.placeM)
   const gradePct = (Math.tan(day.race.course.pieces.gradeRad[blockedPiece]) * 100).toFixed(1)
-  const text = `The motor cannot pull the car on at km ${km}: the grade there is ${gradePct} %.`
-  return outcome('too-steep', text, day, steps.count - 1)
+  const text = `The motor cannot pull the car on at km ${km.toFixed(1)}: the grade there is ${gradePct} %.`
+  const last = timetable.spans.findLast((s) => s.kind === 'drive' || s.kind === 'stop')
+  const atMs = last?.toMs ?? day.race.days[day.dayIndex].drivingFromMs
+  return { kind: 'too-steep', text, at: localIso(atMs, day.zone), km }
 }
 
 function noSpeed(day: ForecastDay, { closing, target, reserve, lowest }: Figures): Outcome | null {
@@ -90,9 +93,4 @@ function arrived(day: ForecastDay): Outcome {
   const place = placeName(day, last.toM)
   const text = `${place} is reached ${clock(last.toMs, day.zone)}.`
   return { kind: 'done', text, at: localIso(last.toMs, day.zone), km: dayKm(day, last.toM) }
-}
-
-function outcome(kind: Outcome['kind'], text: string, day: ForecastDay, step: number): Outcome {
-  const { steps } = day.forecast
-  return { kind, text, at: localIso(steps.fromMs[step], day.zone), km: dayKm(day, steps.fromM[step]) }
 }

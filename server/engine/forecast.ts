@@ -118,6 +118,7 @@ function layOut(race: Race, dayIndex: number, standing: Standing, speedMps: Floa
   const pieceS = pieceTimesS(course, speedMps)
   const table = timetable(course, race.stages, race.days[dayIndex], { dayIndex, standing, pieceS })
   const cut = steps(course, table.spans, speedMps, pieceS)
+  if (race.car.array.model.stand === null) cut.lifted.fill(0)
   const weather = weatherAlong(race.sky, path, cut)
   return { course, timetable: table, steps: cut, weather, air: airAlong(course, cut, weather, race.car.windHeightM) }
 }

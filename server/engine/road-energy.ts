@@ -43,8 +43,8 @@ const bus: BusPower = { busW: 0, lossW: 0, brakedW: 0 }
  *
  * The work at the wheels is rolling, drag, climbing and the change of kinetic energy against the step
  * before; a drive starts from rest and is braked to rest at its end. Each expected halt brakes to rest
- * and accelerates again. `changeS` says how long a change of speed takes: in a step shorter than that the pack
- * sees the energy over that time, not as a blow.
+ * and accelerates again. `changeS` says how long a change of speed takes: in a step shorter than that motor
+ * and pack see the energy over that time, not as a blow.
  *
  * @param step  which step, its length, the speed in the step before (0 at a start), whether the car halts at its end
  * @param out   is filled and returned
@@ -67,12 +67,13 @@ export function roadEnergy(
   out.dragJ = dragN(load, speedMps, air.headwindMps[i], air.crosswindMps[i], air.densityKgM3[i]) * lengthM
   out.climbingJ = climbingN(load, steps.gradeRad[i]) * lengthM
   const movedJ = out.rollingJ + out.dragJ + out.climbingJ + kinetic - kineticJ(load, step.beforeMps)
-  wheelToBus(drive, movedJ / durationS, bus)
-  out.busJ = bus.busW * durationS
-  out.lossJ = bus.lossW * durationS
-  out.brakedJ = bus.brakedW * durationS
   const gainMps = speedMps - step.beforeMps
   out.changeS = gainMps > 0 ? gainMps / STARTING_MPS2 : -gainMps / BRAKING_MPS2
+  const overS = Math.max(durationS, out.changeS)
+  wheelToBus(drive, movedJ / overS, bus)
+  out.busJ = bus.busW * overS
+  out.lossJ = bus.lossW * overS
+  out.brakedJ = bus.brakedW * overS
   if (step.endsInHalt) out.changeS += speedMps / BRAKING_MPS2
   const halts = course.pieces.haltsPerM[piece] * lengthM
   if (halts > 0) addChange(out, drive, { kineticJ: kinetic, overS: speedMps / STARTING_MPS2, times: halts })

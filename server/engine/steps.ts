@@ -69,14 +69,14 @@ function emptySteps(most: number): Steps {
 
 /** Exact number of steps of a span, so that the arrays have no slack. */
 function stepsIn(course: Course, span: Span): number {
-  if (span.kind === 'drive') return lastPiece(course, span) - pieceAt(course, span.fromM) + 1
+  if (span.kind === 'drive') return lastPiece(course, span) - span.piece + 1
   return parkedEdgesMs(span).length - 1
 }
 
 /** The piece in which a drive ends; one that ends on an edge ends in the piece before it. */
 function lastPiece(course: Course, span: Span): number {
   const piece = pieceAt(course, span.toM)
-  return piece > pieceAt(course, span.fromM) && course.pieces.fromM[piece] >= span.toM ? piece - 1 : piece
+  return piece > span.piece && course.pieces.fromM[piece] >= span.toM ? piece - 1 : piece
 }
 
 function driveSteps(
@@ -89,7 +89,7 @@ function driveSteps(
   const last = lastPiece(course, span)
   let nowMs = span.fromMs
   let placeM = span.fromM
-  for (let piece = pieceAt(course, placeM); piece <= last; piece++) {
+  for (let { piece } = span; piece <= last; piece++) {
     const toM = piece === last ? span.toM : pieces.fromM[piece + 1]
     const toMs = piece === last ? span.toMs : nowMs + ((toM - placeM) / pieces.lengthM[piece]) * pieceS[piece] * 1000
     const i = push(out, course, { fromMs: nowMs, toMs, fromM: placeM, toM, piece, index })
@@ -115,7 +115,7 @@ function parkedEdgesMs(span: Span): number[] {
 
 function parkedSteps(out: Steps, course: Course, span: Span, index: number): void {
   const edges = parkedEdgesMs(span)
-  const piece = Math.max(pieceAt(course, span.fromM), 0)
+  const { piece } = span
   const isAtEnd = span.fromM >= course.pieces.fromM[piece] + course.pieces.lengthM[piece] / 2
   for (let e = 1; e < edges.length; e++) {
     const i = push(out, course, {

@@ -12,6 +12,8 @@ export interface Span {
   toMs: number
   fromM: number
   toM: number
+  /** Piece of road on which the car stands, or on which it sets off. */
+  piece: number
   /** When the array stands lifted inside the span; equal when it does not. */
   liftedFromMs: number
   liftedToMs: number
@@ -31,9 +33,9 @@ export interface Timetable {
  * The day as a list of spans without gaps: morning, legs, stops, evening.
  *
  * Given the time that each piece of road takes, driving starts with the driving hours, a stop lasts
- * its length and not beyond the end of the driving hours (the rest is stood the next morning), a stage
- * that the clock cuts off ends where the car stands. An array is lifted inside a stop or a charging
- * window once it has been raised and until it must be lowered.
+ * its length and not beyond the end of the driving hours (the rest is stood the next morning; waiting for
+ * an opening is not), a stage that the clock cuts off ends where the car stands. An array is lifted inside
+ * a stop or a charging window once it has been raised and until it must be lowered.
  *
  * @param course   roads of all stages
  * @param stages   their names and stops
@@ -47,60 +49,66 @@ export function timetable(
   day: DayRules,
   context: { dayIndex: number; standing: Standing; pieceS: Float64Array },
 ): Timetable {
+  const { standing, dayIndex, pieceS } = context
   const spans: Span[] = []
-  let { stage, placeM, stopLeftS } = context.standing
   const late: Timetable['late'] = []
-  parkedSpans(spans, day, { fromMs: day.opensMs, toMs: day.drivingFromMs, placeM, kind: 'morning-charge' })
-  let nowMs = day.drivingFromMs
+  const now: Now = { ...standing, nowMs: day.opensMs, piece: standingPiece(course, standing) }
+  park(spans, day, now, { untilMs: day.drivingFromMs, kind: 'morning-charge' })
+  now.nowMs = day.drivingFromMs
+  if (now.stopLeftS > 0) stand(spans, day, stages[now.stage - 1].stop, now, { waitS: 0, lengthS: now.stopLeftS })
+  while (now.stopLeftS === 0 && now.stage <= day.lastStage && now.nowMs < day.drivingToMs) {
+    if (!drive(spans, course, day, now, pieceS)) break
+    const { stop } = stages[now.stage]
+    const closesMs = stop?.closesMs[dayIndex] ?? Number.NaN
+    if (now.nowMs > closesMs) late.push({ stage: now.stage, byS: (now.nowMs - closesMs) / 1000, atMs: now.nowMs })
+    now.stage++
+    if (stop !== null) stand(spans, day, stop, now, stopS(stop, now.nowMs, stop.opensMs[dayIndex]))
+  }
+  const { stage, placeM, stopLeftS } = now
+  park(spans, day, now, { untilMs: day.closesMs, kind: 'evening-charge' })
+  return { spans, evening: { stage, placeM, stopLeftS }, late, isCutOff: stage <= day.lastStage || stopLeftS > 0 }
+}
 
-  const stand = (rule: StopRule, atStage: number, wantedS: number): void => {
-    const toMs = Math.min(nowMs + wantedS * 1000, day.drivingToMs)
-    pushStop(spans, rule, { stage: atStage, fromMs: nowMs, toMs, placeM })
-    stopLeftS = Math.max(wantedS - (toMs - nowMs) / 1000, 0)
-    nowMs = toMs
-  }
+/** Where the car is while the day is laid out. */
+interface Now extends Standing {
+  nowMs: number
+  piece: number
+}
 
-  if (stopLeftS > 0) {
-    const rule = stages[stage - 1].stop as StopRule
-    stand(rule, stage - 1, stopLeftS)
-  }
-  while (stopLeftS === 0 && stage <= day.lastStage && nowMs < day.drivingToMs) {
-    const leg = drive(course, stage, { placeM, nowMs, untilMs: day.drivingToMs, pieceS: context.pieceS })
-    if (leg.toMs > nowMs)
-      spans.push({ kind: 'drive', stage, fromMs: nowMs, toMs: leg.toMs, fromM: placeM, toM: leg.placeM, ...FLAT })
-    placeM = leg.placeM
-    nowMs = leg.toMs
-    if (!leg.isFinished) break
-    const rule = stages[stage].stop
-    if (rule !== null) {
-      const closesMs = rule.closesMs[context.dayIndex]
-      if (nowMs > closesMs) late.push({ stage, byS: (nowMs - closesMs) / 1000, atMs: nowMs })
-      stand(rule, stage, stopS(rule, nowMs, rule.opensMs[context.dayIndex]))
-    }
-    stage++
-  }
-  const isCutOff = stage <= day.lastStage || stopLeftS > 0
-  parkedSpans(spans, day, { fromMs: nowMs, toMs: day.closesMs, placeM, kind: 'evening-charge' })
-  return { spans, evening: { stage, placeM, stopLeftS }, late, isCutOff }
+/** A car between two stages, whose roads need not meet, sets off from the next; in a stop it stands on the last. */
+function standingPiece(course: Course, { placeM, stopLeftS }: Standing): number {
+  const piece = pieceAt(course, placeM)
+  return stopLeftS > 0 && piece > 0 && course.pieces.fromM[piece] >= placeM ? piece - 1 : piece
 }
 
 const FLAT = { liftedFromMs: 0, liftedToMs: 0 }
 
-/** Seconds from arrival to departure. An early car never leaves before the stop opens. */
-function stopS(rule: StopRule, arrivalMs: number, opensMs: number): number {
+/** From arrival to departure: waiting, then the length. An early car never leaves before the stop opens. */
+function stopS(rule: StopRule, arrivalMs: number, opensMs: number): { waitS: number; lengthS: number } {
   const earlyS = Number.isNaN(opensMs) ? 0 : Math.max((opensMs - arrivalMs) / 1000, 0)
-  return rule.runsFromOpening ? earlyS + rule.lengthS : Math.max(rule.lengthS, earlyS)
+  if (rule.runsFromOpening) return { waitS: earlyS, lengthS: rule.lengthS }
+  return { waitS: Math.max(earlyS - rule.lengthS, 0), lengthS: rule.lengthS }
 }
 
-function pushStop(
+/** Stands in the stop before the stage to be driven next, to its end or the end of the driving hours. */
+function stand(
   spans: Span[],
-  rule: StopRule,
-  at: { stage: number; fromMs: number; toMs: number; placeM: number },
+  day: DayRules,
+  rule: StopRule | null,
+  now: Now,
+  { waitS, lengthS }: { waitS: number; lengthS: number },
 ): void {
-  if (at.toMs <= at.fromMs) return
-  const lifted = rule.lifts ? liftedBetween(at.fromMs, at.toMs, rule.raiseS, rule.lowerS) : FLAT
-  const { stage, fromMs, toMs, placeM } = at
-  spans.push({ kind: 'stop', stage, fromMs, toMs, fromM: placeM, toM: placeM, ...lifted })
+  if (rule === null) return
+  const { placeM, piece, nowMs: fromMs } = now
+  const endMs = fromMs + (waitS + lengthS) * 1000
+  const toMs = Math.min(endMs, day.drivingToMs)
+  // Waiting on arrival follows the length, waiting for the clock to start goes before it: either way it does not carry over.
+  const leftS = rule.runsFromOpening ? (endMs - toMs) / 1000 : lengthS - (toMs - fromMs) / 1000
+  now.stopLeftS = endMs > toMs ? Math.min(Math.max(leftS, 0), lengthS) : 0
+  now.nowMs = toMs
+  if (toMs <= fromMs) return
+  const lifted = rule.lifts ? liftedBetween(fromMs, toMs, rule.raiseS, rule.lowerS) : FLAT
+  spans.push({ kind: 'stop', stage: now.stage - 1, fromMs, toMs, fromM: placeM, toM: placeM, piece, ...lifted })
 }
 
 function liftedBetween(fromMs: number, toMs: number, raiseS: number, lowerS: number) {
@@ -109,26 +117,43 @@ function liftedBetween(fromMs: number, toMs: number, raiseS: number, lowerS: num
   return liftedToMs > liftedFromMs ? { liftedFromMs, liftedToMs } : FLAT
 }
 
-/** Drives the rest of a stage, piece by piece, until its end, the end of the hours, or a place it cannot pass. */
-function drive(
+/** Nearer than this to the end of the hours counts as at it, so that no step is too short to reckon with. [MS] */
+const ONE_MOMENT_MS = 1
+
+/** Drives the rest of the stage. @returns whether its end was reached */
+function drive(spans: Span[], course: Course, day: DayRules, now: Now, pieceS: Float64Array): boolean {
+  const { placeM: fromM, nowMs: fromMs, stage } = now
+  const piece = pieceAt(course, fromM, course.stages[stage].firstPiece)
+  const isFinished = pieceByPiece(course, now, piece, { untilMs: day.drivingToMs, pieceS })
+  if (now.nowMs <= fromMs) return isFinished
+  spans.push({ kind: 'drive', stage, fromMs, toMs: now.nowMs, fromM, toM: now.placeM, piece, ...FLAT })
+  return isFinished
+}
+
+/** Moves the car until the end of its stage, the end of the hours, or a place it cannot pass. */
+function pieceByPiece(
   course: Course,
-  stage: number,
-  from: { placeM: number; nowMs: number; untilMs: number; pieceS: Float64Array },
-): { placeM: number; toMs: number; isFinished: boolean } {
-  const { firstPiece, endPiece, toM } = course.stages[stage]
+  now: Now,
+  first: number,
+  limit: { untilMs: number; pieceS: Float64Array },
+): boolean {
+  const { endPiece, toM } = course.stages[now.stage]
   const { fromM, lengthM } = course.pieces
-  let { placeM, nowMs } = from
-  for (let i = pieceAt(course, placeM, firstPiece); i < endPiece; i++) {
+  for (let i = first; i < endPiece; i++) {
     const endM = i + 1 < endPiece ? fromM[i + 1] : toM
-    const leftS = ((endM - placeM) / lengthM[i]) * from.pieceS[i]
-    if (!Number.isFinite(leftS)) return { placeM, toMs: nowMs, isFinished: false }
-    const spareS = (from.untilMs - nowMs) / 1000
-    if (leftS > spareS)
-      return { placeM: placeM + (endM - placeM) * (spareS / leftS), toMs: from.untilMs, isFinished: false }
-    placeM = endM
-    nowMs += leftS * 1000
+    const leftMs = ((endM - now.placeM) / lengthM[i]) * limit.pieceS[i] * 1000
+    const spareMs = limit.untilMs - now.nowMs
+    if (!Number.isFinite(leftMs) || spareMs < ONE_MOMENT_MS) return false
+    now.piece = i
+    if (leftMs > spareMs + ONE_MOMENT_MS) {
+      now.placeM += (endM - now.placeM) * (spareMs / leftMs)
+      now.nowMs = limit.untilMs
+      return false
+    }
+    now.placeM = endM
+    now.nowMs = Math.min(now.nowMs + leftMs, limit.untilMs)
   }
-  return { placeM: toM, toMs: nowMs, isFinished: true }
+  return true
 }
 
 /** Index of the piece that holds a place, looking from `first` on. */
@@ -144,25 +169,22 @@ export function pieceAt(course: Course, placeM: number, first = 0): number {
   return low
 }
 
-/** A parked stretch of the day, split into charging windows and the time between them. */
-function parkedSpans(
-  spans: Span[],
-  day: DayRules,
-  at: { fromMs: number; toMs: number; placeM: number; kind: SpanKind },
-): void {
-  let nowMs = at.fromMs
+/** The car stands still until an instant: charging windows and the time between them. */
+function park(spans: Span[], day: DayRules, now: Now, until: { untilMs: number; kind: SpanKind }): void {
+  const { placeM, piece } = now
   const push = (kind: SpanKind, toMs: number, lifts: boolean): void => {
-    if (toMs <= nowMs) return
-    const lifted = lifts ? liftedBetween(nowMs, toMs, day.raiseS, day.lowerS) : FLAT
-    spans.push({ kind, stage: -1, fromMs: nowMs, toMs, fromM: at.placeM, toM: at.placeM, ...lifted })
-    nowMs = toMs
+    const fromMs = now.nowMs
+    if (toMs <= fromMs) return
+    const lifted = lifts ? liftedBetween(fromMs, toMs, day.raiseS, day.lowerS) : FLAT
+    spans.push({ kind, stage: -1, fromMs, toMs, fromM: placeM, toM: placeM, piece, ...lifted })
+    now.nowMs = toMs
   }
   for (const window of day.charging) {
-    const fromMs = Math.max(window.fromMs, nowMs)
-    const toMs = Math.min(window.toMs, at.toMs)
+    const fromMs = Math.max(window.fromMs, now.nowMs)
+    const toMs = Math.min(window.toMs, until.untilMs)
     if (toMs <= fromMs) continue
     push('parked', fromMs, false)
-    push(at.kind, toMs, window.lifts)
+    push(until.kind, toMs, window.lifts)
   }
-  push('parked', at.toMs, false)
+  push('parked', until.untilMs, false)
 }

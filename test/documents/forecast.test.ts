@@ -258,6 +258,26 @@ describe('the day ends in words', () => {
     })
     expect(outcome.kind).toBe('too-steep')
     expect(outcome.text).toMatch(/grade there is \d+\.\d %/)
+    expect(outcome.at).toMatch(/T08:\d\d:\d\d/)
+  })
+})
+
+describe('cars and days out of the ordinary', () => {
+  test('a car without a stand charges with its array flat', () => {
+    const flat = oneDay((r) => void delete r.car.stand)
+    expect(new Set(flat.series.tiltDeg)).toEqual(new Set([0]))
+    expect(flat.ledger.income[0].wh).toBeGreaterThan(0)
+    expect(flat.ledger.income[0].wh).toBeLessThan(oneDay().ledger.income[0].wh)
+  })
+
+  test('a stop that the end of the day cuts in two is left on the next morning only', () => {
+    const { days } = budget((r) => {
+      twoDays(r)
+      r.race.days[0].driving = { from: '08:00', to: '10:50' }
+    })
+    expect(days[0].gates.map((g) => g.kind)).toEqual(['dawn', 'start', 'arrive', 'camp', 'dusk'])
+    expect(days[0].stages[0].departsNextAt).toBeNull()
+    expect(days[1].gates.map((g) => g.kind)).toEqual(['dawn', 'depart', 'dusk'])
   })
 })
 

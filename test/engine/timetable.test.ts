@@ -124,6 +124,57 @@ describe('the day as a timetable', () => {
     expect(open.spans.find((s) => s.kind === 'stop')?.toMs).toBeCloseTo(arriveMs + 30 * MINUTE, -1)
   })
 
+  test('a stop of any length is over once it was stood, whatever the last digits of its end', () => {
+    const roads = road(2)
+    const shift = Date.UTC(2026, 9, 17)
+    for (let k = 1; k <= 40; k++) {
+      const rules = day({
+        opensMs: shift + 6 * HOUR,
+        closesMs: shift + 19 * HOUR,
+        drivingFromMs: shift + 8 * HOUR,
+        drivingToMs: shift + 17 * HOUR,
+        charging: [],
+        lastStage: 1,
+      })
+      const table = laidOut(roads, [rule('a', stop({ lengthS: k * 7.777_777_7 })), rule('b')], rules)
+      expect(table.evening).toMatchObject({ stage: 2, stopLeftS: 0 })
+    }
+  })
+
+  test('the end of the day cuts the length of a stop, not the wait for its opening', () => {
+    const opensMs = new Float64Array([20 * HOUR, Number.NaN])
+    const onArrival = laidOut(road(1), [rule('a', stop({ opensMs }))], day())
+    expect(onArrival.evening).toMatchObject({ stage: 1, stopLeftS: 0 })
+    expect(onArrival.isCutOff).toBe(false)
+    const clocked = laidOut(road(1), [rule('a', stop({ opensMs, runsFromOpening: true }))], day())
+    expect(clocked.evening.stopLeftS).toBe(1800)
+    const half = new Float64Array([16.75 * HOUR, Number.NaN])
+    const begun = laidOut(road(1), [rule('a', stop({ opensMs: half, runsFromOpening: true }))], day())
+    expect(begun.evening.stopLeftS).toBeCloseTo(900, 6)
+  })
+
+  test('a car that needs less than a millisecond more than the hours give has arrived', () => {
+    const roads = road(2)
+    const arriveMs = 8 * HOUR + (roads.stages[0].toM / 20) * 1000
+    const inTime = laidOut(roads, [rule('a'), rule('b')], day({ drivingToMs: arriveMs - 0.3, lastStage: 1 }))
+    expect(inTime.evening).toEqual({ stage: 1, placeM: roads.stages[0].toM, stopLeftS: 0 })
+    const nearlyMs = arriveMs - (roads.pieces.lengthM[0] / 20) * 1000 - 1e-7
+    const atEdge = laidOut(roads, [rule('a'), rule('b')], day({ drivingToMs: nearlyMs, lastStage: 1 }))
+    expect(atEdge.evening.placeM).toBe(roads.pieces.fromM[roads.stages[0].endPiece - 1])
+  })
+
+  test('a car in a stop stands on the road that it came by, before a stage on the road of that stage', () => {
+    const roads = road(2)
+    const stages = [rule('a', stop()), rule('b')]
+    const table = laidOut(roads, stages, day({ lastStage: 0 }))
+    const last = roads.stages[0].endPiece - 1
+    expect(table.spans.filter((s) => s.kind !== 'drive').map((s) => s.piece)).toEqual([0, 0, last, last, last, last])
+    const next = laidOut(roads, stages, day({ lastStage: 1 }), 20, table.evening, 1)
+    expect(next.spans[0].piece).toBe(last + 1)
+    const inStop = laidOut(roads, stages, day({ lastStage: 1 }), 20, { ...table.evening, stopLeftS: 60 }, 1)
+    expect(inStop.spans[0].piece).toBe(last)
+  })
+
   test('an arrival after the closing is named with its delay', () => {
     const closesMs = new Float64Array([9 * HOUR, Number.NaN])
     const { late } = laidOut(road(1), [rule('a', stop({ closesMs }))], day())
