@@ -177,9 +177,9 @@ export function start(): void {
   void loadLists()
 }
 
-/** After lost contact: asks until the service answers, then takes up what was left undone. */
+/** After lost contact or a service that was too busy: asks until it answers, then takes up what was left undone. */
 async function listen(): Promise<void> {
-  if (isHeard.value) return
+  if (isHeard.value && refusal.value?.status !== 503) return
   const answer = await isServiceUp()
   if (answer.refusal !== undefined) return
   if (lists.value === null) await loadLists()

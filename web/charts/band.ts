@@ -110,7 +110,7 @@ export function roadHeight(day: DayBudget, axis: Axis, top: number): { line: str
     .domain([low, Math.max(high, low + 50)])
     .range([top + PLOT.roadBase - 4, top + PLOT.roadTop + 2])
   const points = heightM.map((m, i): Point => [round(axis.x((fromMs[i] + toMs[i]) / 2)), round(y(m))])
-  const whole = thinned([[0, points[0][1]], ...points, [axis.width, points[points.length - 1][1]]])
+  const whole: Point[] = [[0, points[0][1]], ...smoothed(points), [axis.width, points[points.length - 1][1]]]
   const at = heightM.indexOf(high)
   const base = top + PLOT.roadBase
   return {
@@ -127,6 +127,16 @@ export interface RoadPeak {
 }
 
 const round = (value: number): number => Math.round(value * 10) / 10
+
+/** Means over two pixels: hills that are shorter would only blacken the line. */
+function smoothed(points: Point[]): Point[] {
+  const columns = new Map<number, { sum: number; count: number }>()
+  for (const [x, y] of points) {
+    const column = columns.get(Math.round(x / 2)) ?? { sum: 0, count: 0 }
+    columns.set(Math.round(x / 2), { sum: column.sum + y, count: column.count + 1 })
+  }
+  return [...columns].map(([x, { sum, count }]): Point => [x * 2, round(sum / count)]).sort((a, b) => a[0] - b[0])
+}
 
 /** One point per pixel and every turn, so that a day of seconds draws as fast as one of minutes. */
 function thinned(points: Point[]): Point[] {

@@ -16,7 +16,7 @@ export const DayFacts = ({ day }: { day: DayBudget }) => (
       </dd>
       <dd class="note">
         {grouped(day.lowest.chargePct)}
-        {THIN}%, {day.lowest.place}, {clock(day.lowest.at)}, km {kmText(day.lowest.km)}
+        {THIN}%, {clock(day.lowest.at)}, {placeText(day.lowest)}
       </dd>
     </div>
     {day.target !== null && day.targetMarginWh !== null ? (
@@ -97,3 +97,7 @@ export function StageFacts({ stage, day }: { stage: Stage; day: DayBudget }) {
     </dl>
   )
 }
+
+/** A place by its name with its distance; one without a name is its distance. */
+const placeText = ({ place, km }: DayBudget['lowest']): string =>
+  place.startsWith('km ') ? place : `${place}, km ${kmText(km)}`

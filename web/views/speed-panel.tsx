@@ -94,5 +94,5 @@ function Change({ day }: { day: DayBudget }) {
 
 const standing = (day: DayBudget): string =>
   day.speedsTried > 0 && day.outcome.kind !== 'no-speed-meets-target'
-    ? `Fastest that meets the ${day.target === null ? 'reserve' : 'target'}; step to try another.`
-    : 'Step to try another speed.'
+    ? `The fastest that meets the ${day.target === null ? 'reserve' : 'target'}.`
+    : 'Step to try another.'

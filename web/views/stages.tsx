@@ -51,6 +51,7 @@ function StageRow({ stage }: { stage: Stage }) {
         {THIN}%{stopMin > 0 && `; ${durationText(stopMin)} there`}
       </p>
       <p class="when">
+        <span class="note">closes </span>
         <Wh text={whText(stage.closing.wh)} unit="Wh" wh={stage.closing.wh} />
       </p>
     </li>

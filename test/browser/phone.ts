@@ -1,0 +1,56 @@
+import { mkdirSync } from 'node:fs'
+import { tmpdir } from 'node:os'
+import { join } from 'node:path'
+import { type Browser, type BrowserContextOptions, chromium, type Page } from 'playwright-core'
+import { chromiumPath } from '../support/needs.ts'
+
+const FLAGS = [
+  '--no-sandbox',
+  '--disable-gpu',
+  '--disable-background-networking',
+  '--disable-component-update',
+  '--disable-sync',
+  '--no-first-run',
+]
+
+export const openBrowser = (): Promise<Browser> =>
+  chromium.launch({ executablePath: chromiumPath() ?? undefined, args: FLAGS })
+
+/** A page with everything it complained about. */
+export interface Phone {
+  page: Page
+  complaints: string[]
+  close(): Promise<void>
+}
+
+/** A phone of 390 × 844 that notes console errors, page errors and everything the content policy refused. */
+export async function openPhone(browser: Browser, options: BrowserContextOptions = {}): Promise<Phone> {
+  const context = await browser.newContext({
+    viewport: { width: 390, height: 844 },
+    locale: 'en-GB',
+    timezoneId: 'Africa/Windhoek',
+    ...options,
+  })
+  const page = await context.newPage()
+  page.setDefaultTimeout(30_000)
+  const complaints: string[] = []
+  page.on('console', (message) => {
+    if (message.type() === 'error' || message.type() === 'warning') complaints.push(message.text())
+  })
+  page.on('pageerror', (error) => complaints.push(error.message))
+  await page.addInitScript(
+    "addEventListener('securitypolicyviolation', (e) => console.error('policy refused ' + e.violatedDirective + ' ' + e.blockedURI))",
+  )
+  return { page, complaints, close: () => context.close() }
+}
+
+/** Leaves a picture for whoever looks at the screens; the path is printed with the tests. */
+export async function picture(page: Page, name: string): Promise<void> {
+  const folder = join(tmpdir(), 'stagewatt-pictures')
+  mkdirSync(folder, { recursive: true })
+  await page.screenshot({ path: join(folder, `${name}.png`) })
+}
+
+/** Width that the page would scroll over sideways. [px] */
+export const overflowPx = (page: Page): Promise<number> =>
+  page.evaluate('document.documentElement.scrollWidth - document.documentElement.clientWidth')
