@@ -1,7 +1,7 @@
 import { shownValue } from '../documents/problem.ts'
 import type { CsvRow } from './csv-cells.ts'
 import type { ProblemList } from './file-reading.ts'
-import { matchHeader, readMapped } from './header.ts'
+import { headerParts, matchHeader, readMapped } from './header.ts'
 import type { FieldSpec, HeaderMatch } from './header.ts'
 import { UNITS, inWords, unitNamed, unitsOf } from './units.ts'
 
@@ -63,8 +63,9 @@ export function findColumns(
 }
 
 function firstMatch(text: string, specs: FieldSpec[]): HeaderMatch | null {
+  const header = headerParts(text)
   for (const spec of specs) {
-    const match = matchHeader(text, spec)
+    const match = matchHeader(header, spec)
     if (match !== null) return match
   }
   return null

@@ -8,6 +8,8 @@ export interface CsvRow {
 }
 
 const MOST_CELLS = 1000
+/** Longest cell; longer ones are no value, and patterns must not be run over them. [characters] */
+const LONGEST_CELL = 500
 const QUOTE = 34
 const [LF, CR, SPACE, TAB, HASH] = [10, 13, 32, 9, 35]
 
@@ -35,12 +37,18 @@ export function csvRows(text: string, delimiter: string, problems: ProblemList, 
     while (i < text.length && !isLineEnd(text.charCodeAt(i))) i++
   }
 
-  /** The text inside quotes, `i` left behind the closing one; null when it never closes. */
+  const tooLong = (place: { line: number; column: number }): null => {
+    problems.add({ field: 'table', detail: `expected at most ${LONGEST_CELL} characters in a cell`, ...place })
+    return null
+  }
+  /** The text inside quotes, `i` left behind the closing one; null when it is too long or never closes. */
   const quoted = (): string | null => {
     const opened = { line, column: i - lineStart + 1 }
     let from = ++i
     let cell = ''
+    const last = i + 2 * LONGEST_CELL
     for (; i < text.length; ) {
+      if (i > last) return tooLong(opened)
       const code = text.charCodeAt(i)
       if (code === QUOTE && text.charCodeAt(i + 1) === QUOTE) {
         cell += text.slice(from, i + 1)
@@ -66,10 +74,11 @@ export function csvRows(text: string, delimiter: string, problems: ProblemList, 
     problems.add({ field: 'table', value: text[i], detail: 'expected a delimiter after the closing quote', ...place })
     skipLine()
   }
-  const bare = (): string => {
+  const bare = (): string | null => {
     const from = i
     for (let code = text.charCodeAt(i); i < text.length && code !== separator && !isLineEnd(code); )
       code = text.charCodeAt(++i)
+    if (i - from > LONGEST_CELL) return tooLong({ line, column: from - lineStart + 1 })
     return text.slice(from, i).trim()
   }
   /** One cell added to the row; false when the table cannot be read on. */

@@ -1,5 +1,6 @@
 import { checkDocument } from '../documents/check.ts'
 import { shownValue } from '../documents/problem.ts'
+import { MAX_ROUTE_POINTS } from '../documents/route.ts'
 import type { RouteInput } from '../documents/route.ts'
 import { cellReader } from './cell-reader.ts'
 import { findColumns, shownHeaders } from './columns.ts'
@@ -29,7 +30,7 @@ export function readCsvRoute(text: string, options: RouteTableOptions = {}): Rou
   if (wishes.problems !== undefined) return { problems: wishes.problems }
   const { name, delimiter, decimal: wantedDecimal, ...columnWishes } = wishes.document
   const problems = problemList()
-  const table = csvTable(text, delimiter, problems)
+  const table = csvTable(text, { delimiter, mostRows: MAX_ROUTE_POINTS + 1 }, problems)
   if (table === null) return { problems: problems.list() }
   const { byField, ignored } = findColumns(table.header, ROUTE_SPECS, columnWishes, problems)
   for (const field of ['latDeg', 'lonDeg']) if (!byField.has(field)) problems.add(missingColumn(field, table.header))

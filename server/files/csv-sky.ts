@@ -1,5 +1,5 @@
 import { checkDocument } from '../documents/check.ts'
-import { skyDocument } from '../documents/sky.ts'
+import { MAX_SKY_ROWS, skyDocument } from '../documents/sky.ts'
 import type { SkyColumn, SkyDocument, SkyInput } from '../documents/sky.ts'
 import { cellReader } from './cell-reader.ts'
 import { findColumns } from './columns.ts'
@@ -10,7 +10,7 @@ import { checkedReading, noticeList, problemList } from './file-reading.ts'
 import type { FileReading, NoticeList } from './file-reading.ts'
 import type { Averaging } from './header.ts'
 import { conventions, pressureIs } from './sky-conventions.ts'
-import { rowsByPlace } from './sky-rows.ts'
+import { MOST_PLACES, rowsByPlace } from './sky-rows.ts'
 import type { PlaceRows } from './sky-rows.ts'
 import { baseOf, SKY_SPECS, isSkyValue, skyTableOptions } from './sky-table.ts'
 import type { SkyTableOptions, SkyValue } from './sky-table.ts'
@@ -41,7 +41,7 @@ export function readCsvSky(text: string, options: SkyTableOptions): SkyReading {
   const wishes = checked.document
   const problems = problemList()
   const notices = noticeList()
-  const table = csvTable(text, wishes.delimiter, problems)
+  const table = csvTable(text, { delimiter: wishes.delimiter, mostRows: MAX_SKY_ROWS * MOST_PLACES + 1 }, problems)
   if (table === null) return { problems: problems.list() }
   const { byField, ignored } = findColumns(table.header, SKY_SPECS, wishes, problems)
   if (ignored.length > 0) notices.add({ detail: `columns not read: ${ignored.slice(0, 30).join(', ')}` })

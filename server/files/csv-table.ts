@@ -14,17 +14,27 @@ export interface Table {
 }
 
 const SNIFFED_ROWS = 20
+const SNIFFED_TEXT = 200_000
+const LONGEST_NAME = 200
 
-/** The table of a text, its delimiter found or given; null when there is none, and the problems say why. */
-export function csvTable(text: string, given: Delimiter | undefined, problems: ProblemList): Table | null {
+/**
+ * The table of a text, its delimiter found or given; null when there is none, and the problems say why.
+ *
+ * @param wishes  mostRows: rows under the header after which reading stops, whoever asks says that there are too many
+ */
+export function csvTable(
+  text: string,
+  wishes: { delimiter?: Delimiter; mostRows: number },
+  problems: ProblemList,
+): Table | null {
   const tooLarge = overLimit(text.length)
   if (tooLarge !== null) {
     problems.add(tooLarge)
     return null
   }
   const body = text.replace(/^\uFEFF/, '')
-  const delimiter = given ?? sniffed(body)
-  const [first, ...rows] = csvRows(body, delimiter, problems)
+  const delimiter = wishes.delimiter ?? sniffed(body.slice(0, SNIFFED_TEXT))
+  const [first, ...rows] = csvRows(body, delimiter, problems, wishes.mostRows + 1)
   const header = headerFor(first, rows, delimiter)
   if (problems.count > 0) return null
   if (header === undefined || header.cells.length < 2) {
@@ -38,6 +48,11 @@ export function csvTable(text: string, given: Delimiter | undefined, problems: P
     return null
   }
   for (const row of rows) checkWidth(row, header, problems)
+  header.cells.forEach((name, i) => {
+    if (name.length <= LONGEST_NAME) return
+    const detail = `expected at most ${LONGEST_NAME} characters in the name of a column`
+    problems.add({ field: 'table', value: shownValue(name), detail, line: header.line, column: header.columns[i] })
+  })
   if (rows.length === 0)
     problems.add({ field: 'table', detail: 'expected rows under the header', line: header.line, column: 1 })
   return problems.count > 0 ? null : { delimiter, header, rows }

@@ -27,34 +27,51 @@ function encodingOf(bytes: Uint8Array): Encoding {
   return 'utf-8'
 }
 
-function decoded(bytes: Uint8Array, encoding: Encoding, isWhole = true): string | null {
+function decoded(bytes: Uint8Array, encoding: Encoding): string | null {
   try {
-    return new TextDecoder(encoding, { fatal: true, ignoreBOM: true }).decode(bytes, { stream: !isWhole })
+    return new TextDecoder(encoding, { fatal: true, ignoreBOM: true }).decode(bytes)
   } catch {
     return null
   }
 }
 
-/** The first byte that does not fit, found by halving: a prefix decodes exactly when it ends before it. */
+const BLOCK = 16_384
+
+/** Where the text ends to be one: whole blocks first, then byte by byte. */
 function badBytes(bytes: Uint8Array, encoding: Encoding): Problem {
-  let good = 0
-  let bad = bytes.length + 1
-  while (bad - good > 1) {
-    const middle = (good + bad) >> 1
-    if (decoded(bytes.subarray(0, middle), encoding, middle > bytes.length) === null) bad = middle
-    else good = middle
+  const decoder = new TextDecoder(encoding, { fatal: true, ignoreBOM: true })
+  let from = 0
+  let text = ''
+  try {
+    for (; from < bytes.length; from += BLOCK)
+      text += decoder.decode(bytes.subarray(from, from + BLOCK), { stream: true })
+  } catch {
+    text += goodStart(bytes.subarray(encodedLength(text, encoding), from + BLOCK), encoding)
   }
-  // The last byte of the prefix may begin the letter that goes wrong; whole letters end at `whole`.
-  const text = decoded(bytes.subarray(0, good), encoding, false) ?? ''
-  const whole = encoding === 'utf-8' ? new TextEncoder().encode(text).length : text.length * 2
   const before = text.replace(/^\uFEFF/, '').split(/\r\n|\r|\n/)
+  const bad = bytes[Math.min(encodedLength(text, encoding), bytes.length - 1)]
   return {
     field: 'file',
-    value: `byte 0x${bytes[Math.min(whole, bytes.length - 1)].toString(16).padStart(2, '0')}`,
+    value: `byte 0x${bad.toString(16).padStart(2, '0')}`,
     detail: `expected text as UTF-8 or UTF-16; this byte is not ${encoding.toUpperCase()}. Save the file as UTF-8`,
     line: before.length,
     column: before[before.length - 1].length + 1,
   }
+}
+
+const encodedLength = (text: string, encoding: Encoding): number =>
+  encoding === 'utf-8' ? new TextEncoder().encode(text).length : text.length * 2
+
+/** The letters before the first byte that does not fit. */
+function goodStart(bytes: Uint8Array, encoding: Encoding): string {
+  const decoder = new TextDecoder(encoding, { fatal: true, ignoreBOM: true })
+  let text = ''
+  try {
+    for (let i = 0; i < bytes.length; i++) text += decoder.decode(bytes.subarray(i, i + 1), { stream: true })
+  } catch {
+    // What came before is the answer.
+  }
+  return text
 }
 
 /** What a text is by its content: GPX, a table, or neither. */

@@ -34,8 +34,7 @@ const CONVENTIONS: [Averaging, RegExp][] = [
 const MOST_UNIT_WORDS = 4
 
 /** What a header says of one kind of column, or null when it names something else. */
-export function matchHeader(header: string, spec: FieldSpec): HeaderMatch | null {
-  const { words, parts } = headerParts(header)
+export function matchHeader({ words, parts }: HeaderParts, spec: FieldSpec): HeaderMatch | null {
   const said = conventionIn(words.join(' '))
   const cut = said === undefined ? words : wordsBeside(words, said)
   for (const candidate of said === undefined ? [words] : [words, cut]) {
@@ -61,7 +60,14 @@ export function readMapped(header: string, spec: FieldSpec): HeaderMatch {
   }
 }
 
-function headerParts(header: string): { words: string[]; parts: string[] } {
+export interface HeaderParts {
+  words: string[]
+  /** What stands in brackets, parted at commas. */
+  parts: string[]
+}
+
+/** A header as words in small letters and the parts in its brackets. */
+export function headerParts(header: string): HeaderParts {
   const parts: string[] = []
   const rest = header.replace(/[([{]([^)\]}]*)[)\]}]/g, (_, inner: string) => {
     parts.push(...inner.split(/[,;]/).map((part) => part.trim()))

@@ -4,6 +4,7 @@ import { shownValue } from '../documents/problem.ts'
 import type { ProblemList } from './file-reading.ts'
 
 const DEEPEST = 64
+const MOST_ATTRIBUTES = 100
 /** Small, so that little more is parsed once the walk is over. [characters] */
 const CHUNK = 8192
 
@@ -36,6 +37,7 @@ export function walkXml(text: string, root: string, listener: XmlListener, probl
   const open: { at: PathNode; place: XmlPlace; text: string }[] = []
   let rootUri = ''
   let isOver = false
+  let attributes = 0
   let start: XmlPlace = { line: 1, column: 1 }
   const here = (): XmlPlace => ({ line: parser.line, column: Math.max(parser.column, 1) })
   const stop = (field: string, detail: string, place: XmlPlace) => {
@@ -53,7 +55,12 @@ export function walkXml(text: string, root: string, listener: XmlListener, probl
     stop(unclosed[1], `expected </${unclosed[1]}>, but the file ends: it was cut short`, here())
   })
   parser.on('opentagstart', (tag) => {
+    attributes = 0
     start = { line: parser.line, column: Math.max(parser.column - tag.name.length - 1, 1) }
+  })
+  parser.on('attribute', () => {
+    if (++attributes > MOST_ATTRIBUTES)
+      stop('document', `expected at most ${MOST_ATTRIBUTES} attributes of an element`, start)
   })
   parser.on('text', addText)
   parser.on('cdata', addText)

@@ -8,7 +8,8 @@ import type { ProblemList } from './file-reading.ts'
 import { PLACE_RANGES } from './sky-table.ts'
 import type { Moment } from './sky-times.ts'
 
-const MOST_PLACES = 100
+/** Most places of one sky, as its document has it. */
+export const MOST_PLACES = 100
 
 export interface Place {
   name: string
@@ -47,6 +48,7 @@ export function rowsByPlace(rows: CsvRow[], sources: Sources, problems: ProblemL
     if (group === undefined) groups.set(place.name, (group = { place, rows: [], times: [], stepMs: Number.NaN }))
     group.rows.push(row)
     group.times.push(at)
+    if (groups.size > MOST_PLACES) break
   }
   const found = [...groups.values()]
   if (found.length > MOST_PLACES) {

@@ -67,9 +67,10 @@ function wallReader(byField: Map<string, FoundColumn>, first: CsvRow): WallReade
 function joined(row: CsvRow, date: FoundColumn, clock: FoundColumn): Stamp | null {
   const whole = stamp(row.cells[clock.index])
   if (whole !== null) return whole
-  const [, bare, offset] = /^(.*?)\s*(Z|[+-]\d{2}:?\d{2})?$/i.exec(row.cells[clock.index]) ?? []
+  const cell = row.cells[clock.index]
+  const [offset] = /(?:Z|[+-]\d{2}:?\d{2})$/i.exec(cell) ?? []
   const day = dayMs(row.cells[date.index])
-  const ms = clockMs(bare ?? '')
+  const ms = clockMs(cell.slice(0, cell.length - (offset?.length ?? 0)).trim())
   if (day === null || ms === null) return null
   const offsetMin = offset === undefined ? null : offsetMinutes(offset)
   return Number.isNaN(offsetMin) ? null : { wallMs: day + ms, offsetMin }

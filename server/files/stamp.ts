@@ -12,6 +12,8 @@ const DATE_FORMS: [RegExp, (m: string[]) => [string, string, string]][] = [
 ]
 const CLOCK = /^(\d{1,2})(?::?(\d{2})(?::?(\d{2})(?:\.\d+)?)?)?$/
 const OFFSET = /\s*(Z|UTC|GMT|[+-]\d{2}(?::?\d{2})?)$/i
+/** No time is written longer; patterns are not run over more. [characters] */
+const LONGEST = 40
 const FIRST_MS = Date.UTC(1950, 0, 1)
 const LAST_MS = Date.UTC(2101, 0, 1)
 
@@ -30,6 +32,7 @@ export function dayMs(text: string): number | null {
 
 /** A time of day in milliseconds; 24, 24:00 and 24:00:00 are the next day's midnight. */
 export function clockMs(text: string): number | null {
+  if (text.length > LONGEST) return null
   const match = CLOCK.exec(text)
   if (match === null) return null
   const [hour, minute, second] = [match[1], match[2] ?? 0, match[3] ?? 0].map(Number)
@@ -40,6 +43,7 @@ export function clockMs(text: string): number | null {
 /** A day with a time: ISO 8601 with or without offset, also 17.10.2026 08:00, 2026/10/17 8:00 and 20261017:0800. */
 export function stamp(text: string): Stamp | null {
   const bare = text.trim()
+  if (bare.length > LONGEST) return null
   const split = /^(\d{4}-\d{2}-\d{2}|\d{4}\/\d{1,2}\/\d{1,2}|\d{1,2}\.\d{1,2}\.\d{4}|\d{8})(?:[T:_]|,?\s+)(.+)$/i.exec(
     bare,
   )

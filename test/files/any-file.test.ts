@@ -35,7 +35,7 @@ const DOORS = [
 /** One or two edits: a byte set, put in or taken out, or the file cut short. */
 const edit = fc.record({
   kind: fc.constantFrom('set', 'set', 'set', 'in', 'in', 'out', 'out', 'out', 'cut'),
-  at: fc.double({ min: 0, max: 0.9999, noNaN: true }),
+  at: fc.noBias(fc.nat(99_999)),
   byte: fc.oneof(
     fc.integer({ min: 0, max: 255 }),
     fc.constantFrom(...Buffer.from('0123456789')),
@@ -44,7 +44,7 @@ const edit = fc.record({
 })
 
 function edited(bytes: Uint8Array, { kind, at, byte }: { kind: string; at: number; byte: number }): Uint8Array {
-  const i = Math.floor(at * bytes.length)
+  const i = at % bytes.length
   if (kind === 'cut') return bytes.slice(0, i)
   const middle = kind === 'out' ? [] : [byte]
   return Uint8Array.from([...bytes.slice(0, i), ...middle, ...bytes.slice(kind === 'in' ? i : i + 1)])
@@ -80,10 +80,10 @@ describe.each(DOORS)('a $name file with a few wrong bytes', ({ text, read }) => 
           expect(column).toBeGreaterThanOrEqual(1)
         }
       }),
-      { numRuns: 3000, seed: 7 },
+      { numRuns: 1500, seed: 7 },
     )
-    expect(counts.read + counts.refused).toBe(3000)
-    expect(Math.min(counts.read, counts.refused)).toBeGreaterThan(300)
+    expect(counts.read + counts.refused).toBe(1500)
+    expect(Math.min(counts.read, counts.refused)).toBeGreaterThan(100)
   })
   it('is read when nothing is wrong', () => expect(read(text).problems).toBeUndefined())
 })

@@ -278,7 +278,7 @@ describe('a GPX file that is wrong', () => {
 })
 
 describe('a day on the road, 50,000 points', () => {
-  it('is read within a second', () => {
+  it('is read within a second of computing', () => {
     const text = track(
       Array.from({ length: 50_000 }, (_, i) => {
         const ele = 1200 + 80 * Math.sin(i / 400) + ((i * 7919) % 100) / 25
@@ -289,11 +289,11 @@ describe('a day on the road, 50,000 points', () => {
         )
       }).join('\n'),
     )
-    // The best of three: other work on the machine is not this reader's.
+    // Computing time, the best of three: other work on the machine is not this reader's.
     const runsMs = [1, 2, 3].map(() => {
-      const from = performance.now()
+      const from = process.cpuUsage()
       expect(routeOf(text).summary.points).toBe(50_000)
-      return performance.now() - from
+      return process.cpuUsage(from).user / 1000
     })
     const tookMs = Math.min(...runsMs)
     console.log(`50,000 points, ${(text.length / 1e6).toFixed(1)} MB: ${tookMs.toFixed(0)} ms`)
