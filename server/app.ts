@@ -38,12 +38,13 @@ export interface Parts extends Needs {
   /** Stylesheet of the page that describes the API. */
   docsCss: string
   logLevel: string
+  /** Delay of the event loop above which new work is refused. [ms] (default 5 s) */
+  mostDelayMs?: number
 }
 
 /** Longest time for a request to arrive: 24 MB at 1 Mbit/s take 192 s. [ms] */
 const REQUEST_MS = 300_000
-/** Delay of the event loop above which new work is refused. [ms] */
-const MOST_DELAY_MS = 2_000
+const MOST_DELAY_MS = 5_000
 
 /** The service without a port: every route, its guards and its errors. */
 export async function buildApp(parts: Parts): Promise<Api> {
@@ -78,7 +79,7 @@ function newServer(handler: RequestListener, tls: Parts['tls']) {
   return server
 }
 
-async function protect(app: Api, { tls }: Parts): Promise<void> {
+async function protect(app: Api, { tls, mostDelayMs = MOST_DELAY_MS }: Parts): Promise<void> {
   let isStopping = false
   app.addHook('preClose', async () => {
     isStopping = true
@@ -92,10 +93,11 @@ async function protect(app: Api, { tls }: Parts): Promise<void> {
   })
   await app.register(compress, { brotliOptions: { params: { [constants.BROTLI_PARAM_QUALITY]: 4 } } })
   await app.register(underPressure, {
-    maxEventLoopDelay: MOST_DELAY_MS,
-    // Whether the service runs is answered even then.
-    pressureHandler: async ({ url }) => {
-      if (url !== '/api/health') throw new Fault('overloaded', 'The service has too much to do; try again in a moment.')
+    maxEventLoopDelay: mostDelayMs,
+    // Whether the service runs is answered even then; an infinite delay only says that none was measured.
+    pressureHandler: async ({ url }, _reply, _type, delayMs) => {
+      if (url === '/api/health' || delayMs === Number.POSITIVE_INFINITY) return
+      throw new Fault('overloaded', 'The service has too much to do; try again in a moment.')
     },
   })
 }
