@@ -135,7 +135,7 @@ export function trackerModel(tracker: CarDocument['trackers'][number]): Tracker 
     },
     losses:
       losses === undefined
-        ? fitLosses((bench ?? []).map((p) => ({ ...p, outputW: (p.inputW * p.efficiencyPct) / 100 }))).losses
+        ? fitLosses((bench ?? []).map((p) => ({ ...p, outputW: p.inputW * (p.efficiencyPct / 100) }))).losses
         : {
             standingW: losses.standingW,
             switchingFraction: losses.switchingPct / 100,

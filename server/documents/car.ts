@@ -80,7 +80,7 @@ const tracker = z
     }),
     trackingPct: quantity(50, 100, 'share of the best power that the tracker finds [%]').default(99.5),
     losses: lossTerms.optional(),
-    bench: z.array(benchPoint).min(1).max(500).optional(),
+    bench: z.array(benchPoint).min(4).max(500).optional(),
   })
   .superRefine((t, context) => {
     const issue = (path: string[], message: string, input: unknown) =>
@@ -92,6 +92,9 @@ const tracker = z
     if (t.window.outputMaxV <= t.window.outputMinV)
       issue(['window', 'outputMaxV'], `more than outputMinV (${t.window.outputMinV})`, t.window.outputMaxV)
   })
+
+/** Rows of the voltage table closer together than this would be a jump. [%] */
+const LEAST_STEP_PCT = 0.01
 
 const pack = z
   .strictObject({
@@ -126,10 +129,10 @@ const pack = z
     if (cellOcv[last].chargePct !== 100)
       issue(['cellOcv', last, 'chargePct'], '100 in the last row', cellOcv[last].chargePct)
     for (let i = 1; i <= last; i++) {
-      if (cellOcv[i].chargePct <= cellOcv[i - 1].chargePct)
+      if (cellOcv[i].chargePct < cellOcv[i - 1].chargePct + LEAST_STEP_PCT)
         issue(
           ['cellOcv', i, 'chargePct'],
-          `more than the row before (${cellOcv[i - 1].chargePct})`,
+          `at least ${LEAST_STEP_PCT} more than the row before (${cellOcv[i - 1].chargePct})`,
           cellOcv[i].chargePct,
         )
       if (cellOcv[i].restingV < cellOcv[i - 1].restingV)

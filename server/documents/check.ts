@@ -33,7 +33,8 @@ function problemsOf(issue: Issue, input: unknown): Problem[] {
     const closest = closestBranch(issue.errors as Issue[][], path, input)
     if (closest.length > 0) return closest
   }
-  const value = shownValue(valueAt(input, path) ?? (issue.code === 'custom' ? issue.input : undefined))
+  const given = valueAt(input, path)
+  const value = shownValue(given === undefined && issue.code === 'custom' ? issue.input : given)
   return [{ field: fieldName(path), ...(value === undefined ? {} : { value }), detail: expectation(issue) }]
 }
 
@@ -52,6 +53,10 @@ function expectation(issue: Issue): string {
       return `expected ${bound(issue.origin, issue.inclusive === false ? 'more than' : 'at least', issue.minimum)}`
     case 'too_big':
       return `expected ${bound(issue.origin, issue.inclusive === false ? 'less than' : 'at most', issue.maximum)}`
+    case 'invalid_key':
+      return `expected as a name ${issue.issues.map((i) => expectation(i).replace(/^expected /, '')).join(' and ')}`
+    case 'invalid_union':
+      return `expected ${('options' in issue ? (issue.options ?? []) : []).map((o) => JSON.stringify(o)).join(' or ')}`
     case 'invalid_value':
       return `expected ${issue.values.map((v) => JSON.stringify(v)).join(' or ')}`
     default:

@@ -8,6 +8,7 @@ import type { BudgetDocument } from './budget.ts'
 import { dayBudget } from './budget-day.ts'
 import { carDocument } from './car.ts'
 import { carModel } from './car-model.ts'
+import { fieldName } from './check.ts'
 import { date, slug } from './quantity.ts'
 import { dayRules, placedStages, raceCourse, stageRules, zoneOf } from './race-model.ts'
 import type { PlacedStage } from './race-model.ts'
@@ -16,7 +17,7 @@ import type { RaceDocument } from './race.ts'
 import { routeDocument } from './route.ts'
 import { skyDocument } from './sky.ts'
 import { coverageNotes, skyModel } from './sky-model.ts'
-import { wantedMps } from './speeds-model.ts'
+import { sectionCutsKm, wantedMps } from './speeds-model.ts'
 import { speedsDocument } from './speeds.ts'
 
 /** Everything a forecast needs, as whole documents. */
@@ -39,49 +40,48 @@ export type ForecastRequest = z.output<typeof forecastRequest>
  * @throws InputError when the documents do not fit together: field, value and what was expected
  */
 export function forecastDocuments(request: ForecastRequest): BudgetDocument {
-  const { car, race: document, sky: skyDoc, speeds } = request
+  const { car, race: document, sky: skyDoc } = request
   const lastDay = dayWanted(document, request.date)
   const { sky, assumptions } = skyModel(skyDoc)
-  const course = raceCourse(document, request.routes)
+  const course = raceCourse(document, request.routes, sectionCutsKm(request.speeds))
   const model = carModel(car, { groundAlbedo: meanAlbedo(request), skyModel: 'perez' })
   checkWindHeight(request)
   const race: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
-  const stages = placedStages(document)
-  const days: BudgetDocument['days'] = []
-  const notes = [...roadNotes(request), ...assumptions]
-  let opening: Opening = {
-    standing: { stage: 0, placeM: 0, stopLeftS: 0 },
-    charge: document.openingPct / 100,
-  }
-  for (let d = 0; d <= lastDay; d++) {
-    const { openingPct: measured, targetPct } = document.days[d]
-    if (measured !== undefined) opening = { ...opening, charge: measured / 100 }
-    notes.push(...coverageNotes(sky, race.days[d], zoneOf(document, d)))
-    const driven = driveDay(race, document, { dayIndex: d, opening, speeds, stages })
-    opening = driven.forecast.closing
-    if (request.date === undefined || d === lastDay)
-      days.push(
-        dayBudget({
-          race,
-          stages,
-          dayIndex: d,
-          date: document.days[d].date,
-          zone: zoneOf(document, d),
-          targetCharge: targetPct === undefined ? null : targetPct / 100,
-          penalties: document.penalties,
-          ...driven,
-        }),
-      )
-  }
+  const { days, notes } = drivenDays(race, request, lastDay)
   return {
     engineVersion: ENGINE_VERSION,
     race: document.name,
     car: car.name,
     sky: { name: skyDoc.name, source: skyDoc.source, issuedAt: skyDoc.issuedAt },
-    assumptions: [...new Set(notes)],
+    assumptions: [...new Set([...roadNotes(request), ...assumptions, ...notes])],
     lengthKm: course.lengthM / 1000,
     days,
   }
+}
+
+/** The days up to the last wanted, each opening where the one before closed; one alone where one was asked for. */
+function drivenDays(race: Race, request: ForecastRequest, lastDay: number) {
+  const { race: document, speeds } = request
+  const stages = placedStages(document)
+  const days: BudgetDocument['days'] = []
+  const notes: string[] = []
+  let opening: Opening = {
+    standing: { stage: 0, placeM: 0, stopLeftS: 0 },
+    charge: document.openingPct / 100,
+  }
+  for (let d = 0; d <= lastDay; d++) {
+    const { date: on, openingPct: measured, targetPct } = document.days[d]
+    if (measured !== undefined) opening = { ...opening, charge: measured / 100 }
+    const zone = zoneOf(document, d)
+    notes.push(...coverageNotes(race.sky, race.days[d], zone))
+    const driven = driveDay(race, document, { dayIndex: d, opening, speeds, stages })
+    opening = driven.forecast.closing
+    if (request.date !== undefined && d < lastDay) continue
+    const targetCharge = targetPct === undefined ? null : targetPct / 100
+    const { penalties } = document
+    days.push(dayBudget({ race, stages, dayIndex: d, date: on, zone, targetCharge, penalties, ...driven }))
+  }
+  return { days, notes }
 }
 
 function dayWanted(race: RaceDocument, wanted: string | undefined): number {
@@ -131,10 +131,13 @@ function meanAlbedo({ race, routes }: ForecastRequest): number {
 }
 
 function roadNotes({ race, routes }: ForecastRequest): string[] {
-  const flat = new Set(placedStages(race).map(({ stage }) => stage.route))
-  return [...flat]
-    .filter((id) => routes[id].points.elevationM === undefined)
-    .map((id) => `${routes[id].name} has no heights: a level road at sea level is assumed.`)
+  const used = [...new Set(placedStages(race).map(({ stage }) => stage.route))]
+  const flat = used.filter((id) => routes[id].points.elevationM === undefined)
+  const albedos = new Set(used.map((id) => routes[id].groundAlbedo))
+  return [
+    ...flat.map((id) => `${routes[id].name} has no heights: a level road at sea level is assumed.`),
+    ...(albedos.size > 1 ? ['The routes lie in ground of different brightness: its mean is assumed for all.'] : []),
+  ]
 }
 
 function checkWindHeight({ car, race, routes }: ForecastRequest): void {
@@ -142,7 +145,7 @@ function checkWindHeight({ car, race, routes }: ForecastRequest): void {
     if (routes[stage.route].roughnessM >= car.body.windHeightM)
       throw new InputError(
         'out-of-range',
-        `routes[${JSON.stringify(stage.route)}].roughnessM`,
+        fieldName(['routes', stage.route, 'roughnessM']),
         `${routes[stage.route].roughnessM} given; expected less than the car's windHeightM (${car.body.windHeightM})`,
       )
 }

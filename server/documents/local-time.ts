@@ -11,7 +11,7 @@ export function instantMs(date: string, time: string, zone: string, field: strin
   const [hour, minute, second = 0] = time.split(':').map(Number)
   const [year, month, day] = date.split('-').map(Number)
   const at = DateTime.fromObject({ year, month, day, hour, minute, second }, { zone })
-  if (!at.isValid || at.hour !== hour || at.minute !== minute)
+  if (!at.isValid || at.day !== day || at.hour !== hour || at.minute !== minute)
     throw new InputError('no-such-time', field, `${time} given; the clocks of ${zone} skip it on ${date}`)
   const earlier = at.minus({ hours: 1 })
   const isSecond = earlier.hour === hour && earlier.offset !== at.offset && earlier.minute === minute

@@ -46,6 +46,9 @@ export const timeOfDay = (meaning: string) =>
     .regex(/^(?:[01]\d|2[0-3]):[0-5]\d(?::[0-5]\d)?$/, 'a local time as HH:MM or HH:MM:SS')
     .describe(meaning)
 
+/** A local time of day with its seconds, so that times compare as text. */
+export const withSeconds = (time: string): string => (time.length === 5 ? `${time}:00` : time)
+
 /** A time zone by its IANA name. */
 export const zoneName = (meaning: string) =>
   label(meaning).refine(isZone, 'an IANA time zone, for example Africa/Windhoek')

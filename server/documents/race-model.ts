@@ -4,8 +4,10 @@ import type { DayRules, StageRule } from '../engine/day-rules.ts'
 import { InputError } from '../engine/input-error.ts'
 import { cumulativeM } from '../engine/route.ts'
 import type { RoadPoints, Stretch } from '../engine/route.ts'
+import { fieldName } from './check.ts'
 import { instantMs } from './local-time.ts'
-import type { DayDocument, RaceDocument, StageDocument } from './race.ts'
+import { withSeconds } from './quantity.ts'
+import type { RaceDocument, StageDocument } from './race.ts'
 import type { RouteDocument } from './route.ts'
 
 const DEG = Math.PI / 180
@@ -29,10 +31,15 @@ export const zoneOf = (race: RaceDocument, dayIndex: number): string => race.day
 /**
  * The road of a race: its stages' stretches of their routes, joined.
  *
+ * @param cutsKm  more edges of pieces on each stage, from the start of the stage. [km]
  * @throws InputError when a stage names a route that is not given, or leaves its route
  */
-export function raceCourse(race: RaceDocument, routes: Record<string, RouteDocument>): Course {
-  const points = new Map<string, { points: RoadPoints; lengthM: number }>()
+export function raceCourse(
+  race: RaceDocument,
+  routes: Record<string, RouteDocument>,
+  cutsKm: (stage: string) => number[] = () => [],
+): Course {
+  const known = new Map<string, { points: RoadPoints; lengthM: number }>()
   const roads = placedStages(race).map(({ stage, field }): StageRoad => {
     if (!Object.hasOwn(routes, stage.route))
       throw new InputError(
@@ -45,12 +52,13 @@ export function raceCourse(race: RaceDocument, routes: Record<string, RouteDocum
         }`,
       )
     const route = routes[stage.route]
-    const road = points.get(stage.route) ?? roadOf(route)
-    points.set(stage.route, road)
+    const road = known.get(stage.route) ?? roadOf(route, stage.route)
+    known.set(stage.route, road)
     return {
       points: road.points,
       stretches: stretchesOf(route, stage.route, road.lengthM),
       ...stretchOfRoad(stage, field, road.lengthM),
+      cutsM: cutsKm(stage.id).map((km) => (stage.fromKm + km) * 1000),
       roughnessM: route.roughnessM,
       limitMps: route.limitKmh / 3.6,
     }
@@ -60,6 +68,9 @@ export function raceCourse(race: RaceDocument, routes: Record<string, RouteDocum
 
 /** People round lengths: a stage may end so far beyond the last point and then ends on it. [M] */
 const ROUNDING_M = 100
+
+/** Shorter than this is no road. [M] */
+const SHORTEST_M = 1
 
 function stretchOfRoad(stage: StageDocument, field: string, lengthM: number): { fromM: number; toM: number } {
   const check = (name: 'fromKm' | 'toKm', isGood: boolean): void => {
@@ -72,12 +83,18 @@ function stretchOfRoad(stage: StageDocument, field: string, lengthM: number): { 
   }
   const fromM = stage.fromKm * 1000
   const toM = stage.toKm === undefined ? lengthM : stage.toKm * 1000
-  check('fromKm', fromM < lengthM)
+  check('fromKm', fromM <= lengthM - SHORTEST_M)
   check('toKm', toM <= lengthM + ROUNDING_M)
+  if (toM < fromM + SHORTEST_M)
+    throw new InputError(
+      'too-short',
+      `${field}.toKm`,
+      `${stage.toKm} given; expected at least ${SHORTEST_M} m beyond fromKm`,
+    )
   return { fromM, toM: Math.min(toM, lengthM) }
 }
 
-function roadOf(route: RouteDocument): { points: RoadPoints; lengthM: number } {
+function roadOf(route: RouteDocument, id: string): { points: RoadPoints; lengthM: number } {
   const { latDeg, lonDeg, elevationM } = route.points
   const points = {
     latRad: Float64Array.from(latDeg, (deg) => deg * DEG),
@@ -85,7 +102,13 @@ function roadOf(route: RouteDocument): { points: RoadPoints; lengthM: number } {
     altM: elevationM === undefined ? new Float64Array(latDeg.length) : Float64Array.from(elevationM),
   }
   const along = cumulativeM(points)
-  return { points, lengthM: along[along.length - 1] }
+  const lengthM = along[along.length - 1]
+  if (lengthM >= SHORTEST_M) return { points, lengthM }
+  throw new InputError(
+    'too-short',
+    fieldName(['routes', id, 'points']),
+    `a road of ${lengthM.toFixed(3)} m given; expected at least ${SHORTEST_M} m from the first point to the last`,
+  )
 }
 
 function stretchesOf(route: RouteDocument, id: string, lengthM: number): Stretch[] {
@@ -93,7 +116,7 @@ function stretchesOf(route: RouteDocument, id: string, lengthM: number): Stretch
     if (s.fromKm * 1000 >= lengthM)
       throw new InputError(
         'off-the-route',
-        `routes[${JSON.stringify(id)}].stretches[${i}].fromKm`,
+        fieldName(['routes', id, 'stretches', i, 'fromKm']),
         `${s.fromKm} given; expected less than the length of the route (${(lengthM / 1000).toFixed(3)} km)`,
       )
     return {
@@ -139,20 +162,25 @@ export function stageRules(race: RaceDocument): StageRule[] {
 export function dayRules(race: RaceDocument): DayRules[] {
   const stages = placedStages(race)
   return race.days.map((day, d) => {
-    const zone = zoneOf(race, d)
-    const at = (time: string, name: string) => instantMs(day.date, time, zone, `race.days[${d}].${name}`)
-    const opens = firstTime(day)
-    const closes = lastTime(day)
+    const at = ({ time, name }: NamedTime) =>
+      instantMs(day.date, time, zoneOf(race, d), fieldName(['race', 'days', d, ...name]))
+    const charging = day.charging.map((w, i) => ({
+      from: { time: w.from, name: ['charging', i, 'from'] },
+      to: { time: w.to, name: ['charging', i, 'to'] },
+      lifts: w.lift,
+    }))
+    const driving = {
+      from: { time: day.driving.from, name: ['driving', 'from'] },
+      to: { time: day.driving.to, name: ['driving', 'to'] },
+    }
+    const first = [driving.from, ...charging.map((w) => w.from)].reduce((a, b) => (isLater(a, b) ? b : a))
+    const last = [driving.to, ...charging.map((w) => w.to)].reduce((a, b) => (isLater(b, a) ? b : a))
     return {
-      opensMs: at(opens, 'release'),
-      closesMs: at(closes, 'impound'),
-      drivingFromMs: at(day.driving.from, 'driving.from'),
-      drivingToMs: at(day.driving.to, 'driving.to'),
-      charging: day.charging.map((w, i) => ({
-        fromMs: at(w.from, `charging[${i}].from`),
-        toMs: at(w.to, `charging[${i}].to`),
-        lifts: w.lift,
-      })),
+      opensMs: at(day.release === undefined ? first : { time: day.release, name: ['release'] }),
+      closesMs: at(day.impound === undefined ? last : { time: day.impound, name: ['impound'] }),
+      drivingFromMs: at(driving.from),
+      drivingToMs: at(driving.to),
+      charging: charging.map((w) => ({ fromMs: at(w.from), toMs: at(w.to), lifts: w.lifts })),
       raiseS: day.raiseMin * 60,
       lowerS: day.lowerMin * 60,
       lastStage: stages.findLastIndex((s) => s.dayIndex <= d),
@@ -160,10 +188,10 @@ export function dayRules(race: RaceDocument): DayRules[] {
   })
 }
 
-/** The day opens with the release, or with the first thing that may happen. */
-const firstTime = (day: DayDocument): string =>
-  day.release ?? [day.driving.from, ...day.charging.map((w) => w.from)].reduce((a, b) => (a < b ? a : b))
+/** A local time with its place in the day's document. */
+interface NamedTime {
+  time: string
+  name: (string | number)[]
+}
 
-/** The day closes with the impound, or with the last thing that may happen. */
-const lastTime = (day: DayDocument): string =>
-  day.impound ?? [day.driving.to, ...day.charging.map((w) => w.to)].reduce((a, b) => (a > b ? a : b))
+const isLater = (one: NamedTime, other: NamedTime): boolean => withSeconds(one.time) > withSeconds(other.time)

@@ -1,9 +1,11 @@
 import { z } from 'zod'
-import { count, date, label, quantity, slug, timeOfDay, zoneName } from './quantity.ts'
+import { count, date, label, quantity, slug, timeOfDay, withSeconds, zoneName } from './quantity.ts'
+
+const isBefore = (one: string, other: string): boolean => withSeconds(one) < withSeconds(other)
 
 const window = z
   .strictObject({ from: timeOfDay('start, local time'), to: timeOfDay('end, local time') })
-  .refine((w) => w.to > w.from, { path: ['to'], error: 'later than from' })
+  .refine((w) => isBefore(w.from, w.to), { path: ['to'], error: 'later than from' })
 
 const chargingWindow = z
   .strictObject({
@@ -11,20 +13,25 @@ const chargingWindow = z
     to: timeOfDay('end, local time'),
     lift: z.boolean().describe('whether the array may be lifted to the sun').default(true),
   })
-  .refine((w) => w.to > w.from, { path: ['to'], error: 'later than from' })
+  .refine((w) => isBefore(w.from, w.to), { path: ['to'], error: 'later than from' })
 
-const stop = z.strictObject({
-  minutes: quantity(0, 600, 'length of the stop [min]'),
-  opensAt: timeOfDay('when the stop opens, local time').optional(),
-  closesAt: timeOfDay('latest arrival, local time').optional(),
-  clockStarts: z
-    .enum(['on-arrival', 'at-opening'])
-    .describe('for a car that comes before the stop opens: whether its minutes run from arrival or from the opening')
-    .default('on-arrival'),
-  lift: z.boolean().describe('whether the array may be lifted to the sun').default(true),
-  raiseMin: quantity(0, 60, 'minutes to lift the array').default(2),
-  lowerMin: quantity(0, 60, 'minutes to lower it again').default(2),
-})
+const stop = z
+  .strictObject({
+    minutes: quantity(0, 600, 'length of the stop [min]'),
+    opensAt: timeOfDay('when the stop opens, local time').optional(),
+    closesAt: timeOfDay('latest arrival, local time').optional(),
+    clockStarts: z
+      .enum(['on-arrival', 'at-opening'])
+      .describe('for a car that comes before the stop opens: whether its minutes run from arrival or from the opening')
+      .default('on-arrival'),
+    lift: z.boolean().describe('whether the array may be lifted to the sun').default(true),
+    raiseMin: quantity(0, 60, 'minutes to lift the array').default(2),
+    lowerMin: quantity(0, 60, 'minutes to lower it again').default(2),
+  })
+  .refine((s) => s.opensAt === undefined || s.closesAt === undefined || isBefore(s.opensAt, s.closesAt), {
+    path: ['closesAt'],
+    error: 'later than opensAt',
+  })
 
 const stage = z
   .strictObject({
@@ -59,16 +66,16 @@ const day = z
     const issue = (path: (string | number)[], message: string, input: unknown) =>
       context.addIssue({ code: 'custom', path, message, input })
     d.charging.forEach((w, i) => {
-      if (d.release !== undefined && w.from < d.release)
+      if (d.release !== undefined && isBefore(w.from, d.release))
         issue(['charging', i, 'from'], `not before the release (${d.release})`, w.from)
-      if (d.impound !== undefined && w.to > d.impound)
+      if (d.impound !== undefined && isBefore(d.impound, w.to))
         issue(['charging', i, 'to'], `not after the impound (${d.impound})`, w.to)
-      if (i > 0 && w.from < d.charging[i - 1].to)
+      if (i > 0 && isBefore(w.from, d.charging[i - 1].to))
         issue(['charging', i, 'from'], `not before the window before it ends (${d.charging[i - 1].to})`, w.from)
     })
-    if (d.release !== undefined && d.driving.from < d.release)
+    if (d.release !== undefined && isBefore(d.driving.from, d.release))
       issue(['driving', 'from'], `not before the release (${d.release})`, d.driving.from)
-    if (d.impound !== undefined && d.driving.to > d.impound)
+    if (d.impound !== undefined && isBefore(d.impound, d.driving.to))
       issue(['driving', 'to'], `not after the impound (${d.impound})`, d.driving.to)
   })
 

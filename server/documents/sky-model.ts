@@ -32,13 +32,13 @@ const PRECEDING: ReadonlySet<SkyColumn> = new Set(['cloudPct', 'ghiWm2', 'dniWm2
 /** A sky as the engine needs it, and what was assumed where the document is silent. */
 export function skyModel(sky: SkyDocument): { sky: Sky; assumptions: string[] } {
   const prepared = prepareSky({
-    places: sky.places.map((place) => placeInput(sky, place)),
+    places: sky.places.map((place, p) => placeInput(sky, place, `sky.places[${p}]`)),
     linkeDefault: LINKE_DEFAULT,
   })
   return { sky: prepared, assumptions: [...silences(sky), ...corrections(sky, prepared)] }
 }
 
-function placeInput(sky: SkyDocument, place: SkyPlace): SkyPlaceInput {
+function placeInput(sky: SkyDocument, place: SkyPlace, field: string): SkyPlaceInput {
   const at = Float64Array.from(place.at, Date.parse)
   const input: SkyPlaceInput = {
     latRad: place.latDeg * DEG,
@@ -51,7 +51,7 @@ function placeInput(sky: SkyDocument, place: SkyPlace): SkyPlaceInput {
     const values = place[name]
     if (values === undefined) continue
     input[column] = Float64Array.from(values, (value, i) =>
-      value === null ? Number.NaN : toEngine(sky, place, name, value, i),
+      value === null ? Number.NaN : toEngine(sky, place, { name, row: i, field: `${field}.${name}[${i}]` }, value),
     )
     const convention = sky.averaging[name] ?? (PRECEDING.has(name) ? 'preceding' : 'instant')
     if (convention !== 'instant') (input.intervalOf ??= {})[column] = intervals(at, convention)
@@ -60,22 +60,56 @@ function placeInput(sky: SkyDocument, place: SkyPlace): SkyPlaceInput {
 }
 
 /** One cell in the engine's unit; what depends on the air temperature of its row is missing where that is. */
-function toEngine(sky: SkyDocument, place: SkyPlace, name: SkyColumn, value: number, row: number): number {
-  const airC = place.airTempC?.[row] ?? Number.NaN
-  switch (name) {
+function toEngine(
+  sky: SkyDocument,
+  place: SkyPlace,
+  cell: { name: SkyColumn; row: number; field: string },
+  value: number,
+): number {
+  const airC = place.airTempC?.[cell.row] ?? Number.NaN
+  switch (cell.name) {
     case 'cloudPct':
       return value / 100
     case 'humidityPct':
-      return vapourFromHumidityPa(airC, value / 100)
+      return believed(
+        vapourFromHumidityPa(airC, value / 100),
+        0,
+        MOST_VAPOUR_PA,
+        cell.field,
+        `${value} % at ${airC} °C`,
+      )
     case 'dewPointC':
       return vapourFromDewPointPa(value)
     case 'windFromDeg':
       return value * DEG
     case 'pressureHpa':
-      return sky.pressureIs === 'station' ? value * 100 : stationFromSeaLevelPa(value * 100, place.elevationM, airC)
+      if (sky.pressureIs === 'station') return value * 100
+      return believed(
+        stationFromSeaLevelPa(value * 100, place.elevationM, airC),
+        LEAST_PRESSURE_PA,
+        MOST_PRESSURE_PA,
+        cell.field,
+        `${value} hPa at sea level under ${place.elevationM} m`,
+      )
     default:
       return value
   }
+}
+
+/** Damper or thinner air than this is a slip of unit or column. [Pa] Records are near 5 kPa of vapour, 330 and 1085 hPa. */
+const MOST_VAPOUR_PA = 12_000
+const LEAST_PRESSURE_PA = 30_000
+const MOST_PRESSURE_PA = 110_000
+
+/** A pressure worked out from a cell, NaN where it could not be. @throws InputError where no air is like that */
+function believed(valuePa: number, leastPa: number, mostPa: number, field: string, given: string): number {
+  if (!(valuePa < leastPa || valuePa > mostPa)) return valuePa
+  const hPa = (pascal: number) => Math.round(pascal / 100)
+  throw new InputError(
+    'out-of-range',
+    field,
+    `${given} given, which makes ${hPa(valuePa)} hPa; expected ${hPa(leastPa)} to ${hPa(mostPa)} hPa`,
+  )
 }
 
 function intervals(at: Float64Array, convention: 'preceding' | 'following' | 'instant') {

@@ -11,6 +11,7 @@ const cells = (min: number, max: number, meaning: string) =>
   z.array(z.number().min(min).max(max).nullable()).max(MAX_SKY_ROWS).describe(meaning).optional()
 
 const irradiance = (what: string) => cells(0, 1600, `${what} [W/m²]`)
+const part = (what: string) => cells(0, 1500, `${what} [W/m²]`)
 
 /** What a value speaks for: the time before its stamp, the time after it, or that moment. */
 export const averaging = z
@@ -21,8 +22,8 @@ export const averaging = z
 const columns = {
   cloudPct: cells(0, 100, 'total cloud cover [%]'),
   ghiWm2: irradiance('global horizontal irradiance'),
-  dniWm2: irradiance('direct normal irradiance'),
-  dhiWm2: irradiance('diffuse horizontal irradiance'),
+  dniWm2: part('direct normal irradiance'),
+  dhiWm2: part('diffuse horizontal irradiance'),
   airTempC: cells(-60, 60, 'air temperature at 2 m [°C]'),
   humidityPct: cells(0, 100, 'relative humidity [%]'),
   dewPointC: cells(-80, 45, 'dew point [°C]'),
@@ -75,9 +76,23 @@ const place = z
       issue(['cloudPct'], 'cloud cover, or GHI, or DNI with DHI', undefined)
     if (p.windMps !== undefined && p.windFromDeg === undefined)
       issue(['windFromDeg'], 'a direction for every wind speed [°]', undefined)
+    if (p.windFromDeg !== undefined && p.windMps === undefined)
+      issue(['windMps'], 'a speed for every wind direction [m/s]', undefined)
+    for (const [name, other] of [
+      ['dniWm2', 'dhiWm2'],
+      ['dhiWm2', 'dniWm2'],
+    ] as const)
+      if (p[name] !== undefined && p[other] === undefined && p.ghiWm2 === undefined)
+        issue([name], `a second of ghiWm2, dniWm2 and dhiWm2 beside it`, 'alone')
+    if (p.humidityPct !== undefined && isNeverWithTemperature(p.humidityPct, p.airTempC))
+      issue(['humidityPct'], 'at least one value in a row with an air temperature', 'none')
     if (p.humidityPct !== undefined && p.dewPointC !== undefined)
       issue(['dewPointC'], 'humidity or dew point, not both', 'both')
   })
+
+/** Humidity and pressure reduced to sea level mean something with the air temperature of their row only. */
+const isNeverWithTemperature = (values: (number | null)[], airTempC: (number | null)[] | undefined): boolean =>
+  values.every((value, i) => value === null || (airTempC?.[i] ?? null) === null)
 
 /** Weather along the route: places × stamps. */
 export const skyDocument = z
@@ -99,6 +114,18 @@ export const skyDocument = z
       .default('station')
       .describe('whether pressureHpa holds at the height of the place or is reduced to sea level'),
     places: z.array(place).min(1).max(100),
+  })
+  .superRefine((sky, context) => {
+    const issue = (path: (string | number)[], message: string, input: unknown) =>
+      context.addIssue({ code: 'custom', path, message, input })
+    const { ghiWm2 = 'preceding', dhiWm2 = 'preceding' } = sky.averaging
+    sky.places.forEach((p, i) => {
+      if (p.ghiWm2 !== undefined && p.dhiWm2 !== undefined && p.dniWm2 === undefined && ghiWm2 !== dhiWm2)
+        issue(['averaging', 'dhiWm2'], `the same as ghiWm2 (${ghiWm2}) where there is no dniWm2`, dhiWm2)
+      if (sky.pressureIs !== 'sea-level' || p.pressureHpa === undefined) return
+      if (isNeverWithTemperature(p.pressureHpa, p.airTempC))
+        issue(['places', i, 'pressureHpa'], 'at least one value in a row with an air temperature', 'none')
+    })
   })
   .meta({ title: 'Sky' })
 

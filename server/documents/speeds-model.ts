@@ -23,7 +23,15 @@ export function wantedMps(
   return wanted
 }
 
-/** Pieces are cut at about 1 km; a piece belongs to the section that holds its middle. */
+/** Where sections begin and end on a stage, from its start: pieces of the course must be cut there. [km] */
+export const sectionCutsKm =
+  (speeds: SpeedsDocument) =>
+  (stage: string): number[] =>
+    speeds.kind === 'sections'
+      ? speeds.sections.filter((s) => s.stage === stage).flatMap(({ fromKm, toKm }) => [fromKm, toKm])
+      : []
+
+/** A piece belongs to the section that holds its middle; the course is cut where sections begin and end. */
 function fillSections(
   wanted: Float64Array,
   speeds: Extract<Given, { kind: 'sections' }>,
@@ -33,6 +41,13 @@ function fillSections(
   const { fromM, lengthM } = course.pieces
   speeds.sections.forEach((section, i) => {
     const stage = course.stages[stageIndex(stages, section.stage, `speeds.sections[${i}].stage`)]
+    const lengthKm = (stage.toM - stage.fromM) / 1000
+    if (section.fromKm >= lengthKm)
+      throw new InputError(
+        'off-the-stage',
+        `speeds.sections[${i}].fromKm`,
+        `${section.fromKm} given; expected less than the length of the stage (${lengthKm.toFixed(3)} km)`,
+      )
     for (let p = stage.firstPiece; p < stage.endPiece; p++) {
       const middleKm = (fromM[p] + lengthM[p] / 2 - stage.fromM) / 1000
       if (middleKm >= section.fromKm && middleKm < section.toKm) wanted[p] = section.speedKmh / 3.6

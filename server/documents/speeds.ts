@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { date, quantity, slug } from './quantity.ts'
+import { count, date, quantity, slug } from './quantity.ts'
 
 const speedKmh = quantity(5, 200, 'held speed, where limits and the motor allow it [km/h]')
 
@@ -32,11 +32,13 @@ export const speedsDocument = z
         .min(1)
         .max(5000),
     }),
-    z.strictObject({
-      kind: z.literal('meet-target'),
-      lowestKmh: quantity(5, 200, 'lowest speed to try [km/h]').default(30),
-      highestKmh: quantity(5, 200, 'highest speed to try [km/h]').default(130),
-    }),
+    z
+      .strictObject({
+        kind: z.literal('meet-target'),
+        lowestKmh: count(5, 200, 'lowest speed to try [km/h]').default(30),
+        highestKmh: count(5, 200, 'highest speed to try [km/h]').default(130),
+      })
+      .refine((s) => s.highestKmh >= s.lowestKmh, { path: ['highestKmh'], error: 'at least lowestKmh' }),
   ])
   .meta({ title: 'Speeds' })
 

@@ -8,6 +8,8 @@ export interface StageRoad {
   /** Part of the route that the stage runs on. [M] */
   fromM: number
   toM: number
+  /** More places of the route that must be edges of pieces, where they lie on the stage. [M] */
+  cutsM?: number[]
   roughnessM: number
   /** Limit where no stretch has one. [Mps] */
   limitMps: number
@@ -77,11 +79,13 @@ export function course(roads: StageRoad[]): Course {
 
 /** The pieces of one stage: the route's, cut at the stage's ends. */
 function stagePieces(road: StageRoad): Pieces {
-  const all = pieces(road.points, road.stretches, { cutsM: [road.fromM, road.toM], lengthM: PIECE_M })
+  const { fromM, toM, cutsM = [] } = road
+  const within = cutsM.filter((m) => m > fromM && m < toM)
+  const all = pieces(road.points, road.stretches, { cutsM: [fromM, toM, ...within], lengthM: PIECE_M })
   const inside: number[] = []
   for (let i = 0; i < all.count; i++) {
     const middleM = all.fromM[i] + all.lengthM[i] / 2
-    if (middleM > road.fromM && middleM < road.toM) inside.push(i)
+    if (middleM > fromM && middleM < toM) inside.push(i)
   }
   const part = Object.fromEntries(
     ['fromM', ...COLUMNS].map((name) => [name, Float64Array.from(inside, (i) => all[name as 'fromM'][i])]),

@@ -245,7 +245,126 @@ const CASES: [string, Parameters<typeof checkDocument>[0], unknown, (string | nu
       { kind: 'constant', speedKmh: 80 },
       ['kind'],
       'fast',
-      { field: 'kind' },
+      { field: 'kind', detail: 'expected "constant" or "legs" or "sections" or "meet-target"' },
+    ],
+    [
+      'a highest speed under the lowest',
+      speedsDocument,
+      { kind: 'meet-target', lowestKmh: 80, highestKmh: 90 },
+      ['highestKmh'],
+      60,
+      { field: 'highestKmh', value: '60', detail: 'expected at least lowestKmh' },
+    ],
+    [
+      'a speed to try that is not whole',
+      speedsDocument,
+      { kind: 'meet-target' },
+      ['lowestKmh'],
+      60.5,
+      { field: 'lowestKmh', value: '60.5', detail: 'expected a whole number' },
+    ],
+    [
+      'a mass of null',
+      carDocument,
+      someCar(),
+      ['body', 'massKg'],
+      null,
+      { field: 'body.massKg', value: 'null', detail: 'expected a number' },
+    ],
+    [
+      'a cell type without a name',
+      carDocument,
+      someCar(),
+      ['cellTypes'],
+      { '': someCar().cellTypes.silicon },
+      { detail: 'expected as a name at least 1 characters' },
+    ],
+    [
+      'bench points too few for four losses',
+      carDocument,
+      someCar(),
+      ['trackers', 0],
+      { ...someCar().trackers[0], losses: undefined, bench: [] },
+      { field: 'trackers[0].bench', detail: 'expected at least 4 entries' },
+    ],
+    [
+      'a jump in the pack table',
+      carDocument,
+      someCar(),
+      ['pack', 'cellOcv', 1, 'chargePct'],
+      1e-9,
+      { field: 'pack.cellOcv[1].chargePct', detail: 'expected at least 0.01 more than the row before (0)' },
+    ],
+    [
+      'driving hours of no length, seconds written once',
+      raceDocument,
+      someRace(),
+      ['days', 0, 'driving'],
+      { from: '08:00', to: '08:00:00' },
+      { field: 'days[0].driving.to', detail: 'expected later than from' },
+    ],
+    [
+      'a stop that closes before it opens',
+      raceDocument,
+      someRace(),
+      ['days', 0, 'stages', 0, 'stop'],
+      { minutes: 30, opensAt: '12:00', closesAt: '11:00' },
+      { field: 'days[0].stages[0].stop.closesAt', detail: 'expected later than opensAt' },
+    ],
+    [
+      'a direction without wind',
+      skyDocument,
+      someSky(),
+      ['places', 0, 'windMps'],
+      undefined,
+      { field: 'places[0].windMps', detail: 'expected a speed for every wind direction [m/s]' },
+    ],
+    [
+      'direct sun alone beside the cloud',
+      skyDocument,
+      someSky(),
+      ['places', 0, 'dniWm2'],
+      Array.from({ length: 15 }, () => 500),
+      { field: 'places[0].dniWm2', detail: 'expected a second of ghiWm2, dniWm2 and dhiWm2 beside it' },
+    ],
+    [
+      'more direct sun than there is above the air',
+      skyDocument,
+      someSky(),
+      ['places', 0, 'dniWm2'],
+      Array.from({ length: 15 }, () => 1510),
+      { field: 'places[0].dniWm2[0]', value: '1510', detail: 'expected at most 1500' },
+    ],
+    [
+      'humidity only where the temperature is missing',
+      skyDocument,
+      { ...someSky(), places: [{ ...someSky().places[0], humidityPct: [50, ...Array(14).fill(null)] }] },
+      ['places', 0, 'airTempC', 0],
+      null,
+      { field: 'places[0].humidityPct', detail: 'expected at least one value in a row with an air temperature' },
+    ],
+    [
+      'sea-level pressure only where the temperature is missing',
+      skyDocument,
+      {
+        ...someSky(),
+        pressureIs: 'sea-level',
+        places: [{ ...someSky().places[0], pressureHpa: [1013, ...Array(14).fill(null)] }],
+      },
+      ['places', 0, 'airTempC', 0],
+      null,
+      { field: 'places[0].pressureHpa', detail: 'expected at least one value in a row with an air temperature' },
+    ],
+    [
+      'global and diffuse light that speak for other times, with no direct light',
+      skyDocument,
+      {
+        ...someSky(),
+        places: [{ ...someSky().places[0], ghiWm2: Array(15).fill(400), dhiWm2: Array(15).fill(100) }],
+      },
+      ['averaging'],
+      { ghiWm2: 'instant' },
+      { field: 'averaging.dhiWm2', detail: 'expected the same as ghiWm2 (instant) where there is no dniWm2' },
     ],
     [
       'speeds with a missing figure',
@@ -262,6 +381,13 @@ describe('a wrong document is refused with field, value and expectation', () => 
     const problems = problemsOf(schema, document, set(path, value))
     expect(problems).toContainEqual(expect.objectContaining(expected))
     for (const problem of problems) expect(problem.detail).not.toMatch(/undefined|NaN|\[object/)
+  })
+
+  test('the same time written with and without seconds is the same time', () => {
+    const race = someRace()
+    race.days[0].release = '06:00:00'
+    race.days[0].impound = '18:30:00'
+    expect(checkDocument(raceDocument, race).problems).toBeUndefined()
   })
 
   test('every problem is told, not only the first', () => {

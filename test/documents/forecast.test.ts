@@ -83,7 +83,7 @@ describe('documents that do not fit together are refused by field', () => {
       'a stretch beyond the end of the route',
       (r) => void (r.routes.road.stretches = [{ fromKm: 500, toKm: 600 }]),
       'off-the-route',
-      'routes["road"].stretches[0].fromKm',
+      'routes.road.stretches[0].fromKm',
     ],
     [
       'a sky that ends at noon',
@@ -98,13 +98,68 @@ describe('documents that do not fit together are refused by field', () => {
       'land rougher than the car is high',
       (r) => void (r.routes.road.roughnessM = 1),
       'out-of-range',
-      'routes["road"].roughnessM',
+      'routes.road.roughnessM',
     ],
     [
       'a leg of a stage that there is not',
       (r) => void (r.speeds = { kind: 'legs', speedKmh: 70, legs: [{ stage: 'second', speedKmh: 80 }] }),
       'unknown-stage',
       'speeds.legs[0].stage',
+    ],
+    [
+      'a section beyond its stage',
+      (r) =>
+        void (r.speeds = {
+          kind: 'sections',
+          speedKmh: 70,
+          sections: [{ stage: 'first', fromKm: 250, toKm: 300, speedKmh: 80 }],
+        }),
+      'off-the-stage',
+      'speeds.sections[0].fromKm',
+    ],
+    [
+      'a route whose points are all one place',
+      (r) => void (r.routes.road.points = { latDeg: [-23, -23], lonDeg: [17, 17] }),
+      'too-short',
+      'routes.road.points',
+    ],
+    [
+      'a stage of less than a metre',
+      (r) => void (r.race.days[0].stages = [{ ...(r.race.days[0].stages ?? [])[0], toKm: 0.0009 }]),
+      'too-short',
+      'race.days[0].stages[0].toKm',
+    ],
+    [
+      'a day that would open in an hour that the clocks skip',
+      (r) => {
+        r.race.zone = 'Europe/Berlin'
+        r.race.days[0].date = '2026-03-29'
+        r.race.days[0].release = undefined
+        r.race.days[0].charging = [{ from: '02:30', to: '07:00' }]
+      },
+      'no-such-time',
+      'race.days[0].charging[0].from',
+    ],
+    [
+      'air damper than any',
+      (r) => {
+        const [place] = r.sky.places
+        place.humidityPct = place.at.map(() => 100)
+        place.airTempC = place.at.map((_, i) => (i === 3 ? 56 : 20))
+      },
+      'out-of-range',
+      'sky.places[0].humidityPct[3]',
+    ],
+    [
+      'a sea-level pressure that leaves no air at the height of the place',
+      (r) => {
+        r.sky.pressureIs = 'sea-level'
+        const [place] = r.sky.places
+        place.elevationM = 9000
+        place.pressureHpa = place.at.map(() => 700)
+      },
+      'out-of-range',
+      'sky.places[0].pressureHpa[0]',
     ],
     ['a day that there is not', (r) => void (r.date = '2026-10-20'), 'unknown-date', 'date'],
   ])('%s', (_name, change, code, field) => {
@@ -124,6 +179,11 @@ describe('local time', () => {
   test('an hour that the clocks skip is refused', () => {
     expect(() => instantMs('2026-03-29', '02:30', 'Europe/Berlin', 'days[0].release')).toThrow(/days\[0\]\.release/)
     expect(instantMs('2026-03-29', '03:00', 'Europe/Berlin', 'x')).toBe(Date.UTC(2026, 2, 29, 1))
+  })
+
+  // Samoa moved over the date line: 30 December 2011 did not exist there (IANA time zone database, Pacific/Apia)
+  test('a day that the clocks skip is refused', () => {
+    expect(() => instantMs('2011-12-30', '12:00', 'Pacific/Apia', 'x')).toThrow(/skip it on 2011-12-30/)
   })
 
   test('an hour that comes twice is taken the first time', () => {
@@ -160,7 +220,21 @@ describe('speeds', () => {
       }
     })
     const hours = 50 / 90 + (day.drivenKm - 50) / 70
-    expect((Date.parse(day.stages[0].arriveAt) - Date.parse(day.stages[0].departAt)) / 3_600_000).toBeCloseTo(hours, 2)
+    expect((Date.parse(day.stages[0].arriveAt) - Date.parse(day.stages[0].departAt)) / 3_600_000).toBeCloseTo(hours, 3)
+  })
+
+  test('a section shorter than a piece of road is driven at its own speed to the metre', () => {
+    const { series } = oneDay((r) => {
+      r.speeds = {
+        kind: 'sections',
+        speedKmh: 70,
+        sections: [{ stage: 'first', fromKm: 20.35, toKm: 20.45, speedKmh: 30 }],
+      }
+    })
+    const slow = series.speedKmh.flatMap((kmh, i) => (kmh === 30 ? [i] : []))
+    expect(slow).toHaveLength(1)
+    expect(series.km[slow[0] - 1]).toBeCloseTo(20.35, 3)
+    expect(series.km[slow[0]]).toBeCloseTo(20.45, 3)
   })
 
   test('the fastest speed that meets the target is found: one more misses it', () => {
@@ -331,6 +405,15 @@ describe('figures that belong together', () => {
       watts.reduce((sum, w, i) => sum + (w * (day.series.toMs[i] - day.series.fromMs[i])) / 3_600_000, 0)
     expect(wh(day.series.inW)).toBeCloseTo(day.ledger.cameInWh, 0)
     expect(wh(day.series.outW)).toBeCloseTo(day.ledger.wentOutWh, 0)
+  })
+
+  test('one brightness of the ground for routes that differ is said', () => {
+    const { assumptions } = budget((r) => {
+      r.routes.other = { ...r.routes.road, groundAlbedo: 0.4 }
+      const [stage] = r.race.days[0].stages ?? []
+      r.race.days[0].stages = [stage, { ...stage, id: 'second', route: 'other' }]
+    })
+    expect(assumptions).toContain('The routes lie in ground of different brightness: its mean is assumed for all.')
   })
 
   test('what was assumed is said', () => {
