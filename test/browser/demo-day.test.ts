@@ -8,7 +8,7 @@ import { budgetOf, ledgerEnergies, shownEnergies } from './shown.ts'
 const SATURDAY = { race: 'plateau-run', car: 'weaver-2', sky: 'plateau-forecast', date: '2026-10-17' }
 const PATIENCE_MS = 120_000
 
-describeWithBrowser('the demo day on a phone', () => {
+describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
   let service: Service
   let browser: Browser
   let phone: Phone

@@ -32,7 +32,7 @@ export async function openPhone(browser: Browser, options: BrowserContextOptions
     ...options,
   })
   const page = await context.newPage()
-  page.setDefaultTimeout(30_000)
+  page.setDefaultTimeout(20_000)
   const complaints: string[] = []
   page.on('console', (message) => {
     if (message.type() === 'error' || message.type() === 'warning') complaints.push(message.text())

@@ -64,6 +64,12 @@ export function AddSky() {
           <div data-refused>
             <p>{pick?.file.name}:</p>
             <Conflict refusal={answer.value.refusal} />
+            {answer.value.refusal.status === 422 && (
+              <p>
+                Say above what the table does not: what a value speaks for, its offset, its place, its columns. Then
+                read it again.
+              </p>
+            )}
           </div>
         )}
         {answer.value?.value !== undefined && <Preview read={answer.value.value} file={pick?.file.name ?? ''} />}

@@ -1,19 +1,34 @@
 import type { ComponentChildren } from 'preact'
+import { useId } from 'preact/hooks'
+
+interface Named {
+  id: string
+  'aria-describedby'?: string
+}
 
 interface FieldProps {
   label: string
   hint?: string
-  children: ComponentChildren
+  /** The control, given the id and description that tie it to its label and hint. */
+  children: (named: Named) => ComponentChildren
 }
 
 /** A labelled control with its hint under it. */
-export const Field = ({ label, hint, children }: FieldProps) => (
-  <label class="field">
-    <span>{label}</span>
-    {children}
-    {hint !== undefined && <small class="note">{hint}</small>}
-  </label>
-)
+export function Field({ label, hint, children }: FieldProps) {
+  const id = useId()
+  const hintId = `${id}-hint`
+  return (
+    <div class="field">
+      <label for={id}>{label}</label>
+      {children(hint === undefined ? { id } : { id, 'aria-describedby': hintId })}
+      {hint !== undefined && (
+        <small class="note" id={hintId}>
+          {hint}
+        </small>
+      )}
+    </div>
+  )
+}
 
 interface TextProps {
   label: string
@@ -27,7 +42,15 @@ type Attributes = { type?: 'text'; list?: string; inputMode?: 'numeric' | 'decim
 
 export const TextField = ({ label, value, onChange, hint, ...attributes }: TextProps & Attributes) => (
   <Field label={label} hint={hint}>
-    <input {...attributes} autocomplete="off" value={value} onInput={(event) => onChange(event.currentTarget.value)} />
+    {(named) => (
+      <input
+        {...attributes}
+        {...named}
+        autocomplete="off"
+        value={value}
+        onInput={(event) => onChange(event.currentTarget.value)}
+      />
+    )}
   </Field>
 )
 
@@ -41,13 +64,15 @@ interface SelectProps {
 
 export const SelectField = ({ label, value, options, onChange, hint }: SelectProps) => (
   <Field label={label} hint={hint}>
-    <select value={value} onChange={(event) => onChange(event.currentTarget.value)}>
-      {options.map(([key, text]) => (
-        <option key={key} value={key} selected={key === value}>
-          {text}
-        </option>
-      ))}
-    </select>
+    {(named) => (
+      <select {...named} value={value} onChange={(event) => onChange(event.currentTarget.value)}>
+        {options.map(([key, text]) => (
+          <option key={key} value={key} selected={key === value}>
+            {text}
+          </option>
+        ))}
+      </select>
+    )}
   </Field>
 )
 
@@ -60,13 +85,16 @@ interface FileProps {
 
 export const FileField = ({ label, accept, hint, onFile }: FileProps) => (
   <Field label={label} hint={hint}>
-    <input
-      type="file"
-      accept={accept}
-      onChange={(event) => {
-        const file = event.currentTarget.files?.[0]
-        if (file !== undefined) onFile(file)
-      }}
-    />
+    {(named) => (
+      <input
+        {...named}
+        type="file"
+        accept={accept}
+        onChange={(event) => {
+          const file = event.currentTarget.files?.[0]
+          if (file !== undefined) onFile(file)
+        }}
+      />
+    )}
   </Field>
 )

@@ -47,12 +47,15 @@ export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
         />
         {refused.value !== null && <Conflict refusal={refused.value} />}
         <Field label={`The ${word} as JSON`}>
-          <textarea
-            spellcheck={false}
-            value={text.value}
-            aria-invalid={parsed !== null && document === null}
-            onInput={(event) => (text.value = event.currentTarget.value)}
-          />
+          {(named) => (
+            <textarea
+              {...named}
+              spellcheck={false}
+              value={text.value}
+              aria-invalid={parsed !== null && document === null}
+              onInput={(event) => (text.value = event.currentTarget.value)}
+            />
+          )}
         </Field>
         {parsed !== null && 'problem' in parsed && <Problems problems={[parsed.problem]} />}
         {document !== null && (

@@ -96,7 +96,11 @@ function Mapping({ form, headers, onChange }: OptionsProps) {
             options={[['', 'as recognised'], ...SKY_FIELDS]}
             onChange={(field) => say(header, { field })}
           />
-          <TextField label="unit" value={form.columns[header]?.unit ?? ''} onChange={(unit) => say(header, { unit })} />
+          <TextField
+            label={`Unit of ${header}`}
+            value={form.columns[header]?.unit ?? ''}
+            onChange={(unit) => say(header, { unit })}
+          />
         </div>
       ))}
     </details>

@@ -26,7 +26,7 @@ export function StopRows({ stops, onChange }: StopsProps) {
           <button
             type="button"
             class="quiet"
-            aria-label={`Take stop ${i + 1} out`}
+            aria-label={`Take out stop ${i + 1}`}
             onClick={() => onChange(stops.filter((_, j) => j !== i))}
           >
             Take out
