@@ -43,6 +43,14 @@ export function unwritable(folder: string, error: unknown): StoreError {
   )
 }
 
+/** The fault of a database that does not open, with the engine's reason. */
+export const unreadable = (path: string, reason: string): StoreError =>
+  new StoreError(
+    'data-folder-unreadable',
+    `The embedded database in ${path} did not start: ${reason}. ` +
+      'If its files were damaged, put back a copy, or set DATA_DIR to an empty folder.',
+  )
+
 /**
  * Path of the database inside a data folder, made first where there is none: built aside and renamed
  * when whole, so that a kill half-way leaves nothing to trip over.
@@ -53,6 +61,8 @@ export function unwritable(folder: string, error: unknown): StoreError {
 export async function databaseFolder(folder: string, build: (path: string) => Promise<void>): Promise<string> {
   const path = join(folder, DATABASE)
   if (existsSync(path)) {
+    // Without it the engine would try to make a new database over the old one.
+    if (!existsSync(join(path, 'PG_VERSION'))) throw unreadable(path, 'its file PG_VERSION is missing')
     checkSpace(folder, OPEN_DATABASE_BYTES)
     return path
   }

@@ -29,13 +29,14 @@ export interface Database {
 
 const LIMIT_MS = 15_000
 const CLOSE_WITHIN_S = 5
+const CONNECT_WITHIN_S = 10
 
 // The client keeps an unsent statement when its socket closes and then never writes again, unless what it
 // writes next is at least 1,024 bytes: so its first message on a connection is that long. (The bridge skips
 // the leftover; a server refuses it, and the client connects once more.)
 const LONG_NAME = `stagewatt${' '.repeat(1024)}`
 
-const COMMON = { onnotice: () => {}, transform: { undefined: null }, connect_timeout: 10 } as const
+const COMMON = { onnotice: () => {}, transform: { undefined: null }, connect_timeout: CONNECT_WITHIN_S } as const
 
 /**
  * The service's database: the server at `url`, or else the embedded one.
@@ -48,13 +49,27 @@ export const openDatabase = (options: DatabaseOptions): Promise<Database> =>
 async function openServer(options: DatabaseOptions, url: string): Promise<Database> {
   const raw = serverClient(options, url)
   try {
-    await raw`select 1`
+    await answered(raw)
   } catch (error) {
     await raw.end({ timeout: 0 })
     throw unreachable(url, error)
   }
   const close = (): Promise<void> => raw.end({ timeout: CLOSE_WITHIN_S })
   return { sql: guardSql(raw), kind: 'server', isEmbedded: false, syncCount: () => 0, close }
+}
+
+/** The first answer, or a refusal in time: the client itself never gives up on a server that hangs up at once. */
+async function answered(raw: Sql): Promise<void> {
+  let timer: NodeJS.Timeout | undefined
+  const late = new Promise<never>((_, reject) => {
+    const giveUp = (): void => reject(new Error(`no answer within ${CONNECT_WITHIN_S} s`))
+    timer = setTimeout(giveUp, CONNECT_WITHIN_S * 1000)
+  })
+  try {
+    await Promise.race([raw`select 1`, late])
+  } finally {
+    clearTimeout(timer)
+  }
 }
 
 function serverClient(options: DatabaseOptions, url: string): Sql {

@@ -22,11 +22,20 @@ const startParams = [
   ...[...settings, 'wal_sync_method=fsync'].flatMap((setting) => ['-c', setting]),
 ]
 
+/** What the engine itself last said of a fatal fault; its exceptions say little. */
+let lastWords = ''
+const hear = (line: string): boolean => {
+  lastWords = /(?:FATAL|PANIC): +(.*)/.exec(line)?.[1] ?? lastWords
+  return false
+}
+
 const open = (): Promise<PGlite> =>
   PGlite.create({
     fs: new SyncedFolder(task.folder, () => Atomics.add(counters, COUNTER.syncs, 1)),
     initialMemory: MEMORY_BYTES,
     startParams,
+    onStderr: hear,
+    onStdout: () => false,
   })
 
 // How much the clients have sent: a cheap measure of how much they may have written.
@@ -106,7 +115,7 @@ function serve(engine: PGlite): void {
 }
 
 function fail(error: unknown): void {
-  say({ type: 'failed', message: errorMessage(error) })
+  say({ type: 'failed', message: lastWords || errorMessage(error) })
   // Lets the message out before the thread ends.
   setTimeout(() => process.exit(1), 20)
 }

@@ -1,7 +1,7 @@
 import { Worker } from 'node:worker_threads'
 import type { BridgeLimits } from './bridge.ts'
 import { BridgeSocket, type EngineLine } from './bridge-socket.ts'
-import { StoreError } from './store-error.ts'
+import { unreadable } from './data-folder.ts'
 import { COUNTER, type FromWorker, type ToWorker, type WorkerTask } from './worker-messages.ts'
 
 export interface EngineThread {
@@ -106,13 +106,6 @@ function readiness(worker: Worker, folder: string): Promise<void> {
     worker.once('exit', () => reject(unreadable(folder, reason)))
   })
 }
-
-const unreadable = (folder: string, reason: string): StoreError =>
-  new StoreError(
-    'data-folder-unreadable',
-    `The embedded database in ${folder} did not start: ${reason}. ` +
-      'If its files were damaged, put back a copy, or set DATA_DIR to an empty folder.',
-  )
 
 /**
  * Calls back when the engine works on one batch for longer than that batch may take: it has one thread
