@@ -53,7 +53,7 @@ export function daySentence(day: DayBudget): Phrase {
 export function stageSentence(day: DayBudget, stage: Stage): Phrase {
   const { closing: stored } = printedLedger({ ...stage.ledger, closingWh: stage.closing.wh })
   const arrival: Phrase = [energy(stage.arrival.wh, round10(stage.arrival.wh)), ', ', pct(stage.arrival.chargePct)]
-  const speed: Phrase = day.heldKmh === null ? ['Hold the set speeds'] : ['Hold ', kmh(day.heldKmh)]
+  const speed = hold(day)
   if (!stage.isFinished)
     return [
       ...speed,
@@ -143,7 +143,8 @@ const lowerFirst = (text: string): string => text.charAt(0).toLowerCase() + text
 /** What another speed changes, from the answer before to this one; null where there is nothing to compare. */
 export function comparison(before: DayBudget | null, now: DayBudget): string | null {
   if (before === null || before === now) return null
-  const parts = [arrivalChange(before, now), closingChange(before, now)].filter((part) => part !== null)
+  const changes = [openingChange(before, now), arrivalChange(before, now), closingChange(before, now)]
+  const parts = changes.filter((part) => part !== null)
   if (parts.length === 0) return null
   return `${speedChange(before, now)}: ${parts.join(', ')}`
 }
@@ -152,6 +153,12 @@ function speedChange(before: DayBudget, now: DayBudget): string {
   if (before.heldKmh === null || now.heldKmh === null) return 'Against the speeds before'
   const change = Math.round(now.heldKmh - before.heldKmh)
   return change === 0 ? 'Same speed' : `${change > 0 ? '+' : '\u2212'}${Math.abs(change)}${THIN}km/h`
+}
+
+/** Other speeds on the days before leave another balance for this one. */
+function openingChange(before: DayBudget, now: DayBudget): string | null {
+  const wh = round10(now.opening.wh) - round10(before.opening.wh)
+  return wh === 0 ? null : `open with ${grouped(Math.abs(wh))}${THIN}Wh ${wh > 0 ? 'more' : 'less'}`
 }
 
 function arrivalChange(before: DayBudget, now: DayBudget): string | null {

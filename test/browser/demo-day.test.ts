@@ -73,7 +73,7 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
     const now = await budgetOf(service.url, { kind: 'constant', speedKmh }, SATURDAY)
     const shown = await shownEnergies(page, '#ledger')
     expect(shown.map((energy) => energy.wh)).toEqual(ledgerEnergies(now.ledger, now.reserve.wh))
-    expect(await page.locator('#change').textContent()).toMatch(/arrive \d+\smin later, \d+\sWh more at close/)
+    expect(await page.locator('#change').textContent()).toMatch(/arrive \d+\smin later, [\d\s]+Wh more at close$/)
     expect(page.url()).toContain(`kmh=${speedKmh}`)
     await page.getByRole('button', { name: 'Fastest' }).click()
     await page.locator('#sentence', { hasText: `Hold ${before.heldKmh}` }).waitFor()

@@ -18,6 +18,13 @@ describe('the sentence of the day', () => {
     )
   })
 
+  it('does not claim a speed that limits or the motor never allow', () => {
+    expect(say(sampleDay({ heldKmh: 120 }))).toMatch(
+      /^Hold 120 km\/h where limits and motor allow, 80 km\/h at most: reach Blue Gate 14:00, /,
+    )
+    expect(say(sampleDay({ heldKmh: 80 }))).toMatch(/^Hold 80 km\/h: /)
+  })
+
   it('does not name one speed where several are set', () => {
     expect(say(sampleDay({ heldKmh: null }))).toMatch(/^Hold the set speeds: reach Blue Gate 14:00, /)
   })
@@ -131,6 +138,12 @@ describe('another speed', () => {
     expect(text(tried({ heldKmh: 77 }, sampleAt('14:00')))).toBe(
       '\u22121 km/h: arrive at the same time, the same at close',
     )
+  })
+
+  it('that leaves another opening balance says so first', () => {
+    const ledger = { ...LEDGER, openingWh: 3046.2 }
+    const now = tried({ heldKmh: 77, opening: { wh: 3046.2, chargePct: 60 }, ledger }, sampleAt('14:02'))
+    expect(text(now)).toBe('\u22121 km/h: open with 190 Wh more, arrive 2 min later, 190 Wh more at close')
   })
 
   it('that no longer arrives is compared by road', () => {

@@ -72,23 +72,25 @@ export function Battery({ day, axis, top, lane }: { day: DayBudget; axis: Axis; 
 }
 
 export function LaneNames({ lane, top }: { lane: Lane; top: number }) {
+  const base = (tier: number): number => (lane.tiers - 1 - tier) * TIER_PX
   return (
     <g>
-      {lane.labels.map(({ gate, gateX, x, tier }) => {
-        const base = (lane.tiers - 1 - tier) * TIER_PX
-        return (
-          <>
-            {tier > 0 && <path d={`M${gateX} ${base + 33}V${top}`} stroke="var(--ink-3)" />}
-            <text x={x} y={base + 12} class="pl" text-anchor="middle">
-              {gateName(gate)}
-            </text>
-            <text x={x} y={base + 30} class="gl" text-anchor="middle">
-              {grouped(gate.chargePct)}
-              <tspan class="gu">{`${THIN}%`}</tspan>
-            </text>
-          </>
-        )
-      })}
+      {lane.labels
+        .filter(({ tier }) => tier > 0)
+        .map(({ gateX, tier }) => (
+          <path d={`M${gateX} ${base(tier) + 33}V${top}`} stroke="var(--ink-3)" />
+        ))}
+      {lane.labels.map(({ gate, x, tier }) => (
+        <>
+          <text x={x} y={base(tier) + 12} class="pl halo" text-anchor="middle">
+            {gateName(gate)}
+          </text>
+          <text x={x} y={base(tier) + 30} class="gl halo" text-anchor="middle">
+            {grouped(gate.chargePct)}
+            <tspan class="gu">{`${THIN}%`}</tspan>
+          </text>
+        </>
+      ))}
     </g>
   )
 }

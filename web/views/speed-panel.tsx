@@ -2,7 +2,7 @@ import type { DayBudget } from '../../server/documents/budget.ts'
 import type { SpeedsInput } from '../../server/documents/speeds.ts'
 import { legSpeed, ownSpeed, withLeg } from '../legs.ts'
 import { comparison } from '../sentence.ts'
-import { before, choice, trySpeeds, workingSinceMs } from '../state.ts'
+import { before, choice, days, trySpeeds, workingSinceMs } from '../state.ts'
 import { Stepper } from './stepper.tsx'
 
 type Way = 'meet-target' | 'constant' | 'legs'
@@ -37,6 +37,9 @@ export function SpeedPanel({ day }: { day: DayBudget }) {
       </div>
       {speeds.kind === 'legs' ? <Legs day={day} speeds={speeds} /> : <OneSpeed day={day} speeds={speeds} />}
       <Change day={day} />
+      {speeds.kind !== 'meet-target' && days.value[0]?.date !== day.date && (
+        <p class="note">The days before are driven at these speeds, too.</p>
+      )}
     </section>
   )
 }
