@@ -71,7 +71,15 @@ export function stageSentence(day: DayBudget, stage: Stage): Phrase {
   return [...speed, ' to ', stage.finish, ': arrive ', time(stage.arriveAt), ' with ', ...arrival, ...leave, '.']
 }
 
-const hold = (day: DayBudget): Phrase => (day.heldKmh === null ? ['Hold the set speeds'] : ['Hold ', kmh(day.heldKmh)])
+/** The speed asked for, and the most that limits and motor make of it where that is less. */
+function hold(day: DayBudget): Phrase {
+  if (day.heldKmh === null) return ['Hold the set speeds']
+  const most = day.series.speedKmh.reduce((a, b) => Math.max(a, b), 0)
+  const asked: Phrase = ['Hold ', kmh(day.heldKmh)]
+  return most > 0 && most < day.heldKmh - 1
+    ? [...asked, ' where limits and motor allow, ', kmh(most), ' at most']
+    : asked
+}
 
 const at = (day: DayBudget): Phrase => (day.heldKmh === null ? [] : [' of ', kmh(day.heldKmh)])
 
