@@ -1,4 +1,15 @@
-import { ANSWER, answerFrames, type Batch, endsReady, errorFrame, queryFrame, SYNC, withCopyFail } from './wire.ts'
+import {
+  ANSWER,
+  answerFrames,
+  type Batch,
+  endsReady,
+  errorFrame,
+  isFatal,
+  lastWords,
+  queryFrame,
+  SYNC,
+  withCopyFail,
+} from './wire.ts'
 
 /** The one session that all clients of the embedded engine share. */
 export interface Session {
@@ -85,8 +96,9 @@ export function bridge(session: Session, limits: BridgeLimits, onBroken: (error:
     const answer = await session.run(batch.namesStdin ? withCopyFail(batch.bytes) : batch.bytes, client.limitMs)
     if (batch.isSync && !endsReady(answer)) throw new Error('the engine stopped answering')
     client.end.answer(batch.namesStdin ? withoutCopyIn(answer) : answer, 1)
-    if (clients.size < 2) return
     for (const { type, frame } of answerFrames(answer)) {
+      // The engine answers such a fault and then hangs at the next statement.
+      if (type === ANSWER.error && isFatal(frame)) throw new Error(lastWords(frame))
       if (type !== ANSWER.notification) continue
       for (const other of clients) if (other !== client) other.end.answer(frame, 0)
     }

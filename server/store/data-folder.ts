@@ -1,4 +1,4 @@
-import { accessSync, constants, existsSync, mkdirSync, realpathSync, renameSync, rmSync, statfsSync } from 'node:fs'
+import { existsSync, mkdirSync, mkdtempSync, realpathSync, renameSync, rmdirSync, rmSync, statfsSync } from 'node:fs'
 import { join } from 'node:path'
 import { errorCode, errorMessage, StoreError } from './store-error.ts'
 import { syncFolder } from './synced-folder.ts'
@@ -18,7 +18,8 @@ const DATABASE = 'pg18'
 export function prepareFolder(folder: string): string {
   try {
     mkdirSync(folder, { recursive: true, mode: 0o700 })
-    accessSync(folder, constants.R_OK | constants.W_OK | constants.X_OK)
+    // Asked by doing it: permissions alone do not tell, least of all to root.
+    rmdirSync(mkdtempSync(join(folder, 'writable-')))
     return realpathSync(folder)
   } catch (error) {
     throw unwritable(folder, error)
@@ -44,12 +45,16 @@ export function unwritable(folder: string, error: unknown): StoreError {
 }
 
 /** The fault of a database that does not open, with the engine's reason. */
-export const unreadable = (path: string, reason: string): StoreError =>
-  new StoreError(
-    'data-folder-unreadable',
-    `The embedded database in ${path} did not start: ${reason}. ` +
-      'If its files were damaged, put back a copy, or set DATA_DIR to an empty folder.',
+export function unreadable(path: string, reason: string): StoreError {
+  const isFull = /no space left/i.test(reason)
+  const advice = isFull
+    ? 'Free some space; nothing that was saved is lost.'
+    : 'If its files were damaged, put back a copy, or set DATA_DIR to an empty folder.'
+  return new StoreError(
+    isFull ? 'data-folder-full' : 'data-folder-unreadable',
+    `The embedded database in ${path} did not start: ${reason}. ${advice}`,
   )
+}
 
 /**
  * Path of the database inside a data folder, made first where there is none: built aside and renamed

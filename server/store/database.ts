@@ -14,6 +14,8 @@ export interface DatabaseOptions {
   /** How long a statement, and a transaction between two statements, may take. [ms] (default 15 s each) */
   statementMs?: number
   idleMs?: number
+  /** How long a server may take to let us in. [ms] (default 10 s) */
+  connectMs?: number
   /** Connections to a server. (default 10) */
   max?: number
 }
@@ -29,14 +31,14 @@ export interface Database {
 
 const LIMIT_MS = 15_000
 const CLOSE_WITHIN_S = 5
-const CONNECT_WITHIN_S = 10
+const CONNECT_MS = 10_000
 
 // The client keeps an unsent statement when its socket closes and then never writes again, unless what it
 // writes next is at least 1,024 bytes: so its first message on a connection is that long. (The bridge skips
 // the leftover; a server refuses it, and the client connects once more.)
 const LONG_NAME = `stagewatt${' '.repeat(1024)}`
 
-const COMMON = { onnotice: () => {}, transform: { undefined: null }, connect_timeout: CONNECT_WITHIN_S } as const
+const COMMON = { onnotice: () => {}, transform: { undefined: null }, connect_timeout: CONNECT_MS / 1000 } as const
 
 /**
  * The service's database: the server at `url`, or else the embedded one.
@@ -49,7 +51,7 @@ export const openDatabase = (options: DatabaseOptions): Promise<Database> =>
 async function openServer(options: DatabaseOptions, url: string): Promise<Database> {
   const raw = serverClient(options, url)
   try {
-    await answered(raw)
+    await answered(raw, options.connectMs ?? CONNECT_MS)
   } catch (error) {
     await raw.end({ timeout: 0 })
     throw unreachable(url, error)
@@ -59,11 +61,11 @@ async function openServer(options: DatabaseOptions, url: string): Promise<Databa
 }
 
 /** The first answer, or a refusal in time: the client itself never gives up on a server that hangs up at once. */
-async function answered(raw: Sql): Promise<void> {
+async function answered(raw: Sql, withinMs: number): Promise<void> {
   let timer: NodeJS.Timeout | undefined
   const late = new Promise<never>((_, reject) => {
-    const giveUp = (): void => reject(new Error(`no answer within ${CONNECT_WITHIN_S} s`))
-    timer = setTimeout(giveUp, CONNECT_WITHIN_S * 1000)
+    const giveUp = (): void => reject(new Error(`no answer within ${withinMs / 1000} s`))
+    timer = setTimeout(giveUp, withinMs)
   })
   try {
     await Promise.race([raw`select 1`, late])

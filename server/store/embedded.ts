@@ -7,6 +7,10 @@ import { lockFolder } from './folder-lock.ts'
 import { errorCode, errorMessage, StoreError } from './store-error.ts'
 import { COUNTER } from './worker-messages.ts'
 
+// SQLSTATE. [PostgreSQL 15, appendix A]
+const DISK_FULL = '53100'
+const CANNOT_CONNECT_NOW = '57P03'
+
 export interface EmbeddedOptions {
   dataDir: string
   /** The compiled embedded-worker.js. */
@@ -82,9 +86,10 @@ async function serve(settings: EngineSettings, letGo: () => Promise<void>): Prom
   return { socket, syncCount: () => Atomics.load(new Int32Array(settings.counters), COUNTER.syncs), stop }
 }
 
-/** A connection that answers everything with the reason why there is none. SQLSTATE 57P03: cannot connect now. */
+/** A connection that answers everything with the reason why there is none, by the code a server would give. */
 function refusing(error: unknown): Duplex {
   const socket = new BridgeSocket(() => null)
-  socket.stop('57P03', errorMessage(error))
+  const isFull = errorCode(error) === 'data-folder-full'
+  socket.stop(isFull ? DISK_FULL : CANNOT_CONNECT_NOW, errorMessage(error))
   return socket
 }

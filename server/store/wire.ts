@@ -104,6 +104,12 @@ export const READY = frame('Z', 'I')
 export const errorFrame = (code: string, message: string): Buffer =>
   frame('E', `SERROR\0VERROR\0C${code}\0M${message}\0\0`)
 
+/** True for an ErrorResponse after which a session is over. */
+export const isFatal = (error: Buffer): boolean => /\0V(FATAL|PANIC)\0/.test(error.toString('latin1'))
+
+/** The message in an ErrorResponse. */
+export const lastWords = (error: Buffer): string => /\0M([^\0]*)\0/.exec(error.toString())?.[1] ?? 'no reason given'
+
 const COPY_FAIL = frame('f', 'copying in from the client is not available on the embedded database\0')
 
 /**

@@ -17,7 +17,7 @@ afterEach(() => rmSync(folder, { recursive: true, force: true }))
 const openFolder = (dataDir: string): Promise<unknown> =>
   openDatabase({ dataDir, workerUrl: WORKER }).catch((error: unknown) => error)
 const openUrl = (url: string): Promise<unknown> =>
-  openDatabase({ url, dataDir: '', workerUrl: WORKER }).catch((error: unknown) => error)
+  openDatabase({ url, dataDir: '', workerUrl: WORKER, connectMs: 1000 }).catch((error: unknown) => error)
 
 describe('a data folder that cannot be used', () => {
   it('is refused by its name when a file stands in its place, or in its way', async () => {
