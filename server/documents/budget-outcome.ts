@@ -78,7 +78,9 @@ function cutOff(day: ForecastDay): Outcome | null {
   const km = dayKm(day, placeM)
   const at = localIso(day.race.days[day.dayIndex].drivingToMs, day.zone)
   if (stopLeftS > 0) {
-    const text = `The driving hours end in the stop at ${placeName(day, placeM)}; ${Math.ceil(stopLeftS / 60)} min of it are left for the next day.`
+    const isLast = day.dayIndex === day.race.days.length - 1
+    const left = `${Math.ceil(stopLeftS / 60)} min of it are left${isLast ? '' : ' for the next day'}`
+    const text = `The driving hours end in the stop at ${placeName(day, placeM)}; ${left}.`
     return { kind: 'cut-off', text, at, km }
   }
   const leftKm = (day.race.course.stages[stage].toM - placeM) / 1000

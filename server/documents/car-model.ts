@@ -45,7 +45,8 @@ export function carModel(car: CarDocument, surroundings: Surroundings): Car {
       regenEfficiency: drive.regenerationPct / 100,
       motorMaxW: drive.motorMaxW,
       motorMaxN: drive.motorMaxNm / drive.wheelRadiusM,
-      regenMaxW: drive.regenerationMaxW,
+      // The document limits the motor at the wheels, the engine what reaches the bus.
+      regenMaxW: (drive.regenerationMaxW * drive.regenerationPct) / 100,
     }),
     windHeightM: body.windHeightM,
     auxDrivingW: auxiliaries.drivingW,

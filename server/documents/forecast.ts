@@ -2,6 +2,7 @@ import { z } from 'zod'
 import { forecastDay } from '../engine/forecast.ts'
 import type { DayForecast, Opening, Race } from '../engine/forecast.ts'
 import { InputError } from '../engine/input-error.ts'
+import { geodesicM } from '../engine/route.ts'
 import { fastestThatMeets } from '../engine/search.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
 import type { BudgetDocument } from './budget.ts'
@@ -53,7 +54,7 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
     race: document.name,
     car: car.name,
     sky: { name: skyDoc.name, source: skyDoc.source, issuedAt: skyDoc.issuedAt },
-    assumptions: [...new Set([...roadNotes(request), ...assumptions, ...notes])],
+    assumptions: [...new Set([...roadNotes(request), ...gapNotes(race), ...assumptions, ...notes])],
     lengthKm: course.lengthM / 1000,
     days,
   }
@@ -138,6 +139,22 @@ function roadNotes({ race, routes }: ForecastRequest): string[] {
     ...flat.map((id) => `${routes[id].name} has no heights: a level road at sea level is assumed.`),
     ...(albedos.size > 1 ? ['The routes lie in ground of different brightness: its mean is assumed for all.'] : []),
   ]
+}
+
+/** Ends of roads nearer than this are taken for the same place. [M] */
+const SAME_PLACE_M = 2000
+
+/** Stages whose roads do not meet: the car is taken to be brought over. */
+function gapNotes({ course, stages }: Race): string[] {
+  const { latRad, lonRad, lengthM } = course.pieces
+  return course.stages.flatMap(({ firstPiece: to }, s) => {
+    if (s === 0) return []
+    const from = to - 1
+    const apartM = geodesicM(latRad[from], lonRad[from], latRad[to], lonRad[to]) - (lengthM[from] + lengthM[to]) / 2
+    if (apartM < SAME_PLACE_M) return []
+    const km = (apartM / 1000).toFixed(0)
+    return [`${stages[s].name} starts ${km} km from the end of ${stages[s - 1].name}: the car is brought there.`]
+  })
 }
 
 function checkWindHeight({ car, race, routes }: ForecastRequest): void {

@@ -4,7 +4,7 @@ import type { Balance, Car } from './balance.ts'
 import { storedJ } from './battery.ts'
 import type { Course } from './course.ts'
 import type { DayRules, StageRule, Standing } from './day-rules.ts'
-import { airAlong, limitByMotor, pieceTimesS } from './motion.ts'
+import { airAtCar, limitByMotor, pieceTimesS } from './motion.ts'
 import type { Air } from './motion.ts'
 import { weatherAlong } from './sky.ts'
 import type { Sky, Weather } from './sky.ts'
@@ -120,7 +120,7 @@ function layOut(race: Race, dayIndex: number, standing: Standing, speedMps: Floa
   const cut = steps(course, table.spans, speedMps, pieceS)
   if (race.car.array.model.stand === null) cut.lifted.fill(0)
   const weather = weatherAlong(race.sky, path, cut)
-  return { course, timetable: table, steps: cut, weather, air: airAlong(course, cut, weather, race.car.windHeightM) }
+  return { course, timetable: table, steps: cut, weather, air: airAtCar(course, cut, weather, race.car.windHeightM) }
 }
 
 function underLimits(course: Course, wantedMps: Float64Array): Float64Array {

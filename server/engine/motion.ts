@@ -5,7 +5,7 @@ import { BRAKING_MPS2, STARTING_MPS2 } from './road-energy.ts'
 import type { Going, RoadLoad } from './road.ts'
 import type { Weather } from './sky.ts'
 import type { Steps } from './steps.ts'
-import { windShareAtCar } from './wind.ts'
+import { crosswindMps, headwindMps, windShareAtCar } from './wind.ts'
 
 /** The air at the car, one entry per step; headwind against the car is positive. */
 export interface Air {
@@ -25,7 +25,7 @@ export const CRAWL_MPS = 1
  * @param windHeightM  height at which the car feels the wind. [M]
  * @source logarithmic wind profile between 10 m and the car, roughness of the course
  */
-export function airAlong(course: Course, steps: Steps, weather: Weather, windHeightM: number): Air {
+export function airAtCar(course: Course, steps: Steps, weather: Weather, windHeightM: number): Air {
   const n = steps.count
   const air = {
     headwindMps: new Float64Array(n),
@@ -42,8 +42,8 @@ export function airAlong(course: Course, steps: Steps, weather: Weather, windHei
       share = windShareAtCar(here, windHeightM)
     }
     const windMps = weather.windMps[i] * share
-    const against = windMps * Math.cos(weather.windFromRad[i] - steps.headingRad[i])
-    const across = windMps * Math.sin(weather.windFromRad[i] - steps.headingRad[i])
+    const against = headwindMps(windMps, weather.windFromRad[i], steps.headingRad[i])
+    const across = crosswindMps(windMps, weather.windFromRad[i], steps.headingRad[i])
     air.headwindMps[i] = against
     air.crosswindMps[i] = across
     const along = steps.speedMps[i] + against

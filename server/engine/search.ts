@@ -2,9 +2,9 @@ import { storedJ } from './battery.ts'
 import { daySun, forecastDay } from './forecast.ts'
 import type { DayForecast, Opening, Race } from './forecast.ts'
 
-/** The fastest speed that meets the day's target, or the best try and why none does. */
+/** The fastest speed that meets the day's target, or the one that came closest. */
 export interface SpeedSearch {
-  /** The speed found, or the one that came closest. [km/h] */
+  /** The speed found; where none meets the target, of those in time the least short, else the least late. [km/h] */
   speedKmh: number
   forecast: DayForecast
   meetsTarget: boolean
@@ -35,21 +35,28 @@ export function fastestThatMeets(
   const targetJ = storedJ(race.car.pack, targetCharge)
   const highest = Math.floor(Math.max(range.highestKmh, range.lowestKmh))
   const lowest = Math.ceil(range.lowestKmh)
-  let best: SpeedSearch | null = null
-  let bestShortJ = Number.POSITIVE_INFINITY
+  let best: Try | null = null
   for (let speedKmh = Math.min(highest, topKmh(race, highest)), tried = 1; ; speedKmh--, tried++) {
     wantedMps.fill(speedKmh / 3.6)
     const forecast = forecastDay(race, dayIndex, opening, wantedMps, path)
     const shortJ = shortOfTargetJ(forecast, targetJ, reserveJ)
-    const inTime = forecast.timetable.late.length === 0
-    if (shortJ <= 0 && inTime) return { speedKmh, forecast, meetsTarget: true, tried }
-    if (best === null || shortJ < bestShortJ) {
-      best = { speedKmh, forecast, meetsTarget: false, tried }
-      bestShortJ = shortJ
-    }
-    if (speedKmh <= lowest) return { ...best, tried }
+    const lateS = forecast.timetable.late.reduce((sum, { byS }) => sum + byS, 0)
+    if (shortJ <= 0 && lateS === 0) return { speedKmh, forecast, meetsTarget: true, tried }
+    const now = { speedKmh, forecast, shortJ, lateS }
+    if (best === null || isCloser(now, best)) best = now
+    if (speedKmh <= lowest) return { speedKmh: best.speedKmh, forecast: best.forecast, meetsTarget: false, tried }
   }
 }
+
+interface Try {
+  speedKmh: number
+  forecast: DayForecast
+  shortJ: number
+  lateS: number
+}
+
+const isCloser = (one: Try, other: Try): boolean =>
+  one.lateS === other.lateS ? one.shortJ < other.shortJ : one.lateS < other.lateS
 
 /** The highest limit on the road, rounded up: above it nothing changes. [km/h] */
 function topKmh(race: Race, highest: number): number {

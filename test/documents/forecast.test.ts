@@ -74,6 +74,16 @@ describe('speeds', () => {
     expect(day.outcome.text).toMatch(/Closest: \d+ km\/h, \d+ Wh short/)
   })
 
+  test('where no speed is in time the least late is shown', () => {
+    const day = oneDay((r) => {
+      const [stage] = r.race.days[0].stages ?? []
+      stage.stop = { minutes: 30, closesAt: '09:00' }
+      r.speeds = { kind: 'meet-target', lowestKmh: 60, highestKmh: 64 }
+    })
+    expect(day.outcome.text).toBe('No speed meets the day’s target. Closest: 64 km/h, late at a stop.')
+    expect(day.speedsTried).toBe(5)
+  })
+
   test('a motor too weak for the hill slows the car there and nowhere else', () => {
     const weak = oneDay((r) => {
       r.car.drive.motorMaxW = 1100
@@ -217,6 +227,22 @@ describe('figures that belong together', () => {
       watts.reduce((sum, w, i) => sum + (w * (day.series.toMs[i] - day.series.fromMs[i])) / 3_600_000, 0)
     expect(wh(day.series.inW)).toBeCloseTo(day.ledger.cameInWh, 0)
     expect(wh(day.series.outW)).toBeCloseTo(day.ledger.wentOutWh, 0)
+  })
+
+  test('roads that do not meet are said, and the stop between them is in the sun of the first', () => {
+    const { assumptions, days } = budget((r) => {
+      const [stage] = r.race.days[0].stages ?? []
+      const { points } = someRoute(20)
+      r.routes.far = { ...someRoute(20), points: { ...points, latDeg: points.latDeg.map((lat) => lat + 100) } }
+      r.race.days[0].stages = [stage, { ...stage, id: 'second', name: 'North', route: 'far' }]
+    })
+    expect(assumptions).toContainEqual(
+      expect.stringMatching(
+        /^North starts 1\d{4} km from the end of Saltpan to Twin Wells: the car is brought there\.$/,
+      ),
+    )
+    const first = oneDay().ledger.income.find((l) => l.id === 'stop:first')
+    expect(days[0].ledger.income.find((l) => l.id === 'stop:first')?.wh).toBeCloseTo(first?.wh ?? Number.NaN, 6)
   })
 
   test('one brightness of the ground for routes that differ is said', () => {

@@ -1,4 +1,4 @@
-import fc from 'fast-check'
+import * as fc from 'fast-check'
 import { afterAll, describe, expect, test } from 'vitest'
 import type { BudgetDocument, DayBudget } from '../../server/documents/budget.ts'
 import { checkDocument } from '../../server/documents/check.ts'

@@ -1,4 +1,4 @@
-import fc from 'fast-check'
+import * as fc from 'fast-check'
 import type { CarInput } from '../../server/documents/car.ts'
 import type { RaceInput } from '../../server/documents/race.ts'
 import type { SkyInput } from '../../server/documents/sky.ts'
