@@ -38,7 +38,9 @@ export async function startService(settings: { timeLimitMs?: number } = {}): Pro
     size: 2,
     timeLimitMs: settings.timeLimitMs ?? 60_000,
   })
-  const database = await openDatabase({ dataDir, workerUrl: builtFile('store/embedded-worker.js') })
+  const opened = await openDatabase({ dataDir, workerUrl: builtFile('store/embedded-worker.js') })
+  let closed: Promise<void> | null = null
+  const database = { ...opened, close: () => (closed ??= opened.close()) }
   await migrate(database.sql, projectPath('migrations'))
   const store = storeOf(database.sql)
   const common: Parts = {
