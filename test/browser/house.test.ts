@@ -128,11 +128,30 @@ describeWithBrowser('every screen', { timeout: 60_000 }, () => {
     expect(await page.locator('.refused').count()).toBe(0)
   })
 
-  it('says what no forecast can be made of, and the way on', async () => {
+  it('says why no budget can be made, where, and the way on', async () => {
+    const race = JSON.parse(await (await fetch(`${service.url}/api/v1/races/plateau-run`)).text()).document
+    race.days[0].stages[0].route = 'nowhere'
+    const put = await fetch(`${service.url}/api/v1/races/lost-race`, {
+      method: 'PUT',
+      headers: { 'content-type': 'application/json' },
+      body: JSON.stringify({ ...race, name: 'Lost race' }),
+    })
+    expect(put.status).toBe(201)
     await phone.page.goto('about:blank')
-    await phone.page.goto(`${service.url}/#/day?race=plateau-run&date=2026-10-16&kmh=200`)
-    await phone.page.locator('#sentence').waitFor()
-    await picture(phone.page, 'too-fast')
-    expect(await phone.page.locator('#sentence').innerText()).toMatch(/^(Hold|Change the plan)/)
+    await phone.page.goto(`${service.url}/#/day?race=lost-race&date=2026-10-17`)
+    const refused = phone.page.locator('.refused')
+    await refused.waitFor()
+    expect(await refused.innerText()).toMatch(/^Day not worked out: a stage runs on a route that does not exist\./)
+    expect(await refused.locator('.problems').innerText()).toContain('nowhere')
+    await picture(phone.page, 'refused-day')
+    await refused.getByRole('button', { name: 'Open the set-up' }).click()
+    await phone.page.getByRole('heading', { name: 'Set-up' }).waitFor()
+  })
+
+  it('says in its sentence what limits and motor make of a speed that nobody can hold', async () => {
+    await show('#/day?race=plateau-run&date=2026-10-16&kmh=200')
+    expect((await phone.page.locator('#sentence').innerText()).replaceAll('\u202f', ' ')).toMatch(
+      /^Hold 200 km\/h where limits and motor allow, 1?\d\d km\/h at most: /,
+    )
   })
 })

@@ -162,7 +162,22 @@ describeWithBrowser('files brought in by the client', { timeout: 60_000 }, () =>
     await page.locator('ul[data-kind="cars"]').getByText('Spare car').waitFor()
   })
 
-  it('is removed only after a question', async () => {
+  it('a change that somebody else made in the meantime is not overwritten unasked', async () => {
+    const cars = part('cars')
+    await cars.getByLabel('Or start from').selectOption('Spare car')
+    await expect.poll(() => cars.getByLabel('The car as JSON').inputValue()).toContain('Spare car')
+    const address = `${service.url}/api/v1/cars/spare-car`
+    const { document } = JSON.parse(await (await fetch(address)).text())
+    const headers = { 'content-type': 'application/json', 'if-match': '"1"' }
+    const theirs = await fetch(address, { method: 'PUT', headers, body: JSON.stringify(document) })
+    expect(theirs.status).toBe(200)
+    await cars.getByRole('button', { name: 'Save' }).click()
+    await cars.getByText('Not done: somebody changed it in the meantime.').waitFor()
+    await cars.getByRole('button', { name: 'Replace it' }).click()
+    await cars.getByText('Saved as spare-car, version 3.').waitFor()
+  })
+
+  it('a document is removed only after a question', async () => {
     const { page } = phone
     const cars = page.locator('ul[data-kind="cars"]')
     await cars.getByRole('button', { name: 'Remove Spare car' }).click()
@@ -174,6 +189,6 @@ describeWithBrowser('files brought in by the client', { timeout: 60_000 }, () =>
 
   it('left no refusal of the content policy and no error behind', () => {
     // A refused request is logged by the browser itself as an error of the network.
-    expect(phone.complaints.filter((text) => !/status of 4(22|28|00)/.test(text))).toEqual([])
+    expect(phone.complaints.filter((text) => !/status of 4(22|28|12|00)/.test(text))).toEqual([])
   })
 })

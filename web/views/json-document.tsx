@@ -1,11 +1,11 @@
 import { useSignal } from '@preact/signals'
-import { type Answer, documentOf, exampleOf, type Item, type Kind, type Refusal } from '../api.ts'
+import { documentOf, exampleOf, type Item, type Kind, type Refusal } from '../api.ts'
 import { download } from '../download.ts'
 import { parseDocument } from '../json-document.ts'
 import { Conflict } from './conflict.tsx'
 import { Field, FileField, SelectField } from './field.tsx'
 import { Problems } from './problems.tsx'
-import { SaveForm } from './save-form.tsx'
+import { type Known, SaveForm } from './save-form.tsx'
 
 interface JsonProps {
   kind: Kind
@@ -17,13 +17,16 @@ interface JsonProps {
 /** A document as JSON: from a file, typed, from the worked example or from one that is stored. */
 export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
   const text = useSignal('')
+  const known = useSignal<Known | undefined>(undefined)
   const refused = useSignal<Refusal | null>(null)
   const parsed = text.value.trim() === '' ? null : parseDocument(text.value)
   const document = parsed !== null && 'document' in parsed ? parsed.document : null
   const from = async (id: string): Promise<void> => {
-    const got = id === '' ? await exampleOf(word) : await stored(kind, id)
+    const got = id === '' ? await exampleOf(word) : await documentOf(kind, id)
     refused.value = got.refusal ?? null
-    if (got.value !== undefined) text.value = JSON.stringify(got.value, null, 2)
+    if (got.value === undefined) return
+    known.value = 'version' in got.value ? { id, version: got.value.version } : undefined
+    text.value = JSON.stringify('version' in got.value ? got.value.document : got.value, null, 2)
   }
   return (
     <details class="more" data-add={kind}>
@@ -64,10 +67,11 @@ export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
               Download this text
             </button>
             <SaveForm
-              key={String(document.name)}
+              key={`${known.value?.id} ${known.value?.version}`}
               kind={kind}
               document={document}
               name={typeof document.name === 'string' ? document.name : ''}
+              replaces={known.value}
               onSaved={onSaved}
             />
           </>
@@ -75,9 +79,4 @@ export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
       </div>
     </details>
   )
-}
-
-async function stored(kind: Kind, id: string): Promise<Answer<object>> {
-  const got = await documentOf(kind, id)
-  return got.value === undefined ? got : { value: got.value.document }
 }

@@ -10,13 +10,22 @@ interface SaveProps {
   kind: Kind
   document: object
   name: string
+  /** What the document was taken from, so that a change by somebody else in the meantime is noticed. */
+  replaces?: Known
   onSaved?: (id: string) => void
 }
 
+/** A stored document as it was last seen here. */
+export interface Known {
+  id: string
+  version: number
+}
+
 /** Names a document and saves it; a name that is taken is explained, and may be replaced or passed by. */
-export function SaveForm({ kind, document, name: given, onSaved }: SaveProps) {
+export function SaveForm({ kind, document, name: given, replaces, onSaved }: SaveProps) {
   const name = useSignal(given)
-  const id = useSignal<string | null>(null)
+  const known = useSignal<Known | null>(replaces ?? null)
+  const id = useSignal<string | null>(replaces?.id ?? null)
   const refused = useSignal<Refusal | null>(null)
   const done = useSignal<{ text: string; notices: Notice[] } | null>(null)
   const slug = id.value ?? slugOf(name.value)
@@ -25,6 +34,7 @@ export function SaveForm({ kind, document, name: given, onSaved }: SaveProps) {
     const answer = await save(kind, to, { ...document, name: name.value }, version)
     refused.value = answer.refusal ?? null
     if (answer.value === undefined) return
+    known.value = { id: to, version: answer.value.version }
     done.value = { text: `Saved as ${to}, version ${answer.value.version}.`, notices: answer.value.notices ?? [] }
     await loadLists()
     onSaved?.(to)
@@ -53,7 +63,11 @@ export function SaveForm({ kind, document, name: given, onSaved }: SaveProps) {
           </button>
         </div>
       ) : (
-        <button type="button" class="btn" onClick={() => void put(slug, null)}>
+        <button
+          type="button"
+          class="btn"
+          onClick={() => void put(slug, known.value?.id === slug ? known.value.version : null)}
+        >
           Save
         </button>
       )}
