@@ -25,7 +25,12 @@ export const CRAWL_MPS = 1
  * @param windHeightM  height at which the car feels the wind. [M]
  * @source logarithmic wind profile between 10 m and the car, roughness of the course
  */
-export function airAtCar(course: Course, steps: Steps, weather: Weather, windHeightM: number): Air {
+export function airAtCar(
+  course: Course,
+  steps: Steps,
+  weather: Pick<Weather, 'windMps' | 'windFromRad' | 'densityKgM3'>,
+  windHeightM: number,
+): Air {
   const n = steps.count
   const air = {
     headwindMps: new Float64Array(n),

@@ -179,6 +179,11 @@ describe('the day as a timetable', () => {
     const closesMs = new Float64Array([9 * HOUR, Number.NaN])
     const { late } = laidOut(road(1), [rule('a', stop({ closesMs }))], day())
     expect(late).toHaveLength(1)
+    const justMs = 8 * HOUR + (111_319.49 / 20) * 1000
+    const just = (shiftMs: number) =>
+      laidOut(road(1), [rule('a', stop({ closesMs: new Float64Array([justMs + shiftMs, 0]) }))], day()).late
+    expect(just(-100)).toHaveLength(1)
+    expect(just(100)).toHaveLength(0)
     expect(late[0].byS).toBeCloseTo(111_319.49 / 20 - 3600, 1)
   })
 
@@ -200,6 +205,11 @@ describe('the day as a timetable', () => {
     )
     expect(kinds(table)).toBe('parked drive parked evening-charge parked')
     expect(table.spans[3]).toMatchObject({ fromMs: 14 * HOUR, toMs: 15 * HOUR, liftedFromMs: 0, liftedToMs: 0 })
+  })
+
+  test('a car that comes while a window is open charges at once', () => {
+    const charging = [{ fromMs: 9 * HOUR, toMs: 18 * HOUR, lifts: true }]
+    expect(kinds(laidOut(road(1), [rule('a')], day({ charging })))).toBe('parked drive evening-charge parked')
   })
 
   test('a place that the car cannot pass ends its day in front of it', () => {
@@ -241,6 +251,22 @@ describe('the day cut into steps', () => {
     }
     const liftedS = cut.lifted.reduce((sum, on, i) => sum + (on * (cut.toMs[i] - cut.fromMs[i])) / 1000, 0)
     expect(liftedS).toBeCloseTo(1.5 * 3600 - 180 + (1800 - 300) + 1.5 * 3600 - 180, 3)
+  })
+})
+
+describe('a parked car', () => {
+  test('stands level at the height of the place, not of the middle of its piece', () => {
+    const roads = road(1)
+    const { pieces } = roads
+    const last = pieces.count - 1
+    pieces.gradeRad.fill(0.05)
+    pieces.startAltM[0] = 100
+    pieces.endAltM[last] = 900
+    pieces.altM.fill(500)
+    const table = laidOut(roads, [rule('a')], day())
+    const cut = steps(roads, table.spans, new Float64Array(pieces.count).fill(20), table.pieceS)
+    expect([cut.altM[0], cut.gradeRad[0]]).toEqual([100, 0])
+    expect([cut.altM[cut.count - 1], cut.gradeRad[cut.count - 1]]).toEqual([900, 0])
   })
 })
 

@@ -1,0 +1,86 @@
+import { describe, expect, test } from 'vitest'
+import { carModel, trackerModel } from '../../server/documents/car-model.ts'
+import { carDocument } from '../../server/documents/car.ts'
+import type { CarInput } from '../../server/documents/car.ts'
+import { someCar } from '../support/scenario.ts'
+
+const model = (change: (car: CarInput) => void = () => undefined) => {
+  const car = someCar()
+  change(car)
+  return carModel(carDocument.parse(car), { groundAlbedo: 0.2, skyModel: 'perez' })
+}
+
+describe('the car in the engine’s units', () => {
+  test('body and drive: km/h to m/s, torque to force, percent to shares', () => {
+    const { load, drive, auxDrivingW, auxParkedW, reserveCharge } = model((car) => {
+      car.body.rollingPerKmh = 1e-5
+    })
+    expect(load.rollingPerMps).toBeCloseTo(3.6e-5, 12)
+    expect(load).toMatchObject({ massKg: 250, rotatingFactor: 1.03, dragAreaM2: 0.1, rollingCoefficient: 0.0035 })
+    expect(drive.motorMaxN).toBeCloseTo(90 / 0.28, 9)
+    expect(drive).toMatchObject({ efficiency: 0.96, regenEfficiency: 0.6, motorMaxW: 5000, regenMaxW: 1200 })
+    expect([auxDrivingW, auxParkedW, reserveCharge]).toEqual([30, 6, 0.1])
+  })
+
+  // 30s14p of 3.35 Ah and 45 mΩ with 20 mΩ of leads: 46.9 Ah, 0.1164 Ω, worked by hand
+  test('the pack from its cells: volts in series, charge and current in parallel, resistance of both', () => {
+    const { pack } = model()
+    expect(pack.capacityC / 3600).toBeCloseTo(46.9, 9)
+    expect(pack.resistanceOhm).toBeCloseTo(0.11643, 5)
+    expect(pack.chargeMaxV).toBeCloseTo(126, 9)
+    expect(pack.dischargeMinV).toBeCloseTo(78, 9)
+    expect(pack.chargeMaxA).toBeCloseTo(22.4, 9)
+    expect(pack.dischargeMaxA).toBeCloseTo(84, 9)
+    expect(pack.coulombicEfficiency).toBeCloseTo(0.995, 12)
+    expect(pack.ocv.V[1] / 30).toBeCloseTo(3.28, 9)
+    expect(pack.ocv.charge[1]).toBeCloseTo(0.1, 12)
+  })
+
+  test('panels, stand and strings: degrees to radians, dust and rows counted', () => {
+    const { array } = model((car) => {
+      car.panels[1].rollDeg = -12
+      car.stand = { tiltMinDeg: 5, tiltMaxDeg: 75, azimuthFromDeg: 270, azimuthToDeg: 90 }
+      car.strings[1] = { ...car.strings[1], inParallel: 3, soilingPct: 4, bypassDropV: 0.4 }
+    })
+    const deg = (rad: number | undefined) => ((rad ?? Number.NaN) * 180) / Math.PI
+    expect(deg(array.model.panels[1].pitchRad)).toBeCloseTo(8, 9)
+    expect(deg(array.model.panels[1].rollRad)).toBeCloseTo(-12, 9)
+    expect(deg(array.model.stand?.tiltMinRad)).toBeCloseTo(5, 9)
+    expect(deg(array.model.stand?.azimuthFromRad)).toBeCloseTo(270, 9)
+    expect(deg(array.model.stand?.azimuthToRad)).toBeCloseTo(90, 9)
+    expect(array.model.strings[1]).toMatchObject({
+      groups: [{ panel: 1, cellsInSeries: 100 }],
+      cellsInParallel: 3,
+      soilingFraction: 0.04,
+      bypassV: 0.4,
+    })
+    // n·k·T/q at 25 °C: 1.04 · 25.6926 mV (CODATA 2018)
+    expect(array.model.strings[0].cell.modifiedIdealityV).toBeCloseTo(0.0267203, 7)
+  })
+
+  test('each string is held by the tracker that it names', () => {
+    const { trackers } = model((car) => {
+      car.trackers.reverse()
+      car.trackers[0].trackingPct = 98
+    })
+    expect(trackers.map((t) => t.name)).toEqual(['deck tracker', 'nose tracker'])
+    expect(trackers.map((t) => t.trackingEfficiency)).toEqual([0.995, 0.98])
+  })
+
+  test('bench points give the losses that they were made from', () => {
+    const { window } = someCar().trackers[0]
+    const points = [20, 60, 150, 250, 400].flatMap((inputW) =>
+      [70, 90].map((inputV) => {
+        const lossW = 1 + 0.08 * (inputW / inputV) ** 2
+        return { inputV, outputV: 110, inputW, efficiencyPct: 100 * (1 - lossW / inputW) }
+      }),
+    )
+    const car = carDocument.parse({
+      ...someCar(),
+      trackers: ['deck tracker', 'nose tracker'].map((name) => ({ name, window, bench: points })),
+    })
+    const { losses } = trackerModel(car.trackers[0])
+    expect(losses.standingW).toBeCloseTo(1, 6)
+    expect(losses.conductionOhm).toBeCloseTo(0.08, 6)
+  })
+})
