@@ -1,0 +1,211 @@
+import fc from 'fast-check'
+import type { CarInput } from '../../server/documents/car.ts'
+import type { RaceInput } from '../../server/documents/race.ts'
+import type { RouteInput } from '../../server/documents/route.ts'
+import type { SkyInput } from '../../server/documents/sky.ts'
+import type { SpeedsInput } from '../../server/documents/speeds.ts'
+import { someCar, someRace } from './scenario.ts'
+
+const number = (min: number, max: number) => fc.double({ min, max, noNaN: true })
+
+/** Panels, strings and trackers of all sorts: steep, spanning, narrow windows, lossy. */
+const array = fc.record({
+  pitches: fc.array(number(-30, 30), { minLength: 1, maxLength: 3 }),
+  cells: fc.array(fc.integer({ min: 5, max: 200 }), { minLength: 1, maxLength: 3 }),
+  spans: fc.boolean(),
+  lifts: fc.boolean(),
+  soilingPct: number(0, 60),
+  inputMinV: number(0, 60),
+  inputMaxV: number(61, 300),
+  inputMaxA: number(0.5, 12),
+  maxW: number(20, 1000),
+  standingW: number(0, 20),
+  conductionOhm: number(0, 1),
+  rectifierV: number(0, 2),
+  glass: fc.constantFrom('martin-ruiz' as const, 'physical' as const, 'ashrae' as const, 'none' as const),
+})
+
+/** A valid car: light or heavy, slick or blunt, with a small or large pack. */
+export const anyCar: fc.Arbitrary<CarInput> = fc
+  .record({
+    array,
+    massKg: number(80, 1500),
+    dragAreaM2: number(0.05, 1),
+    rollingCoefficient: number(0.002, 0.02),
+    efficiencyPct: number(50, 100),
+    regenerationPct: number(0, 95),
+    motorMaxW: number(500, 50_000),
+    drivingW: number(0, 300),
+    parallelCells: fc.integer({ min: 2, max: 60 }),
+    cellOhm: number(0.001, 0.2),
+    coulombicPct: number(90, 100),
+    reservePct: number(0, 40),
+  })
+  .map((a) => {
+    const car = someCar()
+    const { pitches, cells, spans } = a.array
+    const names = cells.map((_, i) => `string ${i + 1}`)
+    return {
+      ...car,
+      body: { ...car.body, massKg: a.massKg, dragAreaM2: a.dragAreaM2, rollingCoefficient: a.rollingCoefficient },
+      drive: {
+        ...car.drive,
+        efficiencyPct: a.efficiencyPct,
+        regenerationPct: a.regenerationPct,
+        motorMaxW: a.motorMaxW,
+      },
+      auxiliaries: { drivingW: a.drivingW, parkedW: a.drivingW / 4 },
+      panels: pitches.map((pitchDeg, i) => ({
+        name: `panel ${i + 1}`,
+        pitchDeg,
+        lifts: a.array.lifts,
+        glass: a.array.glass,
+      })),
+      strings: names.map((name, i) => ({
+        name,
+        tracker: `tracker ${i + 1}`,
+        cellType: 'silicon',
+        soilingPct: a.array.soilingPct,
+        cells: spans
+          ? pitches.map((_, p) => ({ panel: `panel ${p + 1}`, inSeries: cells[i] }))
+          : [{ panel: `panel ${(i % pitches.length) + 1}`, inSeries: cells[i] }],
+      })),
+      trackers: names.map((_, i) => ({
+        name: `tracker ${i + 1}`,
+        window: {
+          inputMinV: a.array.inputMinV,
+          inputMaxV: a.array.inputMaxV,
+          inputMaxA: a.array.inputMaxA,
+          outputMaxV: 130,
+          maxW: a.array.maxW,
+        },
+        losses: {
+          standingW: a.array.standingW,
+          switchingPct: 0.5,
+          conductionOhm: a.array.conductionOhm,
+          rectifierV: a.array.rectifierV,
+        },
+      })),
+      pack: {
+        ...car.pack,
+        parallelCells: a.parallelCells,
+        cellOhm: a.cellOhm,
+        coulombicPct: a.coulombicPct,
+        reservePct: a.reservePct,
+      },
+    }
+  })
+
+/** A valid road of 2 to 300 km anywhere between 60° south and 60° north. */
+export const anyRoute: fc.Arbitrary<RouteInput> = fc
+  .record({
+    latDeg: number(-60, 60),
+    lonDeg: number(-179, 179),
+    turns: fc.array(number(-1.5, 1.5), { minLength: 4, maxLength: 60 }),
+    climbs: number(0, 60),
+    stepKm: number(0.2, 5),
+    limitKmh: number(20, 130),
+    surfaceFactor: number(0.8, 2),
+    haltsPerKm: number(0, 1),
+    groundAlbedo: number(0, 1),
+  })
+  .map((a) => {
+    const latDeg = [a.latDeg]
+    const lonDeg = [a.lonDeg]
+    const elevationM = [500]
+    let heading = 0
+    a.turns.forEach((turn, i) => {
+      heading += turn
+      const step = a.stepKm / 111.2
+      latDeg.push(latDeg[i] + step * Math.cos(heading))
+      lonDeg.push(lonDeg[i] + (step * Math.sin(heading)) / Math.cos((latDeg[i] * Math.PI) / 180))
+      elevationM.push(500 + a.climbs * Math.sin(i * 1.7 + turn))
+    })
+    return {
+      name: 'Some road',
+      points: { latDeg, lonDeg: lonDeg.map((lon) => Math.max(Math.min(lon, 180), -180)), elevationM },
+      limitKmh: 110,
+      groundAlbedo: a.groundAlbedo,
+      stretches: [
+        { fromKm: 0.1, toKm: 0.5, limitKmh: a.limitKmh, surfaceFactor: a.surfaceFactor, haltsPerKm: a.haltsPerKm },
+      ],
+    }
+  })
+
+const HOURS = Array.from({ length: 25 }, (_, i) => i)
+
+/** A valid sky of one or two places, by cloud, by GHI or by all three irradiances. */
+export const anySky: fc.Arbitrary<SkyInput> = fc
+  .record({
+    kind: fc.constantFrom('cloud', 'ghi', 'all'),
+    share: fc.array(number(0, 1), { minLength: 25, maxLength: 25 }),
+    airTempC: number(-20, 45),
+    windMps: number(0, 25),
+    windFromDeg: number(0, 360),
+    elevationM: number(0, 2500),
+    places: fc.integer({ min: 1, max: 2 }),
+  })
+  .map((a) => ({
+    name: 'Some sky',
+    source: 'forecast' as const,
+    issuedAt: '2026-10-16T18:00:00+00:00',
+    places: Array.from({ length: a.places }, (_, p) => ({
+      name: `place ${p + 1}`,
+      latDeg: p === 0 ? 10 : -20,
+      lonDeg: p * 5,
+      elevationM: a.elevationM,
+      at: HOURS.map((h) => new Date(Date.UTC(2026, 9, 17, h)).toISOString().replace('.000Z', '+00:00')),
+      airTempC: HOURS.map(() => a.airTempC),
+      windMps: HOURS.map(() => a.windMps),
+      windFromDeg: HOURS.map(() => a.windFromDeg),
+      ...(a.kind === 'cloud' ? { cloudPct: a.share.map((s) => s * 100) } : { ghiWm2: a.share.map((s) => s * 1000) }),
+      ...(a.kind === 'all' ? { dniWm2: a.share.map((s) => s * 900), dhiWm2: a.share.map((s) => s * 200) } : {}),
+    })),
+  }))
+
+const time = (minutes: number): string =>
+  `${String(Math.floor(minutes / 60)).padStart(2, '0')}:${String(minutes % 60).padStart(2, '0')}`
+
+/** A valid day of one stage, with or without a stop, windows and a target. */
+export const anyRace: fc.Arbitrary<RaceInput> = fc
+  .record({
+    openingPct: number(0, 100),
+    from: fc.integer({ min: 5 * 60, max: 11 * 60 }),
+    hours: fc.integer({ min: 1, max: 10 }),
+    charges: fc.boolean(),
+    stops: fc.boolean(),
+    minutes: number(0, 90),
+  })
+  .map((a) => {
+    const race = someRace()
+    const [day] = race.days
+    const to = a.from + a.hours * 60
+    const { stop: _stop, ...stage } = (day.stages ?? [])[0]
+    return {
+      ...race,
+      zone: 'UTC',
+      openingPct: a.openingPct,
+      days: [
+        {
+          date: day.date,
+          driving: { from: time(a.from), to: time(to) },
+          charging: a.charges
+            ? [
+                { from: '04:00', to: time(a.from - 15) },
+                { from: time(to), to: '22:00' },
+              ]
+            : [],
+          targetPct: 30,
+          stages: [a.stops ? { ...stage, stop: { minutes: a.minutes } } : stage],
+        },
+      ],
+    }
+  })
+
+/** A whole forecast request in the documents' own words, valid but for what does not fit together. */
+export const anyRequest = (
+  speeds: fc.Arbitrary<SpeedsInput> = number(10, 130).map((speedKmh) => ({ kind: 'constant' as const, speedKmh })),
+): fc.Arbitrary<unknown> =>
+  fc
+    .record({ car: anyCar, race: anyRace, road: anyRoute, sky: anySky, speeds })
+    .map(({ road, ...rest }) => ({ ...rest, routes: { road } }))
