@@ -1,5 +1,5 @@
 import { useSignal } from '@preact/signals'
-import { documentOf, exampleOf, type Item, type Kind, type Refusal } from '../api.ts'
+import { type Answer, documentOf, exampleOf, type Item, type Kind, type Refusal } from '../api.ts'
 import { download } from '../download.ts'
 import { parseDocument } from '../json-document.ts'
 import { Conflict } from './conflict.tsx'
@@ -22,11 +22,12 @@ export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
   const parsed = text.value.trim() === '' ? null : parseDocument(text.value)
   const document = parsed !== null && 'document' in parsed ? parsed.document : null
   const from = async (id: string): Promise<void> => {
-    const got = id === '' ? await exampleOf(word) : await documentOf(kind, id)
+    const got = id === '' ? asNew(await exampleOf(word)) : await documentOf(kind, id)
     refused.value = got.refusal ?? null
     if (got.value === undefined) return
-    known.value = 'version' in got.value ? { id, version: got.value.version } : undefined
-    text.value = JSON.stringify('version' in got.value ? got.value.document : got.value, null, 2)
+    const { document: found, version } = got.value
+    known.value = version === null ? undefined : { id, version }
+    text.value = JSON.stringify(found, null, 2)
   }
   return (
     <details class="more" data-add={kind}>
@@ -80,3 +81,7 @@ export function JsonDocument({ kind, word, items, onSaved }: JsonProps) {
     </details>
   )
 }
+
+/** A worked example is a document that nobody has stored yet. */
+const asNew = ({ value, refusal }: Answer<object>): Answer<{ document: object; version: null }> =>
+  value === undefined ? { refusal } : { value: { document: value, version: null } }
