@@ -12,7 +12,7 @@ import {
   roadHeight,
 } from '../../web/charts/band.ts'
 import { gateLane, laneGates } from '../../web/charts/lane.ts'
-import { sampleDay, sampleMs } from './sample-day.ts'
+import { sampleAt, sampleDay, sampleMs } from './sample-day.ts'
 
 const numbers = (path: string): number[] => [...path.matchAll(/-?\d+(?:\.\d+)?/g)].map(Number)
 
@@ -74,6 +74,16 @@ describe('the power bins', () => {
     bins.slice(1).forEach((bin, i) => expect(bin.fromMs).toBe(bins[i].toMs))
     const edges = bins.map((bin) => bin.fromMs)
     for (const clock of ['08:30', '11:00', '11:30', '14:00']) expect(edges).toContain(sampleMs(clock))
+  })
+
+  it('break at an odd minute, too, and leave no sliver beside it', () => {
+    const spans = sampleDay().spans.map((span) => ({ ...span }))
+    spans[2].to = sampleAt('11:33')
+    spans[3].from = sampleAt('11:33')
+    const edges = powerBins(sampleDay({ spans })).map((bin) => bin.fromMs)
+    expect(edges).toContain(sampleMs('11:33'))
+    expect(edges).not.toContain(sampleMs('11:30'))
+    expect(edges).toContain(sampleMs('11:40'))
   })
 
   it('keep the energy of the steps they stand for', () => {

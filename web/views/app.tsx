@@ -1,3 +1,4 @@
+import { useEffect } from 'preact/hooks'
 import { Mark } from '../charts/mark.tsx'
 import { Rulings } from '../charts/bar.tsx'
 import { ageAmount, clockAt, dayText, offsetText, zoneOffsetMin } from '../format.ts'
@@ -30,6 +31,9 @@ function Top() {
   const offsetMin =
     day === undefined ? -new Date(nowMs.value).getTimezoneOffset() : zoneOffsetMin(day.zone, nowMs.value)
   const where = [race?.name ?? 'Stagewatt', ...(day === undefined ? [] : [dayText(day.date)])].join(', ')
+  useEffect(() => {
+    document.title = race === undefined ? where : `${where}, Stagewatt`
+  }, [where])
   return (
     <header class="top">
       <Mark />
