@@ -87,6 +87,10 @@ async function protect(app: Api, { tls, mostDelayMs = MOST_DELAY_MS }: Parts): P
   app.addHook('onRequest', async () => {
     if (isStopping) throw new Fault('stopping', 'The service is stopping; try again in a moment.')
   })
+  // A connection that is kept alive would keep the service from stopping.
+  app.addHook('onSend', async (_request, reply) => {
+    if (isStopping) reply.header('connection', 'close')
+  })
   await app.register(helmet, {
     strictTransportSecurity: tls !== null,
     contentSecurityPolicy: { useDefaults: false, directives: POLICY },

@@ -184,7 +184,15 @@ async function buildWhatChanged() {
   }
 }
 
+/** npm runs this through a shell that may keep a signal to itself and leave us behind: then stop as if told to. */
+function endWithNpm() {
+  const parent = process.ppid
+  const watch = () => process.ppid !== parent && process.kill(process.pid, 'SIGTERM')
+  if (process.env.npm_lifecycle_event !== undefined) setInterval(watch, 250).unref()
+}
+
 checkNode()
+endWithNpm()
 await buildWhatChanged()
 if (!process.exitCode && !process.argv.includes('--build-only'))
   await import(pathToFileURL(join(DIST, 'server', 'main.js')).href)
