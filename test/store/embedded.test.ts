@@ -1,4 +1,5 @@
 import { rmSync } from 'node:fs'
+import type { Duplex } from 'node:stream'
 import { setTimeout as pause } from 'node:timers/promises'
 import { afterAll, afterEach, beforeAll, describe, expect, it, vi } from 'vitest'
 import { embeddedClient } from '../../server/store/database.ts'
@@ -110,6 +111,25 @@ describe('several clients on the one session', () => {
     })
     await expect(lost).rejects.toMatchObject({ code: expect.stringMatching(/^CONNECTION_/) })
     expect(await b`select * from numbers where n = 100002`).toEqual([])
+  })
+
+  it('a connection that closes in the moment of writing is replaced', async () => {
+    const sockets: Duplex[] = []
+    const socket = async (): Promise<Duplex> => {
+      sockets.push(await engine.socket())
+      return sockets[sockets.length - 1]
+    }
+    const sql = embeddedClient({ ...engine, socket })
+    clients.push(sql)
+    for (let n = 0; n < 3; n++) {
+      expect(await sql`select ${n}::int as n`).toEqual([{ n }])
+      const lost = sql`select 1`.catch((error: unknown) => error)
+      // The client has taken the statement by now and writes it in the event loop's next turn.
+      for (let step = 0; step < 10; step++) await Promise.resolve()
+      sockets[n].destroy()
+      expect(await lost).toMatchObject({ code: 'CONNECTION_CLOSED' })
+    }
+    expect(await sql`select 2 as n`).toEqual([{ n: 2 }])
   })
 
   it('a commit forces its rows to the disk before it is acknowledged', async () => {
