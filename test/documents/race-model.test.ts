@@ -18,8 +18,8 @@ const at = (day: number, hour: number, minute = 0) => Date.UTC(2026, 9, 17 + day
 
 describe('the race in the engine’s units', () => {
   test('a day opens with the release and closes with the impound', () => {
-    const [day] = dayRules(race())
-    expect(day).toMatchObject({ opensMs: at(0, 6), closesMs: at(0, 19), lastStage: 0, raiseS: 120, lowerS: 120 })
+    const [day] = dayRules(race((r) => void (r.days[0].release = '05:30')))
+    expect(day).toMatchObject({ opensMs: at(0, 5, 30), closesMs: at(0, 19), lastStage: 0, raiseS: 120, lowerS: 120 })
     expect(day.charging[1]).toEqual({ fromMs: at(0, 15), toMs: at(0, 18, 30), lifts: true })
   })
 

@@ -16,7 +16,9 @@ function tour(input: unknown): BudgetDocument {
 
 type Ledger = DayBudget['ledger']
 
-const movedWh = ({ cameInWh, wentOutWh, shortWh }: Ledger): number => cameInWh + wentOutWh + shortWh
+/** Downhill climbing is negative: what moved is the size of every line. */
+const movedWh = ({ income, spendings, shortWh }: Ledger): number =>
+  shortWh + [...income, ...spendings].reduce((total, line) => total + Math.abs(line.wh), 0)
 
 const sum = (values: number[]): number => values.reduce((total, value) => total + value, 0)
 
