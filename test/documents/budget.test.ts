@@ -56,6 +56,15 @@ describe('spendings', () => {
     expect(stage.closing.wh - stage.arrival.wh).toBeLessThan(stopWh)
   })
 
+  test('the pack’s voltage is its rested one less the drop under load', () => {
+    const { series } = oneDay(dull)
+    // 60 % of charge: 3.76 V a cell, 30 in series, 6 W of auxiliaries over 0.116 Ω drop 6 mV
+    expect(series.packV[0]).toBeCloseTo(112.8 - 0.006, 1)
+    const driving = series.speedKmh.findIndex((v) => v > 0)
+    expect(series.packV[driving]).toBeLessThan(112.5)
+    expect(series.packV[driving]).toBeGreaterThan(110)
+  })
+
   test('the margin is what the lowest balance leaves above the reserve', () => {
     const day = oneDay(dull)
     expect(day.marginWh).toBeCloseTo(Math.min(...day.series.wh) - day.reserve.wh, 1)
