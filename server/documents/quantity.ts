@@ -14,6 +14,7 @@ export const label = (meaning: string) =>
     .max(80)
     // oxlint-disable-next-line no-control-regex -- control characters are exactly what is refused here
     .regex(/^[^\u0000-\u001f\u007f]*$/, 'one line of text without control characters')
+    .refine((text) => !/\p{Surrogate}/u.test(text), 'whole characters; half of one stands here')
     .describe(meaning)
 
 /** A name for machines: small letters, digits and hyphens, 1 to 64 characters. */
