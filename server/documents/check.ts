@@ -1,5 +1,5 @@
 import type { z } from 'zod'
-import { shownValue } from './problem.ts'
+import { shortened, shownValue } from './problem.ts'
 import type { Problem } from './problem.ts'
 
 /** A checked document, or every problem it has. */
@@ -10,6 +10,10 @@ type Issue = z.core.$ZodIssue
 /** Most problems listed for one document; a table of ten thousand wrong cells needs no ten thousand lines. */
 export const MOST_PROBLEMS = 100
 
+/** A list of sixty long names says no more than its start; nor does a name of a megabyte. [characters] */
+const LONGEST_DETAIL = 400
+const LONGEST_NAME = 80
+
 /**
  * What a document means once its defaults are filled in, or every problem with field, value and expectation.
  *
@@ -18,9 +22,26 @@ export const MOST_PROBLEMS = 100
  */
 export function checkDocument<S extends z.ZodType>(schema: S, input: unknown): Checked<z.output<S>> {
   const result = schema.safeParse(input)
-  if (result.success) return { document: result.data }
+  if (result.success) {
+    const problems = passedOver(input, [])
+    return problems.length === 0 ? { document: result.data } : { problems }
+  }
   return { problems: result.error.issues.flatMap((issue) => problemsOf(issue, input)).slice(0, MOST_PROBLEMS) }
 }
+
+/** The one name that a record's schema passes over in silence. */
+const PASSED_OVER = '__proto__'
+
+/** Only a value that its schema knows is walked, so that its depth has an end. */
+function passedOver(value: unknown, path: (string | number)[]): Problem[] {
+  if (Array.isArray(value)) return value.flatMap((entry, i) => (isNested(entry) ? passedOver(entry, [...path, i]) : []))
+  if (!isNested(value)) return []
+  if (Object.hasOwn(value, PASSED_OVER))
+    return [{ field: fieldName([...path, PASSED_OVER]), detail: 'unknown field; expected none of this name' }]
+  return Object.entries(value).flatMap(([key, entry]) => (isNested(entry) ? passedOver(entry, [...path, key]) : []))
+}
+
+const isNested = (value: unknown): value is object => typeof value === 'object' && value !== null
 
 function problemsOf(issue: Issue, input: unknown): Problem[] {
   const path = issue.path as (string | number)[]
@@ -35,7 +56,13 @@ function problemsOf(issue: Issue, input: unknown): Problem[] {
   }
   const given = valueAt(input, path)
   const value = shownValue(given === undefined && issue.code === 'custom' ? issue.input : given)
-  return [{ field: fieldName(path), ...(value === undefined ? {} : { value }), detail: expectation(issue) }]
+  return [
+    {
+      field: fieldName(path),
+      ...(value === undefined ? {} : { value }),
+      detail: shortened(expectation(issue), LONGEST_DETAIL),
+    },
+  ]
 }
 
 /** Of a union's branches the one that fails with the fewest, deepest problems is what the author meant. */
@@ -84,9 +111,11 @@ function bound(origin: string, comparison: string, limit: number | bigint): stri
 export function fieldName(path: readonly PropertyKey[]): string {
   if (path.length === 0) return 'document'
   return path
-    .map((step, i) => (typeof step === 'number' ? `[${step}]` : `${i === 0 ? '' : '.'}${String(step)}`))
+    .map((step, i) => (typeof step === 'number' ? `[${step}]` : `${i === 0 ? '' : '.'}${shownName(String(step))}`))
     .join('')
 }
+
+const shownName = (name: string): string => (name === '' ? '""' : shortened(name, LONGEST_NAME))
 
 function valueAt(input: unknown, path: readonly PropertyKey[]): unknown {
   let value = input

@@ -18,8 +18,12 @@ export function shownValue(value: unknown): string | undefined {
   if (value === undefined) return undefined
   const text =
     typeof value === 'string' ? JSON.stringify(value) : typeof value === 'number' ? String(value) : inBrief(value)
-  return text.length > LONGEST_VALUE ? `${text.slice(0, LONGEST_VALUE)}…` : text
+  return shortened(text, LONGEST_VALUE)
 }
+
+/** A text of at most so many characters, and a mark where more stood. */
+export const shortened = (text: string, longest: number): string =>
+  text.length > longest ? `${text.slice(0, longest)}…` : text
 
 function inBrief(value: unknown): string {
   if (Array.isArray(value)) return `a list of ${value.length}`
