@@ -25,12 +25,14 @@ export function checkPart(schema: z.ZodType, part: string | undefined) {
   }
 }
 
+const LONG_ID: Problem = { field: 'id', detail: 'expected 1 to 64 characters' }
+
 /** Errors of the HTTP layer by their code there. */
-const HTTP_ERRORS: Record<string, [ErrorCode, string]> = {
+const HTTP_ERRORS: Record<string, [ErrorCode, string, Problem[]?]> = {
   FST_ERR_CTP_BODY_TOO_LARGE: ['too-large', 'The body is over the limit of this address.'],
   FST_ERR_CTP_INVALID_CONTENT_LENGTH: ['bad-request', 'The body is not as long as its Content-Length says.'],
   FST_ERR_BAD_URL: ['bad-address', 'The address holds a malformed %-sequence.'],
-  FST_ERR_MAX_PARAM_LENGTH: ['bad-id', 'An id in the address is longer than 64 characters.'],
+  FST_ERR_MAX_PARAM_LENGTH: ['bad-id', 'An id in the address is longer than 64 characters.', [LONG_ID]],
 }
 
 /** What is told to the client about anything thrown; an unknown error tells nothing of its cause. */
@@ -45,7 +47,7 @@ export function faultOf(error: unknown): Fault {
   if (stored !== null && stored.code !== 'forecast-id-taken')
     return new Fault('store-unavailable', 'The database does not answer; try again in a moment.', { cause: error })
   const known = HTTP_ERRORS[member(error, 'code')]
-  if (known !== undefined) return new Fault(known[0], known[1], { cause: error })
+  if (known !== undefined) return new Fault(known[0], known[1], { cause: error, errors: known[2] })
   const status = Number(member(error, 'statusCode'))
   if (status >= 400 && status < 500) return new Fault('bad-request', 'The request is malformed.', { cause: error })
   return new Fault('internal', 'The service has written down what happened.', { cause: error })
