@@ -20,15 +20,17 @@ export async function startService(): Promise<Service> {
     env: { ...process.env, DATABASE_URL: '', DATA_DIR: join(folder, 'data'), PORT: '0', HOST: '127.0.0.1' },
     stdio: ['ignore', 'pipe', 'pipe'],
   })
-  const url = await addressOf(child)
-  return {
-    url,
-    stop: async () => {
-      const ended = new Promise((done) => child.once('exit', done))
-      child.kill('SIGTERM')
-      await ended
-      rmSync(folder, { recursive: true, force: true })
-    },
+  const stop = async (): Promise<void> => {
+    const ended = child.exitCode === null ? new Promise((done) => child.once('exit', done)) : null
+    child.kill('SIGTERM')
+    await ended
+    rmSync(folder, { recursive: true, force: true })
+  }
+  try {
+    return { url: await addressOf(child), stop }
+  } catch (error) {
+    await stop()
+    throw error
   }
 }
 
