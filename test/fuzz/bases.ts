@@ -1,0 +1,179 @@
+import { type Arbitrary, sample } from 'fast-check'
+import type { CarInput } from '../../server/documents/car.ts'
+import type { RaceInput } from '../../server/documents/race.ts'
+import type { RouteInput } from '../../server/documents/route.ts'
+import type { SkyInput } from '../../server/documents/sky.ts'
+import type { SpeedsInput } from '../../server/documents/speeds.ts'
+import { anyCar, anyRace, anyRequest, anyRoute, anySky } from '../support/arbitrary.ts'
+import { someCar, someRace, someRoute, someSky } from '../support/scenario.ts'
+
+const BENCH = [60, 80, 100].flatMap((inputV) =>
+  [40, 150, 400].map((inputW) => ({
+    inputV,
+    outputV: 120,
+    inputW,
+    efficiencyPct: 97.5 + inputW / 400 - 90 / inputW / 2,
+  })),
+)
+
+/** A car that says everything a car can say. */
+const fullCar = (): CarInput => {
+  const car = someCar()
+  const [deck, nose] = car.panels
+  const [one, two] = car.trackers
+  return {
+    ...car,
+    body: { ...car.body, rotatingFactor: 1.04, rollingPerKmh: 0.00001, windHeightM: 0.6 },
+    panels: [
+      { ...deck, rollDeg: 3, glass: 'physical', cooling: { kind: 'car-body', lengthM: 3 } },
+      { ...nose, glass: 'ashrae', cooling: { kind: 'faiman', u0Wm2PerC: 25, u1WsM3PerC: 6.8 } },
+    ],
+    stand: { tiltMinDeg: 5, tiltMaxDeg: 70, azimuthFromDeg: 0, azimuthToDeg: 300 },
+    cellTypes: { silicon: { ...car.cellTypes.silicon, bandGapEv: 1.13, bandGapPerC: -0.0003 } },
+    strings: car.strings.map((s) => ({ ...s, inParallel: 1, soilingPct: 3, bypassDropV: 0.4 })),
+    trackers: [
+      { ...one, trackingPct: 99 },
+      { name: two.name, window: { ...two.window, outputMinV: 60, outputMaxA: 12 }, bench: BENCH },
+    ],
+  }
+}
+
+const fullRoute = (): RouteInput => ({
+  ...someRoute(5, 20),
+  elevation: { method: 'smoothing spline', climbBeforeM: 25, climbAfterM: 20 },
+  limitKmh: 100,
+  roughnessM: 0.05,
+  groundAlbedo: 0.3,
+  stretches: [
+    { fromKm: 0, toKm: 1, limitKmh: 50, haltsPerKm: 0.5 },
+    { fromKm: 3, toKm: 4, surfaceFactor: 1.2 },
+  ],
+})
+
+const fullRace = (): RaceInput => {
+  const race = someRace()
+  const [day] = race.days
+  const stage = { id: 'first', name: 'To Twin Wells', route: 'road', start: 'Saltpan', finish: 'Twin Wells' }
+  const times = { opensAt: '08:05', closesAt: '11:00', clockStarts: 'at-opening' as const, raiseMin: 1, lowerMin: 1 }
+  return {
+    ...race,
+    penalties: { lateMinPerMin: 1, unfinishedMinPerKm: 2, mostLateMin: 30 },
+    days: [
+      {
+        ...day,
+        zone: 'Africa/Windhoek',
+        openingPct: 55,
+        raiseMin: 3,
+        lowerMin: 3,
+        stages: [
+          { ...stage, toKm: 2, stop: { minutes: 10, lift: true, ...times } },
+          { ...stage, id: 'second', fromKm: 2 },
+        ],
+      },
+    ],
+  }
+}
+
+const fullSky = (): SkyInput => {
+  const sky = someSky(30)
+  const [place] = sky.places
+  const like = (value: number) => place.at.map(() => value)
+  const more = { humidityPct: like(30), gustMps: like(6), pressureHpa: like(1012), turbidity: like(3) }
+  const light = { ghiWm2: like(400), dniWm2: like(500), dhiWm2: like(90), ghiP10Wm2: like(300), ghiP90Wm2: like(500) }
+  return {
+    ...sky,
+    utcOffset: '+02:00',
+    averaging: { ghiWm2: 'instant', airTempC: 'preceding' },
+    pressureIs: 'sea-level',
+    places: [
+      { ...place, ...more },
+      { ...place, name: 'Twin Wells', latDeg: -23.4, ...light },
+    ],
+  }
+}
+
+const SEED = 20261017
+const several = <T>(arbitrary: Arbitrary<T>, numRuns: number): T[] => sample(arbitrary, { numRuns, seed: SEED })
+
+/** Valid documents of each kind; the first three of each fit together. */
+export const DOCUMENTS = {
+  car: [someCar(), fullCar(), ...several(anyCar, 4)],
+  route: [someRoute(4), fullRoute(), ...several(anyRoute, 3)],
+  race: [someRace(), fullRace(), ...several(anyRace, 3)],
+  sky: [someSky(20), fullSky(), ...several(anySky, 3)],
+}
+
+export const SPEEDS: SpeedsInput[] = [
+  { kind: 'constant', speedKmh: 60 },
+  { kind: 'legs', speedKmh: 60, legs: [{ stage: 'first', date: '2026-10-17', speedKmh: 70 }] },
+  { kind: 'sections', speedKmh: 60, sections: [{ stage: 'first', fromKm: 0.5, toKm: 1.5, speedKmh: 50 }] },
+  { kind: 'meet-target', lowestKmh: 55, highestKmh: 65 },
+]
+
+/** Whole documents that fit together. */
+export const WHOLE = {
+  car: someCar(),
+  race: someRace(),
+  routes: { road: someRoute(4) },
+  sky: someSky(),
+  speeds: SPEEDS[0],
+}
+
+export const REQUESTS: object[] = [
+  { ...WHOLE, date: '2026-10-17' },
+  ...SPEEDS.map((speeds) => ({
+    car: fullCar(),
+    race: fullRace(),
+    routes: { road: fullRoute() },
+    sky: fullSky(),
+    speeds,
+  })),
+  { ...WHOLE, car: { id: 'fuzz-car' } },
+  { car: { id: 'fuzz-car' }, race: { id: 'fuzz-race' }, sky: { id: 'fuzz-sky' }, speeds: SPEEDS[0] },
+  ...several(anyRequest(), 6).map((request) => ({ ...Object(request) })),
+]
+
+export const GPX = `<?xml version="1.0" encoding="UTF-8"?>
+<gpx version="1.1" creator="Weaverbird" xmlns="http://www.topografix.com/GPX/1/1">
+<wpt lat="-23.46" lon="17.0"><name>Gate</name></wpt>
+<trk><name>Loop &amp; more</name><trkseg>
+<trkpt lat="-23.50" lon="17.00"><ele>1180.5</ele></trkpt>
+<trkpt lat="-23.49" lon="17.00"><ele>1185.5</ele></trkpt>
+<trkpt lat="-23.48" lon="17.01"><ele>1190</ele></trkpt>
+</trkseg><trkseg>
+<trkpt lat="-23.47" lon="17.01"><ele>1192</ele></trkpt>
+<trkpt lat="-23.46" lon="17.00"><ele>1188</ele></trkpt>
+</trkseg></trk></gpx>
+`
+
+export const ROUTE_TABLES = [
+  {
+    delimiter: ',',
+    text: 'latitude,longitude,elevation (m),speed limit (km/h)\n-23.50,17.00,1180,60\n-23.49,17.00,1184,60\n-23.48,17.01,1188,100\n-23.47,17.01,1190,100\n',
+  },
+  {
+    delimiter: ';',
+    text: 'lat;lon;elev (ft);speed limit (mph);surface;halts per km\n-23,50;17,00;3900;60;1;0\n-23,49;17,00;3910;60;1,1;0\n-23,48;17,01;3920;45;1,2;0,5\n',
+  },
+]
+
+const PLACED = 'place=Saltpan&lat=-23.5&lon=17&elevationM=1200'
+const SAID = 'name=Saltpan&source=forecast&issuedAt=2026-10-16T18:00:00%2B02:00&utcOffset=%2B02:00'
+
+const HOURS = Array.from({ length: 13 }, (_, i) => String(i + 6).padStart(2, '0'))
+
+export const SKY_TABLES = [
+  {
+    delimiter: ',',
+    query: `${SAID}&averaging=preceding&${PLACED}`,
+    text: `time,GHI (W/m2),air temperature (°C),wind speed (m/s),wind from (°)\n${HOURS.map((h, i) => `2026-10-17 ${h}:00,${i * 70},${14 + i},2.5,${i * 20}`).join('\n')}\n`,
+  },
+  {
+    delimiter: ';',
+    query: SAID,
+    text: `place;lat;lon;elevation (m);time;cloud [oktas; instant];temp (°C);humidity (%)\n${['Saltpan;-23,5;17;1200', 'Twin Wells;-23,4;17;1210'].flatMap((p) => HOURS.map((h, i) => `${p};2026-10-17 ${h}:00;${i % 8};${15 + i},5;40`)).join('\n')}\n`.replace(
+      'cloud [oktas; instant]',
+      '"cloud [oktas; instant]"',
+    ),
+  },
+]

@@ -1,0 +1,90 @@
+import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { type Service, startService } from '../api/service.ts'
+import { ADDRESS_DOORS } from './address-doors.ts'
+import { assault, soundComplaint, type Tally } from './assault.ts'
+import { COLLECTIONS, type Kind, sent } from './attempt.ts'
+import { DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS, WHOLE } from './bases.ts'
+import { DOCUMENT_DOORS } from './document-doors.ts'
+import { FORECAST_DOORS, LANES, laneRace } from './forecast-doors.ts'
+import { MENDED } from './mended.ts'
+
+/** Another seed tries other wrong documents: FUZZ_SEED=7 npx vitest run test/fuzz */
+const SEED = process.env.FUZZ_SEED ?? '20261017'
+
+const DOORS = [...DOCUMENT_DOORS, ...FORECAST_DOORS, ...ADDRESS_DOORS]
+const tallies: Tally[] = []
+
+let service: Service
+beforeAll(async () => {
+  service = await startService({ timeLimitMs: 25_000 })
+  const { documents } = service.store
+  await documents.create('car', 'fuzz-car', 'car', WHOLE.car)
+  await documents.create('route', 'road', 'road', WHOLE.routes.road)
+  await documents.create('race', 'fuzz-race', 'race', WHOLE.race)
+  await documents.create('sky', 'fuzz-sky', 'sky', WHOLE.sky)
+  for (let i = 0; i < LANES; i++) await documents.create('race', laneRace(i), 'race', WHOLE.race)
+})
+afterAll(() => service.close())
+
+const sound = { what: 'sound', isWrong: false, isOneOff: false, names: null }
+
+describe('what is sound is accepted, so that one wrong field is what a refusal is for:', () => {
+  const put = (kind: Kind, id: string, type: string, body: string, query = '') =>
+    sent('PUT', `/api/v1/${COLLECTIONS[kind]}/${id}${query}`, type, { ...sound, body }, { touches: null, yields: null })
+
+  test.each(['car', 'route', 'race', 'sky'] as const)('every %s', async (kind) => {
+    for (const [i, document] of DOCUMENTS[kind].entries()) {
+      const attempt = put(kind, `sound-${i}`, 'application/json', JSON.stringify(document))
+      expect(await soundComplaint(service, attempt)).toBeNull()
+    }
+  })
+
+  test('every file', async () => {
+    expect(await soundComplaint(service, put('route', 'gpx', 'application/gpx+xml', GPX))).toBeNull()
+    for (const [i, { text }] of ROUTE_TABLES.entries())
+      expect(await soundComplaint(service, put('route', `table-${i}`, 'text/csv', text))).toBeNull()
+    for (const [i, { text, query }] of SKY_TABLES.entries())
+      expect(await soundComplaint(service, put('sky', `table-${i}`, 'text/csv', text, `?${query}`))).toBeNull()
+  })
+
+  test('every forecast', async () => {
+    for (const body of [
+      ...REQUESTS.map((r) => JSON.stringify(r)),
+      ...SPEEDS.map((s) => JSON.stringify({ ...WHOLE, speeds: s })),
+    ]) {
+      const rest = { touches: null, yields: 'budget' } as const
+      const attempt = sent('POST', '/api/v1/forecast', 'application/json', { ...sound, body }, rest)
+      expect(await soundComplaint(service, attempt)).toBeNull()
+    }
+  })
+})
+
+test.each(MENDED)('%s is refused in few words', async (_what, request, status, code, field) => {
+  const answer = await service.ask(request)
+  expect(answer.json()).toMatchObject({ status, code })
+  expect(answer.json().errors.map((error: { field: string }) => error.field)).toContain(field)
+  expect(answer.body.length).toBeLessThan(5000)
+})
+
+describe('what is wrong is refused by its field, and changes nothing:', () => {
+  test.each(DOORS)('$name, $count times', { timeout: 180_000 }, async (door) => {
+    const tally = await assault(service, door, SEED)
+    tallies.push(tally)
+    expect(tally.failures.join('\n'), 'failures').toBe('')
+    expect(tally.attempts).toBe(door.count)
+    expect(tally.oneOff).toBeGreaterThanOrEqual(door.count / 2)
+    expect(tally.refused).toBeGreaterThan(door.count / 3)
+  })
+
+  test('every door was tried: 2,000 documents and files at least, half of them wrong in one place only', () => {
+    const names = DOORS.filter((door) => door.takesDocuments).map((door) => door.name)
+    const documents = tallies.filter(({ door }) => names.includes(door))
+    const sum = (pick: (tally: Tally) => number) => documents.reduce((total, tally) => total + pick(tally), 0)
+    expect(tallies).toHaveLength(DOORS.length)
+    expect(sum((tally) => tally.attempts)).toBeGreaterThanOrEqual(2000)
+    expect(sum((tally) => tally.oneOff)).toBeGreaterThanOrEqual(sum((tally) => tally.attempts) / 2)
+    expect(sum((tally) => tally.forecasts)).toBeGreaterThan(100)
+    if (process.env.FUZZ_COUNTS === '1')
+      console.table(tallies.map(({ failures, ...counts }) => ({ ...counts, failed: failures.length })))
+  })
+})

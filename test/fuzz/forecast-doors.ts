@@ -1,0 +1,28 @@
+import { sent } from './attempt.ts'
+import { wrongNewForecast, wrongRequest } from './bodies.ts'
+import type { Door } from './document-doors.ts'
+
+/** Attempts that run at once; each has a race of its own, so that its forecasts can be watched. */
+export const LANES = 4
+export const laneRace = (i: number): string => `fuzz-race-${i % LANES}`
+
+/** Every address that computes. */
+export const FORECAST_DOORS: Door[] = [
+  {
+    name: 'POST forecast',
+    count: 360,
+    takesDocuments: true,
+    attempt: (by) =>
+      sent('POST', '/api/v1/forecast', 'application/json', wrongRequest(by), { touches: null, yields: 'budget' }),
+  },
+  {
+    name: 'POST races/:id/forecasts',
+    count: 200,
+    takesDocuments: true,
+    attempt(by, i) {
+      const id = laneRace(i)
+      const rest = { touches: { kind: 'forecast', id }, yields: 'budget' } as const
+      return sent('POST', `/api/v1/races/${id}/forecasts`, 'application/json', wrongNewForecast(by), rest)
+    },
+  },
+]
