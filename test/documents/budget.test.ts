@@ -65,6 +65,20 @@ describe('spendings', () => {
     expect(series.packV[driving]).toBeGreaterThan(110)
   })
 
+  test('downhill with a full pack the brakes take what regeneration cannot store', () => {
+    const down = (openingPct: number) =>
+      oneDay((r) => {
+        dull(r)
+        r.race.openingPct = openingPct
+        const { points } = r.routes.road
+        points.elevationM = points.latDeg.map((_, i) => 9000 - 40 * Math.min(i, 200))
+      })
+    const full = down(100)
+    expect(spentWh(full, 'brakes')).toBeGreaterThan(spentWh(down(30), 'brakes') + 200)
+    const { openingWh, cameInWh, shortWh, wentOutWh, closingWh } = full.ledger
+    expect(openingWh + cameInWh + shortWh - wentOutWh).toBeCloseTo(closingWh, 6)
+  })
+
   test('the margin is what the lowest balance leaves above the reserve', () => {
     const day = oneDay(dull)
     expect(day.marginWh).toBeCloseTo(Math.min(...day.series.wh) - day.reserve.wh, 1)
