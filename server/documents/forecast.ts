@@ -17,7 +17,7 @@ import { raceDocument } from './race.ts'
 import type { RaceDocument } from './race.ts'
 import { routeDocument } from './route.ts'
 import { skyDocument } from './sky.ts'
-import { coverageNotes, skyModel } from './sky-model.ts'
+import { coverageNotes, isCovered, skyModel } from './sky-model.ts'
 import { sectionCutsKm, wantedMps } from './speeds-model.ts'
 import { speedsDocument } from './speeds.ts'
 
@@ -29,7 +29,9 @@ export const forecastRequest = z
     routes: z.record(slug('id of a route that a stage names'), routeDocument),
     sky: skyDocument,
     speeds: speedsDocument,
-    date: date('the one day wanted; earlier days are still worked out for its opening').optional(),
+    date: date(
+      'the one day wanted; the days before it are driven at the fastest speed that meets their targets',
+    ).optional(),
   })
   .meta({ title: 'Forecast request' })
 
@@ -60,29 +62,47 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
   }
 }
 
+/** How the days before the one wanted are driven: a try on Saturday does not change Friday. */
+const AS_TARGETED = speedsDocument.parse({ kind: 'meet-target' })
+
 /** The days up to the last wanted, each opening where the one before closed; one alone where one was asked for. */
 function drivenDays(race: Race, request: ForecastRequest, lastDay: number) {
-  const { race: document, speeds } = request
+  const { race: document } = request
   const stages = placedStages(document)
   const days: BudgetDocument['days'] = []
-  const notes: string[] = []
-  let opening: Opening = {
-    standing: { stage: 0, placeM: 0, stopLeftS: 0 },
-    charge: document.openingPct / 100,
-  }
-  for (let d = 0; d <= lastDay; d++) {
+  const first = firstDay(race, document, lastDay)
+  const notes = first > 0 ? ['The sky does not reach the days before: their stages are taken as driven.'] : []
+  let opening = openingOf(race, stages, first, document.openingPct / 100)
+  for (let d = first; d <= lastDay; d++) {
     const { date: on, openingPct: measured, targetPct } = document.days[d]
     if (measured !== undefined) opening = { ...opening, charge: measured / 100 }
     const zone = zoneOf(document, d)
     notes.push(...coverageNotes(race.sky, race.days[d], zone))
+    const isBefore = request.date !== undefined && d < lastDay
+    const speeds = isBefore ? AS_TARGETED : request.speeds
     const driven = driveDay(race, document, { dayIndex: d, opening, speeds, stages })
     opening = driven.forecast.closing
-    if (request.date !== undefined && d < lastDay) continue
+    if (isBefore) continue
     const targetCharge = targetPct === undefined ? null : targetPct / 100
     const { penalties } = document
     days.push(dayBudget({ race, stages, dayIndex: d, date: on, zone, targetCharge, penalties, ...driven }))
   }
   return { days, notes }
+}
+
+/** The first day to work out: the race's first, or one with a measured charge after days that the sky does not reach. */
+function firstDay({ sky, days }: Race, document: RaceDocument, lastDay: number): number {
+  const gap = days.slice(0, lastDay).findLastIndex((day) => !isCovered(sky, day))
+  const first = document.days.findIndex((day, d) => d > gap && d <= lastDay && day.openingPct !== undefined)
+  return gap >= 0 && first > 0 ? first : 0
+}
+
+/** The car at the start of the first stage that a day may start. */
+function openingOf(race: Race, stages: PlacedStage[], day: number, charge: number): Opening {
+  const next = stages.findIndex((s) => s.dayIndex >= day)
+  const stage = next < 0 ? stages.length : next
+  const placeM = next < 0 ? race.course.lengthM : race.course.stages[next].fromM
+  return { standing: { stage, placeM, stopLeftS: 0 }, charge }
 }
 
 function dayWanted(race: RaceDocument, wanted: string | undefined): number {

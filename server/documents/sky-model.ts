@@ -155,9 +155,9 @@ const HOLDS_MS = 3_600_000
  *
  * @throws InputError when it leaves more than an hour of the day uncovered
  */
-export function coverageNotes(sky: Sky, day: { opensMs: number; closesMs: number }, zone: string): string[] {
+export function coverageNotes(sky: Sky, day: DayEnds, zone: string): string[] {
   const { fromMs, toMs } = skyCoverage(sky)
-  if (fromMs - day.opensMs > HOLDS_MS || day.closesMs - toMs > HOLDS_MS)
+  if (!isCovered(sky, day))
     throw new InputError(
       'sky-too-short',
       'sky.places',
@@ -167,4 +167,15 @@ export function coverageNotes(sky: Sky, day: { opensMs: number; closesMs: number
   return [
     `The sky covers ${localIso(fromMs, zone)} to ${localIso(toMs, zone)}; its nearest values hold for the rest of the day.`,
   ]
+}
+
+interface DayEnds {
+  opensMs: number
+  closesMs: number
+}
+
+/** Whether a sky reaches over a day but for the hour that its nearest values hold. */
+export function isCovered(sky: Sky, day: DayEnds): boolean {
+  const { fromMs, toMs } = skyCoverage(sky)
+  return fromMs - day.opensMs <= HOLDS_MS && day.closesMs - toMs <= HOLDS_MS
 }

@@ -195,12 +195,40 @@ describe('from day to day', () => {
     expect(days[1].opening.chargePct).toBeCloseTo(33, 9)
   })
 
-  test('one day alone is the same as that day among all', () => {
+  test('one day alone is the same as that day among all, where the days before meet their targets', () => {
+    const fastest = { kind: 'meet-target' }
     const alone = budget((r) => {
       twoDays(r)
       r.date = '2026-10-18'
+      r.speeds = fastest
     })
-    expect(alone.days).toEqual([budget(twoDays).days[1]])
+    const all = budget((r) => {
+      twoDays(r)
+      r.speeds = fastest
+    })
+    expect(alone.days).toEqual([all.days[1]])
+  })
+
+  test('a speed tried for one day does not change the days before', () => {
+    const opening = (speedKmh: number) =>
+      budget((r) => {
+        twoDays(r)
+        r.date = '2026-10-18'
+        r.speeds = { kind: 'constant', speedKmh }
+      }).days[0].opening.wh
+    expect(opening(90)).toBe(opening(50))
+  })
+
+  test('with a measured charge a day can be planned by a sky that does not reach the days before', () => {
+    const request = (openingPct?: number) => (r: Request) => {
+      r.race.days.unshift({ ...r.race.days[0], date: '2026-10-16', stages: [] })
+      r.race.days[1].openingPct = openingPct
+      r.date = '2026-10-17'
+    }
+    expect(() => budget(request())).toThrow(/^sky.places: the sky covers/)
+    const alone = budget(request(44))
+    expect(alone.days[0].opening.chargePct).toBeCloseTo(44, 9)
+    expect(alone.assumptions).toContain('The sky does not reach the days before: their stages are taken as driven.')
   })
 })
 

@@ -6,7 +6,7 @@ import { forecastDocuments, forecastRequest } from '../../server/documents/forec
 import type { ForecastRequest } from '../../server/documents/forecast.ts'
 import { anyRequest } from '../support/arbitrary.ts'
 
-const RUNS = 100
+const RUNS = 60
 const counted = { ledgers: 0, light: 0 }
 
 function checked(input: unknown): ForecastRequest {
