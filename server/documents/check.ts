@@ -69,7 +69,7 @@ function problemsOf(issue: Issue, input: unknown): Problem[] {
 function closestBranch(branches: Issue[][], path: (string | number)[], input: unknown): Problem[] {
   const depth = (issues: Issue[]) => Math.max(...issues.map((i) => i.path.length))
   const best = [...branches].sort((a, b) => a.length - b.length || depth(b) - depth(a))[0] ?? []
-  return best.flatMap((issue) => problemsOf({ ...issue, path: [...path, ...issue.path] } as Issue, input))
+  return best.flatMap((issue) => problemsOf({ ...issue, path: [...path, ...issue.path] }, input))
 }
 
 function expectation(issue: Issue): string {
