@@ -108,7 +108,7 @@ function oddAddress(by: Chance, i: number): Attempt {
     [`/api/v1/races/${id}/forecasts`, null],
     [`/api/v1/forecasts/${id}`, null],
     [`/api/v1/forecasts/01234567-89ab-8def-8123-456789abcde${by.pick(['g', '', '00', 'f', 'F'])}`, null],
-    [`/api/v1/examples/${id}`, null],
+    [`/api/v1/examples/${by.pick([id, 'constructor', 'toString'])}`, null],
     [`/api/v1/examples?${query}`, null],
   ])
   const isEmpty = url.endsWith('?&&x') || url.endsWith('?=')

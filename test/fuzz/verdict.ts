@@ -56,7 +56,7 @@ function refusalComplaint({ names, request }: Attempt, answer: LightMyRequestRes
   if (problem.status !== statusCode || !Object.hasOwn(ERRORS, String(problem.code)))
     return 'a refusal of another status'
   if (body.length > LONGEST_REFUSAL) return `a refusal of ${body.length} bytes`
-  if (/\bat .*:\d+:\d+|node_modules|\/server\//.test(body)) return 'a refusal that shows the inside'
+  if (/\.[jt]s:\d+:\d+|node_modules|\/server\//.test(body)) return 'a refusal that shows the inside'
   return errorsComplaint(String(problem.code), problem.errors, names)
 }
 
