@@ -43,7 +43,7 @@ describe('a service killed by kill −9', () => {
   })
   afterEach(() => rmSync(folder, { recursive: true, force: true }))
 
-  it('keeps every acknowledged row, twenty times while it writes', { timeout: 180_000 }, async () => {
+  it('keeps every acknowledged row, twenty times while it writes', { timeout: 300_000 }, async () => {
     await warmFolder(folder)
     const acknowledged: number[] = []
     for (let n = 0; n <= KILLS; n++) {
@@ -57,7 +57,7 @@ describe('a service killed by kill −9', () => {
     expect(acknowledged.length).toBeGreaterThan(KILLS * 5)
   })
 
-  it('starts as if nothing had been when it was killed during its very first start', { timeout: 120_000 }, async () => {
+  it('starts as if nothing had been when it was killed during its very first start', { timeout: 300_000 }, async () => {
     for (const afterMs of [700, 2500]) await writeAndKill(folder, 'start', afterMs)
     const database = await openDatabase({ dataDir: folder, workerUrl: WORKER })
     expect(await database.sql`select 1 as one`).toEqual([{ one: 1 }])
@@ -65,7 +65,7 @@ describe('a service killed by kill −9', () => {
     expect(readdirSync(folder).filter((name) => !name.startsWith('lock'))).toEqual(['pg18'])
   })
 
-  it('does not take a half-made database for a whole one', { timeout: 120_000 }, async () => {
+  it('does not take a half-made database for a whole one', { timeout: 300_000 }, async () => {
     // Waits until the first files of the new database are there: the kill then falls into its making.
     const child = fork(SCRIPT, [folder], { execArgv: [], stdio: ['ignore', 'ignore', 'inherit', 'ipc'] })
     const ended = new Promise((resolve) => child.once('exit', resolve))
