@@ -12,6 +12,8 @@ import { budgetComplaint, complaint } from './verdict.ts'
 
 /** An answer that takes longer hangs. [ms] */
 const HANG_MS = 30_000
+/** Of many failures at one door the first are shown with their requests. */
+const MOST_SHRUNK = 4
 
 export interface Tally {
   door: string
@@ -40,11 +42,15 @@ export async function assault(service: Service, door: Door, seed: string): Promi
   await stand(service, door)
   const before = new Set(await storeState(service))
   const saved = new Set<string>()
+  let shown = 0
   const lane = async (first: number): Promise<void> => {
     for (let i = first; i < door.count; i += LANES) {
       const attempt = door.attempt(chance(`${seed} ${door.name} ${i}`), i)
       const failure = await tried(service, attempt, tally, saved)
-      if (failure !== null) tally.failures.push(await told(service, failure, `seed ${seed}, ${door.name} ${i}`))
+      if (failure === null) continue
+      const where = `seed ${seed}, ${door.name} ${i}`
+      const isFirst = ++shown <= MOST_SHRUNK
+      tally.failures.push(isFirst ? await told(service, failure, where) : `${where}: ${failure.text}`)
     }
   }
   await Promise.all(Array.from({ length: LANES }, (_, i) => lane(i)))

@@ -4,6 +4,7 @@ type Body = string | Buffer
 
 /** Most requests that are spent on making one smaller. */
 const MOST_TRIES = 300
+const MOST_MS = 10_000
 
 /**
  * A smaller body that still fails: parts of the document left out, or pieces of the text cut away, as long
@@ -11,11 +12,12 @@ const MOST_TRIES = 300
  */
 export async function shrunk(body: Body, stillFails: (smaller: Body) => Promise<boolean>): Promise<Body> {
   let tries = MOST_TRIES
+  const until = performance.now() + MOST_MS
   let best = body
   for (let isSmaller = true; isSmaller && tries > 0; ) {
     isSmaller = false
     for (const candidate of smallerThan(best)) {
-      if (--tries <= 0) break
+      if (--tries <= 0 || performance.now() > until) return best
       if (!(await stillFails(candidate))) continue
       best = candidate
       isSmaller = true
