@@ -19,9 +19,13 @@ function problemsOf(text: string, options: SkyTableOptions = ONE) {
   return problems
 }
 
-/** One column beside time and temperature, its values at hourly stamps. */
-const column = (header: string, ...values: (string | number)[]) =>
-  `time;temp (°C);cloud (%, instant);wind from (deg);${header}\n${values.map((v, i) => `2026-10-17T0${i + 6}:00;20;10;180;${v}`).join('\n')}\n`
+/** One column beside time, temperature and cloud, its values at hourly stamps; wind has its direction. */
+const column = (header: string, ...values: (string | number)[]) => {
+  const isWind = /^(?:wind|ff)/i.test(header) && !/from|dir|P\d0/i.test(header)
+  const head = `time;temp (°C);cloud (%, instant);${isWind ? 'wind from (deg);' : ''}${header}`
+  const row = (v: string | number, i: number) => `2026-10-17T0${i + 6}:00;20;10;${isWind ? '180;' : ''}${v}`
+  return `${head}\n${values.map(row).join('\n')}\n`
+}
 
 describe('a weather table with all there is', () => {
   const { document, summary, notices } = skyOf(
