@@ -1,4 +1,5 @@
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { DOCUMENTS as SCHEMAS } from '../../server/compute/documents.ts'
 import { type Service, startService } from '../api/service.ts'
 import { ADDRESS_DOORS } from './address-doors.ts'
 import { assault, soundComplaint, type Tally } from './assault.ts'
@@ -6,7 +7,10 @@ import { COLLECTIONS, type Kind, sent } from './attempt.ts'
 import { DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS, WHOLE } from './bases.ts'
 import { DOCUMENT_DOORS } from './document-doors.ts'
 import { FORECAST_DOORS, LANES, laneRace } from './forecast-doors.ts'
+import { isRelated } from './json-path.ts'
 import { MENDED } from './mended.ts'
+import { published } from './schema-limits.ts'
+import { sweep } from './sweep.ts'
 
 /** Another seed tries other wrong documents: FUZZ_SEED=7 npx vitest run test/fuzz */
 const SEED = process.env.FUZZ_SEED ?? '20261017'
@@ -64,6 +68,27 @@ test.each(MENDED)('%s is refused in few words', async (_what, request, status, c
   expect(answer.json()).toMatchObject({ status, code })
   expect(answer.json().errors.map((error: { field: string }) => error.field)).toContain(field)
   expect(answer.body.length).toBeLessThan(5000)
+})
+
+test.each([
+  ['car', 150],
+  ['route', 20],
+  ['race', 30],
+  ['sky', 40],
+] as const)('no object of a %s takes a stray key, no number passes its limits', async (kind, least) => {
+  const wrong = sweep(DOCUMENTS[kind][1], published(SCHEMAS[kind]))
+  expect(wrong.length).toBeGreaterThan(least)
+  const url = `/api/v1/${COLLECTIONS[kind]}/swept`
+  const headers = { 'content-type': 'application/json' }
+  for (const { field, document } of wrong) {
+    const answer = await service.ask({ method: 'PUT', url, headers, payload: JSON.stringify(document) })
+    expect(answer.statusCode, field).toBe(422)
+    expect(
+      answer.json().errors.some((error: { field: string }) => isRelated(error.field, field)),
+      field,
+    ).toBe(true)
+  }
+  expect((await service.ask({ url })).statusCode).toBe(404)
 })
 
 describe('what is wrong is refused by its field, and changes nothing:', () => {
