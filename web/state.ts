@@ -13,6 +13,8 @@ import {
   type Refusal,
 } from './api.ts'
 import { type Choice, choiceOf, dayToShow, hashOf } from './choice.ts'
+import { standing } from './session.ts'
+import { stageId, tick } from './shown.ts'
 
 /** A budget with the moment it came and the question it answers. */
 export interface Worked {
@@ -32,10 +34,8 @@ export const before = signal<DayBudget | null>(null)
 export const refusal = signal<Refusal | null>(null)
 /** Since when an answer is being worked out; null when none is. */
 export const workingSinceMs = signal<number | null>(null)
-export const nowMs = signal(Date.now())
 export const lastHeardMs = signal(Date.now())
 export const isHeard = signal(true)
-export const stageId = signal<string | null>(null)
 
 export const isComplete = computed(() => {
   const { race, car, sky, date } = choice.value
@@ -158,8 +158,9 @@ export function start(): void {
     isHeard.value = heard
     if (heard) lastHeardMs.value = Date.now()
   }
+  contact.unknown = () => (standing.value = 'outside')
   addEventListener('hashchange', () => (choice.value = { ...choice.value, ...choiceOf(location.hash) }))
-  setInterval(() => (nowMs.value = Date.now()), 1000)
+  tick()
   setInterval(() => void listen(), RETRY_MS)
   const race = computed(() => choice.value.race)
   effect(() => {

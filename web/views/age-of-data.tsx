@@ -1,7 +1,8 @@
 import { answerFreshness, type Freshness, forecastFreshness } from '../age.ts'
 import { Disc } from '../charts/disc.tsx'
 import { ageAmount, clockAt, stampText } from '../format.ts'
-import { nowMs, type Worked } from '../state.ts'
+import { nowMs } from '../shown.ts'
+import { type Worked } from '../state.ts'
 import { Wh } from './figures.tsx'
 
 /** How old what the figures rest on is: always a symbol and a number. */

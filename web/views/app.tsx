@@ -2,8 +2,11 @@ import { useEffect } from 'preact/hooks'
 import { Mark } from '../charts/mark.tsx'
 import { Rulings } from '../charts/bar.tsx'
 import { ageAmount, clockAt, dayText, offsetText, zoneOffsetMin } from '../format.ts'
-import { choice, days, isHeard, lastHeardMs, lists, nowMs, worked, workingSinceMs } from '../state.ts'
+import { nowMs } from '../shown.ts'
+import { choice, days, isHeard, lastHeardMs, lists, worked, workingSinceMs } from '../state.ts'
+import { standing } from '../session.ts'
 import { DayView } from './day.tsx'
+import { Landing } from './landing.tsx'
 import { SetUp } from './set-up.tsx'
 import { Wh } from './figures.tsx'
 import { Disc } from '../charts/disc.tsx'
@@ -13,17 +16,24 @@ const STRIP_AFTER_MS = 15_000
 /** Work shorter than this is not worth a word. [ms] */
 const QUIET_MS = 700
 
-export const App = () => (
-  <>
-    <Rulings />
-    <Top />
-    <Strip />
-    <main id="main" class="phone">
-      {choice.value.view === 'day' ? <DayView /> : <SetUp />}
-    </main>
-    <Tabs />
-  </>
-)
+export function App() {
+  const { value } = standing
+  if (value !== null && value !== 'inside') return <Landing standing={value} />
+  const View = VIEWS[choice.value.view]
+  return (
+    <>
+      <Rulings />
+      <Top />
+      <Strip />
+      <main id="main" class="phone">
+        <View />
+      </main>
+      <Tabs />
+    </>
+  )
+}
+
+const VIEWS = { day: DayView, 'set-up': SetUp }
 
 function Top() {
   const race = lists.value?.races.find((item) => item.id === choice.value.race)

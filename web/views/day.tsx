@@ -1,16 +1,6 @@
 import { DayBand } from '../charts/day-band.tsx'
-import {
-  choice,
-  choose,
-  days,
-  isComplete,
-  lists,
-  refusal,
-  stageId,
-  worked,
-  workingSinceMs,
-  type Worked,
-} from '../state.ts'
+import { stageId } from '../shown.ts'
+import { choice, choose, days, isComplete, lists, refusal, worked, workingSinceMs, type Worked } from '../state.ts'
 import { daySentence, stageSentence } from '../sentence.ts'
 import { clockAt, dayText } from '../format.ts'
 import { AgeOfData } from './age-of-data.tsx'

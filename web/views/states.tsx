@@ -1,6 +1,7 @@
 import type { Refusal } from '../api.ts'
 import { ageAmount, clockAt, THIN } from '../format.ts'
-import { askAgain, choice, choose, lists, loadLists, nowMs, refusal, type Worked } from '../state.ts'
+import { nowMs } from '../shown.ts'
+import { askAgain, choice, choose, lists, loadLists, refusal, type Worked } from '../state.ts'
 import { Problems } from './problems.tsx'
 
 /** Unfilled ruling that stands for figures to come. */
