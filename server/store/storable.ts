@@ -11,6 +11,17 @@ export const isSlug = (id: string): boolean => /^[a-z0-9-]{1,64}$/.test(id)
 
 export const isUuid = (id: string): boolean => /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/i.test(id)
 
+/** A day as YYYY-MM-DD that the calendar has. */
+export const isDay = (date: string): boolean => /^\d{4}-\d\d-\d\d$/.test(date) && isCalendarDay(date)
+
+const isCalendarDay = (date: string): boolean => {
+  const at = new Date(`${date}T00:00:00Z`)
+  return !Number.isNaN(at.getTime()) && at.toISOString().startsWith(date)
+}
+
+/** A SHA-256 in lower-case hexadecimal digits. */
+export const isSha256 = (hash: string): boolean => /^[0-9a-f]{64}$/.test(hash)
+
 /**
  * Lets a value through that fits its column.
  *
