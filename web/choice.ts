@@ -1,9 +1,12 @@
 import type { SpeedsInput } from '../server/documents/speeds.ts'
 import { dateIn } from './format.ts'
 
+export const VIEWS = ['day', 'log', 'trackers', 'set-up'] as const
+export type View = (typeof VIEWS)[number]
+
 /** What a page of the client shows: kept in its address, so that a crew can send it and a reload keeps it. */
 export interface Choice {
-  view: 'day' | 'set-up'
+  view: View
   race: string
   car: string
   sky: string
@@ -21,7 +24,7 @@ export function choiceOf(hash: string): Choice {
   const params = new URLSearchParams(query)
   const text = (name: string): string => params.get(name) ?? ''
   return {
-    view: view === 'set-up' ? 'set-up' : 'day',
+    view: VIEWS.find((known) => known === view) ?? 'day',
     race: text('race'),
     car: text('car'),
     sky: text('sky'),

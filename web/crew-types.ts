@@ -1,30 +1,14 @@
 import type { BudgetDocument } from '../server/documents/budget.ts'
+import type { JudgementDocument } from '../server/documents/judgement.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
+import type { TrackerReport } from '../server/documents/tracker-report.ts'
 
-/** The side of a tracker and the quantity that a figure was read at. */
-export type ReadingField = 'inputV' | 'inputA' | 'outputV' | 'outputA'
+export type { ReadingDocument, ReadingField } from '../server/documents/reading.ts'
+export type { KeptReading, TrackerReport } from '../server/documents/tracker-report.ts'
 
-/** Four figures read off a tracker, as the client sends them. */
-export interface ReadingDocument extends Record<ReadingField, number> {
-  id: string
-  tracker: string
-  at: string
-  meters?: Partial<Record<ReadingField, string>>
-  note?: string
-}
-
-export type Verdict = 'counts' | 'impossible' | 'at-limit' | 'pack-full' | 'far-off'
-
-/** What a reading says against the tracker's curve. */
-export interface Judgement {
-  verdict: Verdict
-  reason: string
-  efficiencyPct: number
-  /** Standard uncertainty from the meters. [points] */
-  uncertaintyPct: number
-  expectedPct: number
-  bandPct: [number, number]
-}
+export type Verdict = JudgementDocument['verdict']
+export type Curve = TrackerReport['bench']
+export type TrackerDay = NonNullable<TrackerReport['day']>
 
 /** What a day's budget moved by. */
 export interface Moved {
@@ -36,60 +20,9 @@ export interface Moved {
   movedWh: number
 }
 
-export interface ReadingAnswer extends Judgement {
+export interface ReadingAnswer extends JudgementDocument {
   id: string
   moved: Moved[]
-}
-
-export interface ReadingEntry extends Judgement {
-  reading: ReadingDocument
-  receivedAt: string
-  isSetAside: boolean
-}
-
-/** A curve with its band along the input power; all of one length. [%] */
-export interface Curve {
-  efficiencyPct: number[]
-  lowPct: number[]
-  highPct: number[]
-}
-
-export interface TrackerTerm {
-  name: string
-  value: number
-  sd: number
-  unit: string
-  isIdentified: boolean
-}
-
-export interface TrackerReport {
-  name: string
-  maxW: number
-  /** Voltages that the curves are drawn at. */
-  inputV: number
-  outputV: number
-  inputW: number[]
-  bench: Curve
-  learned: Curve
-  terms: TrackerTerm[]
-  readings: ReadingEntry[]
-  /** From the budget that the crew follows; null where none is followed. */
-  day: TrackerDay | null
-}
-
-export interface TrackerDay {
-  date: string
-  /** Energy at its input. */
-  wh: number
-  sharePct: number
-  /** Time outside its window while there was sun. */
-  outsideMin: number
-  deniedWh: number
-  meanEfficiencyPct: number
-  /** Where the day's energy fell, by input power. */
-  fell: { fromW: number; toW: number; wh: number }[]
-  /** What one point of efficiency more would bring over the day. */
-  onePointWh: number
 }
 
 export interface Trackers {

@@ -7,7 +7,8 @@ import { choice, days, isHeard, lastHeardMs, lists, worked, workingSinceMs } fro
 import { standing } from '../session.ts'
 import { DayView } from './day.tsx'
 import { Landing } from './landing.tsx'
-import { SetUp } from './set-up.tsx'
+import { LogView } from './log.tsx'
+import { late } from './late.tsx'
 import { Wh } from './figures.tsx'
 import { Disc } from '../charts/disc.tsx'
 
@@ -33,7 +34,13 @@ export function App() {
   )
 }
 
-const VIEWS = { day: DayView, 'set-up': SetUp }
+/** Screens that are not needed at once are fetched when they are opened. */
+const VIEWS = {
+  day: DayView,
+  log: LogView,
+  trackers: late(async () => (await import('./trackers.tsx')).TrackersView),
+  'set-up': late(async () => (await import('./set-up.tsx')).SetUp),
+}
 
 function Top() {
   const race = lists.value?.races.find((item) => item.id === choice.value.race)
@@ -112,6 +119,8 @@ function Working({ ms }: { ms: number }) {
 
 const TABS = [
   { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },
+  { view: 'log', name: 'Log', icon: 'M5 21l1-5L17 5l4 4L10 20zM14 8l4 4M4 24h18' },
+  { view: 'trackers', name: 'Trackers', icon: 'M4 3v20h19M5 21C8 8 12 8 22 7M15 15l3 3-3 3-3-3z' },
   { view: 'set-up', name: 'Set-up', icon: 'M6 3h14v20H6zM6 9h14M6 13.5h14M6 18h14M10 3v20' },
 ] as const
 

@@ -3,6 +3,7 @@ import type { SpeedsInput } from '../../server/documents/speeds.ts'
 import { legSpeed, ownSpeed, withLeg } from '../legs.ts'
 import { comparison } from '../sentence.ts'
 import { before, choice, days, trySpeeds, workingSinceMs } from '../state.ts'
+import { FollowPanel } from './follow-panel.tsx'
 import { Stepper } from './stepper.tsx'
 
 type Way = 'meet-target' | 'constant' | 'legs'
@@ -40,6 +41,7 @@ export function SpeedPanel({ day }: { day: DayBudget }) {
       {speeds.kind !== 'meet-target' && days.value[0]?.date !== day.date && (
         <p class="note">The days before are driven at these speeds, too.</p>
       )}
+      <FollowPanel day={day} />
     </section>
   )
 }
