@@ -9,7 +9,7 @@ create table events (
   topic text not null references event_topics (topic),
   id bigint not null,
   kind text not null,
-  data jsonb not null,
+  data jsonb,
   created_at timestamptz not null default clock_timestamp(),
   primary key (topic, id)
 );

@@ -1,5 +1,5 @@
 import type { Sql } from './guarded-sql.ts'
-import { checkField, isSlug, utc } from './storable.ts'
+import { checkBy, checkField, isSlug, utc } from './storable.ts'
 
 /** Which curve a race's forecasts use. */
 export interface BeliefUse {
@@ -31,6 +31,7 @@ export const beliefStore = (sql: Sql): BeliefStore => ({
 
   async use(raceId, which, widen, by) {
     checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
+    checkBy(by)
     checkField('widen', widen, Number.isFinite(widen) && widen >= 1, 'a number of 1 or more')
     await sql`
       insert into belief_uses (race_id, which, widen, created_by) values (${raceId}, ${which}, ${widen}, ${by})`

@@ -1,6 +1,6 @@
 import type { Conflict, Saved } from './document-store.ts'
 import type { Fragment, Sql } from './guarded-sql.ts'
-import { checkField, isDay, isSlug, isUuid, isVersion, json, saving, utc } from './storable.ts'
+import { checkBy, checkField, isDay, isSlug, isUuid, isVersion, json, saving, utc } from './storable.ts'
 
 /** What the crew follows on a day. */
 export interface Choice {
@@ -73,6 +73,7 @@ export function choiceStore(sql: Sql): ChoiceStore {
       checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
       checkField('date', date, isDay(date), 'a day as YYYY-MM-DD')
       checkForecast(forecastId)
+      checkBy(by)
       const expected = expectedVersion ?? 0
       if (expectedVersion !== null && !isVersion(expectedVersion)) return conflictOrMissing(raceId, date)
       const rows = await saving(
@@ -93,12 +94,15 @@ export function choiceStore(sql: Sql): ChoiceStore {
     async setForecast(raceId, date, version, forecastId) {
       checkForecast(forecastId)
       if (!isSlug(raceId) || !isDay(date) || !isVersion(version)) return false
-      const rows = await sql`
+      const rows = await saving(
+        {},
+        () => sql`
         update day_choices set forecast_id = ${forecastId}
         where race_id = ${raceId} and date = ${date} and version = ${version} and version = (
           select max(version) from day_choices where race_id = ${raceId} and date = ${date}
         )
-        returning version`
+        returning version`,
+      )
       return rows.length > 0
     },
   }

@@ -1,5 +1,5 @@
 import type { Fragment, Sql, TransactionSql } from './guarded-sql.ts'
-import { checkField, isDay, isSha256, isSlug, isUuid, saving, utc } from './storable.ts'
+import { checkBy, checkField, isDay, isSha256, isSlug, isUuid, saving, utc } from './storable.ts'
 
 /** A link that lets its holder in; its token is known to the holder alone. Instants are ISO 8601 in UTC. */
 export interface Link {
@@ -96,7 +96,7 @@ export function linkStore(sql: Sql): LinkStore {
       checkHash(sha256)
       checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
       checkField('date', date, isDay(date), 'a day as YYYY-MM-DD')
-      checkField('by', by, by === null || isUuid(by), 'a UUID or null')
+      checkBy(by)
       const rows = await saving(
         { name },
         () => sql<Link[]>`

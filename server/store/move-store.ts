@@ -1,5 +1,5 @@
 import type { Sql } from './guarded-sql.ts'
-import { checkField, isDay, isSlug, isUuid, json, saving, utc } from './storable.ts'
+import { checkBy, checkField, isDay, isSlug, isUuid, json, saving, utc } from './storable.ts'
 
 export type MoveCause = 'reading' | 'set-aside' | 'take-back' | 'use-bench' | 'use-learned' | 'choice'
 
@@ -40,6 +40,7 @@ export const moveStore = (sql: Sql): MoveStore => ({
     checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
     checkField('date', date, isDay(date), 'a day as YYYY-MM-DD')
     checkField('readingId', readingId, readingId === null || isUuid(readingId), 'a UUID or null')
+    checkBy(move.by)
     checkField('forecastId', forecastId, isUuid(forecastId), 'a UUID')
     for (const [field, wh] of Object.entries({ closingWhBefore, closingWhAfter })) {
       checkField(field, wh, wh === null || Number.isFinite(wh), 'a number or null')

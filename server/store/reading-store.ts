@@ -1,6 +1,6 @@
 import type { Fragment, Sql } from './guarded-sql.ts'
 import { firstDifference } from './difference.ts'
-import { checkField, isSlug, isUuid, isVersion, json, saving, utc } from './storable.ts'
+import { checkBy, checkField, isSlug, isUuid, isVersion, json, saving, utc } from './storable.ts'
 
 /** A reading as it was received, with what holds of it now. `receivedAt` is ISO 8601 in UTC. */
 export interface StoredReading {
@@ -69,6 +69,7 @@ export function readingStore(sql: Sql): ReadingStore {
     async add({ raceId, reading, carId, carVersion, judgement, by }) {
       checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
       checkField('id', reading.id, isUuid(reading.id), 'a UUID')
+      checkBy(by)
       checkField('carVersion', carVersion, isVersion(carVersion), 'a whole number from 1 to 2147483647')
       const rows = await saving(
         { carId, reading, judgement },
@@ -98,6 +99,7 @@ export function readingStore(sql: Sql): ReadingStore {
     get,
 
     async mark(raceId, id, isSetAside, by) {
+      checkBy(by)
       if (!isSlug(raceId) || !isUuid(id)) return false
       const rows = await sql`
         insert into reading_marks (race_id, reading_id, is_set_aside, created_by)
