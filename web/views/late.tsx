@@ -1,6 +1,6 @@
 import { type Signal, signal } from '@preact/signals'
 import type { ComponentType } from 'preact'
-import { Ruling } from './states.tsx'
+import { Ruling } from './ruling.tsx'
 
 /** A screen that is fetched when it is first shown; ruling stands for it until then. */
 export function late(load: () => Promise<ComponentType>): ComponentType {

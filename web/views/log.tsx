@@ -11,7 +11,7 @@ import { LogFields } from './log-fields.tsx'
 import { LogMeters } from './log-meters.tsx'
 import { ReadingSight, ReadingVerdict } from './log-verdict.tsx'
 import { Conflict } from './conflict.tsx'
-import { Ruling } from './states.tsx'
+import { Ruling } from './ruling.tsx'
 
 /** A reading that went to the service, and what it said. */
 interface Sent {

@@ -111,4 +111,4 @@ function Made({ made, onNext }: { made: NewShare; onNext: () => void }) {
 
 /** Whether an address leads back to whichever device opens it. */
 const isOfThisMachine = (url: string): boolean =>
-  ['localhost', '[::1]'].includes(new URL(url).hostname) || /^127\./.test(new URL(url).hostname)
+  ['localhost', '[::1]'].includes(new URL(url).hostname) || new URL(url).hostname.startsWith('127.')

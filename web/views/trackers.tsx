@@ -10,7 +10,7 @@ import { outsideText, overDay, standingOf, trackersSentence, untold, usedCurve }
 import { Conflict } from './conflict.tsx'
 import { Say, Wh } from './figures.tsx'
 import { Readings } from './readings.tsx'
-import { Ruling } from './states.tsx'
+import { Ruling } from './ruling.tsx'
 
 /** Each tracker as bench and readings show it: its curve, where the day's energy fell, what a point is worth. */
 export function TrackersView() {
