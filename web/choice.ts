@@ -1,4 +1,5 @@
 import type { SpeedsInput } from '../server/documents/speeds.ts'
+import type { FollowedChoice } from './crew-types.ts'
 import { dateIn } from './format.ts'
 
 export const VIEWS = ['day', 'log', 'trackers', 'set-up'] as const
@@ -53,6 +54,13 @@ function speedsOf(kmh: string, legs: string): SpeedsInput {
     .filter(([stage, speed]) => /^[a-z0-9-]+$/.test(stage) && isSpeed(Number(speed)))
     .map(([stage, speed]) => ({ stage, speedKmh: Number(speed) }))
   return list.length === 0 ? { kind: 'constant', speedKmh } : { kind: 'legs', speedKmh, legs: list }
+}
+
+/** Whether a page shows just what the crew follows. */
+export function isSame(shown: Choice, choice: FollowedChoice | null | undefined): boolean {
+  if (choice === null || choice === undefined) return false
+  const { carId: car, skyId: sky, speeds } = choice
+  return hashOf({ ...shown, view: 'day' }) === hashOf({ ...shown, view: 'day', car, sky, speeds })
 }
 
 /** Whether a number is a speed that may be asked for. */

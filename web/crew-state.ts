@@ -2,7 +2,6 @@ import { signal } from '@preact/signals'
 import { documentOf, type Refusal } from './api.ts'
 import { followedOf, type RaceDay, trackersOf } from './crew.ts'
 import type { FollowedChoice, Trackers } from './crew-types.ts'
-import { type Choice, hashOf } from './choice.ts'
 import { type LogCar, logCar } from './log-reading.ts'
 
 /** The choice that the crew follows on a day; null where none is. */
@@ -26,13 +25,6 @@ export async function loadFollowed(day: RaceDay): Promise<Followed | null> {
 export function followedOn({ race, date }: RaceDay): Followed | null {
   const { value } = followed
   return value?.race === race && value.date === date ? value : null
-}
-
-/** Whether a page shows just what the crew follows. */
-export function isSame(shown: Choice, choice: FollowedChoice | null | undefined): boolean {
-  if (choice === null || choice === undefined) return false
-  const { carId: car, skyId: sky, speeds } = choice
-  return hashOf({ ...shown, view: 'day' }) === hashOf({ ...shown, view: 'day', car, sky, speeds })
 }
 
 export const car = signal<(LogCar & { id: string }) | null>(null)

@@ -2,9 +2,7 @@ import { signal } from '@preact/signals'
 import { ask, BASE } from './api.ts'
 import type { SharedBudget } from './crew-types.ts'
 import { eventReader } from './event-stream.ts'
-
-/** How the page stands to the service; `ended`: the link opens nothing any more. */
-export type Tie = 'opening' | 'live' | 'lost' | 'unfollowed' | 'ended'
+import { type Tie, tieAfter } from './links.ts'
 
 export const tie = signal<Tie>('opening')
 export const shared = signal<SharedBudget | null>(null)
@@ -13,15 +11,6 @@ export const heardMs = signal(Date.now())
 const AGAIN_MS = 2000
 /** The stream shows a sign of life every 15 s; three missed ones mean that it is dead. */
 const SILENT_MS = 45_000
-
-/** The token in the fragment of a share link. */
-export const shareToken = (hash: string): string => hash.replace(/^#(token=)?/, '')
-
-/** What a refusal means for the holder of a link. */
-export function tieAfter(status: number): Tie {
-  if (status === 401 || status === 403 || status === 410) return 'ended'
-  return status === 404 ? 'unfollowed' : 'lost'
-}
 
 /** Shows the day behind a share link and keeps to it until the link ends. */
 export function followShare(token: string): void {

@@ -15,10 +15,10 @@ import {
   listOf,
   type Refusal,
 } from './api.ts'
-import { type Choice, choiceOf, dayToShow, hashOf } from './choice.ts'
+import { type Choice, choiceOf, dayToShow, hashOf, isSame } from './choice.ts'
 import { standing } from './session.ts'
 import { followedBudget } from './crew.ts'
-import { followedOn, isSame, loadFollowed, news } from './crew-state.ts'
+import { followedOn, loadFollowed, news } from './crew-state.ts'
 import { listenTo } from './live.ts'
 import { stageId, tick } from './shown.ts'
 

@@ -1,5 +1,5 @@
 import { Mark } from '../charts/mark.tsx'
-import type { Standing } from '../session.ts'
+import type { Standing } from '../links.ts'
 
 const SAYS: Record<Exclude<Standing, 'inside' | null>, string> = {
   outside: 'This service opens with its owner’s link.',
