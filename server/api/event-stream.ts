@@ -1,0 +1,71 @@
+import type { ServerResponse } from 'node:http'
+import type { FastifyReply, FastifyRequest } from 'fastify'
+import type { StoredEvent } from '../store/event-store.ts'
+import type { Needs } from './api.ts'
+
+/** A quiet stream says this often that it lives, so that nothing on the way closes it. [ms] */
+const HEARTBEAT_MS = 15_000
+/** When a browser that lost the stream comes back. [ms] */
+const RETRY_MS = 1_000
+/** Bytes that may wait for a slow listener before events wait too. */
+const MOST_WAITING = 64_000
+
+/** One event as it stands on the wire (HTML standard, server-sent events). */
+export const eventText = ({ id, kind, data }: Pick<StoredEvent, 'id' | 'kind' | 'data'>): string =>
+  `id: ${id}\nevent: ${kind}\ndata: ${JSON.stringify(data)}\n\n`
+
+export interface StreamOf {
+  topic: string
+  /** Kinds that this listener is told of. */
+  kinds: readonly string[]
+  /** The link by which it listens: its end is the stream's. */
+  linkId: string | null
+}
+
+/** Streams a topic's events until one of the two sides ends it; it resumes after Last-Event-ID. */
+export async function streamEvents(
+  { live, open }: Pick<Needs, 'live'> & { open: Set<ServerResponse> },
+  request: FastifyRequest,
+  reply: FastifyReply,
+  { topic, kinds, linkId }: StreamOf,
+): Promise<void> {
+  const { raw } = reply
+  const lastId = lastEventId(request)
+  reply.hijack()
+  const headers = reply.getHeaders()
+  raw.writeHead(200, {
+    ...Object.fromEntries(Object.entries(headers).filter(([, value]) => value !== undefined)),
+    'content-type': 'text/event-stream; charset=utf-8',
+    'cache-control': 'no-store',
+    'x-accel-buffering': 'no',
+  })
+  raw.write(`retry: ${RETRY_MS}\n\n`)
+  open.add(raw)
+  const beat = setInterval(() => raw.write(':\n\n'), HEARTBEAT_MS)
+  raw.once('close', () => {
+    clearInterval(beat)
+    open.delete(raw)
+  })
+  try {
+    const unsubscribe = await live.subscribe(topic, lastId, {
+      linkId,
+      send(event) {
+        if (!kinds.includes(event.kind)) return true
+        raw.write(eventText(event))
+        return raw.writableLength < MOST_WAITING
+      },
+      end: () => raw.end(),
+    })
+    if (raw.closed) unsubscribe()
+    else raw.once('close', unsubscribe)
+  } catch (error) {
+    request.log.warn({ cause: error }, 'a stream of events ended')
+    raw.end()
+  }
+}
+
+/** Id of the last event that the listener has had; null where it starts now. */
+function lastEventId({ headers }: FastifyRequest): string | null {
+  const id = String(headers['last-event-id'] ?? '')
+  return /^\d{1,15}$/.test(id) ? id : null
+}
