@@ -1,7 +1,7 @@
 import { signal } from '@preact/signals'
 import { documentOf, type Refusal } from './api.ts'
-import { followedOf, type RaceDay, trackersOf } from './crew.ts'
-import type { FollowedChoice, Trackers } from './crew-types.ts'
+import { followedOf, movesOf, type RaceDay, trackersOf } from './crew.ts'
+import type { FollowedChoice, Move, Trackers } from './crew-types.ts'
 import { type LogCar, logCar } from './log-reading.ts'
 
 /** The choice that the crew follows on a day; null where none is. */
@@ -29,6 +29,7 @@ export function followedOn({ race, date }: RaceDay): Followed | null {
 
 export const car = signal<(LogCar & { id: string }) | null>(null)
 export const trackers = signal<Trackers | null>(null)
+export const moves = signal<Move[]>([])
 export const trackersRefusal = signal<Refusal | null>(null)
 
 /** Reads what Log and Trackers show; what was shown before stays until it is there. */
@@ -40,4 +41,9 @@ export async function loadTrackers(day: RaceDay, carId: string): Promise<void> {
   }
   if (report.value !== undefined) trackers.value = report.value
   trackersRefusal.value = report.refusal ?? document.refusal ?? null
+}
+
+export async function loadMoves(race: string): Promise<void> {
+  const answer = await movesOf(race)
+  if (answer.value !== undefined) moves.value = answer.value
 }

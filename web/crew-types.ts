@@ -20,6 +20,16 @@ export interface Moved {
   movedWh: number
 }
 
+/** One entry of the history: what moved a day’s budget, and where to. */
+export interface Move {
+  date: string
+  cause: 'reading' | 'set-aside' | 'take-back' | 'use-bench' | 'use-learned' | 'choice'
+  readingId: string | null
+  closingWhBefore: number | null
+  closingWhAfter: number | null
+  movedAt: string
+}
+
 export interface ReadingAnswer extends JudgementDocument {
   id: string
   moved: Moved[]

@@ -2,6 +2,7 @@ import { type Answer, ask, BASE, itemsOf, json, tell } from './api.ts'
 import type {
   FollowedBudget,
   FollowedChoice,
+  Move,
   NewShare,
   ReadingAnswer,
   ReadingDocument,
@@ -41,11 +42,14 @@ export const trackersOf = ({ race, date }: RaceDay, car: string): Promise<Answer
   ask(`${raceAt(race)}/trackers?${new URLSearchParams({ date, car })}`)
 
 /** Sends a reading; the same one sent again is harmless. */
-export const send = (race: string, reading: ReadingDocument): Promise<Answer<ReadingAnswer>> =>
-  ask(`${raceAt(race)}/readings`, post(reading))
+export const send = (race: string, car: string, reading: ReadingDocument): Promise<Answer<ReadingAnswer>> =>
+  ask(`${raceAt(race)}/readings?${new URLSearchParams({ car })}`, post(reading))
 
 export const markReading = (race: string, id: string, mark: 'set-aside' | 'take-back'): Promise<Answer<true>> =>
   tell(`${raceAt(race)}/readings/${id}/${mark}`, { method: 'POST' })
+
+/** What moved the budgets of the race’s days, newest first. */
+export const movesOf = (race: string): Promise<Answer<Move[]>> => itemsOf(`${raceAt(race)}/history`)
 
 export const believe = (race: string, use: 'bench' | 'learned'): Promise<Answer<true>> =>
   tell(`${raceAt(race)}/belief`, post({ use }))

@@ -16,8 +16,8 @@ export function standingAfter(status: number | null): Standing {
 /** The token in the fragment of a share link. */
 export const shareToken = (hash: string): string => hash.replace(/^#(token=)?/, '')
 
-/** What a refusal means for the holder of a share link. */
-export function tieAfter(status: number): Tie {
-  if (status === 401 || status === 403 || status === 410) return 'ended'
+/** What a refusal means for the holder of a share link; without a token the owner’s cookie answers, and opens no day. */
+export function tieAfter(status: number, code = ''): Tie {
+  if (code === 'no-such-share' || status === 401 || status === 403 || status === 410) return 'ended'
   return status === 404 ? 'unfollowed' : 'lost'
 }

@@ -35,7 +35,7 @@ const isOver = (now: Tie): boolean => now === 'ended'
 async function load(headers: Record<string, string>): Promise<void> {
   const answer = await ask<SharedBudget>(`${BASE}/share/budget`, { headers, cache: 'no-store' })
   if (answer.value === undefined) {
-    fall(tieAfter(answer.refusal.status))
+    fall(tieAfter(answer.refusal.status, answer.refusal.code))
     return
   }
   shared.value = answer.value

@@ -1,6 +1,6 @@
-import type { KeptReading, TrackerDay, TrackerReport, Trackers } from './crew-types.ts'
+import type { KeptReading, Move, TrackerDay, TrackerReport, Trackers } from './crew-types.ts'
 import { type CurvePoint, curveAt, curveInUse, pct1 } from './log-reading.ts'
-import { grouped, round10, THIN } from './format.ts'
+import { grouped, round10, signed, THIN } from './format.ts'
 import type { Phrase } from './sentence.ts'
 
 /** A curve's mean over where the day's energy fell, each bin taken at its middle; null where none fell on it. */
@@ -81,3 +81,22 @@ export const outsideText = ({ outsideMin, deniedWh }: TrackerDay): string =>
 
 /** The curve that the forecasts use. */
 export const usedCurve = (report: TrackerReport, { uses }: Trackers) => curveInUse(report, uses)
+
+const CAUSES: Record<Move['cause'], string> = {
+  reading: 'Reading',
+  'set-aside': 'Reading set aside',
+  'take-back': 'Reading taken back',
+  'use-bench': 'Back to the bench',
+  'use-learned': 'Bench and readings',
+  choice: 'Choice',
+}
+
+/** What moved a day, in one line: the cause, whose tracker, by how much, to where. */
+export function moveText(move: Move, { items }: Trackers): string {
+  const of = items.find(({ readings }) => readings.some(({ reading }) => reading.id === move.readingId))
+  const cause = of === undefined ? CAUSES[move.cause] : `${CAUSES[move.cause]}, ${of.name}`
+  const { closingWhBefore: was, closingWhAfter: is } = move
+  if (is === null) return `${cause}.`
+  const by = was === null ? '' : `${signed(is - was)}${THIN}Wh `
+  return `${cause}: ${by}to ${grouped(is)}${THIN}Wh at close.`
+}

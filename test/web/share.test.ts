@@ -40,7 +40,8 @@ describe('a share link', () => {
   })
 
   it('has ended when refused; a service that is away or has no plan may come back', () => {
-    expect([401, 403, 410].map(tieAfter)).toEqual(['ended', 'ended', 'ended'])
-    expect([404, 0, 503, 500].map(tieAfter)).toEqual(['unfollowed', 'lost', 'lost', 'lost'])
+    expect([401, 403, 410].map((status) => tieAfter(status))).toEqual(['ended', 'ended', 'ended'])
+    expect(tieAfter(404, 'no-such-share')).toBe('ended')
+    expect([404, 0, 503, 500].map((status) => tieAfter(status))).toEqual(['unfollowed', 'lost', 'lost', 'lost'])
   })
 })

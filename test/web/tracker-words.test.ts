@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import type { KeptReading, TrackerReport } from '../../web/crew-types.ts'
 import { spoken } from '../../web/sentence.ts'
-import { offBench, overDay, standingOf, trackersSentence, untold } from '../../web/tracker-words.ts'
+import { moveText, offBench, overDay, standingOf, trackersSentence, untold } from '../../web/tracker-words.ts'
 
 const curve = (pct: number, half: number): TrackerReport['bench'] => ({
   efficiencyPct: [pct, pct],
@@ -120,6 +120,28 @@ describe('a tracker over the day', () => {
     const terms = [term('Standing', true), term('Conduction', false), term('Rectifier', false)]
     expect(untold(report('Tail', 97, { terms }))).toBe(
       'Not told by the readings, as on the bench: Conduction, Rectifier.',
+    )
+  })
+})
+
+describe('the history', () => {
+  const all = { uses: 'learned' as const, items: [report('Tail', 96)] }
+  const move = {
+    date: '2026-10-17',
+    cause: 'reading' as const,
+    readingId: READING.reading.id,
+    closingWhBefore: 2100,
+    closingWhAfter: 2069.4,
+    movedAt: '2026-10-17T12:00:01Z',
+  }
+
+  it('says which reading moved the close, by how much and to where', () => {
+    expect(moveText(move, all)).toBe('Reading, Tail: \u221231\u202fWh to 2\u202f069\u202fWh at close.')
+  })
+
+  it('begins with the first choice, which moved nothing', () => {
+    expect(moveText({ ...move, cause: 'choice', readingId: null, closingWhBefore: null }, all)).toBe(
+      'Choice: to 2\u202f069\u202fWh at close.',
     )
   })
 })

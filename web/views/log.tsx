@@ -71,7 +71,7 @@ function LogForm({ known, race }: { known: NonNullable<typeof car.value>; race: 
     // Sent again after lost contact it is the same reading: the service takes it once.
     const reading = last !== undefined && isLike(last, fresh) ? last : fresh
     sent.value = { reading, answer: null }
-    sent.value = { reading, answer: await send(race, reading) }
+    sent.value = { reading, answer: await send(race, known.id, reading) }
   }
   const next = (): void => {
     typed.value = NOTHING_TYPED

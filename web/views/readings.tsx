@@ -2,7 +2,7 @@ import { useSignal } from '@preact/signals'
 import type { Refusal } from '../api.ts'
 import { markReading } from '../crew.ts'
 import type { KeptReading, TrackerReport } from '../crew-types.ts'
-import { clockAt, dayText, grouped, zoneOffsetMin } from '../format.ts'
+import { grouped, stampIn } from '../format.ts'
 import { pct1 } from '../log-reading.ts'
 import { days } from '../state.ts'
 import { Conflict } from './conflict.tsx'
@@ -30,8 +30,8 @@ export function Readings({ report, race, onChange }: ReadingsProps) {
         {report.readings.toReversed().map((entry) => (
           <li key={entry.reading.id}>
             <p>
-              {stamp(entry.reading.at)} <b>{pct1(entry.efficiencyPct)} %</b> at{' '}
-              {grouped(entry.reading.inputV * entry.reading.inputA)} W
+              {stampIn(days.value[0]?.zone ?? 'UTC', Date.parse(entry.reading.at))} <b>{pct1(entry.efficiencyPct)} %</b>{' '}
+              at {grouped(entry.reading.inputV * entry.reading.inputA)} W
               <br />
               <span class="note">{entry.isSetAside ? 'Set aside.' : entry.reason}</span>
             </p>
@@ -43,11 +43,4 @@ export function Readings({ report, race, onChange }: ReadingsProps) {
       </ul>
     </details>
   )
-}
-
-/** Day and clock in the zone of the race. */
-function stamp(at: string): string {
-  const ms = Date.parse(at)
-  const offsetMin = days.value.length === 0 ? 0 : zoneOffsetMin(days.value[0].zone, ms)
-  return `${dayText(new Date(ms + offsetMin * 60_000).toISOString().slice(0, 10))} ${clockAt(ms, offsetMin)}`
 }

@@ -1,7 +1,7 @@
 import { useEffect } from 'preact/hooks'
 import { CurveChart, curveText, markOf } from '../charts/curve.tsx'
 import { believe } from '../crew.ts'
-import { loadTrackers, news, trackers, trackersRefusal } from '../crew-state.ts'
+import { loadMoves, loadTrackers, news, trackers, trackersRefusal } from '../crew-state.ts'
 import type { TrackerReport, Trackers } from '../crew-types.ts'
 import { dayText, grouped, whText } from '../format.ts'
 import { pct1 } from '../log-reading.ts'
@@ -9,6 +9,7 @@ import { askAgain, choice } from '../state.ts'
 import { outsideText, overDay, standingOf, trackersSentence, untold, usedCurve } from '../tracker-words.ts'
 import { Conflict } from './conflict.tsx'
 import { Say, Wh } from './figures.tsx'
+import { History } from './history.tsx'
 import { Readings } from './readings.tsx'
 import { Ruling } from './ruling.tsx'
 
@@ -17,7 +18,9 @@ export function TrackersView() {
   const { race, date, car } = choice.value
   const isKnown = race !== '' && date !== '' && car !== ''
   useEffect(() => {
-    if (isKnown) void loadTrackers({ race, date }, car)
+    if (!isKnown) return
+    void loadTrackers({ race, date }, car)
+    void loadMoves(race)
   }, [race, date, car, news.value])
   const { value: all } = trackers
   const { value: why } = trackersRefusal
@@ -56,6 +59,7 @@ function All({ all, race }: { all: Trackers; race: string }) {
       {all.items.map((report) => (
         <One key={report.name} report={report} all={all} race={race} onChange={reload} />
       ))}
+      <History />
     </>
   )
 }
