@@ -47,7 +47,7 @@ export const eventStore = (sql: Sql): EventStore => ({
         select topic, last_id, ${kind}, ${json(sql, 'data', data)} from head
         returning topic, id
       )
-      select id::text, pg_notify(${channel(sql)}, topic || ' ' || id) from event`,
+      select id::text, pg_notify(${channel(sql)}, topic) from event`,
     )
     return rows[0].id
   },

@@ -38,6 +38,9 @@ export interface ReadingStore {
   judge(raceId: string, id: string, judgement: unknown): Promise<boolean>
 }
 
+const checkJudgement = (judgement: unknown): void =>
+  checkField('judgement', judgement, typeof judgement === 'object' && judgement !== null, 'an object')
+
 /**
  * Readings of trackers.
  *
@@ -70,6 +73,7 @@ export function readingStore(sql: Sql): ReadingStore {
       checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
       checkField('id', reading.id, isUuid(reading.id), 'a UUID')
       checkBy(by)
+      checkJudgement(judgement)
       checkField('carVersion', carVersion, isVersion(carVersion), 'a whole number from 1 to 2147483647')
       const rows = await saving(
         { carId, reading, judgement },
@@ -109,6 +113,7 @@ export function readingStore(sql: Sql): ReadingStore {
     },
 
     async judge(raceId, id, judgement) {
+      checkJudgement(judgement)
       if (!isSlug(raceId) || !isUuid(id)) return false
       const rows = await saving(
         { judgement },

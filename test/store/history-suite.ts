@@ -21,7 +21,7 @@ export function historySuite(open: () => Promise<TestDatabase>): void {
     forecastId = await someForecast(database.sql)
     readingId = randomUUID()
     const reading = { raceId: 'plateau-run', reading: { id: readingId }, carId: 'weaver-2', carVersion: 1 }
-    await readingStore(database.sql).add({ ...reading, judgement: null, by: null })
+    await readingStore(database.sql).add({ ...reading, judgement: {}, by: null })
   })
   afterAll(() => database.discard())
   const move = (more: Partial<NewMove> = {}): NewMove => ({

@@ -154,7 +154,10 @@ export function readingSuite(open: () => Promise<TestDatabase>): void {
     expect(await refused({ reading: document({ note: 'a\0' }) })).toMatchObject({ field: 'reading.note' })
     expect(await refused({ carVersion: 0 })).toMatchObject({ field: 'carVersion' })
     expect(await refused({ raceId: 'No Slug' })).toMatchObject({ field: 'raceId' })
-    expect(await refused({ judgement: undefined })).toMatchObject({ field: 'judgement' })
+    for (const judgement of [undefined, null, 'far-off']) {
+      expect(await refused({ judgement })).toMatchObject({ field: 'judgement' })
+    }
+    await expect(readings.judge('plateau-run', randomUUID(), null)).rejects.toMatchObject({ field: 'judgement' })
     expect(await refused({ by: 'me' })).toMatchObject({ field: 'by' })
   })
 }
