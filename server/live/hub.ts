@@ -1,6 +1,6 @@
 import type { Listener, Place } from './listener.ts'
 import { type EventLog, type Room, room } from './room.ts'
-import { LINKS } from './topics.ts'
+import { LINKS, MISSED } from './topics.ts'
 
 export interface HubParts {
   events: EventLog
@@ -61,12 +61,13 @@ export async function openHub(parts: HubParts): Promise<Hub> {
   }
 
   /** Hears of revoked links, from the last word on when it must begin again. */
-  const hearOfLinks = (lastId: string | null): Promise<void> => {
+  const hearOfLinks = (lastId: string): Promise<void> => {
     let last = lastId
     const listener: Listener = {
       linkId: null,
-      send({ id, data }) {
+      send({ id, kind, data }) {
         last = id
+        if (kind === MISSED) for (const place of places()) if (place.listener.linkId !== null) place.end('failed')
         endLocal(linkIdIn(data))
         return true
       },
@@ -92,7 +93,7 @@ export async function openHub(parts: HubParts): Promise<Hub> {
     return id
   }
 
-  await hearOfLinks(null)
+  await hearOfLinks(await events.last(LINKS))
   const stopHearing = await notices.hear(
     (topic) => rooms.get(topic)?.wake(),
     () => {
