@@ -1,6 +1,7 @@
 import { resolve, join } from 'node:path'
 import { hashOf, newToken } from './api/access.ts'
 import { type Config, readConfig } from './config.ts'
+import { LINKS } from './live/topics.ts'
 import { openDatabase } from './store/database.ts'
 import { migrate } from './store/migrate.ts'
 import { StoreError } from './store/store-error.ts'
@@ -21,7 +22,9 @@ async function newOwner(config: Config): Promise<string> {
   try {
     await migrate(database.sql, join(ROOT, 'migrations'))
     const token = newToken()
-    await storeOf(database.sql).links.replaceOwner(hashOf(token))
+    const { links, events } = storeOf(database.sql)
+    const { revoked } = await links.replaceOwner(hashOf(token))
+    for (const linkId of revoked) await events.append(LINKS, 'revoked', { linkId })
     return token
   } finally {
     await database.close()

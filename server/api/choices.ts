@@ -4,13 +4,14 @@ import { budgetDocument } from '../documents/budget.ts'
 import { slug } from '../documents/quantity.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { Fault } from '../errors.ts'
+import { dayTopic } from '../live/topics.ts'
 import { linkOf } from './access.ts'
 import { answers, COMPUTE_ERRORS, STORE_ERRORS, WRITE_ERRORS } from './answers.ts'
 import { type Api, clientGone, type Needs, SPEEDS_LIMIT } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { dayParams, oneDay } from './days.ts'
 import { findRace } from './find.ts'
-import { followed, isLearned, moved, told, topicOf } from './followed.ts'
+import { followed, isLearned, moved, told } from './followed.ts'
 import { gather, makeForecast } from './make-forecast.ts'
 import { etag, ifMatch } from './preconditions.ts'
 import type { Turns } from './readings.ts'
@@ -134,7 +135,7 @@ async function choose(needs: Needs, { raceId, date, wanted, ifMatch: named, by, 
     const now = saved === 'missing' ? null : saved.conflict
     throw new Fault('version-changed', `The choice for ${date} has changed${now === null ? '' : ` to version ${now}`}.`)
   }
-  await live.publish(topicOf(raceId, date), 'choice', { carId, skyId, version: saved.version, savedAt: saved.savedAt })
+  await live.publish(dayTopic(raceId, date), 'choice', { carId, skyId, version: saved.version, savedAt: saved.savedAt })
   const before = holds === null ? null : await store.forecasts.get(holds.forecastId)
   const change = await told(needs, { raceId, date, before, after: forecast }, { cause: 'choice', readingId: null, by })
   const { version, savedAt } = saved

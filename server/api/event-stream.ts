@@ -1,17 +1,15 @@
 import type { ServerResponse } from 'node:http'
 import type { FastifyReply, FastifyRequest } from 'fastify'
-import type { StoredEvent } from '../store/event-store.ts'
+import type { LiveEvent } from '../live/listener.ts'
+import { MISSED } from '../live/topics.ts'
 import type { Needs } from './api.ts'
 
 /** A quiet stream says this often that it lives, so that nothing on the way closes it. [ms] */
 const HEARTBEAT_MS = 15_000
 /** When a browser that lost the stream comes back. [ms] */
 const RETRY_MS = 1_000
-/** Bytes that may wait for a slow listener before events wait too. */
-const MOST_WAITING = 64_000
-
 /** One event as it stands on the wire (HTML standard, server-sent events). */
-export const eventText = ({ id, kind, data }: Pick<StoredEvent, 'id' | 'kind' | 'data'>): string =>
+export const eventText = ({ id, kind, data }: Pick<LiveEvent, 'id' | 'kind' | 'data'>): string =>
   `id: ${id}\nevent: ${kind}\ndata: ${JSON.stringify(data)}\n\n`
 
 export interface StreamOf {
@@ -41,27 +39,23 @@ export async function streamEvents(
   })
   raw.write(`retry: ${RETRY_MS}\n\n`)
   open.add(raw)
-  const beat = setInterval(() => raw.write(':\n\n'), HEARTBEAT_MS)
+  const beat = setInterval(() => raw.writableEnded || raw.write(':\n\n'), HEARTBEAT_MS)
   raw.once('close', () => {
     clearInterval(beat)
     open.delete(raw)
   })
-  try {
-    const unsubscribe = await live.subscribe(topic, lastId, {
-      linkId,
-      send(event) {
-        if (!kinds.includes(event.kind)) return true
-        raw.write(eventText(event))
-        return raw.writableLength < MOST_WAITING
-      },
-      end: () => raw.end(),
-    })
-    if (raw.closed) unsubscribe()
-    else raw.once('close', unsubscribe)
-  } catch (error) {
-    request.log.warn({ cause: error }, 'a stream of events ended')
-    raw.end()
-  }
+  const { joined, drained, leave } = live.subscribe(topic, lastId, {
+    linkId,
+    send(event) {
+      if (event.kind !== MISSED && !kinds.includes(event.kind)) return true
+      return raw.write(eventText(event))
+    },
+    // A slow listener would take no goodbye either.
+    end: (reason) => void (reason === 'slow' ? raw.destroy() : raw.end()),
+  })
+  raw.on('drain', drained)
+  raw.once('close', leave)
+  await joined
 }
 
 /** Id of the last event that the listener has had; null where it starts now. */

@@ -1,12 +1,12 @@
 import type { ServerResponse } from 'node:http'
 import { z } from 'zod'
+import { dayTopic } from '../live/topics.ts'
 import { linkOf } from './access.ts'
 import { answers, STORE_ERRORS } from './answers.ts'
 import type { Api, Needs } from './api.ts'
 import { dayParams, oneDay } from './days.ts'
 import { streamEvents } from './event-stream.ts'
 import { findRace } from './find.ts'
-import { topicOf } from './followed.ts'
 import { sharedDay } from './shares.ts'
 
 const stream = {
@@ -35,7 +35,7 @@ export function eventRoutes(api: Api, needs: Needs): void {
   api.get('/races/:id/days/:date/events', { schema, exposeHeadRoute: false }, async (request, reply) => {
     const { id, date } = request.params
     oneDay((await findRace(store, id)).race, date)
-    const listens = { topic: topicOf(id, date), kinds: ALL_KINDS, linkId: linkOf(request) }
+    const listens = { topic: dayTopic(id, date), kinds: ALL_KINDS, linkId: linkOf(request) }
     await streamEvents({ live: needs.live, open }, request, reply, listens)
   })
 
@@ -48,7 +48,7 @@ export function eventRoutes(api: Api, needs: Needs): void {
   const sharedOptions = { schema: sharedSchema, exposeHeadRoute: false, config: { access: 'share' } as const }
   api.get('/share/events', sharedOptions, async (request, reply) => {
     const { raceId, date, id } = sharedDay(request)
-    const listens = { topic: topicOf(raceId, date), kinds: SHARED_KINDS, linkId: id }
+    const listens = { topic: dayTopic(raceId, date), kinds: SHARED_KINDS, linkId: id }
     await streamEvents({ live: needs.live, open }, request, reply, listens)
   })
 }

@@ -1,6 +1,7 @@
 import { z } from 'zod'
 import { budgetDocument, type DayBudget } from '../documents/budget.ts'
 import { ERRORS, Fault } from '../errors.ts'
+import { dayTopic } from '../live/topics.ts'
 import type { StoredChoice } from '../store/choice-store.ts'
 import type { StoredForecast } from '../store/forecast-store.ts'
 import type { MoveCause } from '../store/move-store.ts'
@@ -25,9 +26,6 @@ export interface Cause {
   readingId: string | null
   by: string | null
 }
-
-/** The stream of a day. */
-export const topicOf = (raceId: string, date: string): string => `${raceId}/${date}`
 
 /**
  * What the crew follows on a day, and the newest forecast of it.
@@ -126,7 +124,7 @@ export async function told(
   const { id: forecastId, createdAt: madeAt } = after
   const { readingId } = cause
   const movedWh = change?.movedWh ?? null
-  await live.publish(topicOf(raceId, date), 'forecast', {
+  await live.publish(dayTopic(raceId, date), 'forecast', {
     forecastId,
     madeAt,
     closingWh: is.closing.wh,

@@ -1,10 +1,11 @@
 import type { JudgementDocument } from '../documents/judgement.ts'
 import type { ReadingDocument } from '../documents/reading.ts'
 import { Fault } from '../errors.ts'
+import { dayTopic } from '../live/topics.ts'
 import type { StoredDocument } from '../store/document-store.ts'
 import type { Store } from '../store/store.ts'
 import type { Needs } from './api.ts'
-import { type Cause, makeAnew, type Moved, topicOf } from './followed.ts'
+import { type Cause, makeAnew, type Moved } from './followed.ts'
 import { named } from './gather.ts'
 import { heldOf, keptOf } from './held-readings.ts'
 
@@ -108,7 +109,7 @@ export async function tellDays(
   raceId: string,
   news: { id: string; isSetAside: boolean },
 ): Promise<void> {
-  for (const { date } of await store.choices.list(raceId)) await live.publish(topicOf(raceId, date), 'reading', news)
+  for (const { date } of await store.choices.list(raceId)) await live.publish(dayTopic(raceId, date), 'reading', news)
 }
 
 /** The car that was read: asked for by name, else the one followed on the first reading's day, else on any, else the only one. */
