@@ -107,8 +107,8 @@ export async function openHub(parts: HubParts): Promise<Hub> {
     subscribe(topic, lastId, listener) {
       const { place, entered, drained } = roomOf(topic).enter(listener, numberOf(lastId))
       if (isClosed) place.end('stopping')
-      const joined = Promise.all([entered, check(place, listener.linkId)]).then(() => {})
-      return { joined, drained, leave: place.leave }
+      const joined = both(entered, check(place, listener.linkId))
+      return { joined, drained, leave: () => place.leave() }
     },
 
     async endStreamsOf(linkId) {
@@ -125,6 +125,10 @@ export async function openHub(parts: HubParts): Promise<Hub> {
       await stopHearing()
     },
   }
+}
+
+const both = async (one: Promise<void>, two: Promise<void>): Promise<void> => {
+  await Promise.all([one, two])
 }
 
 const numberOf = (id: string | null): number | null => (id !== null && /^\d{1,15}$/.test(id) ? Number(id) : null)

@@ -82,7 +82,7 @@ export function room(topic: string, log: EventLog, slowMs: number, onEmpty: () =
       const last = Number(await log.last(topic))
       lastId ??= last
       place.lastId ??= last
-      const events = await fetch(place.lastId)
+      const events = place.lastId === last ? [] : await fetch(place.lastId)
       tellMissed(place, events, last)
       place.send(events)
       const isUpToDate = events.length < PAGE && place.lastId >= lastId

@@ -17,11 +17,11 @@ export const notices = ({ sql, isEmbedded }: Pick<Database, 'sql' | 'isEmbedded'
   async hear(onTopic, onAll) {
     if (isEmbedded) return async () => {}
     const [{ name }] = await sql<{ name: string }[]>`select ${channel(sql)} as name`
-    const { unlisten } = await sql.listen(name, onTopic, onAll)
+    const listening = await sql.listen(name, onTopic, onAll)
     const timer = setInterval(onAll, NOW_AND_THEN_MS)
     return async () => {
       clearInterval(timer)
-      await unlisten()
+      await listening.unlisten()
     }
   },
 })

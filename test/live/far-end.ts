@@ -30,7 +30,7 @@ export function farEnd(linkId: string | null = null): FarEnd {
 export async function until(claim: () => boolean, withinMs = 5_000): Promise<number> {
   const startedMs = performance.now()
   while (!claim()) {
-    if (performance.now() - startedMs > withinMs) throw new Error(`not true within ${withinMs} ms: ${claim}`)
+    if (performance.now() - startedMs > withinMs) throw new Error(`not true within ${withinMs} ms: ${String(claim)}`)
     await pause(1)
   }
   return performance.now() - startedMs

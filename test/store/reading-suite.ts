@@ -56,7 +56,7 @@ export function readingSuite(open: () => Promise<TestDatabase>): void {
     const reading = document()
     const raceId = 'repeat'
     await readings.add(given(reading, { raceId }))
-    const turned = Object.fromEntries(Object.entries(reading).reverse())
+    const turned = Object.fromEntries(Object.entries(reading).toReversed())
     expect(await readings.add(given({ ...turned, id: reading.id }, { raceId }))).toEqual({ repeat: true })
     const later = given(reading, { raceId, carVersion: 4, judgement: { verdict: 'far-off' } })
     expect(await readings.add(later)).toEqual({ repeat: true })
