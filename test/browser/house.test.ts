@@ -1,20 +1,11 @@
-import { readFileSync } from 'node:fs'
-import { createRequire } from 'node:module'
-import type { Browser, Page } from 'playwright-core'
+import type { Browser } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { describeWithBrowser } from '../support/needs.ts'
+import { faults } from './faults.ts'
 import { enter, openBrowser, openPhone, overflowPx, type Phone, picture } from './phone.ts'
 import { type Service, startService } from './service.ts'
 
-const AXE = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8')
 const PATIENCE_MS = 120_000
-
-/** What axe-core finds on the page, one line each. */
-async function faults(page: Page): Promise<string[]> {
-  await page.evaluate(AXE)
-  return page.evaluate(`axe.run(document, { resultTypes: ['violations'] }).then(({ violations }) =>
-    violations.flatMap((v) => v.nodes.map((n) => v.id + ': ' + n.target.join(' ') + ' ' + n.failureSummary)))`)
-}
 
 describeWithBrowser('every screen', { timeout: 60_000 }, () => {
   let service: Service

@@ -3,10 +3,10 @@ import { CurveChart, curveText, markOf } from '../charts/curve.tsx'
 import { believe } from '../crew.ts'
 import { loadMoves, loadTrackers, news, trackers, trackersRefusal } from '../crew-state.ts'
 import type { TrackerReport, Trackers } from '../crew-types.ts'
-import { dayText, grouped, whText } from '../format.ts'
+import { dayText, grouped, THIN, whText } from '../format.ts'
 import { pct1 } from '../log-reading.ts'
 import { askAgain, choice } from '../state.ts'
-import { outsideText, overDay, standingOf, trackersSentence, untold, usedCurve } from '../tracker-words.ts'
+import { isTaken, outsideText, standingOf, trackersSentence, untold, usedCurve } from '../tracker-words.ts'
 import { Conflict } from './conflict.tsx'
 import { Say, Wh } from './figures.tsx'
 import { History } from './history.tsx'
@@ -65,7 +65,7 @@ function All({ all, race }: { all: Trackers; race: string }) {
 }
 
 const USES = [
-  { use: 'learned', text: 'Bench and readings' },
+  { use: 'learned', text: 'With readings' },
   { use: 'bench', text: 'Bench only' },
 ] as const
 
@@ -98,6 +98,8 @@ interface OneProps {
 
 function One({ report, all, race, onChange }: OneProps) {
   const marks = report.readings.map(markOf)
+  const isRead = report.readings.some(isTaken)
+  const hasBench = isRead && all.uses === 'learned'
   const id = `tracker-${report.name.replace(/\W+/g, '-')}`
   return (
     <section class="sec pad" aria-labelledby={id}>
@@ -110,15 +112,15 @@ function One({ report, all, race, onChange }: OneProps) {
         inputW={report.inputW}
         maxW={report.maxW}
         curve={usedCurve(report, all)}
-        {...(all.uses === 'learned' ? { bench: report.bench } : {})}
+        {...(hasBench ? { bench: report.bench } : {})}
         {...(report.day === null ? {} : { fell: report.day.fell })}
         marks={marks}
       />
       <p class="note">
-        Band and whiskers hold 95 of 100. {all.uses === 'learned' && 'Dashed is the bench. '}At {grouped(report.inputV)}{' '}
-        V in, {grouped(report.outputV)} V out.{' '}
+        Band and whiskers hold 95 of 100. {hasBench && 'Dashed is the bench. '}At {grouped(report.inputV)} V in,{' '}
+        {grouped(report.outputV)} V out.{' '}
         {report.day !== null && `Below: where the Wh of ${dayText(report.day.date)} fell. `}
-        {untold(report)}
+        {isRead && untold(report)}
       </p>
       {report.day === null ? (
         <p class="note gap">What it is worth shows once a day is followed.</p>
@@ -133,7 +135,6 @@ function One({ report, all, race, onChange }: OneProps) {
 function Worth({ report }: { report: TrackerReport }) {
   const { day } = report
   if (day === null) return null
-  const mean = overDay(report, 'learned')
   return (
     <dl class="facts three">
       <div>
@@ -142,7 +143,8 @@ function Worth({ report }: { report: TrackerReport }) {
           <Wh text={whText(day.wh)} unit="Wh" />
         </dd>
         <dd class="note">
-          {grouped(day.sharePct)} %{mean !== null && `, at ${pct1(day.meanEfficiencyPct)} %`}
+          {grouped(day.sharePct)}
+          {THIN}%{day.wh > 0 && `, at ${pct1(day.meanEfficiencyPct)}${THIN}%`}
         </dd>
       </div>
       <div>
