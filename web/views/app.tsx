@@ -7,7 +7,6 @@ import { choice, days, isHeard, lastHeardMs, lists, worked, workingSinceMs } fro
 import { standing } from '../session.ts'
 import { DayView } from './day.tsx'
 import { Landing } from './landing.tsx'
-import { LogView } from './log.tsx'
 import { late } from './late.tsx'
 import { Wh } from './figures.tsx'
 import { Disc } from '../charts/disc.tsx'
@@ -34,10 +33,15 @@ export function App() {
   )
 }
 
+const loadLog = async () => (await import('./log.tsx')).LogView
+/** Figures are logged at the roadside, so Log comes along once the day is there. [ms] */
+const LOG_AFTER_MS = 4000
+setTimeout(() => loadLog().catch(() => undefined), LOG_AFTER_MS)
+
 /** Screens that are not needed at once are fetched when they are opened. */
 const VIEWS = {
   day: DayView,
-  log: LogView,
+  log: late(loadLog),
   trackers: late(async () => (await import('./trackers.tsx')).TrackersView),
   'set-up': late(async () => (await import('./set-up.tsx')).SetUp),
 }
