@@ -10,15 +10,17 @@ export interface Notices {
   hear(onTopic: (topic: string) => void, onAll: () => void): Promise<() => Promise<void>>
 }
 
-const NOW_AND_THEN_MS = 5_000
-
-/** Notices through a connection of their own to a server; the embedded engine has one process, and needs none. */
-export const notices = ({ sql, isEmbedded }: Pick<Database, 'sql' | 'isEmbedded'>): Notices => ({
+/**
+ * Notices through a connection of their own to a server; the embedded engine has one process, and needs none.
+ *
+ * @param lookEveryMs  time between two calls of `onAll`. [ms]
+ */
+export const notices = ({ sql, isEmbedded }: Pick<Database, 'sql' | 'isEmbedded'>, lookEveryMs = 5_000): Notices => ({
   async hear(onTopic, onAll) {
     if (isEmbedded) return async () => {}
     const [{ name }] = await sql<{ name: string }[]>`select ${channel(sql)} as name`
     const listening = await sql.listen(name, onTopic, onAll)
-    const timer = setInterval(onAll, NOW_AND_THEN_MS)
+    const timer = setInterval(onAll, lookEveryMs)
     return async () => {
       clearInterval(timer)
       await listening.unlisten()

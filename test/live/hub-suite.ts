@@ -83,6 +83,44 @@ export function hubSuite(open: () => Promise<TestDatabase>): void {
     for (const seen of await all) expect(seen).toEqual(idsBetween(1, TOTAL))
   })
 
+  it('who resumes from another process’s last event is not told that some were missed, nor anything twice', async () => {
+    const deaf = await newHub({ notices: { hear: async () => async () => {} } })
+    await deaf.subscribe(topic, null, farEnd()).joined
+    await publish(1, 3)
+    const end = farEnd()
+    await deaf.subscribe(topic, '3', end).joined
+    expect(end.events).toEqual([])
+    await deaf.publish(topic, 'n', 4)
+    await until(() => end.events.length > 0)
+    expect(end.ids()).toEqual(['4'])
+  })
+
+  it('an event that the others are told while a stream begins is not lost to it', async () => {
+    const { events } = store(database.sql)
+    let hold: Promise<void> | null = null
+    const last = async (name: string): Promise<string> => {
+      const found = await events.last(name)
+      await hold
+      return found
+    }
+    const held = await newHub({ events: { ...events, last } })
+    const [early, late] = [farEnd(), farEnd()]
+    await held.subscribe(topic, null, early).joined
+    let release = (): void => {}
+    hold = new Promise((resolve) => {
+      release = resolve
+    })
+    const { joined } = held.subscribe(topic, null, late)
+    await pause(50)
+    await held.publish(topic, 'n', 1)
+    await until(() => early.events.length === 1)
+    release()
+    await joined
+    await held.publish(topic, 'n', 2)
+    await until(() => early.events.length === 2 && late.events.length > 0)
+    expect(late.ids()).toEqual(['1', '2'])
+  })
+
   it('without an id, or with one that is none, a stream begins with what comes next', async () => {
     await publish(1, 3)
     const ends = [null, '', 'x', '-1', '1.5', '9'.repeat(40)].map((lastId) => ({ lastId, end: farEnd() }))

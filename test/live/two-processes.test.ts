@@ -97,6 +97,19 @@ describeWithPostgres('two services on one server', () => {
     expect(seen).toEqual(idsBetween(1, 100))
   })
 
+  it('a service looks for events now and then, should it not hear that its connection was lost', async () => {
+    let looks = 0
+    const stop = await notices(databases[0], 20).hear(
+      () => {},
+      () => void looks++,
+    )
+    await until(() => looks >= 5)
+    await stop()
+    const count = looks
+    await pause(100)
+    expect(looks).toBe(count)
+  })
+
   it('a revoked link’s streams end in both, and only its own', async () => {
     const link = randomUUID()
     const gone = [farEnd(link), farEnd(link)]
