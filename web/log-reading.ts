@@ -151,7 +151,10 @@ export function newId(random: Uint8Array = crypto.getRandomValues(new Uint8Array
 export const pct1 = (value: number): string => value.toFixed(1).replace('-', '\u2212')
 
 /** What a day moved by, to the watt hour: the account of one reading is finer than a forecast. */
-export const movedText = ({ movedWh, closingWhAfter }: Moved): string =>
-  Math.round(movedWh) === 0
-    ? `Moves the close by less than 1${THIN}Wh: ${grouped(closingWhAfter)}${THIN}Wh.`
-    : `Moves the close by ${signed(movedWh)}${THIN}Wh to ${grouped(closingWhAfter)}${THIN}Wh.`
+export function movedText({ movedWh, closingWhAfter, pointsPct }: Moved): string {
+  const by = Math.round(movedWh) === 0 ? `less than 1${THIN}Wh` : `${signed(movedWh)}${THIN}Wh`
+  const points = Object.entries(pointsPct)
+    .filter(([, value]) => Math.abs(value) >= 0.05)
+    .map(([name, value]) => `; ${name} ${value > 0 ? '+' : ''}${pct1(value)} points`)
+  return `Moves the close by ${by} to ${grouped(closingWhAfter)}${THIN}Wh${points.join('')}.`
+}

@@ -132,9 +132,12 @@ describe('a reading that is sent', () => {
     expect(newId(new Uint8Array(16).fill(255))).toBe('ffffffff-ffff-4fff-bfff-ffffffffffff')
   })
 
-  it('tells what it moved with its sign', () => {
+  it('tells what it moved, in Wh and in points, with their signs', () => {
     const moved = { date: '2026-10-17', pointsPct: {}, closingWhBefore: 2100, closingWhAfter: 2069.4, movedWh: -30.6 }
     expect(movedText(moved)).toBe('Moves the close by \u221231\u202fWh to 2\u202f069\u202fWh.')
-    expect(movedText({ ...moved, movedWh: -0.4 })).toBe('Moves the close by less than 1\u202fWh: 2\u202f069\u202fWh.')
+    const points = { Nose: 0.04, Deck: 0.11, Tail: -1.26 }
+    expect(movedText({ ...moved, movedWh: -0.4, pointsPct: points })).toBe(
+      'Moves the close by less than 1\u202fWh to 2\u202f069\u202fWh; Deck +0.1 points; Tail \u22121.3 points.',
+    )
   })
 })

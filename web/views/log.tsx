@@ -29,7 +29,7 @@ export function LogView() {
   if (lists.value !== null && (race === '' || carId === '')) return <NoCar />
   return (
     <div class="log">
-      <h1 class="title pad">Log a reading</h1>
+      <h1 class="sr">Log a reading</h1>
       {known === null || known.id !== carId ? (
         <div class="pad">
           <Ruling />
