@@ -62,7 +62,8 @@ export function guardAccess(app: Api, { store, ownToken }: { store: Store; ownTo
 function accessOf({ routeOptions, url }: FastifyRequest): Access {
   const own = routeOptions.config.access
   if (own !== undefined) return own
-  return /^\/api(?:\/|$)/.test(routeOptions.url ?? url.split('?')[0]) ? 'owner' : 'open'
+  // Files answer whatever no route does, also under /api.
+  return [routeOptions.url ?? '', url.split('?')[0]].some((path) => /^\/api(?:\/|$)/.test(path)) ? 'owner' : 'open'
 }
 
 interface Door {

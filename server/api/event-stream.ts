@@ -36,6 +36,8 @@ export async function streamEvents(
     'content-type': 'text/event-stream; charset=utf-8',
     'cache-control': 'no-store',
     'x-accel-buffering': 'no',
+    // Kept alive after its end it would keep the service from stopping.
+    connection: 'close',
   })
   raw.write(`retry: ${RETRY_MS}\n\n`)
   open.add(raw)

@@ -106,12 +106,9 @@ function signedIn(app: Api, token: string): Api {
   const asOwner = (asked: InjectOptions | string, ...rest: []) => {
     const request = typeof asked === 'string' ? { url: asked } : asked
     const headers = Object.fromEntries(Object.entries({ ...request.headers }))
-    const isKnown = 'cookie' in headers || 'authorization' in headers
-    const authorization = isKnown ? headers.authorization : `Bearer ${token}`
-    return inject(
-      { ...request, headers: authorization === undefined ? headers : { ...headers, authorization } },
-      ...rest,
-    )
+    if ('cookie' in headers) return inject(request, ...rest)
+    const { authorization = 'authorization' in headers ? undefined : `Bearer ${token}`, ...others } = headers
+    return inject({ ...request, headers: authorization === undefined ? others : { ...others, authorization } }, ...rest)
   }
   Object.defineProperty(app, 'inject', { value: asOwner })
   return app
