@@ -27,6 +27,8 @@ export function accessSuite(open: () => Promise<TestDatabase>): void {
   const share = (more: Partial<Parameters<LinkStore['createShare']>[0]> = {}) =>
     links.createShare({ ...DAY, name: 'Chase car', sha256: newHash(), by: null, ...more })
 
+  const sessionCount = async (): Promise<number> => (await database.sql`select from sessions`).length
+
   it('the first start makes one owner’s link, the next none, even when twenty start at once', async () => {
     expect(await links.hasOwner()).toBe(false)
     const hashes = Array.from({ length: 20 }, newHash)
@@ -57,6 +59,7 @@ export function accessSuite(open: () => Promise<TestDatabase>): void {
     expect(link).toMatchObject({ kind: 'owner', isRevoked: false })
     expect(await sessions.find(hashOf('browser'))).toBeNull()
     expect(await sessions.find(hashOf('phone'))).toMatchObject({ link: { id: shared.id } })
+    expect(await sessionCount()).toBe(1)
   })
 
   it('of ten new owner’s links made at once one holds at the end', async () => {
@@ -114,6 +117,15 @@ export function accessSuite(open: () => Promise<TestDatabase>): void {
     expect(await sessions.find(hashOf('phone'))).toBeNull()
     expect(await sessions.create(link.id, newHash(), inAnHour())).toBe(false)
     expect(await sessions.find(hashOf('other phone'))).not.toBeNull()
+    expect(await sessionCount()).toBe(1)
+  })
+
+  it('a session that was made while its link was revoked does not hold', async () => {
+    const link = await share()
+    await sessions.create(link.id, hashOf('phone'), inAnHour())
+    await database.sql`update access_links set revoked_at = clock_timestamp() where id = ${link.id}`
+    expect(await sessionCount()).toBe(1)
+    expect(await sessions.find(hashOf('phone'))).toBeNull()
   })
 
   it('the owner’s link is not revoked like a share link', async () => {
