@@ -67,6 +67,7 @@ describe('the service', () => {
     const first = run(MAIN, env())
     const address = await first.address()
     const authorization = `Bearer ${await first.ownerToken()}`
+    await first.printed(/^(Phones .*)\n/m)
     const lines = first.out().trim().split('\n')
     expect(lines[1]).toMatch(new RegExp(`^Owner's link: ${address}/#owner=[\\w-]{43}$`))
     expect(lines[2]).toContain('Phones do not reach this address')
