@@ -26,9 +26,23 @@ export function listenTo(day: RaceDay, onNews: () => void): () => void {
       if (source?.readyState === EventSource.CLOSED) timer = setTimeout(open, AGAIN_MS)
     })
   }
-  open()
-  return () => {
+  const close = (): void => {
     clearTimeout(timer)
     source?.close()
+    source = null
+  }
+  // A browser opens six connections to a service at most; pages in the background leave theirs to the others.
+  const see = (): void => {
+    if (document.hidden) close()
+    else if (source === null) {
+      open()
+      onNews()
+    }
+  }
+  document.addEventListener('visibilitychange', see)
+  if (!document.hidden) open()
+  return () => {
+    document.removeEventListener('visibilitychange', see)
+    close()
   }
 }

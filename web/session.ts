@@ -12,3 +12,9 @@ export async function signIn(): Promise<void> {
   standing.value = standingAfter(answer.refusal?.status ?? null)
   if (standing.value !== 'no-contact') history.replaceState(null, '', location.pathname)
 }
+
+/** Ends this browser's stay; the owner's link opens it again. */
+export async function signOut(): Promise<void> {
+  const answer = await tell(`${BASE}/sessions`, { method: 'DELETE' })
+  if (answer.value !== undefined || answer.refusal.status === 401) location.assign('./')
+}

@@ -61,11 +61,14 @@ export function choose(change: Partial<Choice>): void {
   else location.hash = hash
 }
 
+/** An address that names a car says what to show; any other shows what the crew follows. */
+let isOwnChoice = /[?&]car=/.test(location.hash)
 let triedMs = 0
 
 export function trySpeeds(speeds: SpeedsInput): void {
   if (Date.now() - triedMs > ONE_TRY_MS) before.value = worked.value?.day ?? null
   triedMs = Date.now()
+  isOwnChoice = true
   choose({ speeds })
 }
 
@@ -110,9 +113,6 @@ async function loadDays(raceId: string): Promise<void> {
     choose({ date: dayToShow(answer.value, choice.value.date, Date.now()) })
   })
 }
-
-/** An address that names a car says what to show; any other shows what the crew follows. */
-let isOwnChoice = /[?&]car=/.test(location.hash)
 
 /** Shows the followed choice where nothing else was asked for; tells whether that changed the question. */
 function takeUp(choiceFollowed: FollowedChoice | null | undefined): boolean {

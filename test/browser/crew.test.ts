@@ -178,6 +178,24 @@ describeWithBrowser('a crew with a tracker to read and a convoy to tell', { time
     await msUntilCloses(guest.page, after)
   })
 
+  it('scrolls sideways nowhere at 320 px, and has no fault by night', async () => {
+    const pages = [phone.page, guest.page]
+    for (const page of pages) {
+      await page.setViewportSize({ width: 320, height: 640 })
+      await page.emulateMedia({ colorScheme: 'dark' })
+    }
+    for (const screen of ['Log', 'Trackers', 'Day']) {
+      await phone.page.getByRole('link', { name: screen }).click()
+      await phone.page.locator(screen === 'Log' ? '#inputV' : '.say').waitFor()
+      expect(await overflowPx(phone.page), screen).toBe(0)
+      expect(await faults(phone.page), screen).toEqual([])
+      await picture(phone.page, `${screen.toLowerCase()}-320-dark`)
+    }
+    expect(await overflowPx(guest.page)).toBe(0)
+    expect(await faults(guest.page)).toEqual([])
+    for (const page of pages) await page.setViewportSize({ width: 390, height: 844 })
+  })
+
   it('takes the link back: it is refused, its page says so and its open stream ends', async () => {
     const { page } = phone
     const headers = { authorization: `Bearer ${tokenOf(shareUrl)}` }
@@ -196,6 +214,14 @@ describeWithBrowser('a crew with a tracker to read and a convoy to tell', { time
     await picture(guest.page, 'share-ended')
     await guest.page.reload()
     await guest.page.getByRole('heading', { name: 'This link has ended.' }).waitFor()
+  })
+
+  it('signs out, and is outside then', async () => {
+    const { page } = phone
+    await page.reload()
+    await page.getByRole('link', { name: 'Set-up' }).click()
+    await page.getByRole('button', { name: 'Sign out of this browser' }).click()
+    await page.getByRole('heading', { name: 'This service opens with its owner’s link.' }).waitFor()
   })
 
   it('left no refusal of the content policy and no error behind', () => {

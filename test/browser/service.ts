@@ -7,12 +7,14 @@ import { fileURLToPath } from 'node:url'
 const ROOT = fileURLToPath(new URL('../..', import.meta.url))
 const READY_MS = 120_000
 
+type Init = Omit<RequestInit, 'headers'> & { headers?: Record<string, string> }
+
 export interface Service {
   url: string
   /** The link that the first start prints, with its token after #. */
   ownerLink: string
   /** Asks the service as the owner does. */
-  ask(path: string, init?: RequestInit): Promise<Response>
+  ask(path: string, init?: Init): Promise<Response>
   stop(): Promise<void>
 }
 
@@ -33,7 +35,7 @@ export async function startService(): Promise<Service> {
   try {
     const { url, ownerLink } = await startedBy(child)
     const authorization = `Bearer ${ownerLink.split('#owner=')[1]}`
-    const ask = (path: string, init: RequestInit = {}): Promise<Response> =>
+    const ask = (path: string, init: Init = {}): Promise<Response> =>
       fetch(`${url}${path}`, { ...init, headers: { ...init.headers, authorization } })
     return { url, ownerLink, ask, stop }
   } catch (error) {

@@ -17,7 +17,12 @@ const WAYS: { way: Way; text: string }[] = [
 /** A speed to try: the answer and what it changes follow at once. */
 export function SpeedPanel({ day }: { day: DayBudget }) {
   const { speeds } = choice.value
-  if (day.stages.length === 0) return null
+  if (day.stages.length === 0)
+    return (
+      <section class="sec pad" aria-label="What is followed">
+        <FollowPanel day={day} />
+      </section>
+    )
   return (
     <section class="sec pad speed" aria-labelledby="speed-title">
       <div class="sech">
