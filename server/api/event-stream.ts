@@ -46,7 +46,7 @@ export async function streamEvents(
     clearInterval(beat)
     open.delete(raw)
   })
-  const { joined, drained, leave } = live.subscribe(topic, lastId, {
+  const subscription = live.subscribe(topic, lastId, {
     linkId,
     send(event) {
       if (event.kind !== MISSED && !kinds.includes(event.kind)) return true
@@ -55,9 +55,9 @@ export async function streamEvents(
     // A slow listener would take no goodbye either.
     end: (reason) => void (reason === 'slow' ? raw.destroy() : raw.end()),
   })
-  raw.on('drain', drained)
-  raw.once('close', leave)
-  await joined
+  raw.on('drain', () => subscription.drained())
+  raw.once('close', () => subscription.leave())
+  await subscription.joined
 }
 
 /** Id of the last event that the listener has had; null where it starts now. */

@@ -3,6 +3,7 @@ import { checked, readJson } from '../compute/read-json.ts'
 import { date, quantity, slug } from '../documents/quantity.ts'
 import { trackerReport } from '../documents/tracker-report.ts'
 import { Fault } from '../errors.ts'
+import type { Move } from '../store/move-store.ts'
 import type { Store } from '../store/store.ts'
 import { linkOf } from './access.ts'
 import { answers, COMPUTE_ERRORS, listOf, STORE_ERRORS, WRITE_ERRORS } from './answers.ts'
@@ -67,8 +68,7 @@ export function trackerRoutes(api: Api, { store, compute }: Needs): void {
   }
   api.get('/races/:id/history', { schema: historySchema }, async ({ params, query }) => {
     await findRace(store, params.id)
-    const moves = await store.moves.list(params.id, query.date)
-    return { items: moves.map(({ raceId: _, ...rest }) => rest) }
+    return { items: (await store.moves.list(params.id, query.date)).map(moveOf) }
   })
 }
 
@@ -81,6 +81,17 @@ const move = z.strictObject({
   closingWhAfter: z.number().nullable().describe('closing balance then [Wh]'),
   forecastId: z.string(),
   movedAt: z.string().describe('instant (ISO 8601, UTC)'),
+})
+
+const moveOf = (stored: Move): z.input<typeof move> => ({
+  date: stored.date,
+  cause: stored.cause,
+  readingId: stored.readingId,
+  pointsPct: stored.pointsPct,
+  closingWhBefore: stored.closingWhBefore,
+  closingWhAfter: stored.closingWhAfter,
+  forecastId: stored.forecastId,
+  movedAt: stored.movedAt,
 })
 
 /** The car and the day that a report is about; the day is null where nothing is followed on it. */
@@ -124,7 +135,7 @@ export function beliefRoute(api: Api, needs: Needs, turns: Turns): void {
       ],
     ),
   }
-  api.post('/races/:id/belief', { schema }, async (request) => {
+  api.post('/races/:id/belief', { schema }, async (request, _reply) => {
     const raceId = request.params.id
     const { use, widen: factor } = checked(belief, readJson(bytesOf(request.body)), 'belief')
     await findRace(needs.store, raceId)

@@ -79,7 +79,7 @@ function routes(): Route[] {
       .replace(':id', 'plateau')
       .replace(':kind', 'car')
       .replace('*', 'index.html')
-    for (const method of parts[3].split(', ')) found.push({ method: method as HTTPMethods, pattern, url })
+    for (const method of parts[3].split(', ')) found.push({ method, pattern, url })
   }
   return found
 }
