@@ -10,10 +10,13 @@ import underPressure from '@fastify/under-pressure'
 import Fastify from 'fastify'
 import type { ZodTypeProvider } from 'fastify-type-provider-zod'
 import type { ZodType } from 'zod'
+import { guardAccess } from './api/access.ts'
 import { type Api, type Needs, SMALL_LIMIT } from './api/api.ts'
+import { choiceRoutes, followedRoute } from './api/choices.ts'
 import { dayRoutes } from './api/days.ts'
 import { docsRoutes } from './api/docs.ts'
 import { documentRoutes } from './api/documents.ts'
+import { eventRoutes } from './api/events.ts'
 import { exampleRoutes } from './api/examples.ts'
 import { checkPart } from './api/fault-of.ts'
 import { answerClientError, answerFaults, sendFault } from './api/faults.ts'
@@ -23,7 +26,12 @@ import { healthRoutes } from './api/health.ts'
 import { KINDS } from './api/kinds.ts'
 import { describeApi } from './api/openapi.ts'
 import { previewRoute } from './api/previews.ts'
+import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
+import { sessionRoutes } from './api/sessions.ts'
+import { sharedRoute, shareRoutes } from './api/shares.ts'
 import { statelessForecastRoute } from './api/stateless-forecast.ts'
+import { inTurn } from './api/take-readings.ts'
+import { beliefRoute, trackerRoutes } from './api/trackers.ts'
 import { answerUnknown } from './api/unknown-address.ts'
 import { Fault } from './errors.ts'
 
@@ -32,6 +40,8 @@ export interface Parts extends Needs {
   /** Address that is listened on. */
   host: string
   publicOrigin: string | null
+  /** Secret by which the service calls itself. */
+  ownToken: string
   tls: { cert: Buffer; key: Buffer } | null
   /** Folder of the built client; null where there is none. */
   webDir: string | null
@@ -63,6 +73,7 @@ export async function buildApp(parts: Parts): Promise<Api> {
   answerUnknown(app)
   guardChanges(app, parts)
   await protect(app, parts)
+  guardAccess(app, parts)
   await describeApi(app, parts.version)
   await app.register(async (api: Api) => addRoutes(api, parts), { prefix: '/api/v1' })
   healthRoutes(app, parts)
@@ -124,7 +135,7 @@ const POLICY = {
 }
 
 /** Each scope takes its own kinds of body. */
-function addRoutes(api: Api, needs: Needs): void {
+function addRoutes(api: Api, needs: Parts): void {
   for (const kind of KINDS) {
     void api.register(async (scope: Api) => documentRoutes(scope, needs, kind))
     if (kind.formats.length > 1) void api.register(async (scope: Api) => previewRoute(scope, needs, kind))
@@ -133,6 +144,24 @@ function addRoutes(api: Api, needs: Needs): void {
   void api.register(async (scope: Api) => statelessForecastRoute(scope, needs))
   dayRoutes(api, needs)
   exampleRoutes(api)
+  addCrewRoutes(api, needs)
+}
+
+/** What the crew does with a budget once it exists. */
+function addCrewRoutes(api: Api, needs: Parts): void {
+  const { tls, publicOrigin } = needs
+  const isHttps = tls !== null || publicOrigin?.startsWith('https:') === true
+  const turns = inTurn()
+  void api.register(async (scope: Api) => sessionRoutes(scope, needs, { isHttps }))
+  void api.register(async (scope: Api) => choiceRoutes(scope, needs, turns))
+  void api.register(async (scope: Api) => readingRoutes(scope, needs, turns))
+  void api.register(async (scope: Api) => beliefRoute(scope, needs, turns))
+  void api.register(async (scope: Api) => shareRoutes(scope, needs, publicOrigin))
+  void api.register(async (scope: Api) => eventRoutes(scope, needs))
+  keptReadingRoutes(api, needs, turns)
+  followedRoute(api, needs)
+  trackerRoutes(api, needs)
+  sharedRoute(api, needs)
 }
 
 /** The client: files with a hash in their name never change, everything else is asked for again. */
@@ -146,4 +175,7 @@ async function serveClient(app: Api, webDir: string | null): Promise<void> {
       reply.header('cache-control', isHashed ? 'public, max-age=31536000, immutable' : 'no-cache')
     },
   })
+  // Share links read /share, without the ending of a file.
+  if (existsSync(join(webDir, 'share.html')))
+    app.get('/share', { schema: { hide: true } }, async (_request, reply) => reply.sendFile('share.html'))
 }

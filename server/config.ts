@@ -116,3 +116,13 @@ function wrong(name: string, given: Record<string, string | undefined>): string 
 /** Whether an address to listen on is reached from this machine only. */
 export const isLoopback = (host: string): boolean =>
   host === 'localhost' || host === '::1' || /^127\.\d+\.\d+\.\d+$/.test(host)
+
+/** What phones cannot do with the address as it is configured, one line each. */
+export function reachOf({ host, publicOrigin, tls }: Pick<Config, 'host' | 'publicOrigin' | 'tls'>): string[] {
+  if (publicOrigin === null && isLoopback(host))
+    return ['Phones do not reach this address: set HOST to 0.0.0.0, or PUBLIC_URL to the address of a proxy.']
+  if (publicOrigin !== null && isLoopback(new URL(publicOrigin).hostname))
+    return ['Phones do not reach PUBLIC_URL: it names this machine to itself.']
+  if (publicOrigin?.startsWith('https:') ?? tls !== null) return []
+  return ['Phones reach this address over plain HTTP, which cannot work offline: set TLS_CERT and TLS_KEY for https.']
+}

@@ -1,15 +1,18 @@
 import { existsSync, readFileSync } from 'node:fs'
 import { join, resolve } from 'node:path'
 import closeWithGrace from 'close-with-grace'
+import { hashOf, newToken } from './api/access.ts'
 import { type Api } from './api/api.ts'
-import { loadDemo } from './api/demo-load.ts'
+import { loadDemo, ownDoor } from './api/demo-load.ts'
 import { buildApp } from './app.ts'
 import type { JOBS } from './compute/jobs.ts'
 import { computePool } from './compute/pool.ts'
-import { type Config, isLoopback, readConfig } from './config.ts'
+import { type Config, readConfig, reachOf } from './config.ts'
+import { openHub } from './live/hub.ts'
 import { openDatabase } from './store/database.ts'
 import { migrate } from './store/migrate.ts'
-import { store as storeOf } from './store/store.ts'
+import { notices } from './store/notices.ts'
+import { type Store, store as storeOf } from './store/store.ts'
 import { StoreError } from './store/store-error.ts'
 
 /** The project's folder: this file runs as dist/server/main.js. */
@@ -29,7 +32,14 @@ async function closeAll(): Promise<void> {
   for (let close = open.pop(); close !== undefined; close = open.pop()) await close()
 }
 
-async function serve(config: Config): Promise<string> {
+/** What a started service says. */
+interface Started {
+  address: string
+  /** Told once, at the first start. */
+  ownerToken: string | null
+}
+
+async function serve(config: Config): Promise<Started> {
   const tls = readTls(config)
   const database = await openDatabase({
     ...(config.databaseUrl === null ? {} : { url: config.databaseUrl }),
@@ -45,15 +55,41 @@ async function serve(config: Config): Promise<string> {
   open.push(() => compute.close())
   await migrate(database.sql, join(ROOT, 'migrations'))
   const store = storeOf(database.sql)
+  const isRevoked = async (id: string): Promise<boolean> => (await store.links.get(id))?.isRevoked ?? true
+  const live = await openHub({ events: store.events, notices: notices(database), isRevoked })
+  open.push(() => live.close())
+  forgetOld(store)
   const { host, publicOrigin, logLevel } = config
   const webDir = existsSync(join(ROOT, 'dist', 'web')) ? join(ROOT, 'dist', 'web') : null
   const docsCss = join(ROOT, 'server', 'api', 'docs.css')
   const version = versionOf(readFileSync(join(ROOT, 'package.json'), 'utf8'))
-  const app = await buildApp({ store, compute, version, host, publicOrigin, tls, webDir, docsCss, logLevel })
+  const ownToken = newToken()
+  const parts = { store, compute, live, version, host, publicOrigin, ownToken, tls, webDir, docsCss, logLevel }
+  const app = await buildApp(parts)
   open.push(() => app.close())
-  await loadDemo(app, store, join(ROOT, 'server', 'demo'), warn)
+  await loadDemo(ownDoor(app, ownToken), store, join(ROOT, 'server', 'demo'), warn)
   await listen(app, config)
-  return publicOrigin ?? addressOf(app, config)
+  return { address: publicOrigin ?? addressOf(app, config), ownerToken: await firstOwner(store) }
+}
+
+/** Streams that were away for longer ask anew for all that they show. */
+const KEPT_DAYS = 3
+const DAY_MS = 24 * 3600 * 1000
+
+/** Forgets events and sessions that nobody comes back to, now and every day. */
+function forgetOld({ events, sessions }: Store): void {
+  const forget = (): void => {
+    const done = Promise.all([events.prune(new Date(Date.now() - KEPT_DAYS * DAY_MS)), sessions.prune()])
+    done.catch((error: unknown) => warn(`Old events were not forgotten: ${String(error)}`))
+  }
+  forget()
+  setInterval(forget, DAY_MS).unref()
+}
+
+/** The token of the owner's link where none was ever made. */
+async function firstOwner({ links }: Store): Promise<string | null> {
+  const token = newToken()
+  return (await links.createOwner(hashOf(token))) === null ? null : token
 }
 
 function versionOf(packageJson: string): string {
@@ -98,11 +134,6 @@ function addressOf(app: Api, { host, tls }: Config): string {
   return `${tls === null ? 'http' : 'https'}://${name}:${port}`
 }
 
-function warnOfOpenDoor({ host }: Config): void {
-  if (isLoopback(host)) return
-  warn(`HOST is ${host}: everybody who reaches this address can change the plans, since there is no sign-in yet.`)
-}
-
 /** TLS files that hold no certificate are refused by the library, whose words are plain enough. */
 function reasonOf(error: unknown): string {
   if (error instanceof CannotStart || error instanceof StoreError) return error.message
@@ -120,9 +151,11 @@ closeWithGrace({ delay: STOP_MS, logger: { error: (line: unknown) => warn(String
   if (err !== undefined) warn(err.stack ?? err.message)
   await closeAll()
 })
-warnOfOpenDoor(config)
 try {
-  process.stdout.write(`Stagewatt is at ${await serve(config)}\n`)
+  const { address, ownerToken } = await serve(config)
+  process.stdout.write(`Stagewatt is at ${address}\n`)
+  if (ownerToken !== null) process.stdout.write(`Owner's link: ${address}/#owner=${ownerToken}\n`)
+  for (const line of reachOf(config)) process.stdout.write(`${line}\n`)
 } catch (error) {
   warn(reasonOf(error))
   await closeAll()

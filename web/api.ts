@@ -63,7 +63,7 @@ export interface ForecastRequest {
   date: string
 }
 
-const BASE = '/api/v1'
+export const BASE = '/api/v1'
 const NO_CONTACT: Refusal = {
   status: 0,
   code: 'no-contact',
@@ -72,8 +72,8 @@ const NO_CONTACT: Refusal = {
   errors: [],
 }
 
-/** Called after every exchange: whether the service answered at all. */
-export const contact = { heard: (_isHeard: boolean): void => {} }
+/** Called after every exchange: whether the service answered at all, and that it did not know who asked. */
+export const contact = { heard: (_isHeard: boolean): void => {}, unknown: (): void => {} }
 
 type Exchange = { response: Response; refusal?: undefined } | { response?: undefined; refusal: Refusal }
 
@@ -81,6 +81,7 @@ async function exchange(path: string, init?: RequestInit): Promise<Exchange> {
   try {
     const response = await fetch(path, init)
     contact.heard(true)
+    if (response.status === 401) contact.unknown()
     return response.ok ? { response } : { refusal: await refusalOf(response) }
   } catch (error) {
     return { refusal: lost(error, init) }
@@ -94,7 +95,7 @@ function lost(error: unknown, init?: RequestInit): Refusal {
 }
 
 /** Asks for something that comes as JSON. */
-async function ask<T extends object>(path: string, init?: RequestInit): Promise<Answer<T>> {
+export async function ask<T extends object>(path: string, init?: RequestInit): Promise<Answer<T>> {
   const got = await exchange(path, init)
   if (got.response === undefined) return got
   try {
@@ -106,7 +107,7 @@ async function ask<T extends object>(path: string, init?: RequestInit): Promise<
 }
 
 /** Asks for something to be done that has no answer of its own. */
-async function tell(path: string, init: RequestInit): Promise<Answer<true>> {
+export async function tell(path: string, init: RequestInit): Promise<Answer<true>> {
   const got = await exchange(path, init)
   return got.response === undefined ? got : { value: true }
 }
@@ -123,7 +124,7 @@ async function refusalOf(response: Response): Promise<Refusal> {
   return { ...plain, ...told, errors: told?.errors ?? [] }
 }
 
-const json = (body: unknown, headers: Record<string, string> = {}): RequestInit => ({
+export const json = (body: unknown, headers: Record<string, string> = {}): RequestInit => ({
   headers: { 'content-type': 'application/json', ...headers },
   body: JSON.stringify(body),
 })
@@ -132,7 +133,7 @@ export const listOf = async (kind: Kind): Promise<Answer<Item[]>> => itemsOf(`${
 
 export const daysOf = async (raceId: string): Promise<Answer<DayItem[]>> => itemsOf(`${BASE}/races/${raceId}/days`)
 
-async function itemsOf<T>(path: string): Promise<Answer<T[]>> {
+export async function itemsOf<T>(path: string): Promise<Answer<T[]>> {
   const answer = await ask<{ items: T[] }>(path)
   return answer.value === undefined ? answer : { value: answer.value.items }
 }

@@ -1,9 +1,13 @@
 import type { SpeedsInput } from '../server/documents/speeds.ts'
+import type { FollowedChoice } from './crew-types.ts'
 import { dateIn } from './format.ts'
+
+export const VIEWS = ['day', 'log', 'trackers', 'set-up'] as const
+export type View = (typeof VIEWS)[number]
 
 /** What a page of the client shows: kept in its address, so that a crew can send it and a reload keeps it. */
 export interface Choice {
-  view: 'day' | 'set-up'
+  view: View
   race: string
   car: string
   sky: string
@@ -21,7 +25,7 @@ export function choiceOf(hash: string): Choice {
   const params = new URLSearchParams(query)
   const text = (name: string): string => params.get(name) ?? ''
   return {
-    view: view === 'set-up' ? 'set-up' : 'day',
+    view: VIEWS.find((known) => known === view) ?? 'day',
     race: text('race'),
     car: text('car'),
     sky: text('sky'),
@@ -50,6 +54,13 @@ function speedsOf(kmh: string, legs: string): SpeedsInput {
     .filter(([stage, speed]) => /^[a-z0-9-]+$/.test(stage) && isSpeed(Number(speed)))
     .map(([stage, speed]) => ({ stage, speedKmh: Number(speed) }))
   return list.length === 0 ? { kind: 'constant', speedKmh } : { kind: 'legs', speedKmh, legs: list }
+}
+
+/** Whether a page shows just what the crew follows. */
+export function isSame(shown: Choice, choice: FollowedChoice | null | undefined): boolean {
+  if (choice === null || choice === undefined) return false
+  const { carId: car, skyId: sky, speeds } = choice
+  return hashOf({ ...shown, view: 'day' }) === hashOf({ ...shown, view: 'day', car, sky, speeds })
 }
 
 /** Whether a number is a speed that may be asked for. */

@@ -64,6 +64,12 @@ export function zoneOffsetMin(zone: string, atMs: number): number {
 export const dateIn = (zone: string, atMs: number): string =>
   new Date(atMs + zoneOffsetMin(zone, atMs) * 60_000).toISOString().slice(0, 10)
 
+/** Sat 18 Oct 04:00, in a zone. */
+export function stampIn(zone: string, atMs: number): string {
+  const offsetMin = zoneOffsetMin(zone, atMs)
+  return `${dayText(new Date(atMs + offsetMin * 60_000).toISOString().slice(0, 10))} ${clockAt(atMs, offsetMin)}`
+}
+
 export interface Amount {
   text: string
   unit: string

@@ -1,7 +1,10 @@
 import { batch, computed, effect, signal, untracked } from '@preact/signals'
 import type { BudgetDocument, DayBudget } from '../server/documents/budget.ts'
+import type { FollowedChoice } from './crew-types.ts'
+import type { RaceDay } from './crew.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
 import {
+  type Answer,
   budgetOf,
   contact,
   type DayItem,
@@ -12,7 +15,12 @@ import {
   listOf,
   type Refusal,
 } from './api.ts'
-import { type Choice, choiceOf, dayToShow, hashOf } from './choice.ts'
+import { type Choice, choiceOf, dayToShow, hashOf, isSame } from './choice.ts'
+import { standing } from './session.ts'
+import { followedBudget } from './crew.ts'
+import { followedOn, loadFollowed, news } from './crew-state.ts'
+import { listenTo } from './live.ts'
+import { stageId, tick } from './shown.ts'
 
 /** A budget with the moment it came and the question it answers. */
 export interface Worked {
@@ -32,10 +40,8 @@ export const before = signal<DayBudget | null>(null)
 export const refusal = signal<Refusal | null>(null)
 /** Since when an answer is being worked out; null when none is. */
 export const workingSinceMs = signal<number | null>(null)
-export const nowMs = signal(Date.now())
 export const lastHeardMs = signal(Date.now())
 export const isHeard = signal(true)
-export const stageId = signal<string | null>(null)
 
 export const isComplete = computed(() => {
   const { race, car, sky, date } = choice.value
@@ -55,11 +61,14 @@ export function choose(change: Partial<Choice>): void {
   else location.hash = hash
 }
 
+/** An address that names a car says what to show; any other shows what the crew follows. */
+let isOwnChoice = /[?&]car=/.test(location.hash)
 let triedMs = 0
 
 export function trySpeeds(speeds: SpeedsInput): void {
   if (Date.now() - triedMs > ONE_TRY_MS) before.value = worked.value?.day ?? null
   triedMs = Date.now()
+  isOwnChoice = true
   choose({ speeds })
 }
 
@@ -75,6 +84,7 @@ export async function loadLists(): Promise<void> {
   const [races, cars, skies, routes] = answers.map((answer) => answer.value ?? [])
   batch(() => {
     lists.value = { races, cars, skies, routes }
+    standing.value = 'inside'
     refusal.value = null
     const { race, car, sky } = choice.value
     choose({ race: chosenOf(races, race), car: chosenOf(cars, car), sky: chosenOf(skies, sky) })
@@ -104,6 +114,32 @@ async function loadDays(raceId: string): Promise<void> {
   })
 }
 
+/** Shows the followed choice where nothing else was asked for; tells whether that changed the question. */
+function takeUp(choiceFollowed: FollowedChoice | null | undefined): boolean {
+  if (isOwnChoice || choiceFollowed === null || choiceFollowed === undefined) return false
+  isOwnChoice = true
+  if (isSame(choice.value, choiceFollowed)) return false
+  show(choiceFollowed)
+  return true
+}
+
+/** Shows what the crew follows. */
+export const show = ({ carId: car, skyId: sky, speeds }: FollowedChoice): void => choose({ car, sky, speeds })
+
+async function followedAnswer(day: RaceDay, signal: AbortSignal): Promise<Answer<BudgetDocument>> {
+  const answer = await followedBudget(day, signal)
+  return answer.value === undefined ? answer : { value: answer.value.budget }
+}
+
+/** Something happened on the day: reads what the crew follows, keeps to it where it was shown, asks again. */
+async function hearNews(day: RaceDay): Promise<void> {
+  const wasFollowing = isSame(choice.value, followedOn(day)?.choice)
+  const now = await loadFollowed(day)
+  news.value++
+  if (wasFollowing && now !== null && now.choice !== null && !isSame(choice.value, now.choice)) show(now.choice)
+  else askAgain()
+}
+
 let running: AbortController | null = null
 
 /** Works out the budget of the choice; the figures before it stay until it is there. */
@@ -113,7 +149,11 @@ async function work(question: string): Promise<void> {
   running = mine
   const { race, car, sky, date, speeds }: Choice = JSON.parse(question)
   workingSinceMs.value = Date.now()
-  const answer = await budgetOf({ race: { id: race }, car: { id: car }, sky: { id: sky }, date, speeds }, mine.signal)
+  const known = followedOn({ race, date }) ?? (await loadFollowed({ race, date }))
+  if (mine.signal.aborted || takeUp(known?.choice)) return
+  const answer = isSame(choice.value, known?.choice)
+    ? await followedAnswer({ race, date }, mine.signal)
+    : await budgetOf({ race: { id: race }, car: { id: car }, sky: { id: sky }, date, speeds }, mine.signal)
   if (mine.signal.aborted) return
   batch(() => {
     workingSinceMs.value = null
@@ -158,8 +198,9 @@ export function start(): void {
     isHeard.value = heard
     if (heard) lastHeardMs.value = Date.now()
   }
+  contact.unknown = () => (standing.value = 'outside')
   addEventListener('hashchange', () => (choice.value = { ...choice.value, ...choiceOf(location.hash) }))
-  setInterval(() => (nowMs.value = Date.now()), 1000)
+  tick()
   setInterval(() => void listen(), RETRY_MS)
   const race = computed(() => choice.value.race)
   effect(() => {
@@ -173,6 +214,12 @@ export function start(): void {
     const { race: known, days: items } = schedule.value
     const { race: wanted, date } = choice.peek()
     if (asked !== '' && known === wanted && items.some((day) => day.date === date)) untracked(() => void work(asked))
+  })
+  const day = computed(() => JSON.stringify([choice.value.race, choice.value.date]))
+  effect(() => {
+    const [race, date]: string[] = JSON.parse(day.value)
+    if (standing.value !== 'inside' || race === '' || date === '') return undefined
+    return listenTo({ race, date }, () => void hearNews({ race, date }))
   })
   void loadLists()
 }

@@ -10,6 +10,8 @@ export default defineConfig({
   oxc: { jsx: { runtime: 'automatic', importSource: 'preact' } },
   build: {
     outDir: '../dist/web',
+    // The client, and the page that a share link opens.
+    rollupOptions: { input: { index: inWeb('index.html'), share: inWeb('share.html') } },
     emptyOutDir: true,
     target: 'es2022',
     // Nothing is inlined as data: the service's content policy allows its own files only.

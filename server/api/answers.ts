@@ -50,6 +50,8 @@ export const listOf = <T extends z.ZodType>(item: T) => z.strictObject({ items: 
 
 /** Errors that any address may answer. */
 const ANYWHERE: ErrorCode[] = ['bad-request', 'internal', 'overloaded', 'stopping']
+/** Errors of every address that is not open to all. */
+const ACCESS_ERRORS: ErrorCode[] = ['not-signed-in', 'link-revoked', 'not-shared', 'store-unavailable']
 /** Errors of every address that asks the database. */
 export const STORE_ERRORS: ErrorCode[] = ['store-unavailable']
 /** Errors of every address that computes. */
@@ -71,12 +73,21 @@ interface Good {
 
 type Answer = { description: string; content?: Record<string, { schema: z.ZodType }> }
 
-/** A route's answers for its schema: the good ones, and its errors grouped by status. */
-export function answers(good: Record<number, Good>, errors: ErrorCode[]): Record<number, Answer> {
+/**
+ * A route's answers for its schema: the good ones, and its errors grouped by status.
+ *
+ * @param access  whether the address is open to all, without a link
+ */
+export function answers(
+  good: Record<number, Good>,
+  errors: ErrorCode[],
+  access: 'open' | 'guarded' = 'guarded',
+): Record<number, Answer> {
   const all: Record<number, Answer> = {}
   for (const [status, { description, schema, mediaType = 'application/json' }] of Object.entries(good))
     all[Number(status)] = { description, ...(schema === undefined ? {} : { content: { [mediaType]: { schema } } }) }
-  for (const code of [...errors, ...ANYWHERE]) {
+  const codes = [...errors, ...ANYWHERE, ...(access === 'open' ? [] : ACCESS_ERRORS)]
+  for (const code of new Set(codes)) {
     const { status, title } = ERRORS[code]
     const line = `${code}: ${title}`
     const before = all[status]

@@ -2,6 +2,7 @@ import type { IncomingMessage, Server, ServerResponse } from 'node:http'
 import type { FastifyBaseLogger, FastifyInstance, FastifyReply } from 'fastify'
 import type { ZodTypeProvider } from 'fastify-type-provider-zod'
 import type { Compute } from '../compute/jobs.ts'
+import type { Hub } from '../live/hub.ts'
 import type { Store } from '../store/store.ts'
 
 /** The application as the routes see it: schemas are zod schemas. */
@@ -11,6 +12,7 @@ export type Api = FastifyInstance<Server, IncomingMessage, ServerResponse, Fasti
 export interface Needs {
   store: Store
   compute: Compute
+  live: Pick<Hub, 'publish' | 'subscribe' | 'endStreamsOf'>
   version: string
 }
 

@@ -39,14 +39,14 @@ const dayOf = (race: RaceDocument, day: DayDocument): z.output<typeof dayEntry> 
   })),
 })
 
-function oneDay(race: RaceDocument, wanted: string): z.output<typeof dayEntry> {
+export function oneDay(race: RaceDocument, wanted: string): z.output<typeof dayEntry> {
   const day = race.days.find(({ date }) => date === wanted)
   if (day !== undefined) return dayOf(race, day)
   const days = race.days.map(({ date }) => date).join(', ')
   throw new Fault('no-such-day', `The race "${race.name}" has no day ${wanted}; its days are ${days}.`)
 }
 
-const dayParams = z.strictObject({ id: slug('the race’s name for machines'), date: date('day of the race') })
+export const dayParams = z.strictObject({ id: slug('the race’s name for machines'), date: date('day of the race') })
 const noQuery = z.strictObject({})
 
 /** A race's days and stages, as its document says. */

@@ -4,6 +4,7 @@ import { join } from 'node:path'
 import { z } from 'zod'
 import { checkDocument } from '../documents/check.ts'
 import { slug } from '../documents/quantity.ts'
+import type { InjectOptions } from 'fastify'
 import type { Store } from '../store/store.ts'
 import type { Api } from './api.ts'
 import { pathOf } from './kinds.ts'
@@ -23,6 +24,16 @@ type Entry = z.output<typeof manifest>[number]
 const BUSY_TRIES = 60
 const BUSY_PAUSE_MS = 500
 
+/** The service as somebody reaches it without a network. */
+export interface Door {
+  inject(request: InjectOptions & { url: string }): Promise<{ statusCode: number; body: string }>
+}
+
+/** The service as it reaches itself, by its own secret. */
+export const ownDoor = (app: Api, ownToken: string): Door => ({
+  inject: (request) => app.inject({ ...request, headers: { ...request.headers, authorization: `Bearer ${ownToken}` } }),
+})
+
 /**
  * Offers the demo race on an empty store: saves the files of `demo.json`, in order, through the same
  * doors that a person uses. What goes wrong is said and stops nothing.
@@ -30,7 +41,12 @@ const BUSY_PAUSE_MS = 500
  * @param warn  told one readable line
  * @returns documents saved
  */
-export async function loadDemo(app: Api, store: Store, demoDir: string, warn: (line: string) => void): Promise<number> {
+export async function loadDemo(
+  app: Door,
+  store: Store,
+  demoDir: string,
+  warn: (line: string) => void,
+): Promise<number> {
   const path = join(demoDir, 'demo.json')
   if (!existsSync(path) || !(await store.isEmpty())) return 0
   let saved = 0
@@ -45,7 +61,7 @@ export async function loadDemo(app: Api, store: Store, demoDir: string, warn: (l
 }
 
 /** False where another process that starts at the same time was faster. */
-async function saveEntry(app: Api, { kind, id, file, contentType, query }: Entry, demoDir: string): Promise<boolean> {
+async function saveEntry(app: Door, { kind, id, file, contentType, query }: Entry, demoDir: string): Promise<boolean> {
   const request = {
     method: 'PUT' as const,
     url: `/api/v1/${pathOf(kind)}/${id}`,

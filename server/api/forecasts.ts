@@ -1,18 +1,15 @@
-import { createHash } from 'node:crypto'
 import { z } from 'zod'
 import { readJson, checked } from '../compute/read-json.ts'
 import { budgetDocument } from '../documents/budget.ts'
 import { date, slug } from '../documents/quantity.ts'
 import { speedsDocument } from '../documents/speeds.ts'
-import { ENGINE_VERSION } from '../engine/version.ts'
 import { Fault } from '../errors.ts'
-import type { NewForecast, StoredForecast } from '../store/forecast-store.ts'
 import { answers, COMPUTE_ERRORS, listOf, STORE_ERRORS, WRITE_ERRORS } from './answers.ts'
 import { type Api, clientGone, type Needs, SPEEDS_LIMIT } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { findRace } from './find.ts'
-import { named, routesOf } from './gather.ts'
 import { idParam } from './kinds.ts'
+import { gather, makeForecast } from './make-forecast.ts'
 
 const newForecast = z
   .strictObject({
@@ -36,7 +33,7 @@ const forecastEntry = z.strictObject({
   skyVersion: version('sky'),
   routeVersions: z.record(z.string(), version('route')),
   speeds: speedsDocument,
-  inputsHash: z.string().describe('SHA-256 over the canonical JSON of documents, speeds and date'),
+  inputsHash: z.string().describe('SHA-256 over the canonical JSON of documents, speeds, date and what readings show'),
   engineVersion: z.string(),
 })
 const forecastAnswer = forecastEntry.extend({ budget: budgetDocument })
@@ -51,11 +48,12 @@ export function forecastRoutes(api: Api, needs: Needs): void {
   getRoute(api, needs)
 }
 
-function makeRoute(api: Api, { store, compute }: Needs): void {
+function makeRoute(api: Api, needs: Needs): void {
   const schema = {
     tags: ['forecasts'],
     summary: 'Forecast a race with a stored car and sky',
-    description: 'The same inputs and engine give the forecast that is stored already.',
+    description:
+      'The same inputs and engine give the forecast that is stored already. Trackers lose what the race’s readings show.',
     params: idParam('race'),
     querystring: noQuery,
     body: newForecast,
@@ -82,51 +80,13 @@ function makeRoute(api: Api, { store, compute }: Needs): void {
   }
   api.post('/races/:id/forecasts', { schema, bodyLimit: SPEEDS_LIMIT }, async (request, reply) => {
     const wanted = checked(newForecast, readJson(bytesOf(request.body)), 'forecast request')
-    const { documents, used } = await gather(store, request.params.id, wanted)
-    const signal = clientGone(reply)
-    const inputs = { ...documents, speeds: wanted.speeds, date: wanted.date }
-    const inputsHash = await compute.run('inputs-hash', inputs, signal)
-    const made = { ...used, speeds: wanted.speeds, inputsHash, engineVersion: ENGINE_VERSION }
-    const id = idOf(made)
-    reply.header('location', `/api/v1/forecasts/${id}`)
-    const before = await store.forecasts.get(id)
-    if (before !== null) return before
-    const budget: unknown = JSON.parse(await compute.run('forecast', inputs, signal))
-    const { createdAt } = await store.forecasts.save({ id, ...made, budget })
-    return reply.code(201).send({ id, createdAt, ...made, budget } satisfies StoredForecast)
+    const gathered = await gather(needs, request.params.id, wanted)
+    const { forecast, isNew } = await makeForecast(needs, gathered, wanted, clientGone(reply))
+    return reply
+      .code(isNew ? 201 : 200)
+      .header('location', `/api/v1/forecasts/${forecast.id}`)
+      .send(forecast)
   })
-}
-
-async function gather(store: Needs['store'], raceId: string, wanted: z.output<typeof newForecast>) {
-  const { stored, race } = await findRace(store, raceId)
-  const [car, sky, routes] = await Promise.all([
-    named(store, 'car', wanted.carId, 'carId'),
-    named(store, 'sky', wanted.skyId, 'skyId'),
-    routesOf(store, race, {}),
-  ])
-  const bodies = Object.fromEntries([...routes].map(([id, route]) => [id, route.body]))
-  return {
-    documents: { car: car.body, race: stored.body, sky: sky.body, routes: bodies },
-    used: {
-      raceId,
-      raceVersion: stored.version,
-      carId: car.id,
-      carVersion: car.version,
-      skyId: sky.id,
-      skyVersion: sky.version,
-      routeVersions: Object.fromEntries([...routes].map(([id, route]) => [id, route.version])),
-    },
-  }
-}
-
-/** A UUID (version 8, RFC 9562) made of what the forecast is made of, so that a repeat finds it. */
-function idOf(made: Omit<NewForecast, 'budget'>): string {
-  const { raceId, raceVersion, carId, carVersion, skyId, skyVersion, routeVersions, inputsHash, engineVersion } = made
-  const routes = Object.entries(routeVersions).sort(([a], [b]) => (a < b ? -1 : 1))
-  const parts = [raceId, raceVersion, carId, carVersion, skyId, skyVersion, routes, inputsHash, engineVersion]
-  const hex = createHash('sha256').update(JSON.stringify(parts)).digest('hex')
-  const variant = '89ab'[Number.parseInt(hex[16], 16) % 4]
-  return `${hex.slice(0, 8)}-${hex.slice(8, 12)}-8${hex.slice(13, 16)}-${variant}${hex.slice(17, 20)}-${hex.slice(20, 32)}`
 }
 
 function listRoute(api: Api, { store }: Needs): void {

@@ -12,7 +12,7 @@ export async function describeApi(app: Api, version: string): Promise<void> {
         title: 'Stagewatt',
         version,
         description:
-          'Race-day energy budgets for a solar race car. Forecasts are estimates: posted limits, the rules of the event, the battery management system and licensed electrical practice come first.',
+          'Race-day energy budgets for a solar race car. Scripts send the token of the owner’s link as "Authorization: Bearer …". Forecasts are estimates: posted limits, the rules of the event, the battery management system and licensed electrical practice come first.',
       },
       tags: [
         { name: 'cars', description: 'Cars' },
@@ -20,6 +20,10 @@ export async function describeApi(app: Api, version: string): Promise<void> {
         { name: 'races', description: 'Races, their days and stages' },
         { name: 'skies', description: 'Weather along the route' },
         { name: 'forecasts', description: 'Budgets' },
+        { name: 'following', description: 'The budget that the crew follows on a day' },
+        { name: 'readings', description: 'Trackers read in the car, and what they teach' },
+        { name: 'sharing', description: 'Links that show one day’s budget' },
+        { name: 'access', description: 'Coming in' },
         { name: 'service', description: 'The service itself' },
       ],
     },

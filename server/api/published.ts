@@ -2,6 +2,7 @@ import { z } from 'zod'
 import { DOCUMENTS } from '../compute/documents.ts'
 import { openRequest } from '../compute/forecast-jobs.ts'
 import { budgetDocument } from '../documents/budget.ts'
+import { readingDocument } from '../documents/reading.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { problemSchema } from './answers.ts'
 
@@ -21,6 +22,7 @@ export const COMPONENTS: Record<string, Component> = {
   Route: { schema: DOCUMENTS.route, direction: 'input', example: 'route' },
   Race: { schema: DOCUMENTS.race, direction: 'input', example: 'race' },
   Sky: { schema: DOCUMENTS.sky, direction: 'input', example: 'sky' },
+  Reading: { schema: readingDocument, direction: 'input' },
   Speeds: { schema: speedsDocument, direction: 'input', example: 'speeds' },
   ForecastRequest: { schema: openRequest, direction: 'input', example: 'forecast-request' },
   Budget: { schema: budgetDocument, direction: 'output' },

@@ -8,14 +8,17 @@ import { answers, COMPUTE_ERRORS, STORE_ERRORS, WRITE_ERRORS } from './answers.t
 import { type Api, clientGone, DOCUMENT_LIMIT, type Needs } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { named, routesOf } from './gather.ts'
+import { learnedLosses } from './make-forecast.ts'
 
 /** A forecast of documents that come with the request, or are named in it; nothing is saved. */
-export function statelessForecastRoute(api: Api, { store, compute }: Needs): void {
+export function statelessForecastRoute(api: Api, needs: Needs): void {
+  const { compute } = needs
   takeBodies(api, ['json'])
   const schema = {
     tags: ['forecasts'],
     summary: 'Forecast whole documents; nothing is saved',
-    description: 'Each document stands in the body or is named as { "id": "…" }; routes not given come from the store.',
+    description:
+      'Each document stands in the body or is named as { "id": "…" }; routes not given come from the store. With car and race named, trackers lose what the race’s readings show.',
     querystring: z.strictObject({}),
     body: openRequest,
     response: answers({ 200: { description: 'the budget', schema: budgetDocument } }, [
@@ -34,13 +37,14 @@ export function statelessForecastRoute(api: Api, { store, compute }: Needs): voi
   api.post('/forecast', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
     const signal = clientGone(reply)
     const read = await compute.run('read-forecast-request', { bytes: bytesOf(request.body) }, signal)
-    const budget = await compute.run('forecast', await whole(store, read), signal)
+    const budget = await compute.run('forecast', await whole(needs, read, signal), signal)
     return reply.type('application/json; charset=utf-8').send(budget)
   })
 }
 
 /** The request with every document that it names. */
-async function whole(store: Store, request: OpenRequest) {
+async function whole(needs: Needs, request: OpenRequest, signal: AbortSignal) {
+  const { store } = needs
   const [car, race, sky] = await Promise.all([
     documentOf(store, 'car', request.car),
     documentOf(store, 'race', request.race),
@@ -49,7 +53,14 @@ async function whole(store: Store, request: OpenRequest) {
   const given = request.routes ?? {}
   const stored = await routesOf(store, raceDocument.parse(race), given)
   const routes = { ...Object.fromEntries([...stored].map(([id, { body }]) => [id, body])), ...given }
-  return { car, race, sky, routes, speeds: request.speeds, date: request.date }
+  const learned = await learnedFor(needs, request, signal)
+  return { car, race, sky, routes, speeds: request.speeds, date: request.date, learned }
+}
+
+/** Where car and race are stored, their readings count as in every forecast of that race. */
+async function learnedFor(needs: Needs, { car, race }: OpenRequest, signal: AbortSignal) {
+  if (!('id' in car) || !('id' in race)) return undefined
+  return learnedLosses(needs, race.id, await named(needs.store, 'car', car.id, 'car.id'), signal)
 }
 
 const documentOf = async (store: Store, kind: Kind, given: object | Reference): Promise<unknown> =>

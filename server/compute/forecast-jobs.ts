@@ -1,6 +1,7 @@
 import { z } from 'zod'
 import { forecastDocuments, forecastRequest } from '../documents/forecast.ts'
 import { carDocument } from '../documents/car.ts'
+import type { LearnedLosses } from '../documents/learned.ts'
 import { date, slug } from '../documents/quantity.ts'
 import { raceDocument } from '../documents/race.ts'
 import { routeDocument } from '../documents/route.ts'
@@ -62,6 +63,8 @@ export interface ForecastInputs {
   sky: unknown
   speeds: unknown
   date?: string
+  /** Losses by tracker as its readings show them; left out where nothing was learned. */
+  learned?: LearnedLosses
 }
 
 /**
@@ -89,4 +92,5 @@ export const inputsHash = (input: ForecastInputs): string =>
     sky: input.sky,
     speeds: input.speeds,
     date: input.date,
+    learned: input.learned,
   })

@@ -1,6 +1,7 @@
 import { type BodyInput, readDocument } from './file-jobs.ts'
 import { forecastJson, inputsHash, readForecastRequest } from './forecast-jobs.ts'
 import type { ComputePool } from './pool.ts'
+import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 
 /** Everything that is too heavy for the event loop, by name. */
 export const JOBS = {
@@ -8,6 +9,10 @@ export const JOBS = {
   'read-forecast-request': readForecastRequest,
   'inputs-hash': inputsHash,
   forecast: forecastJson,
+  'read-readings': readReadings,
+  'judge-readings': judgeJob,
+  learn: learnJob,
+  'report-trackers': reportJob,
 }
 
 export type Compute = ComputePool<typeof JOBS>

@@ -160,6 +160,12 @@ function trackersOf(day: ForecastDay): DayBudget['trackers'] {
     inputWh: t.inputJ * WH,
     lossWh: t.lossJ * WH,
     deniedWh: t.deniedJ * WH,
+    meanInputV: t.inputJ > 0 ? t.inputJV / t.inputJ : 0,
+    fell: Array.from(t.fellJ, (J, n) => ({
+      fromW: (n * car.trackers[i].window.maxW) / t.fellJ.length,
+      toW: ((n + 1) * car.trackers[i].window.maxW) / t.fellJ.length,
+      wh: J * WH,
+    })),
     limits: [...t.limits].map(([limit, sum]) => ({
       limit,
       minutes: sum.durationS / 60,

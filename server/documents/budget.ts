@@ -68,6 +68,16 @@ const trackerShare = z.strictObject({
   inputWh: wh('taken from its string'),
   lossWh: wh('lost in it'),
   deniedWh: wh('of its string’s best that its window or a full pack denied'),
+  meanInputV: z.number().describe('mean voltage at its input, by energy; 0 where it took nothing [V]'),
+  fell: z
+    .array(
+      z.strictObject({
+        fromW: z.number().describe('input power from [W]'),
+        toW: z.number().describe('input power to [W]'),
+        wh: wh('taken at such powers'),
+      }),
+    )
+    .describe('at which input powers the energy came'),
   limits: z
     .array(z.strictObject({ limit: z.string(), minutes: z.number(), deniedWh: wh('denied at that limit') }))
     .describe('which limit bound, how long, and what it cost'),

@@ -10,8 +10,9 @@ import { fitLosses } from '../engine/loss-fit.ts'
 import { prepareRoadLoad, STANDARD_GRAVITY } from '../engine/road.ts'
 import type { StringModel } from '../engine/string.ts'
 import { prepareTracker } from '../engine/tracker.ts'
-import type { Tracker } from '../engine/tracker.ts'
+import type { Tracker, TrackerWindow } from '../engine/tracker.ts'
 import type { CarDocument } from './car.ts'
+import type { LearnedLosses } from './learned.ts'
 
 const DEG = Math.PI / 180
 const KMH = 1 / 3.6
@@ -28,8 +29,12 @@ export interface Surroundings {
   skyModel: 'hay-davies' | 'perez'
 }
 
-/** The car as the engine needs it: SI units, tables built, `trackers[i]` holding string `i`. */
-export function carModel(car: CarDocument, surroundings: Surroundings): Car {
+/**
+ * The car as the engine needs it: SI units, tables built, `trackers[i]` holding string `i`.
+ *
+ * @param learned  losses of trackers by name, in place of those of the document
+ */
+export function carModel(car: CarDocument, surroundings: Surroundings, learned: LearnedLosses = {}): Car {
   const { body, drive, auxiliaries } = car
   return {
     load: prepareRoadLoad({
@@ -52,7 +57,10 @@ export function carModel(car: CarDocument, surroundings: Surroundings): Car {
     auxDrivingW: auxiliaries.drivingW,
     auxParkedW: auxiliaries.parkedW,
     array: arrayModel(car, surroundings),
-    trackers: car.strings.map((s) => trackerModel(car.trackers.find((t) => t.name === s.tracker) ?? car.trackers[0])),
+    trackers: car.strings.map((s) => {
+      const model = trackerModel(car.trackers.find((t) => t.name === s.tracker) ?? car.trackers[0])
+      return Object.hasOwn(learned, s.tracker) ? prepareTracker({ ...model, losses: learned[s.tracker] }) : model
+    }),
     pack: packModel(car.pack),
     reserveCharge: car.pack.reservePct / 100,
   }
@@ -120,20 +128,23 @@ function stringModel(car: CarDocument, string: CarDocument['strings'][number]): 
   }
 }
 
+/** The window of a tracker in the engine's terms. */
+export const windowModel = ({ window }: CarDocument['trackers'][number]): TrackerWindow => ({
+  inputMinV: window.inputMinV,
+  inputMaxV: window.inputMaxV,
+  inputMaxA: window.inputMaxA,
+  outputMinV: window.outputMinV,
+  outputMaxV: window.outputMaxV,
+  outputMaxA: window.outputMaxA ?? Number.POSITIVE_INFINITY,
+  maxW: window.maxW,
+})
+
 /** A tracker with its window; its losses as given, or fitted to its bench points. */
 export function trackerModel(tracker: CarDocument['trackers'][number]): Tracker {
-  const { window, losses, bench } = tracker
+  const { losses, bench } = tracker
   return prepareTracker({
     name: tracker.name,
-    window: {
-      inputMinV: window.inputMinV,
-      inputMaxV: window.inputMaxV,
-      inputMaxA: window.inputMaxA,
-      outputMinV: window.outputMinV,
-      outputMaxV: window.outputMaxV,
-      outputMaxA: window.outputMaxA ?? Number.POSITIVE_INFINITY,
-      maxW: window.maxW,
-    },
+    window: windowModel(tracker),
     losses:
       losses === undefined
         ? fitLosses((bench ?? []).map((p) => ({ ...p, outputW: p.inputW * (p.efficiencyPct / 100) }))).losses

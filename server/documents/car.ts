@@ -80,6 +80,11 @@ const tracker = z
     }),
     trackingPct: quantity(50, 100, 'share of the best power that the tracker finds [%]').default(99.5),
     losses: lossTerms.optional(),
+    lossesSpreadPct: quantity(
+      1,
+      200,
+      'standard uncertainty of each of the losses given; 25 when left out [%]',
+    ).optional(),
     bench: z.array(benchPoint).min(4).max(500).optional(),
   })
   .superRefine((t, context) => {
@@ -92,6 +97,16 @@ const tracker = z
     if (t.window.outputMaxV <= t.window.outputMinV)
       issue(['window', 'outputMaxV'], `more than outputMinV (${t.window.outputMinV})`, t.window.outputMaxV)
   })
+
+const meter = z.strictObject({
+  name: label('name of the meter'),
+  measures: z.enum(['V', 'A']).describe('volts or amps'),
+  accuracyPct: quantity(
+    0.01,
+    20,
+    'its class: what it shows is right within this share, anywhere in it evenly likely [%]',
+  ),
+})
 
 /** Rows of the voltage table closer together than this would be a jump. [%] */
 const LEAST_STEP_PCT = 0.01
@@ -184,6 +199,7 @@ export const carDocument = z
     cellTypes: z.record(label('name of a cell type'), cellType),
     strings: z.array(string).min(1).max(60),
     trackers: z.array(tracker).min(1).max(60),
+    meters: z.array(meter).max(60).optional().describe('meters that trackers are read with'),
     pack,
   })
   .superRefine((car, context) => {
@@ -194,6 +210,8 @@ export const carDocument = z
     const oneOf = (names: string[]) => `one of ${names.map((name) => JSON.stringify(name)).join(', ')}`
     repeated(panels).forEach((i) => issue(['panels', i, 'name'], 'a name used once', panels[i]))
     repeated(trackers).forEach((i) => issue(['trackers', i, 'name'], 'a name used once', trackers[i]))
+    const meters = (car.meters ?? []).map((m) => m.name)
+    repeated(meters).forEach((i) => issue(['meters', i, 'name'], 'a name used once', meters[i]))
     const names = car.strings.map((s) => s.name)
     repeated(names).forEach((i) => issue(['strings', i, 'name'], 'a name used once', names[i]))
     const held = car.strings.map((s) => s.tracker)

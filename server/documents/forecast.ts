@@ -10,6 +10,7 @@ import { dayBudget } from './budget-day.ts'
 import { carDocument } from './car.ts'
 import { carModel } from './car-model.ts'
 import { fieldName } from './check.ts'
+import { learnedLosses } from './learned.ts'
 import { date, slug } from './quantity.ts'
 import { dayRules, placedStages, raceCourse, stageRules, zoneOf } from './race-model.ts'
 import type { PlacedStage } from './race-model.ts'
@@ -32,6 +33,9 @@ export const forecastRequest = z
     date: date(
       'the one day wanted; the days before it are driven at the fastest speed that meets their targets',
     ).optional(),
+    learned: learnedLosses
+      .describe('losses by tracker as its readings show them, in place of the car’s own')
+      .optional(),
   })
   .meta({ title: 'Forecast request' })
 
@@ -47,7 +51,7 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
   const lastDay = dayWanted(document, request.date)
   const { sky, assumptions } = skyModel(skyDoc)
   const course = raceCourse(document, request.routes, sectionCutsKm(request.speeds))
-  const model = carModel(car, { groundAlbedo: meanAlbedo(request), skyModel: 'perez' })
+  const model = carModel(car, { groundAlbedo: meanAlbedo(request), skyModel: 'perez' }, request.learned)
   checkWindHeight(request)
   const race: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
   const { days, notes } = drivenDays(race, request, lastDay)
@@ -56,7 +60,9 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
     race: document.name,
     car: car.name,
     sky: { name: skyDoc.name, source: skyDoc.source, issuedAt: skyDoc.issuedAt },
-    assumptions: [...new Set([...roadNotes(request), ...gapNotes(race), ...assumptions, ...notes])],
+    assumptions: [
+      ...new Set([...roadNotes(request), ...learnedNotes(request), ...gapNotes(race), ...assumptions, ...notes]),
+    ],
     lengthKm: course.lengthM / 1000,
     days,
   }
@@ -159,6 +165,11 @@ function roadNotes({ race, routes }: ForecastRequest): string[] {
     ...flat.map((id) => `${routes[id].name} has no heights: a level road at sea level is assumed.`),
     ...(albedos.size > 1 ? ['The routes lie in ground of different brightness: its mean is assumed for all.'] : []),
   ]
+}
+
+function learnedNotes({ learned = {} }: ForecastRequest): string[] {
+  const names = Object.keys(learned)
+  return names.length === 0 ? [] : [`Losses are as the readings show them: ${names.join(', ')}.`]
 }
 
 /** Ends of roads nearer than this are taken for the same place. [M] */

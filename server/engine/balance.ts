@@ -49,11 +49,18 @@ export type Energy = Record<Quantity, number>
 
 export const noEnergy = (): Energy => Object.fromEntries(QUANTITIES.map((q) => [q, 0])) as Energy
 
+/** Into how many shares of a tracker's power its energy is sorted. */
+const POWER_SHARES = 12
+
 /** What one tracker did on a day. */
 export interface TrackerDay {
   inputJ: number
   lossJ: number
   deniedJ: number
+  /** Input energy times its voltage, for their mean. [J·V] */
+  inputJV: number
+  /** Input energy by input power, in equal shares of the most that the window allows. */
+  fellJ: Float64Array
   limits: Map<TrackerLimit | 'full', { durationS: number; deniedJ: number }>
 }
 
@@ -172,7 +179,14 @@ function emptyBalance(car: Car, count: number, spans: number): Balance {
     storedJ: column(),
     packV: column(),
     spans: Array.from({ length: spans }, noEnergy),
-    trackers: car.trackers.map(() => ({ inputJ: 0, lossJ: 0, deniedJ: 0, limits: new Map() })),
+    trackers: car.trackers.map(() => ({
+      inputJ: 0,
+      lossJ: 0,
+      deniedJ: 0,
+      inputJV: 0,
+      fellJ: new Float64Array(POWER_SHARES),
+      limits: new Map(),
+    })),
     firstShort: -1,
   }
 }

@@ -79,6 +79,9 @@ export function takers(car: Car, harvest: ArrayHarvest): Takers {
         const day = trackers[s]
         day.inputJ += inputW[s] * durationS
         day.lossJ += lossJ
+        day.inputJV += inputW[s] * inputV[s] * durationS
+        const share = Math.floor((inputW[s] / car.trackers[s].window.maxW) * day.fellJ.length)
+        day.fellJ[Math.min(share, day.fellJ.length - 1)] += inputW[s] * durationS
         day.deniedJ += (windowW[s] + fullW[s]) * durationS
         deniedJ += (windowW[s] + fullW[s]) * durationS
         if (limits[s] !== null && limits[s] !== 'asleep')

@@ -11,6 +11,17 @@ export const isSlug = (id: string): boolean => /^[a-z0-9-]{1,64}$/.test(id)
 
 export const isUuid = (id: string): boolean => /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/i.test(id)
 
+/** A day as YYYY-MM-DD that the calendar has. */
+export const isDay = (date: string): boolean => /^\d{4}-\d\d-\d\d$/.test(date) && isCalendarDay(date)
+
+const isCalendarDay = (date: string): boolean => {
+  const at = new Date(`${date}T00:00:00Z`)
+  return !Number.isNaN(at.getTime()) && at.toISOString().startsWith(date)
+}
+
+/** A SHA-256 in lower-case hexadecimal digits. */
+export const isSha256 = (hash: string): boolean => /^[0-9a-f]{64}$/.test(hash)
+
 /**
  * Lets a value through that fits its column.
  *
@@ -22,6 +33,9 @@ export function checkField(field: string, value: unknown, fits: boolean, expecte
   throw new StoreError('field-not-storable', `${field}: ${shown}; expected ${expected}.`, { field })
 }
 
+/** Lets through who acted: the id of a link or, once there are any, of a person; null where nobody is known. */
+export const checkBy = (by: string | null): void => checkField('by', by, by === null || isUuid(by), 'a UUID or null')
+
 /** The value for a column of JSON. */
 export function json(sql: Sql, field: string, value: unknown): postgres.Parameter {
   if (!isJson(value)) throw new StoreError('field-not-storable', `${field}: not a value of JSON.`, { field })
@@ -31,19 +45,24 @@ export function json(sql: Sql, field: string, value: unknown): postgres.Paramete
 const isJson = (value: unknown): value is postgres.JSONValue =>
   !['undefined', 'function', 'symbol', 'bigint'].includes(typeof value)
 
+/** A row that must be there already. [PostgreSQL 15, appendix A: foreign_key_violation] */
+const NO_SUCH_ROW = '23503'
+
 // Invalid JSON text, invalid byte sequence, untranslatable character. [PostgreSQL 15, appendix A]
 const NOT_STORABLE = ['22P02', '22021', '22P05']
 
 /**
- * Runs a statement that saves values; text that PostgreSQL cannot hold becomes a fault naming its field.
+ * Runs a statement that saves values; text that PostgreSQL cannot hold, and the id of a row that is not there,
+ * become a fault naming their field.
  *
  * @param values  what is saved, by the names that the caller knows
- * @throws StoreError field-not-storable: a NUL character, or half of a surrogate pair
+ * @throws StoreError field-not-storable: a NUL character, half of a surrogate pair, an unknown id
  */
 export async function saving<T>(values: Record<string, unknown>, run: () => Promise<T>): Promise<T> {
   try {
     return await run()
   } catch (error) {
+    if (errorCode(error) === NO_SUCH_ROW) throw noSuchRow(error)
     const field = NOT_STORABLE.includes(errorCode(error)) ? unstorableField(values, '') : null
     if (field === null) throw error
     throw new StoreError(
@@ -52,6 +71,14 @@ export async function saving<T>(values: Record<string, unknown>, run: () => Prom
       { cause: error, field },
     )
   }
+}
+
+/** PostgreSQL names a foreign key after its columns: table_race_id_reading_id_fkey. */
+function noSuchRow(error: unknown): StoreError {
+  const isNamed = typeof error === 'object' && error !== null && 'constraint_name' in error
+  const column = /_([a-z]+)_id_fkey$/.exec(isNamed ? String(error.constraint_name) : '')?.[1] ?? 'row'
+  const message = `${column}Id: nothing of this id is kept; expected the id of a saved ${column}.`
+  return new StoreError('field-not-storable', message, { cause: error, field: `${column}Id` })
 }
 
 const isStorable = (text: string): boolean => !text.includes('\0') && !/\p{Surrogate}/u.test(text)

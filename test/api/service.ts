@@ -4,12 +4,15 @@ import { join } from 'node:path'
 import { fileURLToPath } from 'node:url'
 import type { InjectOptions, LightMyRequestResponse } from 'fastify'
 import { buildApp, type Parts } from '../../server/app.ts'
+import { hashOf, newToken } from '../../server/api/access.ts'
 import type { Api } from '../../server/api/api.ts'
 import { EXAMPLES } from '../../server/api/examples/all.ts'
 import type { Compute, JOBS } from '../../server/compute/jobs.ts'
 import { computePool } from '../../server/compute/pool.ts'
 import { type Database, openDatabase } from '../../server/store/database.ts'
+import { openHub } from '../../server/live/hub.ts'
 import { migrate } from '../../server/store/migrate.ts'
+import { notices } from '../../server/store/notices.ts'
 import { type Store, store as storeOf } from '../../server/store/store.ts'
 import { describedAnswers } from './described.ts'
 
@@ -19,7 +22,10 @@ export const builtFile = (path: string): URL => new URL(`../../dist/server/${pat
 export type Request = InjectOptions & { url: string }
 
 export interface Service {
+  /** The service; what is injected without a token or cookie comes with the owner's. */
   app: Api
+  /** The owner's token. */
+  token: string
   store: Store
   database: Database
   compute: Compute
@@ -43,6 +49,8 @@ export async function startService(settings: { timeLimitMs?: number } = {}): Pro
   const database = { ...opened, close: () => (closed ??= opened.close()) }
   await migrate(database.sql, projectPath('migrations'))
   const store = storeOf(database.sql)
+  const isRevoked = async (id: string): Promise<boolean> => (await store.links.get(id))?.isRevoked ?? true
+  const live = await openHub({ events: store.events, notices: notices(database), isRevoked })
   const common: Parts = {
     store,
     compute,
@@ -50,17 +58,22 @@ export async function startService(settings: { timeLimitMs?: number } = {}): Pro
     host: '127.0.0.1',
     publicOrigin: null,
     tls: null,
+    live,
+    ownToken: newToken(),
     webDir: null,
     docsCss: projectPath('server/api/docs.css'),
     logLevel: 'silent',
     // A busy machine must not fail these tests.
     mostDelayMs: 600_000,
   }
-  const app = await buildApp(common)
+  const token = newToken()
+  await store.links.createOwner(hashOf(token))
+  const app = signedIn(await buildApp(common), token)
   const wrongAnswer = describedAnswers((await app.inject('/api/openapi.json')).body)
   const others: Api[] = []
   return {
     app,
+    token,
     store,
     database,
     compute,
@@ -73,17 +86,32 @@ export async function startService(settings: { timeLimitMs?: number } = {}): Pro
       return answer
     },
     async another(parts) {
-      const other = await buildApp({ ...common, ...parts })
+      const other = signedIn(await buildApp({ ...common, ...parts }), token)
       others.push(other)
       return other
     },
     async close() {
       await Promise.all([app, ...others].map((one) => one.close()))
       await compute.close()
+      await live.close()
       await database.close()
       rmSync(dataDir, { recursive: true, force: true })
     },
   }
+}
+
+/** Gives requests the owner's token where they bring neither token nor cookie, not even an empty one. */
+function signedIn(app: Api, token: string): Api {
+  const inject = app.inject.bind(app)
+  const asOwner = (asked: InjectOptions | string, ...rest: []) => {
+    const request = typeof asked === 'string' ? { url: asked } : asked
+    const headers = Object.fromEntries(Object.entries({ ...request.headers }))
+    if ('cookie' in headers) return inject(request, ...rest)
+    const { authorization = 'authorization' in headers ? undefined : `Bearer ${token}`, ...others } = headers
+    return inject({ ...request, headers: authorization === undefined ? others : { ...others, authorization } }, ...rest)
+  }
+  Object.defineProperty(app, 'inject', { value: asOwner })
+  return app
 }
 
 const COLLECTIONS: Record<string, string> = { car: 'cars', route: 'routes', race: 'races', sky: 'skies' }

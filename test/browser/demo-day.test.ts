@@ -1,7 +1,7 @@
 import type { Browser } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { describeWithBrowser } from '../support/needs.ts'
-import { openBrowser, openPhone, overflowPx, type Phone, picture } from './phone.ts'
+import { enter, openBrowser, openPhone, overflowPx, type Phone, picture } from './phone.ts'
 import { type Service, startService } from './service.ts'
 import { budgetOf, ledgerEnergies, shownEnergies } from './shown.ts'
 
@@ -17,6 +17,7 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
     service = await startService()
     browser = await openBrowser()
     phone = await openPhone(browser)
+    await enter(phone, service)
     await phone.page.goto(service.url)
     await phone.page.getByRole('button', { name: 'Sat 17 Oct' }).click()
     await phone.page.locator('#sentence', { hasText: 'Blue Gate' }).waitFor()
@@ -29,7 +30,7 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
   }, PATIENCE_MS)
 
   it('shows in the ledger exactly what the service answers, printed to 10 Wh', async () => {
-    const day = await budgetOf(service.url, { kind: 'meet-target' }, SATURDAY)
+    const day = await budgetOf(service, { kind: 'meet-target' }, SATURDAY)
     const shown = await shownEnergies(phone.page, '#ledger')
     expect(shown.map((energy) => energy.wh)).toEqual(ledgerEnergies(day.ledger, day.reserve.wh))
     for (const { wh, printed, line } of shown) {
@@ -54,7 +55,7 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
   })
 
   it('says the same in its sentence, facts and stages', async () => {
-    const day = await budgetOf(service.url, { kind: 'meet-target' }, SATURDAY)
+    const day = await budgetOf(service, { kind: 'meet-target' }, SATURDAY)
     const sentence = await shownEnergies(phone.page, '#sentence')
     expect(sentence.map((energy) => energy.wh)).toEqual([day.closing.wh, day.marginWh])
     const facts = await shownEnergies(phone.page, '.facts')
@@ -66,11 +67,11 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
 
   it('follows a step of the speed and says what it changed', async () => {
     const { page } = phone
-    const before = await budgetOf(service.url, { kind: 'meet-target' }, SATURDAY)
+    const before = await budgetOf(service, { kind: 'meet-target' }, SATURDAY)
     await page.getByRole('button', { name: 'Speed to hold: 1 km/h slower' }).click()
     await page.locator('#change', { hasText: '\u22121\u202fkm/h' }).waitFor()
     const speedKmh = (before.heldKmh ?? 0) - 1
-    const now = await budgetOf(service.url, { kind: 'constant', speedKmh }, SATURDAY)
+    const now = await budgetOf(service, { kind: 'constant', speedKmh }, SATURDAY)
     const shown = await shownEnergies(page, '#ledger')
     expect(shown.map((energy) => energy.wh)).toEqual(ledgerEnergies(now.ledger, now.reserve.wh))
     expect(await page.locator('#change').textContent()).toMatch(/arrive \d+\smin later, [\d\s]+Wh more at close$/)
@@ -81,7 +82,7 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
 
   it('shows the account of one stage', async () => {
     const { page } = phone
-    const day = await budgetOf(service.url, { kind: 'meet-target' }, SATURDAY)
+    const day = await budgetOf(service, { kind: 'meet-target' }, SATURDAY)
     await page.getByRole('button', { name: 'Saltpan to Twin Wells' }).click()
     const shown = await shownEnergies(page, '#ledger')
     expect(shown.map((energy) => energy.wh)).toEqual(ledgerEnergies(day.stages[0].ledger, day.reserve.wh))

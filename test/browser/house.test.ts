@@ -1,20 +1,11 @@
-import { readFileSync } from 'node:fs'
-import { createRequire } from 'node:module'
-import type { Browser, Page } from 'playwright-core'
+import type { Browser } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { describeWithBrowser } from '../support/needs.ts'
-import { openBrowser, openPhone, overflowPx, type Phone, picture } from './phone.ts'
+import { faults } from './faults.ts'
+import { enter, openBrowser, openPhone, overflowPx, type Phone, picture } from './phone.ts'
 import { type Service, startService } from './service.ts'
 
-const AXE = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8')
 const PATIENCE_MS = 120_000
-
-/** What axe-core finds on the page, one line each. */
-async function faults(page: Page): Promise<string[]> {
-  await page.evaluate(AXE)
-  return page.evaluate(`axe.run(document, { resultTypes: ['violations'] }).then(({ violations }) =>
-    violations.flatMap((v) => v.nodes.map((n) => v.id + ': ' + n.target.join(' ') + ' ' + n.failureSummary)))`)
-}
 
 describeWithBrowser('every screen', { timeout: 60_000 }, () => {
   let service: Service
@@ -32,6 +23,7 @@ describeWithBrowser('every screen', { timeout: 60_000 }, () => {
     service = await startService()
     browser = await openBrowser()
     phone = await openPhone(browser)
+    await enter(phone, service)
   }, PATIENCE_MS)
 
   afterAll(async () => {
@@ -129,9 +121,9 @@ describeWithBrowser('every screen', { timeout: 60_000 }, () => {
   })
 
   it('says why no budget can be made, where, and the way on', async () => {
-    const race = JSON.parse(await (await fetch(`${service.url}/api/v1/races/plateau-run`)).text()).document
+    const race = JSON.parse(await (await service.ask('/api/v1/races/plateau-run')).text()).document
     race.days[0].stages[0].route = 'nowhere'
-    const put = await fetch(`${service.url}/api/v1/races/lost-race`, {
+    const put = await service.ask('/api/v1/races/lost-race', {
       method: 'PUT',
       headers: { 'content-type': 'application/json' },
       body: JSON.stringify({ ...race, name: 'Lost race' }),

@@ -7,8 +7,14 @@ import { fileURLToPath } from 'node:url'
 const ROOT = fileURLToPath(new URL('../..', import.meta.url))
 const READY_MS = 120_000
 
+type Init = Omit<RequestInit, 'headers'> & { headers?: Record<string, string> }
+
 export interface Service {
   url: string
+  /** The link that the first start prints, with its token after #. */
+  ownerLink: string
+  /** Asks the service as the owner does. */
+  ask(path: string, init?: Init): Promise<Response>
   stop(): Promise<void>
 }
 
@@ -27,24 +33,29 @@ export async function startService(): Promise<Service> {
     rmSync(folder, { recursive: true, force: true })
   }
   try {
-    return { url: await addressOf(child), stop }
+    const { url, ownerLink } = await startedBy(child)
+    const authorization = `Bearer ${ownerLink.split('#owner=')[1]}`
+    const ask = (path: string, init: Init = {}): Promise<Response> =>
+      fetch(`${url}${path}`, { ...init, headers: { ...init.headers, authorization } })
+    return { url, ownerLink, ask, stop }
   } catch (error) {
     await stop()
     throw error
   }
 }
 
-/** The address that the service prints once it answers. */
-function addressOf(child: ChildProcess): Promise<string> {
+/** The address and the owner's link that the service prints once it answers. */
+function startedBy(child: ChildProcess): Promise<Pick<Service, 'url' | 'ownerLink'>> {
   return new Promise((found, failed) => {
     let output = ''
-    const timer = setTimeout(() => failed(new Error(`no address within ${READY_MS} ms:\n${output}`)), READY_MS)
+    const timer = setTimeout(() => failed(new Error(`no owner's link within ${READY_MS} ms:\n${output}`)), READY_MS)
     const take = (chunk: Buffer): void => {
       output += chunk.toString()
-      const address = /https?:\/\/[\w.:-]+/.exec(output.split('\n').find((line) => line.includes(' is at ')) ?? '')
-      if (address === null) return
+      const url = /^Stagewatt is at (https?:\/\/\S+)$/m.exec(output)?.[1]
+      const ownerLink = /^Owner's link: (https?:\/\/\S+)$/m.exec(output)?.[1]
+      if (url === undefined || ownerLink === undefined) return
       clearTimeout(timer)
-      found(address[0])
+      found({ url, ownerLink })
     }
     child.stdout?.on('data', take)
     child.stderr?.on('data', take)

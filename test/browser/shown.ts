@@ -1,6 +1,7 @@
 import type { Page } from 'playwright-core'
 import type { BudgetDocument, DayBudget, LedgerDocument } from '../../server/documents/budget.ts'
 import type { SpeedsInput } from '../../server/documents/speeds.ts'
+import type { Service } from './service.ts'
 
 /** An energy on the screen: the exact value it carries and what is printed. */
 export interface ShownEnergy {
@@ -23,9 +24,13 @@ export async function shownEnergies(page: Page, under: string): Promise<ShownEne
 const printedNumber = (text: string): number => Number(text.replace('\u2212', '-').replace(/[^\d-]/g, ''))
 
 /** The budget that the service gives to the same question as the page. */
-export async function budgetOf(url: string, speeds: SpeedsInput, names: Record<string, string>): Promise<DayBudget> {
+export async function budgetOf(
+  service: Service,
+  speeds: SpeedsInput,
+  names: Record<string, string>,
+): Promise<DayBudget> {
   const { race, car, sky, date } = names
-  const response = await fetch(`${url}/api/v1/forecast`, {
+  const response = await service.ask('/api/v1/forecast', {
     method: 'POST',
     headers: { 'content-type': 'application/json' },
     body: JSON.stringify({ race: { id: race }, car: { id: car }, sky: { id: sky }, date, speeds }),

@@ -2,7 +2,7 @@ import type { Browser, Locator } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import { describeWithBrowser } from '../support/needs.ts'
 import { gpxOf, lineOfPoint, weatherOf } from './files.ts'
-import { openBrowser, openPhone, type Phone, picture } from './phone.ts'
+import { enter, openBrowser, openPhone, type Phone, picture } from './phone.ts'
 import { type Service, startService } from './service.ts'
 import { budgetOf, ledgerEnergies, shownEnergies } from './shown.ts'
 
@@ -33,6 +33,7 @@ describeWithBrowser('files brought in by the client', { timeout: 60_000 }, () =>
     service = await startService()
     browser = await openBrowser()
     phone = await openPhone(browser)
+    await enter(phone, service)
     await phone.page.goto(`${service.url}/#/set-up`)
     for (const kind of ['routes', 'skies', 'race-day', 'cars']) await part(kind).locator('summary').first().click()
   }, PATIENCE_MS)
@@ -124,7 +125,7 @@ describeWithBrowser('files brought in by the client', { timeout: 60_000 }, () =>
     await page.getByRole('link', { name: 'Day' }).click()
     await page.locator('#sentence', { hasText: 'Blue Gate' }).waitFor({ timeout: 60_000 })
     const names = { race: 'test-day', car: 'weaver-2', sky: 'plain', date: DATE }
-    const day = await budgetOf(service.url, { kind: 'meet-target' }, names)
+    const day = await budgetOf(service, { kind: 'meet-target' }, names)
     const shown = await shownEnergies(page, '#ledger')
     expect(shown.map((energy) => energy.wh)).toEqual(ledgerEnergies(day.ledger, day.reserve.wh))
     expect(day.drivenKm).toBeGreaterThan(290)
@@ -166,10 +167,10 @@ describeWithBrowser('files brought in by the client', { timeout: 60_000 }, () =>
     const cars = part('cars')
     await cars.getByLabel('Or start from').selectOption('Spare car')
     await expect.poll(() => cars.getByLabel('The car as JSON').inputValue()).toContain('Spare car')
-    const address = `${service.url}/api/v1/cars/spare-car`
-    const { document } = JSON.parse(await (await fetch(address)).text())
+    const address = '/api/v1/cars/spare-car'
+    const { document } = JSON.parse(await (await service.ask(address)).text())
     const headers = { 'content-type': 'application/json', 'if-match': '"1"' }
-    const theirs = await fetch(address, { method: 'PUT', headers, body: JSON.stringify(document) })
+    const theirs = await service.ask(address, { method: 'PUT', headers, body: JSON.stringify(document) })
     expect(theirs.status).toBe(200)
     await cars.getByRole('button', { name: 'Save' }).click()
     await cars.getByText('Not done: somebody changed it in the meantime.').waitFor()

@@ -1,6 +1,6 @@
 import { readFileSync } from 'node:fs'
 import { describe, expect, test } from 'vitest'
-import { CONFIG, isLoopback, readConfig } from '../../server/config.ts'
+import { CONFIG, isLoopback, readConfig, reachOf } from '../../server/config.ts'
 
 const read = (env: Record<string, string>) => readConfig(env, '/crew')
 
@@ -88,6 +88,20 @@ describe('the configuration', () => {
     const code = readFileSync(new URL('../../server/config.ts', import.meta.url), 'utf8')
     const read = [...code.matchAll(/^ {2}([A-Z][A-Z_]+): /gm)].map((found) => found[1])
     expect(CONFIG.map(({ name }) => name)).toEqual(read)
+  })
+
+  test.each([
+    ['only this machine', {}, 'Phones do not reach this address'],
+    ['a public name for this machine alone', { PUBLIC_URL: 'http://localhost:8440' }, 'Phones do not reach PUBLIC_URL'],
+    ['the network over plain HTTP', { HOST: '0.0.0.0' }, 'cannot work offline'],
+    ['a proxy over plain HTTP', { PUBLIC_URL: 'http://crew.example' }, 'cannot work offline'],
+    ['the network over https', { HOST: '0.0.0.0', TLS_CERT: 'c.pem', TLS_KEY: 'k.pem' }, ''],
+    ['a proxy over https', { PUBLIC_URL: 'https://crew.example' }, ''],
+  ])('what reaches %s says what phones cannot do: %s', (_, env, expected) => {
+    const { config } = read(env)
+    if (config === undefined) throw new Error('the variables are refused')
+    expect(reachOf(config).join('')).toContain(expected)
+    expect(reachOf(config)).toHaveLength(expected === '' ? 0 : 1)
   })
 
   test.each([

@@ -10,6 +10,10 @@ export interface Running {
   err(): string
   /** Address that the service printed. */
   address(): Promise<string>
+  /** Token of the owner's link that it printed. */
+  ownerToken(): Promise<string>
+  /** What the first group of a pattern found in what it printed. */
+  printed(pattern: RegExp): Promise<string>
   /** Exit code, or the signal that ended it. */
   ended: Promise<number | string>
 }
@@ -30,15 +34,17 @@ export function run(command: string[], env: Record<string, string>, cwd = ROOT):
     typeof code === 'number' ? code : String(signal),
   )
   started.push(child)
-  const address = async (): Promise<string> => {
+  const printed = async (pattern: RegExp): Promise<string> => {
     for (;;) {
-      const found = /Stagewatt is at (\S+)\n/.exec(out)
+      const found = pattern.exec(out)
       if (found !== null) return found[1]
       if (child.exitCode !== null) throw new Error(`it ended with ${child.exitCode}:\n${out}${err}`)
       await Promise.race([once(child.stdout, 'data'), ended])
     }
   }
-  return { child, out: () => out, err: () => err, address, ended }
+  const address = () => printed(/Stagewatt is at (\S+)\n/)
+  const ownerToken = () => printed(/#owner=(\S+)\n/)
+  return { child, out: () => out, err: () => err, address, ownerToken, printed, ended }
 }
 
 const started: ChildProcess[] = []

@@ -61,22 +61,28 @@ describe.skipIf(process.platform === 'win32')('npm start', () => {
 })
 
 describe('the service', () => {
-  test('prints nothing but its address, finishes what it has begun, and keeps what it saved', {
+  test('prints its address and at first the owner’s link, finishes what it has begun, and keeps what it saved', {
     timeout: START_LIMIT_MS,
   }, async () => {
     const first = run(MAIN, env())
     const address = await first.address()
-    expect(first.out()).toBe(`Stagewatt is at ${address}\n`)
+    const authorization = `Bearer ${await first.ownerToken()}`
+    await first.printed(/^(Phones .*)\n/m)
+    const lines = first.out().trim().split('\n')
+    expect(lines[1]).toMatch(new RegExp(`^Owner's link: ${address}/#owner=[\\w-]{43}$`))
+    expect(lines[2]).toContain('Phones do not reach this address')
+    expect(lines).toHaveLength(3)
     expect(first.err()).toBe('')
-    const car = await (await fetch(`${address}/api/v1/examples/car`)).text()
-    const headers = { 'content-type': 'application/json' }
+    const car = await (await fetch(`${address}/api/v1/examples/car`, { headers: { authorization } })).text()
+    const headers = { authorization, 'content-type': 'application/json' }
     const saving = fetch(`${address}/api/v1/cars/kept`, { method: 'PUT', headers, body: car })
     await fetch(`${address}/api/health`)
     first.child.kill('SIGTERM')
     expect((await saving).status).toBe(201)
     expect(await first.ended).toBe(0)
     const second = run(MAIN, env())
-    expect((await fetch(`${await second.address()}/api/v1/cars/kept`)).status).toBe(200)
+    expect((await fetch(`${await second.address()}/api/v1/cars/kept`, { headers })).status).toBe(200)
+    expect(second.out()).not.toContain('Owner')
     second.child.kill('SIGINT')
     expect(await second.ended).toBe(0)
   })
@@ -91,12 +97,37 @@ describe('the service', () => {
     expect(second.err()).toContain(join(folder, 'data'))
   })
 
-  test('says that everybody may change the plans when it listens beyond this machine', {
+  test('makes a new owner’s link when it is lost, once it stands still; the old one then opens nothing', {
+    timeout: START_LIMIT_MS,
+  }, async () => {
+    const own = env({ DATA_DIR: join(folder, 'lost') })
+    const OWNER_LINK = [process.execPath, 'dist/server/owner-link.js']
+    const first = run(MAIN, own)
+    await first.address()
+    const old = await first.ownerToken()
+    const early = run(OWNER_LINK, own)
+    expect(await early.ended).toBe(1)
+    expect(early.err()).toContain('Stop that one first')
+    first.child.kill('SIGTERM')
+    await first.ended
+    const made = run(OWNER_LINK, own)
+    const token = await made.ownerToken()
+    expect(await made.ended).toBe(0)
+    const address = await run(MAIN, own).address()
+    const statuses = [token, old].map(async (one) => {
+      const headers = { authorization: `Bearer ${one}` }
+      return (await fetch(`${address}/api/v1/races`, { headers })).status
+    })
+    expect(await Promise.all(statuses)).toEqual([200, 401])
+  })
+
+  test('says what phones cannot do when it speaks plain HTTP beyond this machine', {
     timeout: START_LIMIT_MS,
   }, async () => {
     const service = run(MAIN, env({ HOST: '0.0.0.0' }))
     expect(await service.address()).toMatch(/^http:\/\/localhost:\d+$/)
-    expect(service.err()).toContain('everybody who reaches this address can change the plans')
+    await service.printed(/^(Phones .*)$/m)
+    expect(service.out()).toContain('plain HTTP, which cannot work offline')
   })
 
   test('refuses a port that is in use, in one line', { timeout: START_LIMIT_MS }, async () => {

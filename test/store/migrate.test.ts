@@ -14,6 +14,17 @@ import {
   WORKER,
 } from './engines.ts'
 
+const OWN_FILES = [
+  '001-documents.sql',
+  '002-forecasts.sql',
+  '003-access.sql',
+  '004-readings.sql',
+  '005-choices.sql',
+  '006-beliefs.sql',
+  '007-moves.sql',
+  '008-events.sql',
+]
+
 function migrateSuite(open: () => Promise<TestDatabase>): void {
   let database: TestDatabase
   let folder: string
@@ -37,7 +48,7 @@ function migrateSuite(open: () => Promise<TestDatabase>): void {
   })
   afterEach(async () => {
     rmSync(folder, { recursive: true, force: true })
-    const names = (await tables()).map((name) => database.sql`drop table ${database.sql(name)}`)
+    const names = (await tables()).map((name) => database.sql`drop table ${database.sql(name)} cascade`)
     for (const drop of names) await drop
   })
 
@@ -95,9 +106,23 @@ function migrateSuite(open: () => Promise<TestDatabase>): void {
   })
 
   it('the service’s own files make its tables', async () => {
-    expect(await migrate(database.sql, MIGRATIONS)).toEqual(['001-documents.sql', '002-forecasts.sql'])
-    expect(await tables()).toEqual(['document_versions', 'documents', 'forecasts', 'migrations'])
-    await database.sql`drop table document_versions, documents, forecasts`
+    expect(await migrate(database.sql, MIGRATIONS)).toEqual(OWN_FILES)
+    expect(await tables()).toEqual([
+      'access_links',
+      'belief_uses',
+      'budget_moves',
+      'day_choices',
+      'document_versions',
+      'documents',
+      'event_topics',
+      'events',
+      'forecasts',
+      'migrations',
+      'reading_judgements',
+      'reading_marks',
+      'readings',
+      'sessions',
+    ])
   })
 }
 
@@ -110,21 +135,15 @@ describeWithPostgres('several processes that migrate one server at once', () => 
     const folder = newFolder()
     mkdirSync(join(folder, 'm'))
     cpSync(MIGRATIONS, join(folder, 'm'), { recursive: true })
-    for (let n = 3; n < 10; n++) {
-      writeFileSync(
-        join(folder, 'm', `00${n}-slow.sql`),
-        `create table slow_${n} as select 1 as one from pg_sleep(0.02)`,
-      )
+    const slow = Array.from({ length: 7 }, (_, n) => `90${n}-slow.sql`)
+    for (const [n, name] of slow.entries()) {
+      writeFileSync(join(folder, 'm', name), `create table slow_${n} as select 1 as one from pg_sleep(0.02)`)
     }
     const databases = await Promise.all(
       Array.from({ length: 8 }, () => openDatabase({ url, dataDir: '', workerUrl: WORKER, max: 2 })),
     )
     const done = (await Promise.all(databases.map(({ sql }) => migrate(sql, join(folder, 'm'))))).flat()
-    expect(done.sort()).toEqual([
-      '001-documents.sql',
-      '002-forecasts.sql',
-      ...Array.from({ length: 7 }, (_, n) => `00${n + 3}-slow.sql`),
-    ])
+    expect(done.sort()).toEqual([...OWN_FILES, ...slow])
     for (const database of databases) await database.close()
     rmSync(folder, { recursive: true, force: true })
     await drop()

@@ -12,6 +12,7 @@ export interface Request {
   sky: ReturnType<typeof someSky>
   speeds: unknown
   date?: string
+  learned?: Record<string, object>
 }
 
 /** The budget of the usual scenario after a change. */

@@ -17,10 +17,13 @@ export function LedgerBar({ side, wh, mostWh }: { side: 'in' | 'out'; wh: number
   )
 }
 
-/** Ruling shared by all charts of a page: lines for what is to come. */
+/** Ruling shared by all charts of a page: lines for what is to come, hatch for what cannot be. */
 export const Rulings = () => (
   <svg width="0" height="0" class="defs" aria-hidden="true">
     <defs>
+      <pattern id="hatch" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)">
+        <path d="M0 3H6" stroke="var(--ink-3)" stroke-width="1.2" />
+      </pattern>
       {(['in', 'out'] as const).map((side) => (
         <>
           <pattern id={`rule-${side}`} width="8" height="4" patternUnits="userSpaceOnUse">

@@ -1,5 +1,5 @@
 import { useSignal } from '@preact/signals'
-import { useLayoutEffect, useMemo, useRef } from 'preact/hooks'
+import { useMemo } from 'preact/hooks'
 import type { DayBudget } from '../../server/documents/budget.ts'
 import { clockAt, grouped, round10, THIN } from '../format.ts'
 import { Wh } from '../views/figures.tsx'
@@ -8,6 +8,7 @@ import { powerBins, type Reading, readingAt } from './band.ts'
 import { Plot } from './band-plot.tsx'
 import { gateWords } from './gate-words.ts'
 import { textWidth } from './text-width.ts'
+import { useWidth } from './use-width.ts'
 
 /** Room beside the plot for the battery’s scale. [px] */
 const scaleRoom = (): number => Math.ceil(textWidth(`100${THIN}%`, '400 12px')) + 7
@@ -15,17 +16,9 @@ const scaleRoom = (): number => Math.ceil(textWidth(`100${THIN}%`, '400 12px')) 
 /** Harvest, spending and battery on one axis from dawn to dusk, over the road’s height. */
 export function DayBand({ day }: { day: DayBudget }) {
   const mode = useSignal<AxisMode>('time')
-  const width = useSignal(358)
+  const { frame, width } = useWidth()
   const readMs = useSignal<number | null>(null)
-  const frame = useRef<HTMLDivElement>(null)
-  useLayoutEffect(() => {
-    const element = frame.current
-    if (element === null) return undefined
-    const watch = new ResizeObserver(() => (width.value = Math.max(240, element.clientWidth)))
-    watch.observe(element)
-    return () => watch.disconnect()
-  }, [])
-  const axis = useMemo(() => bandAxis(day, mode.value, width.value - scaleRoom()), [day, mode.value, width.value])
+  const axis = useMemo(() => bandAxis(day, mode.value, width - scaleRoom()), [day, mode.value, width])
   const at = readMs.value !== null && readMs.value >= axis.fromMs && readMs.value <= axis.toMs ? readMs.value : null
   const reading = at === null ? null : readingAt(day, at)
   return (
@@ -42,7 +35,7 @@ export function DayBand({ day }: { day: DayBudget }) {
       </div>
       <Key day={day} reading={reading} />
       <div class="bandframe" ref={frame}>
-        <Plot day={day} axis={axis} width={width.value} reading={reading} onRead={(ms) => (readMs.value = ms)} />
+        <Plot day={day} axis={axis} width={width} reading={reading} onRead={(ms) => (readMs.value = ms)} />
       </div>
       <ReadSlider day={day} axis={axis} atMs={at} onRead={(ms) => (readMs.value = ms)} />
       <p class="note">

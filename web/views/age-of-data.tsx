@@ -1,11 +1,12 @@
 import { answerFreshness, type Freshness, forecastFreshness } from '../age.ts'
 import { Disc } from '../charts/disc.tsx'
 import { ageAmount, clockAt, stampText } from '../format.ts'
-import { nowMs, type Worked } from '../state.ts'
+import { nowMs } from '../shown.ts'
+import type { Worked } from '../state.ts'
 import { Wh } from './figures.tsx'
 
 /** How old what the figures rest on is: always a symbol and a number. */
-export function AgeOfData({ last }: { last: Worked }) {
+export function AgeOfData({ last }: { last: Omit<Worked, 'question'> }) {
   const { sky } = last.budget
   const skyMs = nowMs.value - Date.parse(sky.issuedAt)
   const answerMs = nowMs.value - last.atMs

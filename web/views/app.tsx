@@ -2,9 +2,12 @@ import { useEffect } from 'preact/hooks'
 import { Mark } from '../charts/mark.tsx'
 import { Rulings } from '../charts/bar.tsx'
 import { ageAmount, clockAt, dayText, offsetText, zoneOffsetMin } from '../format.ts'
-import { choice, days, isHeard, lastHeardMs, lists, nowMs, worked, workingSinceMs } from '../state.ts'
+import { nowMs } from '../shown.ts'
+import { choice, days, isHeard, lastHeardMs, lists, worked, workingSinceMs } from '../state.ts'
+import { standing } from '../session.ts'
 import { DayView } from './day.tsx'
-import { SetUp } from './set-up.tsx'
+import { Landing } from './landing.tsx'
+import { late } from './late.tsx'
 import { Wh } from './figures.tsx'
 import { Disc } from '../charts/disc.tsx'
 
@@ -13,17 +16,35 @@ const STRIP_AFTER_MS = 15_000
 /** Work shorter than this is not worth a word. [ms] */
 const QUIET_MS = 700
 
-export const App = () => (
-  <>
-    <Rulings />
-    <Top />
-    <Strip />
-    <main id="main" class="phone">
-      {choice.value.view === 'day' ? <DayView /> : <SetUp />}
-    </main>
-    <Tabs />
-  </>
-)
+export function App() {
+  const { value } = standing
+  if (value !== null && value !== 'inside') return <Landing standing={value} />
+  const View = VIEWS[choice.value.view]
+  return (
+    <>
+      <Rulings />
+      <Top />
+      <Strip />
+      <main id="main" class="phone">
+        <View />
+      </main>
+      <Tabs />
+    </>
+  )
+}
+
+const loadLog = async () => (await import('./log.tsx')).LogView
+/** Figures are logged at the roadside, so Log comes along once the day is there. [ms] */
+const LOG_AFTER_MS = 4000
+setTimeout(() => loadLog().catch(() => undefined), LOG_AFTER_MS)
+
+/** Screens that are not needed at once are fetched when they are opened. */
+const VIEWS = {
+  day: DayView,
+  log: late(loadLog),
+  trackers: late(async () => (await import('./trackers.tsx')).TrackersView),
+  'set-up': late(async () => (await import('./set-up.tsx')).SetUp),
+}
 
 function Top() {
   const race = lists.value?.races.find((item) => item.id === choice.value.race)
@@ -102,6 +123,8 @@ function Working({ ms }: { ms: number }) {
 
 const TABS = [
   { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },
+  { view: 'log', name: 'Log', icon: 'M5 21l1-5L17 5l4 4L10 20zM14 8l4 4M4 24h18' },
+  { view: 'trackers', name: 'Trackers', icon: 'M4 3v20h19M5 21C8 8 12 8 22 7M15 15l3 3-3 3-3-3z' },
   { view: 'set-up', name: 'Set-up', icon: 'M6 3h14v20H6zM6 9h14M6 13.5h14M6 18h14M10 3v20' },
 ] as const
 

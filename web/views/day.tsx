@@ -1,16 +1,6 @@
 import { DayBand } from '../charts/day-band.tsx'
-import {
-  choice,
-  choose,
-  days,
-  isComplete,
-  lists,
-  refusal,
-  stageId,
-  worked,
-  workingSinceMs,
-  type Worked,
-} from '../state.ts'
+import { stageId } from '../shown.ts'
+import { choice, choose, days, isComplete, lists, refusal, worked, workingSinceMs, type Worked } from '../state.ts'
 import { daySentence, stageSentence } from '../sentence.ts'
 import { clockAt, dayText } from '../format.ts'
 import { AgeOfData } from './age-of-data.tsx'
@@ -18,7 +8,8 @@ import { Assumptions } from './assumptions.tsx'
 import { DayFacts, StageFacts } from './facts.tsx'
 import { Say } from './figures.tsx'
 import { Ledger } from './ledger.tsx'
-import { Empty, RefusedDay, Ruling } from './states.tsx'
+import { Ruling } from './ruling.tsx'
+import { Empty, RefusedDay } from './states.tsx'
 import { SpeedPanel } from './speed-panel.tsx'
 import { Stages } from './stages.tsx'
 import { Tabs } from './tabs.tsx'

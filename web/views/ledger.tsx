@@ -2,7 +2,7 @@ import type { DayBudget } from '../../server/documents/budget.ts'
 import { LedgerBar } from '../charts/bar.tsx'
 import { grouped, kmText, round10, THIN } from '../format.ts'
 import { type PrintedLedger, type PrintedLine, printedLedger } from '../ledger-lines.ts'
-import { stageId } from '../state.ts'
+import { stageId } from '../shown.ts'
 import { Cell } from './figures.tsx'
 import { Tabs } from './tabs.tsx'
 

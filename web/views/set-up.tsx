@@ -1,4 +1,5 @@
 import type { ComponentChildren } from 'preact'
+import { signOut } from '../session.ts'
 import { theme, type Theme } from '../theme.ts'
 import { choice, choose, lists, refusal } from '../state.ts'
 import { AddRace } from './add-race.tsx'
@@ -70,6 +71,9 @@ export function SetUp() {
           <a href="/api/docs">How to ask the service directly, with worked examples</a>
           <a href="/api/openapi.json">Its description as OpenAPI 3.1</a>
         </nav>
+        <button type="button" class="quiet" onClick={() => void signOut()}>
+          Sign out of this browser
+        </button>
       </Part>
     </div>
   )

@@ -3,6 +3,7 @@ import type { SpeedsInput } from '../../server/documents/speeds.ts'
 import { legSpeed, ownSpeed, withLeg } from '../legs.ts'
 import { comparison } from '../sentence.ts'
 import { before, choice, days, trySpeeds, workingSinceMs } from '../state.ts'
+import { FollowPanel } from './follow-panel.tsx'
 import { Stepper } from './stepper.tsx'
 
 type Way = 'meet-target' | 'constant' | 'legs'
@@ -16,7 +17,12 @@ const WAYS: { way: Way; text: string }[] = [
 /** A speed to try: the answer and what it changes follow at once. */
 export function SpeedPanel({ day }: { day: DayBudget }) {
   const { speeds } = choice.value
-  if (day.stages.length === 0) return null
+  if (day.stages.length === 0)
+    return (
+      <section class="sec pad" aria-label="What is followed">
+        <FollowPanel day={day} />
+      </section>
+    )
   return (
     <section class="sec pad speed" aria-labelledby="speed-title">
       <div class="sech">
@@ -40,6 +46,7 @@ export function SpeedPanel({ day }: { day: DayBudget }) {
       {speeds.kind !== 'meet-target' && days.value[0]?.date !== day.date && (
         <p class="note">The days before are driven at these speeds, too.</p>
       )}
+      <FollowPanel day={day} />
     </section>
   )
 }

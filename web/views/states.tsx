@@ -1,10 +1,8 @@
 import type { Refusal } from '../api.ts'
 import { ageAmount, clockAt, THIN } from '../format.ts'
-import { askAgain, choice, choose, lists, loadLists, nowMs, refusal, type Worked } from '../state.ts'
+import { nowMs } from '../shown.ts'
+import { askAgain, choice, choose, lists, loadLists, refusal, type Worked } from '../state.ts'
 import { Problems } from './problems.tsx'
-
-/** Unfilled ruling that stands for figures to come. */
-export const Ruling = () => <div class="ruling" aria-hidden="true" />
 
 const NAMES = { races: 'a race', cars: 'a car', skies: 'a sky' } as const
 const KINDS = ['races', 'cars', 'skies'] as const

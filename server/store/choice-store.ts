@@ -1,0 +1,109 @@
+import type { Conflict, Saved } from './document-store.ts'
+import type { Fragment, Sql } from './guarded-sql.ts'
+import { checkBy, checkField, isDay, isSlug, isUuid, isVersion, json, saving, utc } from './storable.ts'
+
+/** What the crew follows on a day. */
+export interface Choice {
+  carId: string
+  skyId: string
+  speeds: unknown
+}
+
+/** A choice with its day, version and newest forecast. `savedAt` is ISO 8601 in UTC. */
+export interface StoredChoice extends Choice {
+  date: string
+  version: number
+  forecastId: string
+  savedAt: string
+}
+
+export interface ChoiceStore {
+  /** The day's choice that holds. */
+  get(raceId: string, date: string): Promise<StoredChoice | null>
+  /** The choice that holds on each day of a race, by date. */
+  list(raceId: string): Promise<StoredChoice[]>
+  /**
+   * Chooses for a day, starting from the version that holds, null for the first.
+   *
+   * @param forecastId  a saved forecast made from the choice
+   */
+  put(
+    day: { raceId: string; date: string },
+    expectedVersion: number | null,
+    choice: Choice & { forecastId: string },
+    by: string | null,
+  ): Promise<Saved | Conflict | 'missing'>
+  /** Names a newer forecast of the same choice; false when another choice holds by now. */
+  setForecast(raceId: string, date: string, version: number, forecastId: string): Promise<boolean>
+}
+
+/**
+ * The crew's choice for each day, with every version.
+ *
+ * @throws StoreError field-not-storable from `put` and `setForecast`
+ */
+export function choiceStore(sql: Sql): ChoiceStore {
+  const savedAt = (): Fragment => sql`${utc(sql, 'saved_at')} as "savedAt"`
+  const current = (where: Fragment): Fragment => sql`
+    select distinct on (date) date, version, car_id as "carId", sky_id as "skyId", speeds,
+      forecast_id as "forecastId", ${savedAt()}
+    from day_choices where ${where} order by date, version desc`
+
+  const get: ChoiceStore['get'] = async (raceId, date) => {
+    if (!isSlug(raceId) || !isDay(date)) return null
+    const rows = await sql<StoredChoice[]>`${current(sql`race_id = ${raceId} and date = ${date}`)}`
+    return rows[0] ?? null
+  }
+  const conflictOrMissing = async (raceId: string, date: string): Promise<Conflict | 'missing'> => {
+    const holds = await get(raceId, date)
+    return holds === null ? 'missing' : { conflict: holds.version }
+  }
+  const checkForecast = (id: string): void => checkField('forecastId', id, isUuid(id), 'a UUID')
+
+  return {
+    get,
+
+    async list(raceId) {
+      if (!isSlug(raceId)) return []
+      const rows = await sql<StoredChoice[]>`${current(sql`race_id = ${raceId}`)}`
+      return rows
+    },
+
+    async put({ raceId, date }, expectedVersion, { carId, skyId, speeds, forecastId }, by) {
+      checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
+      checkField('date', date, isDay(date), 'a day as YYYY-MM-DD')
+      checkForecast(forecastId)
+      checkBy(by)
+      const expected = expectedVersion ?? 0
+      if (expectedVersion !== null && !isVersion(expectedVersion)) return conflictOrMissing(raceId, date)
+      const rows = await saving(
+        { carId, skyId, speeds },
+        () => sql<Saved[]>`
+        insert into day_choices (race_id, date, version, car_id, sky_id, speeds, forecast_id, created_by)
+        select ${raceId}, ${date}, ${expected}::integer + 1, ${carId}, ${skyId}, ${json(sql, 'speeds', speeds)},
+          ${forecastId}::uuid, ${by}::uuid
+        where ${expected}::integer = (
+          select coalesce(max(version), 0) from day_choices where race_id = ${raceId} and date = ${date}
+        )
+        on conflict (race_id, date, version) do nothing
+        returning version, ${savedAt()}`,
+      )
+      return rows.length > 0 ? rows[0] : conflictOrMissing(raceId, date)
+    },
+
+    async setForecast(raceId, date, version, forecastId) {
+      checkForecast(forecastId)
+      if (!isSlug(raceId) || !isDay(date) || !isVersion(version)) return false
+      const rows = await saving(
+        {},
+        () => sql`
+        update day_choices set forecast_id = ${forecastId}
+        where race_id = ${raceId} and date = ${date} and version = ${version} and version = (
+          select max(version) from day_choices where race_id = ${raceId} and date = ${date}
+        )
+        returning version`,
+      )
+      return rows.length > 0
+    },
+  }
+}

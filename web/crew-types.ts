@@ -1,0 +1,80 @@
+import type { BudgetDocument } from '../server/documents/budget.ts'
+import type { JudgementDocument } from '../server/documents/judgement.ts'
+import type { SpeedsInput } from '../server/documents/speeds.ts'
+import type { TrackerReport } from '../server/documents/tracker-report.ts'
+
+export type { ReadingDocument, ReadingField } from '../server/documents/reading.ts'
+export type { KeptReading, TrackerReport } from '../server/documents/tracker-report.ts'
+
+export type Verdict = JudgementDocument['verdict']
+export type Curve = TrackerReport['bench']
+export type TrackerDay = NonNullable<TrackerReport['day']>
+
+/** What a day's budget moved by. */
+export interface Moved {
+  date: string
+  /** Points of efficiency by tracker. */
+  pointsPct: Record<string, number>
+  closingWhBefore: number
+  closingWhAfter: number
+  movedWh: number
+}
+
+/** One entry of the history: what moved a day’s budget, and where to. */
+export interface Move {
+  date: string
+  cause: 'reading' | 'set-aside' | 'take-back' | 'use-bench' | 'use-learned' | 'choice'
+  readingId: string | null
+  closingWhBefore: number | null
+  closingWhAfter: number | null
+  movedAt: string
+}
+
+export interface ReadingAnswer extends JudgementDocument {
+  id: string
+  moved: Moved[]
+}
+
+export interface Trackers {
+  uses: 'learned' | 'bench'
+  items: TrackerReport[]
+}
+
+/** The budget that the crew follows, as somebody chose it. */
+export interface FollowedChoice {
+  carId: string
+  skyId: string
+  speeds: SpeedsInput
+  version: number
+  savedAt: string
+}
+
+export interface FollowedBudget {
+  forecastId: string
+  madeAt: string
+  choice: FollowedChoice
+  budget: BudgetDocument
+  learned: boolean
+}
+
+export interface Share {
+  id: string
+  name: string
+  createdAt: string
+  isRevoked: boolean
+}
+
+/** A share just made: its address is told once. */
+export interface NewShare extends Share {
+  url: string
+}
+
+/** What a share link opens. */
+export interface SharedBudget {
+  name: string
+  race: string
+  date: string
+  madeAt: string
+  learned: boolean
+  budget: BudgetDocument
+}
