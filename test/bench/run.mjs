@@ -1,6 +1,6 @@
 // Figures for people; what is timed is checked by the measures of the tests, and nothing passes or fails by its time.
 import { execFileSync } from 'node:child_process'
-import { readdirSync, readFileSync } from 'node:fs'
+import { existsSync, readFileSync } from 'node:fs'
 import { fileURLToPath } from 'node:url'
 import { gzipSync } from 'node:zlib'
 
@@ -11,6 +11,22 @@ execFileSync(process.execPath, [START, '--build-only'], { stdio: ['ignore', 'ign
 const { chainBench } = await import('./chain.mjs')
 const { dayBench } = await import('./day.mjs')
 const { startUpBench } = await import('./start-up.mjs')
+const { streamsBench } = await import('./streams.mjs')
+
+/** Scripts and styles that a page names, and those that they name in turn. */
+function loadedBy(page) {
+  const found = new Set()
+  const look = (text) => {
+    for (const [name] of text.matchAll(/[\w-]+-[\w-]{8}\.(?:js|css)/g)) {
+      const file = `assets/${name}`
+      if (found.has(file) || !existsSync(new URL(file, ASSETS))) continue
+      found.add(file)
+      look(readFileSync(new URL(file, ASSETS), 'utf8'))
+    }
+  }
+  look(readFileSync(new URL(page, ASSETS), 'utf8'))
+  return [...found]
+}
 
 const say = (what, figure, note) => console.log(`${what.padEnd(46)} ${figure.padStart(12)}  ${note}`)
 const ms = (value) => `${value.toFixed(2)} ms`
@@ -30,6 +46,18 @@ say('chain day over 600 km day', (chain.ms / day.ms).toFixed(2), 'ratio in this 
 const { firstS, secondS } = await startUpBench()
 say('first start, demo race loaded', `${firstS.toFixed(1)} s`, 'empty data folder, already built')
 say('second start', `${secondS.toFixed(1)} s`, '')
-const files = readdirSync(ASSETS, { recursive: true }).filter((name) => /\.(js|css)$/.test(name))
-const bytes = files.reduce((sum, name) => sum + gzipSync(readFileSync(new URL(name, ASSETS))).length, 0)
-say('client, JS and CSS, gzip', `${(bytes / 1000).toFixed(1)} kB`, `${files.length} files`)
+const streams = await streamsBench(500)
+say(
+  '500 open streams hear of a reading, p99',
+  ms(streams.p99Ms),
+  `from its sending; first ${ms(streams.firstMs)}, p99 of the rest ${ms(streams.spreadMs)} later`,
+)
+for (const page of ['index.html', 'share.html']) {
+  const files = loadedBy(page)
+  const bytes = files.reduce((sum, name) => sum + gzipSync(readFileSync(new URL(name, ASSETS))).length, 0)
+  say(
+    `JS and CSS of ${page}, gzip`,
+    `${(bytes / 1000).toFixed(1)} kB`,
+    `${files.length} files, screens opened later included`,
+  )
+}
