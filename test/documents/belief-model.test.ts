@@ -43,8 +43,9 @@ describe('a car without readings', () => {
     const measured = (spreadPct: number) =>
       carDocument.parse({
         ...someCar(),
-        trackers: someCar().trackers.map(({ losses: _, ...rest }) => ({
-          ...rest,
+        trackers: someCar().trackers.map((tracker) => ({
+          ...tracker,
+          losses: undefined,
           bench: bench.map((point) => ({ ...point, spreadPct })),
         })),
       })
