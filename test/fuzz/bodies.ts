@@ -18,7 +18,7 @@ const onlyOne = (mutated: Mutated): WrongBody => ({ ...mutated, isOneOff: true }
 const more = (mutated: Mutated): WrongBody => ({ ...mutated, isOneOff: false })
 
 /** A JSON body: mostly with one value wrong, else with one byte, several values or all bytes wrong. */
-function wrongJson(by: Chance, document: unknown, schema: JsonSchema): WrongBody {
+export function wrongJson(by: Chance, document: unknown, schema: JsonSchema): WrongBody {
   const sort = by.below(100)
   if (sort < 74) return onlyOne(mutatedJson(by, document, schema))
   if (sort < 86) return onlyOne(oneByte(by, JSON.stringify(document)))
@@ -28,7 +28,7 @@ function wrongJson(by: Chance, document: unknown, schema: JsonSchema): WrongBody
 
 const schemas = new Map<z.ZodType, JsonSchema>()
 
-function publishedOnce(schema: z.ZodType): JsonSchema {
+export function publishedOnce(schema: z.ZodType): JsonSchema {
   const known = schemas.get(schema) ?? published(schema)
   schemas.set(schema, known)
   return known

@@ -25,6 +25,11 @@ const FIELDLESS = new Set([
   'no-such-forecast',
   'no-such-example',
   'too-large',
+  'not-signed-in',
+  'link-revoked',
+  'no-such-reading',
+  'no-such-link',
+  'nothing-followed',
 ])
 
 /** Largest refusal: a hundred problems in a line or two each. [bytes] */
