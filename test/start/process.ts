@@ -38,7 +38,8 @@ export function run(command: string[], env: Record<string, string>, cwd = ROOT):
     for (;;) {
       const found = pattern.exec(out)
       if (found !== null) return found[1]
-      if (child.exitCode !== null) throw new Error(`it ended with ${child.exitCode}:\n${out}${err}`)
+      if (child.exitCode !== null || child.signalCode !== null)
+        throw new Error(`it ended with ${child.exitCode ?? child.signalCode}:\n${out}${err}`)
       await Promise.race([once(child.stdout, 'data'), ended])
     }
   }

@@ -64,7 +64,8 @@ describe('the service', () => {
   test('prints its address and at first the owner’s link, finishes what it has begun, and keeps what it saved', {
     timeout: START_LIMIT_MS,
   }, async () => {
-    const first = run(MAIN, env())
+    const own = env({ DATA_DIR: join(folder, 'kept') })
+    const first = run(MAIN, own)
     const address = await first.address()
     const authorization = `Bearer ${await first.ownerToken()}`
     await first.printed(/^(Phones .*)\n/m)
@@ -80,7 +81,7 @@ describe('the service', () => {
     first.child.kill('SIGTERM')
     expect((await saving).status).toBe(201)
     expect(await first.ended).toBe(0)
-    const second = run(MAIN, env())
+    const second = run(MAIN, own)
     expect((await fetch(`${await second.address()}/api/v1/cars/kept`, { headers })).status).toBe(200)
     expect(second.out()).not.toContain('Owner')
     second.child.kill('SIGINT')
