@@ -13,15 +13,15 @@ const { dayBench } = await import('./day.mjs')
 const { startUpBench } = await import('./start-up.mjs')
 const { streamsBench } = await import('./streams.mjs')
 
-/** Scripts and styles that a page names, and those that they name in turn. */
-function loadedBy(page) {
+/** Scripts and styles that a page names and, if wanted, those that they name in turn. */
+function loadedBy(page, isDeep) {
   const found = new Set()
   const look = (text) => {
     for (const [name] of text.matchAll(/[\w-]+-[\w-]{8}\.(?:js|css)/g)) {
       const file = `assets/${name}`
       if (found.has(file) || !existsSync(new URL(file, ASSETS))) continue
       found.add(file)
-      look(readFileSync(new URL(file, ASSETS), 'utf8'))
+      if (isDeep) look(readFileSync(new URL(file, ASSETS), 'utf8'))
     }
   }
   look(readFileSync(new URL(page, ASSETS), 'utf8'))
@@ -52,12 +52,14 @@ say(
   ms(streams.p99Ms),
   `from its sending; first ${ms(streams.firstMs)}, p99 of the rest ${ms(streams.spreadMs)} later`,
 )
+const weight = (files) => files.reduce((sum, name) => sum + gzipSync(readFileSync(new URL(name, ASSETS))).length, 0)
 for (const page of ['index.html', 'share.html']) {
-  const files = loadedBy(page)
-  const bytes = files.reduce((sum, name) => sum + gzipSync(readFileSync(new URL(name, ASSETS))).length, 0)
+  const first = loadedBy(page, false)
+  const all = loadedBy(page, true)
+  const later = `${(weight(all) / 1000).toFixed(1)} kB with the screens opened later`
   say(
-    `JS and CSS of ${page}, gzip`,
-    `${(bytes / 1000).toFixed(1)} kB`,
-    `${files.length} files, screens opened later included`,
+    `JS and CSS that ${page} loads, gzip`,
+    `${(weight(first) / 1000).toFixed(1)} kB`,
+    `${first.length} files; ${later}`,
   )
 }
