@@ -73,12 +73,12 @@ function placeIn(by: Chance, document: unknown): { path: Path; value: unknown } 
 function editsOf(by: Chance, path: Path, value: unknown, schema: JsonSchema): Edit[] {
   const here = (odd: Odd): Edit => ({ ...odd, path })
   const gone: Edit = { what: 'left out', value: undefined, isWrong: false, path }
-  const any = path.length === 0 ? [] : [gone, here(by.pick(ODD))]
-  if (typeof value === 'number') return [...any, ...ODD_NUMBERS.map(here), ...beyondLimits(path, schema)]
-  if (typeof value === 'string') return [...any, ...ODD_TEXTS.map(here), ...oddOfSort(value, path)]
-  if (typeof value === 'boolean') return [...any, here({ what: 'true as text', value: 'true', isWrong: true })]
-  if (Array.isArray(value)) return [...any, ...listEdits(by, path, value)]
-  return isObject(value) ? [...any, ...objectEdits(by, path, value)] : any
+  const anywhere = path.length === 0 ? [] : [gone, here(by.pick(ODD))]
+  if (typeof value === 'number') return [...anywhere, ...ODD_NUMBERS.map(here), ...beyondLimits(path, schema)]
+  if (typeof value === 'string') return [...anywhere, ...ODD_TEXTS.map(here), ...oddOfSort(value, path)]
+  if (typeof value === 'boolean') return [...anywhere, here({ what: 'true as text', value: 'true', isWrong: true })]
+  if (Array.isArray(value)) return [...anywhere, ...listEdits(by, path, value)]
+  return isObject(value) ? [...anywhere, ...objectEdits(by, path, value)] : anywhere
 }
 
 /** One past each end of the range, well past it, and each end itself. */
