@@ -1,7 +1,7 @@
 import { describe, expect, test } from 'vitest'
 import { carBelief, carEvidence, learnedOf, strangers } from '../../server/documents/belief-model.ts'
 import { type CarInput, carDocument } from '../../server/documents/car.ts'
-import { trackerModel } from '../../server/documents/car-model.ts'
+import { trackerModel } from '../../server/documents/tracker-model.ts'
 import { judgeReadings } from '../../server/documents/judgement.ts'
 import { readingDocument, type ReadingDocument } from '../../server/documents/reading.ts'
 import { judgeInOrder } from '../../server/engine/reading-log.ts'

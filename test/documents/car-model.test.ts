@@ -1,5 +1,6 @@
 import { describe, expect, test } from 'vitest'
-import { carModel, trackerModel } from '../../server/documents/car-model.ts'
+import { carModel } from '../../server/documents/car-model.ts'
+import { trackerModel } from '../../server/documents/tracker-model.ts'
 import { carDocument } from '../../server/documents/car.ts'
 import type { CarInput } from '../../server/documents/car.ts'
 import { someCar } from '../support/scenario.ts'

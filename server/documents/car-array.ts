@@ -1,0 +1,66 @@
+import { z } from 'zod'
+import { count, label, quantity } from './quantity.ts'
+
+/** One kind of cell by the five values of its single diode. */
+export const cellType = z.strictObject({
+  lightCurrentA: quantity(0.01, 30, 'light current of one cell at 1000 W/m² and 25 °C [A]'),
+  saturationCurrentA: quantity(1e-30, 1e-3, 'diode saturation current at 25 °C [A]'),
+  seriesOhm: quantity(0, 0.5, 'series resistance of one cell [Ω]'),
+  shuntOhm: quantity(0.05, 1e6, 'shunt resistance of one cell at 1000 W/m² [Ω]'),
+  idealityFactor: quantity(0.5, 3, 'diode ideality factor'),
+  lightCurrentAPerC: quantity(-0.05, 0.05, 'change of light current with temperature [A/°C]'),
+  bandGapEv: quantity(0.5, 2.5, 'band gap at 25 °C [eV]').default(1.121),
+  bandGapPerC: quantity(-0.01, 0, 'relative change of the band gap with temperature [1/°C]').default(-0.0002677),
+})
+
+const cooling = z.discriminatedUnion('kind', [
+  z.strictObject({
+    kind: z.literal('car-body'),
+    lengthM: quantity(0.1, 6, 'length of the surface along the airflow [m]').default(2),
+    parkedWm2PerC: quantity(5, 60, 'least heat loss, parked in still air [W/(m²·°C)]').default(17),
+    heatPct: quantity(10, 100, 'share of the light that turns to heat: absorbed less made into power [%]').default(67),
+  }),
+  z.strictObject({
+    kind: z.literal('faiman'),
+    u0Wm2PerC: quantity(1, 100, 'Faiman constant heat loss [W/(m²·°C)]'),
+    u1WsM3PerC: quantity(0, 50, 'Faiman heat loss with wind [W·s/(m³·°C)]'),
+  }),
+])
+
+/** One flat facet of the array. */
+export const panel = z.strictObject({
+  name: label('name of the panel'),
+  pitchDeg: quantity(-60, 60, 'pitch on the car, positive tips the face forward [°]').default(0),
+  rollDeg: quantity(-60, 60, 'roll on the car, positive tips the face to the right [°]').default(0),
+  lifts: z.boolean().describe('whether the panel is lifted to the sun when parked').default(false),
+  cooling: cooling.default({ kind: 'car-body', lengthM: 2, parkedWm2PerC: 17, heatPct: 67 }),
+  glass: z
+    .enum(['martin-ruiz', 'physical', 'ashrae', 'none'])
+    .describe('incidence-angle modifier; none: no loss at any angle')
+    .default('martin-ruiz'),
+})
+
+/** Cells in series on one tracker. */
+export const string = z.strictObject({
+  name: label('name of the string'),
+  tracker: label('name of the tracker that holds it'),
+  cellType: label('name of its cell type'),
+  cells: z
+    .array(z.strictObject({ panel: label('name of the panel'), inSeries: count(1, 500, 'cells in series there') }))
+    .min(1)
+    .max(12),
+  inParallel: count(1, 20, 'such rows of cells in parallel').default(1),
+  soilingPct: quantity(0, 90, 'light lost to dust [%]').default(0),
+  bypassDropV: quantity(0, 2, 'forward drop of a bypass diode [V]').default(0.5),
+})
+
+/** How the lifted array can be held. */
+export const stand = z
+  .strictObject({
+    tiltMinDeg: quantity(0, 90, 'least tilt from flat [°]').default(0),
+    tiltMaxDeg: quantity(0, 90, 'most tilt from flat [°]'),
+    azimuthFromDeg: quantity(0, 360, 'start of the arc it can face, clockwise from north [°]').default(0),
+    azimuthToDeg: quantity(0, 360, 'end of the arc it can face [°]').default(360),
+  })
+  .optional()
+  .describe('limits of the stand that lifts the array; left out: the array stays flat')
