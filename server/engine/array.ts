@@ -11,9 +11,9 @@ import {
   panelLight,
   skyBlock,
 } from './panel-light.ts'
-import { bestOfCells, exactBestOfCells, type PowerTable, powerTable } from './power-table.ts'
 import { aimAtSun, type Stand } from './stand.ts'
-import { type StringModel, stringBest, stringPowerAtV } from './string.ts'
+import { fillStrings, type PreparedStrings, prepareStrings } from './string-harvest.ts'
+import type { StringModel } from './string.ts'
 
 /** One flat facet of the array. */
 export interface Panel {
@@ -44,10 +44,7 @@ export interface ArrayModel {
 export interface PreparedArray {
   model: ArrayModel
   panels: LitPanel[]
-  /** Table of a string's cells; null for strings that span panels. */
-  tables: (PowerTable | null)[]
-  /** Index of the first string that is just like this one. */
-  firstAlike: number[]
+  strings: PreparedStrings
 }
 
 /** Steps to work out: weather and the car's pose. */
@@ -78,14 +75,6 @@ export interface ArrayHarvest {
  */
 export function prepareArray(model: ArrayModel): PreparedArray {
   checkArray(model)
-  const tables = new Map<string, PowerTable>()
-  const tableOf = (string: StringModel): PowerTable | null => {
-    if (string.groups.length > 1) return null
-    const key = JSON.stringify(string.cell)
-    const table = tables.get(key) ?? powerTable(string.cell)
-    tables.set(key, table)
-    return table
-  }
   const covers = new Map<IncidenceLaw, Float64Array>()
   const coverOf = (law: IncidenceLaw): Float64Array | null => {
     if (law === 'none') return null
@@ -93,7 +82,6 @@ export function prepareArray(model: ArrayModel): PreparedArray {
     covers.set(law, table)
     return table
   }
-  const kinds = model.strings.map((string) => JSON.stringify({ ...string, name: '' }))
   return {
     model,
     panels: model.panels.map((panel) => ({
@@ -104,8 +92,7 @@ export function prepareArray(model: ArrayModel): PreparedArray {
       losesDiffuse: panel.incidence !== 'none' && panel.diffuseIncidence !== 'none',
       loss: heatLoss(panel.cooling),
     })),
-    tables: model.strings.map(tableOf),
-    firstAlike: kinds.map((kind) => kinds.indexOf(kind)),
+    strings: prepareStrings(model.strings),
   }
 }
 
@@ -123,7 +110,7 @@ export function arrayHarvest(array: PreparedArray, steps: ArraySteps): ArrayHarv
   const count = steps.weather.dniWm2.length
   checkSteps(array.model, steps, count)
   const perPanel = (): Float64Array[] => array.panels.map(() => new Float64Array(count))
-  const perString = (): Float64Array[] => array.tables.map(() => new Float64Array(count))
+  const perString = (): Float64Array[] => array.model.strings.map(() => new Float64Array(count))
   const harvest = {
     bestW: perString(),
     bestV: perString(),
@@ -134,7 +121,7 @@ export function arrayHarvest(array: PreparedArray, steps: ArraySteps): ArrayHarv
     aimAzimuthRad: new Float64Array(count).fill(Number.NaN),
   }
   lightPanels(array, steps, harvest)
-  array.tables.forEach((_, index) => fillString(array, index, harvest, steps.exact === true))
+  fillStrings(array.strings, harvest, steps.exact === true)
   return harvest
 }
 
@@ -171,57 +158,4 @@ function fillAim(
     aim.tiltRad[i] = tiltRad
     aim.azimuthRad[i] = azimuthRad
   }
-}
-
-function fillString(array: PreparedArray, index: number, harvest: ArrayHarvest, exact: boolean): void {
-  const out = { W: harvest.bestW[index], V: harvest.bestV[index] }
-  const first = array.firstAlike[index]
-  if (first !== index) {
-    out.W.set(harvest.bestW[first])
-    out.V.set(harvest.bestV[first])
-    return
-  }
-  const string = array.model.strings[index]
-  const table = array.tables[index]
-  if (table === null) return fillSpanningString(string, harvest, out)
-  const { panel, cellsInSeries } = string.groups[0]
-  const scale = {
-    cleanFraction: 1 - string.soilingFraction,
-    cellsInSeries,
-    cells: cellsInSeries * string.cellsInParallel,
-  }
-  const light = { effectiveWm2: harvest.effectiveWm2[panel], cellC: harvest.cellC[panel] }
-  if (exact) exactBestOfCells(string.cell, scale, light, out)
-  else bestOfCells(table, scale, light, out)
-}
-
-function fillSpanningString(
-  string: StringModel,
-  harvest: ArrayHarvest,
-  out: { W: Float64Array; V: Float64Array },
-): void {
-  for (let i = 0; i < out.W.length; i++) {
-    const best = stringBest(string, lightAt(harvest.effectiveWm2, i), lightAt(harvest.cellC, i))
-    out.W[i] = best.W
-    out.V[i] = best.V
-  }
-}
-
-const lightAt = (perPanel: Float64Array[], step: number): number[] => perPanel.map((steps) => steps[step])
-
-/**
- * Power of a string at a step when its tracker holds it at a voltage off its best; exact.
- *
- * @param volts  voltage over the string, ≥ 0. [V]
- * @returns power of the string, 0 at and above its open-circuit voltage. [W]
- */
-export function offBestW(
-  array: PreparedArray,
-  stringIndex: number,
-  stepIndex: number,
-  harvest: ArrayHarvest,
-  volts: number,
-): number {
-  const string = array.model.strings[stringIndex]
-  return stringPowerAtV(string, lightAt(harvest.effectiveWm2, stepIndex), lightAt(harvest.cellC, stepIndex), volts)
 }

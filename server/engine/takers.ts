@@ -1,6 +1,6 @@
-import { offBestW } from './array.ts'
 import type { ArrayHarvest } from './array.ts'
 import type { Car, Energy, TrackerDay } from './balance.ts'
+import { offBestW } from './string-harvest.ts'
 import { inputForOutputW, newOperatingPoint, operatingPoint, trackerOutputW } from './tracker.ts'
 import type { TrackerLimit } from './tracker.ts'
 

@@ -5,13 +5,13 @@ import {
   type ArrayModel,
   type ArraySteps,
   arrayHarvest,
-  offBestW,
   type Panel,
   prepareArray,
 } from '../../server/engine/array.ts'
 import { iamPhysical, martinRuizGround, martinRuizSky } from '../../server/engine/incidence.ts'
 import { liftedNormal } from '../../server/engine/panel-light.ts'
 import { aimAtSun, type Stand } from '../../server/engine/stand.ts'
+import { offBestW } from '../../server/engine/string-harvest.ts'
 import { stringBest, type StringModel } from '../../server/engine/string.ts'
 
 const RAD = Math.PI / 180
