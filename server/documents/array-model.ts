@@ -46,12 +46,19 @@ function panelModel(panel: CarDocument['panels'][number]): Panel {
     incidence: panel.glass,
     cooling:
       panel.cooling.kind === 'faiman'
-        ? { kind: 'faiman', u0: panel.cooling.u0Wm2PerC, u1: panel.cooling.u1WsM3PerC }
+        ? {
+            kind: 'faiman',
+            u0: panel.cooling.u0Wm2PerC,
+            u1: panel.cooling.u1WsM3PerC,
+            capacityJm2K: panel.cooling.heatCapacityKjM2C * 1000,
+          }
         : {
             ...CAR_COOLING,
             lengthM: panel.cooling.lengthM,
             stillWm2K: panel.cooling.parkedWm2PerC,
             heatFraction: panel.cooling.heatPct / 100,
+            startsLaminar: panel.cooling.laminarStart,
+            capacityJm2K: panel.cooling.heatCapacityKjM2C * 1000,
           },
   }
 }

@@ -13,17 +13,29 @@ export const cellType = z.strictObject({
   bandGapPerC: quantity(-0.01, 0, 'relative change of the band gap with temperature [1/°C]').default(-0.0002677),
 })
 
+const heatCapacity = quantity(
+  0,
+  100,
+  'heat that the panel takes up per degree and area, 0: it follows light and air at once [kJ/(m²·°C)]',
+).default(3)
+
 const cooling = z.discriminatedUnion('kind', [
   z.strictObject({
     kind: z.literal('car-body'),
     lengthM: quantity(0.1, 6, 'length of the surface along the airflow [m]').default(2),
     parkedWm2PerC: quantity(5, 60, 'least heat loss, parked in still air [W/(m²·°C)]').default(17),
     heatPct: quantity(10, 100, 'share of the light that turns to heat: absorbed less made into power [%]').default(67),
+    laminarStart: z
+      .boolean()
+      .describe('whether the airflow starts laminar, as over a clean smooth nose; it then cools less')
+      .default(false),
+    heatCapacityKjM2C: heatCapacity,
   }),
   z.strictObject({
     kind: z.literal('faiman'),
     u0Wm2PerC: quantity(1, 100, 'Faiman constant heat loss [W/(m²·°C)]'),
-    u1WsM3PerC: quantity(0, 50, 'Faiman heat loss with wind [W·s/(m³·°C)]'),
+    u1WsM3PerC: quantity(0, 50, 'Faiman heat loss with wind; wind above 36 km/h counts as 36 km/h [W·s/(m³·°C)]'),
+    heatCapacityKjM2C: heatCapacity,
   }),
 ])
 
@@ -33,7 +45,7 @@ export const panel = z.strictObject({
   pitchDeg: quantity(-60, 60, 'pitch on the car, positive tips the face forward [°]').default(0),
   rollDeg: quantity(-60, 60, 'roll on the car, positive tips the face to the right [°]').default(0),
   lifts: z.boolean().describe('whether the panel is lifted to the sun when parked').default(false),
-  cooling: cooling.default({ kind: 'car-body', lengthM: 2, parkedWm2PerC: 17, heatPct: 67 }),
+  cooling: cooling.default(cooling.parse({ kind: 'car-body' })),
   glass: z
     .enum(['martin-ruiz', 'physical', 'ashrae', 'none'])
     .describe('incidence-angle modifier; none: no loss at any angle')

@@ -1,4 +1,5 @@
 import { z } from 'zod'
+import { FAIMAN_MOST_MPS } from '../engine/cell-temperature.ts'
 import { forecastDay } from '../engine/forecast.ts'
 import type { DayForecast, Opening, Race } from '../engine/forecast.ts'
 import { InputError } from '../engine/input-error.ts'
@@ -61,7 +62,14 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
     car: car.name,
     sky: { name: skyDoc.name, source: skyDoc.source, issuedAt: skyDoc.issuedAt },
     assumptions: [
-      ...new Set([...roadNotes(request), ...learnedNotes(request), ...gapNotes(race), ...assumptions, ...notes]),
+      ...new Set([
+        ...roadNotes(request),
+        ...learnedNotes(request),
+        ...gapNotes(race),
+        ...rackNotes(car),
+        ...assumptions,
+        ...notes,
+      ]),
     ],
     lengthKm: course.lengthM / 1000,
     days,
@@ -170,6 +178,14 @@ function roadNotes({ race, routes }: ForecastRequest): string[] {
 function learnedNotes({ learned = {} }: ForecastRequest): string[] {
   const names = Object.keys(learned)
   return names.length === 0 ? [] : [`Losses are as the readings show them: ${names.join(', ')}.`]
+}
+
+/** An open rack's formula does not hold for a car's speed. */
+function rackNotes({ panels }: ForecastRequest['car']): string[] {
+  const racks = panels.filter((panel) => panel.cooling.kind === 'faiman').map((panel) => panel.name)
+  if (racks.length === 0) return []
+  const limit = `air faster than ${FAIMAN_MOST_MPS * 3.6} km/h counts as ${FAIMAN_MOST_MPS * 3.6} km/h`
+  return [`${racks.join(', ')}: cooled by an open rack’s formula, so ${limit}.`]
 }
 
 /** Ends of roads nearer than this are taken for the same place. [M] */

@@ -60,6 +60,7 @@ export function raceCourse(
       ...stretchOfRoad(stage, field, road.lengthM),
       cutsM: cutsKm(stage.id).map((km) => (stage.fromKm + km) * 1000),
       roughnessM: route.roughnessM,
+      roadHeatC: route.roadHeatC,
       limitMps: route.limitKmh / 3.6,
     }
   })

@@ -36,6 +36,11 @@ export const routeDocument = z
     limitKmh: quantity(5, 200, 'speed limit where no stretch says otherwise [km/h]').default(110),
     roughnessM: quantity(0.0001, 2, 'roughness length of the land beside the road [m]').default(0.03),
     groundAlbedo: quantity(0, 1, 'share of light that the ground beside the car throws back').default(0.2),
+    roadHeatC: quantity(
+      0,
+      30,
+      'by how much the sun warms the air over the panels above the forecast’s, at 1000 W/m² of global light [°C]',
+    ).default(0),
     stretches: z.array(stretch).max(5000).default([]),
   })
   .superRefine((route, context) => {

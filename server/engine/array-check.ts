@@ -22,9 +22,11 @@ function wholeFrom(field: string, value: number, least: number): void {
 }
 
 function checkCooling(field: string, cooling: Cooling): void {
+  within(`${field}.capacityJm2K`, cooling.capacityJm2K ?? 0, 0, 1e6, ' J/m²K')
   if (cooling.kind === 'faiman') {
     positive(`${field}.u0`, cooling.u0, ' W/m²K')
     within(`${field}.u1`, cooling.u1, 0, 100, ' W·s/m³K')
+    within(`${field}.mostMps`, cooling.mostMps ?? 0, 0, Infinity, ' m/s')
     return
   }
   within(`${field}.heatFraction`, cooling.heatFraction, 0, 1, '')
@@ -84,6 +86,11 @@ export function checkSteps(model: ArrayModel, steps: ArraySteps, count: number):
   for (const field of ['headingRad', 'gradeRad', 'airSpeedMps', 'lifted'] as const)
     if (steps[field].length !== count)
       throw new InputError('wrong-length', field, `has ${steps[field].length} steps, expected ${count} as the weather`)
+  for (const field of ['durationS', 'overPanelsC'] as const) {
+    const length = steps[field]?.length ?? count
+    if (length !== count)
+      throw new InputError('wrong-length', field, `has ${length} steps, expected ${count} as the weather`)
+  }
   if (model.stand === null && steps.lifted.includes(1))
     throw new InputError('no-stand', 'lifted', 'is 1 at a step, expected 0 everywhere because the array has no stand')
 }

@@ -1,5 +1,6 @@
 import { checkArray, checkSteps } from './array-check.ts'
-import { type Cooling, heatLoss } from './cell-temperature.ts'
+import { type Cooling, type HeatLoss, heatLoss } from './cell-temperature.ts'
+import { cellWarmth, type WarmthAlong, warmthAlong } from './cell-warmth.ts'
 import { type IncidenceLaw, incidenceTable } from './incidence.ts'
 import {
   type AimAlong,
@@ -50,6 +51,10 @@ export interface PreparedArray {
 /** Steps to work out: weather and the car's pose. */
 export interface ArraySteps extends PoseAlong {
   weather: LightAlong
+  /** Length of each step, without gaps between them; left out, every step is steady. [s] */
+  durationS?: Float64Array
+  /** Air over the panels, where it is not the weather's. [°C] */
+  overPanelsC?: Float64Array
   /** Solves every step exactly instead of reading tables. */
   exact?: boolean
 }
@@ -62,6 +67,7 @@ export interface ArrayHarvest {
   planeWm2: Float64Array[]
   /** After incidence losses, before soiling. */
   effectiveWm2: Float64Array[]
+  /** Mean over the step. */
   cellC: Float64Array[]
   /** NaN where the array is not lifted. */
   aimTiltRad: Float64Array
@@ -82,6 +88,13 @@ export function prepareArray(model: ArrayModel): PreparedArray {
     covers.set(law, table)
     return table
   }
+  const losses = new Map<string, HeatLoss>()
+  const lossOf = (cooling: Cooling): HeatLoss => {
+    const key = JSON.stringify(cooling)
+    const loss = losses.get(key) ?? heatLoss(cooling)
+    losses.set(key, loss)
+    return loss
+  }
   return {
     model,
     panels: model.panels.map((panel) => ({
@@ -90,7 +103,7 @@ export function prepareArray(model: ArrayModel): PreparedArray {
       lifts: panel.lifts,
       beamTable: coverOf(panel.incidence),
       losesDiffuse: panel.incidence !== 'none' && panel.diffuseIncidence !== 'none',
-      loss: heatLoss(panel.cooling),
+      loss: lossOf(panel.cooling),
     })),
     strings: prepareStrings(model.strings),
   }
@@ -99,10 +112,11 @@ export function prepareArray(model: ArrayModel): PreparedArray {
 /**
  * What every string could give at its best point, step by step, and the light and warmth of every panel.
  *
- * Beam, sky and ground on each panel from the apparent sun; cells warmed by all light on the plane; power of one-panel
- * strings from tables (within 0.04 %), of strings over several panels solved exactly with their bypass diodes. Lifted,
- * the car's own up direction is turned to the sun within the stand's limits, and lifting panels keep their pitch and
- * roll on it; the stand holds the array, so grade does not count. Darkness gives exactly 0 W.
+ * Beam, sky and ground on each panel from the apparent sun; cells warmed by all light on the plane, in time where the
+ * steps tell their lengths; power of one-panel strings from tables (within 0.04 %), of strings over several panels
+ * solved exactly with their bypass diodes. Lifted, the car's own up direction is turned to the sun within the stand's
+ * limits, and lifting panels keep their pitch and roll on it; the stand holds the array, so grade does not count.
+ * Darkness gives exactly 0 W.
  *
  * @throws InputError when a list has another length than the weather, or steps are lifted without a stand
  */
@@ -121,6 +135,7 @@ export function arrayHarvest(array: PreparedArray, steps: ArraySteps): ArrayHarv
     aimAzimuthRad: new Float64Array(count).fill(Number.NaN),
   }
   lightPanels(array, steps, harvest)
+  warmPanels(array, steps, harvest)
   fillStrings(array.strings, harvest, steps.exact === true)
   return harvest
 }
@@ -139,10 +154,19 @@ function lightPanels(array: PreparedArray, steps: ArraySteps, harvest: ArrayHarv
         panel,
         { light: steps.weather, pose: steps, aim },
         { from, to, block, albedo },
-        { planeWm2: harvest.planeWm2[p], effectiveWm2: harvest.effectiveWm2[p], cellC: harvest.cellC[p] },
+        { planeWm2: harvest.planeWm2[p], effectiveWm2: harvest.effectiveWm2[p] },
       ),
     )
   }
+}
+
+function warmPanels(array: PreparedArray, steps: ArraySteps, harvest: ArrayHarvest): void {
+  const kinds = new Map<HeatLoss, WarmthAlong>()
+  array.panels.forEach(({ loss }, p) => {
+    const kind = kinds.get(loss) ?? warmthAlong(loss, steps.airSpeedMps, steps.durationS)
+    kinds.set(loss, kind)
+    cellWarmth(kind, steps.overPanelsC ?? steps.weather.airC, harvest.planeWm2[p], harvest.cellC[p])
+  })
 }
 
 function fillAim(

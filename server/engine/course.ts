@@ -11,6 +11,8 @@ export interface StageRoad {
   /** More places of the route that must be edges of pieces, where they lie on the stage. [M] */
   cutsM?: number[]
   roughnessM: number
+  /** Warmth of the air over the panels above the air at 2 m, at 1000 W/m² of global light; left out 0. [K] */
+  roadHeatC?: number
   /** Limit where no stretch has one. [Mps] */
   limitMps: number
 }
@@ -28,6 +30,8 @@ export interface CourseStage {
 export interface Course {
   pieces: Pieces
   roughnessM: Float64Array
+  /** Warmth of the air over the panels above the air at 2 m, at 1000 W/m² of global light. [K] (pieces) */
+  roadHeatC: Float64Array
   stages: CourseStage[]
   lengthM: number
 }
@@ -60,12 +64,14 @@ export function course(roads: StageRoad[]): Course {
   const count = cut.reduce((sum, p) => sum + p.count, 0)
   const joined = Object.fromEntries(['fromM', ...COLUMNS].map((name) => [name, new Float64Array(count)]))
   const roughnessM = new Float64Array(count)
+  const roadHeatC = new Float64Array(count)
   const stages: CourseStage[] = []
   let at = 0
   let startM = 0
   cut.forEach((part, s) => {
     for (const name of COLUMNS) joined[name].set(part[name], at)
     roughnessM.fill(roads[s].roughnessM, at, at + part.count)
+    roadHeatC.fill(roads[s].roadHeatC ?? 0, at, at + part.count)
     const fromM = startM
     for (let i = 0; i < part.count; i++) {
       joined.fromM[at + i] = startM
@@ -74,7 +80,7 @@ export function course(roads: StageRoad[]): Course {
     stages.push({ firstPiece: at, endPiece: at + part.count, fromM, toM: startM })
     at += part.count
   })
-  return { pieces: { count, ...joined } as Pieces, roughnessM, stages, lengthM: startM }
+  return { pieces: { count, ...joined } as Pieces, roughnessM, roadHeatC, stages, lengthM: startM }
 }
 
 /** The pieces of one stage: the route's, cut at the stage's ends. */

@@ -80,6 +80,8 @@ export function forecastDay(
     gradeRad: laid.steps.gradeRad,
     airSpeedMps: laid.air.overPanelsMps,
     lifted: laid.steps.lifted,
+    durationS: durationsS(laid.steps),
+    overPanelsC: airOverPanelsC(laid),
   })
   const energy = balance(car, { ...laid, spans: laid.timetable.spans, harvest }, opening.charge)
   const last = laid.steps.count - 1
@@ -121,6 +123,14 @@ function layOut(race: Race, dayIndex: number, standing: Standing, speedMps: Floa
   if (race.car.array.model.stand === null) cut.lifted.fill(0)
   const weather = weatherAlong(race.sky, path, cut)
   return { course, timetable: table, steps: cut, weather, air: airAtCar(course, cut, weather, race.car.windHeightM) }
+}
+
+const durationsS = ({ fromMs, toMs }: Steps): Float64Array => toMs.map((to, i) => (to - fromMs[i]) / 1000)
+
+/** Air over the panels where a road warms it in proportion to the global light. [°C] (steps) */
+function airOverPanelsC({ course, steps, weather }: Laid): Float64Array {
+  const { roadHeatC } = course
+  return weather.airC.map((airC, i) => airC + roadHeatC[steps.piece[i]] * (weather.ghiWm2[i] / 1000))
 }
 
 function underLimits(course: Course, wantedMps: Float64Array): Float64Array {

@@ -1,4 +1,4 @@
-import { type HeatLoss, heatLossWm2K } from './cell-temperature.ts'
+import type { HeatLoss } from './cell-temperature.ts'
 import { beamShareAt, martinRuizGround, martinRuizSky } from './incidence.ts'
 import { hayDavies, panelNormal, perez, sinOf } from './plane.ts'
 
@@ -103,7 +103,6 @@ export interface AimAlong {
 export interface PanelLight {
   planeWm2: Float64Array
   effectiveWm2: Float64Array
-  cellC: Float64Array
 }
 
 /** A panel's normal on the lifted array: the level car's array tilted about a level axis towards the aim's azimuth. */
@@ -127,7 +126,7 @@ export function liftedNormal(
 }
 
 /**
- * Light on one panel, light that reaches its cells, and their temperature, at steps from..to−1.
+ * Light on one panel and light that reaches its cells, at steps from..to−1.
  *
  * The normal is worked out only when heading or grade change; the angle between sun and panel is a dot product.
  *
@@ -141,18 +140,16 @@ export function panelLight(
   range: { from: number; to: number; block: SkyBlock; albedo: number },
   out: PanelLight,
 ): void {
-  const { ghiWm2, dniWm2, airC } = steps.light
-  const { headingRad, gradeRad, airSpeedMps, lifted } = steps.pose
+  const { ghiWm2, dniWm2 } = steps.light
+  const { headingRad, gradeRad, lifted } = steps.pose
   const { from, to, block, albedo } = range
-  const { beamTable, losesDiffuse, lifts, loss } = panel
+  const { beamTable, losesDiffuse, lifts } = panel
   let normal: [number, number, number] = [0, 0, 1]
   let [east, north, up] = normal
   let [sinTilt, keptSky, keptGround] = [0, 1, 1]
   let lastHeading = Number.NaN
   let lastGrade = Number.NaN
   let wasUp = false
-  let lastAirSpeed = Number.NaN
-  let heating = 0
   for (let i = from, b = 0; i < to; i++, b++) {
     const isUp = lifts && lifted[i] === 1
     if (isUp || wasUp || headingRad[i] !== lastHeading || gradeRad[i] !== lastGrade) {
@@ -171,10 +168,6 @@ export function panelLight(
         keptGround = martinRuizGround(up)
       }
     }
-    if (airSpeedMps[i] !== lastAirSpeed) {
-      lastAirSpeed = airSpeedMps[i]
-      heating = loss.heatFraction / heatLossWm2K(loss, lastAirSpeed)
-    }
     const cos = Math.min(1, Math.max(0, east * block.sunEast[b] + north * block.sunNorth[b] + up * block.sunUp[b]))
     const beam = dniWm2[i] * cos
     const aroundSun = block.aroundSunWm2[b] * cos
@@ -191,6 +184,5 @@ export function panelLight(
     }
     out.planeWm2[i] = plane
     out.effectiveWm2[i] = effective
-    out.cellC[i] = airC[i] + plane * heating
   }
 }

@@ -92,7 +92,7 @@ export function chainArray(chain, incidence) {
     bandGapEv: string.EgRef,
     bandGapPerC: string.dEgdT,
   }
-  const cooling = { kind: 'faiman', ...chain.faiman }
+  const cooling = { kind: 'faiman', ...chain.faiman, mostMps: Infinity }
   return {
     panels: chain.panels.map((panel) => ({
       pitchRad: panel.pitch_deg * RAD,
