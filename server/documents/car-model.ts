@@ -21,6 +21,7 @@ export function carModel(car: CarDocument, surroundings: Surroundings, learned: 
     windHeightM: body.windHeightM,
     auxDrivingW: auxiliaries.drivingW,
     auxParkedW: auxiliaries.parkedW,
+    auxChargingW: auxiliaries.chargingW ?? auxiliaries.parkedW,
     array: arrayModel(car, surroundings),
     trackers: car.strings.map((s) => {
       const model = trackerModel(car.trackers.find((t) => t.name === s.tracker) ?? car.trackers[0])

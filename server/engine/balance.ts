@@ -20,6 +20,8 @@ export interface Car {
   windHeightM: number
   auxDrivingW: number
   auxParkedW: number
+  /** Parked with trackers at work. */
+  auxChargingW: number
   array: PreparedArray
   trackers: Tracker[]
   pack: Pack
@@ -102,7 +104,7 @@ export function balance(car: Car, day: BalanceDay, charge: number): Balance {
     const sums = out.spans[steps.span[i]]
     const durationS = (steps.toMs[i] - steps.fromMs[i]) / 1000
     const isDriving = spans[steps.span[i]].kind === 'drive'
-    const auxW = isDriving ? car.auxDrivingW : car.auxParkedW
+    const auxW = isDriving ? car.auxDrivingW : steps.charging[i] === 1 ? car.auxChargingW : car.auxParkedW
     if (isDriving) roadEnergy(car, day, roadStep(steps, i, durationS), road)
     else resetRoad(road)
     if (steps.charging[i] === 1) taken.take(i, packV)

@@ -2,6 +2,7 @@ import type { Course } from './course.ts'
 import { attainableSpeedMps } from './drive.ts'
 import type { Drive } from './drive.ts'
 import { BRAKING_MPS2, STARTING_MPS2 } from './road-energy.ts'
+import { tyreFactor } from './road.ts'
 import type { Going, RoadLoad } from './road.ts'
 import type { Weather } from './sky.ts'
 import type { Steps } from './steps.ts'
@@ -14,6 +15,7 @@ export interface Air {
   /** Speed of the air over the panels. */
   overPanelsMps: Float64Array
   densityKgM3: Float64Array
+  airC: Float64Array
 }
 
 /** Below this a car does not count as able to climb. [Mps] */
@@ -28,7 +30,7 @@ export const CRAWL_MPS = 1
 export function airAtCar(
   course: Course,
   steps: Steps,
-  weather: Pick<Weather, 'windMps' | 'windFromRad' | 'densityKgM3'>,
+  weather: Pick<Weather, 'windMps' | 'windFromRad' | 'densityKgM3' | 'airC'>,
   windHeightM: number,
 ): Air {
   const n = steps.count
@@ -37,6 +39,7 @@ export function airAtCar(
     crosswindMps: new Float64Array(n),
     overPanelsMps: new Float64Array(n),
     densityKgM3: weather.densityKgM3,
+    airC: weather.airC,
   }
   let roughnessM = Number.NaN
   let share = 0
@@ -91,7 +94,7 @@ export function limitByMotor(
     if (steps.speedMps[i] === 0) continue
     const piece = steps.piece[i]
     going.gradeRad = steps.gradeRad[i]
-    going.surfaceFactor = course.pieces.surfaceFactor[piece]
+    going.surfaceFactor = course.pieces.surfaceFactor[piece] * tyreFactor(car.load, air.airC[i])
     going.headwindMps = air.headwindMps[i]
     going.crosswindMps = air.crosswindMps[i]
     going.densityKgM3 = air.densityKgM3[i]

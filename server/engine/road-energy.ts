@@ -2,7 +2,7 @@ import type { Course } from './course.ts'
 import { wheelToBus } from './drive.ts'
 import type { BusPower, Drive } from './drive.ts'
 import type { Air } from './motion.ts'
-import { climbingN, dragN, kineticJ, rollingN } from './road.ts'
+import { climbingN, dragN, kineticJ, rollingN, tyreFactor } from './road.ts'
 import type { RoadLoad } from './road.ts'
 import type { Steps } from './steps.ts'
 
@@ -63,30 +63,37 @@ export function roadEnergy(
   // Places run along the map; the wheels run along the slope.
   const lengthM = (steps.toM[i] - steps.fromM[i]) / Math.cos(steps.gradeRad[i])
   const kinetic = kineticJ(load, speedMps)
-  out.rollingJ = rollingN(load, speedMps, steps.gradeRad[i], course.pieces.surfaceFactor[piece]) * lengthM
+  const surface = course.pieces.surfaceFactor[piece] * tyreFactor(load, air.airC[i])
+  out.rollingJ = rollingN(load, speedMps, steps.gradeRad[i], surface) * lengthM
   out.dragJ = dragN(load, speedMps, air.headwindMps[i], air.crosswindMps[i], air.densityKgM3[i]) * lengthM
   out.climbingJ = climbingN(load, steps.gradeRad[i]) * lengthM
   const movedJ = out.rollingJ + out.dragJ + out.climbingJ + kinetic - kineticJ(load, step.beforeMps)
   const gainMps = speedMps - step.beforeMps
   out.changeS = gainMps > 0 ? gainMps / STARTING_MPS2 : -gainMps / BRAKING_MPS2
   const overS = Math.max(durationS, out.changeS)
-  wheelToBus(drive, movedJ / overS, bus)
+  wheelToBus(drive, movedJ / overS, speedMps, bus)
   out.busJ = bus.busW * overS
   out.lossJ = bus.lossW * overS
   out.brakedJ = bus.brakedW * overS
   if (step.endsInHalt) out.changeS += speedMps / BRAKING_MPS2
   const halts = course.pieces.haltsPerM[piece] * lengthM
-  if (halts > 0) addChange(out, drive, { kineticJ: kinetic, overS: speedMps / STARTING_MPS2, times: halts })
+  if (halts > 0)
+    addChange(out, drive, { kineticJ: kinetic, meanMps: speedMps / 2, overS: speedMps / STARTING_MPS2, times: halts })
   const stops = halts + (step.endsInHalt ? 1 : 0)
-  if (stops > 0) addChange(out, drive, { kineticJ: -kinetic, overS: speedMps / BRAKING_MPS2, times: stops })
+  if (stops > 0)
+    addChange(out, drive, { kineticJ: -kinetic, meanMps: speedMps / 2, overS: speedMps / BRAKING_MPS2, times: stops })
   return out
 }
 
 /** Books `times` accelerations (positive) or brakings (negative) of one kinetic energy each. */
-function addChange(out: RoadEnergy, drive: Drive, change: { kineticJ: number; overS: number; times: number }): void {
+function addChange(
+  out: RoadEnergy,
+  drive: Drive,
+  change: { kineticJ: number; meanMps: number; overS: number; times: number },
+): void {
   if (!(change.overS > 0)) return
   const totalS = change.overS * change.times
-  wheelToBus(drive, change.kineticJ / change.overS, bus)
+  wheelToBus(drive, change.kineticJ / change.overS, change.meanMps, bus)
   out.busJ += bus.busW * totalS
   out.lossJ += bus.lossW * totalS
   out.brakedJ += bus.brakedW * totalS

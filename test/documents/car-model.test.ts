@@ -23,6 +23,36 @@ describe('the car in the engine’s units', () => {
     expect([auxDrivingW, auxParkedW, reserveCharge]).toEqual([30, 6, 0.1])
   })
 
+  test('tyres, yaw and what draws: per cent to shares, degrees to radians, and nothing where nothing is given', () => {
+    const plain = model()
+    expect(plain.load).toMatchObject({ rollingPerC: 0, rollingAtC: 20 })
+    expect(plain.load.yaw).toBeUndefined()
+    expect(plain.drive.losses).toBeUndefined()
+    expect(plain.auxChargingW).toBe(6)
+    const { load, auxChargingW, auxParkedW } = model((car) => {
+      car.body = { ...car.body, rollingPctPerC: 0.86, rollingAtC: 25 }
+      car.body.dragByYaw = [0, 90].map((yawDeg) => ({ yawDeg, factor: 1 + yawDeg / 300 }))
+      car.auxiliaries.chargingW = 14
+    })
+    expect(load.rollingPerC).toBeCloseTo(0.0086, 12)
+    expect(load.rollingAtC).toBe(25)
+    expect([...(load.yaw?.angleRad ?? [])]).toEqual([0, expect.closeTo(Math.PI / 2, 12)])
+    expect([...(load.yaw?.factor ?? [])]).toEqual([1, 1.3])
+    expect([auxChargingW, auxParkedW]).toEqual([14, 6])
+  })
+
+  test('limits of braking: km/h, rpm and torque at the wheels, with one efficiency or with losses', () => {
+    const braking = { regenerationMaxNm: 56, regenerationFromKmh: 18, motorMaxRpm: 1000, gearRatio: 2 }
+    const { drive } = model((car) => void (car.drive = { ...car.drive, ...braking, regenerationBusMaxW: 900 }))
+    expect(drive.brakingMaxN).toBeCloseTo(56 / 0.28, 9)
+    expect(drive.brakingFromMps).toBeCloseTo(5, 12)
+    // 1000 rpm of the motor are 500 of the wheel: 52.36 rad/s · 0.28 m
+    expect(drive.topMps).toBeCloseTo(14.6608, 4)
+    expect(drive).toMatchObject({ brakingMaxW: 2000, regenMaxW: 900 })
+    const losses = { phaseOhm: 0.05, torqueNmPerA: 1.2 }
+    expect(model((car) => void (car.drive = { ...car.drive, losses })).drive.regenMaxW).toBe(2000)
+  })
+
   // 30s14p of 3.35 Ah and 45 mΩ with 20 mΩ of leads: 46.9 Ah, 0.1164 Ω, worked by hand
   test('the pack from its cells: volts in series, charge and current in parallel, resistance of both', () => {
     const { pack } = model()

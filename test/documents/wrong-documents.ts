@@ -105,6 +105,39 @@ export const CASES: [
     { field: 'drive.efficiencyPct', value: '101', detail: 'expected at most 100' },
   ],
   [
+    'yaw that does not start ahead',
+    carDocument,
+    { ...someCar(), body: { ...someCar().body, dragByYaw: [0, 20].map((yawDeg) => ({ yawDeg, factor: 1 })) } },
+    ['body', 'dragByYaw', 0, 'yawDeg'],
+    5,
+    { field: 'body.dragByYaw[0].yawDeg', value: '5', detail: 'expected 0 in the first row' },
+  ],
+  [
+    'a map of the drive with a row missing',
+    carDocument,
+    {
+      ...someCar(),
+      drive: {
+        ...someCar().drive,
+        map: { speedRpm: [100, 800], torqueNm: [2, 20], efficiencyPct: Array(2).fill([90, 95]) },
+      },
+    },
+    ['drive', 'map', 'efficiencyPct'],
+    [[90, 95]],
+    { field: 'drive.map.efficiencyPct', detail: 'expected as many rows as torqueNm (2)' },
+  ],
+  [
+    'losses and a map of one drive',
+    carDocument,
+    {
+      ...someCar(),
+      drive: { ...someCar().drive, losses: { phaseOhm: 0.05, torqueNmPerA: 1.2 } },
+    },
+    ['drive', 'map'],
+    { speedRpm: [100, 800], torqueNm: [2, 20], efficiencyPct: Array(2).fill([90, 95]) },
+    { field: 'drive.map', detail: 'expected either losses or map, not both' },
+  ],
+  [
     'half a cell',
     carDocument,
     someCar(),

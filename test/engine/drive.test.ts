@@ -6,21 +6,21 @@ import { DRIVE, LEVEL, LOAD } from './invented-car.ts'
 
 describe('from the wheels to the bus', () => {
   it('driving costs the drive its share', () => {
-    const power = wheelToBus(DRIVE, 960)
+    const power = wheelToBus(DRIVE, 960, 20)
     expect(power).toEqual({ busW: 1000, lossW: 40, brakedW: 0 })
   })
 
   it('braking gives back what it can and brakes the rest', () => {
-    expect(wheelToBus(DRIVE, -1000)).toEqual({ busW: -800, lossW: 200, brakedW: 0 })
-    expect(wheelToBus(DRIVE, -5000)).toEqual({ busW: -1500, lossW: 375, brakedW: 3125 })
-    expect(wheelToBus({ ...DRIVE, regenMaxW: 0 }, -5000)).toEqual({ busW: 0, lossW: 0, brakedW: 5000 })
-    expect(wheelToBus({ ...DRIVE, regenEfficiency: 0 }, -5000)).toEqual({ busW: 0, lossW: 0, brakedW: 5000 })
+    expect(wheelToBus(DRIVE, -1000, 20)).toEqual({ busW: -800, lossW: 200, brakedW: 0 })
+    expect(wheelToBus(DRIVE, -5000, 20)).toEqual({ busW: -1500, lossW: 375, brakedW: 3125 })
+    expect(wheelToBus({ ...DRIVE, regenMaxW: 0 }, -5000, 20)).toEqual({ busW: 0, lossW: 0, brakedW: 5000 })
+    expect(wheelToBus({ ...DRIVE, regenEfficiency: 0 }, -5000, 20)).toEqual({ busW: 0, lossW: 0, brakedW: 5000 })
   })
 
   it('every watt has a name', () => {
     fc.assert(
       fc.property(fc.double({ min: -20_000, max: 20_000, noNaN: true }), (wheelW) => {
-        const power = wheelToBus(DRIVE, wheelW)
+        const power = wheelToBus(DRIVE, wheelW, 20)
         expect(power.busW - wheelW - power.lossW - power.brakedW).toBeCloseTo(0, 9)
         expect(Math.min(power.lossW, power.brakedW)).toBeGreaterThanOrEqual(0)
         expect(power.busW).toBeGreaterThanOrEqual(-DRIVE.regenMaxW)
@@ -77,6 +77,11 @@ describe('the speed that the motor can hold', () => {
     )
   })
 
+  it('is never above the speed that the motor turns at', () => {
+    expect(attainableSpeedMps(LOAD, { ...DRIVE, topMps: 18 }, LEVEL, 22)).toBeCloseTo(18, 12)
+    expect(attainableSpeedMps(LOAD, { ...DRIVE, topMps: 18 }, LEVEL, 17)).toBe(17)
+  })
+
   it('an endless wish is refused', () => {
     expect(() => attainableSpeedMps(LOAD, DRIVE, LEVEL, Infinity)).toThrowError(/wantedMps: Infinity given/)
   })
@@ -89,6 +94,10 @@ it.each([
   ['drive.motorMaxW', { motorMaxW: 0 }],
   ['drive.motorMaxN', { motorMaxN: -1 }],
   ['drive.regenMaxW', { regenMaxW: -1 }],
+  ['drive.brakingMaxW', { brakingMaxW: Number.NaN }],
+  ['drive.brakingMaxN', { brakingMaxN: -1 }],
+  ['drive.brakingFromMps', { brakingFromMps: -1 }],
+  ['drive.topMps', { topMps: 0 }],
 ])('a wrong %s is refused by name', (field, change) => {
   expect(() => prepareDrive({ ...DRIVE, ...change })).toThrowError(expect.objectContaining({ field }))
 })

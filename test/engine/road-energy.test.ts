@@ -51,6 +51,7 @@ function driven(roads: Course, speedMps = new Float64Array(roads.pieces.count).f
     crosswindMps: calm,
     overPanelsMps: calm,
     densityKgM3: new Float64Array(cut.count).fill(1.2),
+    airC: new Float64Array(cut.count).fill(20),
   }
   return { course: roads, steps: cut, air }
 }
@@ -109,6 +110,7 @@ describe('air and motor along the road', () => {
       windMps: new Float64Array(n).fill(6),
       windFromRad: new Float64Array(n).fill((fromDeg * Math.PI) / 180),
       densityKgM3: new Float64Array(n).fill(1.2),
+      airC: new Float64Array(n).fill(20),
     })
     const over = (fromDeg: number) => airAtCar(day.course, day.steps, weather(fromDeg), 0.5).overPanelsMps[2]
     // ln(0.5/0.03)/ln(10/0.03) = 0.4843 of the wind at 10 m

@@ -6,7 +6,20 @@ const TRACKER_LOSSES = { standingW: 1.2, switchingPct: 0.35, conductionOhm: 0.04
 /** An invented car with four flat panels, one string and one tracker each. */
 export const carExample: CarInput = {
   name: 'Weaver 2',
-  body: { massKg: 248, rotatingFactor: 1.03, dragAreaM2: 0.115, rollingCoefficient: 0.0048, rollingPerKmh: 0.000008 },
+  body: {
+    massKg: 248,
+    rotatingFactor: 1.03,
+    dragAreaM2: 0.115,
+    rollingCoefficient: 0.0048,
+    rollingPerKmh: 0.000008,
+    rollingPctPerC: 0.86,
+    rollingAtC: 25,
+    dragByYaw: [
+      { yawDeg: 0, factor: 1 },
+      { yawDeg: 10, factor: 1.04 },
+      { yawDeg: 20, factor: 1.15 },
+    ],
+  },
   drive: {
     efficiencyPct: 94,
     regenerationPct: 60,
@@ -14,8 +27,10 @@ export const carExample: CarInput = {
     motorMaxNm: 110,
     wheelRadiusM: 0.278,
     regenerationMaxW: 2500,
+    regenerationFromKmh: 8,
+    losses: { controllerW: 6, frictionNm: 0.08, eddyNmPerKrpm: 0.05, phaseOhm: 0.06, torqueNmPerA: 1.3, windingC: 70 },
   },
-  auxiliaries: { drivingW: 28, parkedW: 6 },
+  auxiliaries: { drivingW: 28, parkedW: 6, chargingW: 14 },
   panels: [
     { name: 'nose', pitchDeg: 8, lifts: true },
     { name: 'left', rollDeg: -5, lifts: true },
