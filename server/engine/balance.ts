@@ -1,12 +1,16 @@
 import type { ArrayHarvest, PreparedArray } from './array.ts'
-import { chargeLimitW, newPackStep, openCircuitV, stepPack, storedJ } from './battery.ts'
-import type { Pack, PackStep } from './battery.ts'
+import type { Pack, PackLimit, PackStep } from './battery.ts'
 import type { Course } from './course.ts'
 import type { Drive } from './drive.ts'
+import { noEnergy } from './energy.ts'
+import type { Energy } from './energy.ts'
 import type { Air } from './motion.ts'
+import { packDay } from './pack-day.ts'
+import type { PackDay, PackLimitSum } from './pack-day.ts'
 import { newRoadEnergy, roadEnergy } from './road-energy.ts'
 import type { RoadEnergy } from './road-energy.ts'
 import type { RoadLoad } from './road.ts'
+import type { Weather } from './sky.ts'
 import type { Steps } from './steps.ts'
 import { takers } from './takers.ts'
 import type { Takers } from './takers.ts'
@@ -27,29 +31,6 @@ export interface Car {
   pack: Pack
   reserveCharge: number
 }
-
-/** What comes in, goes out, is missing and is denied, in the order of the ledger. */
-export const QUANTITIES = [
-  'income',
-  'rolling',
-  'drag',
-  'climbing',
-  'brakes',
-  'auxiliaries',
-  'trackers',
-  'drive',
-  'pack',
-  'short',
-  'window',
-  'tracking',
-  'full',
-] as const
-export type Quantity = (typeof QUANTITIES)[number]
-
-/** Energy by quantity. [J] */
-export type Energy = Record<Quantity, number>
-
-export const noEnergy = (): Energy => Object.fromEntries(QUANTITIES.map((q) => [q, 0])) as Energy
 
 /** Into how many shares of a tracker's power its energy is sorted. */
 const POWER_SHARES = 12
@@ -74,32 +55,36 @@ export interface Balance {
   charge: Float64Array
   storedJ: Float64Array
   packV: Float64Array
+  /** Temperature of the cells. [C] */
+  packC: Float64Array
   /** By span of the timetable. */
   spans: Energy[]
   trackers: TrackerDay[]
   /** First step in which the pack could not give what was asked; -1 where it always could. */
   firstShort: number
+  /** The limit that bound in that step. */
+  firstShortLimit: PackLimit | null
+  packLimits: PackLimitSum[]
 }
 
 /**
  * The pack's charge through the steps of a day, with every joule booked.
  *
  * In each step the strings give what the trackers take at the pack's voltage; drive and auxiliaries
- * draw; the pack takes or gives the difference. A full pack makes the trackers take less; what
+ * draw; the pack takes or gives the difference. A full or cold pack makes the trackers take less; what
  * regeneration is left over goes to the brakes. Stored energy after less before equals income plus
  * short less the spendings, to rounding.
  *
- * @param day     steps with the air and the harvest along them
- * @param charge  charge when the day opens, 0..1
+ * @param day     steps with the weather and the harvest along them
+ * @param opening usable charge when the day opens, 0..1, and the pack's temperature [C]
  */
-export function balance(car: Car, day: BalanceDay, charge: number): Balance {
+export function balance(car: Car, day: BalanceDay, opening: { charge: number; packC: number }): Balance {
   const { steps, spans } = day
+  const { airC } = day.weather
   const out = emptyBalance(car, steps.count, spans.length)
-  const pack = newPackStep()
+  const pack = packDay(car.pack, opening.charge, opening.packC)
   const road = newRoadEnergy()
   const taken = takers(car, day.harvest)
-  let packV = openCircuitV(car.pack, charge)
-  let heldJ = storedJ(car.pack, charge)
   for (let i = 0; i < steps.count; i++) {
     const sums = out.spans[steps.span[i]]
     const durationS = (steps.toMs[i] - steps.fromMs[i]) / 1000
@@ -107,24 +92,31 @@ export function balance(car: Car, day: BalanceDay, charge: number): Balance {
     const auxW = isDriving ? car.auxDrivingW : steps.charging[i] === 1 ? car.auxChargingW : car.auxParkedW
     if (isDriving) roadEnergy(car, day, roadStep(steps, i, durationS), road)
     else resetRoad(road)
+    const { packV, heldJ } = pack
     if (steps.charging[i] === 1) taken.take(i, packV)
     else taken.rest()
-    const packS = Math.max(durationS, road.changeS)
-    const netJ = fitToPack(car, taken, road, { charge, packV, durationS, packS, loadW: road.busJ / durationS + auxW })
-    stepPack(car.pack, charge, netJ / packS, packS, pack)
-    if (pack.shortJ > 0 && out.firstShort < 0) out.firstShort = i
-    book(sums, road, pack, auxW * durationS)
+    const netJ = taken.outputW() * durationS - road.busJ - auxW * durationS
+    pack.take(netJ, Math.max(durationS, road.changeS), airC[i])
+    if (pack.step.spilledJ > 0) giveUp(taken, road, { excessW: pack.step.spilledJ / durationS, packV, durationS })
+    pack.warm(durationS, airC[i], isDriving)
+    book(sums, road, pack.step, auxW * durationS)
     out.deniedW[i] = taken.book(out.trackers, sums, durationS) / durationS
     out.inW[i] = taken.inputW()
-    out.outW[i] = out.inW[i] + (pack.shortJ - storedJ(car.pack, pack.charge) + heldJ) / durationS
-    charge = pack.charge
-    packV = pack.terminalV
-    heldJ = storedJ(car.pack, charge)
-    out.charge[i] = charge
-    out.storedJ[i] = heldJ
-    out.packV[i] = packV
+    out.outW[i] = out.inW[i] + (pack.step.shortJ - pack.heldJ + heldJ) / durationS
+    note(out, i, pack)
   }
+  out.packLimits = pack.limits()
   return out
+}
+
+function note(out: Balance, i: number, { charge, heldJ, packV, tempC, step }: PackDay): void {
+  out.charge[i] = charge
+  out.storedJ[i] = heldJ
+  out.packV[i] = packV
+  out.packC[i] = tempC
+  if (out.firstShort >= 0 || !(step.shortJ > 0)) return
+  out.firstShort = i
+  out.firstShortLimit = step.limit
 }
 
 /** A day laid out, with the weather's effects on it. */
@@ -132,6 +124,7 @@ export interface BalanceDay {
   course: Course
   spans: Span[]
   steps: Steps
+  weather: Pick<Weather, 'airC'>
   air: Air
   harvest: ArrayHarvest
 }
@@ -147,28 +140,17 @@ function resetRoad(road: RoadEnergy): void {
   road.busJ = road.rollingJ = road.dragJ = road.climbingJ = road.brakedJ = road.lossJ = road.changeS = 0
 }
 
-/**
- * Energy that goes to the pack: outputs less load, and no more than the pack takes. A full pack makes
- * the trackers take less; regeneration that is left over then goes to the brakes. [J]
- */
-function fitToPack(
-  car: Car,
+/** What the pack refuses: the trackers take less first; regeneration that is left over goes to the brakes. */
+function giveUp(
   taken: Takers,
   road: RoadEnergy,
-  now: { charge: number; packV: number; durationS: number; packS: number; loadW: number },
-): number {
-  const { durationS, packS, loadW } = now
-  const netW = taken.outputW() - loadW
-  if (!(netW > 0)) return netW * durationS
-  const mostW = (chargeLimitW(car.pack, now.charge, packS) * packS) / durationS
-  if (netW <= mostW) return netW * durationS
-  taken.reduceBy(netW - mostW, now.packV)
-  const leftW = taken.outputW() - loadW - mostW
-  if (leftW > 0) {
-    road.brakedJ += leftW * durationS
-    road.busJ += leftW * durationS
-  }
-  return Math.min(taken.outputW() - loadW, mostW) * durationS
+  { excessW, packV, durationS }: { excessW: number; packV: number; durationS: number },
+): void {
+  const beforeW = taken.outputW()
+  taken.reduceBy(excessW, packV)
+  const brakedJ = Math.max(excessW - beforeW + taken.outputW(), 0) * durationS
+  road.brakedJ += brakedJ
+  road.busJ += brakedJ
 }
 
 function emptyBalance(car: Car, count: number, spans: number): Balance {
@@ -180,6 +162,7 @@ function emptyBalance(car: Car, count: number, spans: number): Balance {
     charge: column(),
     storedJ: column(),
     packV: column(),
+    packC: column(),
     spans: Array.from({ length: spans }, noEnergy),
     trackers: car.trackers.map(() => ({
       inputJ: 0,
@@ -190,6 +173,8 @@ function emptyBalance(car: Car, count: number, spans: number): Balance {
       limits: new Map(),
     })),
     firstShort: -1,
+    firstShortLimit: null,
+    packLimits: [],
   }
 }
 
@@ -200,7 +185,6 @@ function book(sums: Energy, road: RoadEnergy, pack: PackStep, auxJ: number): voi
   sums.brakes += road.brakedJ
   sums.drive += road.lossJ
   sums.auxiliaries += auxJ
-  // Above the limit by rounding only: what the pack spilled of what was already fitted to it.
-  sums.pack += pack.lossJ + pack.spilledJ
+  sums.pack += pack.lossJ
   sums.short += pack.shortJ
 }

@@ -1,9 +1,11 @@
 import { arrayHarvest } from './array.ts'
 import { balance } from './balance.ts'
 import type { Balance, Car } from './balance.ts'
-import { storedJ } from './battery.ts'
+import { SHEET_C, storedJ } from './battery.ts'
 import type { Course } from './course.ts'
 import type { DayRules, StageRule, Standing } from './day-rules.ts'
+import { idleC } from './pack-heat.ts'
+import type { Warmth } from './pack-heat.ts'
 import { airAtCar, limitByMotor, pieceTimesS } from './motion.ts'
 import type { Air } from './motion.ts'
 import { weatherAlong } from './sky.ts'
@@ -27,13 +29,18 @@ export interface Race {
 /** Where the car stands and what its pack holds when a day opens. */
 export interface Opening {
   standing: Standing
+  /** Usable charge, 0..1. */
   charge: number
+  /** The pack's temperature when it was last known; as warm as the air where left out. */
+  warmth?: Warmth
 }
 
 /** What one day is expected to bring and cost. */
 export interface DayForecast {
   openingCharge: number
   openingJ: number
+  /** The pack's temperature when the day opens. [C] */
+  openingPackC: number
   timetable: Timetable
   steps: Steps
   weather: Weather
@@ -58,7 +65,7 @@ const MOTOR_ROUNDS = 3
  *
  * @param race       car, course, stages, days and sky
  * @param dayIndex   which day
- * @param opening    where the car stands and its charge
+ * @param opening    where the car stands, its charge and how warm its pack was last
  * @param wantedMps  speed wanted on each piece; limits and the motor may lower it. [Mps] (pieces)
  * @param path       the sun over that day, where the caller has it already
  */
@@ -83,12 +90,13 @@ export function forecastDay(
     durationS: durationsS(laid.steps),
     overPanelsC: airOverPanelsC(laid),
   })
-  const energy = balance(car, { ...laid, spans: laid.timetable.spans, harvest }, opening.charge)
-  const last = laid.steps.count - 1
-  const charge = last < 0 ? opening.charge : energy.charge[last]
+  const packC = openingC(car, opening.warmth, laid)
+  const energy = balance(car, { ...laid, spans: laid.timetable.spans, harvest }, { charge: opening.charge, packC })
+  const closing = closingOf(laid, energy, opening.charge)
   return {
     openingCharge: opening.charge,
     openingJ: storedJ(car.pack, opening.charge),
+    openingPackC: packC,
     timetable: laid.timetable,
     steps: laid.steps,
     weather: laid.weather,
@@ -96,11 +104,25 @@ export function forecastDay(
     aim: { tiltRad: harvest.aimTiltRad, azimuthRad: harvest.aimAzimuthRad },
     cellC: warmest(harvest.cellC, laid.steps.count),
     balance: energy,
-    closing: { standing: laid.timetable.evening, charge },
-    closingJ: storedJ(car.pack, charge),
+    closing,
+    closingJ: storedJ(car.pack, closing.charge),
     lowestStep: lowestStep(energy.storedJ, storedJ(car.pack, opening.charge)),
     blockedPiece: blockedPiece(race.course, laid, speedMps),
   }
+}
+
+/** The pack after the night: it goes towards the air as the day opens. */
+function openingC({ pack }: Car, warmth: Warmth | undefined, { steps, weather }: Laid): number {
+  if (steps.count === 0) return warmth?.packC ?? SHEET_C
+  const now = { airC: weather.airC[0], atMs: steps.fromMs[0] }
+  return warmth === undefined || pack.heat === undefined ? now.airC : idleC(pack.heat, warmth, now)
+}
+
+function closingOf({ steps, timetable: table, weather }: Laid, energy: Balance, openingCharge: number): Opening {
+  const last = steps.count - 1
+  if (last < 0) return { standing: table.evening, charge: openingCharge }
+  const warmth = { packC: energy.packC[last], airC: weather.airC[last], atMs: steps.toMs[last] }
+  return { standing: table.evening, charge: energy.charge[last], warmth }
 }
 
 /** The sun over a day, to be shared by all forecasts of that day. */

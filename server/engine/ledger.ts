@@ -1,5 +1,5 @@
-import { noEnergy, QUANTITIES } from './balance.ts'
-import type { Energy } from './balance.ts'
+import { noEnergy, QUANTITIES } from './energy.ts'
+import type { Energy } from './energy.ts'
 import type { Span, SpanKind } from './timetable.ts'
 
 /** Spendings in the order of the ledger. */

@@ -1,5 +1,6 @@
 import type { ArrayHarvest } from './array.ts'
-import type { Car, Energy, TrackerDay } from './balance.ts'
+import type { Car, TrackerDay } from './balance.ts'
+import type { Energy } from './energy.ts'
 import { offBestW } from './string-harvest.ts'
 import { inputForOutputW, newOperatingPoint, operatingPoint, trackerOutputW } from './tracker.ts'
 import type { TrackerLimit } from './tracker.ts'
