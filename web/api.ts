@@ -5,6 +5,7 @@ import type { RouteDocument } from '../server/documents/route.ts'
 import type { SkyDocument } from '../server/documents/sky.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
 import type { RouteSummary } from '../server/files/route-reading.ts'
+import type { ClimateOptions } from '../server/files/climate-options.ts'
 import type { SkyTableOptions } from '../server/files/sky-table.ts'
 
 export type Kind = 'cars' | 'races' | 'skies' | 'routes'
@@ -165,5 +166,9 @@ export const readRoute = (file: Blob, type: string): Promise<Answer<ReadRoute>> 
 
 export const readSky = (file: Blob, type: string, options: SkyTableOptions | null): Promise<Answer<ReadSky>> =>
   read('skies', file, type, new URLSearchParams(options === null ? {} : { options: JSON.stringify(options) }))
+
+/** Days of a typical year, out of an EPW or TMY3 file. */
+export const readYear = (file: Blob, fileKind: 'epw' | 'tmy3', { name = '', from, to }: ClimateOptions) =>
+  read<ReadSky>('skies', file, 'text/csv', new URLSearchParams({ fileKind, name, from, to }))
 
 export const isServiceUp = (): Promise<Answer<true>> => tell('/api/health', { cache: 'no-store' })

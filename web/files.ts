@@ -1,8 +1,16 @@
+import { weatherFile } from '../server/files/weather-kind.ts'
+
 /** Content type to send a file under, by the end of its name. */
 export function fileType(name: string): string {
   if (/\.gpx$/i.test(name)) return 'application/gpx+xml'
   if (/\.json$/i.test(name)) return 'application/json'
   return 'text/csv'
+}
+
+/** Whether a file is a typical year as EPW or TMY3, by its first two lines. */
+export async function yearKindOf(file: Blob): Promise<'epw' | 'tmy3' | 'other'> {
+  const kind = weatherFile(await file.slice(0, MOST_HEADER_BYTES).text())
+  return kind === 'epw' || kind === 'tmy3' ? kind : 'other'
 }
 
 const MOST_HEADER_BYTES = 20_000

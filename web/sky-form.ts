@@ -1,10 +1,14 @@
 import type { SkyDocument } from '../server/documents/sky.ts'
+import type { ClimateOptions } from '../server/files/climate-options.ts'
 import type { SkyTableOptions } from '../server/files/sky-table.ts'
 
 /** What a person says about a weather table, as typed. */
 export interface SkyForm {
   name: string
   source: 'forecast' | 'measured'
+  /** Days of the race that a typical year shall stand for: 2026-10-16. */
+  from: string
+  to: string
   /** Local date and time: 2026-10-16T18:00. */
   issuedAt: string
   /** Offset of the table’s times; empty where they carry their own. */
@@ -58,11 +62,14 @@ export function offsetName(minutes: number): string {
   return `${minutes < 0 ? '-' : '+'}${two(Math.floor(size / 60))}:${two(size % 60)}`
 }
 
-/** A form for a file just chosen: named after it, issued now. */
-export function emptySky(fileName: string, nowMs: number, offsetMin: number): SkyForm {
+/** A form for a file just chosen: named after it, issued now, for the days of the race. */
+export function emptySky(fileName: string, nowMs: number, offsetMin: number, dates: string[]): SkyForm {
+  const today = new Date(nowMs + offsetMin * 60_000).toISOString().slice(0, 10)
   return {
     name: fileName.replace(/\.[^.]+$/, '').slice(0, 80),
     source: 'forecast',
+    from: dates[0] ?? today,
+    to: dates[dates.length - 1] ?? today,
     issuedAt: new Date(nowMs + offsetMin * 60_000).toISOString().slice(0, 16),
     utcOffset: '',
     ownOffset: offsetName(offsetMin),
@@ -93,6 +100,13 @@ export function skyOptions(form: SkyForm): SkyTableOptions {
     ...(units.length === 0 ? {} : { units: entries(units.map(([, { field, unit }]) => [field, unit.trim()])) }),
   }
 }
+
+/** The options for a file of a typical year. */
+export const yearOptions = (form: SkyForm): ClimateOptions => ({
+  name: form.name.trim() === '' ? 'Typical year' : form.name.trim(),
+  from: form.from,
+  to: form.to,
+})
 
 function placeOf(form: SkyForm): Pick<SkyTableOptions, 'place'> {
   if ([form.latDeg, form.lonDeg, form.elevationM].every((text) => text.trim() === '')) return {}

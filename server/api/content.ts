@@ -59,5 +59,7 @@ export function bodyContent(kind: { schema: z.ZodType; formats: Format[] }) {
 
 const FILES = {
   gpx: z.string().describe('a GPX 1.1 file with a track or a route'),
-  csv: z.string().describe('a table with a header row: comma, semicolon or tab between cells'),
+  csv: z
+    .string()
+    .describe('a table with a header row: comma, semicolon or tab between cells; of a sky also an EPW or TMY3 file'),
 }

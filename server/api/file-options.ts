@@ -4,8 +4,10 @@ import type { Kind } from '../compute/documents.ts'
 import { checkDocument } from '../documents/check.ts'
 import { averaging } from '../documents/sky.ts'
 import { counted, Fault } from '../errors.ts'
+import { climateOptions } from '../files/climate-options.ts'
 import { routeTableOptions } from '../files/route-table.ts'
 import { skyTableOptions } from '../files/sky-table.ts'
+import { WEATHER_FILES } from '../files/weather-kind.ts'
 
 const number = (min: number, max: number, meaning: string) =>
   z
@@ -50,9 +52,18 @@ export const routeQuery = z
 
 const { source, pressureIs, place } = skyTableOptions.shape
 
-/** Query parameters of weather tables, as their reader's options. */
+const { from, to } = climateOptions.shape
+
+const fileKind = z
+  .enum(WEATHER_FILES)
+  .describe('what the text/csv body is: a weather table, or a typical year as EPW or TMY3; table where left out')
+
+/** Query parameters of weather tables and of typical years, as their readers' options. */
 export const skyQuery = z
   .strictObject({
+    fileKind: fileKind.optional(),
+    from: from.optional(),
+    to: to.optional(),
     name: skyTableOptions.shape.name.optional(),
     source: source.optional(),
     issuedAt: withPlus('when the forecast was issued or the measurement read (ISO 8601 with offset)'),
@@ -81,9 +92,20 @@ export const skyQuery = z
     ...(lat === undefined ? {} : { place: { name: place ?? 'Place', latDeg: lat, lonDeg: lon, elevationM } }),
   }))
 
-const READER_OPTIONS = {
-  route: { gpx: z.strictObject({ name }), csv: routeTableOptions, json: z.strictObject({}) },
-  sky: { csv: skyTableOptions, json: z.strictObject({}) },
+const NONE = z.strictObject({})
+
+/** The options of a sky's file by its kind; each says of which kind it is for. */
+const SKY_OPTIONS = {
+  table: skyTableOptions.extend({ fileKind: z.literal('table').optional() }),
+  epw: climateOptions.safeExtend({ fileKind: z.literal('epw') }),
+  tmy3: climateOptions.safeExtend({ fileKind: z.literal('tmy3') }),
+}
+
+function optionsOf(kind: Kind, format: Format, query: unknown): z.ZodType<Record<string, unknown>> {
+  if (kind === 'route' && format === 'gpx') return z.strictObject({ name })
+  if (kind === 'route' && format === 'csv') return routeTableOptions
+  if (kind !== 'sky' || format !== 'csv') return NONE
+  return SKY_OPTIONS[z.object({ fileKind: fileKind.default('table').catch('table') }).parse(query).fileKind]
 }
 
 /**
@@ -92,8 +114,7 @@ const READER_OPTIONS = {
  * @throws Fault 'bad-query' with every wrong or needless one
  */
 export function readerOptions(kind: Kind, format: Format, query: unknown): Record<string, unknown> {
-  const readers: Partial<Record<Format, z.ZodObject>> = kind === 'route' || kind === 'sky' ? READER_OPTIONS[kind] : {}
-  const { document, problems } = checkDocument(readers[format] ?? z.strictObject({}), query)
+  const { document, problems } = checkDocument(optionsOf(kind, format, query), query)
   if (problems === undefined) return document
   const detail = `The options for reading this ${kind} have ${counted(problems.length, 'problem')}.`
   throw new Fault('bad-query', detail, { errors: problems })

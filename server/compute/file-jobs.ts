@@ -5,8 +5,11 @@ import type { FileReading, Notice } from '../files/file-reading.ts'
 import { readCsvRoute } from '../files/csv-route.ts'
 import { readCsvSky } from '../files/csv-sky.ts'
 import { readGpxRoute } from '../files/gpx-route.ts'
+import { climateOptions } from '../files/climate-options.ts'
+import { readEpwSky } from '../files/epw-sky.ts'
 import { routeTableOptions } from '../files/route-table.ts'
 import { skyTableOptions } from '../files/sky-table.ts'
+import { readTmy3Sky } from '../files/tmy3-sky.ts'
 import { DOCUMENTS, type Kind } from './documents.ts'
 import { checked, readJson } from './read-json.ts'
 
@@ -58,6 +61,13 @@ type Reading = FileReading<object & { name: string }, unknown>
 function read(kind: Kind, format: Format, text: string, options: Record<string, unknown>): Reading {
   if (kind === 'route' && format === 'gpx') return readGpxRoute(text, options)
   if (kind === 'route') return readCsvRoute(text, routeTableOptions.parse(options))
-  if (kind === 'sky') return readCsvSky(text, skyTableOptions.parse(options))
+  if (kind === 'sky') return readSky(text, options)
   throw new Fault('unsupported-media-type', `A ${kind} is not read from ${format}.`)
+}
+
+/** A sky by the kind of its file, a table where nothing is said. */
+function readSky(text: string, { fileKind, ...options }: Record<string, unknown>): Reading {
+  if (fileKind === 'epw') return readEpwSky(text, climateOptions.parse(options))
+  if (fileKind === 'tmy3') return readTmy3Sky(text, climateOptions.parse(options))
+  return readCsvSky(text, skyTableOptions.parse(options))
 }

@@ -1,4 +1,5 @@
 import { z } from 'zod'
+import { skySource } from './sky.ts'
 
 const wh = (meaning: string) => z.number().describe(`${meaning} [Wh]`)
 const pct = (meaning: string) => z.number().describe(`${meaning} [% of charge]`)
@@ -160,7 +161,7 @@ export const budgetDocument = z
     engineVersion: z.string(),
     race: z.string(),
     car: z.string(),
-    sky: z.strictObject({ name: z.string(), source: z.enum(['forecast', 'measured']), issuedAt: z.string() }),
+    sky: z.strictObject({ name: z.string(), source: skySource, issuedAt: z.string() }),
     assumptions: z.array(z.string()).describe('what was assumed where the documents are silent'),
     lengthKm: z.number().describe('length of the race [km]'),
     days: z.array(dayBudget),

@@ -50,9 +50,13 @@ export type ForecastRequest = z.output<typeof forecastRequest>
 export function forecastDocuments(request: ForecastRequest): BudgetDocument {
   const { car, race: document, sky: skyDoc } = request
   const lastDay = dayWanted(document, request.date)
-  const { sky, assumptions } = skyModel(skyDoc)
+  const { sky, assumptions } = skyModel(skyDoc, document.turbidityByMonth)
   const course = raceCourse(document, request.routes, sectionCutsKm(request.speeds))
-  const model = carModel(car, { groundAlbedo: meanAlbedo(request), skyModel: 'perez' }, request.learned)
+  const model = carModel(
+    car,
+    { groundAlbedo: meanAlbedo(request), skyModel: skyDoc.diffuse ?? 'perez' },
+    request.learned,
+  )
   checkWindHeight(request)
   const race: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
   const { days, notes } = drivenDays(race, request, lastDay)

@@ -1,5 +1,6 @@
 import { z } from 'zod'
 import { count, date, label, quantity, slug, timeOfDay, withSeconds, zoneName } from './quantity.ts'
+import { turbidityByMonth } from './turbidity.ts'
 
 const isBefore = (one: string, other: string): boolean => withSeconds(one) < withSeconds(other)
 
@@ -86,6 +87,7 @@ export const raceDocument = z
     zone: zoneName('time zone of the race, for example Africa/Windhoek'),
     openingPct: charge('charge of the pack when the first day opens [%]'),
     days: z.array(day).min(1).max(40),
+    turbidityByMonth: turbidityByMonth.optional(),
     penalties: z
       .strictObject({
         lateMinPerMin: quantity(0, 1000, 'penalty minutes per minute that a stop is reached after it closes').default(

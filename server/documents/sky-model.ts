@@ -4,6 +4,7 @@ import { prepareSky, skyCoverage } from '../engine/sky.ts'
 import type { Sky, SkyPlaceInput } from '../engine/sky.ts'
 import { localIso } from './local-time.ts'
 import type { SkyColumn, SkyDocument, SkyPlace } from './sky.ts'
+import { monthKnots } from './turbidity.ts'
 
 const DEG = Math.PI / 180
 
@@ -29,13 +30,26 @@ const ENGINE_COLUMNS = {
 /** Light and cloud are means over the interval before their stamp unless the document says otherwise. */
 const PRECEDING: ReadonlySet<SkyColumn> = new Set(['cloudPct', 'ghiWm2', 'dniWm2', 'dhiWm2'])
 
-/** A sky as the engine needs it, and what was assumed where the document is silent. */
-export function skyModel(sky: SkyDocument): { sky: Sky; assumptions: string[] } {
+/**
+ * A sky as the engine needs it, and what was assumed where the document is silent.
+ *
+ * @param linkeByMonth  of the race, for a sky without any turbidity of its own
+ */
+export function skyModel(sky: SkyDocument, linkeByMonth?: readonly number[]): { sky: Sky; assumptions: string[] } {
+  const hasColumn = sky.places.some(({ turbidity }) => turbidity !== undefined)
+  const byMonth = hasColumn ? undefined : (sky.turbidityByMonth ?? linkeByMonth)
   const prepared = prepareSky({
-    places: sky.places.map((place, p) => placeInput(sky, place, `sky.places[${p}]`)),
+    places: sky.places.map((place, p) => withMonths(placeInput(sky, place, `sky.places[${p}]`), byMonth)),
     linkeDefault: LINKE_DEFAULT,
   })
-  return { sky: prepared, assumptions: [...silences(sky), ...corrections(sky, prepared)] }
+  return { sky: prepared, assumptions: [...silences(sky, byMonth), ...corrections(sky, prepared)] }
+}
+
+/** A place with turbidity by month in place of a column. */
+function withMonths(input: SkyPlaceInput, byMonth: readonly number[] | undefined): SkyPlaceInput {
+  if (byMonth === undefined) return input
+  const { atMs, linke } = monthKnots(byMonth, input.fromMs[0], input.toMs[input.toMs.length - 1])
+  return { ...input, linke, intervalOf: { ...input.intervalOf, linke: { fromMs: atMs, toMs: atMs } } }
 }
 
 function placeInput(sky: SkyDocument, place: SkyPlace, field: string): SkyPlaceInput {
@@ -120,14 +134,21 @@ function intervals(at: Float64Array, convention: 'preceding' | 'following' | 'in
   return { fromMs: at, toMs: at.map((ms, i) => (i < last ? at[i + 1] : ms + (at[last] - at[last - 1]))) }
 }
 
-function silences(sky: SkyDocument): string[] {
+function silences(sky: SkyDocument, byMonth: readonly number[] | undefined): string[] {
   const lacks = (...names: SkyColumn[]) => sky.places.some((p) => names.every((name) => p[name] === undefined))
   return [
     ...(lacks('windMps') ? ['The sky brings no wind: still air is assumed.'] : []),
     ...(lacks('pressureHpa') ? ['The sky brings no air pressure: the standard atmosphere is assumed.'] : []),
     ...(lacks('humidityPct', 'dewPointC') ? ['The sky brings no humidity: dry air is assumed.'] : []),
-    ...(lacks('turbidity') ? [`The sky brings no turbidity: Linke ${LINKE_DEFAULT} is assumed.`] : []),
+    ...turbidityNotes(sky, lacks('turbidity'), byMonth),
+    ...(sky.source === 'typical' ? ['The sky is that of a typical year, not a forecast.'] : []),
   ]
+}
+
+function turbidityNotes(sky: SkyDocument, isLacking: boolean, byMonth: readonly number[] | undefined): string[] {
+  if (!isLacking || sky.turbidityByMonth !== undefined) return []
+  if (byMonth !== undefined) return ['The sky brings no turbidity: the race’s by month is taken.']
+  return [`The sky brings no turbidity: Linke ${LINKE_DEFAULT} is assumed.`]
 }
 
 /** What the crew is told of rows that the engine could not take as they stood. */

@@ -1,5 +1,6 @@
 import { z } from 'zod'
 import { instant, label, quantity } from './quantity.ts'
+import { turbidityByMonth } from './turbidity.ts'
 
 /** Most rows that one place of a sky may hold: 60 days of 15-minute values. */
 export const MAX_SKY_ROWS = 6000
@@ -94,11 +95,16 @@ const place = z
 const isNeverWithTemperature = (values: (number | null)[], airTempC: (number | null)[] | undefined): boolean =>
   values.every((value, i) => value === null || (airTempC?.[i] ?? null) === null)
 
+/** Where the values of a sky come from. */
+export const skySource = z
+  .enum(['forecast', 'measured', 'typical'])
+  .describe('whether these values were forecast or measured, or are those of a typical year')
+
 /** Weather along the route: places × stamps. */
 export const skyDocument = z
   .strictObject({
     name: label('name of the sky'),
-    source: z.enum(['forecast', 'measured']).describe('whether these values were forecast or measured'),
+    source: skySource,
     issuedAt: instant('when the forecast was issued or the measurement read'),
     utcOffset: z
       .string()
@@ -113,6 +119,11 @@ export const skyDocument = z
       .enum(['station', 'sea-level'])
       .default('station')
       .describe('whether pressureHpa holds at the height of the place or is reduced to sea level'),
+    turbidityByMonth: turbidityByMonth.optional(),
+    diffuse: z
+      .enum(['perez', 'hay-davies'])
+      .describe('how the light of the sky is spread over it: by Perez, or by Hay and Davies; perez where left out')
+      .optional(),
     places: z.array(place).min(1).max(100),
   })
   .superRefine((sky, context) => {

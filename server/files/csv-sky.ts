@@ -17,6 +17,7 @@ import type { SkyTableOptions, SkyValue } from './sky-table.ts'
 import { timeReader } from './sky-times.ts'
 import { checkPlace, valuesOf } from './sky-values.ts'
 import { instantText, offsetText } from './stamp.ts'
+import { wrongKind } from './weather-kind.ts'
 
 export interface SkySummary {
   places: { name: string; rows: number }[]
@@ -38,6 +39,8 @@ export type SkyReading = FileReading<SkyDocument, SkySummary>
 export function readCsvSky(text: string, options: SkyTableOptions): SkyReading {
   const checked = checkDocument(skyTableOptions, options)
   if (checked.problems !== undefined) return { problems: checked.problems }
+  const wrong = wrongKind(text, 'table')
+  if (wrong !== null) return { problems: [wrong] }
   const wishes = checked.document
   const problems = problemList()
   const notices = noticeList()

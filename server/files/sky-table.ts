@@ -1,6 +1,6 @@
 import { z } from 'zod'
 import { instant, label, quantity } from '../documents/quantity.ts'
-import { SKY_BOUNDS, SKY_COLUMNS, averaging, skyDocument } from '../documents/sky.ts'
+import { SKY_BOUNDS, SKY_COLUMNS, averaging, skyDocument, skySource } from '../documents/sky.ts'
 import type { SkyColumn } from '../documents/sky.ts'
 import { DELIMITERS } from './csv-table.ts'
 import type { FieldSpec } from './header.ts'
@@ -179,7 +179,7 @@ const place = z.strictObject({
 export const skyTableOptions = z
   .strictObject({
     name: label('name of the sky'),
-    source: z.enum(['forecast', 'measured']).describe('whether the values were forecast or measured'),
+    source: skySource,
     issuedAt: instant('when the forecast was issued or the measurement read'),
     utcOffset: skyDocument.shape.utcOffset.unwrap().optional(),
     place: place.optional().describe('the one place of a table without place columns'),

@@ -10,7 +10,7 @@ import { skyRange } from './sky-table.ts'
 import type { SkyValue } from './sky-table.ts'
 
 /** Sensors read a little under zero at night and a little over full damp; farther out is a fault of the table. */
-const SLACK: Partial<Record<SkyValue, readonly [number, number]>> = {
+export const SLACK: Partial<Record<SkyValue, readonly [number, number]>> = {
   ghiWm2: [20, 0],
   dniWm2: [20, 0],
   dhiWm2: [20, 0],

@@ -1,5 +1,6 @@
 import { gzipSync } from 'node:zlib'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { referenceText } from '../support/reference.ts'
 import { type Service, startService } from './service.ts'
 
 let service: Service
@@ -109,6 +110,65 @@ describe('a weather table', () => {
     const answer = await send('POST', `/api/v1/skies/read?${encodeURI(query)}`, 'text/csv', SKY_CSV)
     expect(answer.json()).toMatchObject({ status: 400, code: 'bad-query' })
     expect(answer.json().errors).toContainEqual(expect.objectContaining({ field }))
+  })
+})
+
+describe('a typical year', () => {
+  const TMY3 = referenceText('723170TYA.CSV')
+  const EPW = [
+    'LOCATION,Saltpan,-,XXX,invented,0,-23.1,16.22,2,1240',
+    'DESIGN CONDITIONS,0',
+    'TYPICAL/EXTREME PERIODS,0',
+    'GROUND TEMPERATURES,0',
+    'HOLIDAYS/DAYLIGHT SAVINGS,No,0,0,0',
+    'COMMENTS 1',
+    'COMMENTS 2',
+    'DATA PERIODS,1,1,Data,Sunday,1/1,12/31',
+    ...Array.from(
+      { length: 24 },
+      (_, i) => `1999,10,17,${i + 1},60,A,20,5,30,88000,0,0,0,${i > 6 && i < 18 ? 500 : 0},9999,9999,0,0,0,0,90,3,2`,
+    ),
+  ].join('\n')
+
+  test('as TMY3 gives the days asked for', async () => {
+    const answer = await send(
+      'POST',
+      '/api/v1/skies/read?fileKind=tmy3&from=2026-10-16&to=2026-10-17',
+      'text/csv',
+      TMY3,
+    )
+    expect(answer.statusCode).toBe(200)
+    const { document, summary } = answer.json()
+    expect(document).toMatchObject({ source: 'typical', places: [{ latDeg: 36.1 }] })
+    expect(summary).toMatchObject({ from: '2026-10-16T01:00:00-05:00', to: '2026-10-18T00:00:00-05:00' })
+  })
+
+  test('as EPW is saved and comes back', async () => {
+    const query = 'fileKind=epw&from=2026-10-17&to=2026-10-17&name=Typical'
+    const answer = await send('PUT', `/api/v1/skies/typical?${query}`, 'text/csv', EPW)
+    expect(answer.json()).toMatchObject({ name: 'Typical', version: 1 })
+    const { document } = (await service.ask({ url: '/api/v1/skies/typical' })).json()
+    expect(document.places[0].ghiWm2).toHaveLength(24)
+    expect(document.source).toBe('typical')
+  })
+
+  test.each([
+    ['fileKind=epw', 'from'],
+    ['fileKind=epw&from=2026-10-17&to=2026-10-16', 'to'],
+    ['fileKind=epw&from=2026-10-17&to=17', 'to'],
+    ['fileKind=epw&from=2026-10-17&to=2026-10-17&averaging=preceding', 'averaging'],
+    ['fileKind=grib', 'fileKind'],
+    ['from=2026-10-17', 'from'],
+  ])('with ?%s is refused, naming %s', async (query, field) => {
+    const answer = await send('POST', `/api/v1/skies/read?${query}`, 'text/csv', EPW)
+    expect(answer.json()).toMatchObject({ status: 400, code: 'bad-query' })
+    expect(answer.json().errors).toContainEqual(expect.objectContaining({ field }))
+  })
+
+  test('sent as another kind is refused in words', async () => {
+    const answer = await send('POST', `/api/v1/skies/read?${SKY_QUERY}`, 'text/csv', EPW)
+    expect(answer.json()).toMatchObject({ status: 422, code: 'invalid-file', errors: [{ field: 'file', line: 1 }] })
+    expect(answer.json().errors[0].detail).toContain('this is an EPW weather file')
   })
 })
 

@@ -3,7 +3,9 @@ import { describe, expect, it } from 'vitest'
 import { readCsvRoute } from '../../server/files/csv-route.ts'
 import { readCsvSky } from '../../server/files/csv-sky.ts'
 import { decodeText } from '../../server/files/decode-text.ts'
+import { readEpwSky } from '../../server/files/epw-sky.ts'
 import { readGpxRoute } from '../../server/files/gpx-route.ts'
+import { readTmy3Sky } from '../../server/files/tmy3-sky.ts'
 
 const GPX = `<?xml version="1.0" encoding="UTF-8"?>
 <gpx version="1.1" creator="t" xmlns="http://www.topografix.com/GPX/1/1">
@@ -26,10 +28,29 @@ Twin Wells,-30,21,1300,2026-10-17 07:00,130,8,13,-9999,10
 `
 const SKY_OPTIONS = { name: 'T', source: 'forecast', issuedAt: '2026-10-16T18:00:00Z' } as const
 
+const HOURS = Array.from({ length: 24 }, (_, i) => i + 1)
+const EPW = `LOCATION,Saltpan,-,XXX,invented,0,-31,21,2,1180
+DESIGN CONDITIONS,0
+TYPICAL/EXTREME PERIODS,0
+GROUND TEMPERATURES,0
+HOLIDAYS/DAYLIGHT SAVINGS,No,0,0,0
+COMMENTS 1,"invented
+COMMENTS 2
+DATA PERIODS,1,1,Data,Sunday,1/1,12/31
+${HOURS.map((h) => `1997,10,17,${h},60,A,${h},5,40,88000,0,0,0,${h * 20},9999,9999,0,0,0,0,${h * 15},3,2,2`).join('\n')}
+`
+const TMY3 = `1,"SALTPAN, OLD ROAD",XX,2.0,-31,21,1180
+Date (MM/DD/YYYY),Time (HH:MM),GHI (W/m^2),DNI (W/m^2),DHI (W/m^2),TotCld (tenths),Dry-bulb (C),Dew-point (C),RHum (%),Pressure (mbar),Wdir (degrees),Wspd (m/s)
+${HOURS.map((h) => `10/17/1997,${String(h).padStart(2, '0')}:00,${h * 20},-9900,-9900,4,${h},5,40,880,${h * 15},3`).join('\n')}
+`
+const DAY = { from: '2026-10-17', to: '2026-10-17' }
+
 const DOORS = [
   { name: 'GPX', text: GPX, read: (text: string) => readGpxRoute(text) },
   { name: 'road table', text: ROUTE, read: (text: string) => readCsvRoute(text) },
   { name: 'weather table', text: SKY, read: (text: string) => readCsvSky(text, SKY_OPTIONS) },
+  { name: 'EPW', text: EPW, read: (text: string) => readEpwSky(text, DAY) },
+  { name: 'TMY3', text: TMY3, read: (text: string) => readTmy3Sky(text, DAY) },
 ]
 
 /** One or two edits: a byte set, put in or taken out, or the file cut short. */

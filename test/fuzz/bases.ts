@@ -162,6 +162,19 @@ const SAID = 'name=Saltpan&source=forecast&issuedAt=2026-10-16T18:00:00%2B02:00&
 
 const HOURS = Array.from({ length: 13 }, (_, i) => String(i + 6).padStart(2, '0'))
 
+const DAY_HOURS = Array.from({ length: 24 }, (_, i) => i + 1)
+const EPW_HEADER = `LOCATION,Saltpan,-,XXX,invented,0,-23.5,17,2,1200
+DESIGN CONDITIONS,0
+TYPICAL/EXTREME PERIODS,0
+GROUND TEMPERATURES,0
+HOLIDAYS/DAYLIGHT SAVINGS,No,0,0,0
+COMMENTS 1,invented
+COMMENTS 2
+DATA PERIODS,1,1,Data,Sunday,1/1,12/31`
+const TMY3_HEADER = `1,"SALTPAN",XX,2.0,-23.5,17,1200
+Date (MM/DD/YYYY),Time (HH:MM),GHI (W/m^2),DNI (W/m^2),DHI (W/m^2),TotCld (tenths),Dry-bulb (C),Dew-point (C),RHum (%),Pressure (mbar),Wdir (degrees),Wspd (m/s)`
+const sunOf = (hour: number): number => (hour > 6 && hour < 19 ? 500 - 20 * Math.abs(12 - hour) : 0)
+
 export const SKY_TABLES = [
   {
     delimiter: ',',
@@ -175,5 +188,15 @@ export const SKY_TABLES = [
       'cloud [oktas; instant]',
       '"cloud [oktas; instant]"',
     ),
+  },
+  {
+    delimiter: ',',
+    query: 'fileKind=epw&from=2026-10-17&to=2026-10-17',
+    text: `${EPW_HEADER}\n${DAY_HOURS.map((h) => `1997,10,17,${h},60,A,${10 + h},5,40,88000,0,0,0,${sunOf(h)},9999,9999,0,0,0,0,${h * 15},3,2,2`).join('\n')}\n`,
+  },
+  {
+    delimiter: ',',
+    query: 'fileKind=tmy3&from=2026-10-17&to=2026-10-17',
+    text: `${TMY3_HEADER}\n${DAY_HOURS.map((h) => `10/17/1997,${String(h).padStart(2, '0')}:00,${sunOf(h)},-9900,-9900,4,${10 + h},5,40,880,${h * 15},3`).join('\n')}\n`,
   },
 ]

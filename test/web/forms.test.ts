@@ -1,11 +1,12 @@
 import { describe, expect, it } from 'vitest'
 import { raceDocument } from '../../server/documents/race.ts'
+import { climateOptions } from '../../server/files/climate-options.ts'
 import { skyTableOptions } from '../../server/files/sky-table.ts'
 import { answerFreshness, forecastFreshness } from '../../web/age.ts'
-import { fileType, headerOf } from '../../web/files.ts'
+import { fileType, headerOf, yearKindOf } from '../../web/files.ts'
 import { parseDocument } from '../../web/json-document.ts'
 import { emptyRace, lacksOf, raceOf } from '../../web/race-form.ts'
-import { emptySky, offsetName, skyOptions } from '../../web/sky-form.ts'
+import { emptySky, offsetName, skyOptions, yearOptions } from '../../web/sky-form.ts'
 
 describe('a race day made from the form', () => {
   const form = {
@@ -54,7 +55,7 @@ describe('a race day made from the form', () => {
 })
 
 describe('what is said about a weather table', () => {
-  const form = { ...emptySky('plain 16 Oct.csv', Date.UTC(2026, 9, 16, 16, 0), 120), columns: {} }
+  const form = { ...emptySky('plain 16 Oct.csv', Date.UTC(2026, 9, 16, 16, 0), 120, []), columns: {} }
 
   it('starts from the file’s name and this hour, and leaves the rest to the table', () => {
     const options = skyTableOptions.parse(skyOptions(form))
@@ -84,6 +85,17 @@ describe('what is said about a weather table', () => {
     })
   })
 
+  it('of a typical year is which days it stands for: the race’s, or today', () => {
+    expect(climateOptions.parse(yearOptions(form))).toEqual({
+      name: 'plain 16 Oct',
+      from: '2026-10-16',
+      to: '2026-10-16',
+    })
+    const days = ['2026-10-16', '2026-10-17', '2026-10-18']
+    const ofRace = emptySky('year.epw', Date.UTC(2026, 7, 1), 120, days)
+    expect(yearOptions(ofRace)).toMatchObject({ name: 'year', from: '2026-10-16', to: '2026-10-18' })
+  })
+
   it('offsets are written with sign and two digits', () => {
     expect([0, 120, -210, 345].map(offsetName)).toEqual(['+00:00', '+02:00', '-03:30', '+05:45'])
   })
@@ -103,6 +115,13 @@ describe('files', () => {
     const table = '\ufeff# a note, with commas\n"GHI (W/m2, preceding hour)",time , air temperature (°C)\n1,2,3\n'
     expect(await headerOf(new Blob([table]))).toEqual(['GHI (W/m2, preceding hour)', 'time', 'air temperature (°C)'])
     expect(await headerOf(new Blob(['a;b;"c,d"\r\n1;2;3']))).toEqual(['a', 'b', 'c,d'])
+  })
+
+  it('of a typical year are known by their first two lines', async () => {
+    const kindOf = (text: string) => yearKindOf(new Blob([text]))
+    expect(await kindOf('\ufeffLOCATION,Saltpan,-,XXX\r\nDESIGN CONDITIONS,0\r\n')).toBe('epw')
+    expect(await kindOf('1,"A",NC,-5,36,-79,273\nDate (MM/DD/YYYY),Time (HH:MM),GHI (W/m^2)\n')).toBe('tmy3')
+    expect(await kindOf('time,GHI (W/m2)\n2026-10-17T06:00Z,1\n')).toBe('other')
   })
 
   it('that are not JSON say where they stop being it', () => {

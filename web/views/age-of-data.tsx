@@ -10,14 +10,13 @@ export function AgeOfData({ last }: { last: Omit<Worked, 'question'> }) {
   const { sky } = last.budget
   const skyMs = nowMs.value - Date.parse(sky.issuedAt)
   const answerMs = nowMs.value - last.atMs
-  const kind = sky.source === 'measured' ? 'measured, read' : 'forecast, issued'
   return (
     <section class="sec pad" aria-labelledby="age-title">
       <div class="sech">
         <h2 id="age-title">Age of the data</h2>
       </div>
       <ul class="ages">
-        <Row age={forecastFreshness(skyMs)} ms={skyMs} text={`${sky.name}: ${kind} ${stampText(sky.issuedAt)}`} />
+        <Row age={forecastFreshness(skyMs)} ms={skyMs} text={`${sky.name}: ${skyText(sky)}`} />
         <Row
           age={answerFreshness(answerMs)}
           ms={answerMs}
@@ -26,6 +25,11 @@ export function AgeOfData({ last }: { last: Omit<Worked, 'question'> }) {
       </ul>
     </section>
   )
+}
+
+function skyText({ source, issuedAt }: Worked['budget']['sky']): string {
+  if (source === 'typical') return 'a typical year, not a forecast'
+  return `${source === 'measured' ? 'measured, read' : 'forecast, issued'} ${stampText(issuedAt)}`
 }
 
 function Row({ age, ms, text }: { age: Freshness; ms: number; text: string }) {

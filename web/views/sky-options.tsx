@@ -79,6 +79,22 @@ export function SkyOptions({ form, headers, onChange }: OptionsProps) {
   )
 }
 
+/** Which days of a typical year are wanted. */
+export function YearOptions({ form, onChange }: Omit<OptionsProps, 'headers'>) {
+  return (
+    <>
+      <p class="note">
+        A typical year, not a forecast: the days below take the hours of the same days of the year, whatever year they
+        come from.
+      </p>
+      <div class="row2">
+        <TextField label="First day" type="date" value={form.from} onChange={(from) => onChange({ ...form, from })} />
+        <TextField label="Last day" type="date" value={form.to} onChange={(to) => onChange({ ...form, to })} />
+      </div>
+    </>
+  )
+}
+
 /** Which column is which, for headers that were not recognised. */
 function Mapping({ form, headers, onChange }: OptionsProps) {
   const say = (header: string, change: { field?: string; unit?: string }): void => {
