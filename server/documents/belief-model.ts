@@ -4,7 +4,7 @@ import type { Evidence, MeterPrior, TrackerReading } from '../engine/evidence.ts
 import type { TrackerWindow } from '../engine/tracker.ts'
 import { priorFromBench, priorFromTerms, type TrackerPrior, widened } from '../engine/tracker-prior.ts'
 import { packModel } from './pack-model.ts'
-import { trackerModel, windowModel } from './tracker-model.ts'
+import { benchPoints, trackerModel, windowModel } from './tracker-model.ts'
 import type { CarDocument } from './car.ts'
 import type { LearnedLosses } from './learned.ts'
 import type { Problem } from './problem.ts'
@@ -12,9 +12,6 @@ import { READING_FIELDS, type ReadingDocument, type ReadingField } from './readi
 
 /** Spread of losses that were given without one. Ours; no source. [%] */
 const LOSSES_SPREAD_PCT = 25
-
-/** No bench is better than this, whatever it says. Ours; no source. [points] */
-const LEAST_SPREAD_PCT = 0.05
 
 /** Class of a meter that nobody named: a plain voltmeter and a clamp. Ours; no source. [%] */
 const USUAL_CLASS_PCT = { V: 0.5, A: 1.5 }
@@ -72,16 +69,7 @@ export function carEvidence(car: CarDocument, readings: readonly ReadingDocument
 /** A tracker before it is read: its bench, or the losses given with their spread. */
 function trackerPrior(car: CarDocument, tracker: CarDocument['trackers'][number]): TrackerPrior {
   const { name, bench, window, lossesSpreadPct = LOSSES_SPREAD_PCT } = tracker
-  if (bench !== undefined) {
-    const points = bench.map(({ inputV, outputV, inputW, efficiencyPct, spreadPct }) => ({
-      inputV,
-      outputV,
-      inputW,
-      outputW: inputW * (efficiencyPct / 100),
-      efficiencySd: Math.max(spreadPct, LEAST_SPREAD_PCT) / 100,
-    }))
-    return priorFromBench(name, points, window.maxW)
-  }
+  if (bench !== undefined) return priorFromBench(name, benchPoints(tracker), window.maxW)
   const full = { W: window.maxW, ...usualVolts(car, tracker) }
   return priorFromTerms(name, trackerModel(tracker).losses, lossesSpreadPct / 100, full)
 }
@@ -92,7 +80,7 @@ const CELL_V = 0.58
 /** Where a tracker works on a usual day: its string at its best, the pack half full. [V] */
 export function usualVolts(car: CarDocument, tracker: CarDocument['trackers'][number]) {
   const outputV = openCircuitV(packModel(car.pack), 0.5)
-  const string = car.strings.find((s) => s.tracker === tracker.name)
+  const string = car.strings.find((s) => [s.tracker, ...s.alsoTrackers].includes(tracker.name))
   const cells = string?.cells.reduce((sum, group) => sum + group.inSeries, 0) ?? 0
   const { inputMinV, inputMaxV } = tracker.window
   const inputV = Math.min(Math.max(CELL_V * cells, inputMinV, 1), inputMaxV, 0.95 * outputV)

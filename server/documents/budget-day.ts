@@ -2,6 +2,7 @@ import type { Race, DayForecast } from '../engine/forecast.ts'
 import { storedJ } from '../engine/battery.ts'
 import { ledger } from '../engine/ledger.ts'
 import type { Ledger } from '../engine/ledger.ts'
+import { channelsOf } from '../engine/tracker.ts'
 import type { DayBudget } from './budget.ts'
 import { ledgerDocument } from './budget-ledger.ts'
 import { outcomeOf } from './budget-outcome.ts'
@@ -154,16 +155,20 @@ export function lastStepOf(day: ForecastDay, span: number): number {
 
 function trackersOf(day: ForecastDay): DayBudget['trackers'] {
   const { car } = day.race
+  const held = car.trackers.flatMap((tracker, i) =>
+    channelsOf(tracker).map((own) => ({ own, string: car.array.strings.models[i].name })),
+  )
   return day.forecast.balance.trackers.map((t, i) => ({
-    name: car.trackers[i].name,
-    string: car.array.model.strings[i].name,
+    name: held[i].own.name,
+    string: held[i].string,
     inputWh: t.inputJ * WH,
     lossWh: t.lossJ * WH,
+    standbyWh: t.standbyJ * WH,
     deniedWh: t.deniedJ * WH,
     meanInputV: t.inputJ > 0 ? t.inputJV / t.inputJ : 0,
     fell: Array.from(t.fellJ, (J, n) => ({
-      fromW: (n * car.trackers[i].window.maxW) / t.fellJ.length,
-      toW: ((n + 1) * car.trackers[i].window.maxW) / t.fellJ.length,
+      fromW: (n * held[i].own.window.maxW) / t.fellJ.length,
+      toW: ((n + 1) * held[i].own.window.maxW) / t.fellJ.length,
       wh: J * WH,
     })),
     limits: [...t.limits].map(([limit, sum]) => ({

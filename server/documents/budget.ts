@@ -67,7 +67,8 @@ const trackerShare = z.strictObject({
   name: z.string(),
   string: z.string(),
   inputWh: wh('taken from its string'),
-  lossWh: wh('lost in it'),
+  lossWh: wh('lost of what it took'),
+  standbyWh: wh('drawn from the pack while it took nothing').default(0),
   deniedWh: wh('of its string’s best that its window or a full pack denied'),
   meanInputV: z.number().describe('mean voltage at its input, by energy; 0 where it took nothing [V]'),
   fell: z

@@ -56,6 +56,11 @@ export const panel = z.strictObject({
 export const string = z.strictObject({
   name: label('name of the string'),
   tracker: label('name of the tracker that holds it'),
+  alsoTrackers: z
+    .array(label('name of a tracker'))
+    .max(12)
+    .describe('trackers beside it that share the current evenly')
+    .default([]),
   cellType: label('name of its cell type'),
   cells: z
     .array(z.strictObject({ panel: label('name of the panel'), inSeries: count(1, 500, 'cells in series there') }))

@@ -33,10 +33,20 @@ export const carDocument = z
     repeated(meters).forEach((i) => issue(['meters', i, 'name'], 'a name used once', meters[i]))
     const names = car.strings.map((s) => s.name)
     repeated(names).forEach((i) => issue(['strings', i, 'name'], 'a name used once', names[i]))
-    const held = car.strings.map((s) => s.tracker)
-    repeated(held).forEach((i) => issue(['strings', i, 'tracker'], 'a tracker that holds no other string', held[i]))
+    const held = car.strings.flatMap((s, i) => [
+      { path: ['strings', i, 'tracker'], name: s.tracker },
+      ...s.alsoTrackers.map((name, j) => ({ path: ['strings', i, 'alsoTrackers', j], name })),
+    ])
+    repeated(held.map(({ name }) => name)).forEach((i) =>
+      issue(held[i].path, 'a tracker that holds no other string', held[i].name),
+    )
+    held.forEach(({ path, name }) => {
+      if (!trackers.includes(name)) issue(path, oneOf(trackers), name)
+    })
     car.strings.forEach((s, i) => {
-      if (!trackers.includes(s.tracker)) issue(['strings', i, 'tracker'], oneOf(trackers), s.tracker)
+      const windows = [s.tracker, ...s.alsoTrackers].flatMap((name) => car.trackers.filter((t) => t.name === name))
+      if (!haveCommonVolts(windows.map(({ window }) => window)))
+        issue(['strings', i, 'alsoTrackers'], 'trackers with input and output voltages in common', s.alsoTrackers)
       if (!Object.hasOwn(car.cellTypes, s.cellType))
         issue(['strings', i, 'cellType'], oneOf(Object.keys(car.cellTypes)), s.cellType)
       s.cells.forEach((c, j) => {
@@ -47,6 +57,18 @@ export const carDocument = z
       issue(['stand', 'tiltMaxDeg'], `at least tiltMinDeg (${car.stand.tiltMinDeg})`, car.stand.tiltMaxDeg)
   })
   .meta({ title: 'Car' })
+
+type Window = z.output<typeof tracker>['window']
+
+/** Whether trackers side by side find a voltage at both sides that suits them all. */
+function haveCommonVolts(windows: Window[]): boolean {
+  const least = (of: (window: Window) => number): number => Math.min(...windows.map(of))
+  const most = (of: (window: Window) => number): number => Math.max(...windows.map(of))
+  return (
+    windows.length < 2 ||
+    (most((w) => w.inputMinV) < least((w) => w.inputMaxV) && most((w) => w.outputMinV) < least((w) => w.outputMaxV))
+  )
+}
 
 const repeated = (names: string[]): number[] => names.flatMap((name, i) => (names.indexOf(name) < i ? [i] : []))
 

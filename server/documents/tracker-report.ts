@@ -1,7 +1,7 @@
 import { z } from 'zod'
 import { type Belief, coverageFactor } from '../engine/belief.ts'
 import { efficiencyBand } from '../engine/loss-band.ts'
-import { TERMS, type Term } from '../engine/tracker-prior.ts'
+import { TERMS, type Term } from '../engine/loss-terms.ts'
 import { carBelief, usualVolts } from './belief-model.ts'
 import type { DayBudget } from './budget.ts'
 import type { CarDocument } from './car.ts'

@@ -12,12 +12,12 @@ import type { RoadEnergy } from './road-energy.ts'
 import type { RoadLoad } from './road.ts'
 import type { Weather } from './sky.ts'
 import type { Steps } from './steps.ts'
-import { takers } from './takers.ts'
+import { emptyDays, takers } from './takers.ts'
 import type { Takers } from './takers.ts'
 import type { Span } from './timetable.ts'
 import type { Tracker, TrackerLimit } from './tracker.ts'
 
-/** The car as the forecast needs it; `trackers[i]` holds string `i`. */
+/** The car as the forecast needs it; `trackers[i]` holds string `i`, alone or as several channels. */
 export interface Car {
   load: RoadLoad
   drive: Drive
@@ -32,19 +32,37 @@ export interface Car {
   reserveCharge: number
 }
 
-/** Into how many shares of a tracker's power its energy is sorted. */
-const POWER_SHARES = 12
+/** What one tracker did, step by step. */
+export interface TrackerSteps {
+  inputW: Float64Array
+  outputW: Float64Array
+  /** Where it held its string; 0 at rest. */
+  inputV: Float64Array
+  /** Terminals of the pack at its output. */
+  packV: Float64Array
+  /** Its part of the string's best point. */
+  bestW: Float64Array
+  /** Of that, what its window refused and what a full pack did. */
+  deniedW: Float64Array
+  fullW: Float64Array
+  /** What bound: a place in LIMITS, from 1; 0 for nothing. */
+  limit: Uint8Array
+}
 
 /** What one tracker did on a day. */
 export interface TrackerDay {
   inputJ: number
+  /** Of what it took. */
   lossJ: number
+  /** Drawn from the pack while it took nothing. */
+  standbyJ: number
   deniedJ: number
   /** Input energy times its voltage, for their mean. [J·V] */
   inputJV: number
   /** Input energy by input power, in equal shares of the most that the window allows. */
   fellJ: Float64Array
   limits: Map<TrackerLimit | 'full', { durationS: number; deniedJ: number }>
+  steps: TrackerSteps
 }
 
 /** The day's energy, step by step and summed by span. Arrays have one entry per step. */
@@ -59,6 +77,7 @@ export interface Balance {
   packC: Float64Array
   /** By span of the timetable. */
   spans: Energy[]
+  /** Trackers of the first string, then of the second and so on. */
   trackers: TrackerDay[]
   /** First step in which the pack could not give what was asked; -1 where it always could. */
   firstShort: number
@@ -84,7 +103,7 @@ export function balance(car: Car, day: BalanceDay, opening: { charge: number; pa
   const out = emptyBalance(car, steps.count, spans.length)
   const pack = packDay(car.pack, opening.charge, opening.packC)
   const road = newRoadEnergy()
-  const taken = takers(car, day.harvest)
+  const taken = takers(car, day)
   for (let i = 0; i < steps.count; i++) {
     const sums = out.spans[steps.span[i]]
     const durationS = (steps.toMs[i] - steps.fromMs[i]) / 1000
@@ -94,8 +113,8 @@ export function balance(car: Car, day: BalanceDay, opening: { charge: number; pa
     else resetRoad(road)
     const { packV, heldJ } = pack
     if (steps.charging[i] === 1) taken.take(i, packV)
-    else taken.rest()
-    const netJ = taken.outputW() * durationS - road.busJ - auxW * durationS
+    else taken.rest(i, packV)
+    const netJ = (taken.outputW() - taken.standbyW()) * durationS - road.busJ - auxW * durationS
     pack.take(netJ, Math.max(durationS, road.changeS), airC[i])
     if (pack.step.spilledJ > 0) giveUp(taken, road, { excessW: pack.step.spilledJ / durationS, packV, durationS })
     pack.warm(durationS, airC[i], isDriving)
@@ -164,14 +183,7 @@ function emptyBalance(car: Car, count: number, spans: number): Balance {
     packV: column(),
     packC: column(),
     spans: Array.from({ length: spans }, noEnergy),
-    trackers: car.trackers.map(() => ({
-      inputJ: 0,
-      lossJ: 0,
-      deniedJ: 0,
-      inputJV: 0,
-      fellJ: new Float64Array(POWER_SHARES),
-      limits: new Map(),
-    })),
+    trackers: emptyDays(car, count),
     firstShort: -1,
     firstShortLimit: null,
     packLimits: [],

@@ -4,7 +4,7 @@ import { block, type Matrix, placeBlock, rootDiagonal, scaled, zeros } from './m
 import { type NormalInverseGamma, update } from './regression.ts'
 import { quantileT } from './student-t.ts'
 import type { TrackerLosses } from './tracker.ts'
-import { lossesOf, type Term, TERMS, termsOf } from './tracker-prior.ts'
+import { lossesOf, type Term, TERMS, termsOf } from './loss-terms.ts'
 import { truncateAtZero } from './truncated.ts'
 
 export interface TrackerBelief {

@@ -1,5 +1,6 @@
 import { InputError } from './input-error.ts'
-import { lossFactors, TERMS, type TrackerPrior } from './tracker-prior.ts'
+import { lossFactors, TERMS } from './loss-terms.ts'
+import { type TrackerPrior } from './tracker-prior.ts'
 
 /** A meter, known to within a share of what it shows. */
 export interface MeterPrior {

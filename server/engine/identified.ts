@@ -1,5 +1,5 @@
 import { inverse, type Matrix, rootDiagonal } from './matrix.ts'
-import { type Term, TERMS } from './tracker-prior.ts'
+import { type Term, TERMS } from './loss-terms.ts'
 
 /** A term counts as told by readings when they alone bring its standard deviation below this share of the prior's. */
 const NARROWED = 0.9

@@ -1,8 +1,9 @@
 import type { TrackerBelief } from './belief.ts'
 import { InputError } from './input-error.ts'
 import { quadratic } from './matrix.ts'
-import { type Tracker, type TrackerLosses, trackerOutputW } from './tracker.ts'
-import { lossFactors } from './tracker-prior.ts'
+import type { Tracker, TrackerLosses } from './tracker.ts'
+import { trackerOutputW } from './tracker-output.ts'
+import { lossFactors } from './loss-terms.ts'
 
 /** Where a tracker is looked at. */
 export interface TrackerPoint {

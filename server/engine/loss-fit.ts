@@ -1,4 +1,6 @@
+import { fullOnBench, type Told, toldByBench } from './bench-told.ts'
 import { InputError } from './input-error.ts'
+import { lossesOf } from './loss-terms.ts'
 import type { TrackerLosses } from './tracker.ts'
 
 /** One reading on the bench: what went in and came out, the latter as power or as a share of the input. */
@@ -9,13 +11,20 @@ export interface BenchPoint {
   outputW?: number
   /** Output over input power, above 0 up to 1. */
   efficiency?: number
+  /** Standard deviation of that share; 0.005 where left out. The fit weighs all points alike. */
+  efficiencySd?: number
 }
 
 export interface LossFit {
   losses: TrackerLosses
   /** Root mean square of what the fit leaves unexplained. */
   rmsW: number
+  /** Which terms the points tell, each good to its `efficiencySd`. */
+  told: Told
 }
+
+/** Standard deviation of a point's efficiency where none is given; a careful bench. Ours; no source. */
+const USUAL_SD = 0.005
 
 const TERMS = 4
 
@@ -24,7 +33,7 @@ const TERMS = 4
  *
  * Tries each of the sixteen choices of terms and keeps the best that has none negative, which is the
  * optimum. Points at several voltages are needed to tell switching from rectifier: terms that the points
- * cannot tell apart are given to as few as explain them.
+ * cannot tell apart are given to as few as explain them, and `told` says so.
  *
  * @param points at least four
  * @throws InputError naming the point and field that is wrong
@@ -44,9 +53,9 @@ export function fitLosses(points: readonly BenchPoint[]): LossFit {
     // The margin keeps a term out that only fits the last digits.
     if (squares < best.squares * (1 - 1e-9)) best = { terms, squares }
   }
-  const [standingW, switchingFraction, conductionOhm, rectifierV] = best.terms
-  const rmsW = Math.sqrt(best.squares / rows.length)
-  return { losses: { standingW, switchingFraction, conductionOhm, rectifierV }, rmsW }
+  const spread = points.map((point) => ({ ...point, efficiencySd: point.efficiencySd ?? USUAL_SD }))
+  const told = toldByBench(spread, fullOnBench(points, Math.max(...points.map((p) => p.inputW))))
+  return { losses: lossesOf(best.terms), rmsW: Math.sqrt(best.squares / rows.length), told }
 }
 
 /** What each term is multiplied by at a point, and the watts lost there. */
@@ -69,6 +78,7 @@ function lossRow(point: BenchPoint, i: number): LossRow {
   }
   if (point.efficiency !== undefined)
     check('efficiency', point.efficiency > 0 && point.efficiency <= 1, 'above 0 up to 1')
+  check('efficiencySd', point.efficiencySd === undefined || point.efficiencySd > 0, 'a number above 0')
   const outputW = point.outputW ?? (point.efficiency ?? 0) * inputW
   check('outputW', outputW > 0 && outputW <= inputW, `above 0 up to the input's ${inputW}`)
   const inputA = inputW / inputV

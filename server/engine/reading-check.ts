@@ -189,13 +189,15 @@ const EDGES = {
   'output-low': "the output is at the window's lowest voltage",
   'output-high': "the output is at the window's highest voltage",
   asleep: 'the tracker is asleep',
+  derated: 'the tracker holds back for heat',
+  dead: 'the tracker is marked as dead',
 } satisfies Record<TrackerLimit, string>
 
 /** Which edge of the window a reading was taken at, if any. */
 function edgeOf({ inputV, inputA, outputV, outputA }: TrackerReading, window: TrackerWindow): TrackerLimit | null {
   const isHigh = (value: number, edge: number): boolean => value >= edge * (1 - AT_EDGE)
   const isLow = (value: number, edge: number): boolean => value <= edge * (1 + AT_EDGE)
-  if (isHigh(inputV, outputV)) return 'cannot-step-down'
+  if (isHigh(inputV, outputV - (window.leastRiseV ?? 0))) return 'cannot-step-down'
   if (isLow(inputV, window.inputMinV)) return 'input-low'
   if (isHigh(inputV, window.inputMaxV)) return 'input-high'
   if (isHigh(inputA, window.inputMaxA)) return 'current'

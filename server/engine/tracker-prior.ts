@@ -1,11 +1,9 @@
 import { InputError } from './input-error.ts'
-import { type BenchPoint, fitLosses } from './loss-fit.ts'
-import { diagonal, inverse, type Matrix, rootDiagonal } from './matrix.ts'
+import { benchCovariance, fullOnBench, type FullPower, type SpreadPoint, sdsLosing, WIDE_SHARE } from './bench-told.ts'
+import { fitLosses } from './loss-fit.ts'
+import { lossesOf, TERMS } from './loss-terms.ts'
+import { diagonal, type Matrix, rootDiagonal } from './matrix.ts'
 import type { TrackerLosses } from './tracker.ts'
-
-/** The loss terms in the order of every row and covariance. */
-export const TERMS = ['standingW', 'switchingFraction', 'conductionOhm', 'rectifierV'] as const
-export type Term = (typeof TERMS)[number]
 
 /** What is held of a tracker before it is read in the car. */
 export interface TrackerPrior {
@@ -17,48 +15,14 @@ export interface TrackerPrior {
   referenceW: number
 }
 
-/** Where a tracker does its full power. */
-export interface FullPower {
-  W: number
-  inputV: number
-  outputV: number
-}
-
-/** A bench point with the standard deviation of its efficiency, a fraction. */
-export interface SpreadPoint extends BenchPoint {
-  efficiencySd: number
-}
-
 /**
  * A term that the bench shows as nothing may still be something: one standard deviation of it is what
  * would lose this share of full power. Ours; no source.
  */
 export const FLOOR_SHARE = 0.001
 
-/** What a term may lose, as a share of full power, before the bench is asked; one standard deviation. Ours; no source. */
-export const WIDE_SHARE = 0.01
-
 /** Below this share of its floor a fitted term is nothing: the last digits of a bench. */
 const NOTHING = 1e-6
-
-/** What the four terms are multiplied by: 1, Iin·Vout, Iin², Iout. */
-export const lossFactors = (inputA: number, outputV: number, outputA: number): number[] => [
-  1,
-  inputA * outputV,
-  inputA * inputA,
-  outputA,
-]
-
-/** The terms in the order of TERMS. */
-export const termsOf = (losses: TrackerLosses): number[] => TERMS.map((name) => losses[name])
-
-/** The terms by their names. */
-export const lossesOf = ([standingW, switchingFraction, conductionOhm, rectifierV]: ArrayLike<number> &
-  Iterable<number>): TrackerLosses => ({ standingW, switchingFraction, conductionOhm, rectifierV })
-
-/** Standard deviation of each term that would by itself lose a share of full power. */
-const sdsLosing = (share: number, { W, inputV, outputV }: FullPower): number[] =>
-  lossFactors(W / inputV, outputV, W / outputV).map((factor) => (share * W) / factor)
 
 /**
  * A prior from loss terms that were given, each uncertain by a share of itself and apart from the others.
@@ -97,29 +61,13 @@ export function priorFromBench(name: string, points: readonly SpreadPoint[], ful
   checkAbove('fullW', fullW)
   const { losses } = fitLosses(points)
   for (const [i, { efficiencySd }] of points.entries()) checkAbove(`points[${i}].efficiencySd`, efficiencySd)
-  const mean = (of: (point: SpreadPoint) => number): number => points.reduce((sum, p) => sum + of(p), 0) / points.length
-  const full = { W: fullW, inputV: mean((p) => p.inputV), outputV: mean((p) => p.outputV) }
+  const full = fullOnBench(points, fullW)
   const covariance = benchCovariance(points, sdsLosing(WIDE_SHARE, full))
   for (const [j, floor] of sdsLosing(FLOOR_SHARE, full).entries()) {
     const at = j * TERMS.length + j
     if (losses[TERMS[j]] < NOTHING * floor) covariance.data[at] = Math.max(covariance.data[at], floor ** 2)
   }
   return { name, losses, covariance, referenceW: fullW }
-}
-
-/** What the points leave of a wide uncertainty of each term; reckoned in units of that. */
-function benchCovariance(points: readonly SpreadPoint[], wideSds: readonly number[]): Matrix {
-  const precision = diagonal(wideSds.map(() => 1))
-  const { size } = precision
-  for (const { inputV, outputV, inputW, outputW, efficiency = 0, efficiencySd } of points) {
-    const factors = lossFactors(inputW / inputV, outputV, (outputW ?? efficiency * inputW) / outputV)
-    const row = factors.map((factor, j) => (factor * wideSds[j]) / (efficiencySd * inputW))
-    for (let i = 0; i < size; i++) {
-      for (let j = 0; j < size; j++) precision.data[i * size + j] += row[i] * row[j]
-    }
-  }
-  const { data } = inverse(precision, 'points')
-  return { size, data: data.map((value, k) => value * wideSds[Math.floor(k / size)] * wideSds[k % size]) }
 }
 
 /** Standard deviation of each term of a prior. */

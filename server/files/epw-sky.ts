@@ -78,7 +78,13 @@ function epwYear(text: string, problems: ProblemList): ClimateYear | null {
     const first = headers[i]?.cells[0] ?? ''
     if (name.test(first)) return
     const detail = `expected line ${i + 1} of an EPW file, which starts with ${HEADER_NAMES[i]}`
-    problems.add({ field: 'header', value: shownValue(first.slice(0, 60)), detail, line: Math.min(i + 1, lines.length), column: 1 })
+    problems.add({
+      field: 'header',
+      value: shownValue(first.slice(0, 60)),
+      detail,
+      line: Math.min(i + 1, lines.length),
+      column: 1,
+    })
   })
   if (problems.count > 0) return null
   const [location] = headers

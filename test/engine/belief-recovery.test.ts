@@ -1,7 +1,7 @@
 import { expect, it } from 'vitest'
 import { coverageFactor, learn } from '../../server/engine/belief.ts'
 import { quadratic } from '../../server/engine/matrix.ts'
-import { TERMS, termsOf, lossesOf } from '../../server/engine/tracker-prior.ts'
+import { TERMS, termsOf, lossesOf } from '../../server/engine/loss-terms.ts'
 import { METERS, PLAIN, pointsOver, priorTracker, shown, SWAPPED, TYPICAL } from './read-trackers.ts'
 import { normalFrom, seeded } from './seeded.ts'
 

@@ -4,7 +4,8 @@ import { coverageFactor, learn } from '../../server/engine/belief.ts'
 import { checkReading, type TrackerReading } from '../../server/engine/evidence.ts'
 import { quadratic } from '../../server/engine/matrix.ts'
 import { shownEfficiency } from '../../server/engine/reading-check.ts'
-import { priorFromTerms, TERMS, termsOf } from '../../server/engine/tracker-prior.ts'
+import { TERMS, termsOf } from '../../server/engine/loss-terms.ts'
+import { priorFromTerms } from '../../server/engine/tracker-prior.ts'
 import {
   believe,
   EXACT,

@@ -1,8 +1,9 @@
 import { describe, expect, it } from 'vitest'
 import { coverageFactor } from '../../server/engine/belief.ts'
 import { efficiencyBand, heldEfficiency } from '../../server/engine/loss-band.ts'
-import { boostRatio, type Tracker, trackerOutputW } from '../../server/engine/tracker.ts'
-import { lossesOf, TERMS, termsOf } from '../../server/engine/tracker-prior.ts'
+import type { Tracker } from '../../server/engine/tracker.ts'
+import { boostRatio, trackerOutputW } from '../../server/engine/tracker-output.ts'
+import { lossesOf, TERMS, termsOf } from '../../server/engine/loss-terms.ts'
 import { believe, pointsOver, shown, TYPICAL, WINDOW } from './read-trackers.ts'
 
 const VOLTS = { inputV: 55, outputV: 110 }

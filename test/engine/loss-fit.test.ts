@@ -1,7 +1,8 @@
 import * as fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
 import { type BenchPoint, fitLosses } from '../../server/engine/loss-fit.ts'
-import { type Tracker, type TrackerLosses, trackerOutputW } from '../../server/engine/tracker.ts'
+import type { Tracker, TrackerLosses } from '../../server/engine/tracker.ts'
+import { trackerOutputW } from '../../server/engine/tracker-output.ts'
 
 const LOSSES: TrackerLosses = { standingW: 0.6, switchingFraction: 0.004, conductionOhm: 0.05, rectifierV: 0.4 }
 
@@ -102,6 +103,47 @@ describe('losses from a bench', () => {
     expect(losses.switchingFraction).toBe(0)
     expect(losses.standingW / 1000).toBeCloseTo(0.0068, 3)
     expect((losses.conductionOhm * 1000) / 80 ** 2).toBeCloseTo(0.0233, 3)
+  })
+})
+
+describe('what a bench tells', () => {
+  const told = (points: BenchPoint[]) => fitLosses(points).told
+  const at = (...pairs: [number, number][]) =>
+    bench(LOSSES).filter((p) => pairs.some(([inputV, outputV]) => p.inputV === inputV && p.outputV === outputV))
+
+  it('at three voltages each side: every term', () => {
+    expect(told(bench(LOSSES))).toEqual({
+      terms: { standingW: true, switchingFraction: true, conductionOhm: true, rectifierV: true },
+      sums: [],
+    })
+  })
+
+  it('at one pair of voltages: switching and rectifier both go with power, so only their sum', () => {
+    const { terms, sums } = told(at([50, 100]))
+    expect(terms).toMatchObject({ switchingFraction: false, rectifierV: false })
+    expect(sums).toContainEqual(['switchingFraction', 'rectifierV'])
+  })
+
+  it('at one power and one pair of voltages: nothing but what all lose together', () => {
+    const point = at([50, 100])[3]
+    const { terms, sums } = told([point, point, point, point])
+    expect(Object.values(terms)).toEqual([false, false, false, false])
+    expect(sums).toEqual([['standingW', 'switchingFraction', 'conductionOhm', 'rectifierV']])
+  })
+
+  it('less where its points are less sure, down to nothing', () => {
+    const count = (efficiencySd: number): number => {
+      const { terms, sums } = told(bench(LOSSES).map((point) => ({ ...point, efficiencySd })))
+      return Object.values(terms).filter(Boolean).length + sums.length
+    }
+    expect(count(0.001)).toBe(4)
+    expect(count(5)).toBe(0)
+  })
+
+  it('at one input and three output voltages, carefully read: every term', () => {
+    // One input voltage, several output voltages: Iin·Vout and Iout are not in step any more.
+    const { terms } = told(at([50, 80], [50, 100], [50, 125]).map((p) => ({ ...p, efficiencySd: 0.001 })))
+    expect(terms).toEqual({ standingW: true, switchingFraction: true, conductionOhm: true, rectifierV: true })
   })
 })
 

@@ -1,6 +1,7 @@
 import { learn, type Belief } from '../../server/engine/belief.ts'
 import type { MeterPrior, ReadingMeters, TrackerReading } from '../../server/engine/evidence.ts'
-import { type Tracker, type TrackerLosses, trackerOutputW, type TrackerWindow } from '../../server/engine/tracker.ts'
+import type { Tracker, TrackerLosses, TrackerWindow } from '../../server/engine/tracker.ts'
+import { trackerOutputW } from '../../server/engine/tracker-output.ts'
 import { priorFromTerms, type TrackerPrior } from '../../server/engine/tracker-prior.ts'
 
 /** Invented trackers for readings, and meters of ±1.5 % (clamps) and ±0.5 % (dividers), evenly likely. */

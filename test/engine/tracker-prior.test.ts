@@ -1,18 +1,9 @@
 import { describe, expect, it } from 'vitest'
 import { fitLosses } from '../../server/engine/loss-fit.ts'
 import { quadratic } from '../../server/engine/matrix.ts'
-import {
-  FLOOR_SHARE,
-  lossFactors,
-  priorFromBench,
-  priorFromTerms,
-  priorSds,
-  type SpreadPoint,
-  TERMS,
-  termsOf,
-  WIDE_SHARE,
-  widened,
-} from '../../server/engine/tracker-prior.ts'
+import { lossFactors, TERMS, termsOf } from '../../server/engine/loss-terms.ts'
+import { type SpreadPoint, WIDE_SHARE } from '../../server/engine/bench-told.ts'
+import { FLOOR_SHARE, priorFromBench, priorFromTerms, priorSds, widened } from '../../server/engine/tracker-prior.ts'
 import { FULL, pointsOver, shown, TYPICAL } from './read-trackers.ts'
 import { normalFrom, seeded } from './seeded.ts'
 

@@ -1,16 +1,8 @@
 import * as fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
-import {
-  boostRatio,
-  inputForOutputW,
-  newOperatingPoint,
-  operatingPoint,
-  prepareTracker,
-  type Tracker,
-  type TrackerLosses,
-  trackerOutput,
-  trackerOutputW,
-} from '../../server/engine/tracker.ts'
+import { newOperatingPoint, operatingPoint } from '../../server/engine/operating-point.ts'
+import { prepareTracker, type Tracker, type TrackerLosses } from '../../server/engine/tracker.ts'
+import { boostRatio, inputForOutputW, trackerOutput, trackerOutputW } from '../../server/engine/tracker-output.ts'
 
 const NO_LOSS: TrackerLosses = { standingW: 0, switchingFraction: 0, conductionOhm: 0, rectifierV: 0 }
 
@@ -149,10 +141,11 @@ const powerAtV = (volts: number): number => volts * currentAtV(volts)
 const BEST_V = 80 * (1 / 9) ** (1 / 8)
 const BEST = { V: BEST_V, W: (6 * BEST_V * 8) / 9 }
 const wantedW = BEST.W * 0.995
+const at = (packV: number) => ({ packV, airC: 25, isMoving: false })
 
 describe('where a tracker holds its string', () => {
   it('at its best point inside the window', () => {
-    const point = operatingPoint(tracker, BEST, 110, powerAtV)
+    const point = operatingPoint(tracker, BEST, at(110), powerAtV)
     expect(point).toEqual({ inputW: wantedW, inputV: BEST_V, deniedW: 0, limit: null })
   })
 
@@ -161,7 +154,7 @@ describe('where a tracker holds its string', () => {
     ['input-high', { inputMaxV: 50 }, 110, 50],
     ['cannot-step-down', { outputMinV: 40 }, 55, 55],
   ])('at the edge it can take: %s', (limit, window, packV, heldV) => {
-    const point = operatingPoint(withWindow(window), BEST, packV, powerAtV)
+    const point = operatingPoint(withWindow(window), BEST, at(packV), powerAtV)
     expect(point.limit).toBe(limit)
     expect(point.inputV).toBe(heldV)
     expect(point.inputW).toBeCloseTo(0.995 * powerAtV(heldV), 9)
@@ -173,7 +166,7 @@ describe('where a tracker holds its string', () => {
     ['output-low', {}, 69],
     ['cannot-step-down', { inputMinV: 80, outputMinV: 60 }, 75],
   ])('nowhere when the pack is out of reach: %s', (limit, window, packV) => {
-    expect(operatingPoint(withWindow(window), BEST, packV, powerAtV)).toMatchObject({
+    expect(operatingPoint(withWindow(window), BEST, at(packV), powerAtV)).toMatchObject({
       limit,
       inputW: 0,
       deniedW: wantedW,
@@ -181,7 +174,7 @@ describe('where a tracker holds its string', () => {
   })
 
   it('above its best voltage when the current is too high', () => {
-    const point = operatingPoint(withWindow({ inputMaxA: 4 }), BEST, 110, powerAtV)
+    const point = operatingPoint(withWindow({ inputMaxA: 4 }), BEST, at(110), powerAtV)
     expect(point.limit).toBe('current')
     expect(point.inputW / point.inputV).toBeCloseTo(4, 6)
     // 6·(1 − x⁸)·0.995 = 4, by hand
@@ -189,11 +182,11 @@ describe('where a tracker holds its string', () => {
   })
 
   it('above its best voltage when the power is too high, below where there is no room above', () => {
-    const up = operatingPoint(withWindow({ maxW: 200 }), BEST, 110, powerAtV)
+    const up = operatingPoint(withWindow({ maxW: 200 }), BEST, at(110), powerAtV)
     expect(up).toMatchObject({ limit: 'power' })
     expect(up.inputW).toBeCloseTo(200, 6)
     expect(up.inputV).toBeGreaterThan(BEST_V)
-    const down = operatingPoint(withWindow({ maxW: 200, inputMaxV: 65 }), BEST, 110, powerAtV)
+    const down = operatingPoint(withWindow({ maxW: 200, inputMaxV: 65 }), BEST, at(110), powerAtV)
     expect(down).toMatchObject({ limit: 'power' })
     expect(down.inputW).toBeCloseTo(200, 6)
     expect(down.inputV).toBeLessThan(65)
@@ -201,23 +194,27 @@ describe('where a tracker holds its string', () => {
 
   it('so that no more goes out than the output carries', () => {
     const own = withWindow({ outputMaxA: 2 })
-    const point = operatingPoint(own, BEST, 110, powerAtV)
+    const point = operatingPoint(own, BEST, at(110), powerAtV)
     expect(point.limit).toBe('output-current')
     expect(trackerOutputW(own, point.inputW, point.inputV, 110)).toBeCloseTo(220, 6)
   })
 
   it('nowhere when no voltage keeps the current down', () => {
     const own = withWindow({ inputMaxA: 2, inputMaxV: 50 })
-    expect(operatingPoint(own, BEST, 110, powerAtV)).toMatchObject({ limit: 'current', inputW: 0, deniedW: wantedW })
+    expect(operatingPoint(own, BEST, at(110), powerAtV)).toMatchObject({
+      limit: 'current',
+      inputW: 0,
+      deniedW: wantedW,
+    })
   })
 
   it('asleep at night and where the losses would eat the dusk', () => {
-    expect(operatingPoint(tracker, { W: 0, V: 0 }, 110, () => 0)).toMatchObject({
+    expect(operatingPoint(tracker, { W: 0, V: 0 }, at(110), () => 0)).toMatchObject({
       inputW: 0,
       deniedW: 0,
       limit: 'asleep',
     })
-    const dusk = operatingPoint(tracker, { W: 0.5, V: 60 }, 110, () => 0.5)
+    const dusk = operatingPoint(tracker, { W: 0.5, V: 60 }, at(110), () => 0.5)
     expect(dusk).toMatchObject({ inputW: 0, deniedW: 0.4975, limit: 'asleep' })
   })
 
@@ -240,7 +237,7 @@ describe('where a tracker holds its string', () => {
             maxW,
             outputMaxA: 3,
           })
-          operatingPoint(own, BEST, packV, powerAtV, out)
+          operatingPoint(own, BEST, at(packV), powerAtV, out)
           names.add(out.limit)
           expect(out.inputW + out.deniedW).toBeCloseTo(wantedW, 9)
           if (out.inputW === 0) return
@@ -266,4 +263,50 @@ it.each([
   ['tracker.trackingEfficiency', { trackingEfficiency: 1.01 }],
 ])('a wrong %s is refused by name', (field, change) => {
   expect(() => prepareTracker({ ...tracker, ...change })).toThrowError(expect.objectContaining({ field }))
+})
+
+describe('a least rise from input to output', () => {
+  it('holds the string that far below the pack', () => {
+    const own = withWindow({ outputMinV: 40, leastRiseV: 4 })
+    const point = operatingPoint(own, BEST, at(60), powerAtV)
+    expect(point).toMatchObject({ limit: 'cannot-step-down', inputV: 56 })
+    expect(point.inputW).toBeCloseTo(0.995 * powerAtV(56), 9)
+    expect(operatingPoint(own, BEST, at(BEST_V + 4.001), powerAtV).limit).toBeNull()
+  })
+
+  it('a pack that rises never takes from a string held at its edge', () => {
+    const steps = Array.from({ length: 300 }, (_, i) => 21 + i * 0.3)
+    for (const leastRiseV of [0, 3.5]) {
+      const own = withWindow({ outputMinV: 0, leastRiseV })
+      const taken = steps.map((packV) => operatingPoint(own, BEST, at(packV), powerAtV))
+      const held = taken.filter(({ limit }) => limit === 'cannot-step-down')
+      expect(held.length).toBeGreaterThan(100)
+      held.slice(1).forEach(({ inputW }, i) => expect(inputW).toBeGreaterThanOrEqual(held[i].inputW))
+      expect(taken.at(-1)?.limit).toBeNull()
+    }
+  })
+})
+
+// Two hills by hand: 3 A up to 70 V and 8 A up to 30 V, as two panels in unequal light with a bypass.
+const hillsAtV = (volts: number): number =>
+  volts * Math.max(8 * (1 - (volts / 30) ** 12), 3 * (1 - (volts / 70) ** 12), 0)
+const LOW_V = 30 * (1 / 13) ** (1 / 12)
+const HIGH_V = 70 * (1 / 13) ** (1 / 12)
+
+describe('a string with two hills', () => {
+  const best = { V: LOW_V, W: hillsAtV(LOW_V), hasHills: true }
+
+  it('is held on the hill inside the window where that gives more than the edge', () => {
+    expect(best.W).toBeGreaterThan(hillsAtV(HIGH_V))
+    const point = operatingPoint(withWindow({ inputMinV: 32 }), best, at(110), hillsAtV)
+    expect(point.limit).toBe('input-low')
+    expect(point.inputV).toBeCloseTo(HIGH_V, 1)
+    expect(point.inputW).toBeCloseTo(0.995 * hillsAtV(HIGH_V), 2)
+    expect(point.inputW + point.deniedW).toBeCloseTo(0.995 * best.W, 9)
+  })
+
+  it('stays at the edge where the window holds no better place', () => {
+    const point = operatingPoint(withWindow({ inputMinV: 26, inputMaxV: 35 }), best, at(110), hillsAtV)
+    expect(point).toMatchObject({ limit: 'input-low', inputV: 26 })
+  })
 })

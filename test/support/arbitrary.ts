@@ -8,7 +8,11 @@ import { someCar, someRace } from './scenario.ts'
 
 const number = (min: number, max: number) => fc.double({ min, max, noNaN: true })
 
-/** Panels, strings and trackers of all sorts: steep, spanning, narrow windows, lossy. */
+/** One time in six. */
+const seldom = <T>(of: fc.Arbitrary<T>): fc.Arbitrary<T | undefined> =>
+  fc.oneof({ weight: 5, arbitrary: fc.constant(undefined) }, { weight: 1, arbitrary: of })
+
+/** Panels, strings and trackers of all sorts: steep, spanning, narrow windows, lossy, hot, shared, dead. */
 const array = fc.record({
   pitches: fc.array(number(-30, 30), { minLength: 1, maxLength: 3 }),
   cells: fc.array(fc.integer({ min: 5, max: 200 }), { minLength: 1, maxLength: 3 }),
@@ -22,8 +26,18 @@ const array = fc.record({
   standingW: number(0, 20),
   conductionOhm: number(0, 1),
   rectifierV: number(0, 2),
+  leastRiseV: seldom(number(0, 20)),
+  standbyW: number(0, 5),
+  fullToC: seldom(number(0, 80)),
+  leastPct: number(0, 100),
+  channels: fc.integer({ min: 1, max: 3 }),
+  dead: seldom(fc.integer({ min: 0, max: 2 })),
   glass: fc.constantFrom('martin-ruiz' as const, 'physical' as const, 'ashrae' as const, 'none' as const),
 })
+
+/** Names of the channels beside the first on a string. */
+const besides = (channels: number, i: number): string[] =>
+  Array.from({ length: channels - 1 }, (_, c) => `tracker ${i + 1}.${c + 1}`)
 
 /** A valid car: light or heavy, slick or blunt, with a small or large pack. */
 export const anyCar: fc.Arbitrary<CarInput> = fc
@@ -64,28 +78,37 @@ export const anyCar: fc.Arbitrary<CarInput> = fc
       strings: names.map((name, i) => ({
         name,
         tracker: `tracker ${i + 1}`,
+        alsoTrackers: besides(a.array.channels, i),
         cellType: 'silicon',
         soilingPct: a.array.soilingPct,
         cells: spans
           ? pitches.map((_, p) => ({ panel: `panel ${p + 1}`, inSeries: cells[i] }))
           : [{ panel: `panel ${(i % pitches.length) + 1}`, inSeries: cells[i] }],
       })),
-      trackers: names.map((_, i) => ({
-        name: `tracker ${i + 1}`,
-        window: {
-          inputMinV: a.array.inputMinV,
-          inputMaxV: a.array.inputMaxV,
-          inputMaxA: a.array.inputMaxA,
-          outputMaxV: 130,
-          maxW: a.array.maxW,
-        },
-        losses: {
-          standingW: a.array.standingW,
-          switchingPct: 0.5,
-          conductionOhm: a.array.conductionOhm,
-          rectifierV: a.array.rectifierV,
-        },
-      })),
+      trackers: names
+        .flatMap((_, i) => [`tracker ${i + 1}`, ...besides(a.array.channels, i)])
+        .map((name, i) => ({
+          name,
+          isDead: i === a.array.dead,
+          standbyW: a.array.standbyW,
+          ...(a.array.fullToC === undefined
+            ? {}
+            : { derating: { fullToC: a.array.fullToC, leastFromC: a.array.fullToC + 20, leastPct: a.array.leastPct } }),
+          window: {
+            leastRiseV: a.array.leastRiseV ?? 0,
+            inputMinV: a.array.inputMinV,
+            inputMaxV: a.array.inputMaxV,
+            inputMaxA: a.array.inputMaxA,
+            outputMaxV: 130,
+            maxW: a.array.maxW,
+          },
+          losses: {
+            standingW: a.array.standingW,
+            switchingPct: 0.5,
+            conductionOhm: a.array.conductionOhm,
+            rectifierV: a.array.rectifierV,
+          },
+        })),
       pack: {
         ...car.pack,
         parallelCells: a.parallelCells,
