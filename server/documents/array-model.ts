@@ -31,6 +31,8 @@ export function arrayModel(car: CarDocument, surroundings: Surroundings): Prepar
             tiltMaxRad: car.stand.tiltMaxDeg * DEG,
             azimuthFromRad: car.stand.azimuthFromDeg * DEG,
             azimuthToRad: car.stand.azimuthToDeg * DEG,
+            aim: car.stand.aim,
+            reaimS: car.stand.reaimEveryMin * 60,
           },
     strings: car.strings.map((s) => stringModel(car, s)),
     albedo: surroundings.groundAlbedo,

@@ -77,7 +77,18 @@ export const stand = z
     tiltMinDeg: quantity(0, 90, 'least tilt from flat [°]').default(0),
     tiltMaxDeg: quantity(0, 90, 'most tilt from flat [°]'),
     azimuthFromDeg: quantity(0, 360, 'start of the arc it can face, clockwise from north [°]').default(0),
-    azimuthToDeg: quantity(0, 360, 'end of the arc it can face [°]').default(360),
+    azimuthToDeg: quantity(0, 360, 'end of the arc it can face; equal to its start: that azimuth only [°]').default(
+      360,
+    ),
+    aim: z
+      .enum(['most-light', 'at-sun'])
+      .describe('most-light: where the cells get most of all light, flat under an overcast sky; at-sun: at the sun')
+      .default('most-light'),
+    reaimEveryMin: quantity(
+      0,
+      720,
+      'time that one pose is held before the crew aims anew; 0: follows all the time [min]',
+    ).default(10),
   })
   .optional()
   .describe('limits of the stand that lifts the array; left out: the array stays flat')

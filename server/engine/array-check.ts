@@ -46,6 +46,7 @@ function checkStand(stand: Stand): void {
   within('stand.tiltMaxRad', stand.tiltMaxRad, stand.tiltMinRad, RIGHT_ANGLE_RAD, ' rad')
   within('stand.azimuthFromRad', stand.azimuthFromRad, -4 * Math.PI, 4 * Math.PI, ' rad')
   within('stand.azimuthToRad', stand.azimuthToRad, -4 * Math.PI, 4 * Math.PI, ' rad')
+  within('stand.reaimS', stand.reaimS, 0, 86_400, ' s')
 }
 
 function checkString(field: string, string: StringModel, panels: number): void {

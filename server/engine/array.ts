@@ -1,3 +1,4 @@
+import { type AimStrings, aimStrings } from './aim-strings.ts'
 import { checkArray, checkSteps } from './array-check.ts'
 import { type Cooling, type HeatLoss, heatLoss } from './cell-temperature.ts'
 import { cellWarmth, type WarmthAlong, warmthAlong } from './cell-warmth.ts'
@@ -12,7 +13,8 @@ import {
   panelLight,
   skyBlock,
 } from './panel-light.ts'
-import { aimAtSun, type Stand } from './stand.ts'
+import { aimAlong } from './pointing.ts'
+import type { Stand } from './stand.ts'
 import { fillStrings, type PreparedStrings, prepareStrings } from './string-harvest.ts'
 import type { StringModel } from './string.ts'
 
@@ -46,6 +48,7 @@ export interface PreparedArray {
   model: ArrayModel
   panels: LitPanel[]
   strings: PreparedStrings
+  aim: AimStrings
 }
 
 /** Steps to work out: weather and the car's pose. */
@@ -55,6 +58,10 @@ export interface ArraySteps extends PoseAlong {
   durationS?: Float64Array
   /** Air over the panels, where it is not the weather's. [°C] */
   overPanelsC?: Float64Array
+  /** Steps of one number share a pose of the lifted array; left out, every step has its own. */
+  hold?: Int32Array
+  /** Poses of the lifted array, where they are given rather than found. */
+  aim?: AimAlong
   /** Solves every step exactly instead of reading tables. */
   exact?: boolean
 }
@@ -95,17 +102,19 @@ export function prepareArray(model: ArrayModel): PreparedArray {
     losses.set(key, loss)
     return loss
   }
+  const panels = model.panels.map((panel) => ({
+    pitchRad: panel.pitchRad,
+    rollRad: panel.rollRad,
+    lifts: panel.lifts,
+    beamTable: coverOf(panel.incidence),
+    losesDiffuse: panel.incidence !== 'none' && panel.diffuseIncidence !== 'none',
+    loss: lossOf(panel.cooling),
+  }))
   return {
     model,
-    panels: model.panels.map((panel) => ({
-      pitchRad: panel.pitchRad,
-      rollRad: panel.rollRad,
-      lifts: panel.lifts,
-      beamTable: coverOf(panel.incidence),
-      losesDiffuse: panel.incidence !== 'none' && panel.diffuseIncidence !== 'none',
-      loss: lossOf(panel.cooling),
-    })),
+    panels,
     strings: prepareStrings(model.strings),
+    aim: aimStrings(panels, model.strings),
   }
 }
 
@@ -114,9 +123,9 @@ export function prepareArray(model: ArrayModel): PreparedArray {
  *
  * Beam, sky and ground on each panel from the apparent sun; cells warmed by all light on the plane, in time where the
  * steps tell their lengths; power of one-panel strings from tables (within 0.04 %), of strings over several panels
- * solved exactly with their bypass diodes. Lifted, the car's own up direction is turned to the sun within the stand's
- * limits, and lifting panels keep their pitch and roll on it; the stand holds the array, so grade does not count.
- * Darkness gives exactly 0 W.
+ * solved exactly with their bypass diodes. Lifted, the car's own up direction is turned to where the stand aims
+ * (`pointing.ts`), and lifting panels keep their pitch and roll on it; the stand holds the array, so grade does not
+ * count. Darkness gives exactly 0 W.
  *
  * @throws InputError when a list has another length than the weather, or steps are lifted without a stand
  */
@@ -145,10 +154,13 @@ function lightPanels(array: PreparedArray, steps: ArraySteps, harvest: ArrayHarv
   const count = harvest.aimTiltRad.length
   const block = skyBlock()
   const aim = { tiltRad: harvest.aimTiltRad, azimuthRad: harvest.aimAzimuthRad }
+  if (steps.aim !== undefined) {
+    aim.tiltRad.set(steps.aim.tiltRad)
+    aim.azimuthRad.set(steps.aim.azimuthRad)
+  } else if (stand !== null) aimAlong(array, stand, steps, aim)
   for (let from = 0; from < count; from += BLOCK_STEPS) {
     const to = Math.min(count, from + BLOCK_STEPS)
     fillSky(skyModel, steps.weather, from, to, block)
-    if (stand !== null) fillAim(stand, steps.lifted, { from, to, block }, aim)
     array.panels.forEach((panel, p) =>
       panelLight(
         panel,
@@ -167,19 +179,4 @@ function warmPanels(array: PreparedArray, steps: ArraySteps, harvest: ArrayHarve
     kinds.set(loss, kind)
     cellWarmth(kind, steps.overPanelsC ?? steps.weather.airC, harvest.planeWm2[p], harvest.cellC[p])
   })
-}
-
-function fillAim(
-  stand: Stand,
-  lifted: Uint8Array,
-  range: { from: number; to: number; block: ReturnType<typeof skyBlock> },
-  aim: AimAlong,
-): void {
-  const { sunEast, sunNorth, sunUp } = range.block
-  for (let i = range.from, b = 0; i < range.to; i++, b++) {
-    if (lifted[i] !== 1) continue
-    const { tiltRad, azimuthRad } = aimAtSun(stand, sunEast[b], sunNorth[b], sunUp[b])
-    aim.tiltRad[i] = tiltRad
-    aim.azimuthRad[i] = azimuthRad
-  }
 }

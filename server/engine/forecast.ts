@@ -1,4 +1,5 @@
 import { arrayHarvest } from './array.ts'
+import type { ArraySteps } from './array.ts'
 import { balance } from './balance.ts'
 import type { Balance, Car } from './balance.ts'
 import { SHEET_C, storedJ } from './battery.ts'
@@ -8,6 +9,7 @@ import { idleC } from './pack-heat.ts'
 import type { Warmth } from './pack-heat.ts'
 import { airAtCar, limitByMotor, pieceTimesS } from './motion.ts'
 import type { Air } from './motion.ts'
+import { holdsAlong } from './pointing.ts'
 import { weatherAlong } from './sky.ts'
 import type { Sky, Weather } from './sky.ts'
 import { steps } from './steps.ts'
@@ -81,15 +83,7 @@ export function forecastDay(
   let laid = layOut(race, dayIndex, opening.standing, speedMps, path)
   for (let round = 0; round < MOTOR_ROUNDS && limitByMotor(car, laid, speedMps); round++)
     laid = layOut(race, dayIndex, opening.standing, speedMps, path)
-  const harvest = arrayHarvest(car.array, {
-    weather: laid.weather,
-    headingRad: laid.steps.headingRad,
-    gradeRad: laid.steps.gradeRad,
-    airSpeedMps: laid.air.overPanelsMps,
-    lifted: laid.steps.lifted,
-    durationS: durationsS(laid.steps),
-    overPanelsC: airOverPanelsC(laid),
-  })
+  const harvest = arrayHarvest(car.array, arraySteps(car, laid))
   const packC = openingC(car, opening.warmth, laid)
   const energy = balance(car, { ...laid, spans: laid.timetable.spans, harvest }, { charge: opening.charge, packC })
   const closing = closingOf(laid, energy, opening.charge)
@@ -125,6 +119,23 @@ function closingOf({ steps, timetable: table, weather }: Laid, energy: Balance, 
   return { standing: table.evening, charge: energy.charge[last], warmth }
 }
 
+/** Steps of a day as the array needs them. */
+export function arraySteps({ array }: Car, laid: Omit<Laid, 'timetable'>): ArraySteps {
+  const { steps, weather, air } = laid
+  const { headingRad, gradeRad, lifted } = steps
+  const reaimS = array.model.stand?.reaimS ?? 0
+  return {
+    weather,
+    headingRad,
+    gradeRad,
+    airSpeedMps: air.overPanelsMps,
+    lifted,
+    durationS: durationsS(steps),
+    overPanelsC: airOverPanelsC(laid),
+    ...(reaimS > 0 ? { hold: holdsAlong(steps, reaimS) } : {}),
+  }
+}
+
 /** The sun over a day, to be shared by all forecasts of that day. */
 export const daySun = (day: DayRules): SunPath => sunPath(day.opensMs, day.closesMs)
 
@@ -150,7 +161,7 @@ function layOut(race: Race, dayIndex: number, standing: Standing, speedMps: Floa
 const durationsS = ({ fromMs, toMs }: Steps): Float64Array => toMs.map((to, i) => (to - fromMs[i]) / 1000)
 
 /** Air over the panels where a road warms it in proportion to the global light. [°C] (steps) */
-function airOverPanelsC({ course, steps, weather }: Laid): Float64Array {
+function airOverPanelsC({ course, steps, weather }: Omit<Laid, 'timetable'>): Float64Array {
   const { roadHeatC } = course
   return weather.airC.map((airC, i) => airC + roadHeatC[steps.piece[i]] * (weather.ghiWm2[i] / 1000))
 }

@@ -39,13 +39,13 @@ export interface SkyBlock {
 export const BLOCK_STEPS = 1024
 
 /** Room for the sky of one block. */
-export const skyBlock = (): SkyBlock => ({
-  sunEast: new Float64Array(BLOCK_STEPS),
-  sunNorth: new Float64Array(BLOCK_STEPS),
-  sunUp: new Float64Array(BLOCK_STEPS),
-  aroundSunWm2: new Float64Array(BLOCK_STEPS),
-  domeWm2: new Float64Array(BLOCK_STEPS),
-  horizonWm2: new Float64Array(BLOCK_STEPS),
+export const skyBlock = (steps = BLOCK_STEPS): SkyBlock => ({
+  sunEast: new Float64Array(steps),
+  sunNorth: new Float64Array(steps),
+  sunUp: new Float64Array(steps),
+  aroundSunWm2: new Float64Array(steps),
+  domeWm2: new Float64Array(steps),
+  horizonWm2: new Float64Array(steps),
 })
 
 /** Fills a block with the apparent sun (true azimuth, apparent zenith) and the sky's shares at steps from..to−1. */

@@ -102,7 +102,14 @@ export function chainArray(chain, incidence) {
       incidence,
       diffuseIncidence: 'none',
     })),
-    stand: { tiltMinRad: 0, tiltMaxRad: 90 * RAD, azimuthFromRad: 0, azimuthToRad: FULL_CIRCLE },
+    stand: {
+      tiltMinRad: 0,
+      tiltMaxRad: 90 * RAD,
+      azimuthFromRad: 0,
+      azimuthToRad: FULL_CIRCLE,
+      aim: 'at-sun',
+      reaimS: 0,
+    },
     strings: chain.panels.flatMap((panel, index) =>
       Array.from({ length: panel.strings }, (_, k) => ({
         name: `${panel.name} ${k + 1}`,

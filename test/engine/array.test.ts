@@ -43,7 +43,14 @@ const string = (groups: StringModel['groups'], more: Partial<StringModel> = {}):
   bypassV: 0.5,
   ...more,
 })
-const ROUND: Stand = { tiltMinRad: 0, tiltMaxRad: 90 * RAD, azimuthFromRad: 0, azimuthToRad: 2 * Math.PI }
+const ROUND: Stand = {
+  tiltMinRad: 0,
+  tiltMaxRad: 90 * RAD,
+  azimuthFromRad: 0,
+  azimuthToRad: 2 * Math.PI,
+  aim: 'at-sun',
+  reaimS: 0,
+}
 const array = (more: Partial<ArrayModel> = {}): ArrayModel => ({
   panels: [panel()],
   stand: ROUND,
@@ -219,7 +226,7 @@ describe('the lifted array', () => {
 
   // Source: by hand: sun at 60° from the zenith, due east; the stand turns from north-west to north-east, 50° at most.
   it('stops at the limits of tilt and azimuth', () => {
-    const stand: Stand = { tiltMinRad: 0, tiltMaxRad: 50 * RAD, azimuthFromRad: 315 * RAD, azimuthToRad: 405 * RAD }
+    const stand: Stand = { ...ROUND, tiltMaxRad: 50 * RAD, azimuthFromRad: 315 * RAD, azimuthToRad: 405 * RAD }
     const east = aimAtSun(stand, Math.sin(60 * RAD), 0, 0.5)
     expect(east.azimuthRad).toBeCloseTo(45 * RAD, 12)
     expect(east.tiltRad).toBeCloseTo(50 * RAD, 12)
@@ -237,7 +244,13 @@ describe('the lifted array', () => {
       fc.property(fc.array(share, { minLength: 7, maxLength: 7 }), (s) => {
         const tiltMinRad = s[0] * 0.6
         const tiltMaxRad = tiltMinRad + s[1] * (Math.PI / 2 - tiltMinRad)
-        const stand = { tiltMinRad, tiltMaxRad, azimuthFromRad: s[2] * 7, azimuthToRad: s[2] * 7 + s[3] * 6.28 }
+        const stand = {
+          ...ROUND,
+          tiltMinRad,
+          tiltMaxRad,
+          azimuthFromRad: s[2] * 7,
+          azimuthToRad: s[2] * 7 + s[3] * 6.28,
+        }
         const zenith = s[4] * 1.55
         const azimuth = s[5] * 6.28
         const cosAt = (tilt: number, at: number): number =>

@@ -1,0 +1,98 @@
+import type { PreparedArray } from './array.ts'
+import { type AimAlong, fillSky, type LightAlong, type SkyBlock, skyBlock } from './panel-light.ts'
+import { type PoseLight, poseLight } from './pose-light.ts'
+import { bestPose } from './pose-search.ts'
+import { aimAtSun, type Pose, type Stand } from './stand.ts'
+
+/** Steps in which the array may be lifted, and which of them share one pose. */
+export interface LiftedSteps {
+  weather: LightAlong
+  headingRad: Float64Array
+  lifted: Uint8Array
+  /** Number of the hold that a lifted step belongs to; left out, every step has a pose of its own. */
+  hold?: Int32Array
+}
+
+/**
+ * Numbers the holds of a day: from when the array is up, every `reaimS` a new pose, and a new one in every span.
+ *
+ * @param steps   of equal kind in a row; a step belongs to the hold that its middle lies in
+ * @param reaimS  0 gives every step a hold of its own. [s]
+ * @returns −1 where the array is not lifted (steps)
+ */
+export function holdsAlong(
+  steps: { count: number; fromMs: Float64Array; atMs: Float64Array; span: Int32Array; lifted: Uint8Array },
+  reaimS: number,
+): Int32Array {
+  const hold = new Int32Array(steps.count).fill(-1)
+  let next = 0
+  let upMs = 0
+  let turn = 0
+  for (let i = 0; i < steps.count; i++) {
+    if (steps.lifted[i] !== 1) continue
+    const goesOn = i > 0 && steps.lifted[i - 1] === 1 && steps.span[i - 1] === steps.span[i]
+    if (!goesOn) upMs = steps.fromMs[i]
+    const now = reaimS > 0 ? Math.floor((steps.atMs[i] - upMs) / (reaimS * 1000)) : i
+    if (!goesOn || now !== turn) next++
+    turn = now
+    hold[i] = next - 1
+  }
+  return hold
+}
+
+/** First step after the hold that begins at a step; a change of heading ends it too. */
+function holdEnd({ headingRad, lifted, hold }: LiftedSteps, from: number): number {
+  let to = from + 1
+  if (hold === undefined) return to
+  while (to < lifted.length && lifted[to] === 1 && hold[to] === hold[from] && headingRad[to] === headingRad[from]) to++
+  return to
+}
+
+/**
+ * Poses of the lifted array, hold by hold: most light on the cells, or most of the sun's beam, as the stand's aim says.
+ *
+ * Most light counts beam, light around the sun, dome, horizon and ground on every panel that lifts, past its cover,
+ * with panels keeping pitch and roll on the lifted array; within a hold the steps' powers are summed. Steps of a hold
+ * count alike: they are of one length.
+ *
+ * @param out  overwritten at lifted steps
+ */
+export function aimAlong(array: PreparedArray, stand: Stand, steps: LiftedSteps, out: AimAlong): void {
+  const { lifted } = steps
+  const search = stand.aim === 'most-light' ? poseLight(array.aim) : null
+  let sky = skyBlock(64)
+  for (let from = 0; from < lifted.length; from++) {
+    if (lifted[from] !== 1) continue
+    const to = holdEnd(steps, from)
+    if (to - from > sky.sunUp.length) sky = skyBlock(2 * (to - from))
+    fillSky(array.model.skyModel, steps.weather, from, to, sky)
+    const { tiltRad, azimuthRad } = holdPose(array, stand, search, { steps, sky, from, to })
+    out.tiltRad.fill(tiltRad, from, to)
+    out.azimuthRad.fill(azimuthRad, from, to)
+    from = to - 1
+  }
+}
+
+function holdPose(
+  array: PreparedArray,
+  stand: Stand,
+  search: PoseLight | null,
+  { steps, sky, from, to }: { steps: LiftedSteps; sky: SkyBlock; from: number; to: number },
+): Pose {
+  const sum = (parts: Float64Array): number => {
+    let total = 0
+    for (let b = 0; b < to - from; b++) total += parts[b]
+    return total
+  }
+  const atSun = aimAtSun(stand, sum(sky.sunEast), sum(sky.sunNorth), sum(sky.sunUp))
+  if (search === null) return atSun
+  search.hold({
+    light: steps.weather,
+    sky,
+    from,
+    to,
+    headingRad: steps.headingRad[from],
+    albedo: array.model.albedo,
+  })
+  return bestPose(stand, search.powerW, atSun)
+}
