@@ -79,6 +79,7 @@ describe('the car in the engine’s units', () => {
     expect(deg(array.model.stand?.tiltMinRad)).toBeCloseTo(5, 9)
     expect(deg(array.model.stand?.azimuthFromRad)).toBeCloseTo(270, 9)
     expect(deg(array.model.stand?.azimuthToRad)).toBeCloseTo(90, 9)
+    expect(array.model.stand).toMatchObject({ aim: 'most-light', reaimS: 600 })
     expect(array.model.strings[1]).toMatchObject({
       groups: [{ panel: 1, cellsInSeries: 100 }],
       cellsInParallel: 3,
