@@ -94,5 +94,5 @@ function holdPose(
     headingRad: steps.headingRad[from],
     albedo: array.model.albedo,
   })
-  return bestPose(stand, search.powerW, atSun)
+  return bestPose(stand, (tiltRad, azimuthRad) => search.powerW(tiltRad, azimuthRad), atSun)
 }
