@@ -7,6 +7,7 @@ import type { DayBudget } from './budget.ts'
 import { ledgerDocument } from './budget-ledger.ts'
 import { outcomeOf } from './budget-outcome.ts'
 import { seriesDocument } from './budget-series.ts'
+import { packOf } from './budget-pack.ts'
 import { localIso, offsetMin } from './local-time.ts'
 import type { PlacedStage } from './race-model.ts'
 import { stageBudgets } from './budget-stages.ts'
@@ -32,11 +33,13 @@ export interface ForecastDay {
 export function balanceAt(day: ForecastDay, step: number) {
   const { forecast } = day
   const charge = step < 0 ? forecast.openingCharge : forecast.balance.charge[step]
-  const J = step < 0 ? forecast.openingJ : forecast.balance.storedJ[step]
-  return { wh: J * WH, chargePct: charge * 100 }
+  return atCharge(day.race, charge, step < 0 ? forecast.openingJ : forecast.balance.storedJ[step])
 }
 
-const atCharge = (race: Race, charge: number) => ({ wh: storedJ(race.car.pack, charge) * WH, chargePct: charge * 100 })
+/** A balance: usable energy, the charge by coulombs, and the energy's share of a full pack beside it. */
+function atCharge({ car }: Race, charge: number, heldJ = storedJ(car.pack, charge)) {
+  return { wh: heldJ * WH, chargePct: charge * 100, energyPct: (heldJ / storedJ(car.pack, 1)) * 100 }
+}
 
 /** Distance of a place from where the day starts. [km] */
 export const dayKm = (day: ForecastDay, placeM: number): number =>
@@ -56,7 +59,7 @@ export function placeName(day: ForecastDay, placeM: number): string {
 export function dayBudget(day: ForecastDay): DayBudget {
   const { forecast, race, zone } = day
   const { spans } = forecast.timetable
-  const closing = { wh: forecast.closingJ * WH, chargePct: forecast.closing.charge * 100 }
+  const closing = atCharge(race, forecast.closing.charge, forecast.closingJ)
   const reserve = atCharge(race, race.car.reserveCharge)
   const target = day.targetCharge === null ? null : atCharge(race, day.targetCharge)
   const lowest = lowestOf(day)
@@ -81,6 +84,7 @@ export function dayBudget(day: ForecastDay): DayBudget {
     gates: gatesOf(day),
     spans: spansOf(day),
     trackers: trackersOf(day),
+    pack: packOf(day.forecast),
     penaltyMin: penaltyMin(day),
     series: seriesDocument(day),
   }

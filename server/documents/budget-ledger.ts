@@ -20,7 +20,7 @@ const SPENDING_LABELS: Record<(typeof SPENDINGS)[number], string> = {
 const DENIED_LABELS: Record<(typeof DENIED)[number], string> = {
   window: 'Outside the trackers’ window',
   tracking: 'Missed in tracking',
-  full: 'Spill: no room in the pack',
+  full: 'Spill: refused by the pack',
 }
 
 /** A ledger in watt-hours with the names that people read. */

@@ -29,10 +29,23 @@ function runsFlat(day: ForecastDay): Outcome | null {
   const i = balance.firstShort
   if (i < 0) return null
   const place = placeName(day, steps.fromM[i])
-  const isEmpty = balance.charge[i] < 0.005
-  const what = isEmpty ? 'The pack runs flat' : 'The pack cannot give the power asked of it'
+  const what = whyShort(balance)
   const text = `${what} at ${place}, ${clock(steps.fromMs[i], day.zone)}.`
   return { kind: 'runs-flat', text, at: localIso(steps.fromMs[i], day.zone), km: dayKm(day, steps.fromM[i]) }
+}
+
+/** What keeps the pack from giving what is asked. */
+function whyShort({ firstShort, firstShortLimit, charge }: ForecastDay['forecast']['balance']): string {
+  switch (firstShortLimit) {
+    case 'weakest-cell':
+      return 'The weakest cell is empty'
+    case 'too-cold-to-discharge':
+      return 'The pack is too cold to give the power asked of it'
+    case 'too-hot-to-discharge':
+      return 'The pack is too hot to give the power asked of it'
+    default:
+      return charge[firstShort] < 0.005 ? 'The pack runs flat' : 'The pack cannot give the power asked of it'
+  }
 }
 
 function tooSteep(day: ForecastDay): Outcome | null {

@@ -1,3 +1,4 @@
+import { storedJ } from '../engine/battery.ts'
 import type { DayBudget } from './budget.ts'
 import { dayKm } from './budget-day.ts'
 import type { ForecastDay } from './budget-day.ts'
@@ -34,7 +35,9 @@ export function seriesDocument(day: ForecastDay): DayBudget['series'] {
     deniedW: column(balance.deniedW, 1),
     wh: column(balance.storedJ, 2, 1 / 3600),
     chargePct: column(balance.charge, 3, 100),
+    energyPct: column(balance.storedJ, 3, 100 / storedJ(day.race.car.pack, 1)),
     packV: column(balance.packV, 2),
+    packC: column(balance.packC, 1),
     ghiWm2: column(weather.ghiWm2, 1),
     airTempC: column(weather.airC, 1),
     cellTempC: column(cellC, 1),

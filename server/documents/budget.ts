@@ -1,4 +1,5 @@
 import { z } from 'zod'
+import { PACK_LIMITS } from '../engine/battery.ts'
 import { skySource } from './sky.ts'
 
 const wh = (meaning: string) => z.number().describe(`${meaning} [Wh]`)
@@ -6,7 +7,12 @@ const pct = (meaning: string) => z.number().describe(`${meaning} [% of charge]`)
 const at = (meaning: string) => z.string().describe(`${meaning} (ISO 8601, local offset)`)
 const km = (meaning: string) => z.number().describe(`${meaning} [km from where the day starts]`)
 
-const balance = z.strictObject({ wh: wh('stored energy'), chargePct: pct('charge') })
+const balanceFields = {
+  wh: wh('usable energy stored: above the weakest cell’s empty'),
+  chargePct: pct('charge by coulombs, of the usable charge'),
+  energyPct: z.number().describe('the same as a share of a full pack’s usable energy [% of energy]'),
+}
+const balance = z.strictObject(balanceFields)
 
 const line = z.strictObject({
   id: z.string().describe('name of the line for machines'),
@@ -50,8 +56,7 @@ const gate = z.strictObject({
   name: z.string().describe('place'),
   at: at('when'),
   km: km('where'),
-  wh: wh('stored energy'),
-  chargePct: pct('charge'),
+  ...balanceFields,
 })
 
 const span = z.strictObject({
@@ -85,6 +90,23 @@ const trackerShare = z.strictObject({
     .describe('which limit bound, how long, and what it cost'),
 })
 
+const packShare = z.strictObject({
+  openingC: z.number().describe('temperature of its cells when the day opens [°C]'),
+  closingC: z.number().describe('when it closes [°C]'),
+  coldestC: z.number().describe('coldest of the day [°C]'),
+  warmestC: z.number().describe('warmest of the day [°C]'),
+  limits: z
+    .array(
+      z.strictObject({
+        limit: z.enum(PACK_LIMITS),
+        label: z.string().describe('the limit in words'),
+        minutes: z.number().describe('how long it bound [min]'),
+        wh: wh('refused of a charge, or withheld of what was asked'),
+      }),
+    )
+    .describe('which of its limits bound'),
+})
+
 const column = (meaning: string) => z.array(z.number()).describe(meaning)
 
 /** One value per step of the day, in order; a step runs from `fromMs` to the next step’s start or `toMs`. */
@@ -98,9 +120,11 @@ const series = z.strictObject({
   inW: column('taken by the trackers [W]'),
   outW: column('spent, all spendings together [W]'),
   deniedW: column('denied by window or a full pack [W]'),
-  wh: column('stored energy at its end [Wh]'),
-  chargePct: column('charge at its end [%]'),
-  packV: column('pack voltage at its end [V]'),
+  wh: column('usable energy stored at its end [Wh]'),
+  chargePct: column('charge by coulombs at its end, of the usable charge [%]'),
+  energyPct: column('the same as a share of a full pack’s usable energy [%]'),
+  packV: column('mean pack voltage [V]'),
+  packC: column('temperature of the pack’s cells at its end [°C]'),
   ghiWm2: column('global irradiance [W/m²]'),
   airTempC: column('air temperature at the road [°C]'),
   cellTempC: column('warmest panel [°C]'),
@@ -136,10 +160,9 @@ const dayBudget = z.strictObject({
   opening: balance,
   closing: balance,
   reserve: balance,
-  capacityWh: wh('stored energy of a full pack'),
+  capacityWh: wh('usable energy of a full pack'),
   lowest: z.strictObject({
-    wh: wh('stored energy'),
-    chargePct: pct('charge'),
+    ...balanceFields,
     at: at('when'),
     km: km('where'),
     place: z.string(),
@@ -152,6 +175,7 @@ const dayBudget = z.strictObject({
   gates: z.array(gate),
   spans: z.array(span),
   trackers: z.array(trackerShare),
+  pack: packShare.describe('how warm the pack was and what held it back'),
   penaltyMin: z.number().describe('penalties of this day [min]'),
   series,
 })

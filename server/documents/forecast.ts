@@ -13,10 +13,11 @@ import { carModel } from './car-model.ts'
 import { fieldName } from './check.ts'
 import { learnedLosses } from './learned.ts'
 import { date, slug } from './quantity.ts'
+import { measuredCharge, measuredWarmth } from './opening-model.ts'
 import { dayRules, placedStages, raceCourse, stageRules, zoneOf } from './race-model.ts'
 import type { PlacedStage } from './race-model.ts'
 import { raceDocument } from './race.ts'
-import type { RaceDocument } from './race.ts'
+import type { Measured, RaceDocument } from './race.ts'
 import { routeDocument } from './route.ts'
 import { skyDocument } from './sky.ts'
 import { coverageNotes, isCovered, skyModel } from './sky-model.ts'
@@ -90,10 +91,12 @@ function drivenDays(race: Race, request: ForecastRequest, lastDay: number) {
   const days: BudgetDocument['days'] = []
   const first = firstDay(race, document, lastDay)
   const notes = first > 0 ? ['The sky does not reach the days before: their stages are taken as driven.'] : []
-  let opening = openingOf(race, stages, first, document.openingPct / 100)
+  let opening = openingOf(race, stages, first)
   for (let d = first; d <= lastDay; d++) {
-    const { date: on, openingPct: measured, targetPct } = document.days[d]
-    if (measured !== undefined) opening = { ...opening, charge: measured / 100 }
+    const { date: on, targetPct } = document.days[d]
+    if (d === 0) opening = asMeasured(race, opening, { dayIndex: d, measured: document, field: 'race' }, notes)
+    const field = fieldName(['race', 'days', d])
+    opening = asMeasured(race, opening, { dayIndex: d, measured: document.days[d], field }, notes)
     const zone = zoneOf(document, d)
     notes.push(...coverageNotes(race.sky, race.days[d], zone))
     const isBefore = request.date !== undefined && d < lastDay
@@ -111,16 +114,40 @@ function drivenDays(race: Race, request: ForecastRequest, lastDay: number) {
 /** The first day to work out: the race's first, or one with a measured charge after days that the sky does not reach. */
 function firstDay({ sky, days }: Race, document: RaceDocument, lastDay: number): number {
   const gap = days.slice(0, lastDay).findLastIndex((day) => !isCovered(sky, day))
-  const first = document.days.findIndex((day, d) => d > gap && d <= lastDay && day.openingPct !== undefined)
+  const first = document.days.findIndex((day, d) => d > gap && d <= lastDay && isMeasured(day))
   return gap >= 0 && first > 0 ? first : 0
 }
 
-/** The car at the start of the first stage that a day may start. */
-function openingOf(race: Race, stages: PlacedStage[], day: number, charge: number): Opening {
+const isMeasured = ({ openingPct, openingRestV }: Measured): boolean =>
+  openingPct !== undefined || openingRestV !== undefined
+
+/** An opening with what was measured in place of what the day before left. */
+function asMeasured(
+  { car, days }: Race,
+  opening: Opening,
+  { dayIndex, measured, field }: { dayIndex: number; measured: Measured; field: string },
+  notes: string[],
+): Opening {
+  const found = measuredCharge(car.pack, measured, field)
+  const warmth = measuredWarmth(measured, days[dayIndex].opensMs)
+  if (warmth !== undefined && car.pack.heat === undefined)
+    notes.push(
+      'The pack is taken as warm as the air: the car gives no heat for it, so a measured temperature is not used.',
+    )
+  if (found !== null) notes.push(...found.notes)
+  return {
+    ...opening,
+    ...(found === null ? {} : { charge: found.charge }),
+    ...(warmth === undefined ? {} : { warmth }),
+  }
+}
+
+/** The car at the start of the first stage that a day may start, its pack empty until its charge is known. */
+function openingOf(race: Race, stages: PlacedStage[], day: number): Opening {
   const next = stages.findIndex((s) => s.dayIndex >= day)
   const stage = next < 0 ? stages.length : next
   const placeM = next < 0 ? race.course.lengthM : race.course.stages[next].fromM
-  return { standing: { stage, placeM, stopLeftS: 0 }, charge }
+  return { standing: { stage, placeM, stopLeftS: 0 }, charge: 0 }
 }
 
 function dayWanted(race: RaceDocument, wanted: string | undefined): number {

@@ -49,6 +49,39 @@ const stage = z
 
 const charge = (meaning: string) => quantity(0, 100, meaning)
 
+/** What may be measured when a day opens; a rested voltage stands for a charge. */
+const measured = {
+  openingRestV: quantity(1, 2500, 'in place of a charge: voltage of the rested pack at its terminals [V]').optional(),
+  openingRestMin: quantity(0, 10_000, 'how long it had rested then; left out: taken for rested [min]').optional(),
+  openingMeterPct: quantity(0, 10, 'how far that voltmeter may be off, either way; left out: 0.5 [%]').optional(),
+  openingPackC: quantity(
+    -40,
+    90,
+    'temperature of the pack then; left out: the air’s, or the night before [°C]',
+  ).optional(),
+}
+
+/** What was measured when a day opens, as race and day give it. */
+export interface Measured {
+  openingPct?: number
+  openingRestV?: number
+  openingRestMin?: number
+  openingMeterPct?: number
+  openingPackC?: number
+}
+
+type Complain = (path: (string | number)[], message: string, input: unknown) => void
+
+/** A charge or a voltage, not both; what belongs to a voltage only with one. */
+function checkOpening(given: Measured, complain: Complain): void {
+  const { openingPct, openingRestV } = given
+  if (openingPct !== undefined && openingRestV !== undefined)
+    complain(['openingRestV'], `left out where openingPct is given (${openingPct})`, openingRestV)
+  if (openingRestV !== undefined) return
+  for (const name of ['openingRestMin', 'openingMeterPct'] as const)
+    if (given[name] !== undefined) complain([name], 'left out where there is no openingRestV', given[name])
+}
+
 const day = z
   .strictObject({
     date: date('day of the calendar at the place of the race'),
@@ -59,13 +92,17 @@ const day = z
     raiseMin: quantity(0, 60, 'minutes to lift the array in a charging window').default(2),
     lowerMin: quantity(0, 60, 'minutes to lower it again').default(2),
     impound: timeOfDay('when the car is locked away, local time').optional(),
-    openingPct: charge('measured charge at the start of the day, where it is known [%]').optional(),
-    targetPct: charge('charge wanted when the day ends [%]').optional(),
+    openingPct: charge(
+      'measured charge at the start of the day, of the usable charge, where it is known [%]',
+    ).optional(),
+    ...measured,
+    targetPct: charge('charge wanted when the day ends, of the usable charge [%]').optional(),
     stages: z.array(stage).max(30).default([]).describe('stages that may start on this day'),
   })
   .superRefine((d, context) => {
     const issue = (path: (string | number)[], message: string, input: unknown) =>
       context.addIssue({ code: 'custom', path, message, input })
+    checkOpening(d, issue)
     d.charging.forEach((w, i) => {
       if (d.release !== undefined && isBefore(w.from, d.release))
         issue(['charging', i, 'from'], `not before the release (${d.release})`, w.from)
@@ -85,7 +122,8 @@ export const raceDocument = z
   .strictObject({
     name: label('name of the race'),
     zone: zoneName('time zone of the race, for example Africa/Windhoek'),
-    openingPct: charge('charge of the pack when the first day opens [%]'),
+    openingPct: charge('charge of the pack when the first day opens, of the usable charge [%]').optional(),
+    ...measured,
     days: z.array(day).min(1).max(40),
     turbidityByMonth: turbidityByMonth.optional(),
     penalties: z
@@ -101,6 +139,9 @@ export const raceDocument = z
   .superRefine((race, context) => {
     const issue = (path: (string | number)[], message: string, input: unknown) =>
       context.addIssue({ code: 'custom', path, message, input })
+    checkOpening(race, issue)
+    if (race.openingPct === undefined && race.openingRestV === undefined)
+      issue(['openingPct'], 'a number, or openingRestV', undefined)
     const seen = new Set<string>()
     race.days.forEach((d, i) => {
       if (i > 0 && d.date <= race.days[i - 1].date)

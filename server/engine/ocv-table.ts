@@ -41,10 +41,10 @@ export function voltsAt({ charge: x, V }: OcvTable, charge: number): number {
   return V[i] + ((charge - x[i]) * (V[i + 1] - V[i])) / (x[i + 1] - x[i])
 }
 
-/** Lowest charge at which a table holds a voltage; 0 below the table, 1 above. */
+/** Lowest charge at which a table holds a voltage; its start below the table, its end above. */
 export function chargeAtV({ charge, V }: OcvTable, volts: number): number {
   if (!(volts > V[0])) return 0
-  if (volts > V[V.length - 1]) return 1
+  if (volts > V[V.length - 1]) return charge[charge.length - 1]
   const i = stretchIn(V, volts)
   return charge[i] + ((volts - V[i]) * (charge[i + 1] - charge[i])) / (V[i + 1] - V[i])
 }

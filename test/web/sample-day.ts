@@ -27,8 +27,11 @@ export const LEDGER: LedgerDocument = {
   wentOutWh: 8284.9,
   shortWh: 0,
   closingWh: 2069.3,
-  denied: [line('window', 'Outside the trackers’ window', 84.2), line('full', 'Spill: no room in the pack', 0)],
+  denied: [line('window', 'Outside the trackers’ window', 84.2), line('full', 'Spill: refused by the pack', 0)],
 }
+
+/** A balance of a pack that holds 5100 Wh. */
+export const balanceOf = (wh: number, chargePct: number) => ({ wh, chargePct, energyPct: wh / 51 })
 
 type Stage = DayBudget['stages'][number]
 
@@ -45,9 +48,9 @@ const stage = (name: string, places: [string, string], km: [number, number], clo
   arriveAt: at(clocks[1]),
   departsNextAt: name === 'Stage 1' ? at('11:30') : null,
   meanKmh: 78,
-  opening: { wh: 4310, chargePct: 84 },
-  arrival: { wh: 3142.2, chargePct: 61.6 },
-  closing: { wh: 3401, chargePct: 66.7 },
+  opening: balanceOf(4310, 84),
+  arrival: balanceOf(3142.2, 61.6),
+  closing: balanceOf(3401, 66.7),
   ledger: { ...LEDGER, openingWh: 4310, closingWh: 3401 },
 })
 
@@ -62,8 +65,7 @@ const gate = (
   name,
   at: at(clock),
   km,
-  wh: chargePct * 51,
-  chargePct,
+  ...balanceOf(chargePct * 51, chargePct),
 })
 
 const span = (
@@ -101,11 +103,11 @@ export const sampleDay = (change: Partial<DayBudget> = {}): DayBudget => ({
   heldKmh: 78,
   speedsTried: 0,
   drivenKm: 400,
-  opening: { wh: 2856.2, chargePct: 56 },
-  closing: { wh: 2069.3, chargePct: 41 },
-  reserve: { wh: 510, chargePct: 10 },
+  opening: balanceOf(2856.2, 56),
+  closing: balanceOf(2069.3, 41),
+  reserve: balanceOf(510, 10),
   capacityWh: 5100,
-  lowest: { wh: 1854.1, chargePct: 36.4, at: at('14:00'), km: 400, place: 'Blue Gate' },
+  lowest: { ...balanceOf(1854.1, 36.4), at: at('14:00'), km: 400, place: 'Blue Gate' },
   marginWh: 1344.1,
   target: null,
   targetMarginWh: null,
@@ -130,6 +132,7 @@ export const sampleDay = (change: Partial<DayBudget> = {}): DayBudget => ({
     span('evening-charge', 'Blue Gate', ['14:00', '18:00'], [400, 400]),
   ],
   trackers: [],
+  pack: { openingC: 14, closingC: 26, coldestC: 14, warmestC: 33, limits: [] },
   penaltyMin: 0,
   series: {
     fromMs: STEPS.map((step) => ms(step.clock)),
@@ -143,7 +146,9 @@ export const sampleDay = (change: Partial<DayBudget> = {}): DayBudget => ({
     deniedW: zeros,
     wh: STEPS.map((step) => step.pct * 51),
     chargePct: STEPS.map((step) => step.pct),
+    energyPct: STEPS.map((step) => step.pct),
     packV: zeros,
+    packC: zeros,
     ghiWm2: zeros,
     airTempC: zeros,
     cellTempC: zeros,

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import type { DayBudget } from '../../server/documents/budget.ts'
 import { comparison, daySentence, spoken, stageSentence } from '../../web/sentence.ts'
-import { LEDGER, sampleAt, sampleDay } from './sample-day.ts'
+import { balanceOf, LEDGER, sampleAt, sampleDay } from './sample-day.ts'
 
 const say = (day: DayBudget): string => spoken(daySentence(day)).replaceAll('\u202f', ' ')
 const ends = (kind: DayBudget['outcome']['kind'], at: string | null, km: number | null, text = 'Words.') => ({
@@ -80,7 +80,7 @@ describe('the sentence of the day', () => {
 
   it('says which speed comes nearest when none meets the target', () => {
     const missed = { outcome: ends('no-speed-meets-target', null, null), heldKmh: 62 }
-    const target = { target: { wh: 2550, chargePct: 50 }, targetMarginWh: -480.7 }
+    const target = { target: balanceOf(2550, 50), targetMarginWh: -480.7 }
     expect(say(sampleDay({ ...missed, ...target }))).toBe(
       'Change the plan: no speed meets the target; 62 km/h comes nearest, 470 Wh under it.',
     )
@@ -142,7 +142,7 @@ describe('another speed', () => {
 
   it('that leaves another opening balance says so first', () => {
     const ledger = { ...LEDGER, openingWh: 3046.2 }
-    const now = tried({ heldKmh: 77, opening: { wh: 3046.2, chargePct: 60 }, ledger }, sampleAt('14:02'))
+    const now = tried({ heldKmh: 77, opening: balanceOf(3046.2, 60), ledger }, sampleAt('14:02'))
     expect(text(now)).toBe('\u22121 km/h: open with 190 Wh more, arrive 2 min later, 190 Wh more at close')
   })
 
