@@ -4,6 +4,7 @@ import { CAR_COOLING } from '../engine/cell-temperature.ts'
 import type { CellReference } from '../engine/cell.ts'
 import type { StringModel } from '../engine/string.ts'
 import type { CarDocument } from './car.ts'
+import { shadeModel } from './horizon-model.ts'
 
 const DEG = Math.PI / 180
 
@@ -46,6 +47,7 @@ function panelModel(panel: CarDocument['panels'][number]): Panel {
     rollRad: panel.rollDeg * DEG,
     lifts: panel.lifts,
     incidence: panel.glass,
+    shade: shadeModel(panel.shade),
     cooling:
       panel.cooling.kind === 'faiman'
         ? {

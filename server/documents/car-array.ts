@@ -1,4 +1,5 @@
 import { z } from 'zod'
+import { shade } from './horizon.ts'
 import { count, label, quantity } from './quantity.ts'
 
 /** One kind of cell by the five values of its single diode. */
@@ -50,6 +51,7 @@ export const panel = z.strictObject({
     .enum(['martin-ruiz', 'physical', 'ashrae', 'none'])
     .describe('incidence-angle modifier; none: no loss at any angle')
     .default('martin-ruiz'),
+  shade,
 })
 
 /** Cells in series on one tracker. */

@@ -1,5 +1,4 @@
 import { z } from 'zod'
-import { FAIMAN_MOST_MPS } from '../engine/cell-temperature.ts'
 import { forecastDay } from '../engine/forecast.ts'
 import type { DayForecast, Opening, Race } from '../engine/forecast.ts'
 import { InputError } from '../engine/input-error.ts'
@@ -11,6 +10,7 @@ import { dayBudget } from './budget-day.ts'
 import { carDocument } from './car.ts'
 import { carModel } from './car-model.ts'
 import { fieldName } from './check.ts'
+import { horizonNotes, rackNotes } from './forecast-notes.ts'
 import { learnedLosses } from './learned.ts'
 import { date, slug } from './quantity.ts'
 import { measuredCharge, measuredWarmth } from './opening-model.ts'
@@ -72,6 +72,7 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
         ...learnedNotes(request),
         ...gapNotes(race),
         ...rackNotes(car),
+        ...horizonNotes(document),
         ...assumptions,
         ...notes,
       ]),
@@ -209,14 +210,6 @@ function roadNotes({ race, routes }: ForecastRequest): string[] {
 function learnedNotes({ learned = {} }: ForecastRequest): string[] {
   const names = Object.keys(learned)
   return names.length === 0 ? [] : [`Losses are as the readings show them: ${names.join(', ')}.`]
-}
-
-/** An open rack's formula does not hold for a car's speed. */
-function rackNotes({ panels }: ForecastRequest['car']): string[] {
-  const racks = panels.filter((panel) => panel.cooling.kind === 'faiman').map((panel) => panel.name)
-  if (racks.length === 0) return []
-  const limit = `air faster than ${FAIMAN_MOST_MPS * 3.6} km/h counts as ${FAIMAN_MOST_MPS * 3.6} km/h`
-  return [`${racks.join(', ')}: cooled by an open rack’s formula, so ${limit}.`]
 }
 
 /** Ends of roads nearer than this are taken for the same place. [M] */

@@ -5,6 +5,7 @@ import { InputError } from '../engine/input-error.ts'
 import { cumulativeM } from '../engine/route.ts'
 import type { RoadPoints, Stretch } from '../engine/route.ts'
 import { fieldName } from './check.ts'
+import { horizonModel } from './horizon-model.ts'
 import { instantMs } from './local-time.ts'
 import { withSeconds } from './quantity.ts'
 import type { RaceDocument, StageDocument } from './race.ts'
@@ -154,6 +155,7 @@ export function stageRules(race: RaceDocument): StageRule[] {
               lowerS: stop.lowerMin * 60,
               opensMs: on(stop.opensAt, 'opensAt'),
               closesMs: on(stop.closesAt, 'closesAt'),
+              horizon: horizonModel(stop.horizon, `${field}.stop.horizon`),
             },
     }
   })
@@ -169,6 +171,7 @@ export function dayRules(race: RaceDocument): DayRules[] {
       from: { time: w.from, name: ['charging', i, 'from'] },
       to: { time: w.to, name: ['charging', i, 'to'] },
       lifts: w.lift,
+      horizon: horizonModel(w.horizon, fieldName(['race', 'days', d, 'charging', i, 'horizon'])),
     }))
     const driving = {
       from: { time: day.driving.from, name: ['driving', 'from'] },
@@ -181,7 +184,7 @@ export function dayRules(race: RaceDocument): DayRules[] {
       closesMs: at(day.impound === undefined ? last : { time: day.impound, name: ['impound'] }),
       drivingFromMs: at(driving.from),
       drivingToMs: at(driving.to),
-      charging: charging.map((w) => ({ fromMs: at(w.from), toMs: at(w.to), lifts: w.lifts })),
+      charging: charging.map((w) => ({ fromMs: at(w.from), toMs: at(w.to), lifts: w.lifts, horizon: w.horizon })),
       raiseS: day.raiseMin * 60,
       lowerS: day.lowerMin * 60,
       lastStage: stages.findLastIndex((s) => s.dayIndex <= d),

@@ -1,4 +1,5 @@
 import { z } from 'zod'
+import { horizon } from './horizon.ts'
 import { count, date, label, quantity, slug, timeOfDay, withSeconds, zoneName } from './quantity.ts'
 import { turbidityByMonth } from './turbidity.ts'
 
@@ -13,6 +14,7 @@ const chargingWindow = z
     from: timeOfDay('start, local time'),
     to: timeOfDay('end, local time'),
     lift: z.boolean().describe('whether the array may be lifted to the sun').default(true),
+    horizon,
   })
   .refine((w) => isBefore(w.from, w.to), { path: ['to'], error: 'later than from' })
 
@@ -28,6 +30,7 @@ const stop = z
     lift: z.boolean().describe('whether the array may be lifted to the sun').default(true),
     raiseMin: quantity(0, 60, 'minutes to lift the array').default(2),
     lowerMin: quantity(0, 60, 'minutes to lower it again').default(2),
+    horizon,
   })
   .refine((s) => s.opensAt === undefined || s.closesAt === undefined || isBefore(s.opensAt, s.closesAt), {
     path: ['closesAt'],

@@ -92,6 +92,9 @@ export function checkSteps(model: ArrayModel, steps: ArraySteps, count: number):
     if (length !== count)
       throw new InputError('wrong-length', field, `has ${length} steps, expected ${count} as the weather`)
   }
+  const places = steps.horizons?.at.length ?? count
+  if (places !== count)
+    throw new InputError('wrong-length', 'horizons.at', `has ${places} steps, expected ${count} as the weather`)
   if (model.stand === null && steps.lifted.includes(1))
     throw new InputError('no-stand', 'lifted', 'is 1 at a step, expected 0 everywhere because the array has no stand')
 }

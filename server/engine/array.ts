@@ -2,6 +2,7 @@ import { type AimStrings, aimStrings } from './aim-strings.ts'
 import { checkArray, checkSteps } from './array-check.ts'
 import { type Cooling, type HeatLoss, heatLoss } from './cell-temperature.ts'
 import { cellWarmth, type WarmthAlong, warmthAlong } from './cell-warmth.ts'
+import { type HorizonsAlong, hideSky } from './horizon.ts'
 import { type IncidenceLaw, incidenceTable } from './incidence.ts'
 import {
   type AimAlong,
@@ -14,6 +15,7 @@ import {
   skyBlock,
 } from './panel-light.ts'
 import { aimAlong } from './pointing.ts'
+import { fillLit, type ShadeRow, shade } from './shade.ts'
 import type { Stand } from './stand.ts'
 import { fillStrings, type PreparedStrings, prepareStrings } from './string-harvest.ts'
 import type { StringModel } from './string.ts'
@@ -31,6 +33,8 @@ export interface Panel {
   incidence: IncidenceLaw
   /** Law for sky and ground; where left out 'martin-ruiz', or 'none' where the beam loses nothing. */
   diffuseIncidence?: 'none' | 'martin-ruiz'
+  /** What the car itself takes from it; left out, nothing. */
+  shade?: ShadeRow[]
 }
 
 /** The array as a whole. */
@@ -62,6 +66,8 @@ export interface ArraySteps extends PoseAlong {
   hold?: Int32Array
   /** Poses of the lifted array, where they are given rather than found. */
   aim?: AimAlong
+  /** What stands around the car; left out, nothing. */
+  horizons?: HorizonsAlong
   /** Solves every step exactly instead of reading tables. */
   exact?: boolean
 }
@@ -102,12 +108,13 @@ export function prepareArray(model: ArrayModel): PreparedArray {
     losses.set(key, loss)
     return loss
   }
-  const panels = model.panels.map((panel) => ({
+  const panels = model.panels.map((panel, p) => ({
     pitchRad: panel.pitchRad,
     rollRad: panel.rollRad,
     lifts: panel.lifts,
     beamTable: coverOf(panel.incidence),
     losesDiffuse: panel.incidence !== 'none' && panel.diffuseIncidence !== 'none',
+    shade: panel.shade === undefined ? null : shade(`panels[${p}].shade`, panel.shade),
     loss: lossOf(panel.cooling),
   }))
   return {
@@ -153,6 +160,7 @@ function lightPanels(array: PreparedArray, steps: ArraySteps, harvest: ArrayHarv
   const { albedo, skyModel, stand } = array.model
   const count = harvest.aimTiltRad.length
   const block = skyBlock()
+  const ownShade = new Float64Array(BLOCK_STEPS)
   const aim = { tiltRad: harvest.aimTiltRad, azimuthRad: harvest.aimAzimuthRad }
   if (steps.aim !== undefined) {
     aim.tiltRad.set(steps.aim.tiltRad)
@@ -161,14 +169,17 @@ function lightPanels(array: PreparedArray, steps: ArraySteps, harvest: ArrayHarv
   for (let from = 0; from < count; from += BLOCK_STEPS) {
     const to = Math.min(count, from + BLOCK_STEPS)
     fillSky(skyModel, steps.weather, from, to, block)
-    array.panels.forEach((panel, p) =>
+    if (steps.horizons !== undefined) hideSky(steps.horizons, from, to, block)
+    array.panels.forEach((panel, p) => {
+      const { lifts, shade } = panel
+      if (shade !== null) fillLit({ lifts, shade }, { pose: steps, aim }, { from, to, block }, ownShade)
       panelLight(
         panel,
-        { light: steps.weather, pose: steps, aim },
-        { from, to, block, albedo },
+        { pose: steps, aim },
+        { from, to, block, albedo, lit: shade === null ? null : ownShade },
         { planeWm2: harvest.planeWm2[p], effectiveWm2: harvest.effectiveWm2[p] },
-      ),
-    )
+      )
+    })
   }
 }
 

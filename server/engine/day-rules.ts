@@ -1,3 +1,5 @@
+import type { Horizon } from './horizon.ts'
+
 /** The timed stop at the end of a stage. Instants are given for every day of the race, NaN where there is none. */
 export interface StopRule {
   name: string
@@ -9,6 +11,8 @@ export interface StopRule {
   lowerS: number
   opensMs: Float64Array
   closesMs: Float64Array
+  /** What stands around the car there; left out, nothing. */
+  horizon?: Horizon
 }
 
 /** A stage as the timetable needs it. */
@@ -23,6 +27,8 @@ export interface ChargingWindow {
   fromMs: number
   toMs: number
   lifts: boolean
+  /** What stands around the car then; left out, nothing. */
+  horizon?: Horizon
 }
 
 /** The hours of one day. */

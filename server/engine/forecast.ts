@@ -7,6 +7,7 @@ import type { Course } from './course.ts'
 import type { DayRules, StageRule, Standing } from './day-rules.ts'
 import { idleC } from './pack-heat.ts'
 import type { Warmth } from './pack-heat.ts'
+import type { HorizonsAlong } from './horizon.ts'
 import { airAtCar, limitByMotor, pieceTimesS } from './motion.ts'
 import type { Air } from './motion.ts'
 import { holdsAlong } from './pointing.ts'
@@ -17,7 +18,7 @@ import type { Steps } from './steps.ts'
 import { sunPath } from './sun.ts'
 import type { SunPath } from './sun.ts'
 import { timetable } from './timetable.ts'
-import type { Timetable } from './timetable.ts'
+import type { Span, Timetable } from './timetable.ts'
 
 /** Everything that stays the same from day to day. */
 export interface Race {
@@ -83,7 +84,7 @@ export function forecastDay(
   let laid = layOut(race, dayIndex, opening.standing, speedMps, path)
   for (let round = 0; round < MOTOR_ROUNDS && limitByMotor(car, laid, speedMps); round++)
     laid = layOut(race, dayIndex, opening.standing, speedMps, path)
-  const harvest = arrayHarvest(car.array, arraySteps(car, laid))
+  const harvest = arrayHarvest(car.array, arraySteps(car, laid, laid.timetable.spans))
   const packC = openingC(car, opening.warmth, laid)
   const energy = balance(car, { ...laid, spans: laid.timetable.spans, harvest }, { charge: opening.charge, packC })
   const closing = closingOf(laid, energy, opening.charge)
@@ -119,8 +120,16 @@ function closingOf({ steps, timetable: table, weather }: Laid, energy: Balance, 
   return { standing: table.evening, charge: energy.charge[last], warmth }
 }
 
-/** Steps of a day as the array needs them. */
-export function arraySteps({ array }: Car, laid: Omit<Laid, 'timetable'>): ArraySteps {
+/**
+ * Steps of a day as the array needs them.
+ *
+ * @param spans  of the day, which tell what stands around the parked car; left out, nothing
+ */
+export function arraySteps(
+  { array }: Car,
+  laid: Omit<Laid, 'timetable'>,
+  spans: Pick<Span, 'horizon'>[] = [],
+): ArraySteps {
   const { steps, weather, air } = laid
   const { headingRad, gradeRad, lifted } = steps
   const reaimS = array.model.stand?.reaimS ?? 0
@@ -132,6 +141,7 @@ export function arraySteps({ array }: Car, laid: Omit<Laid, 'timetable'>): Array
     lifted,
     durationS: durationsS(steps),
     overPanelsC: airOverPanelsC(laid),
+    horizons: horizonsAlong(spans, steps),
     ...(reaimS > 0 ? { hold: holdsAlong(steps, reaimS) } : {}),
   }
 }
@@ -159,6 +169,12 @@ function layOut(race: Race, dayIndex: number, standing: Standing, speedMps: Floa
 }
 
 const durationsS = ({ fromMs, toMs }: Steps): Float64Array => toMs.map((to, i) => (to - fromMs[i]) / 1000)
+
+/** What stands around the parked car, where any span of the day tells of it. */
+const horizonsAlong = (spans: Pick<Span, 'horizon'>[], { span }: Steps): HorizonsAlong | undefined =>
+  spans.some(({ horizon }) => horizon !== undefined)
+    ? { of: spans.map(({ horizon }) => horizon ?? null), at: span }
+    : undefined
 
 /** Air over the panels where a road warms it in proportion to the global light. [°C] (steps) */
 function airOverPanelsC({ course, steps, weather }: Omit<Laid, 'timetable'>): Float64Array {

@@ -1,6 +1,7 @@
 import type { HeatLoss } from './cell-temperature.ts'
 import { beamShareAt, martinRuizGround, martinRuizSky } from './incidence.ts'
 import { hayDavies, panelNormal, perez, sinOf } from './plane.ts'
+import type { Shade } from './shade.ts'
 
 /** What the array needs of the weather, one value a step; `weatherAlong` gives it. */
 export interface LightAlong {
@@ -26,14 +27,18 @@ export interface PoseAlong {
   lifted: Uint8Array
 }
 
-/** A run of steps that is worked at once, small enough to stay near: apparent sun and sky shares. */
+/** A run of steps that is worked at once, small enough to stay near: apparent sun, beam, sky shares, light on the ground. */
 export interface SkyBlock {
   sunEast: Float64Array
   sunNorth: Float64Array
   sunUp: Float64Array
+  /** On a surface square to the sun. */
+  beamWm2: Float64Array
   aroundSunWm2: Float64Array
   domeWm2: Float64Array
   horizonWm2: Float64Array
+  /** Global light on the level ground. */
+  groundWm2: Float64Array
 }
 
 export const BLOCK_STEPS = 1024
@@ -43,12 +48,14 @@ export const skyBlock = (steps = BLOCK_STEPS): SkyBlock => ({
   sunEast: new Float64Array(steps),
   sunNorth: new Float64Array(steps),
   sunUp: new Float64Array(steps),
+  beamWm2: new Float64Array(steps),
   aroundSunWm2: new Float64Array(steps),
   domeWm2: new Float64Array(steps),
   horizonWm2: new Float64Array(steps),
+  groundWm2: new Float64Array(steps),
 })
 
-/** Fills a block with the apparent sun (true azimuth, apparent zenith) and the sky's shares at steps from..to−1. */
+/** Fills a block with the apparent sun (true azimuth, apparent zenith), beam, sky and ground at steps from..to−1. */
 export function fillSky(
   model: 'hay-davies' | 'perez',
   light: LightAlong,
@@ -68,6 +75,8 @@ export function fillSky(
     block.sunEast[b] = east * stretch
     block.sunNorth[b] = north * stretch
     block.sunUp[b] = cosZenith
+    block.beamWm2[b] = light.dniWm2[i]
+    block.groundWm2[b] = light.ghiWm2[i]
     sky.dniWm2 = light.dniWm2[i]
     sky.dhiWm2 = light.dhiWm2[i]
     sky.extraWm2 = light.extraWm2[i]
@@ -90,6 +99,8 @@ export interface LitPanel {
   beamTable: Float64Array | null
   /** Martin and Ruiz on sky and ground, the beam's law on light from around the sun; else diffuse light loses nothing. */
   losesDiffuse: boolean
+  /** What the car itself takes; null where nothing. */
+  shade: Shade | null
   loss: HeatLoss
 }
 
@@ -132,18 +143,19 @@ export function liftedNormal(
  *
  * @param block   sky of the same steps
  * @param albedo  share of light that the ground throws back, 0..1
+ * @param lit     share of the beam that the car's own shade leaves, from the block's start; null for all of it
  * @param out     overwritten at those steps
  */
 export function panelLight(
   panel: LitPanel,
-  steps: { light: LightAlong; pose: PoseAlong; aim: AimAlong },
-  range: { from: number; to: number; block: SkyBlock; albedo: number },
+  steps: { pose: PoseAlong; aim: AimAlong },
+  range: { from: number; to: number; block: SkyBlock; albedo: number; lit: Float64Array | null },
   out: PanelLight,
 ): void {
-  const { ghiWm2, dniWm2 } = steps.light
   const { headingRad, gradeRad, lifted } = steps.pose
-  const { from, to, block, albedo } = range
+  const { from, to, block, albedo, lit } = range
   const { beamTable, losesDiffuse, lifts } = panel
+  const evenShare = panel.shade?.evenShare ?? 1
   let normal: [number, number, number] = [0, 0, 1]
   let [east, north, up] = normal
   let [sinTilt, keptSky, keptGround] = [0, 1, 1]
@@ -169,11 +181,13 @@ export function panelLight(
       }
     }
     const cos = Math.min(1, Math.max(0, east * block.sunEast[b] + north * block.sunNorth[b] + up * block.sunUp[b]))
-    const beam = dniWm2[i] * cos
-    const aroundSun = block.aroundSunWm2[b] * cos
-    const even = block.domeWm2[b] * 0.5 * (1 + up) + block.horizonWm2[b] * sinTilt
+    const litCos = lit === null ? cos : cos * lit[b]
+    const beam = block.beamWm2[b] * litCos
+    const aroundSun = block.aroundSunWm2[b] * litCos
+    let even = block.domeWm2[b] * 0.5 * (1 + up) + block.horizonWm2[b] * sinTilt
+    if (even > 0) even *= evenShare
     const sky = Math.max(0, aroundSun + even)
-    const ground = ghiWm2[i] * albedo * 0.5 * (1 - up)
+    const ground = block.groundWm2[b] * albedo * 0.5 * (1 - up)
     const plane = beam + sky + ground
     let effective = plane
     if (beamTable !== null) {

@@ -1,4 +1,5 @@
 import type { PreparedArray } from './array.ts'
+import { type HorizonsAlong, hideSky } from './horizon.ts'
 import { type AimAlong, fillSky, type LightAlong, type SkyBlock, skyBlock } from './panel-light.ts'
 import { type PoseLight, poseLight } from './pose-light.ts'
 import { bestPose } from './pose-search.ts'
@@ -11,6 +12,8 @@ export interface LiftedSteps {
   lifted: Uint8Array
   /** Number of the hold that a lifted step belongs to; left out, every step has a pose of its own. */
   hold?: Int32Array
+  /** What stands around the car; left out, nothing. */
+  horizons?: HorizonsAlong
 }
 
 /**
@@ -52,7 +55,7 @@ function holdEnd({ headingRad, lifted, hold }: LiftedSteps, from: number): numbe
  * Poses of the lifted array, hold by hold: most light on the cells, or most of the sun's beam, as the stand's aim says.
  *
  * Most light counts beam, light around the sun, dome, horizon and ground on every panel that lifts, past its cover,
- * with panels keeping pitch and roll on the lifted array; within a hold the steps' powers are summed. Steps of a hold
+ * under the horizon, without the car's own shade, with panels keeping pitch and roll on the lifted array; within a hold the steps' powers are summed. Steps of a hold
  * count alike: they are of one length.
  *
  * @param out  overwritten at lifted steps
@@ -66,6 +69,7 @@ export function aimAlong(array: PreparedArray, stand: Stand, steps: LiftedSteps,
     const to = holdEnd(steps, from)
     if (to - from > sky.sunUp.length) sky = skyBlock(2 * (to - from))
     fillSky(array.model.skyModel, steps.weather, from, to, sky)
+    if (steps.horizons !== undefined) hideSky(steps.horizons, from, to, sky)
     const { tiltRad, azimuthRad } = holdPose(array, stand, search, { steps, sky, from, to })
     out.tiltRad.fill(tiltRad, from, to)
     out.azimuthRad.fill(azimuthRad, from, to)
@@ -87,7 +91,6 @@ function holdPose(
   const atSun = aimAtSun(stand, sum(sky.sunEast), sum(sky.sunNorth), sum(sky.sunUp))
   if (search === null) return atSun
   search.hold({
-    light: steps.weather,
     sky,
     from,
     to,

@@ -1,12 +1,11 @@
 import type { AimStrings, Face } from './aim-strings.ts'
 import { spanningW } from './aim-strings.ts'
 import { INCIDENCE_STEPS, martinRuizGround, martinRuizSky } from './incidence.ts'
-import type { LightAlong, SkyBlock } from './panel-light.ts'
+import type { SkyBlock } from './panel-light.ts'
 import { panelNormal } from './plane.ts'
 
 /** Steps with one heading in which one pose is held. */
 export interface Hold {
-  light: LightAlong
   /** Sky of the hold's steps from 0 on. */
   sky: SkyBlock
   from: number
@@ -98,8 +97,8 @@ function faceLight(
   out: Float64Array,
   at: number,
 ): number {
-  const { light, sky, from, to, albedo } = hold
-  const { sunEast, sunNorth, sunUp, aroundSunWm2, domeWm2, horizonWm2 } = sky
+  const { sky, from, to, albedo } = hold
+  const { sunEast, sunNorth, sunUp, beamWm2, aroundSunWm2, domeWm2, horizonWm2, groundWm2 } = sky
   const half = Math.sqrt(0.5 * Math.max(0, 1 - up))
   const sinTilt = 2 * half * Math.sqrt(Math.max(0, 1 - half * half))
   const ground = albedo * half * half * (losesDiffuse ? tableAt(DIFFUSE_GROUND, half * TILT_STEPS) : 1)
@@ -107,12 +106,12 @@ function faceLight(
   const dome = keptSky * (1 - half * half)
   const horizon = keptSky * sinTilt
   let sum = 0
-  for (let i = from, b = 0; i < to; i++, b++) {
+  for (let b = 0; b < to - from; b++) {
     const cos = Math.min(1, Math.max(0, east * sunEast[b] + north * sunNorth[b] + up * sunUp[b]))
     const through = beamTable === null ? cos : cos * tableAt(beamTable, cos * INCIDENCE_STEPS)
     const around = losesDiffuse ? through : cos
     const diffuse = around * aroundSunWm2[b] + dome * domeWm2[b] + horizon * horizonWm2[b]
-    const each = light.dniWm2[i] * through + Math.max(0, diffuse) + ground * light.ghiWm2[i]
+    const each = beamWm2[b] * through + Math.max(0, diffuse) + ground * groundWm2[b]
     out[at + b] = each
     sum += each
   }

@@ -1,5 +1,6 @@
 import type { Course } from './course.ts'
 import type { DayRules, Standing, StageRule, StopRule } from './day-rules.ts'
+import type { Horizon } from './horizon.ts'
 
 export type SpanKind = 'parked' | 'morning-charge' | 'drive' | 'stop' | 'evening-charge'
 
@@ -17,6 +18,8 @@ export interface Span {
   /** When the array stands lifted inside the span; equal when it does not. */
   liftedFromMs: number
   liftedToMs: number
+  /** What stands around the car; left out, nothing. */
+  horizon?: Horizon
 }
 
 /** One day laid out: what happens when, and where the car stands in the evening. */
@@ -108,7 +111,8 @@ function stand(
   now.nowMs = toMs
   if (toMs <= fromMs) return
   const lifted = rule.lifts ? liftedBetween(fromMs, toMs, rule.raiseS, rule.lowerS) : FLAT
-  spans.push({ kind: 'stop', stage: now.stage - 1, fromMs, toMs, fromM: placeM, toM: placeM, piece, ...lifted })
+  const at = { fromMs, toMs, fromM: placeM, toM: placeM, piece, horizon: rule.horizon }
+  spans.push({ kind: 'stop', stage: now.stage - 1, ...at, ...lifted })
 }
 
 function liftedBetween(fromMs: number, toMs: number, raiseS: number, lowerS: number) {
@@ -169,22 +173,24 @@ export function pieceAt(course: Course, placeM: number, first = 0): number {
   return low
 }
 
+const FLAT_UNDER_OPEN_SKY = { lifts: false }
+
 /** The car stands still until an instant: charging windows and the time between them. */
 function park(spans: Span[], day: DayRules, now: Now, until: { untilMs: number; kind: SpanKind }): void {
   const { placeM, piece } = now
-  const push = (kind: SpanKind, toMs: number, lifts: boolean): void => {
+  const push = (kind: SpanKind, toMs: number, { lifts, horizon }: { lifts: boolean; horizon?: Horizon }): void => {
     const fromMs = now.nowMs
     if (toMs <= fromMs) return
     const lifted = lifts ? liftedBetween(fromMs, toMs, day.raiseS, day.lowerS) : FLAT
-    spans.push({ kind, stage: -1, fromMs, toMs, fromM: placeM, toM: placeM, piece, ...lifted })
+    spans.push({ kind, stage: -1, fromMs, toMs, fromM: placeM, toM: placeM, piece, horizon, ...lifted })
     now.nowMs = toMs
   }
   for (const window of day.charging) {
     const fromMs = Math.max(window.fromMs, now.nowMs)
     const toMs = Math.min(window.toMs, until.untilMs)
     if (toMs <= fromMs) continue
-    push('parked', fromMs, false)
-    push(until.kind, toMs, window.lifts)
+    push('parked', fromMs, FLAT_UNDER_OPEN_SKY)
+    push(until.kind, toMs, window)
   }
-  push('parked', until.untilMs, false)
+  push('parked', until.untilMs, FLAT_UNDER_OPEN_SKY)
 }

@@ -253,7 +253,7 @@ function lightOf(model: ArrayModel, moment: Moment): (pose: Pose) => number {
   const sky = skyBlock(1)
   fillSky(model.skyModel, weather, 0, 1, sky)
   const light = poseLight(prepared.aim)
-  light.hold({ light: weather, sky, from: 0, to: 1, headingRad: headingRad[0], albedo: model.albedo })
+  light.hold({ sky, from: 0, to: 1, headingRad: headingRad[0], albedo: model.albedo })
   return ({ tiltRad, azimuthRad }) => light.powerW(tiltRad, azimuthRad)
 }
 
