@@ -64,6 +64,12 @@ export const drive = z
     ).optional(),
     regenerationFromKmh: quantity(0, 100, 'speed below which the motor does not brake [km/h]').default(0),
     regenerationBusMaxW: quantity(0, 200_000, 'highest power from braking at the bus; left out: none [W]').optional(),
+    accelerationMps2: quantity(
+      0.05,
+      5,
+      'acceleration that the driver keeps to, as far as the motor pulls [m/s²]',
+    ).default(0.6),
+    brakingMps2: quantity(0.1, 8, 'deceleration that the driver keeps to [m/s²]').default(1),
     losses: terms.optional().describe('losses by torque and speed, in place of the efficiencies'),
     map: map.optional().describe('efficiency by torque and speed, in place of the efficiencies'),
   })

@@ -5,7 +5,7 @@ import type { Surroundings } from './array-model.ts'
 import type { CarDocument } from './car.ts'
 import type { LearnedLosses } from './learned.ts'
 import { packModel } from './pack-model.ts'
-import { driveModel, roadLoadModel } from './road-model.ts'
+import { boundsModel, driveModel, roadLoadModel } from './road-model.ts'
 import { trackerModel } from './tracker-model.ts'
 
 /**
@@ -18,6 +18,7 @@ export function carModel(car: CarDocument, surroundings: Surroundings, learned: 
   return {
     load: roadLoadModel(body),
     drive: driveModel(drive),
+    bounds: boundsModel(drive),
     windHeightM: body.windHeightM,
     auxDrivingW: auxiliaries.drivingW,
     auxParkedW: auxiliaries.parkedW,

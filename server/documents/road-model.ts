@@ -1,5 +1,7 @@
 import { prepareDrive } from '../engine/drive.ts'
 import type { Drive } from '../engine/drive.ts'
+import { prepareBounds } from '../engine/driven-road.ts'
+import type { MotionBounds } from '../engine/driven-road.ts'
 import { copperOhm } from '../engine/drive-loss.ts'
 import type { DriveLosses } from '../engine/drive-loss.ts'
 import { prepareRoadLoad, STANDARD_GRAVITY } from '../engine/road.ts'
@@ -51,6 +53,10 @@ export function driveModel(drive: DriveDocument): Drive {
     ...(losses === undefined ? {} : { losses }),
   })
 }
+
+/** How fast the driver changes speed. */
+export const boundsModel = (drive: DriveDocument): MotionBounds =>
+  prepareBounds({ accelerationMps2: drive.accelerationMps2, brakingMps2: drive.brakingMps2 })
 
 /** Turns of the motor per minute for each m/s of the car. */
 const rpmPerMps = ({ gearRatio, wheelRadiusM }: DriveDocument): number => gearRatio / wheelRadiusM / RPM

@@ -2,6 +2,7 @@ import type { ArrayHarvest, PreparedArray } from './array.ts'
 import type { Pack, PackLimit, PackStep } from './battery.ts'
 import type { Course } from './course.ts'
 import type { Drive } from './drive.ts'
+import type { MotionBounds } from './driven-road.ts'
 import { noEnergy } from './energy.ts'
 import type { Energy } from './energy.ts'
 import type { Air } from './motion.ts'
@@ -21,6 +22,8 @@ import type { Tracker, TrackerLimit } from './tracker.ts'
 export interface Car {
   load: RoadLoad
   drive: Drive
+  /** Bounds that the driver keeps to when the speed changes. */
+  bounds: MotionBounds
   windHeightM: number
   auxDrivingW: number
   auxParkedW: number
@@ -109,13 +112,13 @@ export function balance(car: Car, day: BalanceDay, opening: { charge: number; pa
     const durationS = (steps.toMs[i] - steps.fromMs[i]) / 1000
     const isDriving = spans[steps.span[i]].kind === 'drive'
     const auxW = isDriving ? car.auxDrivingW : steps.charging[i] === 1 ? car.auxChargingW : car.auxParkedW
-    if (isDriving) roadEnergy(car, day, roadStep(steps, i, durationS), road)
+    if (isDriving) roadEnergy(car, day, i, road)
     else resetRoad(road)
     const { packV, heldJ } = pack
     if (steps.charging[i] === 1) taken.take(i, packV)
     else taken.rest(i, packV)
     const netJ = (taken.outputW() - taken.standbyW()) * durationS - road.busJ - auxW * durationS
-    pack.take(netJ, Math.max(durationS, road.changeS), airC[i])
+    pack.take(netJ, durationS, airC[i])
     if (pack.step.spilledJ > 0) giveUp(taken, road, { excessW: pack.step.spilledJ / durationS, packV, durationS })
     pack.warm(durationS, airC[i], isDriving)
     book(sums, road, pack.step, auxW * durationS)
@@ -148,15 +151,8 @@ export interface BalanceDay {
   harvest: ArrayHarvest
 }
 
-/** Where a step stands in its drive: a drive starts from rest and ends at rest. */
-function roadStep(steps: Steps, i: number, durationS: number) {
-  const startsHere = i === 0 || steps.span[i - 1] !== steps.span[i]
-  const endsInHalt = i + 1 === steps.count || steps.span[i + 1] !== steps.span[i]
-  return { index: i, durationS, beforeMps: startsHere ? 0 : steps.speedMps[i - 1], endsInHalt }
-}
-
 function resetRoad(road: RoadEnergy): void {
-  road.busJ = road.rollingJ = road.dragJ = road.climbingJ = road.brakedJ = road.lossJ = road.changeS = 0
+  road.busJ = road.rollingJ = road.dragJ = road.climbingJ = road.brakedJ = road.lossJ = 0
 }
 
 /** What the pack refuses: the trackers take less first; regeneration that is left over goes to the brakes. */

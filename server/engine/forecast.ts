@@ -5,10 +5,12 @@ import type { Balance, Car } from './balance.ts'
 import { SHEET_C, storedJ } from './battery.ts'
 import type { Course } from './course.ts'
 import type { DayRules, StageRule, Standing } from './day-rules.ts'
+import { CRAWL_MPS, drivenRoad } from './driven-road.ts'
+import type { DrivenRoad } from './driven-road.ts'
 import { idleC } from './pack-heat.ts'
 import type { Warmth } from './pack-heat.ts'
 import type { HorizonsAlong } from './horizon.ts'
-import { airAtCar, limitByMotor, pieceTimesS } from './motion.ts'
+import { airAtCar, meetWeather } from './motion.ts'
 import type { Air } from './motion.ts'
 import { holdsAlong } from './pointing.ts'
 import { weatherAlong } from './sky.ts'
@@ -60,7 +62,7 @@ export interface DayForecast {
   blockedPiece: number
 }
 
-/** Rounds of laying the day out anew after the motor lowered a speed; the weather then shifts by seconds. */
+/** Rounds of laying the day out anew after the weather changed what the motor can hold; the weather then shifts by seconds. */
 const MOTOR_ROUNDS = 3
 
 /**
@@ -80,10 +82,10 @@ export function forecastDay(
   path: SunPath = daySun(race.days[dayIndex]),
 ): DayForecast {
   const { car } = race
-  const speedMps = underLimits(race.course, wantedMps)
-  let laid = layOut(race, dayIndex, opening.standing, speedMps, path)
-  for (let round = 0; round < MOTOR_ROUNDS && limitByMotor(car, laid, speedMps); round++)
-    laid = layOut(race, dayIndex, opening.standing, speedMps, path)
+  const road = drivenRoad(car, race.course, wantedMps)
+  let laid = layOut(race, dayIndex, opening.standing, road, path)
+  for (let round = 0; round < MOTOR_ROUNDS && meetWeather(road, laid.steps, laid.air); round++)
+    laid = layOut(race, dayIndex, opening.standing, road, path)
   const harvest = arrayHarvest(car.array, arraySteps(car, laid, laid.timetable.spans))
   const packC = openingC(car, opening.warmth, laid)
   const energy = balance(car, { ...laid, spans: laid.timetable.spans, harvest }, { charge: opening.charge, packC })
@@ -102,7 +104,7 @@ export function forecastDay(
     closing,
     closingJ: storedJ(car.pack, closing.charge),
     lowestStep: lowestStep(energy.storedJ, storedJ(car.pack, opening.charge)),
-    blockedPiece: blockedPiece(race.course, laid, speedMps),
+    blockedPiece: blockedPiece(road, laid),
   }
 }
 
@@ -158,11 +160,10 @@ interface Laid {
 }
 
 /** Timetable, steps, weather and air at given speeds. */
-function layOut(race: Race, dayIndex: number, standing: Standing, speedMps: Float64Array, path: SunPath): Laid {
+function layOut(race: Race, dayIndex: number, standing: Standing, road: DrivenRoad, path: SunPath): Laid {
   const { course } = race
-  const pieceS = pieceTimesS(course, speedMps)
-  const table = timetable(course, race.stages, race.days[dayIndex], { dayIndex, standing, pieceS })
-  const cut = steps(course, table.spans, speedMps, pieceS)
+  const table = timetable(road, race.stages, race.days[dayIndex], { dayIndex, standing })
+  const cut = steps(course, table)
   if (race.car.array.model.stand === null) cut.lifted.fill(0)
   const weather = weatherAlong(race.sky, path, cut)
   return { course, timetable: table, steps: cut, weather, air: airAtCar(course, cut, weather, race.car.windHeightM) }
@@ -180,11 +181,6 @@ const horizonsAlong = (spans: Pick<Span, 'horizon'>[], { span }: Steps): Horizon
 function airOverPanelsC({ course, steps, weather }: Omit<Laid, 'timetable'>): Float64Array {
   const { roadHeatC } = course
   return weather.airC.map((airC, i) => airC + roadHeatC[steps.piece[i]] * (weather.ghiWm2[i] / 1000))
-}
-
-function underLimits(course: Course, wantedMps: Float64Array): Float64Array {
-  const { limitMps } = course.pieces
-  return wantedMps.map((wanted, i) => Math.min(wanted, limitMps[i]))
 }
 
 function warmest(panels: Float64Array[], count: number): Float64Array {
@@ -205,11 +201,11 @@ function lowestStep(stored: Float64Array, openingJ: number): number {
 }
 
 /** The piece in front of which the car stands because the motor cannot climb it. */
-function blockedPiece(course: Course, laid: Laid, speedMps: Float64Array): number {
+function blockedPiece({ course, heldMps }: DrivenRoad, laid: Laid): number {
   if (!laid.timetable.isCutOff) return -1
   const { placeM } = laid.timetable.evening
   const piece = course.pieces.fromM.findIndex(
     (fromM, i) => fromM + course.pieces.lengthM[i] > placeM + 1e-6 && fromM <= placeM + 1e-6,
   )
-  return piece >= 0 && pieceTimesS(course, speedMps)[piece] === Number.POSITIVE_INFINITY ? piece : -1
+  return piece >= 0 && heldMps[piece] < CRAWL_MPS ? piece : -1
 }

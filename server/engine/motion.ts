@@ -1,9 +1,7 @@
 import type { Course } from './course.ts'
-import { attainableSpeedMps } from './drive.ts'
-import type { Drive } from './drive.ts'
-import { BRAKING_MPS2, STARTING_MPS2 } from './road-energy.ts'
+import { holdWhatTheMotorCan } from './driven-road.ts'
+import type { DrivenRoad } from './driven-road.ts'
 import { tyreFactor } from './road.ts'
-import type { Going, RoadLoad } from './road.ts'
 import type { Weather } from './sky.ts'
 import type { Steps } from './steps.ts'
 import { crosswindMps, headwindMps, windShareAtCar } from './wind.ts'
@@ -17,9 +15,6 @@ export interface Air {
   densityKgM3: Float64Array
   airC: Float64Array
 }
-
-/** Below this a car does not count as able to climb. [Mps] */
-export const CRAWL_MPS = 1
 
 /**
  * Wind, airflow and density at the car's height along the steps.
@@ -60,47 +55,25 @@ export function airAtCar(
   return air
 }
 
-/**
- * Time that each piece takes at a held speed; expected halts add braking and starting. Infinity at or below a crawl.
- *
- * @param speedMps  held speed per piece. [Mps] (pieces)
- */
-export function pieceTimesS(course: Course, speedMps: Float64Array): Float64Array {
-  const { count, lengthM, haltsPerM } = course.pieces
-  const timesS = new Float64Array(count)
-  for (let i = 0; i < count; i++) {
-    const v = speedMps[i]
-    const haltS = (v / 2) * (1 / BRAKING_MPS2 + 1 / STARTING_MPS2)
-    timesS[i] = v < CRAWL_MPS ? Number.POSITIVE_INFINITY : lengthM[i] / v + haltsPerM[i] * lengthM[i] * haltS
-  }
-  return timesS
-}
+/** A held speed that changed by less than this stays as it was laid out. [Mps] */
+const SAME_SPEED_MPS = 0.01
 
 /**
- * Lowers the speeds of pieces on which the motor cannot hold them in the weather met there.
+ * Brings the weather met on each piece to the road, and with it the speeds that the motor can hold.
  *
- * @param speedMps  is lowered in place. [Mps] (pieces)
- * @returns whether any speed changed by more than 0.01 m/s
+ * @param road  air, rolling and held speeds are changed in place, where it is driven
+ * @returns whether any held speed changed so that the day must be laid out anew
  */
-export function limitByMotor(
-  car: { load: RoadLoad; drive: Drive },
-  day: { course: Course; steps: Steps; air: Air },
-  speedMps: Float64Array,
-): boolean {
-  const { steps, air, course } = day
-  const going: Going = { gradeRad: 0, surfaceFactor: 1, headwindMps: 0, crosswindMps: 0, densityKgM3: 1.2 }
+export function meetWeather(road: DrivenRoad, steps: Steps, air: Air): boolean {
   let hasChanged = false
   for (let i = 0; i < steps.count; i++) {
-    if (steps.speedMps[i] === 0) continue
     const piece = steps.piece[i]
-    going.gradeRad = steps.gradeRad[i]
-    going.surfaceFactor = course.pieces.surfaceFactor[piece] * tyreFactor(car.load, air.airC[i])
-    going.headwindMps = air.headwindMps[i]
-    going.crosswindMps = air.crosswindMps[i]
-    going.densityKgM3 = air.densityKgM3[i]
-    const heldMps = attainableSpeedMps(car.load, car.drive, going, speedMps[piece])
-    if (heldMps < speedMps[piece] - 0.01) hasChanged = true
-    speedMps[piece] = heldMps
+    if (steps.speedMps[i] === 0 || (i > 0 && piece === steps.piece[i - 1] && steps.speedMps[i - 1] > 0)) continue
+    road.headwindMps[piece] = air.headwindMps[i]
+    road.crosswindMps[piece] = air.crosswindMps[i]
+    road.densityKgM3[piece] = air.densityKgM3[i]
+    road.surfaceFactor[piece] = road.course.pieces.surfaceFactor[piece] * tyreFactor(road.load, air.airC[i])
+    if (holdWhatTheMotorCan(road, piece) > SAME_SPEED_MPS) hasChanged = true
   }
   return hasChanged
 }

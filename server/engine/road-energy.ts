@@ -1,8 +1,9 @@
 import type { Course } from './course.ts'
 import { wheelToBus } from './drive.ts'
 import type { BusPower, Drive } from './drive.ts'
+import type { MotionBounds } from './driven-road.ts'
 import type { Air } from './motion.ts'
-import { climbingN, dragN, kineticJ, rollingN, tyreFactor } from './road.ts'
+import { climbingN, dragN, rollingN, tyreFactor } from './road.ts'
 import type { RoadLoad } from './road.ts'
 import type { Steps } from './steps.ts'
 
@@ -14,8 +15,6 @@ export interface RoadEnergy {
   climbingJ: number
   brakedJ: number
   lossJ: number
-  /** How long a change of speed in this step really takes, 0 where there is none; may be longer than the step. [S] */
-  changeS: number
 }
 
 /** A result to fill again and again. */
@@ -26,75 +25,110 @@ export const newRoadEnergy = (): RoadEnergy => ({
   climbingJ: 0,
   brakedJ: 0,
   lossJ: 0,
-  changeS: 0,
 })
 
-/** Deceleration to a halt. [m/s²] Common practice, no source. */
-export const BRAKING_MPS2 = 1
+/** The car as the road sees it. */
+export interface RoadCar {
+  load: RoadLoad
+  drive: Drive
+  bounds: MotionBounds
+}
 
-/** Acceleration from a halt. [m/s²] Common practice, no source. */
-export const STARTING_MPS2 = 0.6
+/** Parts into which a step of changing speed is cut; braking has the kinks of the motor's limits in it. */
+const BRAKING_PARTS = 8
+const STARTING_PARTS = 2
 
-// Scratch for wheelToBus; a step is never re-entered.
+/** Gauss' two points in a part: exact for the third power of speed. */
+const GAUSS = [0.5 - Math.sqrt(1 / 12), 0.5 + Math.sqrt(1 / 12)]
+
+// Scratch; a step is never re-entered.
 const bus: BusPower = { busW: 0, lossW: 0, brakedW: 0 }
+const here = { gradeRad: 0, surfaceFactor: 1, headwindMps: 0, crosswindMps: 0, densityKgM3: 0 }
 
 /**
- * What the road asks of the bus in one step of a drive; all zero when parked.
+ * What the road asks of the bus in one step of a drive.
  *
- * The work at the wheels is rolling, drag, climbing and the change of kinetic energy against the step
- * before; a drive starts from rest and is braked to rest at its end. Each expected halt brakes to rest
- * and accelerates again. `changeS` says how long a change of speed takes: in a step shorter than that motor
- * and pack see the energy over that time, not as a blow.
+ * The work at the wheels is rolling, drag, climbing and the change of kinetic energy at the step's one
+ * acceleration; where the speed changes, power is summed over the times of the step and not taken at its mean.
+ * Each expected halt brakes from the speed it meets to rest and accelerates again.
  *
- * @param step  which step, its length, the speed in the step before (0 at a start), whether the car halts at its end
- * @param out   is filled and returned
+ * @param i    which step
+ * @param out  is filled and returned
  */
 export function roadEnergy(
-  car: { load: RoadLoad; drive: Drive },
+  car: RoadCar,
   day: { course: Course; steps: Steps; air: Air },
-  step: { index: number; durationS: number; beforeMps: number; endsInHalt: boolean },
+  i: number,
   out: RoadEnergy,
 ): RoadEnergy {
   const { steps, air, course } = day
-  const { index: i, durationS } = step
-  const speedMps = steps.speedMps[i]
-  const { load, drive } = car
-  const piece = steps.piece[i]
+  const fromMps = steps.fromMps[i]
+  const toMps = steps.toMps[i]
+  here.gradeRad = steps.gradeRad[i]
+  here.surfaceFactor = course.pieces.surfaceFactor[steps.piece[i]] * tyreFactor(car.load, air.airC[i])
+  here.headwindMps = air.headwindMps[i]
+  here.crosswindMps = air.crosswindMps[i]
+  here.densityKgM3 = air.densityKgM3[i]
+  out.busJ = out.rollingJ = out.dragJ = out.climbingJ = out.brakedJ = out.lossJ = 0
   // Places run along the map; the wheels run along the slope.
-  const lengthM = (steps.toM[i] - steps.fromM[i]) / Math.cos(steps.gradeRad[i])
-  const kinetic = kineticJ(load, speedMps)
-  const surface = course.pieces.surfaceFactor[piece] * tyreFactor(load, air.airC[i])
-  out.rollingJ = rollingN(load, speedMps, steps.gradeRad[i], surface) * lengthM
-  out.dragJ = dragN(load, speedMps, air.headwindMps[i], air.crosswindMps[i], air.densityKgM3[i]) * lengthM
-  out.climbingJ = climbingN(load, steps.gradeRad[i]) * lengthM
-  const movedJ = out.rollingJ + out.dragJ + out.climbingJ + kinetic - kineticJ(load, step.beforeMps)
-  const gainMps = speedMps - step.beforeMps
-  out.changeS = gainMps > 0 ? gainMps / STARTING_MPS2 : -gainMps / BRAKING_MPS2
-  const overS = Math.max(durationS, out.changeS)
-  wheelToBus(drive, movedJ / overS, speedMps, bus)
-  out.busJ = bus.busW * overS
-  out.lossJ = bus.lossW * overS
-  out.brakedJ = bus.brakedW * overS
-  if (step.endsInHalt) out.changeS += speedMps / BRAKING_MPS2
-  const halts = course.pieces.haltsPerM[piece] * lengthM
-  if (halts > 0)
-    addChange(out, drive, { kineticJ: kinetic, meanMps: speedMps / 2, overS: speedMps / STARTING_MPS2, times: halts })
-  const stops = halts + (step.endsInHalt ? 1 : 0)
-  if (stops > 0)
-    addChange(out, drive, { kineticJ: -kinetic, meanMps: speedMps / 2, overS: speedMps / BRAKING_MPS2, times: stops })
+  const lengthM = (steps.toM[i] - steps.fromM[i]) / Math.cos(here.gradeRad)
+  const motionS = (2 * lengthM) / (fromMps + toMps)
+  if (fromMps === toMps) addMoment(out, car, fromMps, 0, motionS)
+  else addChange(out, car, { fromMps, toMps, motionS, times: 1, isOnRoad: true })
+  const halts = course.pieces.haltsPerM[steps.piece[i]] * lengthM
+  if (halts > 0) addHalts(out, car, Math.sqrt((fromMps * fromMps + toMps * toMps) / 2), halts)
   return out
 }
 
-/** Books `times` accelerations (positive) or brakings (negative) of one kinetic energy each. */
+/** A change of speed at one acceleration, so many times; on the road, or what its motion alone takes. */
 function addChange(
   out: RoadEnergy,
-  drive: Drive,
-  change: { kineticJ: number; meanMps: number; overS: number; times: number },
+  car: RoadCar,
+  change: { fromMps: number; toMps: number; motionS: number; times: number; isOnRoad: boolean },
 ): void {
-  if (!(change.overS > 0)) return
-  const totalS = change.overS * change.times
-  wheelToBus(drive, change.kineticJ / change.overS, change.meanMps, bus)
-  out.busJ += bus.busW * totalS
-  out.lossJ += bus.lossW * totalS
-  out.brakedJ += bus.brakedW * totalS
+  const { fromMps, toMps, motionS, times, isOnRoad } = change
+  const parts = toMps < fromMps ? BRAKING_PARTS : STARTING_PARTS
+  const { massKg, rotatingFactor } = car.load
+  const inertiaN = (massKg * rotatingFactor * (toMps - fromMps)) / motionS
+  const momentS = (motionS * times) / (2 * parts)
+  for (let part = 0; part < parts; part++)
+    for (const point of GAUSS) {
+      const speedMps = fromMps + (toMps - fromMps) * ((part + point) / parts)
+      if (isOnRoad) addMoment(out, car, speedMps, inertiaN, momentS)
+      else addPower(out, car.drive, inertiaN * speedMps, speedMps, momentS)
+    }
+}
+
+/** A time at one speed on this road, with the force that the change of speed takes. */
+function addMoment(
+  out: RoadEnergy,
+  { load, drive }: RoadCar,
+  speedMps: number,
+  inertiaN: number,
+  durationS: number,
+): void {
+  const wayM = speedMps * durationS
+  const rolling = rollingN(load, speedMps, here.gradeRad, here.surfaceFactor)
+  const drag = dragN(load, speedMps, here.headwindMps, here.crosswindMps, here.densityKgM3)
+  const climbing = climbingN(load, here.gradeRad)
+  out.rollingJ += rolling * wayM
+  out.dragJ += drag * wayM
+  out.climbingJ += climbing * wayM
+  addPower(out, drive, (rolling + drag + climbing + inertiaN) * speedMps, speedMps, durationS)
+}
+
+function addPower(out: RoadEnergy, drive: Drive, wheelW: number, speedMps: number, durationS: number): void {
+  wheelToBus(drive, wheelW, speedMps, bus)
+  out.busJ += bus.busW * durationS
+  out.lossJ += bus.lossW * durationS
+  out.brakedJ += bus.brakedW * durationS
+}
+
+/** Expected halts from a speed: braking to rest and starting again. */
+function addHalts(out: RoadEnergy, car: RoadCar, speedMps: number, times: number): void {
+  const { accelerationMps2, brakingMps2 } = car.bounds
+  const braking = { fromMps: speedMps, toMps: 0, motionS: speedMps / brakingMps2 }
+  const starting = { fromMps: 0, toMps: speedMps, motionS: speedMps / accelerationMps2 }
+  addChange(out, car, { ...braking, times, isOnRoad: false })
+  addChange(out, car, { ...starting, times, isOnRoad: false })
 }

@@ -1,11 +1,11 @@
 import type { Course } from './course.ts'
-import { pieceAt } from './timetable.ts'
-import type { Span } from './timetable.ts'
+import type { Moves } from './moves.ts'
+import type { Span, Timetable } from './timetable.ts'
 
 /** Longest step of a parked car. [S] */
 export const PARKED_STEP_S = 60
 
-/** The day cut into steps with one pose and one speed; every array has `count` entries. */
+/** The day cut into steps with one pose and one acceleration; every array has `count` entries. */
 export interface Steps {
   count: number
   fromMs: Float64Array
@@ -20,8 +20,10 @@ export interface Steps {
   altM: Float64Array
   headingRad: Float64Array
   gradeRad: Float64Array
-  /** 0 when parked. */
+  /** Mean of the speeds at both ends, 0 when parked. */
   speedMps: Float64Array
+  fromMps: Float64Array
+  toMps: Float64Array
   /** 1 where the array stands lifted. */
   lifted: Uint8Array
   /** 1 where the trackers may take what the strings give. */
@@ -42,20 +44,20 @@ const FLOATS = [
   'headingRad',
   'gradeRad',
   'speedMps',
+  'fromMps',
+  'toMps',
 ] as const
 
 /**
- * The spans of a day cut into steps: one per piece of road while driving, at most one minute when parked.
+ * The spans of a day cut into steps: one per move while driving, at most one minute when parked.
  *
- * @param course    roads of all stages
- * @param spans     the day's timetable
- * @param speedMps  held speed per piece, without halts. [Mps] (pieces)
- * @param pieceS    time per piece, halts included. [S] (pieces)
+ * @param course  roads of all stages
+ * @param table   the day's timetable
  */
-export function steps(course: Course, spans: Span[], speedMps: Float64Array, pieceS: Float64Array): Steps {
-  const out = emptySteps(spans.reduce((sum, span) => sum + stepsIn(course, span), 0))
+export function steps(course: Course, { spans, moves }: Pick<Timetable, 'spans' | 'moves'>): Steps {
+  const out = emptySteps(spans.reduce((sum, span) => sum + stepsIn(span), 0))
   spans.forEach((span, index) => {
-    if (span.kind === 'drive') driveSteps(out, course, { span, index, speedMps, pieceS })
+    if (span.kind === 'drive') driveSteps(out, course, { span, index, moves })
     else parkedSteps(out, course, span, index)
   })
   return out
@@ -68,35 +70,21 @@ function emptySteps(most: number): Steps {
 }
 
 /** Exact number of steps of a span, so that the arrays have no slack. */
-function stepsIn(course: Course, span: Span): number {
-  if (span.kind === 'drive') return lastPiece(course, span) - span.piece + 1
-  return parkedEdgesMs(span).length - 1
-}
+const stepsIn = (span: Span): number =>
+  span.kind === 'drive' ? span.endMove - span.firstMove : parkedEdgesMs(span).length - 1
 
-/** The piece in which a drive ends; one that ends on an edge ends in the piece before it. */
-function lastPiece(course: Course, span: Span): number {
-  const piece = pieceAt(course, span.toM)
-  return piece > span.piece && course.pieces.fromM[piece] >= span.toM ? piece - 1 : piece
-}
-
-function driveSteps(
-  out: Steps,
-  course: Course,
-  leg: { span: Span; index: number; speedMps: Float64Array; pieceS: Float64Array },
-): void {
-  const { span, index, speedMps, pieceS } = leg
-  const { pieces } = course
-  const last = lastPiece(course, span)
+function driveSteps(out: Steps, course: Course, leg: { span: Span; index: number; moves: Moves }): void {
+  const { span, index, moves } = leg
   let nowMs = span.fromMs
-  let placeM = span.fromM
-  for (let { piece } = span; piece <= last; piece++) {
-    const toM = piece === last ? span.toM : pieces.fromM[piece + 1]
-    const toMs = piece === last ? span.toMs : nowMs + ((toM - placeM) / pieces.lengthM[piece]) * pieceS[piece] * 1000
-    const i = push(out, course, { fromMs: nowMs, toMs, fromM: placeM, toM, piece, index })
-    out.speedMps[i] = speedMps[piece]
+  for (let m = span.firstMove; m < span.endMove; m++) {
+    const toMs = m + 1 === span.endMove ? span.toMs : nowMs + moves.durationS[m] * 1000
+    const place = { fromM: moves.fromM[m], toM: moves.toM[m], piece: moves.piece[m] }
+    const i = push(out, course, { fromMs: nowMs, toMs, ...place, index })
+    out.fromMps[i] = moves.fromMps[m]
+    out.toMps[i] = moves.toMps[m]
+    out.speedMps[i] = (moves.fromMps[m] + moves.toMps[m]) / 2
     out.charging[i] = 1
     nowMs = toMs
-    placeM = toM
   }
 }
 

@@ -1,6 +1,11 @@
 import type { Course } from './course.ts'
 import type { DayRules, Standing, StageRule, StopRule } from './day-rules.ts'
+import { CRAWL_MPS } from './driven-road.ts'
+import type { DrivenRoad } from './driven-road.ts'
 import type { Horizon } from './horizon.ts'
+import { driveLeg } from './leg.ts'
+import { newMoves } from './moves.ts'
+import type { Moves } from './moves.ts'
 
 export type SpanKind = 'parked' | 'morning-charge' | 'drive' | 'stop' | 'evening-charge'
 
@@ -20,11 +25,16 @@ export interface Span {
   liftedToMs: number
   /** What stands around the car; left out, nothing. */
   horizon?: Horizon
+  /** A drive's part of the day's moves; equal where the car stands. */
+  firstMove: number
+  endMove: number
 }
 
 /** One day laid out: what happens when, and where the car stands in the evening. */
 export interface Timetable {
   spans: Span[]
+  /** What the car does from place to place while it drives. */
+  moves: Moves
   evening: Standing
   /** Arrivals after a stop had closed. */
   late: { stage: number; byS: number; atMs: number }[]
@@ -35,24 +45,25 @@ export interface Timetable {
 /**
  * The day as a list of spans without gaps: morning, legs, stops, evening.
  *
- * Given the time that each piece of road takes, driving starts with the driving hours, a stop lasts
+ * Given the speeds held on the road, driving starts with the driving hours, from rest to rest, a stop lasts
  * its length and not beyond the end of the driving hours (the rest is stood the next morning; waiting for
  * an opening is not), a stage that the clock cuts off ends where the car stands. An array is lifted inside
  * a stop or a charging window once it has been raised and until it must be lowered.
  *
- * @param course   roads of all stages
  * @param stages   their names and stops
  * @param day      hours of this day; `dayIndex` picks the stops' opening hours
  * @param standing where the car stands when the day opens
- * @param pieceS   time that each piece takes at the speeds to be driven; Infinity where the car cannot pass. [S]
+ * @param road     the course at the speeds to be driven
  */
 export function timetable(
-  course: Course,
+  road: DrivenRoad,
   stages: StageRule[],
   day: DayRules,
-  context: { dayIndex: number; standing: Standing; pieceS: Float64Array },
+  context: { dayIndex: number; standing: Standing },
 ): Timetable {
-  const { standing, dayIndex, pieceS } = context
+  const { standing, dayIndex } = context
+  const { course } = road
+  const moves = newMoves()
   const spans: Span[] = []
   const late: Timetable['late'] = []
   const now: Now = { ...standing, nowMs: day.opensMs, piece: standingPiece(course, standing) }
@@ -60,7 +71,7 @@ export function timetable(
   now.nowMs = day.drivingFromMs
   if (now.stopLeftS > 0) stand(spans, day, stages[now.stage - 1].stop, now, { waitS: 0, lengthS: now.stopLeftS })
   while (now.stopLeftS === 0 && now.stage <= day.lastStage && now.nowMs < day.drivingToMs) {
-    if (!drive(spans, course, day, now, pieceS)) break
+    if (!drive(spans, moves, road, day, now)) break
     const { stop } = stages[now.stage]
     const closesMs = stop?.closesMs[dayIndex] ?? Number.NaN
     if (now.nowMs > closesMs) late.push({ stage: now.stage, byS: (now.nowMs - closesMs) / 1000, atMs: now.nowMs })
@@ -69,7 +80,13 @@ export function timetable(
   }
   const { stage, placeM, stopLeftS } = now
   park(spans, day, now, { untilMs: day.closesMs, kind: 'evening-charge' })
-  return { spans, evening: { stage, placeM, stopLeftS }, late, isCutOff: stage <= day.lastStage || stopLeftS > 0 }
+  return {
+    spans,
+    moves,
+    evening: { stage, placeM, stopLeftS },
+    late,
+    isCutOff: stage <= day.lastStage || stopLeftS > 0,
+  }
 }
 
 /** Where the car is while the day is laid out. */
@@ -85,6 +102,7 @@ function standingPiece(course: Course, { placeM, stopLeftS }: Standing): number 
 }
 
 const FLAT = { liftedFromMs: 0, liftedToMs: 0 }
+const STILL = { firstMove: 0, endMove: 0 }
 
 /** From arrival to departure: waiting, then the length. An early car never leaves before the stop opens. */
 function stopS(rule: StopRule, arrivalMs: number, opensMs: number): { waitS: number; lengthS: number } {
@@ -112,7 +130,7 @@ function stand(
   if (toMs <= fromMs) return
   const lifted = rule.lifts ? liftedBetween(fromMs, toMs, rule.raiseS, rule.lowerS) : FLAT
   const at = { fromMs, toMs, fromM: placeM, toM: placeM, piece, horizon: rule.horizon }
-  spans.push({ kind: 'stop', stage: now.stage - 1, ...at, ...lifted })
+  spans.push({ kind: 'stop', stage: now.stage - 1, ...at, ...lifted, ...STILL })
 }
 
 function liftedBetween(fromMs: number, toMs: number, raiseS: number, lowerS: number) {
@@ -121,43 +139,33 @@ function liftedBetween(fromMs: number, toMs: number, raiseS: number, lowerS: num
   return liftedToMs > liftedFromMs ? { liftedFromMs, liftedToMs } : FLAT
 }
 
-/** Nearer than this to the end of the hours counts as at it, so that no step is too short to reckon with. [MS] */
-const ONE_MOMENT_MS = 1
+/** With less than this left of the hours the car does not set off. [MS] */
+const LEAST_DRIVE_MS = 1000
 
-/** Drives the rest of the stage. @returns whether its end was reached */
-function drive(spans: Span[], course: Course, day: DayRules, now: Now, pieceS: Float64Array): boolean {
+/** Drives the rest of the stage, up to a piece that the motor cannot climb. @returns whether its end was reached */
+function drive(spans: Span[], moves: Moves, road: DrivenRoad, day: DayRules, now: Now): boolean {
   const { placeM: fromM, nowMs: fromMs, stage } = now
-  const piece = pieceAt(course, fromM, course.stages[stage].firstPiece)
-  const isFinished = pieceByPiece(course, now, piece, { untilMs: day.drivingToMs, pieceS })
-  if (now.nowMs <= fromMs) return isFinished
-  spans.push({ kind: 'drive', stage, fromMs, toMs: now.nowMs, fromM, toM: now.placeM, piece, ...FLAT })
-  return isFinished
+  const { firstPiece, toM } = road.course.stages[stage]
+  const piece = pieceAt(road.course, fromM, firstPiece)
+  const endM = Math.max(Math.min(blockedFromM(road, piece, stage), toM), fromM)
+  const spareMs = day.drivingToMs - fromMs
+  if (endM <= fromM || spareMs < LEAST_DRIVE_MS) return endM >= toM && endM <= fromM
+  const firstMove = moves.count
+  const leg = driveLeg(road, { fromM, toM: endM, piece, withinS: spareMs / 1000 }, moves)
+  if (moves.count === firstMove) return false
+  now.placeM = leg.reachedM
+  now.nowMs = leg.reachedM < endM ? day.drivingToMs : Math.min(fromMs + leg.durationS * 1000, day.drivingToMs)
+  now.piece = moves.piece[moves.count - 1]
+  const ends = { fromMs, toMs: now.nowMs, fromM, toM: now.placeM }
+  spans.push({ kind: 'drive', stage, ...ends, piece, ...FLAT, firstMove, endMove: moves.count })
+  return leg.reachedM >= toM
 }
 
-/** Moves the car until the end of its stage, the end of the hours, or a place it cannot pass. */
-function pieceByPiece(
-  course: Course,
-  now: Now,
-  first: number,
-  limit: { untilMs: number; pieceS: Float64Array },
-): boolean {
-  const { endPiece, toM } = course.stages[now.stage]
-  const { fromM, lengthM } = course.pieces
-  for (let i = first; i < endPiece; i++) {
-    const endM = i + 1 < endPiece ? fromM[i + 1] : toM
-    const leftMs = ((endM - now.placeM) / lengthM[i]) * limit.pieceS[i] * 1000
-    const spareMs = limit.untilMs - now.nowMs
-    if (!Number.isFinite(leftMs) || spareMs < ONE_MOMENT_MS) return false
-    now.piece = i
-    if (leftMs > spareMs + ONE_MOMENT_MS) {
-      now.placeM += (endM - now.placeM) * (spareMs / leftMs)
-      now.nowMs = limit.untilMs
-      return false
-    }
-    now.placeM = endM
-    now.nowMs = Math.min(now.nowMs + leftMs, limit.untilMs)
-  }
-  return true
+/** Where the first piece of a stage begins that the motor cannot climb; Infinity where there is none. */
+function blockedFromM({ course, heldMps }: DrivenRoad, first: number, stage: number): number {
+  const { endPiece } = course.stages[stage]
+  for (let i = first; i < endPiece; i++) if (heldMps[i] < CRAWL_MPS) return course.pieces.fromM[i]
+  return Infinity
 }
 
 /** Index of the piece that holds a place, looking from `first` on. */
@@ -182,7 +190,7 @@ function park(spans: Span[], day: DayRules, now: Now, until: { untilMs: number; 
     const fromMs = now.nowMs
     if (toMs <= fromMs) return
     const lifted = lifts ? liftedBetween(fromMs, toMs, day.raiseS, day.lowerS) : FLAT
-    spans.push({ kind, stage: -1, fromMs, toMs, fromM: placeM, toM: placeM, piece, horizon, ...lifted })
+    spans.push({ kind, stage: -1, fromMs, toMs, fromM: placeM, toM: placeM, piece, horizon, ...lifted, ...STILL })
     now.nowMs = toMs
   }
   for (const window of day.charging) {

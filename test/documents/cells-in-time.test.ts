@@ -43,11 +43,12 @@ describe('cells over a day', () => {
   test('take minutes to warm at a stop, a steady car none', () => {
     const [first, ...rest] = overAir(remembered, 'stop')
     const [steadyFirst] = overAir(steady, 'stop')
-    // By hand: of the way from driving to parked the mean of the first minute has 1 − (1 − e^(−60/176))/(60/176) = 15 %.
+    // By hand: of the way from driving to parked the mean of the first minute has 1 − (1 − e^(−60/176))/(60/176) = 15 %,
+    // and the last step of the drive, 20 s of braking, stands for its middle: some 2 % more.
     const driven = overAir(remembered, 'drive').at(-1)?.overC ?? Number.NaN
     const share = (first.overC - driven) / (steadyFirst.overC - driven)
-    expect(share).toBeGreaterThan(0.14)
-    expect(share).toBeLessThan(0.17)
+    expect(share).toBeGreaterThan(0.16)
+    expect(share).toBeLessThan(0.18)
     expect(rest[25].overC).toBeGreaterThan(40)
   })
 

@@ -20,7 +20,8 @@ describe('speeds', () => {
       r.routes.road.limitKmh = 60
       r.routes.road.stretches = [{ fromKm: 50, toKm: 60, limitKmh: 100 }]
     })
-    expect(new Set(day.series.speedKmh)).toEqual(new Set([0, 60, 75]))
+    // Starting, braking and the changes between have the mean of their ends.
+    expect(new Set(day.series.speedKmh)).toEqual(new Set([0, 60, 75, 30, 67.5]))
   })
 
   test('sections have speeds of their own', () => {
@@ -31,7 +32,10 @@ describe('speeds', () => {
         sections: [{ stage: 'first', fromKm: 100, toKm: 150, speedKmh: 90 }],
       }
     })
-    const hours = 50 / 90 + (day.drivenKm - 50) / 70
+    // At 0.6 and 1 m/s², against a change at once: from and to rest v/1.2 + v/2, to 90 and back Δv²/(1.2 · v) + Δv²/(2 · v).
+    const [slow, fast] = [70 / 3.6, 90 / 3.6]
+    const lostS = slow / 1.2 + slow / 2 + (fast - slow) ** 2 * (1 / (1.2 * fast) + 1 / (2 * fast))
+    const hours = 50 / 90 + (day.drivenKm - 50) / 70 + lostS / 3600
     expect((Date.parse(day.stages[0].arriveAt) - Date.parse(day.stages[0].departAt)) / 3_600_000).toBeCloseTo(hours, 3)
   })
 
@@ -107,9 +111,10 @@ describe('the day ends in words', () => {
 
   test('cut off by the clock', () => {
     const outcome = kinds((r) => void (r.race.days[0].driving = { from: '08:00', to: '09:00' }))
+    // 75 km/h for an hour, less 27.8 s of starting and braking: 74.4 km
     expect(outcome).toMatchObject({
       kind: 'cut-off',
-      text: 'The driving hours end at km 75, 125 km before Twin Wells.',
+      text: 'The driving hours end at km 74, 126 km before Twin Wells.',
     })
   })
 

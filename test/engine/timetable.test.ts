@@ -2,9 +2,10 @@ import { describe, expect, test } from 'vitest'
 import { course } from '../../server/engine/course.ts'
 import type { Course } from '../../server/engine/course.ts'
 import type { DayRules, Standing, StageRule, StopRule } from '../../server/engine/day-rules.ts'
-import { pieceTimesS } from '../../server/engine/motion.ts'
+import { drivenRoad } from '../../server/engine/driven-road.ts'
 import { steps } from '../../server/engine/steps.ts'
 import { timetable } from '../../server/engine/timetable.ts'
+import { DRIVE, LOAD } from './invented-car.ts'
 
 const HOUR = 3_600_000
 const MINUTE = 60_000
@@ -57,20 +58,27 @@ const day = (change: Partial<DayRules> = {}): DayRules => ({
 
 const AT_START: Standing = { stage: 0, placeM: 0, stopLeftS: 0 }
 
-/** The day of a car that drives `mps` everywhere. */
-function laidOut(roads: Course, stages: StageRule[], rules: DayRules, mps = 20, standing = AT_START, dayIndex = 0) {
-  const pieceS = pieceTimesS(roads, new Float64Array(roads.pieces.count).fill(mps))
-  return { ...timetable(roads, stages, rules, { dayIndex, standing, pieceS }), pieceS }
-}
+/** Starting at 0.6 m/s² and braking at 1 m/s² lose 20/2 · (1/0.6 + 1/1) s against 20 m/s all the way, by hand. */
+const LOST_S = 80 / 3
+
+/** One stage at 20 m/s from rest to rest. */
+const STAGE_S = 111_319.49 / 20 + LOST_S
+
+const CAR = { load: LOAD, drive: DRIVE, bounds: { accelerationMps2: 0.6, brakingMps2: 1 } }
+const at20 = (roads: Course) => drivenRoad(CAR, roads, new Float64Array(roads.pieces.count).fill(20))
+
+/** The day of a car that drives 20 m/s everywhere. */
+const laidOut = (roads: Course, stages: StageRule[], rules: DayRules, standing = AT_START, dayIndex = 0) =>
+  timetable(at20(roads), stages, rules, { dayIndex, standing })
 
 const kinds = (table: { spans: { kind: string }[] }) => table.spans.map((s) => s.kind).join(' ')
 
 describe('the day as a timetable', () => {
-  test('driving starts with the driving hours and takes length over speed', () => {
+  test('driving starts with the driving hours and takes length over speed, starting and braking', () => {
     const { spans } = laidOut(road(1), [rule('Twin Wells')], day())
     const drive = spans.find((s) => s.kind === 'drive')
     expect(drive?.fromMs).toBe(8 * HOUR)
-    expect((drive?.toMs ?? 0) - 8 * HOUR).toBeCloseTo((111_319.49 / 20) * 1000, 0)
+    expect((drive?.toMs ?? 0) - 8 * HOUR).toBeCloseTo(STAGE_S * 1000, 0)
   })
 
   test('its spans follow each other without a gap from opening to closing', () => {
@@ -82,12 +90,12 @@ describe('the day as a timetable', () => {
 
   test('a stage that the clock cuts off goes on the next morning from where the car stands', () => {
     const roads = road(1)
-    const first = laidOut(roads, [rule('far')], day({ drivingToMs: 9 * HOUR }), 20)
+    const first = laidOut(roads, [rule('far')], day({ drivingToMs: 9 * HOUR }))
     expect(first.isCutOff).toBe(true)
-    expect(first.evening.placeM).toBeCloseTo(72_000, 3)
-    const next = laidOut(roads, [rule('far')], day({ lastStage: 0 }), 20, first.evening, 1)
+    expect(first.evening.placeM).toBeCloseTo(72_000 - 20 * LOST_S, 3)
+    const next = laidOut(roads, [rule('far')], day({ lastStage: 0 }), first.evening, 1)
     const drive = next.spans.find((s) => s.kind === 'drive')
-    expect(drive?.fromM).toBeCloseTo(72_000, 3)
+    expect(drive?.fromM).toBeCloseTo(72_000 - 20 * LOST_S, 3)
     expect(next.evening).toMatchObject({ stage: 1, stopLeftS: 0 })
     expect(next.isCutOff).toBe(false)
   })
@@ -101,12 +109,12 @@ describe('the day as a timetable', () => {
   test('a stop that the end of the day cuts in two is stood to its end the next morning', () => {
     const roads = road(2)
     const stages = [rule('a', stop()), rule('b')]
-    const arriveS = 111_319.49 / 20
+    const arriveS = STAGE_S
     const rules = day({ drivingToMs: 8 * HOUR + arriveS * 1000 + 10 * MINUTE, lastStage: 1 })
     const first = laidOut(roads, stages, rules)
     expect(first.evening.stopLeftS).toBeCloseTo(1200, 0)
     expect(first.isCutOff).toBe(true)
-    const next = laidOut(roads, stages, day({ lastStage: 1 }), 20, first.evening, 1)
+    const next = laidOut(roads, stages, day({ lastStage: 1 }), first.evening, 1)
     expect(kinds(next)).toMatch(/^morning-charge parked stop drive/)
     const stood = next.spans.find((s) => s.kind === 'stop')
     expect(stood?.fromMs).toBe(8 * HOUR)
@@ -115,7 +123,7 @@ describe('the day as a timetable', () => {
 
   test('a car that comes before the stop opens leaves no sooner than the opening', () => {
     const opensMs = new Float64Array([11 * HOUR, Number.NaN])
-    const arriveMs = 8 * HOUR + (111_319.49 / 20) * 1000
+    const arriveMs = 8 * HOUR + STAGE_S * 1000
     const early = laidOut(road(1), [rule('a', stop({ opensMs }))], day())
     expect(early.spans.find((s) => s.kind === 'stop')).toMatchObject({ toMs: 11 * HOUR })
     const clocked = laidOut(road(1), [rule('a', stop({ opensMs, runsFromOpening: true }))], day())
@@ -155,12 +163,12 @@ describe('the day as a timetable', () => {
 
   test('a car that needs less than a millisecond more than the hours give has arrived', () => {
     const roads = road(2)
-    const arriveMs = 8 * HOUR + (roads.stages[0].toM / 20) * 1000
+    const arriveMs = 8 * HOUR + (roads.stages[0].toM / 20 + LOST_S) * 1000
     const inTime = laidOut(roads, [rule('a'), rule('b')], day({ drivingToMs: arriveMs - 0.3, lastStage: 1 }))
     expect(inTime.evening).toEqual({ stage: 1, placeM: roads.stages[0].toM, stopLeftS: 0 })
-    const nearlyMs = arriveMs - (roads.pieces.lengthM[0] / 20) * 1000 - 1e-7
+    const nearlyMs = arriveMs - (roads.pieces.lengthM[0] / 20) * 1000
     const atEdge = laidOut(roads, [rule('a'), rule('b')], day({ drivingToMs: nearlyMs, lastStage: 1 }))
-    expect(atEdge.evening.placeM).toBe(roads.pieces.fromM[roads.stages[0].endPiece - 1])
+    expect(atEdge.evening.placeM).toBeCloseTo(roads.pieces.fromM[roads.stages[0].endPiece - 1], 3)
   })
 
   test('a car in a stop stands on the road that it came by, before a stage on the road of that stage', () => {
@@ -169,9 +177,9 @@ describe('the day as a timetable', () => {
     const table = laidOut(roads, stages, day({ lastStage: 0 }))
     const last = roads.stages[0].endPiece - 1
     expect(table.spans.filter((s) => s.kind !== 'drive').map((s) => s.piece)).toEqual([0, 0, last, last, last, last])
-    const next = laidOut(roads, stages, day({ lastStage: 1 }), 20, table.evening, 1)
+    const next = laidOut(roads, stages, day({ lastStage: 1 }), table.evening, 1)
     expect(next.spans[0].piece).toBe(last + 1)
-    const inStop = laidOut(roads, stages, day({ lastStage: 1 }), 20, { ...table.evening, stopLeftS: 60 }, 1)
+    const inStop = laidOut(roads, stages, day({ lastStage: 1 }), { ...table.evening, stopLeftS: 60 }, 1)
     expect(inStop.spans[0].piece).toBe(last)
   })
 
@@ -179,12 +187,12 @@ describe('the day as a timetable', () => {
     const closesMs = new Float64Array([9 * HOUR, Number.NaN])
     const { late } = laidOut(road(1), [rule('a', stop({ closesMs }))], day())
     expect(late).toHaveLength(1)
-    const justMs = 8 * HOUR + (111_319.49 / 20) * 1000
+    const justMs = 8 * HOUR + STAGE_S * 1000
     const just = (shiftMs: number) =>
       laidOut(road(1), [rule('a', stop({ closesMs: new Float64Array([justMs + shiftMs, 0]) }))], day()).late
     expect(just(-100)).toHaveLength(1)
     expect(just(100)).toHaveLength(0)
-    expect(late[0].byS).toBeCloseTo(111_319.49 / 20 - 3600, 1)
+    expect(late[0].byS).toBeCloseTo(STAGE_S - 3600, 1)
   })
 
   test('the array stands lifted once raised and until it must be lowered', () => {
@@ -214,19 +222,24 @@ describe('the day as a timetable', () => {
 
   test('a place that the car cannot pass ends its day in front of it', () => {
     const roads = road(1)
-    const pieceS = pieceTimesS(roads, new Float64Array(roads.pieces.count).fill(20))
-    pieceS[30] = Number.POSITIVE_INFINITY
-    const table = timetable(roads, [rule('a')], day(), { dayIndex: 0, standing: AT_START, pieceS })
+    const driven = at20(roads)
+    driven.heldMps[30] = 0
+    const table = timetable(driven, [rule('a')], day(), { dayIndex: 0, standing: AT_START })
     expect(table.isCutOff).toBe(true)
     expect(table.evening.placeM).toBeCloseTo(roads.pieces.fromM[30], 6)
+    const drive = table.spans.find((s) => s.kind === 'drive')
+    const lastS = ((drive?.toMs ?? 0) - (drive?.fromMs ?? 0)) / 1000
+    expect(lastS).toBeCloseTo(roads.pieces.fromM[30] / 20 + LOST_S, 3)
+    const next = timetable(driven, [rule('a')], day(), { dayIndex: 1, standing: table.evening })
+    expect(next.spans.some((s) => s.kind === 'drive')).toBe(false)
+    expect(next.evening).toEqual(table.evening)
   })
 })
 
 describe('the day cut into steps', () => {
   const roads = road(2)
-  const speed = new Float64Array(roads.pieces.count).fill(20)
   const table = laidOut(roads, [rule('a', stop()), rule('b')], day({ lastStage: 1, drivingToMs: 11 * HOUR }))
-  const cut = steps(roads, table.spans, speed, table.pieceS)
+  const cut = steps(roads, table)
 
   test('the steps follow each other without a gap and fill their arrays', () => {
     expect(cut.count).toBe(cut.fromMs.length)
@@ -240,7 +253,7 @@ describe('the day cut into steps', () => {
   test('the road driven is the road of the timetable', () => {
     const drivenM = table.spans.reduce((sum, s) => sum + s.toM - s.fromM, 0)
     expect(cut.toM[cut.count - 1]).toBeCloseTo(drivenM, 6)
-    expect(drivenM / 20 + 1800).toBeCloseTo(10_800, 3)
+    expect(drivenM / 20 + 2 * LOST_S + 1800).toBeCloseTo(10_800, 3)
   })
 
   test('trackers rest outside the windows, and the array is flat while it drives', () => {
@@ -254,6 +267,18 @@ describe('the day cut into steps', () => {
   })
 })
 
+describe('what is left of the hours', () => {
+  test('is not driven where it is less than a second', () => {
+    const roads = road(2)
+    const rules = (spareMs: number) => day({ drivingToMs: 8 * HOUR + STAGE_S * 1000 + spareMs, lastStage: 1 })
+    const stages = [rule('a'), rule('b')]
+    expect(laidOut(roads, stages, rules(900)).spans.filter((s) => s.kind === 'drive')).toHaveLength(1)
+    // 10 s from rest to rest: v/0.6 + v/1 = 10 s, v = 3.75 m/s, 18.75 m
+    const brief = laidOut(roads, stages, rules(10_000))
+    expect(brief.evening.placeM - roads.stages[0].toM).toBeCloseTo(18.75, 2)
+  })
+})
+
 describe('a parked car', () => {
   test('stands level at the height of the place, not of the middle of its piece', () => {
     const roads = road(1)
@@ -264,19 +289,8 @@ describe('a parked car', () => {
     pieces.endAltM[last] = 900
     pieces.altM.fill(500)
     const table = laidOut(roads, [rule('a')], day())
-    const cut = steps(roads, table.spans, new Float64Array(pieces.count).fill(20), table.pieceS)
+    const cut = steps(roads, table)
     expect([cut.altM[0], cut.gradeRad[0]]).toEqual([100, 0])
     expect([cut.altM[cut.count - 1], cut.gradeRad[cut.count - 1]]).toEqual([900, 0])
-  })
-})
-
-describe('expected halts', () => {
-  test('each costs the time of braking and starting again', () => {
-    const roads = road(1)
-    roads.pieces.haltsPerM.fill(0.001)
-    const mps = 20
-    const [first] = pieceTimesS(roads, new Float64Array(roads.pieces.count).fill(mps))
-    const haltS = (mps / 2) * (1 / 1 + 1 / 0.6)
-    expect(first).toBeCloseTo((roads.pieces.lengthM[0] / mps) * (1 + 0.001 * mps * haltS), 9)
   })
 })
