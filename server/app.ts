@@ -29,7 +29,7 @@ import { previewRoute } from './api/previews.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
 import { sessionRoutes } from './api/sessions.ts'
 import { sharedRoute, shareRoutes } from './api/shares.ts'
-import { statelessForecastRoute } from './api/stateless-forecast.ts'
+import { statelessForecastRoute, statelessTrackerRoute } from './api/stateless-forecast.ts'
 import { inTurn } from './api/take-readings.ts'
 import { beliefRoute, trackerRoutes } from './api/trackers.ts'
 import { answerUnknown } from './api/unknown-address.ts'
@@ -142,6 +142,7 @@ function addRoutes(api: Api, needs: Parts): void {
   }
   void api.register(async (scope: Api) => forecastRoutes(scope, needs))
   void api.register(async (scope: Api) => statelessForecastRoute(scope, needs))
+  void api.register(async (scope: Api) => statelessTrackerRoute(scope, needs))
   dayRoutes(api, needs)
   exampleRoutes(api)
   addCrewRoutes(api, needs)

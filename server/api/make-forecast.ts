@@ -64,9 +64,7 @@ export async function makeForecast(
   signal?: AbortSignal,
 ): Promise<{ forecast: StoredForecast; isNew: boolean }> {
   const { store, compute } = needs
-  const bodies = Object.fromEntries([...routes].map(([id, route]) => [id, route.body]))
-  const learned = await learnedLosses(needs, race.id, car, signal)
-  const inputs = { car: car.body, race: race.body, sky: sky.body, routes: bodies, speeds, date, learned }
+  const inputs = await inputsOf(needs, { race, car, sky, routes }, { speeds, date }, signal)
   const inputsHash = await compute.run('inputs-hash', inputs, signal)
   const made = {
     raceId: race.id,
@@ -87,6 +85,18 @@ export async function makeForecast(
   const { createdAt } = await store.forecasts.save({ id, ...made, budget })
   return { forecast: { id, createdAt, ...made, budget }, isNew: true }
 }
+
+/** The documents with the losses that the race's readings show. */
+async function inputsOf(needs: Needs, gathered: Gathered, { speeds, date }: Wanted, signal?: AbortSignal) {
+  const { race, car, sky, routes } = gathered
+  const bodies = Object.fromEntries([...routes].map(([id, route]) => [id, route.body]))
+  const learned = await learnedLosses(needs, race.id, car, signal)
+  return { car: car.body, race: race.body, sky: sky.body, routes: bodies, speeds, date, learned }
+}
+
+/** All that a stored forecast's day is worked out from, its documents in the versions that it used. */
+export const inputsAgain = async (needs: Needs, made: StoredForecast, date: string, signal?: AbortSignal) =>
+  inputsOf(needs, await gatherAgain(needs, made), { speeds: made.speeds, date }, signal)
 
 /** Losses that a race's forecasts use in place of the car's own; undefined where its bench holds. */
 export async function learnedLosses(

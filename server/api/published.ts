@@ -4,6 +4,8 @@ import { openRequest } from '../compute/forecast-jobs.ts'
 import { budgetDocument } from '../documents/budget.ts'
 import { readingDocument } from '../documents/reading.ts'
 import { speedsDocument } from '../documents/speeds.ts'
+import { trackerDay } from '../documents/tracker-day.ts'
+import { trackerDays } from '../documents/tracker-days.ts'
 import { problemSchema } from './answers.ts'
 
 type JsonSchema = Record<string, unknown>
@@ -26,6 +28,8 @@ export const COMPONENTS: Record<string, Component> = {
   Speeds: { schema: speedsDocument, direction: 'input', example: 'speeds' },
   ForecastRequest: { schema: openRequest, direction: 'input', example: 'forecast-request' },
   Budget: { schema: budgetDocument, direction: 'output' },
+  TrackerDay: { schema: trackerDay, direction: 'output' },
+  TrackerDays: { schema: trackerDays, direction: 'output' },
   Problem: { schema: problemSchema, direction: 'output' },
 }
 

@@ -3,12 +3,27 @@ import { type OpenRequest, openRequest, type Reference } from '../compute/foreca
 import type { Kind } from '../compute/documents.ts'
 import { budgetDocument } from '../documents/budget.ts'
 import { raceDocument } from '../documents/race.ts'
+import { trackerDays } from '../documents/tracker-days.ts'
+import type { ErrorCode } from '../errors.ts'
 import type { Store } from '../store/store.ts'
 import { answers, COMPUTE_ERRORS, STORE_ERRORS, WRITE_ERRORS } from './answers.ts'
 import { type Api, clientGone, DOCUMENT_LIMIT, type Needs } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { named, routesOf } from './gather.ts'
 import { learnedLosses } from './make-forecast.ts'
+
+const ERRORS_OF_BOTH: ErrorCode[] = [
+  'bad-query',
+  'bad-json',
+  'empty-body',
+  'invalid-document',
+  'missing-document',
+  'missing-route',
+  'cannot-forecast',
+  ...WRITE_ERRORS,
+  ...COMPUTE_ERRORS,
+  ...STORE_ERRORS,
+]
 
 /** A forecast of documents that come with the request, or are named in it; nothing is saved. */
 export function statelessForecastRoute(api: Api, needs: Needs): void {
@@ -21,24 +36,33 @@ export function statelessForecastRoute(api: Api, needs: Needs): void {
       'Each document stands in the body or is named as { "id": "…" }; routes not given come from the store. With car and race named, trackers lose what the race’s readings show.',
     querystring: z.strictObject({}),
     body: openRequest,
-    response: answers({ 200: { description: 'the budget', schema: budgetDocument } }, [
-      'bad-query',
-      'bad-json',
-      'empty-body',
-      'invalid-document',
-      'missing-document',
-      'missing-route',
-      'cannot-forecast',
-      ...WRITE_ERRORS,
-      ...COMPUTE_ERRORS,
-      ...STORE_ERRORS,
-    ]),
+    response: answers({ 200: { description: 'the budget', schema: budgetDocument } }, ERRORS_OF_BOTH),
   }
   api.post('/forecast', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
     const signal = clientGone(reply)
     const read = await compute.run('read-forecast-request', { bytes: bytesOf(request.body) }, signal)
     const budget = await compute.run('forecast', await whole(needs, read, signal), signal)
     return reply.type('application/json; charset=utf-8').send(budget)
+  })
+}
+
+/** The trackers of a car through the days of a race, of documents that come with the request; nothing is saved. */
+export function statelessTrackerRoute(api: Api, needs: Needs): void {
+  const { compute } = needs
+  takeBodies(api, ['json'])
+  const schema = {
+    tags: ['forecasts'],
+    summary: 'Report every tracker of a car through its days; nothing is saved',
+    description:
+      'Takes the same body as /forecast. Each day is driven again at 1 km/h less and more, and once a tracker as if that were dead; with a date only that day is.',
+    querystring: z.strictObject({}),
+    body: openRequest,
+    response: answers({ 200: { description: 'the report', schema: trackerDays } }, ERRORS_OF_BOTH),
+  }
+  api.post('/tracker-report', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
+    const signal = clientGone(reply)
+    const read = await compute.run('read-forecast-request', { bytes: bytesOf(request.body) }, signal)
+    return compute.run('report-tracker-days', await whole(needs, read, signal), signal)
   })
 }
 

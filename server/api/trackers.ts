@@ -1,8 +1,10 @@
 import { z } from 'zod'
 import { checked, readJson } from '../compute/read-json.ts'
 import { date, quantity, slug } from '../documents/quantity.ts'
+import { trackerDay } from '../documents/tracker-day.ts'
 import { trackerReport } from '../documents/tracker-report.ts'
-import { Fault } from '../errors.ts'
+import { ERRORS, Fault } from '../errors.ts'
+import type { StoredForecast } from '../store/forecast-store.ts'
 import type { Move } from '../store/move-store.ts'
 import type { Store } from '../store/store.ts'
 import { linkOf } from './access.ts'
@@ -12,6 +14,7 @@ import { bytesOf, takeBodies } from './content.ts'
 import { findRace } from './find.ts'
 import { dayIn, followed, makeAnew, moved } from './followed.ts'
 import { named } from './gather.ts'
+import { inputsAgain } from './make-forecast.ts'
 import { readingsOf } from './held-readings.ts'
 import { idParam } from './kinds.ts'
 import type { Turns } from './readings.ts'
@@ -22,10 +25,17 @@ const reportQuery = z.strictObject({
   date: date('day whose followed budget tells where the energy fell').optional(),
   car: slug('the car; left out: the car of the budget that is followed').optional(),
 })
-const report = z.strictObject({ carId: z.string(), uses, widen, items: z.array(trackerReport) })
+const report = z.strictObject({
+  carId: z.string(),
+  uses,
+  widen,
+  items: z.array(trackerReport),
+  work: trackerDay.nullable().describe('the day and its parts, driven again; null where no budget of it is followed'),
+})
 
 /** Every tracker of a car before and after its readings, and what moved the budgets. */
-export function trackerRoutes(api: Api, { store, compute }: Needs): void {
+export function trackerRoutes(api: Api, needs: Needs): void {
+  const { store, compute } = needs
   const schema = {
     tags: ['readings'],
     summary: 'Show every tracker: its curve and band before and after its readings, and its part in the day',
@@ -45,13 +55,15 @@ export function trackerRoutes(api: Api, { store, compute }: Needs): void {
   }
   api.get('/races/:id/trackers', { schema }, async ({ params, query }, reply) => {
     await findRace(store, params.id)
-    const { carId, day } = await lookedAt(store, params.id, query)
+    const { carId, day, forecast } = await lookedAt(store, params.id, query)
     const car = await named(store, 'car', carId, 'car')
     const [use, readings] = await Promise.all([store.beliefs.uses(params.id), readingsOf(store, params.id)])
     const own = readings.filter((kept) => kept.carId === carId)
     const input = { car: car.body, readings: own, widen: use.widen, day }
-    const items = await compute.run('report-trackers', input, clientGone(reply))
-    return { carId, uses: use.which, widen: use.widen, items }
+    const signal = clientGone(reply)
+    const items = await compute.run('report-trackers', input, signal)
+    const work = forecast === null ? null : await dayAgain(needs, forecast, day.date, signal)
+    return { carId, uses: use.which, widen: use.widen, items, work }
   })
 
   const historySchema = {
@@ -102,10 +114,22 @@ async function lookedAt(store: Store, raceId: string, query: z.output<typeof rep
   const carId = query.car ?? choice?.carId ?? choices.at(-1)?.carId
   if (carId === undefined)
     throw new Fault('nothing-followed', 'No budget is followed yet; say whose trackers to show with ?car=….')
-  if (choice === undefined || choice.carId !== carId) return { carId, day: null }
+  if (choice === undefined || choice.carId !== carId) return { carId, day: null, forecast: null }
   const { forecast } = await followed(store, raceId, choice.date)
   const day = dayIn(forecast, choice.date)
-  return { carId, day: day === null ? null : { date: day.date, trackers: day.trackers } }
+  if (day === null) return { carId, day, forecast: null }
+  return { carId, day: { date: day.date, trackers: day.trackers }, forecast }
+}
+
+/** The followed day driven again from the documents it was made of; null where they give no forecast any more. */
+async function dayAgain(needs: Needs, forecast: StoredForecast, date: string, signal: AbortSignal) {
+  try {
+    const inputs = await inputsAgain(needs, forecast, date, signal)
+    return (await needs.compute.run('report-tracker-days', inputs, signal)).days[0] ?? null
+  } catch (error) {
+    if (error instanceof Fault && [404, 422].includes(ERRORS[error.code].status)) return null
+    throw error
+  }
 }
 
 const belief = z.strictObject({ use: uses, widen: widen.optional() })

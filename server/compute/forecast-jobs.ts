@@ -7,6 +7,7 @@ import { raceDocument } from '../documents/race.ts'
 import { routeDocument } from '../documents/route.ts'
 import { skyDocument } from '../documents/sky.ts'
 import { speedsDocument } from '../documents/speeds.ts'
+import { type TrackerDaysDocument, trackerDaysOf } from '../documents/tracker-days.ts'
 import { InputError } from '../engine/input-error.ts'
 import { Fault } from '../errors.ts'
 import { fingerprint } from './fingerprint.ts'
@@ -74,8 +75,23 @@ export interface ForecastInputs {
  */
 export function forecastJson(input: ForecastInputs): string {
   const request = checked(forecastRequest, input, 'forecast request')
+  return forecasting(() => JSON.stringify(forecastDocuments(request)))
+}
+
+/**
+ * The tracker report of whole documents.
+ *
+ * @throws Fault as forecastJson
+ */
+export function trackerDaysJob(input: ForecastInputs): TrackerDaysDocument {
+  const request = checked(forecastRequest, input, 'forecast request')
+  return forecasting(() => trackerDaysOf(request))
+}
+
+/** Documents that do not fit together are a fault of the request, not of the service. */
+function forecasting<T>(work: () => T): T {
   try {
-    return JSON.stringify(forecastDocuments(request))
+    return work()
   } catch (error) {
     if (!(error instanceof InputError)) throw error
     const { field, detail } = error

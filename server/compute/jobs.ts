@@ -1,5 +1,5 @@
 import { type BodyInput, readDocument } from './file-jobs.ts'
-import { forecastJson, inputsHash, readForecastRequest } from './forecast-jobs.ts'
+import { forecastJson, inputsHash, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
 import type { ComputePool } from './pool.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 
@@ -13,6 +13,7 @@ export const JOBS = {
   'judge-readings': judgeJob,
   learn: learnJob,
   'report-trackers': reportJob,
+  'report-tracker-days': trackerDaysJob,
 }
 
 export type Compute = ComputePool<typeof JOBS>

@@ -6,7 +6,7 @@ import { geodesicM } from '../engine/route.ts'
 import { fastestThatMeets } from '../engine/search.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
 import type { BudgetDocument } from './budget.ts'
-import { dayBudget } from './budget-day.ts'
+import { dayBudget, type ForecastDay } from './budget-day.ts'
 import { carDocument } from './car.ts'
 import { carModel } from './car-model.ts'
 import { fieldName } from './check.ts'
@@ -50,6 +50,35 @@ export type ForecastRequest = z.output<typeof forecastRequest>
  */
 export function forecastDocuments(request: ForecastRequest): BudgetDocument {
   const { car, race: document, sky: skyDoc } = request
+  const { race, days, assumptions } = drivenRace(request, dayBudget)
+  return {
+    engineVersion: ENGINE_VERSION,
+    race: document.name,
+    car: car.name,
+    sky: { name: skyDoc.name, source: skyDoc.source, issuedAt: skyDoc.issuedAt },
+    assumptions,
+    lengthKm: race.course.lengthM / 1000,
+    days,
+  }
+}
+
+/** A day as it is driven, with all that it takes to drive it again. */
+export interface DrivenDay extends ForecastDay {
+  opening: Opening
+  /** Speed wanted on each piece; limits and the motor may lower it. [Mps] (pieces) */
+  wantedMps: Float64Array
+}
+
+/**
+ * The race in the engine's terms and what is wanted of its days, one after the other as they are driven.
+ *
+ * @throws InputError when the documents do not fit together: field, value and what was expected
+ */
+export function drivenRace<T>(
+  request: ForecastRequest,
+  of: (day: DrivenDay) => T,
+): { race: Race; days: T[]; assumptions: string[] } {
+  const { car, race: document, sky: skyDoc } = request
   const lastDay = dayWanted(document, request.date)
   const { sky, assumptions } = skyModel(skyDoc, document.turbidityByMonth)
   const course = raceCourse(document, request.routes, sectionCutsKm(request.speeds))
@@ -60,12 +89,10 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
   )
   checkWindHeight(request)
   const race: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
-  const { days, notes } = drivenDays(race, request, lastDay)
+  const { days, notes } = drivenDays(race, request, lastDay, of)
   return {
-    engineVersion: ENGINE_VERSION,
-    race: document.name,
-    car: car.name,
-    sky: { name: skyDoc.name, source: skyDoc.source, issuedAt: skyDoc.issuedAt },
+    race,
+    days,
     assumptions: [
       ...new Set([
         ...roadNotes(request),
@@ -77,8 +104,6 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
         ...notes,
       ]),
     ],
-    lengthKm: course.lengthM / 1000,
-    days,
   }
 }
 
@@ -86,10 +111,10 @@ export function forecastDocuments(request: ForecastRequest): BudgetDocument {
 const AS_TARGETED = speedsDocument.parse({ kind: 'meet-target' })
 
 /** The days up to the last wanted, each opening where the one before closed; one alone where one was asked for. */
-function drivenDays(race: Race, request: ForecastRequest, lastDay: number) {
+function drivenDays<T>(race: Race, request: ForecastRequest, lastDay: number, of: (day: DrivenDay) => T) {
   const { race: document } = request
   const stages = placedStages(document)
-  const days: BudgetDocument['days'] = []
+  const days: T[] = []
   const first = firstDay(race, document, lastDay)
   const notes = first > 0 ? ['The sky does not reach the days before: their stages are taken as driven.'] : []
   let opening = openingOf(race, stages, first)
@@ -103,11 +128,12 @@ function drivenDays(race: Race, request: ForecastRequest, lastDay: number) {
     const isBefore = request.date !== undefined && d < lastDay
     const speeds = isBefore ? AS_TARGETED : request.speeds
     const driven = driveDay(race, document, { dayIndex: d, opening, speeds, stages })
+    const opened = opening
     opening = driven.forecast.closing
     if (isBefore) continue
     const targetCharge = targetPct === undefined ? null : targetPct / 100
     const { penalties } = document
-    days.push(dayBudget({ race, stages, dayIndex: d, date: on, zone, targetCharge, penalties, ...driven }))
+    days.push(of({ race, stages, dayIndex: d, date: on, zone, targetCharge, penalties, opening: opened, ...driven }))
   }
   return { days, notes }
 }
@@ -166,6 +192,7 @@ interface Driven {
   forecast: DayForecast
   heldKmh: number | null
   search: { tried: number; meetsTarget: boolean } | null
+  wantedMps: Float64Array
 }
 
 /** One day at the speeds given, or at the fastest that meets its target. */
@@ -180,13 +207,14 @@ function driveDay(
     const targetPct = document.days[dayIndex].targetPct
     const target = targetPct === undefined ? race.car.reserveCharge : targetPct / 100
     const { speedKmh, forecast, tried, meetsTarget } = fastestThatMeets(race, dayIndex, opening, target, speeds)
-    return { forecast, heldKmh: speedKmh, search: { tried, meetsTarget } }
+    const wanted = new Float64Array(race.course.pieces.count).fill(speedKmh / 3.6)
+    return { forecast, heldKmh: speedKmh, search: { tried, meetsTarget }, wantedMps: wanted }
   }
   const given = speeds.kind === 'meet-target' ? { kind: 'constant' as const, speedKmh: speeds.lowestKmh } : speeds
   const dates = document.days.map((d) => d.date)
   const wanted = wantedMps(given, race.course, stages, { date: dates[dayIndex], dates })
   const heldKmh = given.kind === 'constant' && isDrivingDay ? given.speedKmh : null
-  return { forecast: forecastDay(race, dayIndex, opening, wanted), heldKmh, search: null }
+  return { forecast: forecastDay(race, dayIndex, opening, wanted), heldKmh, search: null, wantedMps: wanted }
 }
 
 /** One ground for the whole race: the mean over the routes that its stages use. */

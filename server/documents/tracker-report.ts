@@ -7,6 +7,8 @@ import type { DayBudget } from './budget.ts'
 import type { CarDocument } from './car.ts'
 import { judgementDocument } from './judgement.ts'
 import { readingDocument } from './reading.ts'
+import { toldText } from './told-words.ts'
+import { benchFit } from './tracker-model.ts'
 
 const column = (meaning: string) => z.array(z.number()).describe(`${meaning} [%]`)
 
@@ -66,6 +68,7 @@ export const trackerReport = z.strictObject({
   bench: curve,
   learned: curve,
   terms: z.array(term),
+  benchTold: z.string().nullable().describe('which losses its bench tells; null where the losses were given'),
   readings: z.array(keptReading),
   day: day.nullable().describe('from the budget that the crew follows'),
 })
@@ -95,6 +98,7 @@ export function trackerReports({ car, readings, widen, day: budget }: ReportInpu
   const before = carBelief(car, [], widen)
   const after = counting.length === 0 ? before : carBelief(car, counting, widen)
   return car.trackers.map((tracker, t) => {
+    const fit = benchFit(tracker)
     const own = readings.filter(({ reading }) => reading.tracker === tracker.name)
     const volts = voltsOf(car, tracker, own, budget)
     const { maxW } = tracker.window
@@ -107,6 +111,7 @@ export function trackerReports({ car, readings, widen, day: budget }: ReportInpu
       bench: curveOf(before, t, volts, inputW),
       learned: curveOf(after, t, volts, inputW),
       terms: TERMS.map((name) => termOf(before, after, t, name)),
+      benchTold: fit === null ? null : toldText(fit.told),
       readings: own,
       day: budget === null ? null : dayOf(tracker.name, budget),
     }

@@ -25,6 +25,32 @@ const post = (url: string, body: object) =>
 const forecast = (body: object, race = 'plateau') => post(`/api/v1/races/${race}/forecasts`, body)
 const wanted = { carId: 'weaver-2', skyId: 'friday', speeds }
 
+describe('a tracker report', () => {
+  test('of whole or stored documents needs nothing saved and fits the forecast of the same body', async () => {
+    const request = EXAMPLES['forecast-request'].document
+    const report = (await post('/api/v1/tracker-report', request)).json()
+    const budget = (await post('/api/v1/forecast', request)).json()
+    expect(report.days.map((day: { date: string }) => day.date)).toEqual(['2026-10-17'])
+    const [day] = report.days
+    day.trackers.forEach(({ name, parts, ifDead }: (typeof report.days)[number]['trackers'][number], i: number) => {
+      expect(name).toBe(budget.days[0].trackers[i].name)
+      expect(parts[0].inputWh).toBeCloseTo(budget.days[0].trackers[i].inputWh, 6)
+      expect(parts[0].onePointMin).toBeCloseTo(parts[0].onePointWh / day.price.whPerMin, 9)
+      expect(ifDead.min).toBeCloseTo(ifDead.wh / day.price.whPerMin, 9)
+    })
+    const stored = { car: { id: 'weaver-2' }, race: { id: 'plateau' }, sky: { id: 'friday' }, speeds }
+    const named = (await post('/api/v1/tracker-report', stored)).json()
+    expect(named.days[0].trackers.length).toBeGreaterThan(0)
+  })
+
+  test('of documents that do not fit names what is wrong', async () => {
+    const request = { ...EXAMPLES['forecast-request'].document, date: '2026-12-01' }
+    const answer = await post('/api/v1/tracker-report', request)
+    expect(answer.statusCode).toBe(422)
+    expect(answer.json()).toMatchObject({ code: 'cannot-forecast', errors: [{ field: 'date' }] })
+  })
+})
+
 describe('a forecast of stored documents', () => {
   test('tells what it was made from and what the day brings', async () => {
     const answer = await forecast(wanted)

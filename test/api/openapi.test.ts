@@ -53,6 +53,7 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/sessions': ['delete', 'post'],
   '/api/v1/forecasts/{id}': ['get'],
   '/api/v1/forecast': ['post'],
+  '/api/v1/tracker-report': ['post'],
   '/api/v1/examples': ['get'],
   '/api/v1/examples/{kind}': ['get'],
 }

@@ -201,6 +201,22 @@ describe('a reading', () => {
 })
 
 describe('the trackers', () => {
+  test('show the followed day driven again: its parts, where they worked, what they would cost dead', async () => {
+    const { items, work } = await get(`${RACE}/trackers?date=${DAY}`)
+    expect(work).toMatchObject({ date: DAY, price: { whPerMin: null, how: 'The car is not driven on this day.' } })
+    for (const [i, own] of work.trackers.entries()) {
+      const [whole, noon] = own.parts
+      expect([whole.kind, noon.kind]).toEqual(['day', 'evening-charge'])
+      expect(whole.inputWh).toBeCloseTo(items[i].day.wh, 6)
+      expect(noon.inputWh).toBeCloseTo(whole.inputWh, 9)
+      expect(own.ifDead).toMatchObject({ min: null })
+      // Without the tracker its output is missing, out of a pack that loses nothing.
+      expect(own.ifDead.wh / (whole.inputWh - whole.lossWh)).toBeCloseTo(1, 2)
+      expect(own.path.atMs.length).toBeGreaterThan(100)
+      expect(own.path.atMs.length).toBeLessThanOrEqual(200)
+    }
+  })
+
   test('show their curve before and after, their readings and where the day’s energy fell', async () => {
     const { uses, items } = await get(`${RACE}/trackers?date=${DAY}`)
     expect(uses).toBe('learned')
@@ -224,7 +240,7 @@ describe('the trackers', () => {
     await service.ask(saving('race', 'other', noonRace()))
     expect(await get('/api/v1/races/other/trackers')).toMatchObject({ code: 'nothing-followed' })
     const { items } = await get('/api/v1/races/other/trackers?car=weaver-1')
-    expect(items[0]).toMatchObject({ day: null, readings: [] })
+    expect(items[0]).toMatchObject({ day: null, readings: [], benchTold: null })
     expect(items[0].learned).toEqual(items[0].bench)
   })
 })

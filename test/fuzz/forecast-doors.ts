@@ -16,6 +16,16 @@ export const FORECAST_DOORS: Door[] = [
       sent('POST', '/api/v1/forecast', 'application/json', wrongRequest(by), { touches: null, yields: 'budget' }),
   },
   {
+    name: 'POST tracker-report',
+    count: 120,
+    takesDocuments: true,
+    attempt: (by) =>
+      sent('POST', '/api/v1/tracker-report', 'application/json', wrongRequest(by), {
+        touches: null,
+        yields: 'tracker-days',
+      }),
+  },
+  {
     name: 'POST races/:id/forecasts',
     count: 200,
     takesDocuments: true,

@@ -1,6 +1,7 @@
 import type { LightMyRequestResponse } from 'fastify'
 import { ERRORS } from '../../server/errors.ts'
 import type { BudgetDocument, DayBudget } from '../../server/documents/budget.ts'
+import type { TrackerDaysDocument } from '../../server/documents/tracker-days.ts'
 import type { Attempt } from './attempt.ts'
 import { isObject, isRelated } from './json-path.ts'
 
@@ -44,6 +45,7 @@ export function complaint(attempt: Attempt, answer: LightMyRequestResponse): str
   if (statusCode === 204 || statusCode === 304) return body === '' ? null : `${statusCode} with a body`
   if (statusCode !== 200 && statusCode !== 201) return `answered ${statusCode}`
   if (!String(answer.headers['content-type']).startsWith('application/json')) return null
+  if (attempt.yields === 'tracker-days') return trackersComplaint(answer.json())
   return attempt.yields === 'budget' ? budgetComplaint(budgetIn(answer)) : null
 }
 
@@ -90,6 +92,21 @@ export function budgetComplaint(budget: BudgetDocument): string | null {
       if (!(gapWh <= GAP_SHARE * movedWh(day) + GAP_WH)) return `${day.date}: a ledger misses by ${gapWh} Wh`
     }
     if (day.series.chargePct.some((pct) => pct < 0 || pct > 100)) return `${day.date}: a charge outside 0 to 100 %`
+  }
+  return null
+}
+
+/** What is wrong with a tracker report: a figure that is none, more taken than there was, more out than in. */
+export function trackersComplaint(report: TrackerDaysDocument): string | null {
+  if (report.days.length === 0) return 'a report without days'
+  if (!numbersIn(report).every(Number.isFinite)) return 'a figure that is no number'
+  for (const { name, parts, path } of report.days.flatMap((day) => day.trackers)) {
+    if (path.atMs.length > 200) return `${name}: a path of ${path.atMs.length} steps`
+    for (const { bestWh, inputWh, lossWh, edges } of parts) {
+      const deniedWh = edges.reduce((sum, edge) => sum + edge.deniedWh, 0)
+      if (inputWh + deniedWh > bestWh * (1 + GAP_SHARE) + GAP_WH) return `${name}: takes more than there is`
+      if (lossWh < -GAP_WH || lossWh > inputWh * (1 + GAP_SHARE) + GAP_WH) return `${name}: loses ${lossWh} Wh`
+    }
   }
   return null
 }

@@ -54,6 +54,7 @@ const report = (name: string, learnedPct: number, change: Partial<TrackerReport>
   bench: curve(97, 0.8),
   learned: curve(learnedPct, 0.5),
   terms: [],
+  benchTold: null,
   readings: [READING],
   day: DAY,
   ...change,
