@@ -29,7 +29,7 @@ const ledger = z.strictObject({
   wentOutWh: wh('sum of the spendings'),
   shortWh: wh('energy asked of an empty pack; above 0 the day cannot be driven so'),
   closingWh: wh('closing balance'),
-  denied: z.array(line).describe('sun that window, shade or a full pack denied; in no sum'),
+  denied: z.array(line).describe('sun that window, tracking or a full pack denied; in no sum'),
 })
 
 const stageBudget = z.strictObject({

@@ -16,6 +16,19 @@ const BENCH = [60, 80, 100].flatMap((inputV) =>
   })),
 )
 
+const BODY = { kind: 'car-body' as const, lengthM: 3, laminarStart: true, heatCapacityKjM2C: 4 }
+
+const CANOPY = [
+  { bearingDeg: 10, heightDeg: 20, lostPct: 15 },
+  { bearingDeg: 350, heightDeg: 30, lostPct: 25 },
+]
+
+const HILLS = [
+  { azimuthDeg: 80, heightDeg: 9 },
+  { azimuthDeg: 200, heightDeg: 0 },
+  { azimuthDeg: 300, heightDeg: 3.5 },
+]
+
 /** A car that says everything a car can say. */
 const fullCar = (): CarInput => {
   const car = someCar()
@@ -25,8 +38,8 @@ const fullCar = (): CarInput => {
     ...car,
     body: { ...car.body, rotatingFactor: 1.04, rollingPerKmh: 0.00001, windHeightM: 0.6 },
     panels: [
-      { ...deck, rollDeg: 3, glass: 'physical', cooling: { kind: 'car-body', lengthM: 3 } },
-      { ...nose, glass: 'ashrae', cooling: { kind: 'faiman', u0Wm2PerC: 25, u1WsM3PerC: 6.8 } },
+      { ...deck, rollDeg: 3, glass: 'physical', cooling: BODY, shade: CANOPY },
+      { ...nose, glass: 'ashrae', cooling: { kind: 'faiman', u0Wm2PerC: 25, u1WsM3PerC: 6.8, heatCapacityKjM2C: 11 } },
     ],
     stand: { tiltMinDeg: 5, tiltMaxDeg: 70, azimuthFromDeg: 0, azimuthToDeg: 300 },
     cellTypes: { silicon: { ...car.cellTypes.silicon, bandGapEv: 1.13, bandGapPerC: -0.0003 } },
@@ -44,6 +57,7 @@ const fullRoute = (): RouteInput => ({
   limitKmh: 100,
   roughnessM: 0.05,
   groundAlbedo: 0.3,
+  roadHeatC: 3,
   stretches: [
     { fromKm: 0, toKm: 1, limitKmh: 50, haltsPerKm: 0.5 },
     { fromKm: 3, toKm: 4, surfaceFactor: 1.2 },
@@ -63,10 +77,11 @@ const fullRace = (): RaceInput => {
         ...day,
         zone: 'Africa/Windhoek',
         openingPct: 55,
+        charging: (day.charging ?? []).map((window) => ({ ...window, horizon: HILLS })),
         raiseMin: 3,
         lowerMin: 3,
         stages: [
-          { ...stage, toKm: 2, stop: { minutes: 10, lift: true, ...times } },
+          { ...stage, toKm: 2, stop: { minutes: 10, lift: true, horizon: HILLS, ...times } },
           { ...stage, id: 'second', fromKm: 2 },
         ],
       },

@@ -3,6 +3,15 @@ import type { CarInput } from '../../documents/car.ts'
 const TRACKER_WINDOW = { inputMinV: 15, inputMaxV: 100, inputMaxA: 8, outputMaxV: 160, outputMinV: 70, maxW: 350 }
 const TRACKER_LOSSES = { standingW: 1.2, switchingPct: 0.35, conductionOhm: 0.045, rectifierV: 0.6 }
 
+/** The canopy stands before the tail panel: a sun ahead and below 25° loses a fifth of its beam there. */
+const CANOPY_AHEAD = [
+  { bearingDeg: 0, heightDeg: 25, lostPct: 20 },
+  { bearingDeg: 40, heightDeg: 15, lostPct: 8 },
+  { bearingDeg: 70, heightDeg: 0, lostPct: 0 },
+  { bearingDeg: 290, heightDeg: 0, lostPct: 0 },
+  { bearingDeg: 320, heightDeg: 15, lostPct: 8 },
+]
+
 /** An invented car with four flat panels, one string and one tracker each. */
 export const carExample: CarInput = {
   name: 'Weaver 2',
@@ -35,7 +44,7 @@ export const carExample: CarInput = {
     { name: 'nose', pitchDeg: 8, lifts: true },
     { name: 'left', rollDeg: -5, lifts: true },
     { name: 'right', rollDeg: 5, lifts: true },
-    { name: 'tail', pitchDeg: -6, lifts: true },
+    { name: 'tail', pitchDeg: -6, lifts: true, shade: CANOPY_AHEAD },
   ],
   stand: { tiltMaxDeg: 70 },
   cellTypes: {

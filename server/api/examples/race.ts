@@ -11,7 +11,16 @@ export const raceExample: RaceInput = {
       release: '06:00',
       driving: { from: '08:00', to: '17:00' },
       charging: [
-        { from: '06:15', to: '07:50' },
+        {
+          from: '06:15',
+          to: '07:50',
+          horizon: [
+            { azimuthDeg: 60, heightDeg: 0 },
+            { azimuthDeg: 85, heightDeg: 6 },
+            { azimuthDeg: 110, heightDeg: 4 },
+            { azimuthDeg: 130, heightDeg: 0 },
+          ],
+        },
         { from: '17:00', to: '18:40' },
       ],
       impound: '19:00',
@@ -24,7 +33,14 @@ export const raceExample: RaceInput = {
           toKm: 52,
           start: 'Saltpan',
           finish: 'Old Pump',
-          stop: { minutes: 30 },
+          stop: {
+            minutes: 30,
+            horizon: [
+              { azimuthDeg: 250, heightDeg: 2 },
+              { azimuthDeg: 280, heightDeg: 14 },
+              { azimuthDeg: 310, heightDeg: 2 },
+            ],
+          },
         },
         {
           id: 'old-pump-twin-wells',

@@ -10,6 +10,7 @@ export const routeExample: RouteInput = {
   },
   limitKmh: 100,
   groundAlbedo: 0.28,
+  roadHeatC: 2,
   stretches: [
     { fromKm: 0, toKm: 2.5, limitKmh: 50, haltsPerKm: 0.4 },
     { fromKm: 38, toKm: 46, surfaceFactor: 1.25 },
