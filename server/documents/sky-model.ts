@@ -36,14 +36,22 @@ const PRECEDING: ReadonlySet<SkyColumn> = new Set(['cloudPct', 'ghiWm2', 'dniWm2
  * @param linkeByMonth  of the race, for a sky without any turbidity of its own
  */
 export function skyModel(sky: SkyDocument, linkeByMonth?: readonly number[]): { sky: Sky; assumptions: string[] } {
-  const hasColumn = sky.places.some(({ turbidity }) => turbidity !== undefined)
-  const byMonth = hasColumn ? undefined : (sky.turbidityByMonth ?? linkeByMonth)
-  const prepared = prepareSky({
-    places: sky.places.map((place, p) => withMonths(placeInput(sky, place, `sky.places[${p}]`), byMonth)),
-    linkeDefault: LINKE_DEFAULT,
-  })
+  const prepared = prepareSky({ places: skyInputs(sky, linkeByMonth), linkeDefault: LINKE_DEFAULT })
+  const byMonth = monthsOf(sky, linkeByMonth)
   return { sky: prepared, assumptions: [...silences(sky, byMonth), ...corrections(sky, prepared)] }
 }
+
+/**
+ * The tables of a sky in the engine's units, place by place.
+ *
+ * @param field  where the places stand, for messages
+ */
+export const skyInputs = (sky: SkyDocument, linkeByMonth?: readonly number[], field = 'sky.places'): SkyPlaceInput[] =>
+  sky.places.map((place, p) => withMonths(placeInput(sky, place, `${field}[${p}]`), monthsOf(sky, linkeByMonth)))
+
+/** Turbidity by month where no place brings a column of it. */
+const monthsOf = (sky: SkyDocument, ofRace?: readonly number[]): readonly number[] | undefined =>
+  sky.places.some(({ turbidity }) => turbidity !== undefined) ? undefined : (sky.turbidityByMonth ?? ofRace)
 
 /** A place with turbidity by month in place of a column. */
 function withMonths(input: SkyPlaceInput, byMonth: readonly number[] | undefined): SkyPlaceInput {
