@@ -29,6 +29,7 @@ import { previewRoute } from './api/previews.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
 import { sessionRoutes } from './api/sessions.ts'
 import { sharedRoute, shareRoutes } from './api/shares.ts'
+import { skyComparisonRoute } from './api/sky-comparison.ts'
 import { statelessForecastRoute, statelessTrackerRoute } from './api/stateless-forecast.ts'
 import { inTurn } from './api/take-readings.ts'
 import { beliefRoute, trackerRoutes } from './api/trackers.ts'
@@ -143,6 +144,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => forecastRoutes(scope, needs))
   void api.register(async (scope: Api) => statelessForecastRoute(scope, needs))
   void api.register(async (scope: Api) => statelessTrackerRoute(scope, needs))
+  void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
   dayRoutes(api, needs)
   exampleRoutes(api)
   addCrewRoutes(api, needs)

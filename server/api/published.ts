@@ -1,8 +1,10 @@
 import { z } from 'zod'
 import { DOCUMENTS } from '../compute/documents.ts'
 import { openRequest } from '../compute/forecast-jobs.ts'
+import { openComparison } from '../compute/sky-jobs.ts'
 import { budgetDocument } from '../documents/budget.ts'
 import { readingDocument } from '../documents/reading.ts'
+import { skyComparison } from '../documents/sky-comparison.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { trackerDay } from '../documents/tracker-day.ts'
 import { trackerDays } from '../documents/tracker-days.ts'
@@ -27,6 +29,8 @@ export const COMPONENTS: Record<string, Component> = {
   Reading: { schema: readingDocument, direction: 'input' },
   Speeds: { schema: speedsDocument, direction: 'input', example: 'speeds' },
   ForecastRequest: { schema: openRequest, direction: 'input', example: 'forecast-request' },
+  SkyComparisonRequest: { schema: openComparison, direction: 'input', example: 'sky-comparison' },
+  SkyComparison: { schema: skyComparison, direction: 'output' },
   Budget: { schema: budgetDocument, direction: 'output' },
   TrackerDay: { schema: trackerDay, direction: 'output' },
   TrackerDays: { schema: trackerDays, direction: 'output' },

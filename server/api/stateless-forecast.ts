@@ -41,7 +41,7 @@ export function statelessForecastRoute(api: Api, needs: Needs): void {
   api.post('/forecast', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
     const signal = clientGone(reply)
     const read = await compute.run('read-forecast-request', { bytes: bytesOf(request.body) }, signal)
-    const budget = await compute.run('forecast', await whole(needs, read, signal), signal)
+    const budget = await compute.run('forecast', await wholeRequest(needs, read, signal), signal)
     return reply.type('application/json; charset=utf-8').send(budget)
   })
 }
@@ -62,17 +62,21 @@ export function statelessTrackerRoute(api: Api, needs: Needs): void {
   api.post('/tracker-report', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
     const signal = clientGone(reply)
     const read = await compute.run('read-forecast-request', { bytes: bytesOf(request.body) }, signal)
-    return compute.run('report-tracker-days', await whole(needs, read, signal), signal)
+    return compute.run('report-tracker-days', await wholeRequest(needs, read, signal), signal)
   })
 }
 
-/** The request with every document that it names. */
-async function whole(needs: Needs, request: OpenRequest, signal: AbortSignal) {
+/**
+ * The request with every document that it names.
+ *
+ * @param before  what stands before its fields in the body, for messages
+ */
+export async function wholeRequest(needs: Needs, request: OpenRequest, signal: AbortSignal, before = '') {
   const { store } = needs
   const [car, race, sky] = await Promise.all([
-    documentOf(store, 'car', request.car),
-    documentOf(store, 'race', request.race),
-    documentOf(store, 'sky', request.sky),
+    documentOf(store, 'car', request.car, before),
+    documentOf(store, 'race', request.race, before),
+    documentOf(store, 'sky', request.sky, before),
   ])
   const given = request.routes ?? {}
   const stored = await routesOf(store, raceDocument.parse(race), given)
@@ -87,5 +91,5 @@ async function learnedFor(needs: Needs, { car, race }: OpenRequest, signal: Abor
   return learnedLosses(needs, race.id, await named(needs.store, 'car', car.id, 'car.id'), signal)
 }
 
-const documentOf = async (store: Store, kind: Kind, given: object | Reference): Promise<unknown> =>
-  'id' in given ? (await named(store, kind, given.id, `${kind}.id`)).body : given
+const documentOf = async (store: Store, kind: Kind, given: object | Reference, before: string): Promise<unknown> =>
+  'id' in given ? (await named(store, kind, given.id, `${before}${kind}.id`)).body : given

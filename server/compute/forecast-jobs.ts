@@ -47,13 +47,14 @@ export function readForecastRequest(input: { bytes: Uint8Array }): OpenRequest {
 }
 
 /** A union would name the problems of both its sides; which one is meant shows at a glance. */
-function meant<W extends z.ZodType>(body: unknown, name: string, whole: W) {
+export function meant<W extends z.ZodType>(body: unknown, name: string, whole: W, kind = name) {
   const given = member(body, name)
   const isReference = member(given, 'id') !== undefined && member(given, 'name') === undefined
-  return isReference ? storedReference(name) : whole
+  return isReference ? storedReference(kind) : whole
 }
 
-const member = (value: unknown, name: string): unknown =>
+/** A field of something that may be an object. */
+export const member = (value: unknown, name: string): unknown =>
   typeof value === 'object' && value !== null ? Object.entries(value).find(([key]) => key === name)?.[1] : undefined
 
 /** Whole documents of a forecast; they were checked when they came in, perhaps by an earlier version. */

@@ -2,6 +2,7 @@ import { type BodyInput, readDocument } from './file-jobs.ts'
 import { forecastJson, inputsHash, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
 import type { ComputePool } from './pool.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
+import { compareJson, readComparison } from './sky-jobs.ts'
 
 /** Everything that is too heavy for the event loop, by name. */
 export const JOBS = {
@@ -12,6 +13,8 @@ export const JOBS = {
   'read-readings': readReadings,
   'judge-readings': judgeJob,
   learn: learnJob,
+  'read-sky-comparison': readComparison,
+  'compare-skies': compareJson,
   'report-trackers': reportJob,
   'report-tracker-days': trackerDaysJob,
 }

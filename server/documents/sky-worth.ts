@@ -13,10 +13,10 @@ type Day = NonNullable<ComparisonRequest['day']>
  * @throws InputError when the day cannot be worked out with one of the skies
  */
 export function skyWorth({ forecast, measured }: ComparisonRequest, day: Day): SkyWorth {
-  const planned = named('forecast.places', () => drivenUnder(forecast, day))
+  const planned = named('forecast', () => drivenUnder(forecast, day))
   const { chargePct } = planned.opening
   const same = { ...day, race: openingAt(day, chargePct), speeds: heldSpeeds(day, planned) }
-  const was = named('measured.places', () => drivenUnder(measured, same))
+  const was = named('measured', () => drivenUnder(measured, same))
   return {
     date: day.date,
     car: day.car.name,
@@ -29,13 +29,14 @@ export function skyWorth({ forecast, measured }: ComparisonRequest, day: Day): S
   }
 }
 
-/** The fault of a sky names that sky. */
-function named<T>(field: string, work: () => T): T {
+/** A fault names its field as the request has it. */
+function named<T>(sky: 'forecast' | 'measured', work: () => T): T {
   try {
     return work()
   } catch (error) {
-    if (!(error instanceof InputError) || !error.field.startsWith('sky.places')) throw error
-    throw new InputError(error.code, error.field.replace('sky.places', field), error.detail)
+    if (!(error instanceof InputError)) throw error
+    const isSky = error.field.startsWith('sky.')
+    throw new InputError(error.code, isSky ? error.field.replace('sky', sky) : `day.${error.field}`, error.detail)
   }
 }
 

@@ -4,6 +4,7 @@ import { Ajv2020 } from 'ajv/dist/2020.js'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { EXAMPLES } from '../../server/api/examples/all.ts'
 import { DOCUMENTS } from '../../server/compute/documents.ts'
+import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
 import { checkDocument } from '../../server/documents/check.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
@@ -54,6 +55,7 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/forecasts/{id}': ['get'],
   '/api/v1/forecast': ['post'],
   '/api/v1/tracker-report': ['post'],
+  '/api/v1/sky-comparison': ['post'],
   '/api/v1/examples': ['get'],
   '/api/v1/examples/{kind}': ['get'],
 }
@@ -135,7 +137,12 @@ describe('the description of the API', () => {
 })
 
 describe('the worked examples', () => {
-  const schemas = { ...DOCUMENTS, speeds: speedsDocument, 'forecast-request': openRequest }
+  const schemas = {
+    ...DOCUMENTS,
+    speeds: speedsDocument,
+    'forecast-request': openRequest,
+    'sky-comparison': openComparison,
+  }
 
   test.each(Object.entries(schemas))('of %s is valid and served', async (kind, schema) => {
     const { document } = EXAMPLES[kind]

@@ -148,6 +148,17 @@ export const REQUESTS: object[] = [
   ...several(anyRequest(), 6).map((request) => ({ ...Object(request) })),
 ]
 
+/** Comparisons of two skies, with and without a day. */
+export const COMPARISONS = [
+  { forecast: someSky(20), measured: fullSky() },
+  { forecast: { id: 'fuzz-sky' }, measured: someSky(40), zone: 'Africa/Windhoek' },
+  {
+    forecast: someSky(20),
+    measured: { id: 'fuzz-sky' },
+    day: { car: { id: 'fuzz-car' }, race: { id: 'fuzz-race' }, speeds: SPEEDS[0], date: '2026-10-17' },
+  },
+]
+
 export const GPX = `<?xml version="1.0" encoding="UTF-8"?>
 <gpx version="1.1" creator="Weaverbird" xmlns="http://www.topografix.com/GPX/1/1">
 <wpt lat="-23.46" lon="17.0"><name>Gate</name></wpt>

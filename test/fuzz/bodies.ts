@@ -1,9 +1,10 @@
 import type { z } from 'zod'
 import { DOCUMENTS as SCHEMAS } from '../../server/compute/documents.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
+import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
 import type { Kind } from './attempt.ts'
-import { DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS } from './bases.ts'
+import { COMPARISONS, DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS } from './bases.ts'
 import { oneByte, otherBytes } from './byte-mutation.ts'
 import type { Chance } from './chance.ts'
 import { hostileGpx, hostileTable, mutatedGpx, mutatedTable } from './file-mutation.ts'
@@ -38,6 +39,9 @@ export const wrongDocument = (by: Chance, kind: Kind): WrongBody =>
   wrongJson(by, by.pick<unknown>(DOCUMENTS[kind]), publishedOnce(SCHEMAS[kind]))
 
 export const wrongRequest = (by: Chance): WrongBody => wrongJson(by, by.pick(REQUESTS), publishedOnce(openRequest))
+
+export const wrongComparison = (by: Chance): WrongBody =>
+  wrongJson(by, by.pick<unknown>(COMPARISONS), publishedOnce(openComparison))
 
 const NEW_FORECASTS = SPEEDS.flatMap((speeds) => [
   { carId: 'fuzz-car', skyId: 'fuzz-sky', speeds },

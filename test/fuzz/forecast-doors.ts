@@ -1,5 +1,5 @@
 import { sent } from './attempt.ts'
-import { wrongNewForecast, wrongRequest } from './bodies.ts'
+import { wrongComparison, wrongNewForecast, wrongRequest } from './bodies.ts'
 import type { Door } from './document-doors.ts'
 
 /** Attempts that run at once; each has a race of its own, so that its forecasts can be watched. */
@@ -34,5 +34,12 @@ export const FORECAST_DOORS: Door[] = [
       const rest = { touches: { kind: 'forecast', id }, yields: 'budget' } as const
       return sent('POST', `/api/v1/races/${id}/forecasts`, 'application/json', wrongNewForecast(by), rest)
     },
+  },
+  {
+    name: 'POST sky-comparison',
+    count: 160,
+    takesDocuments: true,
+    attempt: (by) =>
+      sent('POST', '/api/v1/sky-comparison', 'application/json', wrongComparison(by), { touches: null, yields: null }),
   },
 ]

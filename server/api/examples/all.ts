@@ -2,7 +2,7 @@ import type { SpeedsInput } from '../../documents/speeds.ts'
 import { carExample } from './car.ts'
 import { raceExample } from './race.ts'
 import { routeExample } from './route.ts'
-import { skyExample } from './sky.ts'
+import { measuredExample, skyExample } from './sky.ts'
 
 export interface Example {
   title: string
@@ -27,5 +27,9 @@ export const EXAMPLES: Record<string, Example> = {
       sky: skyExample,
       speeds: speedsExample,
     },
+  },
+  'sky-comparison': {
+    title: 'A forecast beside what was measured',
+    document: { forecast: skyExample, measured: measuredExample },
   },
 }

@@ -25,3 +25,25 @@ export const skyExample: SkyInput = {
     },
   ],
 }
+
+/** What was measured there on the day: less sun than forecast in the morning, a little warmer, more wind. */
+export const measuredExample: SkyInput = {
+  name: 'Saltpan, measured at the gate',
+  source: 'measured',
+  issuedAt: '2026-10-17T15:05:00+02:00',
+  utcOffset: '+02:00',
+  places: [
+    {
+      name: 'Gate',
+      latDeg: -23.6,
+      lonDeg: 16.42,
+      elevationM: 1185,
+      at: HOURS.slice(1, 10).map((hour) => `2026-10-17T${hour}:00:00+02:00`),
+      ghiWm2: [95, 280, 505, 730, 890, 985, 1010, 960, 835],
+      airTempC: [15.5, 18.5, 22, 25, 28, 30, 31.5, 32.5, 33],
+      windMps: [2.5, 3, 3.5, 3.5, 4, 5, 5, 5.5, 6],
+      windFromDeg: [95, 90, 80, 75, 60, 50, 35, 20, 15],
+      pressureHpa: [883, 884, 884, 884, 883, 882, 881, 880, 880],
+    },
+  ],
+}
