@@ -2,8 +2,8 @@ import { deSoto, maximumPower } from './cell.ts'
 import type { LitPanel } from './panel-light.ts'
 import type { StringModel } from './string.ts'
 
-/** Panels with one orientation and one cover: they see the same light. */
-export type Face = Pick<LitPanel, 'pitchRad' | 'rollRad' | 'lifts' | 'beamTable' | 'losesDiffuse'>
+/** Panels with one orientation, one cover and no shade of their own: they see the same light. */
+export type Face = Pick<LitPanel, 'pitchRad' | 'rollRad' | 'lifts' | 'beamTable' | 'losesDiffuse' | 'shade'>
 
 /** Cells in series over several faces, as the search for a pose weighs them. */
 export interface SpanningString {
@@ -30,7 +30,8 @@ const isAlike = (one: Face, other: Face): boolean =>
   one.rollRad === other.rollRad &&
   one.lifts === other.lifts &&
   one.beamTable === other.beamTable &&
-  one.losesDiffuse === other.losesDiffuse
+  one.losesDiffuse === other.losesDiffuse &&
+  one.shade === other.shade
 
 /**
  * Weighs the strings for `poseLight`: a cell's best power at 1000 W/m² and 25 °C stands for its power at any light.

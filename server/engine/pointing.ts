@@ -3,7 +3,7 @@ import { type HorizonsAlong, hideSky } from './horizon.ts'
 import { type AimAlong, fillSky, type LightAlong, type SkyBlock, skyBlock } from './panel-light.ts'
 import { type PoseLight, poseLight } from './pose-light.ts'
 import { bestPose } from './pose-search.ts'
-import { aimAtSun, type Pose, type Stand } from './stand.ts'
+import { aimAtSun, type Pose, type Stand, turnedOff } from './stand.ts'
 
 /** Steps in which the array may be lifted, and which of them share one pose. */
 export interface LiftedSteps {
@@ -51,51 +51,91 @@ function holdEnd({ headingRad, lifted, hold }: LiftedSteps, from: number): numbe
   return to
 }
 
-/**
- * Poses of the lifted array, hold by hold: most light on the cells, or most of the sun's beam, as the stand's aim says.
- *
- * Most light counts beam, light around the sun, dome, horizon and ground on every panel that lifts, past its cover,
- * under the horizon, without the car's own shade, with panels keeping pitch and roll on the lifted array; within a hold the steps' powers are summed. Steps of a hold
- * count alike: they are of one length.
- *
- * @param out  overwritten at lifted steps
- */
-export function aimAlong(array: PreparedArray, stand: Stand, steps: LiftedSteps, out: AimAlong): void {
-  const { lifted } = steps
-  const search = stand.aim === 'most-light' ? poseLight(array.aim) : null
+/** A hold with its sky. */
+interface Held {
+  steps: LiftedSteps
+  sky: SkyBlock
+  from: number
+  to: number
+}
+
+/** Gives every hold of the lifted steps the pose that is found for it. */
+function poseHolds(array: PreparedArray, steps: LiftedSteps, out: AimAlong, find: (held: Held) => Pose): void {
   let sky = skyBlock(64)
-  for (let from = 0; from < lifted.length; from++) {
-    if (lifted[from] !== 1) continue
+  for (let from = 0; from < steps.lifted.length; from++) {
+    if (steps.lifted[from] !== 1) continue
     const to = holdEnd(steps, from)
     if (to - from > sky.sunUp.length) sky = skyBlock(2 * (to - from))
     fillSky(array.model.skyModel, steps.weather, from, to, sky)
     if (steps.horizons !== undefined) hideSky(steps.horizons, from, to, sky)
-    const { tiltRad, azimuthRad } = holdPose(array, stand, search, { steps, sky, from, to })
+    const { tiltRad, azimuthRad } = find({ steps, sky, from, to })
     out.tiltRad.fill(tiltRad, from, to)
     out.azimuthRad.fill(azimuthRad, from, to)
     from = to - 1
   }
 }
 
-function holdPose(
-  array: PreparedArray,
-  stand: Stand,
-  search: PoseLight | null,
-  { steps, sky, from, to }: { steps: LiftedSteps; sky: SkyBlock; from: number; to: number },
-): Pose {
-  const sum = (parts: Float64Array): number => {
-    let total = 0
-    for (let b = 0; b < to - from; b++) total += parts[b]
-    return total
-  }
-  const atSun = aimAtSun(stand, sum(sky.sunEast), sum(sky.sunNorth), sum(sky.sunUp))
-  if (search === null) return atSun
-  search.hold({
-    sky,
-    from,
-    to,
-    headingRad: steps.headingRad[from],
-    albedo: array.model.albedo,
+function takeUp(light: PoseLight, array: PreparedArray, { steps, sky, from, to }: Held): void {
+  light.hold({ sky, from, to, headingRad: steps.headingRad[from], albedo: array.model.albedo })
+}
+
+/**
+ * Poses of the lifted array, hold by hold: most light on the cells, or most of the sun's beam, as the stand's aim says.
+ *
+ * Most light counts beam, light around the sun, dome, horizon and ground on every panel that lifts, past what stands
+ * around the car, the car's own shade and the cover, with panels keeping pitch and roll on the lifted array; within a
+ * hold the steps' powers are summed. Steps of a hold count alike: they are of one length.
+ *
+ * @param out  overwritten at lifted steps
+ */
+export function aimAlong(array: PreparedArray, stand: Stand, steps: LiftedSteps, out: AimAlong): void {
+  const light = stand.aim === 'most-light' ? poseLight(array.aim) : null
+  poseHolds(array, steps, out, (held) => {
+    const { sky, from, to } = held
+    const sum = (parts: Float64Array): number => {
+      let total = 0
+      for (let b = 0; b < to - from; b++) total += parts[b]
+      return total
+    }
+    const atSun = aimAtSun(stand, sum(sky.sunEast), sum(sky.sunNorth), sum(sky.sunUp))
+    if (light === null) return atSun
+    takeUp(light, array, held)
+    return bestPose(stand, (tiltRad, azimuthRad) => light.powerW(tiltRad, azimuthRad), atSun)
   })
-  return bestPose(stand, (tiltRad, azimuthRad) => search.powerW(tiltRad, azimuthRad), atSun)
+}
+
+/** Directions in which being off is tried; the worst of all is worse by no more than 2 %. */
+const DIRECTIONS = 16
+
+/**
+ * Poses off given ones by up to an angle, in the direction in which that costs most light, hold by hold.
+ *
+ * The limits of the stand do not count: a car that stands askew goes past them.
+ *
+ * @param aim     poses to be off of
+ * @param before  poses off by a smaller angle, where they are known: they stay where they are worse. (steps)
+ * @param out     overwritten at lifted steps
+ */
+export function offAlong(
+  array: PreparedArray,
+  steps: LiftedSteps,
+  of: { aim: AimAlong; offRad: number; before: AimAlong },
+  out: AimAlong,
+): void {
+  const light = poseLight(array.aim)
+  poseHolds(array, steps, out, (held) => {
+    const poseAt = ({ tiltRad, azimuthRad }: AimAlong): Pose => ({
+      tiltRad: tiltRad[held.from],
+      azimuthRad: azimuthRad[held.from],
+    })
+    takeUp(light, array, held)
+    let worst = poseAt(of.before)
+    let leastW = light.powerW(worst.tiltRad, worst.azimuthRad)
+    for (let d = 0; d < DIRECTIONS; d++) {
+      const pose = turnedOff(poseAt(of.aim), of.offRad, (2 * Math.PI * d) / DIRECTIONS)
+      const getsW = light.powerW(pose.tiltRad, pose.azimuthRad)
+      if (getsW < leastW) [worst, leastW] = [pose, getsW]
+    }
+    return worst
+  })
 }

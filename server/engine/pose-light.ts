@@ -3,6 +3,7 @@ import { spanningW } from './aim-strings.ts'
 import { INCIDENCE_STEPS, martinRuizGround, martinRuizSky } from './incidence.ts'
 import type { SkyBlock } from './panel-light.ts'
 import { panelNormal } from './plane.ts'
+import { type Frame, frameOf, liftedFrame, litShare } from './shade.ts'
 
 /** Steps with one heading in which one pose is held. */
 export interface Hold {
@@ -26,6 +27,14 @@ function diffuseTable(share: (cosTilt: number) => number): Float64Array {
   return table
 }
 
+/** A face's normal, and the deck that its shade stands on. */
+interface Facing {
+  east: number
+  north: number
+  up: number
+  frame: Frame
+}
+
 /** What a pose is worth over a hold; made once per array, so that the search makes no garbage. */
 export interface PoseLight {
   /** Takes up another hold. */
@@ -42,7 +51,8 @@ export function poseLight(strings: AimStrings): PoseLight {
   let now: Hold | null = null
   let lightWm2 = new Float64Array(0)
   let stillW = 0
-  const normal = { east: 0, north: 0, up: 0 }
+  const facing: Facing = { east: 0, north: 0, up: 0, frame: frameOf(0, 0) }
+  const isShaded = faces.some(({ shade }) => shade !== null)
 
   const spanningSumW = (steps: number): number => {
     let sum = 0
@@ -56,6 +66,7 @@ export function poseLight(strings: AimStrings): PoseLight {
     const cosA = Math.cos(azimuthRad)
     const sinT = Math.sin(tiltRad)
     const cosT = Math.cos(tiltRad)
+    if (isShaded) facing.frame = liftedFrame(hold.headingRad, tiltRad, azimuthRad)
     let sum = stillW
     for (let f = 0; f < faces.length; f++) {
       if (!counts[f] || !faces[f].lifts) continue
@@ -63,10 +74,10 @@ export function poseLight(strings: AimStrings): PoseLight {
       const towards = east * sinA + north * cosA
       const aside = east * cosA - north * sinA
       const lain = towards * cosT + up * sinT
-      normal.east = lain * sinA + aside * cosA
-      normal.north = lain * cosA - aside * sinA
-      normal.up = up * cosT - towards * sinT
-      sum += perFaceW[f] * faceLight(faces[f], hold, normal, lightWm2, f * (hold.to - hold.from))
+      facing.east = lain * sinA + aside * cosA
+      facing.north = lain * cosA - aside * sinA
+      facing.up = up * cosT - towards * sinT
+      sum += perFaceW[f] * faceLight(faces[f], hold, facing, lightWm2, f * (hold.to - hold.from))
     }
     return sum
   }
@@ -77,11 +88,12 @@ export function poseLight(strings: AimStrings): PoseLight {
       const steps = next.to - next.from
       if (lightWm2.length < faces.length * steps) lightWm2 = new Float64Array(faces.length * steps)
       stillW = 0
+      const frame = frameOf(next.headingRad, 0)
       faces.forEach((face, f) => {
         level[f] = panelNormal(face.pitchRad, face.rollRad, next.headingRad, 0)
         const [east, north, up] = level[f]
         if (counts[f] && !face.lifts)
-          stillW += perFaceW[f] * faceLight(face, next, { east, north, up }, lightWm2, f * steps)
+          stillW += perFaceW[f] * faceLight(face, next, { east, north, up, frame }, lightWm2, f * steps)
       })
     },
     powerW: (tiltRad, azimuthRad) =>
@@ -91,13 +103,14 @@ export function poseLight(strings: AimStrings): PoseLight {
 
 /** Light past the cover on one face, step by step into `out` from `at` on. @returns its sum. [W/m²] */
 function faceLight(
-  { beamTable, losesDiffuse }: Face,
+  { beamTable, losesDiffuse, shade }: Face,
   hold: Hold,
-  { east, north, up }: { east: number; north: number; up: number },
+  { east, north, up, frame }: Facing,
   out: Float64Array,
   at: number,
 ): number {
   const { sky, from, to, albedo } = hold
+  const evenShare = shade?.evenShare ?? 1
   const { sunEast, sunNorth, sunUp, beamWm2, aroundSunWm2, domeWm2, horizonWm2, groundWm2 } = sky
   const half = Math.sqrt(0.5 * Math.max(0, 1 - up))
   const sinTilt = 2 * half * Math.sqrt(Math.max(0, 1 - half * half))
@@ -108,9 +121,10 @@ function faceLight(
   let sum = 0
   for (let b = 0; b < to - from; b++) {
     const cos = Math.min(1, Math.max(0, east * sunEast[b] + north * sunNorth[b] + up * sunUp[b]))
-    const through = beamTable === null ? cos : cos * tableAt(beamTable, cos * INCIDENCE_STEPS)
-    const around = losesDiffuse ? through : cos
-    const diffuse = around * aroundSunWm2[b] + dome * domeWm2[b] + horizon * horizonWm2[b]
+    const lit = shade === null ? cos : cos * litShare(shade, frame, sunEast[b], sunNorth[b], sunUp[b])
+    const through = beamTable === null ? lit : lit * tableAt(beamTable, cos * INCIDENCE_STEPS)
+    const even = dome * domeWm2[b] + horizon * horizonWm2[b]
+    const diffuse = (losesDiffuse ? through : lit) * aroundSunWm2[b] + (even > 0 ? even * evenShare : even)
     const each = beamWm2[b] * through + Math.max(0, diffuse) + ground * groundWm2[b]
     out[at + b] = each
     sum += each

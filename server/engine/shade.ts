@@ -81,7 +81,7 @@ export function fillLit(
 type Direction = [east: number, north: number, up: number]
 
 /** The deck's own directions. */
-interface Frame {
+export interface Frame {
   nose: Direction
   right: Direction
   up: Direction
@@ -91,17 +91,20 @@ const NOSE = { pitchRad: Math.PI / 2, rollRad: 0 }
 const RIGHT = { pitchRad: 0, rollRad: Math.PI / 2 }
 const DECK = { pitchRad: 0, rollRad: 0 }
 
-function frameOf(headingRad: number, gradeRad: number): Frame {
+/** The deck of a car on the road. */
+export function frameOf(headingRad: number, gradeRad: number): Frame {
   const along = (part: typeof DECK): Direction => panelNormal(part.pitchRad, part.rollRad, headingRad, gradeRad)
   return { nose: along(NOSE), right: along(RIGHT), up: along(DECK) }
 }
 
-function liftedFrame(headingRad: number, tiltRad: number, azimuthRad: number): Frame {
+/** The deck of a lifted array. */
+export function liftedFrame(headingRad: number, tiltRad: number, azimuthRad: number): Frame {
   const along = (part: typeof DECK): Direction => liftedNormal(part, headingRad, tiltRad, azimuthRad)
   return { nose: along(NOSE), right: along(RIGHT), up: along(DECK) }
 }
 
-function litShare({ edges }: Shade, frame: Frame, east: number, north: number, up: number): number {
+/** Share of the beam that a shade leaves, by the apparent sun's direction, length 1. */
+export function litShare({ edges }: Shade, frame: Frame, east: number, north: number, up: number): number {
   const on = (d: Direction): number => d[0] * east + d[1] * north + d[2] * up
   const place = ringPlace(edges, Math.atan2(on(frame.right), on(frame.nose)))
   const heightRad = ringValue(edges.columns[0], place)

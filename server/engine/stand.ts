@@ -51,3 +51,19 @@ export function aimAtSun(stand: Stand, east: number, north: number, up: number):
   const bestRad = Math.atan2(towards, up)
   return { tiltRad: Math.min(stand.tiltMaxRad, Math.max(stand.tiltMinRad, bestRad)), azimuthRad }
 }
+
+/**
+ * The pose of an array that is turned off a pose by an angle; limits of the stand are not looked at.
+ *
+ * @param offRad     angle between the two directions, 0..π. [rad]
+ * @param towardsRad direction of the turn: 0 tilts on, a quarter circle turns clockwise. [rad]
+ * @returns tilt 0..π, azimuth 0..2π. [rad]
+ * @source worked by hand on the sphere
+ */
+export function turnedOff({ tiltRad, azimuthRad }: Pose, offRad: number, towardsRad: number): Pose {
+  const along = Math.sin(offRad) * Math.cos(towardsRad)
+  const aside = Math.sin(offRad) * Math.sin(towardsRad)
+  const level = Math.cos(offRad) * Math.sin(tiltRad) + along * Math.cos(tiltRad)
+  const up = Math.cos(offRad) * Math.cos(tiltRad) - along * Math.sin(tiltRad)
+  return { tiltRad: Math.atan2(Math.hypot(level, aside), up), azimuthRad: turn(azimuthRad + Math.atan2(aside, level)) }
+}

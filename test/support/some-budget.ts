@@ -1,6 +1,6 @@
 import type { BudgetDocument, DayBudget } from '../../server/documents/budget.ts'
 import { checkDocument } from '../../server/documents/check.ts'
-import { forecastDocuments, forecastRequest } from '../../server/documents/forecast.ts'
+import { type ForecastRequest, forecastDocuments, forecastRequest } from '../../server/documents/forecast.ts'
 import { InputError } from '../../server/engine/input-error.ts'
 import { someCar, someRace, someRoute, someSky } from './scenario.ts'
 
@@ -15,8 +15,8 @@ export interface Request {
   learned?: Record<string, object>
 }
 
-/** The budget of the usual scenario after a change. */
-export function budget(change: (request: Request) => void = () => undefined): BudgetDocument {
+/** The usual scenario after a change, checked. */
+export function checkedRequest(change: (request: Request) => void = () => undefined): ForecastRequest {
   const request: Request = {
     car: someCar(),
     race: someRace(),
@@ -27,8 +27,11 @@ export function budget(change: (request: Request) => void = () => undefined): Bu
   change(request)
   const { document, problems } = checkDocument(forecastRequest, request)
   if (document === undefined) throw new Error(JSON.stringify(problems))
-  return forecastDocuments(document)
+  return document
 }
+
+/** The budget of the usual scenario after a change. */
+export const budget = (change?: (request: Request) => void): BudgetDocument => forecastDocuments(checkedRequest(change))
 
 export const oneDay = (change?: (request: Request) => void): DayBudget => budget(change).days[0]
 
