@@ -43,25 +43,25 @@ export interface Warming {
  * @source one thermal node (common practice): steady rise heat/G, time constant C/G
  */
 export function warmedC(heat: PackHeat, { startC, airC, heatW, isMoving }: Warming, durationS: number): number {
-  const lossWPerC = isMoving ? heat.movingWPerC : heat.parkedWPerC
-  if (lossWPerC === 0) return startC + (heatW * durationS) / heat.capacityJPerC
-  const steadyC = airC + heatW / lossWPerC
-  return steadyC + (startC - steadyC) * Math.exp((-lossWPerC * durationS) / heat.capacityJPerC)
+  const decays = ((isMoving ? heat.movingWPerC : heat.parkedWPerC) * durationS) / heat.capacityJPerC
+  const gainC = (heatW * durationS) / heat.capacityJPerC
+  return startC + (airC - startC) * -Math.expm1(-decays) + gainC * meanDecay(decays)
 }
+
+/** Mean of exp(−t) from 0 to k: (1 − exp(−k))/k. */
+const meanDecay = (k: number): number => (k > 0 ? -Math.expm1(-k) / k : 1)
 
 /**
  * The pack's temperature after standing idle, the air going evenly from what it was to what it is.
  *
- * Exact for such air: T = air − s·τ + (T₀ − air₀ + s·τ)·exp(−t/τ), s the air's change per second, τ = C/G parked.
+ * Exact for such air: T = air + (T₀ − air₀)·exp(−k) − (air − air₀)·(1 − exp(−k))/k, k = G·t/C parked.
  *
  * @param last what was last known
  * @param now  the air's temperature [C] and the instant
  * @returns [C]
  */
 export function idleC(heat: PackHeat, last: Warmth, now: { airC: number; atMs: number }): number {
-  const durationS = (now.atMs - last.atMs) / 1000
-  if (!(durationS > 0) || heat.parkedWPerC === 0) return last.packC
-  const tauS = heat.capacityJPerC / heat.parkedWPerC
-  const lagC = ((now.airC - last.airC) / durationS) * tauS
-  return now.airC - lagC + (last.packC - last.airC + lagC) * Math.exp(-durationS / tauS)
+  const decays = (heat.parkedWPerC * Math.max(now.atMs - last.atMs, 0)) / 1000 / heat.capacityJPerC
+  const awayC = (last.packC - last.airC) * Math.exp(-decays)
+  return now.airC + awayC - (now.airC - last.airC) * meanDecay(decays)
 }

@@ -218,7 +218,9 @@ describe('the pack as one warm body, by hand', () => {
 
   it('without loss to the air 25 kJ warm it by 1 °C', () => {
     const closed = { ...heat, movingWPerC: 0 }
-    expect(warmedC(closed, { startC: 20, airC: -5, heatW: 50, isMoving: true }, 500)).toBeCloseTo(21, 12)
+    const body = { startC: 20, airC: -5, heatW: 50, isMoving: true }
+    expect(warmedC(closed, body, 500)).toBeCloseTo(21, 12)
+    expect(warmedC({ ...heat, movingWPerC: 5e-324 }, body, 500)).toBeCloseTo(21, 12)
   })
 
   it('does not depend on the length of the steps', () => {

@@ -3,6 +3,7 @@ import type { CarInput } from '../../server/documents/car.ts'
 import type { RaceInput } from '../../server/documents/race.ts'
 import type { SkyInput } from '../../server/documents/sky.ts'
 import type { SpeedsInput } from '../../server/documents/speeds.ts'
+import { anyDepartures } from './arbitrary.ts'
 import { someCar, someRoute } from './scenario.ts'
 
 const number = (min: number, max: number) => fc.double({ min, max, noNaN: true })
@@ -18,14 +19,15 @@ const anyTourCar: fc.Arbitrary<CarInput> = fc
     parallelCells: fc.integer({ min: 2, max: 30 }),
     reservePct: number(0, 40),
     regenerationPct: number(0, 95),
+    departures: anyDepartures,
   })
-  .map(({ dragAreaM2, motorMaxNm, parallelCells, reservePct, regenerationPct }) => {
+  .map(({ dragAreaM2, motorMaxNm, parallelCells, reservePct, regenerationPct, departures }) => {
     const car = someCar()
     return {
       ...car,
       body: { ...car.body, dragAreaM2 },
       drive: { ...car.drive, motorMaxNm, regenerationPct },
-      pack: { ...car.pack, parallelCells, reservePct },
+      pack: { ...car.pack, parallelCells, reservePct, ...departures },
     }
   })
 

@@ -39,6 +39,39 @@ const array = fc.record({
 const besides = (channels: number, i: number): string[] =>
   Array.from({ length: channels - 1 }, (_, c) => `tracker ${i + 1}.${c + 1}`)
 
+/** How a pack may depart from cells that are alike, as warm as the air and of one resistance. */
+export const anyDepartures: fc.Arbitrary<Partial<CarInput['pack']>> = fc
+  .record({
+    weakestCell: seldom(
+      fc.record({
+        capacityDeficitPct: number(0, 40),
+        chargeOffsetPct: number(-20, 20),
+        extraResistancePct: number(0, 300),
+      }),
+    ),
+    heat: seldom(
+      fc.record({ capacityKjPerC: number(1, 100), lossMovingWPerC: number(0, 50), lossParkedWPerC: number(0, 20) }),
+    ),
+    coldFactor: seldom(number(1, 4)),
+    emptyFactor: number(1, 3),
+  })
+  .map(({ weakestCell, heat, coldFactor, emptyFactor }) => ({
+    ...(weakestCell === undefined ? {} : { weakestCell }),
+    // A pack that may warm up keeps working: else more sun may rightly bring less.
+    ...(heat === undefined ? {} : { heat, chargeTemps: { maxC: 120 }, dischargeTemps: { maxC: 120 } }),
+    ...(coldFactor === undefined
+      ? {}
+      : {
+          ohmFactors: {
+            tempsC: [-10, 25],
+            rows: [
+              { chargePct: 0, factors: [coldFactor * emptyFactor, emptyFactor] },
+              { chargePct: 30, factors: [coldFactor, 1] },
+            ],
+          },
+        }),
+  }))
+
 /** A valid car: light or heavy, slick or blunt, with a small or large pack. */
 export const anyCar: fc.Arbitrary<CarInput> = fc
   .record({
@@ -54,6 +87,7 @@ export const anyCar: fc.Arbitrary<CarInput> = fc
     cellOhm: number(0.001, 0.2),
     coulombicPct: number(90, 100),
     reservePct: number(0, 40),
+    departures: anyDepartures,
   })
   .map((a) => {
     const car = someCar()
@@ -115,6 +149,7 @@ export const anyCar: fc.Arbitrary<CarInput> = fc
         cellOhm: a.cellOhm,
         coulombicPct: a.coulombicPct,
         reservePct: a.reservePct,
+        ...a.departures,
       },
     }
   })

@@ -83,11 +83,23 @@ export const carExample: CarInput = {
       { chargePct: 100, restingV: 4.17 },
     ],
     cellOhm: 0.032,
+    ohmFactors: {
+      tempsC: [0, 25, 45],
+      rows: [
+        { chargePct: 0, factors: [3.4, 1.6, 1.3] },
+        { chargePct: 20, factors: [2.2, 1.05, 0.85] },
+        { chargePct: 80, factors: [2, 1, 0.8] },
+        { chargePct: 100, factors: [2.2, 1.1, 0.9] },
+      ],
+    },
     leadsOhm: 0.012,
     cellMaxV: 4.2,
     cellMinV: 2.8,
     cellChargeMaxA: 1.7,
     cellDischargeMaxA: 6.8,
+    chargeTemps: { minC: 0, fullFromC: 10, fullToC: 42, maxC: 45 },
+    weakestCell: { capacityDeficitPct: 2, extraResistancePct: 15 },
+    heat: { capacityKjPerC: 26, lossMovingWPerC: 9, lossParkedWPerC: 3 },
     reservePct: 15,
   },
 }

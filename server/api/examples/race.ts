@@ -5,6 +5,7 @@ export const raceExample: RaceInput = {
   name: 'Plateau Run, short Saturday',
   zone: 'Africa/Windhoek',
   openingPct: 62,
+  openingPackC: 18,
   days: [
     {
       date: '2026-10-17',
