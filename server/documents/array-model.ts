@@ -2,7 +2,7 @@ import { prepareArray } from '../engine/array.ts'
 import type { Panel, PreparedArray } from '../engine/array.ts'
 import { CAR_COOLING } from '../engine/cell-temperature.ts'
 import type { CellReference } from '../engine/cell.ts'
-import type { StringModel } from '../engine/string.ts'
+import type { CellFault, StringModel } from '../engine/substrings.ts'
 import type { CarDocument } from './car.ts'
 import { shadeModel } from './horizon-model.ts'
 
@@ -85,9 +85,24 @@ function stringModel(car: CarDocument, string: CarDocument['strings'][number]): 
     groups: string.cells.map((group) => ({
       panel: car.panels.findIndex((p) => p.name === group.panel),
       cellsInSeries: group.inSeries,
+      bypassDiodes: group.bypassDiodes,
     })),
+    faults: string.faults.map((fault) => cellFault(string, fault)),
     cellsInParallel: string.inParallel,
     soilingFraction: string.soilingPct / 100,
     bypassV: string.bypassDropV,
+  }
+}
+
+function cellFault(
+  string: CarDocument['strings'][number],
+  fault: CarDocument['strings'][number]['faults'][number],
+): CellFault {
+  return {
+    group: string.cells.findIndex((group) => group.panel === fault.panel),
+    diode: fault.underDiode - 1,
+    cells: fault.cells,
+    kind: fault.kind,
+    lightShare: fault.kind === 'weak' ? fault.lightPct / 100 : 0,
   }
 }

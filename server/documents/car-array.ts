@@ -1,6 +1,6 @@
 import { z } from 'zod'
 import { shade } from './horizon.ts'
-import { count, label, quantity } from './quantity.ts'
+import { label, quantity } from './quantity.ts'
 
 /** One kind of cell by the five values of its single diode. */
 export const cellType = z.strictObject({
@@ -52,25 +52,6 @@ export const panel = z.strictObject({
     .describe('incidence-angle modifier; none: no loss at any angle')
     .default('martin-ruiz'),
   shade,
-})
-
-/** Cells in series on one tracker. */
-export const string = z.strictObject({
-  name: label('name of the string'),
-  tracker: label('name of the tracker that holds it'),
-  alsoTrackers: z
-    .array(label('name of a tracker'))
-    .max(12)
-    .describe('trackers beside it that share the current evenly')
-    .default([]),
-  cellType: label('name of its cell type'),
-  cells: z
-    .array(z.strictObject({ panel: label('name of the panel'), inSeries: count(1, 500, 'cells in series there') }))
-    .min(1)
-    .max(12),
-  inParallel: count(1, 20, 'such rows of cells in parallel').default(1),
-  soilingPct: quantity(0, 90, 'light lost to dust [%]').default(0),
-  bypassDropV: quantity(0, 2, 'forward drop of a bypass diode [V]').default(0.5),
 })
 
 /** How the lifted array can be held. */

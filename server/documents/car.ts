@@ -1,8 +1,9 @@
 import { z } from 'zod'
-import { cellType, panel, stand, string } from './car-array.ts'
+import { cellType, panel, stand } from './car-array.ts'
 import { auxiliaries, body } from './car-body.ts'
 import { drive } from './car-drive.ts'
 import { pack } from './car-pack.ts'
+import { string } from './car-string.ts'
 import { meter, tracker } from './car-tracker.ts'
 import { label } from './quantity.ts'
 

@@ -1,6 +1,6 @@
 import { deSoto, maximumPower } from './cell.ts'
 import type { LitPanel } from './panel-light.ts'
-import type { StringModel } from './string.ts'
+import type { StringModel } from './substrings.ts'
 
 /** Panels with one orientation, one cover and no shade of their own: they see the same light. */
 export type Face = Pick<LitPanel, 'pitchRad' | 'rollRad' | 'lifts' | 'beamTable' | 'losesDiffuse' | 'shade'>
@@ -64,7 +64,8 @@ function partsOf(string: StringModel, faceOf: number[]): SpanningString {
     const known = parts.faces.indexOf(face)
     const at = known < 0 ? parts.faces.push(face) - 1 : known
     parts.cellsW[at] = (parts.cellsW[at] ?? 0) + perWm2 * best.W * cellsInSeries
-    parts.pastW[at] = (parts.pastW[at] ?? 0) + perWm2 * best.A * string.bypassV * bypassDiodes
+    const pastV = bypassDiodes === 0 ? Infinity : string.bypassV * bypassDiodes
+    parts.pastW[at] = (parts.pastW[at] ?? 0) + perWm2 * best.A * pastV
   }
   return parts
 }

@@ -1,25 +1,11 @@
 import type { ArrayModel, ArraySteps, Panel } from './array.ts'
 import type { Cooling } from './cell-temperature.ts'
 import { InputError } from './input-error.ts'
+import { positive, within } from './number-check.ts'
 import type { Stand } from './stand.ts'
-import type { StringModel } from './string.ts'
+import { checkString } from './string-check.ts'
 
 const RIGHT_ANGLE_RAD = Math.PI / 2
-
-function within(field: string, value: number, least: number, most: number, unit: string): void {
-  if (value >= least && value <= most) return
-  throw new InputError('out-of-range', field, `is ${value}${unit}, expected ${least} to ${most}${unit}`)
-}
-
-function positive(field: string, value: number, unit: string): void {
-  if (value > 0 && value < Infinity) return
-  throw new InputError('out-of-range', field, `is ${value}${unit}, expected more than 0${unit}`)
-}
-
-function wholeFrom(field: string, value: number, least: number): void {
-  if (Number.isInteger(value) && value >= least) return
-  throw new InputError('not-whole', field, `is ${value}, expected a whole number from ${least} up`)
-}
 
 function checkCooling(field: string, cooling: Cooling): void {
   within(`${field}.capacityJm2K`, cooling.capacityJm2K ?? 0, 0, 1e6, ' J/m²K')
@@ -47,31 +33,6 @@ function checkStand(stand: Stand): void {
   within('stand.azimuthFromRad', stand.azimuthFromRad, -4 * Math.PI, 4 * Math.PI, ' rad')
   within('stand.azimuthToRad', stand.azimuthToRad, -4 * Math.PI, 4 * Math.PI, ' rad')
   within('stand.reaimS', stand.reaimS, 0, 86_400, ' s')
-}
-
-function checkString(field: string, string: StringModel, panels: number): void {
-  const { cell } = string
-  positive(`${field}.cell.lightA`, cell.lightA, ' A')
-  positive(`${field}.cell.saturationA`, cell.saturationA, ' A')
-  within(`${field}.cell.seriesOhm`, cell.seriesOhm, 0, 1000, ' Ω')
-  positive(`${field}.cell.shuntOhm`, cell.shuntOhm, ' Ω')
-  positive(`${field}.cell.modifiedIdealityV`, cell.modifiedIdealityV, ' V')
-  within(`${field}.cell.currentCoefficientAPerC`, cell.currentCoefficientAPerC, -1, 1, ' A/K')
-  within(`${field}.cell.bandGapEv`, cell.bandGapEv, 0.1, 5, ' eV')
-  within(`${field}.cell.bandGapPerC`, cell.bandGapPerC, -0.01, 0.01, ' 1/K')
-  wholeFrom(`${field}.cellsInParallel`, string.cellsInParallel, 1)
-  within(`${field}.soilingFraction`, string.soilingFraction, 0, 1, '')
-  within(`${field}.bypassV`, string.bypassV, 0, 1000, ' V')
-  if (string.groups.length === 0)
-    throw new InputError('empty', `${field}.groups`, 'is empty, expected one group or more')
-  string.groups.forEach((group, g) => {
-    const at = `${field}.groups[${g}]`
-    wholeFrom(`${at}.panel`, group.panel, 0)
-    if (group.panel >= panels)
-      throw new InputError('unknown-panel', `${at}.panel`, `is ${group.panel}, expected one of ${panels} panels from 0`)
-    wholeFrom(`${at}.cellsInSeries`, group.cellsInSeries, 1)
-    if (group.bypassDiodes !== undefined) wholeFrom(`${at}.bypassDiodes`, group.bypassDiodes, 1)
-  })
 }
 
 /** @throws InputError that names the array's first wrong field, its value and what was expected */

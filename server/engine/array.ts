@@ -18,7 +18,7 @@ import { aimAlong } from './pointing.ts'
 import { fillLit, type ShadeRow, shade } from './shade.ts'
 import type { Stand } from './stand.ts'
 import { fillStrings, type PreparedStrings, prepareStrings } from './string-harvest.ts'
-import type { StringModel } from './string.ts'
+import type { StringModel } from './substrings.ts'
 
 /** One flat facet of the array. */
 export interface Panel {
@@ -129,10 +129,10 @@ export function prepareArray(model: ArrayModel): PreparedArray {
  * What every string could give at its best point, step by step, and the light and warmth of every panel.
  *
  * Beam, sky and ground on each panel from the apparent sun; cells warmed by all light on the plane, in time where the
- * steps tell their lengths; power of one-panel strings from tables (within 0.04 %), of strings over several panels
- * solved exactly with their bypass diodes. Lifted, the car's own up direction is turned to where the stand aims
- * (`pointing.ts`), and lifting panels keep their pitch and roll on it; the stand holds the array, so grade does not
- * count. Darkness gives exactly 0 W.
+ * steps tell their lengths; power of strings in one light from tables (within 0.04 %), of others solved with their
+ * bypass diodes (within 0.01 %). Lifted, the car's own up direction is turned to where the stand aims (`pointing.ts`),
+ * and lifting panels keep their pitch and roll on it; the stand holds the array, so grade does not count. Darkness gives
+ * exactly 0 W.
  *
  * @throws InputError when a list has another length than the weather, or steps are lifted without a stand
  */

@@ -31,10 +31,10 @@ export interface OperatingPoint {
 }
 
 /** Boltzmann constant over the elementary charge: CODATA 2018. [eV/K] */
-const BOLTZMANN_EV_PER_K = 8.617333262e-5
-const ZERO_C_K = 273.15
-const REFERENCE_K = 25 + ZERO_C_K
-const REFERENCE_WM2 = 1000
+export const BOLTZMANN_EV_PER_K = 8.617333262e-5
+export const ZERO_C_K = 273.15
+export const REFERENCE_K = 25 + ZERO_C_K
+export const REFERENCE_WM2 = 1000
 /** Newton's steps stop when they move the diode's voltage by less than this share of its scale. */
 const CLOSE_ENOUGH = 1e-13
 const MOST_STEPS = 100

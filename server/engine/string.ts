@@ -1,5 +1,4 @@
 import {
-  type CellReference,
   currentAtVoltage,
   type Diode,
   deSoto,
@@ -9,45 +8,29 @@ import {
   type OperatingPoint,
   openCircuitV,
 } from './cell.ts'
+import { type StringModel, substringsOf } from './substrings.ts'
 
-export type { CellReference } from './cell.ts'
-
-/** Cells of a string that share one panel, and so one light and one temperature. */
-export interface CellGroup {
-  /** Index of the panel that carries them. */
-  panel: number
-  cellsInSeries: number
-  /** Diodes that let current past them, in series; 1 where left out. */
-  bypassDiodes?: number
-}
-
-/** Cells in series that feed one tracker; they may span panels. */
-export interface StringModel {
-  name: string
-  /** One cell at 1000 W/m², 25 °C. */
-  cell: CellReference
-  groups: CellGroup[]
-  cellsInParallel: number
-  /** Share of the light that dust takes, 0..1. */
-  soilingFraction: number
-  /** Voltage lost over one bypass diode that carries the string's current. [V] */
-  bypassV: number
-}
-
-/** A group in its light: one cell's curve, how many in series, and what going past them costs. */
-export interface LitGroup {
+/** Equal cells in series: one cell's curve and how many. */
+export interface LitCells {
   diode: Diode
   cells: number
+}
+
+/** A substring in its light: its cells, and what going past them costs; Infinity where nothing lets current past. */
+export interface LitSubstring {
+  parts: LitCells[]
   dropV: number
 }
 
-/** Currents between which the same groups carry the string, `on` from brightest to weakest; the others are bypassed. */
+/** Currents between which the same cells carry the string; the other substrings are bypassed. */
 interface Run {
-  on: LitGroup[]
+  on: LitCells[]
+  /** That of `on` with the least light, whose junction voltage marks the place on the curve. */
+  weakest: LitCells
   lostV: number
   /** The run's highest current. [A] */
   mostA: number
-  /** Junction voltages of the weakest group at the run's highest and lowest current. [V] */
+  /** Junction voltages of the weakest cells at the run's highest and lowest current. [V] */
   lowX: number
   highX: number
 }
@@ -68,43 +51,78 @@ const MOST_STEPS = 100
 const CLOSE_ENOUGH = 1e-8
 
 /**
- * The string's groups in the light and temperature that each panel has.
+ * The string's substrings in the light and temperature that each panel has.
  *
  * @param effectiveWm2  light past the cover per panel, before soiling. [W/m²]
  * @param cellC         cell temperature per panel. [°C]
  */
-export function litGroups(string: StringModel, effectiveWm2: ArrayLike<number>, cellC: ArrayLike<number>): LitGroup[] {
-  return string.groups.map((group) => ({
-    diode: deSoto(string.cell, effectiveWm2[group.panel] * (1 - string.soilingFraction), cellC[group.panel]),
-    cells: group.cellsInSeries,
-    dropV: string.bypassV * (group.bypassDiodes ?? 1),
+export function litSubstrings(
+  string: StringModel,
+  effectiveWm2: ArrayLike<number>,
+  cellC: ArrayLike<number>,
+): LitSubstring[] {
+  return substringsOf(string).map(({ panel, parts, dropV }) => ({
+    dropV,
+    parts: parts.map(({ cells, lightShare }) => ({
+      cells,
+      diode: deSoto(string.cell, effectiveWm2[panel] * lightShare, cellC[panel]),
+    })),
   }))
 }
 
-/** Current of one cell at which a group's voltage has sunk to its bypass drop; more goes past it. [A] */
-const letsPastA = ({ diode, cells, dropV }: LitGroup): number =>
-  diode.lightA > 0 ? currentAtVoltage(diode, -dropV / cells) : 0
+const weakestOf = (parts: LitCells[]): LitCells =>
+  parts.reduce((weak, each) => (each.diode.lightA < weak.diode.lightA ? each : weak))
 
-function runsOf(groups: LitGroup[]): Run[] {
-  const ranked = groups.map((group) => ({ group, pastA: letsPastA(group) })).sort((a, b) => b.pastA - a.pastA)
+const openV = (parts: LitCells[]): number =>
+  parts.reduce((sum, { diode, cells }) => sum + cells * openCircuitV(diode), 0)
+
+/** Current at which the weakest cells alone use up a voltage and all that the others can give. [A] */
+function mostThroughA(parts: LitCells[], weakest: LitCells, volts: number): number {
+  const others = openV(parts.filter((part) => part !== weakest))
+  return junctionCurrentA(weakest.diode, -(volts + others) / weakest.cells)
+}
+
+/** Current at which a substring's voltage has sunk to its bypass drop; more goes past it. 0 where a cell is dark. [A] */
+function letsPastA({ parts, dropV }: LitSubstring): number {
+  if (parts.some(({ diode }) => !(diode.lightA > 0))) return 0
+  if (dropV === Infinity) return Infinity
+  if (parts.length === 1) return currentAtVoltage(parts[0].diode, -dropV / parts[0].cells)
+  const weakest = weakestOf(parts)
+  const run = runBetween(parts, weakest, 0, 0, mostThroughA(parts, weakest, dropV))
+  return fallingRoot(run, heldAt(-dropV), run.highX).I
+}
+
+const runBetween = (on: LitCells[], weakest: LitCells, lostV: number, leastA: number, mostA: number): Run => ({
+  on,
+  weakest,
+  lostV,
+  mostA,
+  lowX: junctionV(weakest.diode, mostA),
+  highX: junctionV(weakest.diode, leastA),
+})
+
+/** From the highest currents, fewest cells and lowest voltages to the lowest currents. */
+function runsOf(substrings: LitSubstring[]): Run[] {
+  const ranked = substrings
+    .map((substring) => ({ substring, pastA: letsPastA(substring) }))
+    .sort((a, b) => b.pastA - a.pastA)
+  if (ranked.some(({ substring, pastA }) => pastA === 0 && substring.dropV === Infinity)) return []
   const runs: Run[] = []
-  ranked.forEach(({ group, pastA }, k) => {
+  ranked.forEach(({ pastA }, k) => {
     const nextA = k + 1 < ranked.length ? ranked[k + 1].pastA : 0
     if (!(pastA > nextA)) return
-    runs.push({
-      on: ranked.slice(0, k + 1).map((each) => each.group),
-      lostV: ranked.slice(k + 1).reduce((sum, each) => sum + each.group.dropV, 0),
-      mostA: pastA,
-      lowX: pastA * group.diode.seriesOhm - group.dropV / group.cells,
-      highX: junctionV(group.diode, nextA),
-    })
+    const on = ranked.slice(0, k + 1).flatMap((each) => each.substring.parts)
+    const weakest = weakestOf(on)
+    const mostA = pastA === Infinity ? mostThroughA(on, weakest, 0) : pastA
+    const lostV = ranked.slice(k + 1).reduce((sum, each) => sum + each.substring.dropV, 0)
+    if (mostA > nextA) runs.push(runBetween(on, weakest, lostV, nextA, mostA))
   })
   return runs
 }
 
-/** The string's curve where the weakest group's junction stands at x. */
+/** The string's curve where the weakest cells' junction stands at x. */
 function pointOf(run: Run, x: number): Point {
-  const weakest = run.on[run.on.length - 1].diode
+  const weakest = run.weakest.diode
   const I = junctionCurrentA(weakest, x)
   const point = { I, Ix: 0, Ixx: 0, V: -run.lostV, VI: 0, VII: 0 }
   for (const { diode, cells } of run.on) {
@@ -115,6 +133,7 @@ function pointOf(run: Run, x: number): Point {
     point.V += cells * (y - I * diode.seriesOhm)
     point.VI += cells * (1 / slope - diode.seriesOhm)
     point.VII -= (cells * bend) / slope ** 3
+    if (diode !== weakest) continue
     point.Ix = slope
     point.Ixx = bend
   }
@@ -125,7 +144,7 @@ function pointOf(run: Run, x: number): Point {
 function fallingRoot(run: Run, f: (point: Point) => { value: number; slope: number }, startX: number): Point {
   let { lowX, highX } = run
   let x = startX > lowX && startX < highX ? startX : 0.5 * (lowX + highX)
-  const scale = run.on[run.on.length - 1].diode.thermalV
+  const scale = run.weakest.diode.thermalV
   for (let step = 0; step < MOST_STEPS; step++) {
     const { value, slope } = f(pointOf(run, x))
     if (value > 0) lowX = x
@@ -145,27 +164,36 @@ function growth({ I, Ix, Ixx, V, VI, VII }: Point): { value: number; slope: numb
   return { value: Ix * Q, slope: Ixx * Q + Ix * Ix * (2 * VI + I * VII) }
 }
 
+/** What a voltage is over that of the curve, and its slope over x. */
+const heldAt =
+  (volts: number) =>
+  ({ V, VI, Ix }: Point): { value: number; slope: number } => ({ value: volts - V, slope: -VI * Ix })
+
+const isPlain = (substrings: LitSubstring[]): boolean => substrings.length === 1 && substrings[0].parts.length === 1
+
 /**
- * Best point of cells in series in unequal light: the best over every set of groups that can carry the current.
+ * Best point of cells in series in unequal light: the best over every set of substrings that can carry the current.
  *
- * A group gives way to its bypass diodes when the current would push its voltage below their drop. Between such currents
- * power has one hill; the highest hill is the answer, and hills that cannot be higher are not climbed. Exact; one group
- * alone is its cells' own best point.
+ * A substring gives way to its bypass diodes when the current would push its voltage below their drop. Between such
+ * currents power has one hill; the highest hill is the answer, and hills that cannot be higher are not climbed. Weak
+ * cells in a substring are driven backwards by the others until it gives way. Exact; cells in one light are their own
+ * best point.
  *
  * @returns point of one row of cells: W, V over the whole series, A. All dark gives exactly 0 W
  * @source Bishop 1988 for the cell's curve; bypass rule worked by hand
  */
-export function bestOfGroups(groups: LitGroup[]): OperatingPoint {
-  if (groups.length === 1) {
-    const best = maximumPower(groups[0].diode)
-    return { W: best.W * groups[0].cells, V: best.V * groups[0].cells, A: best.A }
+export function bestOfSubstrings(substrings: LitSubstring[]): OperatingPoint {
+  if (isPlain(substrings)) {
+    const [{ diode, cells }] = substrings[0].parts
+    const best = maximumPower(diode)
+    return { W: best.W * cells, V: best.V * cells, A: best.A }
   }
   let best = NOTHING
-  const runs = runsOf(groups)
+  const runs = runsOf(substrings)
   for (let r = runs.length - 1; r >= 0; r--) {
     const run = runs[r]
     if (run.mostA * pointOf(run, run.highX).V <= best.W) continue
-    const a = run.on[run.on.length - 1].diode.thermalV
+    const a = run.weakest.diode.thermalV
     const top = fallingRoot(run, growth, run.highX - a * Math.log1p(Math.max(0, run.highX) / a))
     if (top.I * top.V > best.W) best = { W: top.I * top.V, V: top.V, A: top.I }
   }
@@ -178,17 +206,14 @@ export function bestOfGroups(groups: LitGroup[]): OperatingPoint {
  * @param volts  voltage over the whole series, ≥ 0. [V]
  * @returns power of one row of cells. [W]
  */
-export function powerOfGroupsAtV(groups: LitGroup[], volts: number): number {
-  const open = groups.reduce(
-    (sum, { diode, cells, dropV }) => sum + (diode.lightA > 0 ? cells * openCircuitV(diode) : -dropV),
-    0,
-  )
-  if (!(volts > 0) || volts >= open) return 0
-  if (groups.length === 1) return volts * currentAtVoltage(groups[0].diode, volts / groups[0].cells)
-  const run = runsOf(groups).find((each) => pointOf(each, each.highX).V >= volts && pointOf(each, each.lowX).V <= volts)
-  if (run === undefined) return 0
-  const { I } = fallingRoot(run, (point) => ({ value: volts - point.V, slope: -point.VI * point.Ix }), run.highX)
-  return volts * I
+export function powerOfSubstringsAtV(substrings: LitSubstring[], volts: number): number {
+  if (!(volts > 0)) return 0
+  if (isPlain(substrings)) {
+    const [{ diode, cells }] = substrings[0].parts
+    return volts < cells * openCircuitV(diode) ? volts * currentAtVoltage(diode, volts / cells) : 0
+  }
+  const run = runsOf(substrings).find((each) => pointOf(each, each.highX).V > volts)
+  return run === undefined ? 0 : volts * fallingRoot(run, heldAt(volts), run.highX).I
 }
 
 /** Best power and voltage of a string in its panels' light; all rows of its cells together. */
@@ -197,7 +222,7 @@ export function stringBest(
   effectiveWm2: ArrayLike<number>,
   cellC: ArrayLike<number>,
 ): OperatingPoint {
-  const { W, V, A } = bestOfGroups(litGroups(string, effectiveWm2, cellC))
+  const { W, V, A } = bestOfSubstrings(litSubstrings(string, effectiveWm2, cellC))
   return { W: W * string.cellsInParallel, V, A: A * string.cellsInParallel }
 }
 
@@ -207,4 +232,4 @@ export const stringPowerAtV = (
   effectiveWm2: ArrayLike<number>,
   cellC: ArrayLike<number>,
   volts: number,
-): number => powerOfGroupsAtV(litGroups(string, effectiveWm2, cellC), volts) * string.cellsInParallel
+): number => powerOfSubstringsAtV(litSubstrings(string, effectiveWm2, cellC), volts) * string.cellsInParallel

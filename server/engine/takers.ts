@@ -65,7 +65,7 @@ export function takers(car: Car, { harvest, weather, steps }: BalanceDay): Taker
   const channels = car.trackers.map(channelsOf)
   const allStandbyW = channels.map((list) => list.reduce((total, one) => total + standbyOf(one), 0))
   const point = newOperatingPoint()
-  const best = car.array.strings.models.map(({ groups }): BestPoint => ({ W: 0, V: 0, hasHills: groups.length > 1 }))
+  const best = car.array.strings.plain.map((plain): BestPoint => ({ W: 0, V: 0, hasHills: plain === null }))
   const around: Surroundings = { packV: 0, airC: 0, isMoving: false }
   let step = 0
   const powerAtV = car.trackers.map((_, s) => (volts: number) => offBestW(car.array, s, step, harvest, volts))

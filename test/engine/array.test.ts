@@ -12,7 +12,8 @@ import { iamPhysical, martinRuizGround, martinRuizSky } from '../../server/engin
 import { liftedNormal } from '../../server/engine/panel-light.ts'
 import { aimAtSun, type Stand } from '../../server/engine/stand.ts'
 import { offBestW } from '../../server/engine/string-harvest.ts'
-import { stringBest, type StringModel } from '../../server/engine/string.ts'
+import { stringBest } from '../../server/engine/string.ts'
+import type { StringModel } from '../../server/engine/substrings.ts'
 
 const RAD = Math.PI / 180
 const rack = { kind: 'faiman', u0: 25, u1: 6.84 } as const

@@ -1,7 +1,7 @@
 import * as fc from 'fast-check'
 import type { ArrayModel, ArraySteps, Panel } from '../../server/engine/array.ts'
 import type { Stand } from '../../server/engine/stand.ts'
-import type { StringModel } from '../../server/engine/string.ts'
+import type { StringModel } from '../../server/engine/substrings.ts'
 
 export const RAD = Math.PI / 180
 

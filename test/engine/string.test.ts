@@ -3,12 +3,12 @@ import { describe, expect, it } from 'vitest'
 import { type CellReference, deSoto, maximumPower, voltageAtCurrent } from '../../server/engine/cell.ts'
 import { bestOfCells, exactBestOfCells, powerTable, TABLE_RANGE } from '../../server/engine/power-table.ts'
 import {
-  bestOfGroups,
-  type LitGroup,
-  powerOfGroupsAtV,
+  bestOfSubstrings,
+  type LitSubstring,
+  powerOfSubstringsAtV,
   stringBest,
-  type StringModel,
 } from '../../server/engine/string.ts'
+import type { StringModel } from '../../server/engine/substrings.ts'
 import { referenceRows } from '../support/reference.ts'
 
 /** The three kinds of string in test/reference/cell.csv: A and B silicon, C gallium arsenide, all invented. */
@@ -39,10 +39,11 @@ const CELL: CellReference = {
 
 describe('cells in series in unequal light', () => {
   /** A section with an almost square curve: best point at 10 V, open circuit 1 % above, as square as a double allows. */
-  function squareSection(sectionA: number, dropV: number): LitGroup {
+  function squareSection(sectionA: number, dropV: number): LitSubstring {
     const thermalV = 0.0145
     const saturationA = sectionA * Math.exp(-10.0947 / thermalV)
-    return { diode: { lightA: sectionA, saturationA, seriesOhm: 0, shuntOhm: 1e12, thermalV }, cells: 1, dropV }
+    const diode = { lightA: sectionA, saturationA, seriesOhm: 0, shuntOhm: 1e12, thermalV }
+    return { parts: [{ diode, cells: 1 }], dropV }
   }
 
   // Source: three worked cases of 10 V sections, computed by hand: min current of all, or the dark section bypassed.
@@ -53,23 +54,25 @@ describe('cells in series in unequal light', () => {
       { amps: [6, 6, 3], dropV: 0.05, expectedW: 119.7 },
     ]
     for (const { amps, dropV, expectedW } of CASES) {
-      const best = bestOfGroups(amps.map((each) => squareSection(each, dropV)))
+      const best = bestOfSubstrings(amps.map((each) => squareSection(each, dropV)))
       expect(Math.abs(best.W / expectedW - 1), `${amps.join()} gives ${best.W}`).toBeLessThan(0.0045)
     }
     // Source: by hand, 6·10 + 6·10 + 4.5·10: what the cells would give one by one.
-    const alone = [6, 6, 4.5].reduce((sum, each) => sum + maximumPower(squareSection(each, 0.5).diode).W, 0)
+    const alone = [6, 6, 4.5].reduce((sum, each) => sum + maximumPower(squareSection(each, 0.5).parts[0].diode).W, 0)
     expect(Math.abs(alone / 165 - 1)).toBeLessThan(0.002)
   })
 
-  const lit = (cells: number, light: number, celsius: number, dropV = 0.5): LitGroup => ({
-    diode: deSoto(CELL, light, celsius),
-    cells,
+  const lit = (cells: number, light: number, celsius: number, dropV = 0.5): LitSubstring => ({
+    parts: [{ diode: deSoto(CELL, light, celsius), cells }],
     dropV,
   })
   /** The string's voltage at a current, each group at its own or, where that is lower, at its bypass drop. */
-  const seriesV = (groups: LitGroup[], amps: number): number =>
-    groups.reduce((sum, { diode, cells, dropV }) => {
-      const own = diode.lightA > 0 ? cells * voltageAtCurrent(diode, amps) : -Infinity
+  const seriesV = (groups: LitSubstring[], amps: number): number =>
+    groups.reduce((sum, { parts, dropV }) => {
+      const own = parts.reduce(
+        (volts, { diode, cells }) => volts + (diode.lightA > 0 ? cells * voltageAtCurrent(diode, amps) : -Infinity),
+        0,
+      )
       return sum + Math.max(own, -dropV)
     }, 0)
 
@@ -85,7 +88,7 @@ describe('cells in series in unequal light', () => {
     ])
       for (const warm of [-5, 25, 65]) {
         const groups = lights.map((light, i) => lit(10 + 4 * i, light, warm + 3 * i))
-        const best = bestOfGroups(groups)
+        const best = bestOfSubstrings(groups)
         let scanned = 0
         for (let amps = 0.002; amps < 7; amps += 0.002) scanned = Math.max(scanned, amps * seriesV(groups, amps))
         expect(best.W, `${lights.join()} at ${warm} °C`).toBeGreaterThanOrEqual(scanned * (1 - 1e-9))
@@ -102,10 +105,10 @@ describe('cells in series in unequal light', () => {
     fc.assert(
       fc.property(light, light, warmth, (one, other, celsius) => {
         const groups = [lit(20, one, celsius), lit(12, other, celsius)]
-        const alone = groups.reduce((sum, group) => sum + bestOfGroups([group]).W, 0)
-        expect(bestOfGroups(groups).W).toBeLessThanOrEqual(alone * (1 + 1e-9))
-        const split = bestOfGroups([lit(20, one, celsius), lit(12, one, celsius)]).W
-        expect(Math.abs(split / bestOfGroups([lit(32, one, celsius)]).W - 1)).toBeLessThan(1e-9)
+        const alone = groups.reduce((sum, group) => sum + bestOfSubstrings([group]).W, 0)
+        expect(bestOfSubstrings(groups).W).toBeLessThanOrEqual(alone * (1 + 1e-9))
+        const split = bestOfSubstrings([lit(20, one, celsius), lit(12, one, celsius)]).W
+        expect(Math.abs(split / bestOfSubstrings([lit(32, one, celsius)]).W - 1)).toBeLessThan(1e-9)
       }),
       { numRuns: 300 },
     )
@@ -117,23 +120,23 @@ describe('cells in series in unequal light', () => {
       [lit(20, 900, 45), lit(18, 400, 45)],
       [lit(20, 900, 45), lit(18, 0, 20)],
     ]) {
-      const best = bestOfGroups(groups)
-      expect(Math.abs(powerOfGroupsAtV(groups, best.V) / best.W - 1)).toBeLessThan(1e-9)
+      const best = bestOfSubstrings(groups)
+      expect(Math.abs(powerOfSubstringsAtV(groups, best.V) / best.W - 1)).toBeLessThan(1e-9)
       for (const volts of [0.2, 2, 5, 9, 11, 14, 18, 21, 24, 26]) {
-        const watts = powerOfGroupsAtV(groups, volts)
+        const watts = powerOfSubstringsAtV(groups, volts)
         expect(watts).toBeLessThanOrEqual(best.W * (1 + 1e-12))
         if (watts > 0) expect(seriesV(groups, watts / volts)).toBeCloseTo(volts, 6)
         else expect(seriesV(groups, 1e-6)).toBeLessThan(volts)
       }
-      expect(powerOfGroupsAtV(groups, 40)).toBe(0)
-      expect(powerOfGroupsAtV(groups, 0)).toBe(0)
+      expect(powerOfSubstringsAtV(groups, 40)).toBe(0)
+      expect(powerOfSubstringsAtV(groups, 0)).toBe(0)
     }
   })
 
   it('gives exactly nothing in the dark, and current past a dark group', () => {
-    expect(bestOfGroups([lit(20, 0, 10), lit(12, 0, 10)])).toEqual({ W: 0, V: 0, A: 0 })
-    const past = bestOfGroups([lit(20, 800, 25), lit(12, 0, 25)])
-    const alone = bestOfGroups([lit(20, 800, 25)])
+    expect(bestOfSubstrings([lit(20, 0, 10), lit(12, 0, 10)])).toEqual({ W: 0, V: 0, A: 0 })
+    const past = bestOfSubstrings([lit(20, 800, 25), lit(12, 0, 25)])
+    const alone = bestOfSubstrings([lit(20, 800, 25)])
     expect(past.W).toBeLessThan(alone.W)
     expect(past.W).toBeGreaterThan(alone.W - 0.5 * 5.2)
   })
