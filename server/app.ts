@@ -25,6 +25,7 @@ import { guardChanges } from './api/guard.ts'
 import { healthRoutes } from './api/health.ts'
 import { KINDS } from './api/kinds.ts'
 import { describeApi } from './api/openapi.ts'
+import { pointingRoute, statelessPointingRoute } from './api/pointing.ts'
 import { previewRoute } from './api/previews.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
 import { sessionRoutes } from './api/sessions.ts'
@@ -144,6 +145,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => forecastRoutes(scope, needs))
   void api.register(async (scope: Api) => statelessForecastRoute(scope, needs))
   void api.register(async (scope: Api) => statelessTrackerRoute(scope, needs))
+  void api.register(async (scope: Api) => statelessPointingRoute(scope, needs))
   void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
   dayRoutes(api, needs)
   exampleRoutes(api)
@@ -163,6 +165,7 @@ function addCrewRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => eventRoutes(scope, needs))
   keptReadingRoutes(api, needs, turns)
   followedRoute(api, needs)
+  pointingRoute(api, needs)
   trackerRoutes(api, needs)
   sharedRoute(api, needs)
 }

@@ -3,6 +3,7 @@ import { DOCUMENTS } from '../compute/documents.ts'
 import { openRequest } from '../compute/forecast-jobs.ts'
 import { openComparison } from '../compute/sky-jobs.ts'
 import { budgetDocument } from '../documents/budget.ts'
+import { pointingDocument } from '../documents/pointing.ts'
 import { readingDocument } from '../documents/reading.ts'
 import { skyComparison } from '../documents/sky-comparison.ts'
 import { speedsDocument } from '../documents/speeds.ts'
@@ -34,6 +35,7 @@ export const COMPONENTS: Record<string, Component> = {
   Budget: { schema: budgetDocument, direction: 'output' },
   TrackerDay: { schema: trackerDay, direction: 'output' },
   TrackerDays: { schema: trackerDays, direction: 'output' },
+  Pointing: { schema: pointingDocument, direction: 'output' },
   Problem: { schema: problemSchema, direction: 'output' },
 }
 

@@ -12,7 +12,8 @@ import { bytesOf, takeBodies } from './content.ts'
 import { named, routesOf } from './gather.ts'
 import { learnedLosses } from './make-forecast.ts'
 
-const ERRORS_OF_BOTH: ErrorCode[] = [
+/** Errors of every address that forecasts documents which come with the request. */
+export const STATELESS_ERRORS: ErrorCode[] = [
   'bad-query',
   'bad-json',
   'empty-body',
@@ -36,7 +37,7 @@ export function statelessForecastRoute(api: Api, needs: Needs): void {
       'Each document stands in the body or is named as { "id": "…" }; routes not given come from the store. With car and race named, trackers lose what the race’s readings show.',
     querystring: z.strictObject({}),
     body: openRequest,
-    response: answers({ 200: { description: 'the budget', schema: budgetDocument } }, ERRORS_OF_BOTH),
+    response: answers({ 200: { description: 'the budget', schema: budgetDocument } }, STATELESS_ERRORS),
   }
   api.post('/forecast', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
     const signal = clientGone(reply)
@@ -57,7 +58,7 @@ export function statelessTrackerRoute(api: Api, needs: Needs): void {
       'Takes the same body as /forecast. Each day is driven again at 1 km/h less and more, and once a tracker as if that were dead; with a date only that day is.',
     querystring: z.strictObject({}),
     body: openRequest,
-    response: answers({ 200: { description: 'the report', schema: trackerDays } }, ERRORS_OF_BOTH),
+    response: answers({ 200: { description: 'the report', schema: trackerDays } }, STATELESS_ERRORS),
   }
   api.post('/tracker-report', { schema, bodyLimit: DOCUMENT_LIMIT }, async (request, reply) => {
     const signal = clientGone(reply)

@@ -2,6 +2,7 @@ import { z } from 'zod'
 import { forecastDocuments, forecastRequest } from '../documents/forecast.ts'
 import { carDocument } from '../documents/car.ts'
 import type { LearnedLosses } from '../documents/learned.ts'
+import { pointingDocuments } from '../documents/pointing-day.ts'
 import { date, slug } from '../documents/quantity.ts'
 import { raceDocument } from '../documents/race.ts'
 import { routeDocument } from '../documents/route.ts'
@@ -87,6 +88,16 @@ export function forecastJson(input: ForecastInputs): string {
 export function trackerDaysJob(input: ForecastInputs): TrackerDaysDocument {
   const request = checked(forecastRequest, input, 'forecast request')
   return forecasting(() => trackerDaysOf(request))
+}
+
+/**
+ * Where to point the array on the days of whole documents, as JSON.
+ *
+ * @throws Fault as forecastJson
+ */
+export function pointingJson(input: ForecastInputs): string {
+  const request = checked(forecastRequest, input, 'forecast request')
+  return forecasting(() => JSON.stringify(pointingDocuments(request)))
 }
 
 /** Documents that do not fit together are a fault of the request, not of the service. */

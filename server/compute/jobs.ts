@@ -1,5 +1,5 @@
 import { type BodyInput, readDocument } from './file-jobs.ts'
-import { forecastJson, inputsHash, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
+import { forecastJson, inputsHash, pointingJson, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
 import type { ComputePool } from './pool.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 import { compareJson, readComparison } from './sky-jobs.ts'
@@ -10,6 +10,7 @@ export const JOBS = {
   'read-forecast-request': readForecastRequest,
   'inputs-hash': inputsHash,
   forecast: forecastJson,
+  point: pointingJson,
   'read-readings': readReadings,
   'judge-readings': judgeJob,
   learn: learnJob,

@@ -17,7 +17,7 @@ export interface Attempt {
   /** Document, or race's forecasts, that it would change. */
   touches: { kind: Kind | 'forecast'; id: string } | null
   /** Kind of document that an answer without error tells of, to be forecast with. */
-  yields: Kind | 'budget' | 'tracker-days' | null
+  yields: Kind | 'budget' | 'tracker-days' | 'pointing' | null
 }
 
 export const COLLECTIONS: Record<Kind, string> = { car: 'cars', route: 'routes', race: 'races', sky: 'skies' }

@@ -26,6 +26,13 @@ export const FORECAST_DOORS: Door[] = [
       }),
   },
   {
+    name: 'POST pointing',
+    count: 120,
+    takesDocuments: true,
+    attempt: (by) =>
+      sent('POST', '/api/v1/pointing', 'application/json', wrongRequest(by), { touches: null, yields: 'pointing' }),
+  },
+  {
     name: 'POST races/:id/forecasts',
     count: 200,
     takesDocuments: true,

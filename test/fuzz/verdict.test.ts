@@ -1,8 +1,9 @@
 import { describe, expect, test } from 'vitest'
 import { checkDocument } from '../../server/documents/check.ts'
 import { forecastDocuments, forecastRequest } from '../../server/documents/forecast.ts'
+import { pointingDocuments } from '../../server/documents/pointing-day.ts'
 import { WHOLE } from './bases.ts'
-import { budgetComplaint } from './verdict.ts'
+import { budgetComplaint, pointingComplaint } from './verdict.ts'
 
 const { document } = checkDocument(forecastRequest, WHOLE)
 if (document === undefined) throw new Error('the example is refused')
@@ -31,5 +32,27 @@ describe('a budget', () => {
 
   test('with an overfull pack is noticed', () => {
     expect(budgetComplaint(changed((day) => (day.series.chargePct[3] = 100.5)))).toContain('charge outside')
+  })
+})
+
+describe('a pointing table', () => {
+  const pointing = pointingDocuments(document)
+  const changed = (change: (day: (typeof pointing)['days'][number]) => void): typeof pointing => {
+    const copy = structuredClone(pointing)
+    change(copy.days[0])
+    return copy
+  }
+
+  test('as the engine makes it has nothing wrong', () => expect(pointingComplaint(pointing)).toBeNull())
+
+  test('with a wrong pose, a wrong figure, no reason or a gain by being off is noticed', () => {
+    const { windows } = pointing.days[0]
+    expect(windows.length).toBeGreaterThan(0)
+    expect(pointingComplaint(changed((day) => (day.windows[0].holds[0].tiltDeg = 91)))).toContain('tilt')
+    expect(pointingComplaint(changed((day) => (day.windows[0].holds[0].turnToDeg = -1)))).toContain('azimuth')
+    expect(pointingComplaint(changed((day) => (day.windows[0].total.flat.packWh = Number.NaN)))).toContain('no number')
+    expect(pointingComplaint(changed((day) => (day.windows = [])))).toContain('no reason')
+    const paying = changed((day) => (day.windows[0].total.off[2].stringsW *= 3))
+    expect(pointingComplaint(paying)).toContain('being off pays')
   })
 })

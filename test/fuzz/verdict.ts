@@ -1,6 +1,7 @@
 import type { LightMyRequestResponse } from 'fastify'
 import { ERRORS } from '../../server/errors.ts'
 import type { BudgetDocument, DayBudget } from '../../server/documents/budget.ts'
+import type { PointingDocument } from '../../server/documents/pointing.ts'
 import type { TrackerDaysDocument } from '../../server/documents/tracker-days.ts'
 import type { Attempt } from './attempt.ts'
 import { isObject, isRelated } from './json-path.ts'
@@ -46,6 +47,7 @@ export function complaint(attempt: Attempt, answer: LightMyRequestResponse): str
   if (statusCode !== 200 && statusCode !== 201) return `answered ${statusCode}`
   if (!String(answer.headers['content-type']).startsWith('application/json')) return null
   if (attempt.yields === 'tracker-days') return trackersComplaint(answer.json())
+  if (attempt.yields === 'pointing') return pointingComplaint(answer.json())
   return attempt.yields === 'budget' ? budgetComplaint(budgetIn(answer)) : null
 }
 
@@ -106,6 +108,26 @@ export function trackersComplaint(report: TrackerDaysDocument): string | null {
       const deniedWh = edges.reduce((sum, edge) => sum + edge.deniedWh, 0)
       if (inputWh + deniedWh > bestWh * (1 + GAP_SHARE) + GAP_WH) return `${name}: takes more than there is`
       if (lossWh < -GAP_WH || lossWh > inputWh * (1 + GAP_SHARE) + GAP_WH) return `${name}: loses ${lossWh} Wh`
+    }
+  }
+  return null
+}
+
+/** Share by which an array that is off or flat may beat the pose told: the search's own bound, cells warmed by it. */
+const BEATEN_SHARE = 0.02
+
+/** What is wrong with a pointing table: a figure that is none, a pose that cannot be, being off that pays. */
+export function pointingComplaint({ days }: PointingDocument): string | null {
+  if (days.length === 0) return 'a table without days'
+  if (!numbersIn(days).every(Number.isFinite)) return 'a figure that is no number'
+  for (const { date, windows, noWindow } of days) {
+    if ((windows.length === 0) !== (noWindow !== null)) return `${date}: no window and no reason, or both`
+    for (const { kind, holds, total } of windows) {
+      if (holds.some(({ tiltDeg }) => !(tiltDeg >= 0 && tiltDeg <= 90))) return `${date} ${kind}: a tilt beyond 90°`
+      if (holds.some(({ turnToDeg }) => !(turnToDeg >= 0 && turnToDeg <= 360))) return `${date} ${kind}: no azimuth`
+      const { best, flat, off } = total
+      const mostW = best.stringsW * (1 + BEATEN_SHARE) + 0.01
+      if ([flat, ...off].some(({ stringsW }) => stringsW > mostW)) return `${date} ${kind}: being off pays`
     }
   }
   return null
