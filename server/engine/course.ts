@@ -36,6 +36,9 @@ export interface Course {
   lengthM: number
 }
 
+/** Hills that rise or fall by so much are driven up and down; lower ones are levelled within a piece. [M] */
+const SWING_M = 5
+
 /** Longest piece of road with one grade, heading and limit. [M] */
 export const PIECE_M = 1000
 
@@ -87,7 +90,7 @@ export function course(roads: StageRoad[]): Course {
 function stagePieces(road: StageRoad): Pieces {
   const { fromM, toM, cutsM = [] } = road
   const within = cutsM.filter((m) => m > fromM && m < toM)
-  const all = pieces(road.points, road.stretches, { cutsM: [fromM, toM, ...within], lengthM: PIECE_M })
+  const all = pieces(road.points, road.stretches, { cutsM: [fromM, toM, ...within], lengthM: PIECE_M, swingM: SWING_M })
   const inside: number[] = []
   for (let i = 0; i < all.count; i++) {
     const middleM = all.fromM[i] + all.lengthM[i] / 2

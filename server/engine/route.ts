@@ -22,12 +22,17 @@ export interface Stretch {
   haltsPerM?: number
 }
 
+/** Summits and valleys nearer than this to another edge are no edges, so that pieces stay few. [m] */
+const TURN_APART_M = 150
+
 /** Where the road must be cut, and how long a piece is meant to be. */
 export interface Cutting {
   /** Places that must be edges of pieces: stages, stops. */
   cutsM: number[]
   /** Meant length of a piece; real ones are three quarters to one and a half of it, shorter only between two cuts. */
   lengthM: number
+  /** Summits and valleys that rise or fall by so much on both sides are edges too; none where left out. [m] */
+  swingM?: number
 }
 
 /** The road as the engine drives it: each piece with one grade, heading, limit and surface. */
@@ -53,7 +58,7 @@ export interface Pieces {
  * Cuts a road into pieces of about one length, exactly at the cuts and at the ends of stretches (to a millimetre).
  *
  * A piece's grade is that of a straight line between its ends and its heading that of the line between
- * them: hills and bends inside a piece are not seen. Where stretches overlap, the lowest limit holds and
+ * them: bends, and hills below the swing, inside a piece are not seen. Where stretches overlap, the lowest limit holds and
  * of the rest what the later stretch gives. Repeated points and points that stand still do no harm.
  *
  * @param points    at least two places that differ. [rad, rad, m]
@@ -69,7 +74,9 @@ export function pieces(points: RoadPoints, stretches: readonly Stretch[], cuttin
     throw new InputError('too-short', 'points', 'all points are one place, a road with length expected')
   checkStretches(stretches, totalM)
   checkCutting(cutting, totalM)
-  const edgesM = pieceEdges(fixedEdges(stretches, cutting.cutsM, totalM), cutting.lengthM)
+  const fixedM = fixedEdges(stretches, cutting.cutsM, totalM)
+  const turnsM = cutting.swingM === undefined ? [] : turns(points.altM, wayM, cutting.swingM)
+  const edgesM = pieceEdges(joined(fixedM, turnsM, TURN_APART_M), cutting.lengthM)
   const road = newPieces(edgesM.length - 1)
   placePieces(road, points, wayM, edgesM)
   for (const stretch of stretches) applyStretch(road, stretch)
@@ -118,11 +125,41 @@ function checkCutting({ cutsM, lengthM }: Cutting, totalM: number): void {
 
 /** Ways from the start that must be edges, ascending: cuts first, stretch ends where no cut is next to them. */
 function fixedEdges(stretches: readonly Stretch[], cutsM: readonly number[], totalM: number): number[] {
-  const fixed = [0, totalM]
-  for (const m of [...cutsM, ...stretches.flatMap(({ fromM, toM }) => [fromM, toM])]) {
-    if (m < totalM && fixed.every((edge) => Math.abs(edge - m) >= ONE_PLACE_M)) fixed.push(m)
+  const within = (ways: readonly number[]): number[] => ways.filter((m) => m < totalM).sort((a, b) => a - b)
+  const ends = stretches.flatMap(({ fromM, toM }) => [fromM, toM])
+  return joined(joined([0, totalM], within(cutsM), ONE_PLACE_M), within(ends), ONE_PLACE_M)
+}
+
+/** Two ascending lists as one; of the second only what is so far from all that is already there. */
+function joined(edgesM: readonly number[], moreM: readonly number[], apartM: number): number[] {
+  const out: number[] = []
+  let next = 0
+  for (const m of moreM) {
+    while (next < edgesM.length && edgesM[next] <= m) out.push(edgesM[next++])
+    const isFree = out.length === 0 || m - out[out.length - 1] >= apartM
+    if (isFree && (next === edgesM.length || edgesM[next] - m >= apartM)) out.push(m)
   }
-  return fixed.sort((a, b) => a - b)
+  while (next < edgesM.length) out.push(edgesM[next++])
+  return out
+}
+
+/** Summits and valleys in turn, as ways from the start: each lies so far above or below the ones beside it. */
+function turns(altM: Float64Array, wayM: Float64Array, swingM: number): number[] {
+  const found: number[] = []
+  let high = 0
+  let low = 0
+  let isRising: boolean | null = null
+  for (let i = 1; i < altM.length; i++) {
+    if (altM[i] > altM[high]) high = i
+    if (altM[i] < altM[low]) low = i
+    const isSummit: boolean = isRising !== false && altM[high] - altM[i] >= swingM
+    if (!isSummit && (isRising === true || altM[i] - altM[low] < swingM)) continue
+    found.push(wayM[isSummit ? high : low])
+    isRising = !isSummit
+    high = i
+    low = i
+  }
+  return found
 }
 
 /** Edges of the pieces from 0 to the end: every place that must be one, and even cuts between. */

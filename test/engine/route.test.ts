@@ -81,6 +81,73 @@ describe('a road in pieces', () => {
   })
 })
 
+describe('hills inside a kilometre', () => {
+  /** Points along the equator, so far apart, at these heights. [m] */
+  const rolling = (apartM: number, altM: number[]): RoadPoints => ({
+    latRad: new Float64Array(altM.length),
+    lonRad: Float64Array.from(altM, (_, i) => (i * apartM) / 6_378_137),
+    altM: Float64Array.from(altM),
+  })
+  const climbM = (road: Pieces): number =>
+    sum(Array.from(road.gradeRad, (grade, i) => Math.max(Math.tan(grade) * road.lengthM[i], 0)))
+
+  it('waves of 1000 m at 4 % are cut at every summit and valley: 12.7 m up on each', () => {
+    // Swing 2 · 0.04 · 1000/2π = 12.73 m; ten waves.
+    const points = rolling(
+      10,
+      Array.from({ length: 1001 }, (_, i) => 20 + (40 / (2 * Math.PI)) * Math.sin((2 * Math.PI * i) / 100)),
+    )
+    const road = pieces(points, [], { ...whole, swingM: 5 })
+    expect(climbM(road)).toBeCloseTo(10 * 12.732, 1)
+    expect(edgesOf(road).slice(0, 4)).toEqual([0, 250, 750, 1250].map((m) => expect.closeTo(m, 6)))
+    expect(climbM(pieces(points, [], whole))).toBeLessThan(1)
+  })
+
+  it('waves lower than the swing leave the pieces as they are', () => {
+    const points = rolling(
+      10,
+      Array.from({ length: 1001 }, (_, i) => 2.4 * Math.sin((2 * Math.PI * i) / 100)),
+    )
+    expect(pieces(points, [], { ...whole, swingM: 5 })).toEqual(pieces(points, [], whole))
+  })
+
+  it('no piece of any road rises by the swing and falls by it again, or the other way round', () => {
+    const heights = fc.array(fc.integer({ min: 0, max: 40 }), { minLength: 3, maxLength: 60, size: 'max' })
+    let cut = 0
+    fc.assert(
+      fc.property(heights, (altM) => {
+        const road = pieces(rolling(300, altM), [], { ...whole, swingM: 5 })
+        const edges = edgesOf(road)
+        for (let p = 0; p < road.count; p++) {
+          const inside = altM.filter((_, i) => i * 300 >= edges[p] - 0.01 && i * 300 <= edges[p + 1] + 0.01)
+          inside.forEach((summit, j) => {
+            const [before, after] = [inside.slice(0, j + 1), inside.slice(j)]
+            expect(Math.min(summit - Math.min(...before), summit - Math.min(...after))).toBeLessThan(5)
+            expect(Math.min(Math.max(...before) - summit, Math.max(...after) - summit)).toBeLessThan(5)
+          })
+        }
+        if (road.count > Math.ceil((altM.length - 1) * 0.3)) cut++
+      }),
+      { numRuns: 300 },
+    )
+    expect(cut).toBeGreaterThan(100)
+  })
+
+  it('heights that jump about cut a road into no more than a piece in 150 m', () => {
+    const points = rolling(
+      20,
+      Array.from({ length: 5000 }, (_, i) => (i % 2) * 30),
+    )
+    expect(pieces(points, [], { ...whole, swingM: 5 }).count).toBeLessThanOrEqual((5000 * 20) / 150)
+  })
+
+  it('summits give way to stops and ends of stretches next to them', () => {
+    const points = rolling(500, [0, 20, 0, 20, 0, 20, 0])
+    const road = pieces(points, [{ fromM: 590, toM: 1700, limitMps: 20 }], { cutsM: [2400], lengthM: 1000, swingM: 5 })
+    expect(edgesOf(road).map(Math.round)).toEqual([0, 590, 1000, 1500, 1700, 2000, 2400, 3000])
+  })
+})
+
 describe('headings, grades and places', () => {
   it('a road north rises 8 m in the 1108.36 m of a hundredth of a degree', () => {
     // Meridian arc at 29°: 110,836 m a degree, from the WGS 84 radius M = a(1−e²)/(1−e²sin²φ)^1.5 by hand.
