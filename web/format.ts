@@ -32,6 +32,12 @@ export const clockAt = (atMs: number, offsetMin: number): string =>
 /** Local time of day of an instant that carries its offset. */
 export const clock = (at: string): string => clockAt(Date.parse(at), offsetMinOf(at))
 
+/** Local time of day, with its offset where the day's clock shows another: 14:30 UTC+9:30. */
+export function clockOn(at: string, dayOffsetMin: number): string {
+  const offsetMin = offsetMinOf(at)
+  return offsetMin === dayOffsetMin ? clock(at) : `${clock(at)}${THIN}${offsetText(offsetMin)}`
+}
+
 /** UTC+2, UTC−3:30, UTC. */
 export function offsetText(offsetMin: number): string {
   if (offsetMin === 0) return 'UTC'

@@ -1,5 +1,5 @@
 import type { DayBudget } from '../server/documents/budget.ts'
-import { clock, durationText, grouped, kmText, round10, THIN } from './format.ts'
+import { clockOn, durationText, grouped, kmText, round10, THIN } from './format.ts'
 import { printedLedger } from './ledger-lines.ts'
 
 export interface Figure {
@@ -25,7 +25,7 @@ export const spoken = (phrase: Phrase): string =>
 const energy = (wh: number, shownWh: number): Figure => ({ text: grouped(shownWh), unit: 'Wh', wh })
 const kmh = (speed: number): Figure => ({ text: String(Math.round(speed)), unit: 'km/h' })
 const pct = (value: number): Figure => ({ text: grouped(value), unit: '%' })
-const time = (at: string): Figure => ({ text: clock(at) })
+const time = (day: DayBudget, at: string): Figure => ({ text: clockOn(at, day.utcOffsetMin) })
 
 /** The one sentence of the day: what to do first, then what follows from it. */
 export function daySentence(day: DayBudget): Phrase {
@@ -62,13 +62,13 @@ export function stageSentence(day: DayBudget, stage: Stage): Phrase {
       ': the day ends at km ',
       plainKm(stage.toKm),
       ', ',
-      time(stage.arriveAt),
+      time(day, stage.arriveAt),
     ].concat([' with ', ...arrival, '.'])
   const leave: Phrase =
     stage.departsNextAt === null
       ? []
-      : ['; leave ', time(stage.departsNextAt), ' with ', energy(stage.closing.wh, stored.shownWh)]
-  return [...speed, ' to ', stage.finish, ': arrive ', time(stage.arriveAt), ' with ', ...arrival, ...leave, '.']
+      : ['; leave ', time(day, stage.departsNextAt), ' with ', energy(stage.closing.wh, stored.shownWh)]
+  return [...speed, ' to ', stage.finish, ': arrive ', time(day, stage.arriveAt), ' with ', ...arrival, ...leave, '.']
 }
 
 /** The speed asked for, and the most that limits and motor make of it where that is less. */
@@ -87,7 +87,7 @@ const plainKm = (value: number): Figure => ({ text: kmText(value) })
 
 function reach(day: DayBudget): Phrase {
   const last = day.stages.findLast((stage) => stage.isFinished)
-  return last === undefined ? [] : ['reach ', last.finish, ' ', time(last.arriveAt), ', ']
+  return last === undefined ? [] : ['reach ', last.finish, ' ', time(day, last.arriveAt), ', ']
 }
 
 /** The printed balance, so that sentence and ledger say the same. */
@@ -110,18 +110,18 @@ function cutOff(day: DayBudget): Phrase {
   const leg = day.stages.findLast((stage) => !stage.isFinished)
   if (leg === undefined) return [...reach(day), 'part of the stop is left for the next day, ']
   const where: Phrase = day.outcome.km === null ? [] : [' at km ', plainKm(day.outcome.km)]
-  const when: Phrase = day.outcome.at === null ? [] : [' ', time(day.outcome.at)]
+  const when: Phrase = day.outcome.at === null ? [] : [' ', time(day, day.outcome.at)]
   return ['stop', ...when, ...where, ' before ', leg.finish, ', ']
 }
 
 function below(day: DayBudget): Phrase {
   const short = -shownMarginWh(day)
   const depth: Phrase = short < 10 ? ['to just under'] : [energy(day.marginWh, short), ' below']
-  return ['the battery falls ', ...depth, ' the reserve near ', day.lowest.place, ', ', time(day.lowest.at)]
+  return ['the battery falls ', ...depth, ' the reserve near ', day.lowest.place, ', ', time(day, day.lowest.at)]
 }
 
 function flat(day: DayBudget): Phrase {
-  const when: Phrase = day.outcome.at === null ? [] : [' at ', time(day.outcome.at)]
+  const when: Phrase = day.outcome.at === null ? [] : [' at ', time(day, day.outcome.at)]
   const where: Phrase = day.outcome.km === null ? [] : [', km ', plainKm(day.outcome.km)]
   const short = round10(day.ledger.shortWh)
   const lack: Phrase = short < 10 ? [] : ['; the day lacks ', energy(day.ledger.shortWh, short)]
@@ -132,7 +132,7 @@ function missed(day: DayBudget): Phrase {
   const at = Date.parse(day.outcome.at ?? '')
   const leg = day.stages.find((stage) => Math.abs(Date.parse(stage.arriveAt) - at) < 60_000)
   if (leg === undefined || day.outcome.at === null) return [lowerFirst(day.outcome.text.replace(/\.$/, ''))]
-  return [leg.finish, ' closes before the car comes at ', time(day.outcome.at)]
+  return [leg.finish, ' closes before the car comes at ', time(day, day.outcome.at)]
 }
 
 /** The speed that comes nearest, and by how much it misses. */

@@ -8,8 +8,10 @@ import { ledgerDocument } from './budget-ledger.ts'
 import { outcomeOf } from './budget-outcome.ts'
 import { seriesDocument } from './budget-series.ts'
 import { packOf } from './budget-pack.ts'
+import { spanZones, stepZone } from './day-zones.ts'
 import { localIso, offsetMin } from './local-time.ts'
 import type { PlacedStage } from './race-model.ts'
+import type { Penalties } from './race.ts'
 import { stageBudgets } from './budget-stages.ts'
 
 const WH = 1 / 3600
@@ -26,7 +28,7 @@ export interface ForecastDay {
   search: { tried: number; meetsTarget: boolean } | null
   /** Charge wanted at the close, null where none is. */
   targetCharge: number | null
-  penalties: { lateMinPerMin: number; unfinishedMinPerKm: number; mostLateMin?: number }
+  penalties: Penalties
 }
 
 /** Stored energy and charge at the end of a step; -1 is the opening. */
@@ -95,22 +97,25 @@ function wholeDay({ timetable, balance, openingJ, closingJ }: DayForecast): Ledg
   return ledger(spans, balance.spans, [...spans.keys()], { openingJ, closingJ })
 }
 
-const spansOf = (day: ForecastDay): DayBudget['spans'] =>
-  day.forecast.timetable.spans.map((s) => ({
+function spansOf(day: ForecastDay): DayBudget['spans'] {
+  const zones = spanZones(day)
+  return day.forecast.timetable.spans.map((s, i) => ({
     kind: s.kind,
     name: s.kind === 'drive' ? day.race.stages[s.stage].name : placeName(day, s.fromM),
-    from: localIso(s.fromMs, day.zone),
-    to: localIso(s.toMs, day.zone),
+    from: localIso(s.fromMs, zones[i].start),
+    to: localIso(s.toMs, zones[i].end),
     fromKm: dayKm(day, s.fromM),
     toKm: dayKm(day, s.toM),
   }))
+}
 
 function lowestOf(day: ForecastDay): DayBudget['lowest'] {
-  const { forecast, zone, race } = day
+  const { forecast, race } = day
   const step = forecast.lowestStep
   const atMs = step < 0 ? race.days[day.dayIndex].opensMs : forecast.steps.toMs[step]
   const placeM = step < 0 ? forecast.steps.fromM[0] : forecast.steps.toM[step]
-  return { ...balanceAt(day, step), at: localIso(atMs, zone), km: dayKm(day, placeM), place: placeName(day, placeM) }
+  const at = localIso(atMs, stepZone(day, step))
+  return { ...balanceAt(day, step), at, km: dayKm(day, placeM), place: placeName(day, placeM) }
 }
 
 /** The places and times at which a crew compares its battery with the budget. */
@@ -141,7 +146,8 @@ function gate(day: ForecastDay, kind: DayBudget['gates'][number]['kind'], span: 
   const [atMs, placeM, step] =
     end === 'start' ? [fromMs, fromM, lastStepOf(day, span - 1)] : [toMs, toM, lastStepOf(day, span)]
   const name = placeName(day, placeM)
-  return { kind, name, at: localIso(atMs, day.zone), km: dayKm(day, placeM), ...balanceAt(day, step) }
+  const at = localIso(atMs, spanZones(day)[span][end])
+  return { kind, name, at, km: dayKm(day, placeM), ...balanceAt(day, step) }
 }
 
 /** Last step of a span of the timetable; the one before its first step is the last of the span before. */
@@ -183,11 +189,14 @@ function trackersOf(day: ForecastDay): DayBudget['trackers'] {
   }))
 }
 
-/** Late arrivals and, on the last day, road not driven. */
-function penaltyMin(day: ForecastDay): number {
-  const { timetable } = day.forecast
-  const lateMin = timetable.late.reduce((sum, l) => sum + l.byS / 60, 0)
-  const isLast = day.dayIndex === day.race.days.length - 1
-  const leftKm = isLast ? (day.race.course.lengthM - timetable.evening.placeM) / 1000 : 0
-  return lateMin * day.penalties.lateMinPerMin + leftKm * day.penalties.unfinishedMinPerKm
+/** Late and early arrivals and, on the last day, road not driven. */
+function penaltyMin({ forecast: { timetable }, penalties, dayIndex, race }: ForecastDay): number {
+  const { lateMinPerMin, lateFreeMin, mostLatePenaltyMin = Number.POSITIVE_INFINITY } = penalties
+  const late = timetable.late.map(({ byS }) =>
+    Math.min(Math.max(byS / 60 - lateFreeMin, 0) * lateMinPerMin, mostLatePenaltyMin),
+  )
+  const early = timetable.early.map(({ byS }) => (byS / 60) * penalties.earlyMinPerMin)
+  const isLast = dayIndex === race.days.length - 1
+  const leftKm = isLast ? (race.course.lengthM - timetable.evening.placeM) / 1000 : 0
+  return [...late, ...early].reduce((sum, min) => sum + min, leftKm * penalties.unfinishedMinPerKm)
 }

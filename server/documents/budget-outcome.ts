@@ -1,7 +1,8 @@
 import type { DayBudget } from './budget.ts'
 import { dayKm, placeName } from './budget-day.ts'
 import type { ForecastDay } from './budget-day.ts'
-import { clock, localIso } from './local-time.ts'
+import { clockThere, spanZones } from './day-zones.ts'
+import { localIso } from './local-time.ts'
 
 type Outcome = DayBudget['outcome']
 interface Figures {
@@ -30,8 +31,9 @@ function runsFlat(day: ForecastDay): Outcome | null {
   if (i < 0) return null
   const place = placeName(day, steps.fromM[i])
   const what = whyShort(balance)
-  const text = `${what} at ${place}, ${clock(steps.fromMs[i], day.zone)}.`
-  return { kind: 'runs-flat', text, at: localIso(steps.fromMs[i], day.zone), km: dayKm(day, steps.fromM[i]) }
+  const zone = spanZones(day)[steps.span[i]].start
+  const text = `${what} at ${place}, ${clockThere(day, steps.fromMs[i], zone)}.`
+  return { kind: 'runs-flat', text, at: localIso(steps.fromMs[i], zone), km: dayKm(day, steps.fromM[i]) }
 }
 
 /** What keeps the pack from giving what is asked. */
@@ -54,9 +56,9 @@ function tooSteep(day: ForecastDay): Outcome | null {
   const km = dayKm(day, timetable.evening.placeM)
   const gradePct = (Math.tan(day.race.course.pieces.gradeRad[blockedPiece]) * 100).toFixed(1)
   const text = `The motor cannot pull the car on at km ${km.toFixed(1)}: the grade there is ${gradePct} %.`
-  const last = timetable.spans.findLast((s) => s.kind === 'drive' || s.kind === 'stop')
-  const atMs = last?.toMs ?? day.race.days[day.dayIndex].drivingFromMs
-  return { kind: 'too-steep', text, at: localIso(atMs, day.zone), km }
+  const last = timetable.spans.findLastIndex((s) => s.kind === 'drive' || s.kind === 'stop')
+  const atMs = timetable.spans[last]?.toMs ?? day.race.days[day.dayIndex].drivingFromMs
+  return { kind: 'too-steep', text, at: localIso(atMs, spanZones(day)[last]?.end ?? day.zone), km }
 }
 
 function noSpeed(day: ForecastDay, { closing, target, reserve, lowest }: Figures): Outcome | null {
@@ -70,12 +72,13 @@ function noSpeed(day: ForecastDay, { closing, target, reserve, lowest }: Figures
 
 function stopMissed(day: ForecastDay): Outcome | null {
   const { late } = day.forecast.timetable
-  const missed = late.find((l) => l.byS / 60 > (day.penalties.mostLateMin ?? 0))
+  const missed = late.find((l) => l.byS / 60 > (day.penalties.mostLateMin ?? day.penalties.lateFreeMin))
   if (missed === undefined) return null
   const { finish } = day.race.stages[missed.stage]
-  const text = `${finish} is reached ${clock(missed.atMs, day.zone)}, ${Math.ceil(missed.byS / 60)} min after it closes.`
+  const zone = day.stages[missed.stage].stage.stop?.zone ?? day.zone
+  const text = `${finish} is reached ${clockThere(day, missed.atMs, zone)}, ${Math.ceil(missed.byS / 60)} min after it closes.`
   const km = dayKm(day, day.race.course.stages[missed.stage].toM)
-  return { kind: 'stop-missed', text, at: localIso(missed.atMs, day.zone), km }
+  return { kind: 'stop-missed', text, at: localIso(missed.atMs, zone), km }
 }
 
 function belowReserve({ lowest, reserve }: Figures): Outcome | null {
@@ -103,9 +106,10 @@ function cutOff(day: ForecastDay): Outcome | null {
 
 function arrived(day: ForecastDay): Outcome {
   const { spans } = day.forecast.timetable
-  const last = spans.findLast((s) => s.kind === 'drive')
-  if (last === undefined) return { kind: 'parked', text: 'The car is not driven on this day.', at: null, km: null }
-  const place = placeName(day, last.toM)
-  const text = `${place} is reached ${clock(last.toMs, day.zone)}.`
-  return { kind: 'done', text, at: localIso(last.toMs, day.zone), km: dayKm(day, last.toM) }
+  const index = spans.findLastIndex((s) => s.kind === 'drive')
+  if (index < 0) return { kind: 'parked', text: 'The car is not driven on this day.', at: null, km: null }
+  const last = spans[index]
+  const zone = spanZones(day)[index].end
+  const text = `${placeName(day, last.toM)} is reached ${clockThere(day, last.toMs, zone)}.`
+  return { kind: 'done', text, at: localIso(last.toMs, zone), km: dayKm(day, last.toM) }
 }

@@ -3,6 +3,7 @@ import type { DayBudget } from './budget.ts'
 import { balanceAt, dayKm, isLeft, lastStepOf } from './budget-day.ts'
 import type { ForecastDay } from './budget-day.ts'
 import { ledgerDocument } from './budget-ledger.ts'
+import { spanZones } from './day-zones.ts'
 import { localIso } from './local-time.ts'
 
 const J_PER_WH = 3600
@@ -15,7 +16,7 @@ export function stageBudgets(day: ForecastDay): DayBudget['stages'] {
 }
 
 function stageBudget(day: ForecastDay, stage: number): DayBudget['stages'][number] {
-  const { forecast, race, zone } = day
+  const { forecast, race } = day
   const { spans } = forecast.timetable
   const first = spans.findIndex((s) => s.kind === 'drive' && s.stage === stage)
   const leg = spans[first]
@@ -25,6 +26,7 @@ function stageBudget(day: ForecastDay, stage: number): DayBudget['stages'][numbe
   const closing = balanceAt(day, lastStepOf(day, covered[covered.length - 1]))
   const ends = { openingJ: opening.wh * J_PER_WH, closingJ: closing.wh * J_PER_WH }
   const sums = ledger(spans, forecast.balance.spans, covered, ends)
+  const zones = spanZones(day)
   const drivenKm = (leg.toM - leg.fromM) / 1000
   return {
     id: day.stages[stage].stage.id,
@@ -35,9 +37,9 @@ function stageBudget(day: ForecastDay, stage: number): DayBudget['stages'][numbe
     toKm: dayKm(day, leg.toM),
     drivenKm,
     isFinished: leg.toM >= race.course.stages[stage].toM - 1e-6,
-    departAt: localIso(leg.fromMs, zone),
-    arriveAt: localIso(leg.toMs, zone),
-    departsNextAt: stop !== undefined && isLeft(day, first + 1) ? localIso(stop.toMs, zone) : null,
+    departAt: localIso(leg.fromMs, zones[first].start),
+    arriveAt: localIso(leg.toMs, zones[first].end),
+    departsNextAt: stop !== undefined && isLeft(day, first + 1) ? localIso(stop.toMs, zones[first + 1].end) : null,
     meanKmh: drivenKm / ((leg.toMs - leg.fromMs) / 3_600_000),
     opening,
     arrival: balanceAt(day, lastStepOf(day, first)),

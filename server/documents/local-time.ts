@@ -1,21 +1,22 @@
 import { DateTime } from 'luxon'
 import { InputError } from '../engine/input-error.ts'
 
+const DAY_MS = 86_400_000
+
 /**
  * The instant of a local time.
  *
  * @param field  field of the document, for messages
- * @throws InputError when the clock skips that time on that date; an hour that comes twice is taken the first time
+ * @throws InputError when the clock skips that time on that date; a time that comes twice is taken the first time
  */
 export function instantMs(date: string, time: string, zone: string, field: string): number {
   const [hour, minute, second = 0] = time.split(':').map(Number)
-  const [year, month, day] = date.split('-').map(Number)
-  const at = DateTime.fromObject({ year, month, day, hour, minute, second }, { zone })
-  if (!at.isValid || at.day !== day || at.hour !== hour || at.minute !== minute)
-    throw new InputError('no-such-time', field, `${time} given; the clocks of ${zone} skip it on ${date}`)
-  const earlier = at.minus({ hours: 1 })
-  const isSecond = earlier.hour === hour && earlier.offset !== at.offset && earlier.minute === minute
-  return (isSecond ? earlier : at).toMillis()
+  const wallMs = Date.parse(`${date}T00:00:00Z`) + ((hour * 60 + minute) * 60 + second) * 1000
+  // A clock that is set in between shows one of these two offsets.
+  const candidates = [wallMs - DAY_MS, wallMs + DAY_MS].map((nearMs) => wallMs - offsetMin(nearMs, zone) * 60_000)
+  const real = candidates.filter((atMs) => atMs + offsetMin(atMs, zone) * 60_000 === wallMs)
+  if (real.length > 0) return Math.min(...real)
+  throw new InputError('no-such-time', field, `${time} given; the clocks of ${zone} skip it on ${date}`)
 }
 
 /** An instant as ISO 8601 with the local offset, to the second. */

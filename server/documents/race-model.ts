@@ -137,7 +137,9 @@ export function stageRules(race: RaceDocument): StageRule[] {
     const { stop } = stage
     const on = (time: string | undefined, name: string): Float64Array =>
       Float64Array.from(race.days, (day, d) =>
-        time === undefined ? Number.NaN : instantMs(day.date, time, zoneOf(race, d), `${field}.stop.${name}`),
+        time === undefined
+          ? Number.NaN
+          : instantMs(day.date, time, stop?.zone ?? zoneOf(race, d), `${field}.stop.${name}`),
       )
     return {
       name: stage.name,

@@ -21,6 +21,7 @@ const chargingWindow = z
 const stop = z
   .strictObject({
     minutes: quantity(0, 600, 'length of the stop [min]'),
+    zone: zoneName('time zone of the stop, where it differs from the day’s; its hours are local to it').optional(),
     opensAt: timeOfDay('when the stop opens, local time').optional(),
     closesAt: timeOfDay('latest arrival, local time').optional(),
     clockStarts: z
@@ -135,9 +136,18 @@ export const raceDocument = z
           0,
         ),
         unfinishedMinPerKm: quantity(0, 1000, 'penalty minutes per km not driven when the last day ends').default(0),
-        mostLateMin: count(0, 10_000, 'latest arrival after the closing that is still counted [min]').optional(),
+        lateFreeMin: quantity(0, 10_000, 'minutes after the closing that cost nothing, at each stop [min]').default(0),
+        mostLatePenaltyMin: quantity(0, 100_000, 'most penalty for one late arrival [min]').optional(),
+        earlyMinPerMin: quantity(0, 1000, 'penalty minutes per minute that a stop is reached before it opens').default(
+          0,
+        ),
+        mostLateMin: count(
+          0,
+          10_000,
+          'latest arrival after the closing that is still counted; left out: the free minutes [min]',
+        ).optional(),
       })
-      .default({ lateMinPerMin: 0, unfinishedMinPerKm: 0 }),
+      .default({ lateMinPerMin: 0, unfinishedMinPerKm: 0, lateFreeMin: 0, earlyMinPerMin: 0 }),
   })
   .superRefine((race, context) => {
     const issue = (path: (string | number)[], message: string, input: unknown) =>
@@ -160,5 +170,6 @@ export const raceDocument = z
 
 export type RaceDocument = z.output<typeof raceDocument>
 export type RaceInput = z.input<typeof raceDocument>
+export type Penalties = RaceDocument['penalties']
 export type DayDocument = RaceDocument['days'][number]
 export type StageDocument = DayDocument['stages'][number]

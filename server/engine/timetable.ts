@@ -38,6 +38,8 @@ export interface Timetable {
   evening: Standing
   /** Arrivals after a stop had closed. */
   late: { stage: number; byS: number; atMs: number }[]
+  /** Arrivals before a stop opened. */
+  early: { stage: number; byS: number; atMs: number }[]
   /** Whether the clock, not the road, ended the driving. */
   isCutOff: boolean
 }
@@ -66,6 +68,7 @@ export function timetable(
   const moves = newMoves()
   const spans: Span[] = []
   const late: Timetable['late'] = []
+  const early: Timetable['early'] = []
   const now: Now = { ...standing, nowMs: day.opensMs, piece: standingPiece(course, standing) }
   park(spans, day, now, { untilMs: day.drivingFromMs, kind: 'morning-charge' })
   now.nowMs = day.drivingFromMs
@@ -73,8 +76,11 @@ export function timetable(
   while (now.stopLeftS === 0 && now.stage <= day.lastStage && now.nowMs < day.drivingToMs) {
     if (!drive(spans, moves, road, day, now)) break
     const { stop } = stages[now.stage]
+    const { nowMs: atMs } = now
     const closesMs = stop?.closesMs[dayIndex] ?? Number.NaN
-    if (now.nowMs > closesMs) late.push({ stage: now.stage, byS: (now.nowMs - closesMs) / 1000, atMs: now.nowMs })
+    const opensMs = stop?.opensMs[dayIndex] ?? Number.NaN
+    if (atMs > closesMs) late.push({ stage: now.stage, byS: (atMs - closesMs) / 1000, atMs })
+    if (atMs < opensMs) early.push({ stage: now.stage, byS: (opensMs - atMs) / 1000, atMs })
     now.stage++
     if (stop !== null) stand(spans, day, stop, now, stopS(stop, now.nowMs, stop.opensMs[dayIndex]))
   }
@@ -85,6 +91,7 @@ export function timetable(
     moves,
     evening: { stage, placeM, stopLeftS },
     late,
+    early,
     isCutOff: stage <= day.lastStage || stopLeftS > 0,
   }
 }

@@ -3,6 +3,7 @@ import {
   ageAmount,
   clock,
   clockAt,
+  clockOn,
   dateIn,
   dayText,
   durationText,
@@ -31,6 +32,12 @@ describe('figures', () => {
     expect([2444.9, 2445, -4.9, -5.1].map(round10)).toEqual([2440, 2450, 0, -10])
     expect(Object.is(round10(-4), 0)).toBe(true)
     expect(whText(1344.1)).toBe('1\u202f340')
+  })
+
+  it('a time of another zone than the day’s carries its offset', () => {
+    expect(clockOn('2026-10-17T14:30:00+10:30', 630)).toBe('14:30')
+    expect(clockOn('2026-10-17T14:30:00+10:30', 570)).toBe('14:30\u202fUTC+10:30')
+    expect(clockOn('2026-10-17T14:30:00Z', 60)).toBe('14:30\u202fUTC')
   })
 
   it('short roads have a decimal and long ones have none', () => {

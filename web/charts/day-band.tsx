@@ -1,7 +1,7 @@
 import { useSignal } from '@preact/signals'
 import { useMemo } from 'preact/hooks'
 import type { DayBudget } from '../../server/documents/budget.ts'
-import { clockAt, grouped, round10, THIN } from '../format.ts'
+import { clockAt, clockOn, grouped, round10, THIN } from '../format.ts'
 import { Wh } from '../views/figures.tsx'
 import { type Axis, type AxisMode, bandAxis } from './axis.ts'
 import { powerBins, type Reading, readingAt } from './band.ts'
@@ -144,7 +144,7 @@ function GateTable({ day }: { day: DayBudget }) {
           {day.gates.map((gate) => (
             <tr class="row">
               <th scope="row">{gateWords(gate)}</th>
-              <td>{clockAt(Date.parse(gate.at), day.utcOffsetMin)}</td>
+              <td>{clockOn(gate.at, day.utcOffsetMin)}</td>
               <td>{grouped(gate.km)}</td>
               <td data-wh={gate.wh}>{grouped(round10(gate.wh))}</td>
               <td>{grouped(gate.chargePct)}</td>

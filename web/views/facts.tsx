@@ -1,5 +1,5 @@
 import type { DayBudget } from '../../server/documents/budget.ts'
-import { clock, grouped, kmText, round10, THIN, whText } from '../format.ts'
+import { clockOn, grouped, kmText, round10, THIN, whText } from '../format.ts'
 import { printedLedger } from '../ledger-lines.ts'
 import { shownMarginWh } from '../sentence.ts'
 import { Wh } from './figures.tsx'
@@ -16,7 +16,7 @@ export const DayFacts = ({ day }: { day: DayBudget }) => (
       </dd>
       <dd class="note">
         {grouped(day.lowest.chargePct)}
-        {THIN}%, {clock(day.lowest.at)}, {placeText(day.lowest)}
+        {THIN}%, {clockOn(day.lowest.at, day.utcOffsetMin)}, {placeText(day.lowest)}
       </dd>
     </div>
     {day.target !== null && day.targetMarginWh !== null ? (
@@ -78,8 +78,8 @@ export function StageFacts({ stage, day }: { stage: Stage; day: DayBudget }) {
           <Wh text={kmText(stage.drivenKm)} unit="km" />
         </dd>
         <dd class="note">
-          km {kmText(stage.fromKm)}–{kmText(stage.toKm)}, {clock(stage.departAt)}–{clock(stage.arriveAt)}, mean{' '}
-          {grouped(stage.meanKmh)}
+          km {kmText(stage.fromKm)}–{kmText(stage.toKm)}, {clockOn(stage.departAt, day.utcOffsetMin)}–
+          {clockOn(stage.arriveAt, day.utcOffsetMin)}, mean {grouped(stage.meanKmh)}
           {THIN}km/h
         </dd>
       </div>

@@ -1,5 +1,5 @@
 import type { DayBudget } from '../../server/documents/budget.ts'
-import { clock, durationText, grouped, kmText, offsetText, THIN, whText } from '../format.ts'
+import { clockOn, durationText, grouped, kmText, offsetText, THIN, whText } from '../format.ts'
 import { Wh } from './figures.tsx'
 
 type Stage = DayBudget['stages'][number]
@@ -18,7 +18,7 @@ export function Stages({ day }: { day: DayBudget }) {
       </div>
       <ol class="stages">
         {day.stages.map((stage) => (
-          <StageRow key={stage.id} stage={stage} />
+          <StageRow key={stage.id} stage={stage} offsetMin={day.utcOffsetMin} />
         ))}
       </ol>
       {day.penaltyMin > 0 && (
@@ -31,7 +31,7 @@ export function Stages({ day }: { day: DayBudget }) {
   )
 }
 
-function StageRow({ stage }: { stage: Stage }) {
+function StageRow({ stage, offsetMin }: { stage: Stage; offsetMin: number }) {
   const stopMin =
     stage.departsNextAt === null ? 0 : (Date.parse(stage.departsNextAt) - Date.parse(stage.arriveAt)) / 60_000
   return (
@@ -41,7 +41,8 @@ function StageRow({ stage }: { stage: Stage }) {
         {!stage.name.includes(stage.finish) && ` ${stage.start} to ${stage.finish}`}
       </p>
       <p class="when">
-        <span class="n">{clock(stage.departAt)}</span>–<span class="n">{clock(stage.arriveAt)}</span>
+        <span class="n">{clockOn(stage.departAt, offsetMin)}</span>–
+        <span class="n">{clockOn(stage.arriveAt, offsetMin)}</span>
       </p>
       <p class="note">
         {kmText(stage.drivenKm)}
