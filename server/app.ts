@@ -13,6 +13,7 @@ import type { ZodType } from 'zod'
 import { guardAccess } from './api/access.ts'
 import { type Api, type Needs, SMALL_LIMIT } from './api/api.ts'
 import { choiceRoutes, followedRoute } from './api/choices.ts'
+import { coastDownRoute } from './api/coast-down.ts'
 import { dayRoutes } from './api/days.ts'
 import { docsRoutes } from './api/docs.ts'
 import { documentRoutes } from './api/documents.ts'
@@ -147,6 +148,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => statelessTrackerRoute(scope, needs))
   void api.register(async (scope: Api) => statelessPointingRoute(scope, needs))
   void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
+  void api.register(async (scope: Api) => coastDownRoute(scope, needs))
   dayRoutes(api, needs)
   exampleRoutes(api)
   addCrewRoutes(api, needs)

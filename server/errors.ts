@@ -37,6 +37,7 @@ export const ERRORS = {
   'missing-route': { status: 422, title: 'A stage runs on a route that does not exist' },
   'cannot-forecast': { status: 422, title: 'These documents cannot be forecast together' },
   'cannot-compare': { status: 422, title: 'These skies cannot be compared' },
+  'cannot-fit': { status: 422, title: 'These runs do not tell rolling from drag' },
   'precondition-required': { status: 428, title: 'Replacing a document needs the version that was read' },
   'headers-too-large': { status: 431, title: 'The headers are too large' },
   internal: { status: 500, title: 'Something went wrong in the service' },

@@ -9,7 +9,8 @@ import { routeTableOptions } from '../files/route-table.ts'
 import { skyTableOptions } from '../files/sky-table.ts'
 import { WEATHER_FILES } from '../files/weather-kind.ts'
 
-const number = (min: number, max: number, meaning: string) =>
+/** A number in a query. */
+export const number = (min: number, max: number, meaning: string) =>
   z
     .string()
     .regex(/^-?\d{1,5}(?:\.\d{1,12})?$/, `a number from ${min} to ${max}`)
@@ -27,7 +28,8 @@ const withPlus = (meaning: string) =>
     .describe(meaning)
     .optional()
 
-const more = z
+/** Further options of a reader in a query. */
+export const more = z
   .string()
   .max(20_000)
   .transform((text, context) => {

@@ -2,6 +2,8 @@ import { z } from 'zod'
 import { DOCUMENTS } from '../compute/documents.ts'
 import { openRequest } from '../compute/forecast-jobs.ts'
 import { openComparison } from '../compute/sky-jobs.ts'
+import { coastDownRequest } from '../documents/coast-down.ts'
+import { coastDownDocument } from '../documents/coast-down-result.ts'
 import { budgetDocument } from '../documents/budget.ts'
 import { pointingDocument } from '../documents/pointing.ts'
 import { readingDocument } from '../documents/reading.ts'
@@ -32,6 +34,8 @@ export const COMPONENTS: Record<string, Component> = {
   ForecastRequest: { schema: openRequest, direction: 'input', example: 'forecast-request' },
   SkyComparisonRequest: { schema: openComparison, direction: 'input', example: 'sky-comparison' },
   SkyComparison: { schema: skyComparison, direction: 'output' },
+  CoastDownTest: { schema: coastDownRequest, direction: 'input', example: 'coast-down' },
+  CoastDownResult: { schema: coastDownDocument, direction: 'output' },
   Budget: { schema: budgetDocument, direction: 'output' },
   TrackerDay: { schema: trackerDay, direction: 'output' },
   TrackerDays: { schema: trackerDays, direction: 'output' },

@@ -44,16 +44,27 @@ export function readDocument(input: BodyInput): ReadDocument {
 }
 
 function readFile({ kind, format, bytes, options }: BodyInput): ReadDocument {
-  if (bytes.length === 0) throw new Fault('empty-body', 'The request has no body; expected a file.')
-  const { text, problems } = decodeText(bytes)
-  if (text === undefined) throw refused(problems)
+  const text = readText(bytes)
   const reading = read(kind, format, text, options)
   if (reading.problems !== undefined) throw refused(reading.problems)
   const { document, notices, summary } = reading
   return { name: document.name, document, notices, summary }
 }
 
-const refused = (problems: Problem[]): Fault =>
+/**
+ * The text of a file.
+ *
+ * @throws Fault 'empty-body', or 'invalid-file' where the bytes are no text
+ */
+export function readText(bytes: Uint8Array): string {
+  if (bytes.length === 0) throw new Fault('empty-body', 'The request has no body; expected a file.')
+  const { text, problems } = decodeText(bytes)
+  if (text === undefined) throw refused(problems)
+  return text
+}
+
+/** A file with problems. */
+export const refused = (problems: Problem[]): Fault =>
   new Fault('invalid-file', `The file has ${counted(problems.length, 'problem')}.`, { errors: problems })
 
 type Reading = FileReading<object & { name: string }, unknown>

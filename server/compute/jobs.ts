@@ -1,3 +1,4 @@
+import { coastDownJob, readCoastDown } from './coast-jobs.ts'
 import { type BodyInput, readDocument } from './file-jobs.ts'
 import { forecastJson, inputsHash, pointingJson, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
 import type { ComputePool } from './pool.ts'
@@ -11,6 +12,8 @@ export const JOBS = {
   'inputs-hash': inputsHash,
   forecast: forecastJson,
   point: pointingJson,
+  'read-coast-down': readCoastDown,
+  'coast-down': coastDownJob,
   'read-readings': readReadings,
   'judge-readings': judgeJob,
   learn: learnJob,

@@ -19,15 +19,14 @@ export interface ReferenceLoad {
 }
 
 /**
- * Road load of a fitted car in reference air: rolling as found, drag by the reference's density, no wind.
+ * Road load of a fitted car in reference air: rolling by the tyres' temperature, drag by the reference's density, no wind.
  *
- * Rolling is left as it was on the day: tyres roll some tenths of a per cent easier for each °C (not modelled).
- *
+ * @param tyreFactor rolling at the reference's temperature over rolling on the day; see road.ts
  * @returns F0 [N], F1 [N·s/m], F2 [N·s²/m²]
  * @source road-load force of 40 CFR 1066.310; reference air of SAE J2263
  */
-export function referenceLoad(car: CoastCar, fit: CoastFit): ReferenceLoad {
-  const weightN = car.massKg * car.gravity
+export function referenceLoad(car: CoastCar, fit: CoastFit, tyreFactor: number): ReferenceLoad {
+  const weightN = car.massKg * car.gravity * tyreFactor
   const half = 0.5 * REFERENCE_KG_M3
   return {
     F0: weightN * fit.rollingCoefficient.value,

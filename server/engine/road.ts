@@ -101,7 +101,10 @@ const TYRE_FACTOR = { least: 0.7, most: 1.5 }
  * @param airC air at the car. [°C]
  * @source F(T) = F(T0)/(1 + K·(T − T0)); UN GTR 15 annex 4 and SAE J2263 correct so, K about 0.0086/°C (from memory)
  */
-export function tyreFactor({ rollingPerC = 0, rollingAtC = 20 }: RoadLoad, airC: number): number {
+export function tyreFactor(
+  { rollingPerC = 0, rollingAtC = 20 }: Pick<RoadLoad, 'rollingPerC' | 'rollingAtC'>,
+  airC: number,
+): number {
   const divisor = 1 + rollingPerC * (airC - rollingAtC)
   return 1 / Math.min(Math.max(divisor, 1 / TYRE_FACTOR.most), 1 / TYRE_FACTOR.least)
 }

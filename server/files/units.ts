@@ -79,6 +79,16 @@ export const UNITS = {
     unit('inHg', 33.86389, ['inhg']),
   ],
   turbidity: [unit('Linke', 1, ['1', 'linke', 'tl'])],
+  duration: [
+    unit('s', 1, ['s', 'sec', 'secs', 'second', 'seconds']),
+    unit('ms', 0.001, ['ms', 'msec', 'millisecond', 'milliseconds']),
+    unit('min', 60, ['min', 'mins', 'minute', 'minutes']),
+  ],
+  slope: [
+    unit('%', 1, ['%', 'pct', 'percent']),
+    unit('‰', 0.1, ['permille', 'permil', 'mmm']),
+    unit('m/m', 100, ['1', 'mm', 'fraction']),
+  ],
   time: [],
   text: [],
 } as const satisfies Record<string, readonly Unit[]>

@@ -238,12 +238,14 @@ describe('reference air', () => {
   it('brings the road load to it: drag by density, rolling as it was', () => {
     const thin = { ...CAR, densityKgM3: 0.95 }
     const fit = fitted(testOf(bothWays({ car: thin, noiseMps: 0.02 }), thin))
-    const load = referenceLoad(thin, fit)
+    const load = referenceLoad(thin, fit, 1)
     expect(load.F0 / (250 * 9.80665 * 0.0035)).toBeCloseTo(1, 1)
     expect(load.F2 / (0.5 * 1.16707 * 0.1)).toBeCloseTo(1, 1)
     expect(load.F2Sd / load.F2).toBeCloseTo(fit.dragAreaM2.sd / fit.dragAreaM2.value, 9)
     expect(load.F0Sd / load.F0).toBeCloseTo(fit.rollingCoefficient.sd / fit.rollingCoefficient.value, 9)
     expect(load.F1).toBe(0)
+    expect(referenceLoad(thin, fit, 1.1).F0 / load.F0).toBeCloseTo(1.1, 12)
+    expect(referenceLoad(thin, fit, 1.1).F2).toBe(load.F2)
   })
 })
 

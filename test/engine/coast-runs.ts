@@ -51,6 +51,7 @@ export function coastRun(direction: 1 | -1, coasting: Coasting = {}, normal: () 
   for (let i = 0; ; i++) {
     const mps = coastingMps(car.massKg * car.rotatingFactor, force, fromKmh / 3.6, i * stepS)
     if (mps < toKmh / 3.6) break
+    if (Number.isNaN(mps)) throw new Error('no coast-down: the slope or the wind pulls harder than rolling')
     time.push(i * stepS)
     speed.push(mps + noiseMps * normal())
   }

@@ -1,5 +1,6 @@
 import type { SpeedsInput } from '../../documents/speeds.ts'
 import { carExample } from './car.ts'
+import { coastExample } from './coast-down.ts'
 import { raceExample } from './race.ts'
 import { routeExample } from './route.ts'
 import { measuredExample, skyExample } from './sky.ts'
@@ -18,6 +19,7 @@ export const EXAMPLES: Record<string, Example> = {
   race: { title: 'One day with two stages and a stop', document: raceExample },
   sky: { title: 'An hourly forecast for one place', document: skyExample },
   speeds: { title: 'One held speed', document: speedsExample },
+  'coast-down': { title: 'Four runs of a coast-down test', document: coastExample },
   'forecast-request': {
     title: 'A forecast of whole documents',
     document: {
