@@ -21,7 +21,8 @@ export function doubtsOf(test: CoastTest, terms: readonly LoadTerm[], estimate: 
   const { fit, covariance, dof, rows } = estimate
   const reason = (code: CoastReason['code'], detail: string): CoastReason => ({ code, run: null, detail })
   if (!fit.isSettled && fit.squares > 0) {
-    return [reason('not-settled', 'no rolling and drag follow these speeds; expected a car that coasts freely')]
+    const words = 'no rolling and drag follow these speeds; expected a car that coasts freely'
+    return [reason('not-settled', words), spanReason(test, terms, estimate)]
   }
   const unknowns = terms.length + test.runs.length
   if (rows < unknowns + LEAST_ROWS) {

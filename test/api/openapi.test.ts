@@ -7,6 +7,7 @@ import { DOCUMENTS } from '../../server/compute/documents.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
 import { checkDocument } from '../../server/documents/check.ts'
+import { coastDownRequest } from '../../server/documents/coast-down.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
 import { ERRORS } from '../../server/errors.ts'
 import { type Service, startService } from './service.ts'
@@ -58,6 +59,7 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/tracker-report': ['post'],
   '/api/v1/pointing': ['post'],
   '/api/v1/sky-comparison': ['post'],
+  '/api/v1/coast-down': ['post'],
   '/api/v1/examples': ['get'],
   '/api/v1/examples/{kind}': ['get'],
 }
@@ -142,6 +144,7 @@ describe('the worked examples', () => {
   const schemas = {
     ...DOCUMENTS,
     speeds: speedsDocument,
+    'coast-down': coastDownRequest,
     'forecast-request': openRequest,
     'sky-comparison': openComparison,
   }

@@ -1,5 +1,7 @@
 import { type Arbitrary, sample } from 'fast-check'
+import { COAST_TABLE, coastExample } from '../../server/api/examples/coast-down.ts'
 import type { CarInput } from '../../server/documents/car.ts'
+import type { CoastDownInput } from '../../server/documents/coast-down.ts'
 import type { RaceInput } from '../../server/documents/race.ts'
 import type { RouteInput } from '../../server/documents/route.ts'
 import type { SkyInput } from '../../server/documents/sky.ts'
@@ -224,5 +226,40 @@ export const SKY_TABLES = [
     delimiter: ',',
     query: 'fileKind=tmy3&from=2026-10-17&to=2026-10-17',
     text: `${TMY3_HEADER}\n${DAY_HOURS.map((h) => `10/17/1997,${String(h).padStart(2, '0')}:00,${sunOf(h)},-9900,-9900,4,${10 + h},5,40,880,${h * 15},3`).join('\n')}\n`,
+  },
+]
+
+/** A coast-down that says everything it can say, a stored car's. */
+const fullCoastDown: CoastDownInput = {
+  ...coastExample,
+  car: { id: 'fuzz-car' },
+  rollingPerKmh: 0.00001,
+  rollingPerKmhSd: 0.00001,
+  rollingPctPerC: 0.8,
+  air: { ...coastExample.air, densityKgM3: 1.05 },
+  runs: coastExample.runs.map((run) => {
+    const like = (value: number) => run.timeS.map(() => (run.direction === 'there' ? value : -value))
+    return { ...run, gradePct: like(0.06), headwindMps: like(1.2), crosswindMps: like(0.5) }
+  }),
+}
+
+export const COAST_TESTS: CoastDownInput[] = [
+  coastExample,
+  fullCoastDown,
+  { ...coastExample, gradePct: 0.06, windAlongMps: 1.2 },
+]
+
+const COAST_AIR = 'temperatureC=18&pressureHpa=884'
+
+export const COAST_TABLES = [
+  { delimiter: ',', query: `massKg=268&${COAST_AIR}`, text: COAST_TABLE },
+  {
+    delimiter: ';',
+    query: `car=fuzz-car&${COAST_AIR}&directions=alternate`,
+    text: COAST_TABLE.replace(',direction', ',grade (%),headwind (m/s)')
+      .replaceAll(/,there$/gm, ',0.06,1.2')
+      .replaceAll(/,back$/gm, ',-0.06,-1.2')
+      .replaceAll(',', ';')
+      .replaceAll('.', ','),
   },
 ]

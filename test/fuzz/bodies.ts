@@ -2,9 +2,10 @@ import type { z } from 'zod'
 import { DOCUMENTS as SCHEMAS } from '../../server/compute/documents.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
+import { coastDownRequest } from '../../server/documents/coast-down.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
 import type { Kind } from './attempt.ts'
-import { COMPARISONS, DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS } from './bases.ts'
+import { COAST_TABLES, COAST_TESTS, COMPARISONS, DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS } from './bases.ts'
 import { oneByte, otherBytes } from './byte-mutation.ts'
 import type { Chance } from './chance.ts'
 import { hostileGpx, hostileTable, mutatedGpx, mutatedTable } from './file-mutation.ts'
@@ -83,4 +84,14 @@ export const wrongRouteTable = (by: Chance): WrongBody => wrongTable(by, by.pick
 export function wrongSkyTable(by: Chance): WrongBody & { query: string } {
   const table = by.pick(SKY_TABLES)
   return { ...wrongTable(by, table), query: table.query }
+}
+
+/** A coast-down as JSON or as a table. */
+export function wrongCoastDown(by: Chance): WrongBody & { query: string; type: string } {
+  if (by.isLucky(0.5)) {
+    const body = wrongJson(by, by.pick(COAST_TESTS), publishedOnce(coastDownRequest))
+    return { ...body, query: '', type: 'application/json' }
+  }
+  const table = by.pick(COAST_TABLES)
+  return { ...wrongTable(by, table), query: `?${table.query}`, type: 'text/csv' }
 }

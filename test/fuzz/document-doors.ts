@@ -1,5 +1,5 @@
 import { type Attempt, COLLECTIONS, type Kind, sent } from './attempt.ts'
-import { type WrongBody, wrongDocument, wrongGpx, wrongRouteTable, wrongSkyTable } from './bodies.ts'
+import { type WrongBody, wrongCoastDown, wrongDocument, wrongGpx, wrongRouteTable, wrongSkyTable } from './bodies.ts'
 import type { Chance } from './chance.ts'
 
 /** A way into the service, and how many attempts are made at it. */
@@ -63,6 +63,16 @@ const anySkyBody: Body = (by) =>
     ? { ...wrongDocument(by, 'sky'), type: JSON_TYPE }
     : { ...wrongSkyTable(by), type: `${CSV_TYPE}; charset=utf-8` }
 
+const coastDown: Door = {
+  name: 'POST coast-down',
+  count: 200,
+  takesDocuments: true,
+  attempt(by) {
+    const { query, type, ...wrong } = wrongCoastDown(by)
+    return sent('POST', `/api/v1/coast-down${query}`, type, wrong, { touches: null, yields: null })
+  },
+}
+
 /** Every address that takes a car, route, race or sky. */
 export const DOCUMENT_DOORS: Door[] = [
   saving('PUT car as JSON', 'car', 280, JSON_TYPE, (by) => wrongDocument(by, 'car')),
@@ -73,5 +83,6 @@ export const DOCUMENT_DOORS: Door[] = [
   saving('PUT route as CSV', 'route', 180, CSV_TYPE, wrongRouteTable),
   saving('PUT sky as CSV', 'sky', 200, CSV_TYPE, wrongSkyTable),
   reading('POST routes/read', 'route', 180, anyRouteBody),
+  coastDown,
   reading('POST skies/read', 'sky', 160, anySkyBody),
 ]

@@ -4,7 +4,17 @@ import { type Service, startService } from '../api/service.ts'
 import { ADDRESS_DOORS } from './address-doors.ts'
 import { assault, soundComplaint, type Tally } from './assault.ts'
 import { COLLECTIONS, type Kind, sent } from './attempt.ts'
-import { DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS, WHOLE } from './bases.ts'
+import {
+  COAST_TABLES,
+  COAST_TESTS,
+  DOCUMENTS,
+  GPX,
+  REQUESTS,
+  ROUTE_TABLES,
+  SKY_TABLES,
+  SPEEDS,
+  WHOLE,
+} from './bases.ts'
 import { DOCUMENT_DOORS } from './document-doors.ts'
 import { FORECAST_DOORS, LANES, laneRace } from './forecast-doors.ts'
 import { isRelated } from './json-path.ts'
@@ -49,6 +59,20 @@ describe('what is sound is accepted, so that one wrong field is what a refusal i
       expect(await soundComplaint(service, put('route', `table-${i}`, 'text/csv', text))).toBeNull()
     for (const [i, { text, query }] of SKY_TABLES.entries())
       expect(await soundComplaint(service, put('sky', `table-${i}`, 'text/csv', text, `?${query}`))).toBeNull()
+  })
+
+  test('every coast-down', async () => {
+    const rest = { touches: null, yields: null }
+    for (const test of COAST_TESTS) {
+      const wrong = { ...sound, body: JSON.stringify(test) }
+      expect(
+        await soundComplaint(service, sent('POST', '/api/v1/coast-down', 'application/json', wrong, rest)),
+      ).toBeNull()
+    }
+    for (const { text, query } of COAST_TABLES) {
+      const attempt = sent('POST', `/api/v1/coast-down?${query}`, 'text/csv', { ...sound, body: text }, rest)
+      expect(await soundComplaint(service, attempt)).toBeNull()
+    }
   })
 
   test('every forecast', async () => {
