@@ -5,7 +5,17 @@ import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { coastDownRequest } from '../../server/documents/coast-down.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
 import type { Kind } from './attempt.ts'
-import { COAST_TABLES, COAST_TESTS, COMPARISONS, DOCUMENTS, GPX, REQUESTS, ROUTE_TABLES, SKY_TABLES, SPEEDS } from './bases.ts'
+import {
+  COAST_TABLES,
+  COAST_TESTS,
+  COMPARISONS,
+  DOCUMENTS,
+  GPX,
+  REQUESTS,
+  ROUTE_TABLES,
+  SKY_TABLES,
+  SPEEDS,
+} from './bases.ts'
 import { oneByte, otherBytes } from './byte-mutation.ts'
 import type { Chance } from './chance.ts'
 import { hostileGpx, hostileTable, mutatedGpx, mutatedTable } from './file-mutation.ts'
