@@ -14,8 +14,11 @@ export interface OperatingPoint {
 export interface BestPoint {
   W: number
   V: number
-  /** Whether its power may have several hills over voltage: cells on several panels with bypass diodes. */
-  hasHills?: boolean
+  /**
+   * For a string whose power may have several hills over voltage, with cells in unequal light and bypass diodes: the
+   * voltage between two at which it gives most. [V, V] → [V]
+   */
+  bestBetweenV?: (lowV: number, highV: number) => number
 }
 
 /** What surrounds a tracker. */
@@ -119,32 +122,6 @@ function belowCeiling(held: Held, first: TrackerLimit, out: OperatingPoint): Ope
   return settle(out, 0, held.V, wantedW, first)
 }
 
-/** Places at which a window is looked through for another hill, and narrowings around the best of them. */
-const LOOKS = 8
-const NARROWINGS = 14
-
-/** Of a string with several hills held at its window's edge: the voltage inside that gives more, if one does. */
-function hillInside({ lowV, highV, V, trackedAtV }: Held): number {
-  const step = (highV - lowV) / LOOKS
-  let bestV = V
-  let mostW = trackedAtV(V)
-  for (let k = 0; k <= LOOKS; k++) {
-    const W = trackedAtV(lowV + k * step)
-    if (W > mostW) {
-      mostW = W
-      bestV = lowV + k * step
-    }
-  }
-  if (bestV === V) return V
-  let [from, to] = [Math.max(bestV - step, lowV), Math.min(bestV + step, highV)]
-  for (let k = 0; k < NARROWINGS; k++) {
-    const [a, b] = [to - (to - from) * 0.618, from + (to - from) * 0.618]
-    if (trackedAtV(a) > trackedAtV(b)) to = b
-    else from = a
-  }
-  return (from + to) / 2
-}
-
 /** Power of the string at a voltage as the tracker finds it, never above what it gets at the best point. */
 const trackedW = (powerW: number, trackingEfficiency: number, wantedW: number): number =>
   Math.min(Math.max(powerW, 0) * trackingEfficiency, wantedW)
@@ -192,13 +169,13 @@ export function operatingPoint(
   const trackedAtV = (volts: number): number => trackedW(powerAtV(volts), trackingEfficiency, wantedW)
   const V = Math.min(Math.max(best.V, lowV), highV)
   const held: Held = { tracker, around, V, lowV, highV, wantedW, trackedAtV }
-  return offBest(held, limit, best.hasHills === true, out)
+  if (limit !== null && best.bestBetweenV !== undefined) held.V = best.bestBetweenV(lowV, highV)
+  return offBest(held, limit, out)
 }
 
 /** Where a string is held that cannot be held at its best point. */
-function offBest(held: Held, limit: TrackerLimit | null, hasHills: boolean, out: OperatingPoint): OperatingPoint {
+function offBest(held: Held, limit: TrackerLimit | null, out: OperatingPoint): OperatingPoint {
   const { tracker, around, wantedW } = held
-  if (limit !== null && hasHills) held.V = hillInside(held)
   const heldW = limit === null ? wantedW : held.trackedAtV(held.V)
   const broken = anyCeilingBroken(tracker, heldW, held.V, around)
   if (broken !== null) return belowCeiling(held, broken, out)

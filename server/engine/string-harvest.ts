@@ -1,9 +1,9 @@
 import type { ArrayHarvest, PreparedArray } from './array.ts'
 import { bestOfCells, exactBestOfCells, type PowerTable, powerTable } from './power-table.ts'
-import { solveBest, solveHeld } from './string-point.ts'
+import { solveBest, solveBestBetween, solveHeld } from './string-point.ts'
 import { isSolvable, type StringSolver, stringSolver } from './string-solver.ts'
 import { loadStep } from './string-step.ts'
-import { stringBest, stringPowerAtV } from './string.ts'
+import { stringBest, stringBestBetweenV, stringPowerAtV } from './string.ts'
 import { type StringModel, type Substring, substringsOf } from './substrings.ts'
 
 /** An array's strings with their tables. */
@@ -104,25 +104,34 @@ function fillSolved(solver: StringSolver, { effectiveWm2, cellC }: ArrayHarvest,
   }
 }
 
-/**
- * Power of a string at a step when its tracker holds it at a voltage off its best; within 0.01 %.
- *
- * @param volts  voltage over the string, ≥ 0. [V]
- * @returns power of the string, 0 at and above its open-circuit voltage. [W]
- */
-export function offBestW(
-  array: PreparedArray,
-  stringIndex: number,
-  stepIndex: number,
-  harvest: ArrayHarvest,
-  volts: number,
-): number {
+/** What a string gives at a step where its tracker cannot hold it at its best point. */
+export interface OffBest {
+  /** Power at a voltage, 0 at and above the open-circuit voltage; within 0.01 %. [V] → [W] */
+  atV(step: number, volts: number): number
+  /** Voltage between two at which it gives most: a hill's top or an edge. [V] */
+  bestBetweenV(step: number, lowV: number, highV: number): number
+}
+
+/** Asks for a string's power off its best point; `harvest` is not to change meanwhile. */
+export function offBest(array: PreparedArray, stringIndex: number, harvest: ArrayHarvest): OffBest {
   const { effectiveWm2, cellC } = harvest
   const solver = array.strings.solvers[stringIndex]
-  if (solver === null) {
-    const string = array.strings.models[stringIndex]
-    return stringPowerAtV(string, lightAt(effectiveWm2, stepIndex), lightAt(cellC, stepIndex), volts)
+  if (solver === null) return offBestExactly(array.strings.models[stringIndex], harvest)
+  const best = new Float64Array(3)
+  return {
+    atV(step, volts) {
+      loadStep(solver, effectiveWm2, cellC, step)
+      return solveHeld(solver, volts)
+    },
+    bestBetweenV(step, lowV, highV) {
+      loadStep(solver, effectiveWm2, cellC, step)
+      return solveBestBetween(solver, { lowV, highV }, best)
+    },
   }
-  loadStep(solver, effectiveWm2, cellC, stepIndex)
-  return solveHeld(solver, volts)
 }
+
+const offBestExactly = (string: StringModel, { effectiveWm2, cellC }: ArrayHarvest): OffBest => ({
+  atV: (step, volts) => stringPowerAtV(string, lightAt(effectiveWm2, step), lightAt(cellC, step), volts),
+  bestBetweenV: (step, lowV, highV) =>
+    stringBestBetweenV(string, lightAt(effectiveWm2, step), lightAt(cellC, step), { lowV, highV }),
+})

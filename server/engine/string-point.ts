@@ -4,13 +4,21 @@ import type { StringSolver } from './string-solver.ts'
 /** How far from the top, as R − 1 and as a move over the thermal voltage, the curve's slopes lead to it. */
 const CLOSE_ENOUGH = 0.1
 
+/** Voltages between which a best point is looked for. */
+interface Span {
+  lowV: number
+  highV: number
+}
+
+const ANY_VOLTAGE: Span = { lowV: 0, highV: Infinity }
+
 /**
- * Climbs the hill of the first places of the order and keeps it in `best` if it is higher.
+ * Climbs the hill of the first places of the order and keeps its top in `best` if it is higher and within the span.
  *
  * With R = −I·dV/dI ÷ V, 1 at the top, Newton's method on ln R, which is almost straight in x; ln R by its first Padé
  * fraction. The last move, a small one, goes along the curve's two slopes.
  */
-function climb(s: StringSolver, place: number, best: Float64Array): void {
+function climb(s: StringSolver, place: number, span: Span, best: Float64Array): void {
   const { point } = s
   const parts = s.partsUpTo[place]
   const lead = leadOf(s, parts)
@@ -32,16 +40,16 @@ function climb(s: StringSolver, place: number, best: Float64Array): void {
       if (!(x > lowX && x < highX)) x = 0.5 * (lowX + highX)
       continue
     }
-    keep(s, move * point[IX], best)
+    keep(s, move * point[IX], span, best)
     return
   }
 }
 
-/** Goes on along the curve by so many amperes, and keeps that point if its power is higher. */
-function keep({ point }: StringSolver, moreA: number, best: Float64Array): void {
+/** Goes on along the curve by so many amperes, and keeps that point if its power is higher and it is within the span. */
+function keep({ point }: StringSolver, moreA: number, { lowV, highV }: Span, best: Float64Array): void {
   const amps = point[I] + moreA
   const volts = point[V] + moreA * (point[VI] + 0.5 * moreA * point[VII])
-  if (!(amps > 0 && amps * volts > best[0])) return
+  if (!(amps > 0 && amps * volts > best[0] && volts >= lowV && volts <= highV)) return
   best[0] = amps * volts
   best[1] = volts
   best[2] = amps
@@ -75,13 +83,15 @@ function mostW(s: StringSolver, place: number): number {
  * @param best  overwritten: W of all rows of cells, V over the whole series, A of all rows
  */
 export function solveBest(s: StringSolver, best: Float64Array): void {
-  best[0] = 0
-  best[1] = 0
-  best[2] = 0
-  for (let place = s.carrying - 1; place >= 0; place--)
-    if (s.pastA[place] * s.mostV[place] > best[0] && mostW(s, place) > best[0]) climb(s, place, best)
+  best.fill(0)
+  climbAll(s, ANY_VOLTAGE, best)
   best[0] *= s.rows
   best[2] *= s.rows
+}
+
+function climbAll(s: StringSolver, span: Span, best: Float64Array): void {
+  for (let place = s.carrying - 1; place >= 0; place--)
+    if (s.pastA[place] * s.mostV[place] > best[0] && mostW(s, place) > best[0]) climb(s, place, span, best)
 }
 
 /**
@@ -99,4 +109,20 @@ export function solveHeld(s: StringSolver, volts: number): number {
     if (s.mostV[place] > volts)
       amps = Math.max(amps, currentAtV(s, s.partsUpTo[place], s.lostV[place], s.mostV[place], volts))
   return amps * volts * s.rows
+}
+
+/**
+ * Voltage between two at which the loaded step's string gives most: a hill's top, or one of the two.
+ *
+ * Power has one hill over voltage with each set of substrings, so between its tops it is highest at an edge.
+ *
+ * @param span  0 ≤ lowV ≤ highV. [V]
+ */
+export function solveBestBetween(s: StringSolver, span: Span, best: Float64Array): number {
+  const { lowV, highV } = span
+  const [lowW, highW] = [solveHeld(s, lowV) / s.rows, solveHeld(s, highV) / s.rows]
+  best[0] = Math.max(lowW, highW)
+  best[1] = lowW >= highW ? lowV : highV
+  climbAll(s, span, best)
+  return best[1]
 }

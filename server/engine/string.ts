@@ -193,11 +193,30 @@ export function bestOfSubstrings(substrings: LitSubstring[]): OperatingPoint {
   for (let r = runs.length - 1; r >= 0; r--) {
     const run = runs[r]
     if (run.mostA * pointOf(run, run.highX).V <= best.W) continue
-    const a = run.weakest.diode.thermalV
-    const top = fallingRoot(run, growth, run.highX - a * Math.log1p(Math.max(0, run.highX) / a))
-    if (top.I * top.V > best.W) best = { W: top.I * top.V, V: top.V, A: top.I }
+    const top = topOf(run)
+    if (top.W > best.W) best = top
   }
   return best
+}
+
+/** The run's best point; at one of its ends where its hill's top lies beyond. */
+function topOf(run: Run): OperatingPoint {
+  const a = run.weakest.diode.thermalV
+  const { I, V } = fallingRoot(run, growth, run.highX - a * Math.log1p(Math.max(0, run.highX) / a))
+  return { W: I * V, V, A: I }
+}
+
+/**
+ * Voltage between two at which cells in series give most: the top of a hill, or one of the two.
+ *
+ * @param lowV   ≥ 0. [V]
+ * @param highV  ≥ lowV. [V]
+ */
+export function bestOfSubstringsBetweenV(substrings: LitSubstring[], lowV: number, highV: number): number {
+  const edges = [lowV, highV].map((V) => ({ W: powerOfSubstringsAtV(substrings, V), V }))
+  const tops = runsOf(substrings).map(topOf)
+  const inside = tops.filter(({ V }) => V >= lowV && V <= highV)
+  return [...edges, ...inside].reduce((best, each) => (each.W > best.W ? each : best)).V
 }
 
 /**
@@ -233,3 +252,11 @@ export const stringPowerAtV = (
   cellC: ArrayLike<number>,
   volts: number,
 ): number => powerOfSubstringsAtV(litSubstrings(string, effectiveWm2, cellC), volts) * string.cellsInParallel
+
+/** Voltage between two at which a string in its panels' light gives most. [V] */
+export const stringBestBetweenV = (
+  string: StringModel,
+  effectiveWm2: ArrayLike<number>,
+  cellC: ArrayLike<number>,
+  span: { lowV: number; highV: number },
+): number => bestOfSubstringsBetweenV(litSubstrings(string, effectiveWm2, cellC), span.lowV, span.highV)

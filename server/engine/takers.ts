@@ -1,7 +1,7 @@
 import type { BalanceDay, Car, TrackerDay } from './balance.ts'
 import type { Energy } from './energy.ts'
 import { type BestPoint, newOperatingPoint, operatingPoint, type Surroundings } from './operating-point.ts'
-import { offBestW } from './string-harvest.ts'
+import { offBest } from './string-harvest.ts'
 import { channelsOf, LIMITS, type Tracker, type TrackerLimit } from './tracker.ts'
 import { inputForOutputW, trackerOutputW } from './tracker-output.ts'
 
@@ -65,10 +65,15 @@ export function takers(car: Car, { harvest, weather, steps }: BalanceDay): Taker
   const channels = car.trackers.map(channelsOf)
   const allStandbyW = channels.map((list) => list.reduce((total, one) => total + standbyOf(one), 0))
   const point = newOperatingPoint()
-  const best = car.array.strings.plain.map((plain): BestPoint => ({ W: 0, V: 0, hasHills: plain === null }))
   const around: Surroundings = { packV: 0, airC: 0, isMoving: false }
   let step = 0
-  const powerAtV = car.trackers.map((_, s) => (volts: number) => offBestW(car.array, s, step, harvest, volts))
+  const strings = car.trackers.map((_, s) => offBest(car.array, s, harvest))
+  const powerAtV = strings.map((string) => (volts: number) => string.atV(step, volts))
+  const best = strings.map((string, s): BestPoint => {
+    const hasOneHill = car.array.strings.plain[s] !== null
+    const bestBetweenV = (lowV: number, highV: number): number => string.bestBetweenV(step, lowV, highV)
+    return { W: 0, V: 0, bestBetweenV: hasOneHill ? undefined : bestBetweenV }
+  })
 
   return {
     take(index, packV) {

@@ -11,7 +11,7 @@ import {
 import { iamPhysical, martinRuizGround, martinRuizSky } from '../../server/engine/incidence.ts'
 import { liftedNormal } from '../../server/engine/panel-light.ts'
 import { aimAtSun, type Stand } from '../../server/engine/stand.ts'
-import { offBestW } from '../../server/engine/string-harvest.ts'
+import { offBest } from '../../server/engine/string-harvest.ts'
 import { stringBest } from '../../server/engine/string.ts'
 import type { StringModel } from '../../server/engine/substrings.ts'
 
@@ -332,10 +332,10 @@ describe('the strings of the array', () => {
     const harvest = arrayHarvest(prepared, { ...stepsOf([{}]), exact: true })
     strings.forEach((_, s) => {
       const [best, volts] = [harvest.bestW[s][0], harvest.bestV[s][0]]
-      expect(Math.abs(offBestW(prepared, s, 0, harvest, volts) / best - 1)).toBeLessThan(1e-9)
-      expect(offBestW(prepared, s, 0, harvest, 0.9 * volts)).toBeLessThan(best)
-      expect(offBestW(prepared, s, 0, harvest, 1.1 * volts)).toBeLessThan(best)
-      expect(offBestW(prepared, s, 0, harvest, 2 * volts)).toBe(0)
+      expect(Math.abs(offBest(prepared, s, harvest).atV(0, volts) / best - 1)).toBeLessThan(1e-9)
+      expect(offBest(prepared, s, harvest).atV(0, 0.9 * volts)).toBeLessThan(best)
+      expect(offBest(prepared, s, harvest).atV(0, 1.1 * volts)).toBeLessThan(best)
+      expect(offBest(prepared, s, harvest).atV(0, 2 * volts)).toBe(0)
     })
   })
 })

@@ -1,5 +1,5 @@
 import type { CellReference } from '../../server/engine/cell.ts'
-import { solveBest, solveHeld } from '../../server/engine/string-point.ts'
+import { solveBest, solveBestBetween, solveHeld } from '../../server/engine/string-point.ts'
 import { stringSolver } from '../../server/engine/string-solver.ts'
 import { loadStep } from '../../server/engine/string-step.ts'
 import { type CellFault, cellsUnderDiode, type StringModel } from '../../server/engine/substrings.ts'
@@ -94,6 +94,7 @@ export function solved({ string, lights, warmths }: StringCase): {
   V: number
   A: number
   heldW: (volts: number) => number
+  bestBetweenV: (lowV: number, highV: number) => number
 } {
   const solver = stringSolver(string)
   loadStep(
@@ -104,7 +105,13 @@ export function solved({ string, lights, warmths }: StringCase): {
   )
   const best = new Float64Array(3)
   solveBest(solver, best)
-  return { W: best[0], V: best[1], A: best[2], heldW: (volts) => solveHeld(solver, volts) }
+  return {
+    W: best[0],
+    V: best[1],
+    A: best[2],
+    heldW: (volts) => solveHeld(solver, volts),
+    bestBetweenV: (lowV, highV) => solveBestBetween(solver, { lowV, highV }, new Float64Array(3)),
+  }
 }
 
 /**

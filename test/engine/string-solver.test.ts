@@ -1,9 +1,9 @@
 import { describe, expect, it } from 'vitest'
 import type { ArrayHarvest, PreparedArray } from '../../server/engine/array.ts'
 import { type CellReference, deSoto, maximumPower } from '../../server/engine/cell.ts'
-import { fillStrings, offBestW, prepareStrings } from '../../server/engine/string-harvest.ts'
+import { fillStrings, offBest, prepareStrings } from '../../server/engine/string-harvest.ts'
 import { isSolvable } from '../../server/engine/string-solver.ts'
-import { stringBest, stringPowerAtV } from '../../server/engine/string.ts'
+import { stringBest, stringBestBetweenV, stringPowerAtV } from '../../server/engine/string.ts'
 import type { StringModel } from '../../server/engine/substrings.ts'
 import { seeded } from './seeded.ts'
 import {
@@ -51,6 +51,35 @@ describe('the fast solution of a string', () => {
     expect(counted.held).toBeGreaterThan(10_000)
     expect(counted.dark).toBeLessThan(1000)
   }, 60_000)
+
+  it('finds the best place between two voltages: a scan over them finds none better', () => {
+    const random = seeded(31)
+    const counted = { all: 0, inside: 0, edge: 0, away: 0 }
+    for (let i = 0; i < 600; i++) {
+      const one = stringByChance(random)
+      const { string, lights, warmths } = one
+      const cells = string.groups.reduce((sum, { cellsInSeries }) => sum + cellsInSeries, 0)
+      const lowV = 0.6 * cells * random()
+      const highV = lowV + 0.4 * cells * random()
+      const { W, V, heldW, bestBetweenV } = solved(one)
+      const between = bestBetweenV(lowV, highV)
+      const exact = stringBestBetweenV(string, lights, warmths, { lowV, highV })
+      const [got, want] = [between, exact].map((volts) => stringPowerAtV(string, lights, warmths, volts))
+      const what = (): string => JSON.stringify({ ...one, lowV, highV, between, exact, got, want })
+      if (!(between >= lowV && between <= highV)) expect.fail(what())
+      if (!(Math.abs(got - want) <= 1e-4 * want + 1e-6 * W)) expect.fail(what())
+      for (let k = 0; k <= 60; k++)
+        if (heldW(lowV + ((highV - lowV) * k) / 60) > got * (1 + 1e-4) + 1e-6 * W) expect.fail(`${k} ${what()}`)
+      counted.all++
+      if (between > lowV && between < highV) counted.inside++
+      else counted.edge++
+      if (W > 0 && (V < lowV || V > highV) && between > lowV && between < highV) counted.away++
+    }
+    expect(counted.all).toBe(600)
+    expect(counted.inside).toBeGreaterThan(100)
+    expect(counted.edge).toBeGreaterThan(100)
+    expect(counted.away).toBeGreaterThan(20)
+  })
 
   // Source: by hand, a junction without resistances: V = Voc + a·ln(1 − I/IL), −0.5 V past a diode; highest by a scan.
   it('is that of junctions without resistances, worked by their closed form', () => {
@@ -123,7 +152,7 @@ describe('the fast solution of a string', () => {
       const best = stringBest(strange, lights, warmths)
       const what = (): string => JSON.stringify({ strange, lights, warmths, best, W: W[0] })
       if (strings.plain[0] === null && !(Math.abs(W[0] - best.W) <= 1e-4 * best.W)) expect.fail(what())
-      const heldW = offBestW({ strings } as PreparedArray, 0, 0, harvest, 0.9 * best.V)
+      const heldW = offBest({ strings } as PreparedArray, 0, harvest).atV(0, 0.9 * best.V)
       const wantW = stringPowerAtV(strange, lights, warmths, 0.9 * best.V)
       if (!(Math.abs(heldW - wantW) <= 1e-4 * wantW)) expect.fail(`held ${heldW} ${what()}`)
       if (!isSolvable(cell)) counted++

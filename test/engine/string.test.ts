@@ -2,12 +2,7 @@ import * as fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
 import { type CellReference, deSoto, maximumPower, voltageAtCurrent } from '../../server/engine/cell.ts'
 import { bestOfCells, exactBestOfCells, powerTable, TABLE_RANGE } from '../../server/engine/power-table.ts'
-import {
-  bestOfSubstrings,
-  type LitSubstring,
-  powerOfSubstringsAtV,
-  stringBest,
-} from '../../server/engine/string.ts'
+import { bestOfSubstrings, type LitSubstring, powerOfSubstringsAtV, stringBest } from '../../server/engine/string.ts'
 import type { StringModel } from '../../server/engine/substrings.ts'
 import { referenceRows } from '../support/reference.ts'
 
