@@ -5,12 +5,17 @@ import { type Ring, ring, ringMean, ringPlace, ringValue } from './ring.ts'
 /** Half the sun's width as seen from the earth, 16′ (mean; common knowledge). [rad] */
 const SUN_RADIUS_RAD = (16 / 60) * (Math.PI / 180)
 
+/** Height of the band over the level horizon that is brighter than the dome (Perez et al. 1987, from memory). [rad] */
+const BAND_RAD = (6.5 * Math.PI) / 180
+
 /** What stands around a parked car: trees, hills, walls. */
 export interface Horizon {
   /** One column: height by azimuth, clockwise from true north. [rad] */
   heights: Ring
   /** Share of the sky's diffuse light that a level surface still gets, 0..1. */
   skyView: number
+  /** Share of the bright band over the level horizon that is left, 0..1. */
+  bandView: number
 }
 
 /** Which horizon holds at each step: `of[at[i]]`, null for an open one. */
@@ -34,7 +39,11 @@ export function horizon(field: string, rows: { azimuthRad: number; heightRad: nu
     rows.map((row) => row.azimuthRad),
     [rows.map((row) => row.heightRad)],
   )
-  return { heights, skyView: 1 - ringMean(heights, ([h]) => Math.sin(h) ** 2) }
+  return {
+    heights,
+    skyView: 1 - ringMean(heights, ([h]) => Math.sin(h) ** 2),
+    bandView: 1 - ringMean(heights, ([h]) => Math.min(1, h / BAND_RAD)),
+  }
 }
 
 /** @throws InputError that names the first height out of range */
@@ -61,7 +70,8 @@ export function sunOverEdge(overRad: number): number {
 
 /**
  * Takes from a block of sky what a horizon hides at steps from..to−1: beam and light from around the sun as the apparent
- * sun goes under it, the rest of the diffuse by the view of the sky, and both from what the ground gets.
+ * sun goes under it, the dome by the view of the sky, the band over the level horizon by its part that is hidden; and the
+ * same from what the ground gets, which the band does not reach.
  *
  * The view is that of a level surface and is used for tilted panels too. What is hidden counts as dark. A height of 0
  * hides nothing, so that a level horizon changes nothing at all.
@@ -73,7 +83,7 @@ export function hideSky({ of, at }: HorizonsAlong, from: number, to: number, blo
   }
 }
 
-function hideStep({ heights, skyView }: Horizon, block: SkyBlock, b: number): void {
+function hideStep({ heights, skyView, bandView }: Horizon, block: SkyBlock, b: number): void {
   const up = block.sunUp[b]
   const heightRad = ringValue(heights.columns[0], ringPlace(heights, Math.atan2(block.sunEast[b], block.sunNorth[b])))
   const seen = heightRad > 0 ? sunOverEdge(Math.asin(Math.min(1, Math.max(-1, up))) - heightRad) : 1
@@ -83,6 +93,6 @@ function hideStep({ heights, skyView }: Horizon, block: SkyBlock, b: number): vo
   block.aroundSunWm2[b] *= seen
   // A share below zero only darkens; hiding it must not brighten a panel.
   if (block.domeWm2[b] > 0) block.domeWm2[b] *= skyView
-  if (block.horizonWm2[b] > 0) block.horizonWm2[b] *= skyView
+  if (block.horizonWm2[b] > 0) block.horizonWm2[b] *= bandView
   block.groundWm2[b] = Math.max(0, block.groundWm2[b] - lostWm2)
 }

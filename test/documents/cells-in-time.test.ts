@@ -1,24 +1,30 @@
 import { describe, expect, test } from 'vitest'
 import type { BudgetDocument } from '../../server/documents/budget.ts'
 import type { CarInput } from '../../server/documents/car.ts'
+import { carModel } from '../../server/documents/car-model.ts'
 import { checkDocument } from '../../server/documents/check.ts'
 import { forecastDocuments, forecastRequest } from '../../server/documents/forecast.ts'
+import { dayRules, raceCourse, stageRules } from '../../server/documents/race-model.ts'
+import { skyModel } from '../../server/documents/sky-model.ts'
+import { type ArrayHarvest, arrayHarvest } from '../../server/engine/array.ts'
+import { arraySteps, daySun, forecastDay } from '../../server/engine/forecast.ts'
+import { weatherAlong } from '../../server/engine/sky.ts'
+import type { Steps } from '../../server/engine/steps.ts'
 import { someCar, someRace, someRoute, someSky } from '../support/scenario.ts'
 
 type Cooling = NonNullable<CarInput['panels'][number]['cooling']>
 
 /** A Saturday at 72 km/h of a car whose panels are cooled so, on a road that warms the air so. */
-function saturday(cooling?: Cooling, roadHeatC?: number): BudgetDocument {
+function request(cooling?: Cooling, roadHeatC?: number) {
   const car = someCar()
   if (cooling !== undefined) for (const panel of car.panels) panel.cooling = cooling
   const road = { ...someRoute(), ...(roadHeatC === undefined ? {} : { roadHeatC }) }
-  const { document, problems } = checkDocument(forecastRequest, {
-    car,
-    race: someRace(),
-    routes: { road },
-    sky: someSky(),
-    speeds: { kind: 'constant', speedKmh: 72 },
-  })
+  const speeds = { kind: 'constant', speedKmh: 72 }
+  return { car, race: someRace(), routes: { road }, sky: someSky(), speeds }
+}
+
+function saturday(cooling?: Cooling, roadHeatC?: number): BudgetDocument {
+  const { document, problems } = checkDocument(forecastRequest, request(cooling, roadHeatC))
   if (document === undefined) throw new Error(JSON.stringify(problems))
   return forecastDocuments(document)
 }
@@ -70,6 +76,74 @@ describe('cells over a day', () => {
     expect(gainWh).toBeLessThan(6)
   })
 })
+
+describe('minutes against seconds', () => {
+  test('light and air at the middle of a step are as good as sixty steps in its place: 0.1 K and 0.01 % of the harvest', () => {
+    const { document } = checkDocument(forecastRequest, request())
+    if (document === undefined) throw new Error('expected a sound request')
+    const race = {
+      car: carModel(document.car, { groundAlbedo: 0.2, skyModel: 'perez' }),
+      course: raceCourse(document.race, document.routes),
+      stages: stageRules(document.race),
+      days: dayRules(document.race),
+      sky: skyModel(document.sky).sky,
+    }
+    const path = daySun(race.days[0])
+    const opening = { standing: { stage: 0, placeM: 0, stopLeftS: 0 }, charge: 0.3 }
+    const wantedMps = new Float64Array(race.course.pieces.count).fill(20)
+    const { steps, weather, air, aim } = forecastDay(race, 0, opening, wantedMps, path)
+    const parts = 60
+    const fine = cutFiner(steps, parts)
+    const repeated = (column: Float64Array) => Float64Array.from(fine.fromMs, (__, i) => column[Math.floor(i / parts)])
+    const one = { ...arraySteps(race.car, { course: race.course, steps, weather, air }), aim }
+    const other = {
+      ...arraySteps(race.car, {
+        course: race.course,
+        steps: fine,
+        weather: weatherAlong(race.sky, path, fine),
+        air: { ...air, overPanelsMps: repeated(air.overPanelsMps) },
+      }),
+      aim: { tiltRad: repeated(aim.tiltRad), azimuthRad: repeated(aim.azimuthRad) },
+    }
+    const minutes = arrayHarvest(race.car.array, { ...one, exact: true })
+    const seconds = arrayHarvest(race.car.array, { ...other, exact: true })
+    const energyJ = (harvest: ArrayHarvest, { fromMs, toMs }: Steps) =>
+      harvest.bestW.reduce((sum, W) => sum + W.reduce((J, w, i) => J + (w * (toMs[i] - fromMs[i])) / 1000, 0), 0)
+    let worst = 0
+    minutes.cellC.forEach((cellC, p) =>
+      cellC.forEach((C, i) => {
+        const own = seconds.cellC[p].subarray(i * parts, (i + 1) * parts)
+        worst = Math.max(worst, Math.abs(C - own.reduce((sum, each) => sum + each, 0) / parts))
+      }),
+    )
+    expect(worst).toBeLessThan(0.1)
+    expect(Math.abs(energyJ(minutes, steps) / energyJ(seconds, fine) - 1)).toBeLessThan(1e-4)
+  })
+})
+
+/** Every step in so many equal parts. */
+function cutFiner(steps: Steps, parts: number): Steps {
+  const columns = Object.entries(steps).map(([name, column]) =>
+    typeof column === 'number'
+      ? [name, column * parts]
+      : [
+          name,
+          column.constructor.from(
+            { length: column.length * parts },
+            (_: unknown, i: number) => column[Math.floor(i / parts)],
+          ),
+        ],
+  )
+  const fine: Steps = Object.fromEntries(columns)
+  for (let i = 0; i < fine.count; i++) {
+    const fromMs = fine.fromMs[i]
+    const partMs = (fine.toMs[i] - fromMs) / parts
+    fine.fromMs[i] = fromMs + (i % parts) * partMs
+    fine.toMs[i] = fine.fromMs[i] + partMs
+    fine.atMs[i] = fine.fromMs[i] + partMs / 2
+  }
+  return fine
+}
 
 describe('what cools the cells', () => {
   test('an open rack’s formula is held to its range and said so', () => {

@@ -61,6 +61,17 @@ describe('a horizon in the race', () => {
     expect(wh(both, 'evening-charge')).toBeGreaterThan(0.9 * wh(open, 'evening-charge'))
   })
 
+  test('that hides the sun leaves the array to the sky: it is held level', () => {
+    const tilts = ({ series }: DayBudget) => {
+      const last = series.speedKmh.findLastIndex((v) => v > 0)
+      return series.tiltDeg.slice(last + 4, last + 26)
+    }
+    const [hidden] = forecast(saturday({ stop: [{ azimuthDeg: 0, heightDeg: 70 }] })).days
+    expect(Math.min(...tilts(open))).toBeGreaterThan(30)
+    // By hand: the dome is seen best by a level deck; the nose panel, which leans on it by 8°, pulls it back a little.
+    expect(Math.max(...tilts(hidden))).toBeLessThan(8)
+  })
+
   test('is named in the assumptions, with the windows that have one', () => {
     const { assumptions } = forecast(saturday({ stop: WALL, windows: [undefined, WALL] }))
     expect(assumptions).toContain(

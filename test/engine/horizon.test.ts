@@ -158,6 +158,31 @@ describe('light behind a horizon', () => {
     expect(plane).toBeCloseTo((800 + aroundSun) * 0.25 + dome * Math.cos(30 * RAD) ** 2, 6)
   })
 
+  // Source: by hand; Perez' brightening of the horizon is a band of 6.5°, which the hills hide whole, half or by a half turn.
+  it('loses the bright band over the level horizon as the hills rise into it', () => {
+    // Turned away from the sun, an upright panel gets half of the dome, and the band.
+    const away = (horizon?: Horizon): number => {
+      const at = { azimuthDeg: 180, elevationDeg: 20, dhi: 90 }
+      return lightOn([flatPanel({ pitchRad: 90 * RAD })], at, { horizon, skyModel: 'perez' }).plane[0]
+    }
+    const dome = away(horizonOf([[0, 6.5]])) / Math.cos(6.5 * RAD) ** 2
+    const band = away() - dome
+    expect(band).toBeGreaterThan(5)
+    const bandLeft = (rows: Row[]): number => {
+      const under = horizonOf(rows)
+      return (away(under) - dome * under.skyView) / band
+    }
+    expect(bandLeft([[0, 3.25]])).toBeCloseTo(0.5, 9)
+    expect(bandLeft([[0, 40]])).toBeCloseTo(0, 9)
+    const halfTurn: Row[] = [
+      [0, 0],
+      [179.9, 0],
+      [180, 6.5],
+      [359.9, 6.5],
+    ]
+    expect(bandLeft(halfTurn)).toBeCloseTo(0.5, 3)
+  })
+
   it('counts only where the sun stands: a hill in the west takes no morning beam', () => {
     const hill = horizonOf([
       [180, 0],
