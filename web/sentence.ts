@@ -24,7 +24,8 @@ export const spoken = (phrase: Phrase): string =>
 
 const energy = (wh: number, shownWh: number): Figure => ({ text: grouped(shownWh), unit: 'Wh', wh })
 const kmh = (speed: number): Figure => ({ text: String(Math.round(speed)), unit: 'km/h' })
-const pct = (value: number): Figure => ({ text: grouped(value), unit: '%' })
+/** Charge by coulombs, which the crew counts; never a share of energy. */
+const pct = (value: number): Figure => ({ text: grouped(value), unit: '% charge' })
 const time = (day: DayBudget, at: string): Figure => ({ text: clockOn(at, day.utcOffsetMin) })
 
 /** The one sentence of the day: what to do first, then what follows from it. */
@@ -121,10 +122,13 @@ function below(day: DayBudget): Phrase {
 }
 
 function flat(day: DayBudget): Phrase {
-  const when: Phrase = day.outcome.at === null ? [] : [' at ', time(day, day.outcome.at)]
-  const where: Phrase = day.outcome.km === null ? [] : [', km ', plainKm(day.outcome.km)]
   const short = round10(day.ledger.shortWh)
   const lack: Phrase = short < 10 ? [] : ['; the day lacks ', energy(day.ledger.shortWh, short)]
+  // A cold or hot pack, a weak cell, too much power: the service's own words say it best.
+  if (/cold|hot|weakest|cannot/.test(day.outcome.text))
+    return [lowerFirst(day.outcome.text.replace(/\.$/, '')), ...lack]
+  const when: Phrase = day.outcome.at === null ? [] : [' at ', time(day, day.outcome.at)]
+  const where: Phrase = day.outcome.km === null ? [] : [', km ', plainKm(day.outcome.km)]
   return ['the battery runs flat', ...when, ...where, ...lack]
 }
 

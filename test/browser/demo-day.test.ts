@@ -108,7 +108,7 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
     const first = await slider.getAttribute('aria-valuetext')
     await slider.press('ArrowRight')
     const second = await slider.getAttribute('aria-valuetext')
-    expect(first).toMatch(/^\d\d:\d\d, km [\d\u202f]+, in [\d\u202f]+ W, out [\d\u202f]+ W, battery \d+ %$/)
+    expect(first).toMatch(/^\d\d:\d\d, km [\d\u202f]+, in [\d\u202f]+ W, out [\d\u202f]+ W, battery \d+ % charge$/)
     expect(second).not.toBe(first)
   })
 

@@ -14,7 +14,7 @@ const ends = (kind: DayBudget['outcome']['kind'], at: string | null, km: number 
 describe('the sentence of the day', () => {
   it('says what to hold, where that leads and what is left', () => {
     expect(say(sampleDay())).toBe(
-      'Hold 78 km/h: reach Blue Gate 14:00, close the day with 2 080 Wh, 41 %, at least 1 340 Wh above reserve.',
+      'Hold 78 km/h: reach Blue Gate 14:00, close the day with 2 080 Wh, 41 % charge, at least 1 340 Wh above reserve.',
     )
   })
 
@@ -35,13 +35,15 @@ describe('the sentence of the day', () => {
       outcome: ends('cut-off', sampleAt('17:00'), 356.4),
       stages: [first, { ...second, isFinished: false, toKm: 356.4 }],
     })
-    expect(say(day)).toBe('Hold 78 km/h: stop 17:00 at km 356 before Blue Gate, close the day with 2 080 Wh, 41 %.')
+    expect(say(day)).toBe(
+      'Hold 78 km/h: stop 17:00 at km 356 before Blue Gate, close the day with 2 080 Wh, 41 % charge.',
+    )
   })
 
   it('says that a stop goes on the next day when the clock ends inside it', () => {
     const day = sampleDay({ outcome: ends('cut-off', sampleAt('11:10'), 200), stages: sampleDay().stages.slice(0, 1) })
     expect(say(day)).toBe(
-      'Hold 78 km/h: reach Twin Wells 11:00, part of the stop is left for the next day, close the day with 2 080 Wh, 41 %.',
+      'Hold 78 km/h: reach Twin Wells 11:00, part of the stop is left for the next day, close the day with 2 080 Wh, 41 % charge.',
     )
   })
 
@@ -90,9 +92,18 @@ describe('the sentence of the day', () => {
     )
   })
 
+  it('says why a battery that is not flat gives no more', () => {
+    const text = 'The pack is too cold to give the power asked of it at Twin Wells, 11:30.'
+    const outcome = { kind: 'runs-flat' as const, text, at: sampleAt('11:30'), km: 200 }
+    expect(say(sampleDay({ outcome, ledger: { ...LEDGER, shortWh: 1304 } }))).toBe(
+      'Change the plan of 78 km/h: the pack is too cold to give the power asked of it at Twin Wells, 11:30; ' +
+        'the day lacks 1 300 Wh.',
+    )
+  })
+
   it('stays parked on a day without a stage', () => {
     expect(say(sampleDay({ outcome: ends('parked', null, null), stages: [], heldKmh: null }))).toBe(
-      'Stay parked: close the day with 2 080 Wh, 41 %, at least 1 340 Wh above reserve.',
+      'Stay parked: close the day with 2 080 Wh, 41 % charge, at least 1 340 Wh above reserve.',
     )
   })
 
@@ -109,14 +120,18 @@ describe('the sentence of a stage', () => {
 
   it('says arrival, what is left then, and the departure after its stop', () => {
     const day = sampleDay()
-    expect(text(day, 0)).toMatch(/^Hold 78 km\/h to Twin Wells: arrive 11:00 with 3 140 Wh, 62 %; leave 11:30 with /)
-    expect(text(day, 1)).toBe('Hold 78 km/h to Blue Gate: arrive 14:00 with 3 140 Wh, 62 %.')
+    expect(text(day, 0)).toMatch(
+      /^Hold 78 km\/h to Twin Wells: arrive 11:00 with 3 140 Wh, 62 % charge; leave 11:30 with /,
+    )
+    expect(text(day, 1)).toBe('Hold 78 km/h to Blue Gate: arrive 14:00 with 3 140 Wh, 62 % charge.')
   })
 
   it('says where the day ends on a stage that is not finished', () => {
     const day = sampleDay()
     day.stages[1] = { ...day.stages[1], isFinished: false, toKm: 356.4 }
-    expect(text(day, 1)).toBe('Hold 78 km/h towards Blue Gate: the day ends at km 356, 14:00 with 3 140 Wh, 62 %.')
+    expect(text(day, 1)).toBe(
+      'Hold 78 km/h towards Blue Gate: the day ends at km 356, 14:00 with 3 140 Wh, 62 % charge.',
+    )
   })
 })
 

@@ -49,7 +49,7 @@ export function Reserve({ day, axis, top }: { day: DayBudget; axis: Axis; top: n
     <g>
       <path d={`M0 ${y - 1.6}H${axis.width}M0 ${y + 1.6}H${axis.width}`} stroke="var(--floor)" stroke-width="1.4" />
       <text x="0" y={y + 16} class="fl">
-        {`Reserve ${grouped(day.reserve.chargePct)}${THIN}%, ${grouped(round10(day.reserve.wh))}${THIN}Wh`}
+        {`Reserve ${grouped(day.reserve.chargePct)}${THIN}% charge, ${grouped(round10(day.reserve.wh))}${THIN}Wh`}
       </text>
     </g>
   )

@@ -40,7 +40,7 @@ export function DayBand({ day }: { day: DayBudget }) {
       <ReadSlider day={day} axis={axis} atMs={at} onRead={(ms) => (readMs.value = ms)} />
       <p class="note">
         Ruled is to come: one forecast, without a range. {mode.value === 'distance' && 'Still hours are folded. '}
-        Grey is a stop. W above and below the middle line on one scale; battery by the right edge.
+        Grey is a stop. W above and below the middle line on one scale; battery charge in % by the right edge.
       </p>
       <GateTable day={day} />
     </section>
@@ -69,7 +69,7 @@ function Key({ day, reading }: { day: DayBudget; reading: Reading | null }) {
         <svg width="22" height="12" aria-hidden="true">
           <path d="M0 6h22" stroke="var(--bal)" stroke-width="2.5" stroke-dasharray="7 3.5" />
         </svg>
-        Battery <Wh text={grouped(shown.chargePct)} unit="%" />
+        Battery <Wh text={grouped(shown.chargePct)} unit="% charge" />
       </span>
     </p>
   )
@@ -98,7 +98,7 @@ function ReadSlider({ day, axis, atMs, onRead }: SliderProps) {
   const reading = readingAt(day, atMs ?? axis.fromMs)
   const text =
     `${clockAt(reading.atMs, day.utcOffsetMin)}, km ${grouped(reading.km)}, in ${grouped(round10(reading.inW))} W, ` +
-    `out ${grouped(round10(reading.outW))} W, battery ${grouped(reading.chargePct)} %`
+    `out ${grouped(round10(reading.outW))} W, battery ${grouped(reading.chargePct)} % charge`
   return (
     <label class="read">
       <span class="note">
@@ -137,7 +137,8 @@ function GateTable({ day }: { day: DayBudget }) {
             <th scope="col">At</th>
             <th scope="col">km</th>
             <th scope="col">Wh</th>
-            <th scope="col">%</th>
+            <th scope="col">% charge</th>
+            <th scope="col">% energy</th>
           </tr>
         </thead>
         <tbody>
@@ -148,6 +149,7 @@ function GateTable({ day }: { day: DayBudget }) {
               <td>{grouped(gate.km)}</td>
               <td data-wh={gate.wh}>{grouped(round10(gate.wh))}</td>
               <td>{grouped(gate.chargePct)}</td>
+              <td>{grouped(gate.energyPct)}</td>
             </tr>
           ))}
         </tbody>

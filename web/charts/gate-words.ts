@@ -13,10 +13,10 @@ export const gateWords = (gate: Gate): string =>
 
 /** The whole band in words, for those who do not see it. */
 export function bandText(day: DayBudget): string {
-  const lowest = `lowest ${grouped(day.lowest.chargePct)} percent near ${day.lowest.place}`
+  const lowest = `lowest ${grouped(day.lowest.chargePct)} percent of charge near ${day.lowest.place}`
   const gates = day.gates.map((gate) => `${gateWords(gate)} ${grouped(gate.chargePct)} percent`).join(', ')
   return (
-    `Day band. Harvest above the middle line, spending below it, battery dashed from 0 to 100 percent. ${gates}; ` +
+    `Day band. Harvest above the middle line, spending below it, battery charge dashed from 0 to 100 percent. ${gates}; ` +
     `${lowest}; reserve at ${grouped(day.reserve.chargePct)} percent. The same as a table follows.`
   )
 }

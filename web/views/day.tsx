@@ -8,6 +8,7 @@ import { Assumptions } from './assumptions.tsx'
 import { DayFacts, StageFacts } from './facts.tsx'
 import { Say } from './figures.tsx'
 import { Ledger } from './ledger.tsx'
+import { PackNote } from './pack-note.tsx'
 import { Ruling } from './ruling.tsx'
 import { Empty, RefusedDay } from './states.tsx'
 import { SpeedPanel } from './speed-panel.tsx'
@@ -64,6 +65,7 @@ function Budget({ last }: { last: Worked }) {
       </div>
       <div class="side">
         <Ledger day={day} stage={stage} />
+        {stage === undefined && <PackNote pack={day.pack} />}
         <AgeOfData last={last} />
         <Assumptions items={budget.assumptions} />
       </div>

@@ -15,8 +15,7 @@ export const DayFacts = ({ day }: { day: DayBudget }) => (
         <Wh text={whText(day.lowest.wh)} unit="Wh" wh={day.lowest.wh} />
       </dd>
       <dd class="note">
-        {grouped(day.lowest.chargePct)}
-        {THIN}%, {clockOn(day.lowest.at, day.utcOffsetMin)}, {placeText(day.lowest)}
+        {shares(day.lowest)}, {clockOn(day.lowest.at, day.utcOffsetMin)}, {placeText(day.lowest)}
       </dd>
     </div>
     {day.target !== null && day.targetMarginWh !== null ? (
@@ -29,7 +28,7 @@ export const DayFacts = ({ day }: { day: DayBudget }) => (
 
 interface TargetProps {
   day: DayBudget
-  target: { wh: number; chargePct: number }
+  target: DayBudget['opening']
   marginWh: number
 }
 
@@ -42,8 +41,7 @@ function AgainstTarget({ day, target, marginWh }: TargetProps) {
         <Wh text={grouped(Math.abs(shownWh))} unit={`Wh ${shownWh < 0 ? 'under' : 'over'}`} wh={marginWh} />
       </dd>
       <dd class="note">
-        target {grouped(target.chargePct)}
-        {THIN}%, {whText(target.wh)}
+        target {shares(target)}, {whText(target.wh)}
         {THIN}Wh at the day’s end
       </dd>
     </div>
@@ -59,8 +57,7 @@ function AgainstReserve({ day }: { day: DayBudget }) {
         <Wh text={grouped(Math.abs(shownWh))} unit={`Wh ${shownWh < 0 ? 'below' : 'above'}`} wh={day.marginWh} />
       </dd>
       <dd class="note">
-        reserve {grouped(day.reserve.chargePct)}
-        {THIN}%, {whText(day.reserve.wh)}
+        reserve {shares(day.reserve)}, {whText(day.reserve.wh)}
         {THIN}Wh
       </dd>
     </div>
@@ -97,6 +94,10 @@ export function StageFacts({ stage, day }: { stage: Stage; day: DayBudget }) {
     </dl>
   )
 }
+
+/** The charge that a crew counts, and the energy that is in it. */
+const shares = ({ chargePct, energyPct }: DayBudget['opening']): string =>
+  `${grouped(chargePct)}${THIN}% charge (${grouped(energyPct)}${THIN}% of the energy)`
 
 /** A place by its name with its distance; one without a name is its distance. */
 const placeText = ({ place, km }: DayBudget['lowest']): string =>

@@ -121,7 +121,8 @@ function ReserveRow({ day }: { day: DayBudget }) {
         Reserve{' '}
         <span class="rg">
           {grouped(day.reserve.chargePct)}
-          {THIN}% of charge, full is {grouped(round10(day.capacityWh))}
+          {THIN}% of charge, {grouped(day.reserve.energyPct)}
+          {THIN}% of energy; full is {grouped(round10(day.capacityWh))}
           {THIN}Wh
         </span>
       </th>
@@ -135,7 +136,7 @@ function ReserveRow({ day }: { day: DayBudget }) {
 /** Sun that never came in: beside the balance, in no sum. */
 function Denied({ ledger }: { ledger: PrintedLedger }) {
   const lines = ledger.denied.filter((line) => line.shownWh > 0)
-  if (lines.length === 0) return <p class="note denied">No sun was denied by a window or a full battery.</p>
+  if (lines.length === 0) return <p class="note denied">No sun was denied by a window or by the battery.</p>
   return (
     <table class="led denied">
       <caption>Sun denied, in no sum</caption>

@@ -49,7 +49,7 @@ function StageRow({ stage, offsetMin }: { stage: Stage; offsetMin: number }) {
         {THIN}km, mean {grouped(stage.meanKmh)}
         {THIN}km/h; {stage.isFinished ? 'in' : 'stopped by the clock'} with {whText(stage.arrival.wh)}
         {THIN}Wh, {grouped(stage.arrival.chargePct)}
-        {THIN}%{stopMin > 0 && `; ${durationText(stopMin)} there`}
+        {THIN}% charge{stopMin > 0 && `; ${durationText(stopMin)} there`}
       </p>
       <p class="when">
         <span class="note">closes </span>
