@@ -125,24 +125,31 @@ export function stepPack(
 ): PackStep {
   if (!Number.isFinite(powerW)) throw new InputError('out-of-range', 'powerW', `${powerW} given, a number expected`)
   if (!(durationS >= 0)) throw new InputError('out-of-range', 'durationS', `${durationS} given, at least 0 expected`)
-  onePart(pack, now, powerW, durationS, out)
+  const isBound = onePart(pack, now, powerW, durationS, out)
+  out.limit = isBound ? limitOf(pack, now, powerW, durationS) : null
   const tapers = out.limit === 'charge-voltage' || out.limit === 'fullest-cell'
   return tapers && durationS > TAPER_PART_S ? taper(pack, now, powerW, durationS, out) : out
 }
 
-function onePart(pack: Pack, now: PackNow, powerW: number, durationS: number, out: PackStep): PackStep {
+function limitOf(pack: Pack, now: PackNow, powerW: number, durationS: number): PackLimit {
+  const perA = chargePerA(pack, durationS, powerW > 0)
+  return powerW > 0 ? chargeLimit(pack, now, perA) : dischargeLimit(pack, now, perA)
+}
+
+/** A step or part of one with one current; all but the limit's name. @returns whether a limit binds */
+function onePart(pack: Pack, now: PackNow, powerW: number, durationS: number, out: PackStep): boolean {
   const isCharging = powerW > 0
   const perA = chargePerA(pack, durationS, isCharging)
   let currentA = currentInStretch(pack, now, perA, powerW)
-  out.limit = null
+  let isBound = false
   out.spilledJ = 0
   out.shortJ = 0
   if (!isWithin(pack, now, perA, currentA)) {
     const mostA = isCharging ? mostInA(pack, now, perA) : mostOutA(pack, now, perA)
     const boundW = powerOfA(pack, now, perA, mostA)
-    if (isCharging ? powerW > boundW : powerW < boundW) {
+    isBound = isCharging ? powerW > boundW : powerW < boundW
+    if (isBound) {
       currentA = mostA
-      out.limit = isCharging ? chargeLimit(pack, now, perA) : dischargeLimit(pack, now, perA)
       if (isCharging) out.spilledJ = (powerW - boundW) * durationS
       else out.shortJ = (boundW - powerW) * durationS
     } else currentA = currentForPower(pack, now, perA, mostA, powerW)
@@ -154,7 +161,7 @@ function onePart(pack: Pack, now: PackNow, powerW: number, durationS: number, ou
   out.endA = currentA
   out.terminalV = ocvV + currentA * now.ohm
   out.lossJ = currentA * (currentA * now.ohm + notKept * ocvV) * durationS
-  return out
+  return isBound
 }
 
 // Scratch for the parts of a step; a step is never re-entered.
@@ -162,7 +169,6 @@ const partNow = newPackNow()
 
 /** A step in which the taper binds, part by part: the current falls with the room under the ceiling. */
 function taper(pack: Pack, now: PackNow, powerW: number, durationS: number, out: PackStep): PackStep {
-  const { limit } = out
   const parts = Math.ceil(durationS / TAPER_PART_S)
   const partS = durationS / parts
   let movedC = 0
@@ -181,6 +187,5 @@ function taper(pack: Pack, now: PackNow, powerW: number, durationS: number, out:
   if (movedC > 0) out.terminalV = takenJ / movedC
   out.lossJ = lossJ
   out.spilledJ = spilledJ
-  out.limit = limit
   return out
 }
