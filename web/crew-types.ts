@@ -1,6 +1,7 @@
 import type { BudgetDocument } from '../server/documents/budget.ts'
 import type { JudgementDocument } from '../server/documents/judgement.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
+import type { TrackerDayDocument } from '../server/documents/tracker-day.ts'
 import type { TrackerReport } from '../server/documents/tracker-report.ts'
 
 export type { ReadingDocument, ReadingField } from '../server/documents/reading.ts'
@@ -9,6 +10,10 @@ export type { KeptReading, TrackerReport } from '../server/documents/tracker-rep
 export type Verdict = JudgementDocument['verdict']
 export type Curve = TrackerReport['bench']
 export type TrackerDay = NonNullable<TrackerReport['day']>
+/** A day of all trackers driven again, one of them in it, and a part of the day. */
+export type TrackerDayWork = TrackerDayDocument
+export type TrackerWork = TrackerDayDocument['trackers'][number]
+export type PartOfDay = TrackerWork['parts'][number]
 
 /** What a day's budget moved by. */
 export interface Moved {
@@ -38,6 +43,8 @@ export interface ReadingAnswer extends JudgementDocument {
 export interface Trackers {
   uses: 'learned' | 'bench'
   items: TrackerReport[]
+  /** The followed day driven again; null where none is followed. */
+  work: TrackerDayWork | null
 }
 
 /** The budget that the crew follows, as somebody chose it. */

@@ -1,7 +1,8 @@
-import type { KeptReading, Move, TrackerDay, TrackerReport, Trackers } from './crew-types.ts'
+import type { KeptReading, Move, TrackerDayWork, TrackerReport, Trackers } from './crew-types.ts'
 import { type CurvePoint, curveAt, curveInUse, pct1 } from './log-reading.ts'
 import { grouped, round10, signed, THIN } from './format.ts'
 import type { Phrase } from './sentence.ts'
+import { outsideMinutes, outsideWh } from './tracker-part.ts'
 
 /** A curve's mean over where the day's energy fell, each bin taken at its middle; null where none fell on it. */
 export function overDay(report: TrackerReport, which: 'bench' | 'learned'): CurvePoint | null {
@@ -35,7 +36,7 @@ export function offBench(report: TrackerReport): number {
 export const isTaken = (entry: KeptReading): boolean => entry.counts && !entry.isSetAside
 
 /** The one sentence over all trackers: which to look at first, or that none calls for it. */
-export function trackersSentence({ items }: Trackers): Phrase {
+export function trackersSentence({ items, work }: Trackers): Phrase {
   const worst = items.reduce<{ report: TrackerReport; points: number } | null>((last, report) => {
     const points = offBench(report)
     return points < 0 && points < (last?.points ?? 0) ? { report, points } : last
@@ -52,11 +53,30 @@ export function trackersSentence({ items }: Trackers): Phrase {
       '.',
     ]
   }
+  const denied = deniedPhrase(work)
+  if (denied !== null) return denied
   const taken = items.flatMap((report) => report.readings.filter(isTaken))
   if (taken.length === 0) return ['No reading counts yet: the bench curves stand.']
   return items.some((report) => offBench(report) > 0)
     ? ['No tracker is under its bench curve: nothing to do.']
     : ['All trackers are on their curves, as far as the readings tell: nothing to do.']
+}
+
+/** Less than this lost at the edges of a window calls for nothing. [Wh] */
+const NOTICEABLE_WH = 10
+
+/** The tracker whose window costs most on the day; null where none costs enough to speak of. */
+function deniedPhrase(work: TrackerDayWork | null): Phrase | null {
+  const worst = work?.trackers.reduce((a, b) => (outsideWh(b.parts[0]) > outsideWh(a.parts[0]) ? b : a))
+  if (worst === undefined || outsideWh(worst.parts[0]) < NOTICEABLE_WH) return null
+  const [day] = worst.parts
+  return [
+    `The ${worst.name} is outside its window for `,
+    { text: grouped(outsideMinutes(day)), unit: 'min' },
+    ' of the day: ',
+    { text: grouped(round10(outsideWh(day))), unit: 'Wh' },
+    ' denied.',
+  ]
 }
 
 /** The terms that the readings do not tell apart from the bench, by name. */
@@ -74,10 +94,6 @@ export function standingOf(report: TrackerReport): string {
   if (off === 0) return `On its bench curve by ${readings}`
   return `${pct1(Math.abs(off))} points ${off < 0 ? 'under' : 'over'} its bench curve by ${readings}`
 }
-
-/** Time outside the window over the day. */
-export const outsideText = ({ outsideMin, deniedWh }: TrackerDay): string =>
-  Math.round(outsideMin) === 0 ? 'all day inside' : `cost ${grouped(round10(deniedWh))}${THIN}Wh`
 
 /** The curve that the forecasts use. */
 export const usedCurve = (report: TrackerReport, { uses }: Trackers) => curveInUse(report, uses)

@@ -158,7 +158,7 @@ describeWithBrowser('a crew with a tracker to read and a convoy to tell', { time
     await page.getByRole('link', { name: 'Trackers' }).click()
     const tail = page.locator('section', { has: page.getByRole('heading', { name: 'Tail tracker' }) })
     await tail.getByText('by 1 reading').waitFor()
-    expect(await tail.getByRole('img').getAttribute('aria-label')).toContain('93.9 percent at 210 watts')
+    expect(await tail.getByRole('img').first().getAttribute('aria-label')).toContain('93.9 percent at 210 watts')
     await page.getByText(/^Sat 17 Oct\. Reading, Tail tracker: /).waitFor()
     expect(await overflowPx(page)).toBe(0)
     expect(await faults(page)).toEqual([])

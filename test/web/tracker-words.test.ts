@@ -60,7 +60,7 @@ const report = (name: string, learnedPct: number, change: Partial<TrackerReport>
   ...change,
 })
 
-const said = (...items: TrackerReport[]): string => spoken(trackersSentence({ uses: 'learned', items }))
+const said = (...items: TrackerReport[]): string => spoken(trackersSentence({ uses: 'learned', items, work: null }))
 
 describe('the sentence over the trackers', () => {
   it('names the one that the readings put furthest under its bench, and what that costs', () => {
@@ -126,7 +126,7 @@ describe('a tracker over the day', () => {
 })
 
 describe('the history', () => {
-  const all = { uses: 'learned' as const, items: [report('Tail', 96)] }
+  const all = { uses: 'learned' as const, items: [report('Tail', 96)], work: null }
   const move = {
     date: '2026-10-17',
     cause: 'reading' as const,

@@ -1,17 +1,21 @@
+import { type Signal, useSignal } from '@preact/signals'
 import { useEffect } from 'preact/hooks'
 import { CurveChart, curveText, markOf } from '../charts/curve.tsx'
+import { WindowChart } from '../charts/window.tsx'
 import { believe } from '../crew.ts'
 import { loadMoves, loadTrackers, news, trackers, trackersRefusal } from '../crew-state.ts'
 import type { TrackerReport, Trackers } from '../crew-types.ts'
-import { dayText, grouped, THIN, whText } from '../format.ts'
-import { pct1 } from '../log-reading.ts'
+import { dayText, grouped } from '../format.ts'
 import { askAgain, choice } from '../state.ts'
-import { isTaken, outsideText, standingOf, trackersSentence, untold, usedCurve } from '../tracker-words.ts'
+import { hatchText, partText, workOf } from '../tracker-part.ts'
+import { isTaken, standingOf, trackersSentence, untold, usedCurve } from '../tracker-words.ts'
 import { Conflict } from './conflict.tsx'
-import { Say, Wh } from './figures.tsx'
+import { SelectField } from './field.tsx'
+import { Say } from './figures.tsx'
 import { History } from './history.tsx'
 import { Readings } from './readings.tsx'
 import { Ruling } from './ruling.tsx'
+import { Worth } from './worth.tsx'
 
 /** Each tracker as bench and readings show it: its curve, where the day's energy fell, what a point is worth. */
 export function TrackersView() {
@@ -44,6 +48,7 @@ const Waiting = () => (
 )
 
 function All({ all, race }: { all: Trackers; race: string }) {
+  const part = useSignal(0)
   const reload = (): void => {
     news.value++
     askAgain()
@@ -55,9 +60,10 @@ function All({ all, race }: { all: Trackers; race: string }) {
           <Say phrase={trackersSentence(all)} />
         </h1>
         <Use all={all} race={race} onChange={reload} />
+        <Part all={all} part={part} />
       </div>
       {all.items.map((report) => (
-        <One key={report.name} report={report} all={all} race={race} onChange={reload} />
+        <One key={report.name} report={report} all={all} race={race} part={part.value} onChange={reload} />
       ))}
       <History />
     </>
@@ -89,14 +95,30 @@ function Use({ all, race, onChange }: { all: Trackers; race: string; onChange: (
   )
 }
 
+/** Which part of the day the figures below are of. */
+function Part({ all, part }: { all: Trackers; part: Signal<number> }) {
+  const parts = all.work?.trackers[0]?.parts ?? []
+  if (parts.length < 2) return null
+  return (
+    <SelectField
+      label="Part of the day"
+      value={String(Math.min(part.value, parts.length - 1))}
+      options={parts.map((one, i) => [String(i), partText(one)] as const)}
+      onChange={(value) => (part.value = Number(value))}
+    />
+  )
+}
+
 interface OneProps {
   report: TrackerReport
   all: Trackers
   race: string
+  /** Which part of the day to show. */
+  part: number
   onChange: () => void
 }
 
-function One({ report, all, race, onChange }: OneProps) {
+function One({ report, all, race, part, onChange }: OneProps) {
   const marks = report.readings.map(markOf)
   const isRead = report.readings.some(isTaken)
   const hasBench = isRead && all.uses === 'learned'
@@ -107,60 +129,44 @@ function One({ report, all, race, onChange }: OneProps) {
         <h2 id={id}>{report.name}</h2>
         <span class="note">{standingOf(report)}</span>
       </div>
-      <CurveChart
-        label={curveText(report.name, marks)}
-        inputW={report.inputW}
-        maxW={report.maxW}
-        curve={usedCurve(report, all)}
-        {...(hasBench ? { bench: report.bench } : {})}
-        {...(report.day === null ? {} : { fell: report.day.fell })}
-        marks={marks}
-      />
-      <p class="note">
-        Band and whiskers hold 95 of 100. {hasBench && 'Dashed is the bench. '}At {grouped(report.inputV)} V in,{' '}
-        {grouped(report.outputV)} V out.{' '}
-        {report.day !== null && `Below: where the Wh of ${dayText(report.day.date)} fell. `}
-        {isRead && untold(report)}
-      </p>
-      {report.day === null ? (
-        <p class="note gap">What it is worth shows once a day is followed.</p>
-      ) : (
-        <Worth report={report} />
-      )}
+      <div class="tracks">
+        <div>
+          <CurveChart
+            label={curveText(report.name, marks)}
+            inputW={report.inputW}
+            maxW={report.maxW}
+            curve={usedCurve(report, all)}
+            {...(hasBench ? { bench: report.bench } : {})}
+            {...(report.day === null ? {} : { fell: report.day.fell })}
+            marks={marks}
+          />
+          <p class="note">
+            Band and whiskers hold 95 of 100. {hasBench && 'Dashed is the bench. '}At {grouped(report.inputV)} V in,{' '}
+            {grouped(report.outputV)} V out.{' '}
+            {report.day !== null && `Below: where the Wh of ${dayText(report.day.date)} fell. `}
+            {isRead && untold(report)}
+          </p>
+          {report.benchTold !== null && <p class="note">{report.benchTold}</p>}
+        </div>
+        <Day report={report} all={all} part={part} />
+      </div>
       <Readings report={report} race={race} onChange={onChange} />
     </section>
   )
 }
 
-function Worth({ report }: { report: TrackerReport }) {
-  const { day } = report
-  if (day === null) return null
+/** A tracker over a part of the day: where it worked, and what that is worth. */
+function Day({ report, all, part }: Pick<OneProps, 'report' | 'all' | 'part'>) {
+  const work = workOf(report.name, all.work)
+  if (all.work === null || work === null) return <p class="note gap">What it is worth shows once a day is followed.</p>
+  const at = Math.min(part, work.parts.length - 1)
   return (
-    <dl class="facts three">
+    <>
       <div>
-        <dt>Share of the day</dt>
-        <dd>
-          <Wh text={whText(day.wh)} unit="Wh" />
-        </dd>
-        <dd class="note">
-          {grouped(day.sharePct)}
-          {THIN}%{day.wh > 0 && `, at ${pct1(day.meanEfficiencyPct)}${THIN}%`}
-        </dd>
+        <WindowChart work={work} part={work.parts[at]} utcOffsetMin={all.work.utcOffsetMin} />
+        <p class="note">{hatchText(work)}</p>
       </div>
-      <div>
-        <dt>Outside window</dt>
-        <dd>
-          <Wh text={grouped(day.outsideMin)} unit="min" />
-        </dd>
-        <dd class="note">{outsideText(day)}</dd>
-      </div>
-      <div>
-        <dt>One point better</dt>
-        <dd>
-          <Wh text={`+${grouped(day.onePointWh)}`} unit="Wh" />
-        </dd>
-        <dd class="note">at the close</dd>
-      </div>
-    </dl>
+      <Worth work={work} part={work.parts[at]} all={all.work} at={at} />
+    </>
   )
 }
