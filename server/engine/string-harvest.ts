@@ -118,14 +118,18 @@ export function offBest(array: PreparedArray, stringIndex: number, harvest: Arra
   const solver = array.strings.solvers[stringIndex]
   if (solver === null) return offBestExactly(array.strings.models[stringIndex], harvest)
   const best = new Float64Array(3)
+  let bestStep = -1
   return {
     atV(step, volts) {
+      if (step === bestStep && volts === best[1]) return best[0]
       loadStep(solver, effectiveWm2, cellC, step)
       return solveHeld(solver, volts)
     },
     bestBetweenV(step, lowV, highV) {
       loadStep(solver, effectiveWm2, cellC, step)
-      return solveBestBetween(solver, { lowV, highV }, best)
+      solveBestBetween(solver, { lowV, highV }, best)
+      bestStep = step
+      return best[1]
     },
   }
 }

@@ -112,17 +112,23 @@ export function solveHeld(s: StringSolver, volts: number): number {
 }
 
 /**
- * Voltage between two at which the loaded step's string gives most: a hill's top, or one of the two.
+ * Voltage between two at which the loaded step's string gives most, and that power: a hill's top, or one of the two.
  *
  * Power has one hill over voltage with each set of substrings, so between its tops it is highest at an edge.
  *
  * @param span  0 ≤ lowV ≤ highV. [V]
+ * @param best  overwritten: W of all rows of cells, V
  */
-export function solveBestBetween(s: StringSolver, span: Span, best: Float64Array): number {
+export function solveBestBetween(s: StringSolver, span: Span, best: Float64Array): void {
   const { lowV, highV } = span
-  const [lowW, highW] = [solveHeld(s, lowV) / s.rows, solveHeld(s, highV) / s.rows]
-  best[0] = Math.max(lowW, highW)
-  best[1] = lowW >= highW ? lowV : highV
+  best.fill(0)
+  best[0] = solveHeld(s, highV) / s.rows
+  best[1] = highV
+  const lowW = s.carrying > 0 && lowV * s.pastA[0] > best[0] ? solveHeld(s, lowV) / s.rows : 0
+  if (lowW > best[0]) {
+    best[0] = lowW
+    best[1] = lowV
+  }
   climbAll(s, span, best)
-  return best[1]
+  best[0] *= s.rows
 }

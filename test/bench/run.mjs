@@ -11,6 +11,7 @@ execFileSync(process.execPath, [START, '--build-only'], { stdio: ['ignore', 'ign
 const { chainBench } = await import('./chain.mjs')
 const { dayBench } = await import('./day.mjs')
 const { startUpBench } = await import('./start-up.mjs')
+const { stringsBench } = await import('./strings.mjs')
 const { streamsBench } = await import('./streams.mjs')
 
 /** Scripts and styles that a page names and, if wanted, those that they name in turn. */
@@ -39,6 +40,17 @@ say(
 )
 const modified = chainBench('physical')
 say('the same with incidence losses', ms(modified.ms), `${modified.totalWh.toFixed(2)} Wh`)
+const strings = stringsBench()
+const perSecond = (ns) => `${(1e3 / ns).toFixed(2)} M/s`
+for (const { panels, bestNs, heldNs, busNs, edgeNs } of strings.strings) {
+  const over = panels === 1 ? 'one panel' : `${panels} panels`
+  say(
+    `string over ${over}, light to bus`,
+    perSecond(busNs),
+    `best point ${perSecond(bestNs)}, held ${perSecond(heldNs)}, to bus at a window's edge ${perSecond(edgeNs)}`,
+  )
+}
+say('tables of the demo car', ms(strings.demoTablesMs), `of a car with 12 strings ${ms(strings.twelveTablesMs)}`)
 const day = dayBench()
 say('forecast of a 600 km day, one thread', ms(day.ms), `${day.steps} steps, 3 strings`)
 say('fastest speed that meets the target', ms(day.searchMs), `${day.tried} speeds tried`)

@@ -13,6 +13,8 @@ const ROUNDS = 41
 /** As in test/engine/string-solver.test.ts: what is timed must be right by the same measure. */
 const TOLERANCE = 1e-4
 const PACK_V = 108
+/** Below the best voltage of 78 cells in full light, above that in weak light. */
+const EDGE_V = 40
 
 /** Light of four panels through a day, each tipped another way, some minutes of it shaded; cells 30 K warmer at full light. */
 function day() {
@@ -67,7 +69,25 @@ function check(string, array, harvest) {
   }
 }
 
-/** One string: best point, power at a held voltage, and light to bus with a wide and with a marginal window. */
+/** Watts to the bus from the best points of all steps, through a tracker. */
+function toBusW(tracker, held, harvest, hasHills) {
+  const point = newOperatingPoint()
+  const around = { packV: PACK_V, airC: 25, isMoving: true }
+  let step = 0
+  const powerAtV = (volts) => held.atV(step, volts)
+  const bestBetweenV = hasHills ? (low, high) => held.bestBetweenV(step, low, high) : undefined
+  const best = { W: 0, V: 0, bestBetweenV }
+  let sumW = 0
+  for (step = 0; step < STEPS; step++) {
+    best.W = harvest.bestW[0][step]
+    best.V = harvest.bestV[0][step]
+    operatingPoint(tracker, best, around, powerAtV, point)
+    sumW += point.inputW > 0 ? trackerOutputW(tracker, point.inputW, point.inputV, PACK_V) : 0
+  }
+  if (!(sumW > 0)) throw new Error('the string gave nothing')
+}
+
+/** One string: best point, power at a held voltage, and light to bus with a window that it fits and one that it leaves. */
 function stringFigures(panels) {
   const string = stringOver(panels)
   const array = { strings: prepareStrings([string]) }
@@ -80,24 +100,15 @@ function stringFigures(panels) {
   const heldNs = fewestNs(() => {
     for (let i = 0; i < STEPS; i++) sumW += held.atV(i, harvest.bestV[0][i] * (0.85 + (i % 7) / 25))
   })
+  if (!(sumW > 0)) throw new Error('the string gave nothing')
   const [tracker] = carDocument.parse(DEMO).trackers.map(trackerModel)
-  const point = newOperatingPoint()
-  const around = { packV: PACK_V, airC: 25, isMoving: true }
-  let step = 0
-  const powerAtV = (volts) => held.atV(step, volts)
-  const best = { W: 0, V: 0, bestBetweenV: panels > 1 ? (low, high) => held.bestBetweenV(step, low, high) : undefined }
-  const toBus = () => {
-    fill()
-    for (step = 0; step < STEPS; step++) {
-      best.W = harvest.bestW[0][step]
-      best.V = harvest.bestV[0][step]
-      operatingPoint(tracker, best, around, powerAtV, point)
-      sumW += point.inputW > 0 ? trackerOutputW(tracker, point.inputW, point.inputV, PACK_V) : 0
-    }
-  }
-  const busNs = fewestNs(toBus)
-  if (!(sumW > 0)) throw new Error('the strings gave nothing')
-  return { panels, bestNs, heldNs, busNs }
+  const narrow = { ...tracker, window: { ...tracker.window, inputMaxV: EDGE_V } }
+  const chainNs = (through) =>
+    fewestNs(() => {
+      fill()
+      toBusW(through, held, harvest, panels > 1)
+    })
+  return { panels, bestNs, heldNs, busNs: chainNs(tracker), edgeNs: chainNs(narrow) }
 }
 
 /** Middle time of building a car's array with all its tables. [ms] */

@@ -338,6 +338,22 @@ describe('the strings of the array', () => {
       expect(offBest(prepared, s, harvest).atV(0, 2 * volts)).toBe(0)
     })
   })
+
+  it('give most between two voltages at a hill’s top or an edge, and there what they give when held', () => {
+    const prepared = prepareArray(array({ panels, strings }))
+    const harvest = arrayHarvest(prepared, stepsOf([{}, { dni: 300, ghi: 360 }]))
+    strings.forEach((_, s) => {
+      const [string, other] = [offBest(prepared, s, harvest), offBest(prepared, s, harvest)]
+      const [best, volts] = [harvest.bestW[s][0], harvest.bestV[s][0]]
+      const topV = string.bestBetweenV(0, 0.5 * volts, 2 * volts)
+      expect(Math.abs(topV / volts - 1)).toBeLessThan(1e-3)
+      expect(Math.abs(string.atV(0, topV) / best - 1)).toBeLessThan(4e-4)
+      expect(string.atV(0, topV)).toBeCloseTo(other.atV(0, topV), 3)
+      expect(string.atV(1, topV)).toBe(other.atV(1, topV))
+      expect(string.atV(1, topV)).not.toBeCloseTo(best, 1)
+      expect(string.bestBetweenV(1, 1.1 * volts, 2 * volts)).toBe(1.1 * volts)
+    })
+  })
 })
 
 describe('a wrong array', () => {

@@ -94,7 +94,7 @@ export function solved({ string, lights, warmths }: StringCase): {
   V: number
   A: number
   heldW: (volts: number) => number
-  bestBetweenV: (lowV: number, highV: number) => number
+  bestBetween: (lowV: number, highV: number) => { W: number; V: number }
 } {
   const solver = stringSolver(string)
   loadStep(
@@ -105,12 +105,16 @@ export function solved({ string, lights, warmths }: StringCase): {
   )
   const best = new Float64Array(3)
   solveBest(solver, best)
+  const [W, V, A] = best
   return {
-    W: best[0],
-    V: best[1],
-    A: best[2],
+    W,
+    V,
+    A,
     heldW: (volts) => solveHeld(solver, volts),
-    bestBetweenV: (lowV, highV) => solveBestBetween(solver, { lowV, highV }, new Float64Array(3)),
+    bestBetween: (lowV, highV) => {
+      solveBestBetween(solver, { lowV, highV }, best)
+      return { W: best[0], V: best[1] }
+    },
   }
 }
 
