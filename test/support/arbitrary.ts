@@ -4,6 +4,7 @@ import type { RaceInput } from '../../server/documents/race.ts'
 import type { RouteInput } from '../../server/documents/route.ts'
 import type { SkyInput } from '../../server/documents/sky.ts'
 import type { SpeedsInput } from '../../server/documents/speeds.ts'
+import { anyAir, anyDriveMore } from './arbitrary-road.ts'
 import { someCar, someRace } from './scenario.ts'
 
 const number = (min: number, max: number) => fc.double({ min, max, noNaN: true })
@@ -88,6 +89,9 @@ export const anyCar: fc.Arbitrary<CarInput> = fc
     coulombicPct: number(90, 100),
     reservePct: number(0, 40),
     departures: anyDepartures,
+    air: anyAir,
+    driveMore: fc.option(anyDriveMore, { nil: {} }),
+    chargingW: fc.option(number(0, 100), { nil: undefined }),
   })
   .map((a) => {
     const car = someCar()
@@ -95,14 +99,21 @@ export const anyCar: fc.Arbitrary<CarInput> = fc
     const names = cells.map((_, i) => `string ${i + 1}`)
     return {
       ...car,
-      body: { ...car.body, massKg: a.massKg, dragAreaM2: a.dragAreaM2, rollingCoefficient: a.rollingCoefficient },
+      body: {
+        ...car.body,
+        massKg: a.massKg,
+        dragAreaM2: a.dragAreaM2,
+        rollingCoefficient: a.rollingCoefficient,
+        ...a.air,
+      },
       drive: {
         ...car.drive,
         efficiencyPct: a.efficiencyPct,
         regenerationPct: a.regenerationPct,
         motorMaxW: a.motorMaxW,
+        ...a.driveMore,
       },
-      auxiliaries: { drivingW: a.drivingW, parkedW: a.drivingW / 4 },
+      auxiliaries: { drivingW: a.drivingW, parkedW: a.drivingW / 4, chargingW: a.chargingW },
       panels: pitches.map((pitchDeg, i) => ({
         name: `panel ${i + 1}`,
         pitchDeg,
