@@ -107,7 +107,7 @@ function gain(road: DrivenRoad, piece: number, speedMps: number, heldMps: number
     toMps = Math.min(speedMps + Math.max((heldMps - speedMps) * BAND_SHARE, BAND_MPS), heldMps)
     mps2 = pullMps2(road, piece, toMps)
   }
-  if (speedMps < CRAWL_MPS) mps2 = Math.max(mps2, 10 * NO_PULL_MPS2)
+  if (speedMps < CRAWL_MPS) mps2 = Math.max(mps2, NO_PULL_MPS2)
   if (mps2 < NO_PULL_MPS2) return
   next.squared = toMps * toMps
   next.mps2 = Math.min(mps2, boundMps2)

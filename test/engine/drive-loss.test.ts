@@ -91,7 +91,9 @@ describe('an efficiency map', () => {
 })
 
 describe('whatever the losses and limits', () => {
-  const number = (min: number, max: number) => fc.double({ min, max, noNaN: true })
+  /** Even over the range; fc.double is even over the digits, so mostly next to 0. */
+  const number = (min: number, max: number) =>
+    fc.integer({ min: 0, max: 1_000_000 }).map((n) => min + ((max - min) * n) / 1e6)
   const terms = fc
     .record({ standingW: number(0, 50), frictionN: number(0, 3), eddyNsM: number(0, 0.2), copperWN2: number(0, 0.05) })
     .map((t): DriveLosses => ({ kind: 'terms', ...t }))
@@ -132,6 +134,18 @@ describe('whatever the losses and limits', () => {
       { numRuns: 2000 },
     )
     expect(regained).toBeGreaterThan(100)
+  })
+
+  it.each([
+    ['power', { brakingMaxW: 700 }, 700],
+    ['torque, at 20 m/s', { brakingMaxN: 30 }, 600],
+    ['torque of the motor where braking has no limit of its own', { motorMaxN: 25 }, 500],
+    ['lowest speed', { brakingFromMps: 20.1 }, 0],
+    ['bus, 640 W at 80 %', { regenMaxW: 640 }, 800],
+  ])('braking is held to the limit of %s', (_name, limits, takenW) => {
+    const power = wheelToBus(prepareDrive({ ...DRIVE, ...limits }), -3000, 20)
+    expect(power.busW).toBeCloseTo(-0.8 * takenW, 9)
+    expect(power.brakedW).toBeCloseTo(3000 - takenW, 9)
   })
 
   it('braking at the bus limit takes what reaches it', () => {

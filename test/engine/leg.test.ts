@@ -176,7 +176,9 @@ describe('a motor that is short of pull', () => {
   })
 })
 
-const number = (min: number, max: number) => fc.double({ min, max, noNaN: true })
+/** Even over the range; fc.double is even over the digits, so mostly next to 0. */
+const number = (min: number, max: number) =>
+  fc.integer({ min: 0, max: 1_000_000 }).map((n) => min + ((max - min) * n) / 1e6)
 const anyRoad = fc
   .array(fc.record({ lengthM: number(20, 1400), mps: number(3, 38), slope: number(-0.06, 0.06) }), {
     minLength: 1,
@@ -280,8 +282,9 @@ describe('whatever the road, the speeds and the bounds', () => {
           const mps2 = ((m.toMps ** 2 - m.fromMps ** 2) * Math.cos(gradeRad)) / (2 * (m.toM - m.fromM))
           for (const v of [m.fromMps, (m.fromMps + m.toMps) / 2, m.toMps]) {
             const forceN = LOAD.massKg * LOAD.rotatingFactor * mps2 + holdingN(LOAD, v, going)
-            expect(forceN).toBeLessThanOrEqual(motorMaxN * (1 + 1e-6))
-            expect(forceN * v).toBeLessThanOrEqual(motorMaxW * (1 + 1e-6))
+            // Less than 0.001 m/s² of pull counts as that much from rest: 0.26 N.
+            expect(forceN).toBeLessThanOrEqual(motorMaxN * (1 + 1e-6) + 0.26)
+            expect(forceN * v).toBeLessThanOrEqual(motorMaxW * (1 + 1e-6) + 0.26 * v)
           }
         }
       }),
