@@ -106,6 +106,8 @@ export function mutatedTable(by: Chance, csv: string, delimiter: string): Mutate
   const cells = rows[row].split(delimiter)
   const header = rows[0].split(delimiter)
   const [column, other] = [by.below(cells.length), by.below(cells.length)]
+  // The first line of a typical year has fewer cells than its hours.
+  const [name, twin] = [column % header.length, other % header.length]
   const odd = by.pick(ODD_CELLS)
   const table = (changed: string[]): string => `${changed.join('\n')}\n`
   const cellsOf = (changed: string[]): string => table(rows.with(row, changed.join(delimiter)))
@@ -115,10 +117,10 @@ export function mutatedTable(by: Chance, csv: string, delimiter: string): Mutate
     cellEdit,
     cellEdit,
     cellEdit,
-    ['a header nobody knows', headed(header.with(column, 'mood')), false],
-    ['no header', headed(header.with(column, '')), false],
-    ['a header twice', headed(header.with(column, header[other])), false],
-    ['two headers swapped', headed(header.with(column, header[other]).with(other, header[column])), false],
+    ['a header nobody knows', headed(header.with(name, 'mood')), false],
+    ['no header', headed(header.with(name, '')), false],
+    ['a header twice', headed(header.with(name, header[twin])), false],
+    ['two headers swapped', headed(header.with(name, header[twin]).with(twin, header[name])), false],
     ['a cell too many', cellsOf([...cells, 'x']), false],
     ['a cell too few', cellsOf(cells.slice(1)), false],
     ['two cells swapped', cellsOf(cells.with(column, cells[other]).with(other, cells[column])), false],
