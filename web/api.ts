@@ -2,6 +2,7 @@ import type { BudgetDocument } from '../server/documents/budget.ts'
 import type { Problem } from '../server/documents/problem.ts'
 import type { StageDocument } from '../server/documents/race.ts'
 import type { RouteDocument } from '../server/documents/route.ts'
+import type { SkyComparison } from '../server/documents/sky-comparison.ts'
 import type { SkyDocument } from '../server/documents/sky.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
 import type { RouteSummary } from '../server/files/route-reading.ts'
@@ -170,5 +171,15 @@ export const readSky = (file: Blob, type: string, options: SkyTableOptions | nul
 /** Days of a typical year, out of an EPW or TMY3 file. */
 export const readYear = (file: Blob, fileKind: 'epw' | 'tmy3', { name = '', from, to }: ClimateOptions) =>
   read<ReadSky>('skies', file, 'text/csv', new URLSearchParams({ fileKind, name, from, to }))
+
+interface ComparisonRequest {
+  forecast: { id: string }
+  measured: { id: string }
+  day?: Omit<ForecastRequest, 'sky'>
+}
+
+/** How far one stored sky was from another. */
+export const compareSkies = (request: ComparisonRequest): Promise<Answer<SkyComparison>> =>
+  ask(`${BASE}/sky-comparison`, { method: 'POST', ...json(request) })
 
 export const isServiceUp = (): Promise<Answer<true>> => tell('/api/health', { cache: 'no-store' })

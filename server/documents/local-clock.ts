@@ -4,7 +4,7 @@ import { offsetMin } from './local-time.ts'
 const SLOT_MS = 900_000
 
 /** Local hours and dates of many instants; each quarter of an hour is looked up once. */
-export function localClock(zone: string): { hourOf(atMs: number): number; dateOf(atMs: number): string } {
+export function localClock(zone: string): { hourOf: (atMs: number) => number; dateOf: (atMs: number) => string } {
   const offsets = new Map<number, number>()
   const local = (atMs: number): Date => {
     const slot = Math.floor(atMs / SLOT_MS)

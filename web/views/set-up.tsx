@@ -5,6 +5,7 @@ import { choice, choose, lists, refusal } from '../state.ts'
 import { AddRace } from './add-race.tsx'
 import { AddRoute } from './add-route.tsx'
 import { AddSky } from './add-sky.tsx'
+import { CompareSkies } from './compare-skies.tsx'
 import { DocumentList } from './document-list.tsx'
 import { JsonDocument } from './json-document.tsx'
 
@@ -50,6 +51,7 @@ export function SetUp() {
               onChoose={(sky) => choose({ sky })}
             />
             <AddSky />
+            <CompareSkies skies={all.skies} />
           </Part>
           <Part title="Routes" note="The roads that races run on">
             <DocumentList kind="routes" items={all.routes} />
