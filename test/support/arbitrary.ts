@@ -13,12 +13,30 @@ const number = (min: number, max: number) => fc.double({ min, max, noNaN: true }
 const seldom = <T>(of: fc.Arbitrary<T>): fc.Arbitrary<T | undefined> =>
   fc.oneof({ weight: 5, arbitrary: fc.constant(undefined) }, { weight: 1, arbitrary: of })
 
+/** Up to six rows around a circle, none more often than not. */
+const around = <T>(row: (atDeg: number) => fc.Arbitrary<T>): fc.Arbitrary<T[] | undefined> =>
+  fc.option(
+    fc
+      .uniqueArray(fc.integer({ min: 0, max: 359 }), { minLength: 1, maxLength: 6 })
+      .chain((at) => fc.tuple(...at.sort((a, b) => a - b).map(row))),
+    { nil: undefined, freq: 1 },
+  )
+
+const shade = around((bearingDeg) =>
+  fc.record({ bearingDeg: fc.constant(bearingDeg), heightDeg: number(0, 90), lostPct: number(0, 100) }),
+)
+
+const horizon = around((azimuthDeg) => fc.record({ azimuthDeg: fc.constant(azimuthDeg), heightDeg: number(0, 90) }))
+
 /** Panels, strings and trackers of all sorts: steep, spanning, narrow windows, lossy, hot, shared, dead. */
 const array = fc.record({
   pitches: fc.array(number(-30, 30), { minLength: 1, maxLength: 3 }),
   cells: fc.array(fc.integer({ min: 5, max: 200 }), { minLength: 1, maxLength: 3 }),
   spans: fc.boolean(),
   lifts: fc.boolean(),
+  shade,
+  heatCapacityKjM2C: number(0, 20),
+  laminarStart: fc.boolean(),
   soilingPct: number(0, 60),
   inputMinV: number(0, 60),
   inputMaxV: number(61, 300),
@@ -119,6 +137,12 @@ export const anyCar: fc.Arbitrary<CarInput> = fc
         pitchDeg,
         lifts: a.array.lifts,
         glass: a.array.glass,
+        shade: i === 0 ? a.array.shade : undefined,
+        cooling: {
+          kind: 'car-body' as const,
+          heatCapacityKjM2C: a.array.heatCapacityKjM2C,
+          laminarStart: a.array.laminarStart,
+        },
       })),
       strings: names.map((name, i) => ({
         name,
@@ -177,6 +201,7 @@ export const anyRoute: fc.Arbitrary<RouteInput> = fc
     surfaceFactor: number(0.8, 2),
     haltsPerKm: number(0, 1),
     groundAlbedo: number(0, 1),
+    roadHeatC: number(0, 10),
   })
   .map((a) => {
     const latDeg = [a.latDeg]
@@ -195,6 +220,7 @@ export const anyRoute: fc.Arbitrary<RouteInput> = fc
       points: { latDeg, lonDeg: lonDeg.map((lon) => Math.max(Math.min(lon, 180), -180)), elevationM },
       limitKmh: 110,
       groundAlbedo: a.groundAlbedo,
+      roadHeatC: a.roadHeatC,
       stretches: [
         { fromKm: 0.1, toKm: 0.5, limitKmh: a.limitKmh, surfaceFactor: a.surfaceFactor, haltsPerKm: a.haltsPerKm },
       ],
@@ -244,6 +270,8 @@ export const anyRace: fc.Arbitrary<RaceInput> = fc
     charges: fc.boolean(),
     stops: fc.boolean(),
     minutes: number(0, 90),
+    stopHorizon: horizon,
+    morningHorizon: horizon,
   })
   .map((a) => {
     const race = someRace()
@@ -260,12 +288,12 @@ export const anyRace: fc.Arbitrary<RaceInput> = fc
           driving: { from: time(a.from), to: time(to) },
           charging: a.charges
             ? [
-                { from: '04:00', to: time(a.from - 15) },
+                { from: '04:00', to: time(a.from - 15), horizon: a.morningHorizon },
                 { from: time(to), to: '22:00' },
               ]
             : [],
           targetPct: 30,
-          stages: [a.stops ? { ...stage, stop: { minutes: a.minutes } } : stage],
+          stages: [a.stops ? { ...stage, stop: { minutes: a.minutes, horizon: a.stopHorizon } } : stage],
         },
       ],
     }
