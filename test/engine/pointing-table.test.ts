@@ -189,7 +189,7 @@ describe('for any car, road, sky and day', { timeout: 180_000 }, () => {
           if (all[3].stringsW < 0.98 * best.stringsW) costly++
         }
       }),
-      { numRuns: 40, seed: 9 },
+      { numRuns: 60, seed: 9 },
     )
     expect(windowCount).toBeGreaterThan(20)
     expect(costly).toBeGreaterThan(8)
