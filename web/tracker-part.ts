@@ -38,8 +38,12 @@ export function partText(part: PartOfDay): string {
 export const edgeTexts = ({ edges }: PartOfDay): string[] =>
   edges.map(
     ({ label, effect, minutes, deniedWh }) =>
-      `${label}: ${effect}, ${minutesText(minutes)}${THIN}min, ${smallWh(deniedWh)}${THIN}Wh`,
+      `${label.charAt(0).toUpperCase()}${label.slice(1)}: ${effect}, ${minutesText(minutes)}${THIN}min, ${smallWh(deniedWh)}${THIN}Wh`,
   )
+
+/** What a minute costs, and how that is known. */
+export const priceText = ({ whPerMin, how }: TrackerDayWork['price']): string =>
+  whPerMin === null ? how : `A minute less on the road costs ${grouped(whPerMin)}${THIN}Wh. ${how}`
 
 /** The tracker of a report in the day driven again; null where that is not known. */
 export const workOf = (name: string, work: TrackerDayWork | null): TrackerWork | null =>

@@ -2,7 +2,7 @@ import type { KeptReading, Move, TrackerDayWork, TrackerReport, Trackers } from 
 import { type CurvePoint, curveAt, curveInUse, pct1 } from './log-reading.ts'
 import { grouped, round10, signed, THIN } from './format.ts'
 import type { Phrase } from './sentence.ts'
-import { outsideMinutes, outsideWh } from './tracker-part.ts'
+import { outsideMinutes, outsideWh, smallWh } from './tracker-part.ts'
 
 /** A curve's mean over where the day's energy fell, each bin taken at its middle; null where none fell on it. */
 export function overDay(report: TrackerReport, which: 'bench' | 'learned'): CurvePoint | null {
@@ -74,7 +74,7 @@ function deniedPhrase(work: TrackerDayWork | null): Phrase | null {
     `The ${worst.name} is outside its window for `,
     { text: grouped(outsideMinutes(day)), unit: 'min' },
     ' of the day: ',
-    { text: grouped(round10(outsideWh(day))), unit: 'Wh' },
+    { text: smallWh(outsideWh(day)), unit: 'Wh' },
     ' denied.',
   ]
 }

@@ -1,6 +1,7 @@
 import { readFileSync } from 'node:fs'
 import { describe, expect, test } from 'vitest'
 import type { BudgetDocument } from '../../server/documents/budget.ts'
+import { carDocument } from '../../server/documents/car.ts'
 import { checkDocument } from '../../server/documents/check.ts'
 import { forecastDocuments, forecastRequest } from '../../server/documents/forecast.ts'
 import { readCsvRoute } from '../../server/files/csv-route.ts'
@@ -68,6 +69,21 @@ describe('the demo race', () => {
       expect(day.marginWh).toBeGreaterThanOrEqual(0)
       expect(day.ledger.shortWh).toBe(0)
     }
+  })
+
+  test('its strings lie over curved panels, and its tail tracker loses some of Saturday below its lowest voltage', () => {
+    const car = carDocument.parse(demoJson('weaver-2.json'))
+    expect(car.strings.length).toBe(3)
+    for (const { cells } of car.strings) {
+      const places = cells.map(({ panel }) => car.panels.find(({ name }) => name === panel))
+      expect(new Set(places.map((place) => `${place?.pitchDeg}/${place?.rollDeg}`)).size).toBe(cells.length)
+      expect(cells.length).toBeGreaterThanOrEqual(2)
+    }
+    const [nose, deck, tail] = saturday.trackers
+    expect([...nose.limits, ...deck.limits].every(({ deniedWh }) => deniedWh < 1)).toBe(true)
+    const low = tail.limits.find(({ limit }) => limit === 'input-low')
+    expect(low?.deniedWh).toBeGreaterThan(5)
+    expect(low?.deniedWh).toBeLessThan(50)
   })
 
   test('one km/h more on Saturday misses the target', () => {

@@ -69,8 +69,8 @@ describe('a part of a tracker’s day in words', () => {
     expect(outsideMinutes(both)).toBe(95.4)
     expect(outsideWh(both)).toBe(23.6)
     expect(edgeTexts(both)).toEqual([
-      `below its lowest input voltage: string held off its best point, 95${THIN}min, 24${THIN}Wh`,
-      `pack full: held back, 30${THIN}min, 200${THIN}Wh`,
+      `Below its lowest input voltage: string held off its best point, 95${THIN}min, 24${THIN}Wh`,
+      `Pack full: held back, 30${THIN}min, 200${THIN}Wh`,
     ])
   })
 
@@ -97,7 +97,7 @@ describe('the sentence over the trackers', () => {
   it('names the window that costs most', () => {
     const less = tracker({ name: 'Nose', parts: [part({ edges: [{ ...EDGE, minutes: 300, deniedWh: 11 }] })] })
     expect(said(day(less, tracker()))).toBe(
-      `The Tail is outside its window for 95${THIN}min of the day: 20${THIN}Wh denied.`,
+      `The Tail is outside its window for 95${THIN}min of the day: 24${THIN}Wh denied.`,
     )
   })
 

@@ -39,6 +39,8 @@ const MIN_MS = 60_000
 /** An edge farther than this from all that was held stays off the plot. [V] */
 const NEAR_V = 15
 const LEAST_PX = 2
+/** Room for the bars of times at an edge and their figure. [px] */
+const BARS_PX = 24
 
 /** String and pack voltage of a tracker over a part of the day; null where it held nothing. */
 export function windowPlot({ width, work, part, utcOffsetMin }: Room): WindowPlot | null {
@@ -61,7 +63,7 @@ export function windowPlot({ width, work, part, utcOffsetMin }: Room): WindowPlo
   const isLowNear = work.lowestV > least - NEAR_V && work.lowestV > 0
   const y = scaleLinear()
     .domain([(isLowNear ? Math.min(least, work.lowestV) : least) - 4, most + 4])
-    .range([PLOT_PX, 4])
+    .range([shown.some(({ isOut }) => isOut) ? PLOT_PX - BARS_PX : PLOT_PX, 4])
   const along = line<(typeof shown)[number]>().x(({ ms }) => x(ms))
   const shade = area<(typeof shown)[number]>().x(({ ms }) => x(ms))
   const at = (share: number): (typeof held)[number] => held[Math.floor(share * (held.length - 1))]
@@ -100,7 +102,7 @@ function stays(steps: { ms: number; isOut: boolean }[], x: (ms: number) => numbe
 
 function voltTicks(y: { (value: number): number; domain(): number[] }): WindowPlot['voltTicks'] {
   const [low, high] = y.domain()
-  const every = [2, 5, 10, 20, 50, 100].find((step) => (PLOT_PX / (high - low)) * step >= 30) ?? 200
+  const every = [2, 5, 10, 20, 50, 100].find((step) => y(low) - y(low + step) >= 26) ?? 200
   const ticks: WindowPlot['voltTicks'] = []
   for (let volts = Math.ceil(low / every) * every; volts <= high; volts += every)
     ticks.push({ y: y(volts), text: String(volts) })

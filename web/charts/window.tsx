@@ -57,7 +57,7 @@ function Plot({ plot, width, label, minutes }: { plot: WindowPlot; width: number
         <rect x={stay.x} y={base - 6} width={stay.width} height="6" fill="var(--ink)" />
       ))}
       {plot.outside.length > 0 && (
-        <text x={right} y={base - 11} class="ax now halo" text-anchor="end">
+        <text x={Math.max(plot.outside[0].x, left)} y={base - 10} class="ax now halo">
           {Math.round(minutes)} min outside
         </text>
       )}

@@ -7,7 +7,7 @@ import { loadMoves, loadTrackers, news, trackers, trackersRefusal } from '../cre
 import type { TrackerReport, Trackers } from '../crew-types.ts'
 import { dayText, grouped } from '../format.ts'
 import { askAgain, choice } from '../state.ts'
-import { hatchText, partText, workOf } from '../tracker-part.ts'
+import { hatchText, partText, priceText, workOf } from '../tracker-part.ts'
 import { isTaken, standingOf, trackersSentence, untold, usedCurve } from '../tracker-words.ts'
 import { Conflict } from './conflict.tsx'
 import { SelectField } from './field.tsx'
@@ -100,12 +100,15 @@ function Part({ all, part }: { all: Trackers; part: Signal<number> }) {
   const parts = all.work?.trackers[0]?.parts ?? []
   if (parts.length < 2) return null
   return (
-    <SelectField
-      label="Part of the day"
-      value={String(Math.min(part.value, parts.length - 1))}
-      options={parts.map((one, i) => [String(i), partText(one)] as const)}
-      onChange={(value) => (part.value = Number(value))}
-    />
+    <>
+      <SelectField
+        label="Part of the day"
+        value={String(Math.min(part.value, parts.length - 1))}
+        options={parts.map((one, i) => [String(i), partText(one)] as const)}
+        onChange={(value) => (part.value = Number(value))}
+      />
+      {all.work !== null && <p class="note">{priceText(all.work.price)}</p>}
+    </>
   )
 }
 

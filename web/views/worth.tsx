@@ -14,7 +14,6 @@ interface WorthProps {
 
 /** What a tracker took over a part of the day, what its window cost, what a better or a dead one is worth. */
 export function Worth({ work, part, all, at }: WorthProps) {
-  const { price } = all
   const allWh = all.trackers.reduce((sum, { parts }) => sum + (parts[at]?.inputWh ?? 0), 0)
   const edges = edgeTexts(part)
   const outside = outsideMinutes(part)
@@ -48,7 +47,6 @@ export function Worth({ work, part, all, at }: WorthProps) {
         <p class="note">{text}.</p>
       ))}
       <p class="note">{efficiencyText(work, part)}</p>
-      <p class="note">{priceText(price)}</p>
     </div>
   )
 }
@@ -69,6 +67,3 @@ function efficiencyText({ ratedW }: TrackerWork, part: PartOfDay): string {
   if (mean === null || europeanPct === null || californianPct === null || takenPct === null) return 'It took nothing.'
   return `Efficiency ${pct1(mean)}${THIN}% by this part’s own powers; European ${pct1(europeanPct)}${THIN}%, Californian ${pct1(californianPct)}${THIN}% of ${grouped(ratedW)}${THIN}W. It took ${pct1(takenPct)}${THIN}% of its string’s best.`
 }
-
-const priceText = ({ whPerMin, how }: TrackerDayWork['price']): string =>
-  whPerMin === null ? how : `A minute on the road costs ${grouped(whPerMin)}${THIN}Wh. ${how}`
