@@ -1,5 +1,6 @@
 import type { BudgetDocument } from '../server/documents/budget.ts'
 import type { JudgementDocument } from '../server/documents/judgement.ts'
+import type { PointingDocument } from '../server/documents/pointing.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
 import type { TrackerDayDocument } from '../server/documents/tracker-day.ts'
 import type { TrackerReport } from '../server/documents/tracker-report.ts'
@@ -62,6 +63,13 @@ export interface FollowedBudget {
   choice: FollowedChoice
   budget: BudgetDocument
   learned: boolean
+}
+
+/** Where to point the array on a day, by the budget that the crew follows. */
+export interface FollowedPointing {
+  forecastId: string
+  madeAt: string
+  pointing: PointingDocument
 }
 
 export interface Share {

@@ -2,6 +2,7 @@ import { type Answer, ask, BASE, itemsOf, json, tell } from './api.ts'
 import type {
   FollowedBudget,
   FollowedChoice,
+  FollowedPointing,
   Move,
   NewShare,
   ReadingAnswer,
@@ -35,6 +36,8 @@ export const follow = (
 
 export const followedBudget = (day: RaceDay, signal: AbortSignal): Promise<Answer<FollowedBudget>> =>
   ask(`${dayAt(day)}/budget`, { signal })
+
+export const pointingOf = (day: RaceDay): Promise<Answer<FollowedPointing>> => ask(`${dayAt(day)}/pointing`)
 
 export const eventsAt = (day: RaceDay): string => `${dayAt(day)}/events`
 

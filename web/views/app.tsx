@@ -34,13 +34,15 @@ export function App() {
 }
 
 const loadLog = async () => (await import('./log.tsx')).LogView
-/** Figures are logged at the roadside, so Log comes along once the day is there. [ms] */
-const LOG_AFTER_MS = 4000
-setTimeout(() => loadLog().catch(() => undefined), LOG_AFTER_MS)
+const loadStop = async () => (await import('./stop.tsx')).StopView
+/** Log and Stop are for the roadside, so they come along once the day is there. [ms] */
+const ROADSIDE_AFTER_MS = 4000
+for (const load of [loadLog, loadStop]) setTimeout(() => load().catch(() => undefined), ROADSIDE_AFTER_MS)
 
 /** Screens that are not needed at once are fetched when they are opened. */
 const VIEWS = {
   day: DayView,
+  stop: late(loadStop),
   log: late(loadLog),
   trackers: late(async () => (await import('./trackers.tsx')).TrackersView),
   'set-up': late(async () => (await import('./set-up.tsx')).SetUp),
@@ -123,6 +125,7 @@ function Working({ ms }: { ms: number }) {
 
 const TABS = [
   { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },
+  { view: 'stop', name: 'Stop', icon: 'M4 22h18M13 22v-6M5 16l14-9 2 3L7 19z' },
   { view: 'log', name: 'Log', icon: 'M5 21l1-5L17 5l4 4L10 20zM14 8l4 4M4 24h18' },
   { view: 'trackers', name: 'Trackers', icon: 'M4 3v20h19M5 21C8 8 12 8 22 7M15 15l3 3-3 3-3-3z' },
   { view: 'set-up', name: 'Set-up', icon: 'M6 3h14v20H6zM6 9h14M6 13.5h14M6 18h14M10 3v20' },
