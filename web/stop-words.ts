@@ -33,6 +33,13 @@ export function firstToCome(items: { to: string }[], atMs: number): number {
   return Math.max(next, 0)
 }
 
+/** The hold to show first: of those to come the first with light. */
+export function firstHold(holds: PointingHold[], atMs: number): number {
+  const next = firstToCome(holds, atMs)
+  const lit = holds.findIndex((hold, i) => i >= next && !isDark(hold))
+  return lit < 0 ? next : lit
+}
+
 /** What to do with the array, as it could be read aloud. */
 export function poseSentence(hold: PointingHold): Phrase {
   const span: Phrase = [{ text: clock(hold.from) }, ' to ', { text: clock(hold.to) }, ': ']

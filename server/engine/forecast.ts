@@ -163,7 +163,7 @@ interface Laid {
 function layOut(race: Race, dayIndex: number, standing: Standing, road: DrivenRoad, path: SunPath): Laid {
   const { course } = race
   const table = timetable(road, race.stages, race.days[dayIndex], { dayIndex, standing })
-  const cut = steps(course, table)
+  const cut = steps(course, table, race.car.array.model.stand?.reaimS)
   if (race.car.array.model.stand === null) cut.lifted.fill(0)
   const weather = weatherAlong(race.sky, path, cut)
   return { course, timetable: table, steps: cut, weather, air: airAtCar(course, cut, weather, race.car.windHeightM) }

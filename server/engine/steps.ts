@@ -53,12 +53,13 @@ const FLOATS = [
  *
  * @param course  roads of all stages
  * @param table   the day's timetable
+ * @param reaimS  time that a pose of the lifted array is held: no step reaches over its end. [S]
  */
-export function steps(course: Course, { spans, moves }: Pick<Timetable, 'spans' | 'moves'>): Steps {
-  const out = emptySteps(spans.reduce((sum, span) => sum + stepsIn(span), 0))
+export function steps(course: Course, { spans, moves }: Pick<Timetable, 'spans' | 'moves'>, reaimS = 0): Steps {
+  const out = emptySteps(spans.reduce((sum, span) => sum + stepsIn(span, reaimS), 0))
   spans.forEach((span, index) => {
     if (span.kind === 'drive') driveSteps(out, course, { span, index, moves })
-    else parkedSteps(out, course, span, index)
+    else parkedSteps(out, course, span, { index, reaimS })
   })
   return out
 }
@@ -70,8 +71,8 @@ function emptySteps(most: number): Steps {
 }
 
 /** Exact number of steps of a span, so that the arrays have no slack. */
-const stepsIn = (span: Span): number =>
-  span.kind === 'drive' ? span.endMove - span.firstMove : parkedEdgesMs(span).length - 1
+const stepsIn = (span: Span, reaimS: number): number =>
+  span.kind === 'drive' ? span.endMove - span.firstMove : parkedEdgesMs(span, reaimS).length - 1
 
 function driveSteps(out: Steps, course: Course, leg: { span: Span; index: number; moves: Moves }): void {
   const { span, index, moves } = leg
@@ -88,10 +89,21 @@ function driveSteps(out: Steps, course: Course, leg: { span: Span; index: number
   }
 }
 
-/** Edges of a parked span: where the array is raised and lowered, and even steps between. */
-function parkedEdgesMs(span: Span): number[] {
-  const isLifted = span.liftedToMs > span.liftedFromMs
-  const marks = isLifted ? [span.fromMs, span.liftedFromMs, span.liftedToMs, span.toMs] : [span.fromMs, span.toMs]
+/** Nearer than this to another mark a new pose makes no step of its own. [MS] */
+const ONE_MOMENT_MS = 1
+
+/** Edges of a parked span: where the array is raised, aimed anew and lowered, and even steps between. */
+function parkedEdgesMs(span: Span, reaimS: number): number[] {
+  const { fromMs, toMs, liftedFromMs, liftedToMs } = span
+  const marks = [fromMs]
+  if (liftedToMs > liftedFromMs) {
+    marks.push(liftedFromMs)
+    // Poses that last less than a step are those of the steps.
+    if (reaimS >= PARKED_STEP_S)
+      for (let ms = liftedFromMs + reaimS * 1000; ms < liftedToMs - ONE_MOMENT_MS; ms += reaimS * 1000) marks.push(ms)
+    marks.push(liftedToMs)
+  }
+  marks.push(toMs)
   const edges = [marks[0]]
   for (let m = 1; m < marks.length; m++) {
     const lengthMs = marks[m] - marks[m - 1]
@@ -101,8 +113,9 @@ function parkedEdgesMs(span: Span): number[] {
   return edges
 }
 
-function parkedSteps(out: Steps, course: Course, span: Span, index: number): void {
-  const edges = parkedEdgesMs(span)
+function parkedSteps(out: Steps, course: Course, span: Span, of: { index: number; reaimS: number }): void {
+  const { index, reaimS } = of
+  const edges = parkedEdgesMs(span, reaimS)
   const { piece } = span
   const isAtEnd = span.fromM >= course.pieces.fromM[piece] + course.pieces.lengthM[piece] / 2
   for (let e = 1; e < edges.length; e++) {

@@ -1,6 +1,6 @@
 import type { Browser, Page, Response as Answer } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
-import type { ReadingAnswer, SharedBudget } from '../../web/crew-types.ts'
+import type { FollowedPointing, ReadingAnswer, SharedBudget } from '../../web/crew-types.ts'
 import { describeWithBrowser } from '../support/needs.ts'
 import { faults } from './faults.ts'
 import { openBrowser, openPhone, overflowPx, type Phone, picture } from './phone.ts'
@@ -108,6 +108,31 @@ describeWithBrowser('a crew with a tracker to read and a convoy to tell', { time
     const others = ['races', 'cars/weaver-2', `races/plateau-run/days/${DATE}/budget`, 'races/plateau-run/readings']
     const answers = await Promise.all(others.map((path) => fetch(`${service.url}/api/v1/${path}`, { headers })))
     expect(answers.map(({ status }) => status)).toEqual([403, 403, 403, 403])
+  })
+
+  it('is told where to point the array, by the service’s own figures, on a narrow phone too', async () => {
+    const { page } = phone
+    await page.getByRole('link', { name: 'Stop' }).click()
+    await page.getByRole('button', { name: 'Quiver Ridge' }).click()
+    await page.locator('#stop-say', { hasText: 'true, tilt' }).waitFor()
+    const answer = await service.ask(`/api/v1/races/plateau-run/days/${DATE}/pointing`)
+    const { pointing }: FollowedPointing = JSON.parse(await answer.text())
+    const told = pointing.days[0].windows.find(({ name, kind }) => kind === 'stop' && name === 'Quiver Ridge')
+    if (told === undefined) throw new Error('no such stop')
+    expect(await page.locator('.leave .at').innerText()).toBe(told.to.slice(11, 16))
+    const shown = await page.locator('.facts [data-wh]').evaluateAll((all) => all.map((one) => Number(one.dataset.wh)))
+    expect(shown).toEqual([told.total.best.harvestWh, told.total.best.packWh, told.total.flat.costPackWh])
+    const [first, second] = told.holds
+    expect(await page.locator('#stop-say').innerText()).toContain(`turn to ${Math.round(first.turnToDeg)}°`)
+    await page.locator('.holds button').nth(1).click()
+    expect(await page.locator('#stop-say').innerText()).toContain(`tilt ${Math.round(second.tiltDeg)}°`)
+    expect(await overflowPx(page)).toBe(0)
+    expect(await faults(page)).toEqual([])
+    await picture(page, 'stop')
+    await page.setViewportSize({ width: 320, height: 700 })
+    expect(await overflowPx(page)).toBe(0)
+    expect(await faults(page)).toEqual([])
+    await page.setViewportSize({ width: 390, height: 844 })
   })
 
   it('types four figures in under 15 s and has the hint while typing', async () => {

@@ -14,6 +14,10 @@ const TICKS = Array.from(
   (_, i) => `M${at(10 * i, RADIUS)}L${at(10 * i, i % 9 === 0 ? 59 : 63.5)}`,
 ).join('')
 
+const QUARTERS = ['N', 'E', 'S', 'W'].map((name, i) => ({ name, deg: 90 * i }))
+/** A letter nearer than 20° to where the array faces would stand in the arrow. */
+const CLEAR_COS = Math.cos(20 * RAD)
+
 interface CompassProps {
   turnToDeg: number
   /** Where the car's nose points. [°] */
@@ -50,8 +54,8 @@ export function Compass({ turnToDeg, headingDeg, sunDeg, isFlat }: CompassProps)
         <Sun cx={MIDDLE + RADIUS * Math.sin(sunDeg * RAD)} cy={MIDDLE - RADIUS * Math.cos(sunDeg * RAD)} />
       )}
       <g font-size="14.5" font-weight="700" text-anchor="middle" class="halo">
-        {(['N', 'E', 'S', 'W'] as const).map((name, i) => (
-          <text x={MIDDLE + 49 * Math.sin(90 * i * RAD)} y={MIDDLE - 49 * Math.cos(90 * i * RAD) + 5}>
+        {QUARTERS.filter(({ deg }) => isFlat || Math.cos((turnToDeg - deg) * RAD) < CLEAR_COS).map(({ name, deg }) => (
+          <text x={MIDDLE + 49 * Math.sin(deg * RAD)} y={MIDDLE - 49 * Math.cos(deg * RAD) + 5}>
             {name}
           </text>
         ))}
@@ -87,7 +91,7 @@ export function Side({ tiltDeg, sunDeg }: SideProps) {
   ]
   return (
     <svg
-      viewBox="-32 -8 200 176"
+      viewBox="-28 -26 196 196"
       width="100%"
       role="img"
       aria-label={`Seen from the side: array tilted ${Math.round(tiltDeg)} degrees from flat`}
@@ -103,7 +107,7 @@ export function Side({ tiltDeg, sunDeg }: SideProps) {
       <path d={`M${out(4)}L${out(52)}`} stroke="var(--ink)" stroke-width="2.5" />
       <path d={`M${FOOT.x} ${FOOT.y}L${top.x.toFixed(1)} ${top.y.toFixed(1)}`} stroke="var(--ink)" stroke-width="7" />
       {sunDeg !== null && <Sun cx={sunX} cy={sunY} />}
-      <text x={FOOT.x + 44} y={FOOT.y - 8} font-size="15" font-weight="700" class="halo">
+      <text x={FOOT.x + 44} y={tiltDeg < 22 ? FOOT.y + 18 : FOOT.y - 8} font-size="15" font-weight="700" class="halo">
         {Math.round(tiltDeg)}°
       </text>
     </svg>

@@ -13,6 +13,7 @@ import {
   costText,
   degreesText,
   endText,
+  firstHold,
   firstToCome,
   isDark,
   isFlat,
@@ -95,7 +96,7 @@ function Day({ of }: { of: Pointing }) {
   const own = looked.value.date === date ? looked.value : { date, window: null, hold: null }
   const w = own.window ?? firstToCome(day.windows, nowMs.value)
   const window = day.windows[w]
-  const h = own.hold ?? firstToCome(window.holds, nowMs.value)
+  const h = own.hold ?? firstHold(window.holds, nowMs.value)
   return (
     <>
       <div class="pad">
