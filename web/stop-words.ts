@@ -1,5 +1,5 @@
 import type { PointingDay, PointingHold, PointingWindow } from '../server/documents/pointing.ts'
-import { clock, grouped, THIN } from './format.ts'
+import { clock, clockAt, grouped, THIN } from './format.ts'
 import type { Phrase } from './sentence.ts'
 
 /** Nearer to flat than this an azimuth means nothing. [°] */
@@ -90,4 +90,4 @@ export const NOTHING: Record<NonNullable<PointingDay['noWindow']>, string> = {
 }
 
 /** Local time with UTC beside it: 13:05 UTC. */
-export const utcText = (at: string): string => `${new Date(Date.parse(at)).toISOString().slice(11, 16)}${THIN}UTC`
+export const utcText = (at: string): string => `${clockAt(Date.parse(at), 0)}${THIN}UTC`

@@ -1,6 +1,7 @@
 import type { Browser, Page, Response as Answer } from 'playwright-core'
 import { afterAll, beforeAll, expect, it } from 'vitest'
 import type { FollowedPointing, ReadingAnswer, SharedBudget } from '../../web/crew-types.ts'
+import { clock } from '../../web/format.ts'
 import { describeWithBrowser } from '../support/needs.ts'
 import { faults } from './faults.ts'
 import { openBrowser, openPhone, overflowPx, type Phone, picture } from './phone.ts'
@@ -119,7 +120,7 @@ describeWithBrowser('a crew with a tracker to read and a convoy to tell', { time
     const { pointing }: FollowedPointing = JSON.parse(await answer.text())
     const told = pointing.days[0].windows.find(({ name, kind }) => kind === 'stop' && name === 'Quiver Ridge')
     if (told === undefined) throw new Error('no such stop')
-    expect(await page.locator('.leave .at').innerText()).toBe(told.to.slice(11, 16))
+    expect(await page.locator('.leave .at').innerText()).toBe(clock(told.to))
     const shown = await page.locator('.facts [data-wh]').evaluateAll((all) => all.map((one) => Number(one.dataset.wh)))
     expect(shown).toEqual([told.total.best.harvestWh, told.total.best.packWh, told.total.flat.costPackWh])
     const [first, second] = told.holds

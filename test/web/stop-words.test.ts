@@ -74,6 +74,8 @@ describe('the words of the stop screen', () => {
 
   it('give local time with UTC beside it, and a reason for every empty day', () => {
     expect(utcText('2026-10-17T15:05:00+02:00')).toBe('13:05\u202fUTC')
+    // Rounded as the local time beside it is.
+    expect(utcText('2026-10-17T15:05:40+02:00')).toBe('13:06\u202fUTC')
     for (const text of Object.values(NOTHING)) expect(text).toMatch(/\.$/)
     expect(Object.keys(NOTHING).sort()).toEqual(['never-lifted', 'no-stand', 'nothing-lifts'])
   })
