@@ -41,6 +41,12 @@ describe('the car in the engine’s units', () => {
     expect([auxChargingW, auxParkedW]).toEqual([14, 6])
   })
 
+  test('bounds on a change of speed: 0.6 and 1 m/s² where the document says nothing', () => {
+    expect(model().bounds).toEqual({ accelerationMps2: 0.6, brakingMps2: 1 })
+    const { bounds } = model((car) => void (car.drive = { ...car.drive, accelerationMps2: 0.4, brakingMps2: 2 }))
+    expect(bounds).toEqual({ accelerationMps2: 0.4, brakingMps2: 2 })
+  })
+
   test('limits of braking: km/h, rpm and torque at the wheels, with one efficiency or with losses', () => {
     const braking = { regenerationMaxNm: 56, regenerationFromKmh: 18, motorMaxRpm: 1000, gearRatio: 2 }
     const { drive } = model((car) => void (car.drive = { ...car.drive, ...braking, regenerationBusMaxW: 900 }))
