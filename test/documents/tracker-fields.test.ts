@@ -46,6 +46,18 @@ describe('a tracker’s standby', () => {
   })
 })
 
+test('a tracker at work draws no standby: none in an hour of noon', () => {
+  const noon = oneDay((r) => {
+    r.car.trackers.forEach((tracker) => Object.assign(tracker, { standbyW: 3 }))
+    const [one] = r.race.days
+    Object.assign(one, { release: '11:00', impound: '12:00', charging: [], driving: { from: '11:00', to: '12:00' } })
+  })
+  for (const { standbyWh, inputWh } of noon.trackers) {
+    expect(standbyWh).toBe(0)
+    expect(inputWh).toBeGreaterThan(100)
+  }
+})
+
 describe('trackers beside one another', () => {
   const shared = oneDay((r) => {
     const [first] = r.car.trackers
