@@ -93,12 +93,17 @@ function placeOf(
   { forecast, zone, clock }: { forecast: SkyDocument; zone: string; clock: Clock },
 ): SkyComparison['places'][number] {
   const last = global.toMs.length - 1
-  const scoresOf = (keeps?: (midMs: number) => boolean): ComparedScore[] =>
-    [...measures].flatMap(([measure, rows]) => {
-      const score = skyScore(rows, keeps === undefined ? undefined : (row) => keeps(midMs(rows, row)))
-      return score === null ? [] : [inUnits(measure, score)]
-    })
   const issuedMs = Date.parse(forecast.issuedAt)
+  const timed = [...measures].map(([measure, rows]): TimedRows => {
+    const mids = rows.fromMs.map((_, row) => midMs(rows, row))
+    const hours = Int8Array.from(mids, clock.hourOf)
+    return { measure, rows, hours, leadH: mids.map((ms) => (ms - issuedMs) / H) }
+  })
+  const scoresOf = (keeps: (of: TimedRows, row: number) => boolean): ComparedScore[] =>
+    timed.flatMap((of) => {
+      const score = skyScore(of.rows, (row) => keeps(of, row))
+      return score === null ? [] : [inUnits(of.measure, score)]
+    })
   const leads = forecast.source === 'forecast' ? LEADS_H.slice(0, -1) : []
   return {
     name: place.name,
@@ -106,20 +111,28 @@ function placeOf(
     from: localIso(global.fromMs[0], zone),
     to: localIso(global.toMs[last], zone),
     rows: last + 1,
-    scores: scoresOf(),
+    scores: scoresOf(() => true),
     byHour: Array.from({ length: 24 }, (_, hour) => ({
       hour,
-      scores: scoresOf((ms) => clock.hourOf(ms) === hour),
+      scores: scoresOf(({ hours }, row) => hours[row] === hour),
     })).filter(isFilled),
     byLead: leads
       .map((fromH, i) => {
         const toH = LEADS_H[i + 1]
-        const keeps = (ms: number) => ms >= issuedMs + fromH * H && ms < issuedMs + toH * H
-        return { fromH, toH: Number.isFinite(toH) ? toH : null, scores: scoresOf(keeps) }
+        const scores = scoresOf(({ leadH }, row) => leadH[row] >= fromH && leadH[row] < toH)
+        return { fromH, toH: Number.isFinite(toH) ? toH : null, scores }
       })
       .filter(isFilled),
     days: daysOf(global, clock),
   }
+}
+
+/** Rows of a measure with the local hour of their middle and how long after the issue it lies. */
+interface TimedRows {
+  measure: SkyMeasure
+  rows: ComparedRows
+  hours: Int8Array
+  leadH: Float64Array
 }
 
 const isFilled = ({ scores }: { scores: ComparedScore[] }): boolean => scores.length > 0

@@ -69,6 +69,8 @@ function placeInput(sky: SkyDocument, place: SkyPlace, field: string): SkyPlaceI
     ...intervals(at, 'instant'),
     intervalOf: {},
   }
+  // Columns of one convention share their rows, so that the engine integrates the clear sky over them once.
+  const shared = { preceding: intervals(at, 'preceding'), following: intervals(at, 'following') }
   for (const [name, column] of Object.entries(ENGINE_COLUMNS) as [SkyColumn, (typeof ENGINE_COLUMNS)[SkyColumn]][]) {
     const values = place[name]
     if (values === undefined) continue
@@ -76,7 +78,7 @@ function placeInput(sky: SkyDocument, place: SkyPlace, field: string): SkyPlaceI
       value === null ? Number.NaN : toEngine(sky, place, { name, row: i, field: `${field}.${name}[${i}]` }, value),
     )
     const convention = sky.averaging[name] ?? (PRECEDING.has(name) ? 'preceding' : 'instant')
-    if (convention !== 'instant') (input.intervalOf ??= {})[column] = intervals(at, convention)
+    if (convention !== 'instant') (input.intervalOf ??= {})[column] = shared[convention]
   }
   return input
 }

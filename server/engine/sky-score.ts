@@ -21,7 +21,8 @@ export interface SkyScore {
 
 /** The rows that a rule keeps. */
 export function only(rows: ComparedRows, keeps: (row: number) => boolean): ComparedRows {
-  const of = (values: Float64Array) => values.filter((_, row) => keeps(row))
+  const kept = [...rows.fromMs.keys()].filter(keeps)
+  const of = (values: Float64Array) => Float64Array.from(kept, (row) => values[row])
   return {
     fromMs: of(rows.fromMs),
     toMs: of(rows.toMs),
@@ -33,21 +34,22 @@ export function only(rows: ComparedRows, keeps: (row: number) => boolean): Compa
 
 /** The score of the rows that a rule keeps; null without any. */
 export function skyScore(rows: ComparedRows, keeps: (row: number) => boolean = () => true): SkyScore | null {
-  const kept = only(rows, keeps)
-  let weight = 0
-  const sum = { forecast: 0, measured: 0, error: 0, size: 0, square: 0 }
-  kept.weightS.forEach((own, row) => {
-    const error = kept.forecast[row] - kept.measured[row]
-    weight += own
-    sum.forecast += own * kept.forecast[row]
-    sum.measured += own * kept.measured[row]
+  const sum = { rows: 0, weight: 0, forecast: 0, measured: 0, error: 0, size: 0, square: 0 }
+  rows.weightS.forEach((own, row) => {
+    if (!keeps(row)) return
+    const error = rows.forecast[row] - rows.measured[row]
+    sum.rows++
+    sum.weight += own
+    sum.forecast += own * rows.forecast[row]
+    sum.measured += own * rows.measured[row]
     sum.error += own * error
     sum.size += own * Math.abs(error)
     sum.square += own * error * error
   })
+  const { weight } = sum
   if (!(weight > 0)) return null
   return {
-    rows: kept.weightS.length,
+    rows: sum.rows,
     forecastMean: sum.forecast / weight,
     measuredMean: sum.measured / weight,
     bias: sum.error / weight,

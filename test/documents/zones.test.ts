@@ -153,6 +153,38 @@ describe('a stop in another zone than the day’s', () => {
     ])
     expect(day.outcome.text).toContain('(UTC+10:30)')
   })
+  test('is the zone of a camp on the road from it, and of what is left of it the next morning', () => {
+    const ending = (at: string) => (r: Request) => {
+      inDarwin('Australia/Adelaide')(r)
+      r.race.days[0].driving = { from: '08:00', to: at }
+      r.race.days.push({ ...r.race.days[0], date: '2026-10-18', stages: [], driving: { from: '08:00', to: '17:00' } })
+      const [place] = r.sky.places
+      const twice = <T>(values?: T[]) => [...(values ?? []), ...(values ?? []).slice(0, 1), ...(values ?? [])]
+      const next = place.at.map((stamp) => stamp.replace('10-17', '10-18'))
+      const night = '2026-10-18T00:00:00+09:30'
+      r.sky.places[0] = {
+        ...place,
+        at: [...place.at, night, ...next],
+        cloudPct: twice(place.cloudPct),
+        airTempC: twice(place.airTempC),
+        windMps: twice(place.windMps),
+        windFromDeg: twice(place.windFromDeg),
+      }
+    }
+    const endings = (at: string) =>
+      budget(ending(at)).days.map(({ gates }) => gates.map(({ kind, at: when }) => `${kind} ${when.slice(-6)}`))
+    // The stop is reached near 08:50 and left near 09:20, by Darwin's clock.
+    expect(endings('09:40')[0]).toEqual([
+      'dawn +09:30',
+      'start +09:30',
+      'arrive +10:30',
+      'depart +10:30',
+      'camp +10:30',
+      'dusk +10:30',
+    ])
+    const [, morning] = endings('09:05')
+    expect(morning.slice(0, 3)).toEqual(['dawn +09:30', 'depart +10:30', 'start +10:30'])
+  })
   test('is a zone that there is', () => {
     const race = someRace()
     Object.assign((race.days[0].stages ?? [])[0], { stop: { minutes: 30, zone: 'Plateau' } })

@@ -73,7 +73,15 @@ const fullRace = (): RaceInput => {
   const times = { opensAt: '08:05', closesAt: '11:00', clockStarts: 'at-opening' as const, raiseMin: 1, lowerMin: 1 }
   return {
     ...race,
-    penalties: { lateMinPerMin: 1, unfinishedMinPerKm: 2, mostLateMin: 30 },
+    turbidityByMonth: [3, 3, 3.2, 3.5, 4, 4, 4.2, 4, 3.6, 3.4, 3.2, 3],
+    penalties: {
+      lateMinPerMin: 1,
+      unfinishedMinPerKm: 2,
+      mostLateMin: 30,
+      lateFreeMin: 5,
+      mostLatePenaltyMin: 60,
+      earlyMinPerMin: 0.5,
+    },
     days: [
       {
         ...day,
@@ -83,7 +91,11 @@ const fullRace = (): RaceInput => {
         raiseMin: 3,
         lowerMin: 3,
         stages: [
-          { ...stage, toKm: 2, stop: { minutes: 10, lift: true, horizon: HILLS, ...times } },
+          {
+            ...stage,
+            toKm: 2,
+            stop: { minutes: 10, lift: true, zone: 'Africa/Johannesburg', horizon: HILLS, ...times },
+          },
           { ...stage, id: 'second', fromKm: 2 },
         ],
       },
@@ -102,6 +114,8 @@ const fullSky = (): SkyInput => {
     utcOffset: '+02:00',
     averaging: { ghiWm2: 'instant', airTempC: 'preceding' },
     pressureIs: 'sea-level',
+    diffuse: 'hay-davies',
+    turbidityByMonth: [3, 3, 3.2, 3.5, 4, 4, 4.2, 4, 3.6, 3.4, 3.2, 3],
     places: [
       { ...place, ...more },
       { ...place, name: 'Twin Wells', latDeg: -23.4, ...light },
