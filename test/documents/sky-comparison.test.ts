@@ -5,6 +5,7 @@ import { compareSkies } from '../../server/documents/sky-comparison-model.ts'
 import type { SkyInput } from '../../server/documents/sky.ts'
 import { InputError } from '../../server/engine/input-error.ts'
 import { someCar, someRace, someRoute, someSky } from '../support/scenario.ts'
+import { twoDays } from '../support/some-budget.ts'
 
 interface Request {
   forecast: SkyInput
@@ -150,6 +151,23 @@ describe('what a difference of two skies is worth', () => {
     })
     expect(worth?.heldKmh).toBeGreaterThan(30)
     expect(worth?.measured.drivenKm).toBeCloseTo(worth?.forecast.drivenKm ?? 0, 6)
+    // At one speed in the same air, drag and rolling cost the same.
+    const road = worth?.lines.filter(({ id }) => id === 'drag' || id === 'rolling') ?? []
+    expect(road).toHaveLength(2)
+    for (const { differenceWh } of road) expect(differenceWh).toBeCloseTo(0, 6)
+  })
+  test('of a later day is not that of the days before it', () => {
+    const scene = { car: someCar(), race: someRace(), routes: { road: someRoute(300) }, sky: someSky(), speeds: {} }
+    twoDays(scene)
+    const cloudy = structuredClone(scene.sky)
+    cloudy.places[0].cloudPct = cloudy.places[0].cloudPct?.map((value, i) => (i < 15 ? 90 : value))
+    const { worth } = compared((r) => {
+      r.forecast = scene.sky
+      r.measured = { ...cloudy, source: 'measured' }
+      r.day = { ...day(), race: scene.race, routes: scene.routes, date: '2026-10-18' }
+    })
+    // Only Saturday was cloudy; the light of the night's edge bends Sunday's first minutes a little.
+    expect(Math.abs(worth?.closingWh ?? Number.NaN)).toBeLessThan(1)
   })
   test('needs both skies to reach over the day, and says which does not', () => {
     const short = fault((r) => {
