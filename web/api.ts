@@ -1,4 +1,5 @@
 import type { BudgetDocument } from '../server/documents/budget.ts'
+import type { CoastDownDocument } from '../server/documents/coast-down-result.ts'
 import type { Problem } from '../server/documents/problem.ts'
 import type { StageDocument } from '../server/documents/race.ts'
 import type { RouteDocument } from '../server/documents/route.ts'
@@ -181,5 +182,15 @@ interface ComparisonRequest {
 /** How far one stored sky was from another. */
 export const compareSkies = (request: ComparisonRequest): Promise<Answer<SkyComparison>> =>
   ask(`${BASE}/sky-comparison`, { method: 'POST', ...json(request) })
+
+/** What a coast-down tells, with what its reader did on its own. */
+export interface CoastDownAnswer {
+  result: CoastDownDocument
+  notices: Notice[]
+}
+
+/** Rolling and drag from a logged table; nothing is stored. */
+export const readCoastDown = (log: Blob, query: URLSearchParams): Promise<Answer<CoastDownAnswer>> =>
+  ask(`${BASE}/coast-down?${query}`, { method: 'POST', headers: { 'content-type': 'text/csv' }, body: log })
 
 export const isServiceUp = (): Promise<Answer<true>> => tell('/api/health', { cache: 'no-store' })

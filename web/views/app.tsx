@@ -8,6 +8,7 @@ import { standing } from '../session.ts'
 import { DayView } from './day.tsx'
 import { Landing } from './landing.tsx'
 import { late } from './late.tsx'
+import type { View } from '../choice.ts'
 import { Wh } from './figures.tsx'
 import { Disc } from '../charts/disc.tsx'
 
@@ -19,14 +20,14 @@ const QUIET_MS = 700
 export function App() {
   const { value } = standing
   if (value !== null && value !== 'inside') return <Landing standing={value} />
-  const View = VIEWS[choice.value.view]
+  const Screen = VIEWS[choice.value.view]
   return (
     <>
       <Rulings />
       <Top />
       <Strip />
       <main id="main" class="phone">
-        <View />
+        <Screen />
       </main>
       <Tabs />
     </>
@@ -46,6 +47,7 @@ const VIEWS = {
   log: late(loadLog),
   trackers: late(async () => (await import('./trackers.tsx')).TrackersView),
   'set-up': late(async () => (await import('./set-up.tsx')).SetUp),
+  'coast-down': late(async () => (await import('./coast-down.tsx')).CoastDownView),
 }
 
 function Top() {
@@ -123,6 +125,9 @@ function Working({ ms }: { ms: number }) {
   )
 }
 
+/** The tab that a screen without one of its own belongs to. */
+const standsUnder = (view: View): View => (view === 'coast-down' ? 'set-up' : view)
+
 const TABS = [
   { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },
   { view: 'stop', name: 'Stop', icon: 'M4 22h18M13 22v-6M5 16l14-9 2 3L7 19z' },
@@ -140,7 +145,7 @@ function Tabs() {
           <li>
             <a
               href={`#/${tab.view}${location.hash.replace(/^[^?]*/, '')}`}
-              aria-current={view === tab.view ? 'page' : undefined}
+              aria-current={standsUnder(view) === tab.view ? 'page' : undefined}
             >
               <svg
                 width="26"

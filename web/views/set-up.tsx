@@ -39,6 +39,11 @@ export function SetUp() {
           <Part title="Car" note="Body, array, trackers, pack">
             <DocumentList kind="cars" items={all.cars} chosen={choice.value.car} onChoose={(car) => choose({ car })} />
             <JsonDocument kind="cars" word="car" items={all.cars} onSaved={(car) => choose({ car })} />
+            <nav class="links" aria-label="Tests of the car">
+              <a href={`#/coast-down${location.hash.replace(/^[^?]*/, '')}`}>
+                Coast-down: find rolling and drag from a log
+              </a>
+            </nav>
             <p class="note caution">
               Packs and arrays carry lethal direct voltage; licensed electrical practice comes first.
             </p>
