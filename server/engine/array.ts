@@ -130,7 +130,7 @@ export function prepareArray(model: ArrayModel): PreparedArray {
  *
  * Beam, sky and ground on each panel from the apparent sun; cells warmed by all light on the plane, in time where the
  * steps tell their lengths; power of strings in one light from tables (within 0.04 %), of others solved with their
- * bypass diodes (within 0.01 %). Lifted, the car's own up direction is turned to where the stand aims (`pointing.ts`),
+ * bypass diodes (within 0.003 %). Lifted, the car's own up direction is turned to where the stand aims (`pointing.ts`),
  * and lifting panels keep their pitch and roll on it; the stand holds the array, so grade does not count. Darkness gives
  * exactly 0 W.
  *

@@ -43,7 +43,7 @@ export function prepareStrings(models: StringModel[]): PreparedStrings {
 /**
  * Fills best power and voltage of every string, step by step, from the light and warmth of the panels.
  *
- * Strings in one light from tables (within 0.04 %), others solved (within 0.01 %).
+ * Strings in one light from tables (within 0.04 %), others solved (within 0.003 %).
  *
  * @param harvest  effectiveWm2 and cellC are read, bestW and bestV overwritten
  * @param exact    solves every step exactly instead
@@ -106,7 +106,7 @@ function fillSolved(solver: StringSolver, { effectiveWm2, cellC }: ArrayHarvest,
 
 /** What a string gives at a step where its tracker cannot hold it at its best point. */
 export interface OffBest {
-  /** Power at a voltage, 0 at and above the open-circuit voltage; within 0.01 %. [V] → [W] */
+  /** Power at a voltage, 0 at and above the open-circuit voltage; within 0.003 %. [V] → [W] */
   atV(step: number, volts: number): number
   /** Voltage between two at which it gives most: a hill's top or an edge. [V] */
   bestBetweenV(step: number, lowV: number, highV: number): number

@@ -75,7 +75,7 @@ function mostW(s: StringSolver, place: number): number {
 }
 
 /**
- * Best point of the loaded step: within 1e-5 of `stringBest`.
+ * Best point of the loaded step: within 0.003 % of `stringBest`.
  *
  * The string's voltage at a current is the most that any set of substrings gives, the others bypassed. So the best point
  * is the best over the sets that can carry the current, each a smooth hill; hills that cannot be higher are not climbed.
@@ -95,7 +95,7 @@ function climbAll(s: StringSolver, span: Span, best: Float64Array): void {
 }
 
 /**
- * Power of the loaded step's string held at a voltage: within 1e-5 of `stringPowerAtV`.
+ * Power of the loaded step's string held at a voltage: within 0.003 % of `stringPowerAtV`.
  *
  * The string's current at a voltage is the most that any set of substrings gives, the others bypassed.
  *

@@ -17,7 +17,7 @@ import {
 } from './string-cases.ts'
 
 describe('the fast solution of a string', () => {
-  it('is within 0.01 % of the exact best point and of the exact power at a held voltage in 20,000 strings', () => {
+  it('is within 0.0025 % of the exact best point, and of the power at a held voltage, in 20,000 strings', () => {
     const random = seeded(20261017)
     const counted = { groups: new Set<number>(), all: 0, faulty: 0, past: 0, held: 0, dark: 0 }
     for (let i = 0; i < 20_000; i++) {
@@ -31,14 +31,14 @@ describe('the fast solution of a string', () => {
         counted.dark++
         continue
       }
-      if (!(Math.abs(fast.W / exact.W - 1) < 1e-4)) expect.fail(`best ${what()}`)
+      if (!(Math.abs(fast.W / exact.W - 1) < 2.5e-5)) expect.fail(`best ${what()}`)
       if (!(Math.abs(fast.A * fast.V - fast.W) <= 1e-12 * fast.W)) expect.fail(`point ${what()}`)
       const own = stringPowerAtV(string, lights, warmths, fast.V)
-      if (!(Math.abs(own / fast.W - 1) < 1e-4)) expect.fail(`own voltage ${own} ${what()}`)
+      if (!(Math.abs(own / fast.W - 1) < 2.5e-5)) expect.fail(`own voltage ${own} ${what()}`)
       const cells = string.groups.reduce((sum, { cellsInSeries }) => sum + cellsInSeries, 0)
       const volts = random() < 0.6 ? exact.V * (0.6 + 0.6 * random()) : cells * random()
       const heldW = stringPowerAtV(string, lights, warmths, volts)
-      if (!(Math.abs(fast.heldW(volts) - heldW) < 1e-4 * heldW + 1e-6 * exact.W)) expect.fail(`${volts} V ${what()}`)
+      if (!(Math.abs(fast.heldW(volts) - heldW) < 5e-6 * heldW + 1e-6 * exact.W)) expect.fail(`${volts} V ${what()}`)
       counted.groups.add(string.groups.length)
       if (string.faults?.length === 1) counted.faulty++
       if (exact.A > 1.05 * Math.min(...lights) * (string.cell.lightA / 1000)) counted.past++

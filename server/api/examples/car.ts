@@ -61,8 +61,9 @@ export const carExample: CarInput = {
     name: panel,
     tracker: `${panel} tracker`,
     cellType: 'high desert mono',
-    cells: [{ panel, inSeries: 64 }],
+    cells: [{ panel, inSeries: 64, bypassDiodes: 4 }],
     soilingPct: 2,
+    faults: panel === 'left' ? [{ kind: 'weak' as const, panel, underDiode: 2, lightPct: 70 }] : [],
   })),
   trackers: ['nose', 'left', 'right', 'tail'].map((panel) => ({
     name: `${panel} tracker`,
