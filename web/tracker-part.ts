@@ -15,6 +15,10 @@ export function minutesText(minutes: number): string {
   return minutes < 9.95 ? minutes.toFixed(1) : grouped(minutes)
 }
 
+/** Time that energy is worth: seconds under a minute. */
+export const worthText = (minutes: number): string =>
+  Math.abs(minutes) < 1 ? `${grouped(minutes * 60)}${THIN}s` : `${minutesText(minutes)}${THIN}min`
+
 /** Energy of one tracker: under ten with one decimal. */
 export const smallWh = (wh: number): string => (wh >= 9.95 || wh < 0.05 ? grouped(wh) : wh.toFixed(1))
 
@@ -51,4 +55,4 @@ export const workOf = (name: string, work: TrackerDayWork | null): TrackerWork |
 
 /** What keeps the string in: the hatch of the chart in words. */
 export const hatchText = ({ leastRiseV, lowestV, highestV }: TrackerWork): string =>
-  `Hatched: ${leastRiseV > 0 ? `less than ${grouped(leastRiseV)}${THIN}V below the pack` : 'above the pack'}, or outside ${grouped(lowestV)}–${grouped(highestV)}${THIN}V.`
+  `Volts of pack and string. Hatched: ${leastRiseV > 0 ? `less than ${grouped(leastRiseV)}${THIN}V below the pack` : 'above the pack'}, or outside ${grouped(lowestV)}–${grouped(highestV)}${THIN}V.`

@@ -2,7 +2,15 @@ import { describe, expect, it } from 'vitest'
 import { windowPlot } from '../../web/charts/window-paths.ts'
 import type { PartOfDay, TrackerDayWork, TrackerWork } from '../../web/crew-types.ts'
 import { spoken } from '../../web/sentence.ts'
-import { edgeTexts, hatchText, minutesText, outsideMinutes, outsideWh, partText } from '../../web/tracker-part.ts'
+import {
+  edgeTexts,
+  hatchText,
+  minutesText,
+  outsideMinutes,
+  outsideWh,
+  partText,
+  worthText,
+} from '../../web/tracker-part.ts'
 import { trackersSentence } from '../../web/tracker-words.ts'
 
 const THIN = '\u202f'
@@ -78,9 +86,22 @@ describe('a part of a tracker’s day in words', () => {
     expect([0.04, 0.55, 9.94, 9.96, 95.4].map(minutesText)).toEqual(['0', '0.6', '9.9', '10', '95'])
   })
 
+  it('gives a worth in seconds, from a minute on in minutes', () => {
+    expect([0.03, 0.55, 1.04, 47.2].map(worthText)).toEqual([
+      `2${THIN}s`,
+      `33${THIN}s`,
+      `1.0${THIN}min`,
+      `47${THIN}min`,
+    ])
+  })
+
   it('says what the hatch is', () => {
-    expect(hatchText(tracker())).toBe(`Hatched: less than 4${THIN}V below the pack, or outside 28–90${THIN}V.`)
-    expect(hatchText(tracker({ leastRiseV: 0 }))).toBe(`Hatched: above the pack, or outside 28–90${THIN}V.`)
+    expect(hatchText(tracker())).toBe(
+      `Volts of pack and string. Hatched: less than 4${THIN}V below the pack, or outside 28–90${THIN}V.`,
+    )
+    expect(hatchText(tracker({ leastRiseV: 0 }))).toBe(
+      `Volts of pack and string. Hatched: above the pack, or outside 28–90${THIN}V.`,
+    )
   })
 })
 

@@ -15,6 +15,7 @@ export interface WindowPlot {
   below: string
   pack: string
   string: string
+  /** Where the lines’ names stand. [px] */
   packAt: [x: number, y: number]
   stringAt: [x: number, y: number]
   /** Times at an edge. [px] */
@@ -77,8 +78,8 @@ export function windowPlot({ width, work, part, utcOffsetMin }: Room): WindowPlo
     below: isLowNear ? (shade.y0(PLOT_PX).y1(y(work.lowestV))(shown) ?? '') : '',
     pack: along.y((step) => y(step.packV))(shown) ?? '',
     string: along.defined(({ V }) => V > 0).y(({ V }) => y(V))(shown) ?? '',
-    packAt: [x(middle.ms), y(middle.packV)],
-    stringAt: [x(middle.ms), y(middle.V)],
+    packAt: [x(middle.ms), y(middle.packV) < 20 ? y(middle.packV) + 16 : y(middle.packV) - 7],
+    stringAt: [x(middle.ms), y(middle.V) + 16],
     outside: stays(shown, x),
     stops: work.parts.filter(({ kind }) => kind === 'stop').flatMap((stop) => blockOf(stop, x, [first, last])),
     voltTicks: voltTicks(y),

@@ -47,10 +47,10 @@ function Plot({ plot, width, label, minutes }: { plot: WindowPlot; width: number
       ))}
       <path d={plot.pack} fill="none" stroke="var(--bal)" stroke-width="2.5" />
       <path d={plot.string} fill="none" stroke="var(--in-edge)" stroke-width="2.5" />
-      <text x={plot.packAt[0]} y={plot.packAt[1] - 7} class="ax now halo" text-anchor="middle">
+      <text x={plot.packAt[0]} y={plot.packAt[1]} class="ax now halo" text-anchor="middle">
         pack
       </text>
-      <text x={plot.stringAt[0]} y={plot.stringAt[1] + 16} class="ax now halo str" text-anchor="middle">
+      <text x={plot.stringAt[0]} y={plot.stringAt[1]} class="ax now halo str" text-anchor="middle">
         string
       </text>
       {plot.outside.map((stay) => (

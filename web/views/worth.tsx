@@ -1,7 +1,7 @@
 import type { PartOfDay, TrackerDayWork, TrackerWork } from '../crew-types.ts'
 import { grouped, THIN, whText } from '../format.ts'
 import { pct1 } from '../log-reading.ts'
-import { edgeTexts, minutesText, outsideMinutes, outsideWh, smallWh } from '../tracker-part.ts'
+import { edgeTexts, minutesText, outsideMinutes, outsideWh, smallWh, worthText } from '../tracker-part.ts'
 import { Wh } from './figures.tsx'
 
 interface WorthProps {
@@ -39,7 +39,7 @@ export function Worth({ work, part, all, at }: WorthProps) {
           <dd>
             <Wh text={`+${smallWh(part.onePointWh)}`} unit="Wh" />
           </dd>
-          <dd class="note">{part.onePointMin === null ? '' : `or ${minutesText(part.onePointMin)}${THIN}min`}</dd>
+          <dd class="note">{part.onePointMin === null ? '' : `or ${worthText(part.onePointMin)}`}</dd>
         </div>
         {part.kind === 'day' && <IfDead work={work} />}
       </dl>
@@ -58,7 +58,7 @@ const IfDead = ({ work: { ifDead } }: { work: TrackerWork }) =>
       <dd>
         <Wh text={`\u2212${whText(ifDead.wh)}`} unit="Wh" />
       </dd>
-      <dd class="note">{ifDead.min === null ? '' : `or ${minutesText(ifDead.min)}${THIN}min`}</dd>
+      <dd class="note">{ifDead.min === null ? '' : `or ${worthText(ifDead.min)}`}</dd>
     </div>
   )
 
