@@ -126,6 +126,8 @@ describeWithBrowser('the demo day on a phone', { timeout: 60_000 }, () => {
     await page.locator('svg.band').waitFor()
     expect(await overflowPx(page)).toBe(0)
     await picture(page, 'day-320')
+    await page.getByText('The band as a table').click()
+    expect(await overflowPx(page)).toBe(0)
     await page.getByRole('link', { name: 'Set-up' }).click()
     await page.getByRole('heading', { name: 'Set-up' }).waitFor()
     expect(await overflowPx(page)).toBe(0)
