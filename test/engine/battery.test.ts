@@ -67,6 +67,12 @@ describe('the 30s14p pack, worked by hand: I = (V − √(V² − 4RP))/2R', () 
   })
 })
 
+it('a counter that is off by 0.1 A loses 1.92 % of the charge in nine hours: some 99 Wh', () => {
+  const share = (0.1 * 9 * 3600) / pack.capacityC
+  expect(share * 100).toBeCloseTo(1.92, 2)
+  expect((storedJ(pack, 0.5 + share / 2) - storedJ(pack, 0.5 - share / 2)) / 3600).toBeCloseTo(99, 0)
+})
+
 describe('limits have names', () => {
   it('a full pack spills all of what comes', () => {
     const step = stepPack(pack, packNow(pack, 1), 800, 60)

@@ -64,6 +64,10 @@ describe('two cells in series, one of them weak, worked by hand', () => {
     expect(step.limit).toBe('weakest-cell')
     expect(step.currentA).toBeCloseTo(-5, 12)
     expect(step.terminalV).toBeCloseTo(7 - 5 * 0.3, 12)
+    // 6 A would leave the terminals at 5.2 V, above their 5 V, and the cell at 2.3 V: 31.2 W asked, 27.5 W given.
+    const within = stepPack(tired, packNow(tired, 0.5), -6 * (7 - 6 * 0.3), 1e-6)
+    expect(within).toMatchObject({ limit: 'weakest-cell', currentA: expect.closeTo(-5, 6) })
+    expect(within.shortJ / 1e-6).toBeCloseTo(31.2 - 27.5, 4)
     // Charging: 3.5 + 0.2·I = 4.2 at 3.5 A while the other stands at 3.85 V.
     const filling = stepPack(tired, packNow(tired, 0.5), 100, 0)
     expect(filling.limit).toBe('fullest-cell')
