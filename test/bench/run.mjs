@@ -9,6 +9,7 @@ const ASSETS = new URL('../../dist/web/', import.meta.url)
 
 execFileSync(process.execPath, [START, '--build-only'], { stdio: ['ignore', 'ignore', 'inherit'] })
 const { chainBench } = await import('./chain.mjs')
+const { coastBench } = await import('./coast.mjs')
 const { dayBench } = await import('./day.mjs')
 const { startUpBench } = await import('./start-up.mjs')
 const { stringsBench } = await import('./strings.mjs')
@@ -51,6 +52,13 @@ for (const { panels, bestNs, heldNs, busNs, edgeNs } of strings.strings) {
   )
 }
 say('tables of the demo car', ms(strings.demoTablesMs), `of a car with 12 strings ${ms(strings.twelveTablesMs)}`)
+for (const [runs, stepS] of [
+  [4, 1],
+  [20, 0.1],
+]) {
+  const coast = coastBench(runs, stepS)
+  say(`coast-down of ${runs} runs, a row each ${stepS} s`, ms(coast.ms), `${coast.rows} rows, wind and slope found`)
+}
 const day = dayBench()
 say('forecast of a 600 km day, one thread', ms(day.ms), `${day.steps} steps, 3 strings`)
 say('fastest speed that meets the target', ms(day.searchMs), `${day.tried} speeds tried`)
