@@ -77,7 +77,7 @@ export function benchRace() {
   }
 }
 
-const OPENING = { standing: { stage: 0, placeM: 0, stopLeftS: 0 }, charge: 0.9 }
+export const OPENING = { standing: { stage: 0, placeM: 0, stopLeftS: 0 }, charge: 0.9 }
 
 function middle(times) {
   times.sort((a, b) => a - b)

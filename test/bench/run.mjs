@@ -14,6 +14,7 @@ const { dayBench } = await import('./day.mjs')
 const { startUpBench } = await import('./start-up.mjs')
 const { stringsBench } = await import('./strings.mjs')
 const { streamsBench } = await import('./streams.mjs')
+const { trackersBench } = await import('./trackers.mjs')
 
 /** Scripts and styles that a page names and, if wanted, those that they name in turn. */
 function loadedBy(page, isDeep) {
@@ -59,6 +60,17 @@ for (const [runs, stepS] of [
   const coast = coastBench(runs, stepS)
   say(`coast-down of ${runs} runs, a row each ${stepS} s`, ms(coast.ms), `${coast.rows} rows, wind and slope found`)
 }
+const trackers = trackersBench()
+say(
+  "a tracker's output by four terms",
+  `${trackers.fitNs.toFixed(0)} ns`,
+  `by 40 bench points ${trackers.tableNs.toFixed(0)} ns`,
+)
+say(
+  'tracker report of a 600 km day',
+  ms(trackers.reportMs),
+  `${trackers.trackers} trackers: ${2 + trackers.trackers} days driven`,
+)
 const day = dayBench()
 say('forecast of a 600 km day, one thread', ms(day.ms), `${day.steps} steps, 3 strings`)
 say('fastest speed that meets the target', ms(day.searchMs), `${day.tried} speeds tried`)

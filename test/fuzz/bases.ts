@@ -20,6 +20,8 @@ const BENCH = [60, 80, 100].flatMap((inputV) =>
 
 const BODY = { kind: 'car-body' as const, lengthM: 3, laminarStart: true, heatCapacityKjM2C: 4 }
 
+const HEAT = { fullToC: 65, leastFromC: 85, leastPct: 40, parkedCPerW: 2, movingCPerW: 1 }
+
 const CANOPY = [
   { bearingDeg: 10, heightDeg: 20, lostPct: 15 },
   { bearingDeg: 350, heightDeg: 30, lostPct: 25 },
@@ -45,10 +47,17 @@ const fullCar = (): CarInput => {
     ],
     stand: { tiltMinDeg: 5, tiltMaxDeg: 70, azimuthFromDeg: 0, azimuthToDeg: 300 },
     cellTypes: { silicon: { ...car.cellTypes.silicon, bandGapEv: 1.13, bandGapPerC: -0.0003 } },
-    strings: car.strings.map((s) => ({ ...s, inParallel: 1, soilingPct: 3, bypassDropV: 0.4 })),
+    strings: car.strings.map((s, i) => ({
+      ...s,
+      inParallel: 1,
+      soilingPct: 3,
+      bypassDropV: 0.4,
+      alsoTrackers: i === 0 ? ['second deck tracker'] : [],
+    })),
     trackers: [
-      { ...one, trackingPct: 99 },
-      { name: two.name, window: { ...two.window, outputMinV: 60, outputMaxA: 12 }, bench: BENCH },
+      { ...one, trackingPct: 99, standbyW: 0.5, derating: HEAT },
+      { name: two.name, window: { ...two.window, outputMinV: 60, outputMaxA: 12 }, bench: BENCH, benchUse: 'table' },
+      { ...one, name: 'second deck tracker', window: { ...one.window, leastRiseV: 3 }, isDead: false },
     ],
   }
 }
