@@ -14,7 +14,13 @@ export function checkString(field: string, string: StringModel, panels: number):
   string.groups.forEach((group, g) => checkGroup(`${field}.groups[${g}]`, group, panels))
   const faults = string.faults ?? []
   faults.forEach((fault, f) => checkFault(`${field}.faults[${f}]`, fault, string, faults.slice(0, f)))
-  if (faults.length > 0) within(`${field}.cellsInParallel`, string.cellsInParallel, 1, 1, '')
+  const rows = string.cellsInParallel
+  if (faults.length > 0 && rows > 1)
+    throw new InputError(
+      'out-of-range',
+      `${field}.cellsInParallel`,
+      `is ${rows}, expected 1 where the string has faults`,
+    )
 }
 
 function checkCell(field: string, cell: CellReference): void {

@@ -15,6 +15,8 @@ const SMALL_SHARE = 0.03
 /** At a best point some 5 % of the light current go through the diode: ln 20 thermal voltages below open circuit. */
 const KNEE_SHARE = 0.05
 const KNEE_DEPTH = 3
+/** Best over open-circuit voltage, roughly that of silicon; only where the search starts depends on it. */
+const BEST_SHARE = 0.85
 
 /** Junction voltage at which part p lets a current through, from the current that junction and shunt share; ours. */
 function settledV(s: StringSolver, p: number, sharedA: number): number {
@@ -100,7 +102,7 @@ export function startX(s: StringSolver, parts: number, lead: number, mostV: numb
     bending += cells[p] * close
     junctionV[p] = openV[p] - KNEE_DEPTH * close * thermalV[p]
   }
-  const x = openV[lead] - a * Math.log(1 + (0.85 * mostV) / (bending * a))
+  const x = openV[lead] - a * Math.log(1 + (BEST_SHARE * mostV) / (bending * a))
   return x > 0 ? x : 0.5 * openV[lead]
 }
 

@@ -4,6 +4,7 @@ import { carDocument } from '../../server/documents/car.ts'
 import type { CarInput } from '../../server/documents/car.ts'
 import { checkDocument } from '../../server/documents/check.ts'
 import { someCar } from '../support/scenario.ts'
+import { oneDay } from '../support/some-budget.ts'
 
 type StringInput = CarInput['strings'][number]
 
@@ -100,5 +101,38 @@ describe('a string of the car', () => {
   test('with a fault of no known kind is refused', () => {
     const car: unknown = carWith({ faults: [{ ...weak, kind: 'broken' as 'open' }] })
     expect(checkDocument(carDocument, car).problems?.map(({ field }) => field)).toEqual(['strings[0].faults[0].kind'])
+  })
+})
+
+describe('a fault in the day’s budget', () => {
+  const day = (more: Partial<StringInput>) =>
+    oneDay((r) => {
+      const cells = [{ panel: 'deck', inSeries: 120, bypassDiodes: 6 }]
+      r.car.strings[0] = { ...r.car.strings[0], cells, ...more }
+    })
+  /** What the strings could give: what came in and what was denied. */
+  const bestWh = (ledger: ReturnType<typeof day>['ledger']): number =>
+    ledger.denied.reduce((sum, { wh }) => sum + wh, ledger.cameInWh)
+  const soundWh = bestWh(day({}).ledger)
+  const of = (more: Partial<StringInput>): number => bestWh(day(more).ledger) / soundWh
+
+  // By hand: 220 cells come in; 20 of them under the diode that takes over, and its drop of 0.5 V in about 0.55 V a cell.
+  test('takes what lies under its bypass diode, and only the weak cells’ share where that is less', () => {
+    const lost = (20 + 0.5 / 0.55) / 220
+    expect(1 - of({ faults: [{ kind: 'open', panel: 'deck' }] })).toBeCloseTo(lost, 2)
+    expect(1 - of({ faults: [{ kind: 'weak', panel: 'deck', lightPct: 20 }] })).toBeCloseTo(lost, 2)
+    const little = 1 - of({ faults: [{ kind: 'weak', panel: 'deck', lightPct: 90 }] })
+    expect(little).toBeGreaterThan(1 / 220)
+    expect(little).toBeLessThan((0.1 * 120) / 220)
+    expect(1 - of({ faults: [{ kind: 'shorted', panel: 'deck', cells: 2 }] })).toBeCloseTo(2 / 220, 2)
+  })
+
+  test('takes more with fewer diodes, and leaves a ledger that closes', () => {
+    const faults: StringInput['faults'] = [{ kind: 'open', panel: 'deck' }]
+    const with_ = (bypassDiodes: number) => day({ cells: [{ panel: 'deck', inSeries: 120, bypassDiodes }], faults })
+    const ledgers = [6, 3, 2].map((diodes) => with_(diodes).ledger)
+    for (let k = 1; k < ledgers.length; k++) expect(bestWh(ledgers[k])).toBeLessThan(0.95 * bestWh(ledgers[k - 1]))
+    for (const { openingWh, cameInWh, wentOutWh, closingWh } of ledgers)
+      expect(openingWh + cameInWh - wentOutWh - closingWh).toBeCloseTo(0, 3)
   })
 })

@@ -220,7 +220,11 @@ describe('a wrong fault', () => {
     ['cells taken', { faults: [weak(3, 0.5), weak(2, 0.1)] }, /^s\.faults\[1\]\.cells: is 2, expected 1 to 1$/],
     ['part of a cell', { faults: [weak(0.5, 0.5)] }, /^s\.faults\[0\]\.cells: is 0.5, expected a whole number/],
     ['light', { faults: [weak(1, 1.5)] }, /^s\.faults\[0\]\.lightShare: is 1.5, expected 0 to 1$/],
-    ['rows', { faults: [weak(1, 0.5)], cellsInParallel: 2 }, /^s\.cellsInParallel: is 2, expected 1 to 1$/],
+    [
+      'rows',
+      { faults: [weak(1, 0.5)], cellsInParallel: 2 },
+      /^s\.cellsInParallel: is 2, expected 1 where the string has faults$/,
+    ],
     ['diodes', { groups: [{ panel: 0, cellsInSeries: 2, bypassDiodes: 3 }] }, /bypassDiodes: is 3, expected 0 to 2$/],
   ]
 

@@ -52,6 +52,27 @@ describe('the fast solution of a string', () => {
     expect(counted.dark).toBeLessThan(1000)
   }, 60_000)
 
+  it('is as near in faint and in enhanced light, in frost and in heat', () => {
+    const random = seeded(41)
+    let [counted, faint] = [0, 0]
+    for (let i = 0; i < 3000; i++) {
+      const { string } = stringByChance(random)
+      const dimmest = random() < 0.5 ? 0.001 : 900
+      const lights = string.groups.map(() => dimmest * (2500 / dimmest) ** random())
+      const warmth = -50 + 160 * random()
+      const warmths = lights.map(() => warmth + 20 * random())
+      const exact = stringBest(string, lights, warmths)
+      const { W, V, heldW } = solved({ string, lights, warmths })
+      const what = (): string => JSON.stringify({ string, lights, warmths, exact, W })
+      if (!(Math.abs(W - exact.W) <= 3e-5 * exact.W)) expect.fail(what())
+      if (!(Math.abs(heldW(V) - W) <= 3e-5 * W)) expect.fail(`${V} V ${what()}`)
+      counted++
+      if (W > 0 && Math.max(...lights) < 5) faint++
+    }
+    expect(counted).toBe(3000)
+    expect(faint).toBeGreaterThan(100)
+  }, 60_000)
+
   it('finds the best place between two voltages: a scan over them finds none better', () => {
     const random = seeded(31)
     const counted = { all: 0, inside: 0, edge: 0, away: 0 }
