@@ -115,36 +115,43 @@ interface Block {
   gradeRad: number
 }
 
+type Odd = Pick<CoastReason, 'code' | 'detail'>
+
 /** The first place where a run is driven or braked, by the means of its blocks. */
-function oddSpeeds(car: CoastCar, run: CoastRun): { code: 'speed-rises' | 'braked'; detail: string } | null {
+function oddSpeeds(car: CoastCar, run: CoastRun): Odd | null {
   const blocks = blocksOf(run)
   const sdMps = rowNoiseMps(run) * Math.sqrt(2 / BLOCK_ROWS)
-  const startS = run.timeS[0]
-  let [lowest, before] = [Infinity, Infinity]
+  let [lowest, least] = [Infinity, Infinity]
   for (const [k, block] of blocks.entries()) {
-    const at = `${seconds(block.atS - startS)} s`
+    const at = `${seconds(block.atS - run.timeS[0])} s`
     const rise = block.speedMps - lowest
-    if (rise > RISE_MPS + SURE * sdMps)
-      return {
-        code: 'speed-rises',
-        detail: `the speed rises by ${kmh(rise)} km/h up to ${at}; expected to fall all the way, neither driven nor downhill`,
-      }
+    if (rise > RISE_MPS + SURE * sdMps) return risen(rise, at)
     lowest = Math.min(lowest, block.speedMps)
     if (k === 0) continue
-    const last = blocks[k - 1]
-    const spanS = block.atS - last.atS
-    const slopeMps2 = (car.gravity * Math.sin((block.gradeRad + last.gradeRad) / 2)) / car.rotatingFactor
-    const fall = (last.speedMps - block.speedMps) / spanS - slopeMps2
-    const most = before + Math.max(JUMP_MPS2, JUMP_SHARE * before) + (2 * SURE * sdMps) / spanS
-    if (fall > most)
-      return {
-        code: 'braked',
-        detail: `the deceleration jumps from ${before.toFixed(2)} to ${fall.toFixed(2)} m/s² at ${at}; expected to ease off as the car slows, without brakes`,
-      }
-    before = Math.min(before, fall)
+    const { fallMps2, spanS } = fallBetween(car, blocks[k - 1], block)
+    const most = least + Math.max(JUMP_MPS2, JUMP_SHARE * least) + (2 * SURE * sdMps) / spanS
+    if (fallMps2 > most) return braked(least, fallMps2, at)
+    least = Math.min(least, fallMps2)
   }
   return null
 }
+
+/** Deceleration from one block to the next, less what the slope does. */
+function fallBetween({ gravity, rotatingFactor }: CoastCar, before: Block, block: Block) {
+  const spanS = block.atS - before.atS
+  const slopeMps2 = (gravity * Math.sin((block.gradeRad + before.gradeRad) / 2)) / rotatingFactor
+  return { fallMps2: (before.speedMps - block.speedMps) / spanS - slopeMps2, spanS }
+}
+
+const risen = (riseMps: number, at: string): Odd => ({
+  code: 'speed-rises',
+  detail: `the speed rises by ${kmh(riseMps)} km/h up to ${at}; expected to fall all the way, neither driven nor downhill`,
+})
+
+const braked = (leastMps2: number, fallMps2: number, at: string): Odd => ({
+  code: 'braked',
+  detail: `the deceleration jumps from ${leastMps2.toFixed(2)} to ${fallMps2.toFixed(2)} m/s² at ${at}; expected to ease off as the car slows, without brakes`,
+})
 
 function blocksOf(run: CoastRun): Block[] {
   const blocks: Block[] = []

@@ -57,7 +57,6 @@ export function meanHeadingDeg(rows: readonly CoastRow[]): number {
 export interface Ways {
   direction?: FoundColumn
   heading?: FoundColumn
-  isAlternate: boolean
 }
 
 /**

@@ -4,7 +4,7 @@ import type { CoastRunsDocument } from '../documents/coast-down.ts'
 import { cellReader } from './cell-reader.ts'
 import type { Columns } from './coast-rows.ts'
 import { checkRows, readRows, runKey } from './coast-rows.ts'
-import type { RowGroup, Way } from './coast-runs.ts'
+import type { CoastRow, RowGroup, Way } from './coast-runs.ts'
 import { checkGroups, grouped, runOf, waysOf } from './coast-runs.ts'
 import type { CoastNumber, CoastTableOptions } from './coast-table.ts'
 import { COAST_RANGES, COAST_SPECS, coastTableOptions } from './coast-table.ts'
@@ -46,33 +46,31 @@ export function readCsvCoast(text: string, options: CoastTableOptions = {}): Coa
   const timeOf = coastTimes(time, table.rows, { decimal, wishedUnit: columnWishes.units?.time }, problems)
   if (timeOf === null) return { problems: problems.list() }
   const rows = readRows(table.rows, byField, { timeOf, readCell: cellReader(decimal, problems) }, notices)
+  const place = { line: table.header.line, column: 1 }
   if (problems.count === 0 && rows.length === 0)
-    problems.add({
-      field: 'table',
-      detail: 'expected rows with a time and a speed',
-      line: table.header.line,
-      column: 1,
-    })
+    problems.add({ field: 'table', detail: 'expected rows with a time and a speed', ...place })
   if (problems.count > 0) return { problems: problems.list() }
+  const { groups, ways } = partedRows(rows, byField, problems)
+  if (problems.count > 0) return { problems: problems.list() }
+  say(notices, byField, ignored)
+  const runs = groups.map((group, i) => runOf(group, nameOf(group, i, ways[i], byField), ways[i]))
+  const summary = summaryOf(groups, ways, byField, ignored)
+  return checkedReading(coastRuns, { runs }, { notices: notices.list(), summary })
+}
+
+/** Rows by run, and the way of each; what is doubtful goes to the problems. */
+function partedRows(rows: CoastRow[], byField: Columns, problems: ProblemList): { groups: RowGroup[]; ways: Way[] } {
   const groups = grouped(rows, (row, last) => runKey(row, last, byField))
   checkGroups(groups, byField.get('run'), problems)
   for (const group of groups) checkRows(group, byField, problems)
-  const isAlternate = directions === 'alternate'
-  const ways = waysOf(
-    groups,
-    { direction: byField.get('direction'), heading: byField.get('headingDeg'), isAlternate },
-    problems,
-  )
-  if (problems.count > 0) return { problems: problems.list() }
-  const names = groups.map(({ label }, i) => (byField.has('run') ? `run ${label}` : `run ${i + 1}`))
-  const input = {
-    runs: groups.map((group, i) =>
-      runOf(group, asLabel(`${names[i].slice(0, 60)}, ${ways[i]}`, `run ${i + 1}`), ways[i]),
-    ),
-  }
-  say(notices, byField, ignored)
-  const summary = summaryOf(groups, ways, byField, ignored)
-  return checkedReading(coastRuns, input, { notices: notices.list(), summary })
+  const ways = waysOf(groups, { direction: byField.get('direction'), heading: byField.get('headingDeg') }, problems)
+  return { groups, ways }
+}
+
+/** `run 2, back`: by its label where the file has one. */
+function nameOf({ label }: RowGroup, i: number, way: Way, byField: Columns): string {
+  const number = `run ${i + 1}`
+  return asLabel(`${byField.has('run') ? `run ${label.slice(0, 60)}` : number}, ${way}`, number)
 }
 
 function summaryOf(groups: RowGroup[], ways: Way[], byField: Columns, ignored: string[]): CoastSummary {

@@ -17,19 +17,14 @@ export function CoastDownView() {
   const file = useSignal<File | null>(null)
   const answer = useSignal<Answer<CoastDownAnswer> | null>(null)
   const isWorking = useSignal(false)
-  const car = useSignal<object | null>(null)
   const chosen = carId.value ?? choice.value.car
-  const cars = lists.value?.cars ?? []
-  useEffect(() => {
-    car.value = null
-    if (chosen !== '') void documentOf('cars', chosen).then((got) => (car.value = got.value?.document ?? null))
-  }, [chosen, lists.value])
-
+  const car = useCar(chosen)
   const missing = missingAir(form.value)
   const work = async (log: File): Promise<void> => {
     isWorking.value = true
-    answer.value = await readCoastDown(log, coastQueryOf(form.value, chosen))
+    const got = await readCoastDown(log, coastQueryOf(form.value, chosen))
     isWorking.value = false
+    if (file.value === log) answer.value = got
   }
   const { value: found } = answer
   return (
@@ -44,7 +39,7 @@ export function CoastDownView() {
         <SelectField
           label="Car"
           value={chosen}
-          options={cars.map((item) => [item.id, item.name] as const)}
+          options={(lists.value?.cars ?? []).map((item) => [item.id, item.name] as const)}
           onChange={(id) => {
             carId.value = id
             answer.value = null
@@ -52,7 +47,7 @@ export function CoastDownView() {
         />
         <CoastFields
           form={form.value}
-          carKg={car.value === null ? null : (bodyOf(car.value)?.massKg ?? null)}
+          carKg={car === null ? null : (bodyOf(car)?.massKg ?? null)}
           onChange={(next) => (form.value = next)}
         />
         <FileField
@@ -82,12 +77,7 @@ export function CoastDownView() {
         <>
           <CoastResult result={found.value.result} notices={found.value.notices} />
           {found.value.result.car !== null && (
-            <CoastApply
-              key={found.value}
-              result={found.value.result}
-              car={found.value.result.car}
-              carDocument={car.value}
-            />
+            <CoastApply key={found.value} result={found.value.result} car={found.value.result.car} carDocument={car} />
           )}
         </>
       )}
@@ -96,6 +86,20 @@ export function CoastDownView() {
       </nav>
     </div>
   )
+}
+
+/** The stored document of a car, read again when the lists change; null until it is there. */
+function useCar(id: string): object | null {
+  const car = useSignal<object | null>(null)
+  useEffect(() => {
+    let isWanted = id !== ''
+    if (isWanted) void documentOf('cars', id).then((got) => isWanted && (car.value = got.value?.document ?? null))
+    return () => {
+      isWanted = false
+      car.value = null
+    }
+  }, [id, lists.value])
+  return car.value
 }
 
 /** Why there is no figure: reasons in words where the runs do not identify it, else what is wrong with the file. */
