@@ -1,0 +1,75 @@
+import { type DayTables, rowAt, storedW } from './day-tables.ts'
+
+/**
+ * A function of time at one edge, from below: straight between its nodes, which stand evenly from the earliest instant
+ * at which the edge can be passed to the latest. So the nodes move along with a car at the limit, for which nothing
+ * is lost between them.
+ */
+export interface Below {
+  atS: Float64Array
+  value: Float64Array
+}
+
+export function emptyBelow(lowS: number, highS: number, stepS: number): Below {
+  const cells = highS > lowS ? Math.ceil((highS - lowS) / stepS - 1e-9) : 0
+  const atS = Float64Array.from({ length: cells + 1 }, (_, j) => (j === 0 ? lowS : lowS + ((highS - lowS) * j) / cells))
+  return { atS, value: new Float64Array(cells + 1).fill(Number.POSITIVE_INFINITY) }
+}
+
+/**
+ * Node values from lines below the function, one a cell: the lower of two neighbours at their common node, so that
+ * straight lines between the nodes stay below both.
+ *
+ * @param climb  slope of each cell's line (nodes − 1)
+ * @param foot   its value at time 0 (nodes − 1)
+ */
+export function joinLines(below: Below, climb: Float64Array, foot: Float64Array): void {
+  const { atS, value } = below
+  for (let c = 0; c < climb.length; c++) {
+    const left = climb[c] * atS[c] + foot[c]
+    const right = climb[c] * atS[c + 1] + foot[c]
+    if (left < value[c]) value[c] = left
+    if (right < value[c + 1]) value[c + 1] = right
+  }
+}
+
+/** Most that a row reaches between two instants. */
+export function mostBetween(day: DayTables, row: Float64Array, first: number, fromS: number, toS: number): number {
+  const { clock } = day
+  let most = Math.max(rowAt(row, first, clock, fromS), rowAt(row, first, clock, toS))
+  const node = Math.max(Math.ceil((fromS - clock.from) / clock.step), 0)
+  for (let k = node; k < clock.count && clock.from + k * clock.step < toS; k++)
+    if (row[first + k] > most) most = row[first + k]
+  return most
+}
+
+/** Lets the car wait at an edge, in the best sun of the minutes around: the lower of two lines in each cell. */
+export function waiting(day: DayTables, below: Below, piece: number, price: number): void {
+  const { atS, value } = below
+  for (let j = 1; j < atS.length; j++) {
+    const row = piece * day.clock.count
+    const sunW = mostBetween(day, day.harvestW, row, atS[j - 1] - WAIT_S, atS[j] + WAIT_S)
+    const waited = value[j - 1] - price * storedW(day.pack, sunW - day.waitingLoadW) * (atS[j] - atS[j - 1])
+    if (waited < value[j]) value[j] = waited
+  }
+}
+
+/** A wait is reckoned with the sun at its middle, which lies no farther off. [S] */
+const WAIT_S = 60
+
+/** Least of arrival, value and what the evening leaves wanting, over all ends. */
+export function leastAtEnd(day: DayTables, { atS, value }: Below, price: number): number {
+  const { clock, duskGainJ, targetJ, pack } = day
+  const wantedAt = (s: number): number => price * Math.max(targetJ - rowAt(duskGainJ, 0, clock, s), pack.floorJ)
+  let least = atS[0] + value[0] + wantedAt(atS[0])
+  for (let j = 1; j < atS.length; j++) {
+    least = Math.min(least, atS[j] + value[j] + wantedAt(atS[j]))
+    const slope = (value[j] - value[j - 1]) / (atS[j] - atS[j - 1])
+    for (let n = Math.max(Math.ceil((atS[j - 1] - clock.from) / clock.step), 0); n < clock.count; n++) {
+      const s = clock.from + n * clock.step
+      if (s >= atS[j]) break
+      least = Math.min(least, s + value[j - 1] + slope * (s - atS[j - 1]) + wantedAt(s))
+    }
+  }
+  return least
+}

@@ -1,0 +1,219 @@
+import { type Below, emptyBelow, joinLines, mostBetween } from './below.ts'
+import { type DayTables, type Load, loadAt, storedSlope, storedW } from './day-tables.ts'
+
+const FAR = Number.POSITIVE_INFINITY
+
+/** A piece's priced energy over the time it takes, made ready for tangents. */
+interface Priced {
+  day: DayTables
+  piece: number
+  price: number
+  shortestS: number
+  longestS: number
+  /** Speeds of the table from fast to slow, and the slope of load energy over time there. [s/m … W] */
+  timeS: Float64Array
+  slopeW: Float64Array
+  /** By how much the load's slope falls over speed, all falls together: 0 where the load is convex. [W·s/m] */
+  hollow: number
+}
+
+/** Behind a piece: from every instant before it, at every speed. */
+export function behindPiece(
+  day: DayTables,
+  stepS: number,
+  from: Below,
+  of: { piece: number; price: number; latestS: number },
+): Below {
+  const priced = pricedOf(day, of.piece, of.price)
+  const lowS = from.atS[0] + priced.shortestS
+  const to = emptyBelow(lowS, of.latestS, stepS)
+  const nodes = to.atS.map((atS) => leastAt(priced, from, atS))
+  const cells = to.atS.length - 1
+  if (cells === 0) to.value[0] = nodes[0]
+  const climb = new Float64Array(cells)
+  const foot = new Float64Array(cells)
+  for (let c = 0; c < cells; c++) {
+    climb[c] = (nodes[c + 1] - nodes[c]) / (to.atS[c + 1] - to.atS[c])
+    if (!Number.isFinite(climb[c])) climb[c] = 0
+    foot[c] = footOf(priced, from, to.atS[c], to.atS[c + 1], climb[c])
+  }
+  joinLines(to, climb, foot)
+  return to
+}
+
+/** A cell that is left and one that is reached, and the sun between them; scratch, filled for each pair. */
+const pair = { fromS: 0, untilS: 0, left: 0, grows: 0, startS: 0, endS: 0, sunW: 0, wantedS: 0 }
+
+/** Fills the pair for the cell that is left. */
+function takePair(priced: Priced, from: Below, c: number): void {
+  const { day, piece } = priced
+  const last = from.atS.length - 1
+  pair.fromS = from.atS[c]
+  pair.untilS = from.atS[Math.min(c + 1, last)]
+  pair.left = from.value[c]
+  pair.grows = pair.untilS > pair.fromS ? (from.value[c + 1] - pair.left) / (pair.untilS - pair.fromS) : 0
+  const row = piece * day.clock.count
+  pair.sunW = mostBetween(day, day.harvestW, row, (pair.fromS + pair.startS) / 2, (pair.untilS + pair.endS) / 2)
+  pair.wantedS = timeOfSlope(priced, pair.grows, pair.sunW, 0)
+}
+
+/** Last cell from which an instant can be reached at the shortest time. */
+function latestCell(from: Below, priced: Priced, atS: number): number {
+  const { atS: left } = from
+  let low = 0
+  let high = Math.max(left.length - 2, 0)
+  while (low < high) {
+    const middle = (low + high + 1) >> 1
+    if (left[middle] <= atS - priced.shortestS) low = middle
+    else high = middle - 1
+  }
+  return low
+}
+
+/** Value at an instant behind the piece, near enough to take slopes from. */
+function leastAt(priced: Priced, from: Below, atS: number): number {
+  let least = FAR
+  pair.startS = atS
+  pair.endS = atS
+  for (let c = latestCell(from, priced, atS); c >= 0; c--) {
+    takePair(priced, from, c)
+    if (atS - pair.untilS > priced.longestS) break
+    const low = Math.max(atS - pair.untilS, priced.shortestS)
+    const high = Math.min(atS - pair.fromS, priced.longestS)
+    const timeS = Math.min(Math.max(pair.wantedS, low), Math.max(high, low))
+    tangentAt(priced, timeS, pair.sunW)
+    const value = pair.left + pair.grows * (atS - timeS - pair.fromS) + tangent.value
+    if (value < least) least = value
+  }
+  return least
+}
+
+const load: Load = { W: 0, slope: 0 }
+const tangent = { value: 0, slope: 0, hollow: 0 }
+
+/** Priced energy of a piece driven in a time, and its slope over that time. [s, 1] */
+function tangentAt({ day, piece, price, hollow }: Priced, timeS: number, sunW: number): void {
+  const speedMps = day.lengthM[piece] / timeS
+  loadAt(day, piece, speedMps, load)
+  const stored = storedW(day.pack, sunW - load.W)
+  tangent.value = -price * stored * timeS
+  tangent.slope = -price * (stored + storedSlope(day.pack, sunW - load.W) * load.slope * speedMps)
+  tangent.hollow = 1.1 * price * hollow * speedMps
+}
+
+/** What value less `climb` times arrival never falls below in a cell. */
+function footOf(priced: Priced, from: Below, startS: number, endS: number, climb: number): number {
+  let least = FAR
+  pair.startS = startS
+  pair.endS = endS
+  for (let c = latestCell(from, priced, endS); c >= 0; c--) {
+    takePair(priced, from, c)
+    if (startS - pair.untilS > priced.longestS) break
+    if (!(lowestOver(priced, climb, timeOfSlope(priced, climb, pair.sunW, 0)) < least)) continue
+    pair.wantedS = timeOfSlope(priced, pair.grows, pair.sunW, 2)
+    const lowest = lowestOver(priced, climb, timeOfSlope(priced, climb, pair.sunW, 2))
+    if (lowest < least) least = lowest
+  }
+  return least
+}
+
+/**
+ * Below value less `climb` times arrival over a pair of cells, by the tangent of priced energy where the least is
+ * expected: linear in the time taken and the instant left, so least at a corner of what the pair allows.
+ */
+function lowestOver(priced: Priced, climb: number, climbS: number): number {
+  const { fromS, untilS, startS, endS, grows, left, sunW, wantedS } = pair
+  const least = Math.max(priced.shortestS, startS - untilS)
+  const most = Math.min(priced.longestS, endS - fromS)
+  if (least > most) return FAR
+  const reachS = climb > grows ? Math.min(endS, untilS + climbS) : Math.max(startS, fromS + climbS)
+  const leaveS = Math.min(Math.max(reachS - wantedS, fromS), untilS)
+  const timeS = Math.min(Math.max(reachS - leaveS, least), most)
+  tangentAt(priced, timeS, sunW)
+  const perLeaving = grows - climb
+  const perTime = tangent.slope - climb
+  const atLeast = Math.max(fromS, startS - most)
+  const atMost = Math.min(untilS, endS - least)
+  const at = (s: number): number =>
+    perLeaving * s + perTime * (perTime >= 0 ? Math.max(least, startS - s) : Math.min(most, endS - s))
+  const bend = perTime >= 0 ? startS - least : endS - most
+  let lowest = Math.min(at(atLeast), at(atMost))
+  if (bend > atLeast && bend < atMost) lowest = Math.min(lowest, at(bend))
+  return left - grows * fromS + tangent.value - tangent.slope * timeS + lowest - tangent.hollow * (most - least)
+}
+
+function pricedOf(day: DayTables, piece: number, price: number): Priced {
+  const { speeds, lengthM, fastestMps, slowestMps } = day
+  const fastest = fastestMps[piece]
+  const slowest = Math.min(slowestMps, fastest)
+  const first = Math.max(Math.floor((slowest - speeds.from) / speeds.step), 0)
+  const last = Math.min(Math.ceil((fastest - speeds.from) / speeds.step), speeds.count - 1)
+  const timeS = new Float64Array(last - first + 1)
+  const slopeW = new Float64Array(last - first + 1)
+  for (let j = last; j >= first; j--) {
+    const speedMps = speeds.from + j * speeds.step
+    loadAt(day, piece, speedMps, load)
+    timeS[last - j] = lengthM[piece] / speedMps
+    slopeW[last - j] = load.W - load.slope * speedMps
+  }
+  return {
+    day,
+    piece,
+    price,
+    shortestS: lengthM[piece] / fastest,
+    longestS: lengthM[piece] / slowest,
+    timeS,
+    slopeW,
+    hollow: hollowOf(day, piece, first, last),
+  }
+}
+
+/**
+ * Time at which priced energy grows as fast as wanted: from the table, then bettered by Newton's steps. Any tangent
+ * holds, a better one holds tighter. [S]
+ */
+function timeOfSlope(priced: Priced, grows: number, sunW: number, steps: number): number {
+  const { timeS, slopeW, price, shortestS, longestS } = priced
+  if (!(price > 0)) return shortestS
+  const wantedW = grows / price + sunW
+  const last = timeS.length - 1
+  let low = 0
+  let high = last
+  while (high - low > 1) {
+    const middle = (low + high) >> 1
+    if (slopeW[middle] < wantedW) low = middle
+    else high = middle
+  }
+  const bendW = (slopeW[high] - slopeW[low]) / (timeS[high] - timeS[low])
+  if (!(bendW > 0)) return timeS[low]
+  let at = timeS[low] + (wantedW - slopeW[low]) / bendW
+  for (let step = 0; step < steps; step++) {
+    at = Math.min(Math.max(at, shortestS), longestS)
+    tangentAt(priced, at, sunW)
+    at += (grows - tangent.slope) / (price * bendW)
+  }
+  return Math.min(Math.max(at, shortestS), longestS)
+}
+
+/** All falls of the load's slope over the speeds between two entries of its table: exact, a cubic's bend is straight. */
+function hollowOf(day: DayTables, piece: number, first: number, last: number): number {
+  const { speeds, loadW } = day
+  const at = (j: number): number => loadW[piece * speeds.count + j]
+  const end = speeds.count - 1
+  let sum = 0
+  for (let j = first; j < last; j++) {
+    const p1 = at(j)
+    const p2 = at(j + 1)
+    const p0 = j > 0 ? at(j - 1) : 2 * p1 - p2
+    const p3 = j + 2 <= end ? at(j + 2) : 2 * p2 - p1
+    const bend0 = 2 * p0 - 5 * p1 + 4 * p2 - p3
+    const bend1 = 4 * p1 - p0 - 5 * p2 + 2 * p3
+    if (bend0 >= 0 && bend1 >= 0) continue
+    if (bend0 <= 0 && bend1 <= 0) sum -= (bend0 + bend1) / 2
+    else {
+      const lowest = Math.min(bend0, bend1)
+      sum -= (0.5 * lowest * lowest) / (Math.max(bend0, bend1) - lowest)
+    }
+  }
+  return Math.max(sum, 0) / speeds.step
+}

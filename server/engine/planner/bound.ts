@@ -1,0 +1,49 @@
+import { type Below, emptyBelow, leastAtEnd, waiting } from './below.ts'
+import { behindPiece } from './bound-piece.ts'
+import { behindStop } from './bound-stop.ts'
+import type { DayTables } from './day-tables.ts'
+
+/**
+ * A proven lower limit on the arrival, from prices of energy along the road.
+ *
+ * Energy is given a price at each edge in place of floor, ceiling and target. What is left to choose is times alone:
+ * arrival plus priced energy is a shortest path over place and time, and its least value, with what the prices
+ * themselves are worth, is not above the arrival of any drive that holds. It is carried from below as straight lines
+ * on cells of time: a tangent for each pair of cells, then the chord of the least of them. Any prices of at least 0
+ * give a valid limit; those of a finished drive give a tight one. The engine's README has the proof.
+ *
+ * @param sPerJ   price of energy on leaving each edge. [s/J] (pieces + 1)
+ * @param latestS arrival of a drive that holds; only drives up to there are looked at. [S]
+ * @param stepS   width of a cell. [S]
+ * @returns earliest arrival that cannot be excluded, not above `latestS`. [S]
+ */
+export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: number, stepS: number): number {
+  const { pieces, pack, stops } = day
+  const price = pricesOf(day, sPerJ)
+  const shortest = day.lengthM.map((m, i) => m / day.fastestMps[i])
+  const stopS = stops.map((stop) => stop.lengthS.reduce((least, s) => Math.min(least, s), Number.POSITIVE_INFINITY))
+  let leftS = shortest.reduce((sum, s) => sum + s, 0) + stopS.reduce((sum, s) => sum + s, 0)
+  let below: Below = emptyBelow(day.start.atS, latestS - leftS, stepS)
+  below.value[0] = 0
+  let worthS = -price[0] * day.start.energyJ
+  for (let i = 0, s = 0; ; i++) {
+    for (; s < stops.length && stops[s].beforePiece === i; s++) {
+      leftS -= stopS[s]
+      below = behindStop(day, stepS, below, { stop: stops[s], price: price[i], latestS: latestS - leftS })
+    }
+    waiting(day, below, Math.min(i, pieces - 1), price[i])
+    if (i === pieces) break
+    leftS -= shortest[i]
+    below = behindPiece(day, stepS, below, { piece: i, price: price[i], latestS: latestS - leftS })
+    const drop = price[i] - price[i + 1]
+    if (i + 1 < pieces) worthS += drop * (drop > 0 ? pack.floorJ : pack.ceilingJ)
+  }
+  return Math.min(worthS + leastAtEnd(day, below, price[pieces]), latestS)
+}
+
+/** Prices of at least 0, the last one twice: nothing is bought behind the last piece but the evening. */
+function pricesOf({ pieces }: DayTables, sPerJ: Float64Array): Float64Array {
+  const price = sPerJ.map((s) => (s > 0 ? s : 0))
+  price[pieces] = price[pieces - 1]
+  return price
+}

@@ -1,0 +1,118 @@
+/** Even steps of a table: entry k stands for `from + k·step`. */
+export interface Axis {
+  from: number
+  step: number
+  count: number
+}
+
+/** A timed stop in front of a piece. */
+export interface TableStop {
+  /** The stop is reached when the pieces before this one are driven. */
+  beforePiece: number
+  /** From arrival to departure, by instant of arrival. [S] (clock) */
+  lengthS: Float64Array
+  /** What the pack gains over the stop, by instant of arrival, before its ceiling. [J] (clock) */
+  gainJ: Float64Array
+  /** Arrivals after this are too late; Infinity where there is no such rule. [S] */
+  closesS: number
+}
+
+/** The pack between floor and ceiling. */
+export interface TablePack {
+  /** Energy that it can hold. [J] */
+  ceilingJ: number
+  /** Energy that must be left everywhere. [J] */
+  floorJ: number
+  /** Resistance over voltage squared: power `n` at the terminals loses `n²` times this. [1/W] */
+  lossPerW: number
+  /** Share of what flows in that stays. */
+  coulombic: number
+}
+
+/**
+ * One day's drive as the planner sees it: what each piece of road costs at each speed, and what the sun
+ * brings there at each time. Times are seconds on one clock, energies joules stored in the pack.
+ */
+export interface DayTables {
+  pieces: number
+  lengthM: Float64Array
+  /** Highest speed allowed and held by the motor. [Mps] (pieces) */
+  fastestMps: Float64Array
+  slowestMps: number
+  speeds: Axis
+  /** Power drawn from the bus, auxiliaries included. [W] (pieces × speeds) */
+  loadW: Float64Array
+  clock: Axis
+  /** Power that the trackers give to the bus. [W] (pieces × clock) */
+  harvestW: Float64Array
+  /** Drawn while the car waits on the road. [W] */
+  waitingLoadW: number
+  stops: TableStop[]
+  /** What the pack gains from an arrival at the end until dusk, before its ceiling. [J] (clock) */
+  duskGainJ: Float64Array
+  pack: TablePack
+  start: { atS: number; energyJ: number }
+  /** Latest arrival at the end. [S] */
+  latestS: number
+  /** Wanted when the day closes, what the evening brings included. [J] */
+  targetJ: number
+}
+
+/** Rate at which a net power at the terminals is stored: losses off, either sign. [W] */
+export const storedW = (pack: TablePack, netW: number): number =>
+  (netW > 0 ? netW * pack.coulombic : netW) - netW * netW * pack.lossPerW
+
+/** Slope of `storedW`. */
+export const storedSlope = (pack: TablePack, netW: number): number =>
+  (netW > 0 ? pack.coulombic : 1) - 2 * netW * pack.lossPerW
+
+/** Value of a row at a place on its axis, straight between entries, held beyond the ends. */
+export function rowAt(row: Float64Array, first: number, axis: Axis, at: number): number {
+  const x = (at - axis.from) / axis.step
+  if (!(x > 0)) return row[first]
+  const last = axis.count - 1
+  if (x >= last) return row[first + last]
+  const i = x | 0
+  return row[first + i] + (row[first + i + 1] - row[first + i]) * (x - i)
+}
+
+/** Slope of `rowAt` over its axis; 0 beyond the ends. */
+export function rowSlopeAt(row: Float64Array, first: number, axis: Axis, at: number): number {
+  const x = (at - axis.from) / axis.step
+  if (!(x > 0) || x >= axis.count - 1) return 0
+  const i = x | 0
+  return (row[first + i + 1] - row[first + i]) / axis.step
+}
+
+/** Load of a piece at a speed and its slope over speed. */
+export interface Load {
+  W: number
+  slope: number
+}
+
+/**
+ * Load of a piece at a speed: the cubic through the speeds around it (Catmull and Rom), so that the slope has no
+ * steps; straight on beyond the table.
+ *
+ * @param out  overwritten
+ */
+export function loadAt(day: DayTables, piece: number, speedMps: number, out: Load): Load {
+  const { speeds, loadW } = day
+  const last = speeds.count - 1
+  const x = (speedMps - speeds.from) / speeds.step
+  const inside = Math.min(Math.max(x, 0), last)
+  const i = Math.min(inside | 0, last - 1)
+  const at = piece * speeds.count + i
+  const p1 = loadW[at]
+  const p2 = loadW[at + 1]
+  const p0 = i > 0 ? loadW[at - 1] : 2 * p1 - p2
+  const p3 = i + 2 <= last ? loadW[at + 2] : 2 * p2 - p1
+  const u = inside - i
+  const a = 0.5 * (p3 - p0) + 1.5 * (p1 - p2)
+  const b = p0 - 2.5 * p1 + 2 * p2 - 0.5 * p3
+  const c = 0.5 * (p2 - p0)
+  const slope = c + u * (2 * b + 3 * a * u)
+  out.W = p1 + u * (c + u * (b + a * u)) + slope * (x - inside)
+  out.slope = slope / speeds.step
+  return out
+}

@@ -1,0 +1,141 @@
+import { type DayTables, type Load, loadAt, rowAt, rowSlopeAt, storedSlope, storedW } from './day-tables.ts'
+
+/** Multipliers of what must hold, and the last drive's course; everything that the sweeps write. */
+export interface Sweep {
+  /** Waiting at each edge, fixed. [S] (pieces + 1) */
+  waitS: Float64Array
+  /** Prices of the floor at each edge (0 is unused) and, last, of the target. [s/J] (pieces + 2) */
+  multiplier: Float64Array
+  /** How fast a lack grows dearer. [s/J²] */
+  stiffness: number
+  /** How much more than floor and target is aimed at. [J] */
+  spareJ: number
+  /** Instant of leaving each edge. [S] (pieces + 1) */
+  atS: Float64Array
+  /** Energy on arrival at each edge. [J] (pieces + 1) */
+  arrivalJ: Float64Array
+  /** Energy when the day closes. [J] */
+  duskJ: number
+  /** What a joule more on leaving each edge saves. [s/J] (pieces + 1) */
+  price: Float64Array
+  arrivedS: Float64Array
+  isFull: { piece: Uint8Array; wait: Uint8Array; stop: Uint8Array }
+}
+
+export const newSweep = (day: DayTables, waitS: Float64Array): Sweep => ({
+  waitS,
+  multiplier: new Float64Array(day.pieces + 2),
+  stiffness: 0,
+  spareJ: 0,
+  atS: new Float64Array(day.pieces + 1),
+  arrivalJ: new Float64Array(day.pieces + 1),
+  duskJ: 0,
+  price: new Float64Array(day.pieces + 1),
+  arrivedS: new Float64Array(day.stops.length),
+  isFull: {
+    piece: new Uint8Array(day.pieces),
+    wait: new Uint8Array(day.pieces + 1),
+    stop: new Uint8Array(day.stops.length),
+  },
+})
+
+const load: Load = { W: 0, slope: 0 }
+
+function forward(day: DayTables, sweep: Sweep, timeS: Float64Array): void {
+  const { pieces, pack, clock, stops } = day
+  const { isFull, waitS } = sweep
+  let t = day.start.atS
+  let E = day.start.energyJ
+  let s = 0
+  for (let i = 0; i <= pieces; i++) {
+    sweep.arrivalJ[i] = E
+    for (; s < stops.length && stops[s].beforePiece === i; s++) {
+      sweep.arrivedS[s] = t
+      E += rowAt(stops[s].gainJ, 0, clock, t)
+      isFull.stop[s] = E >= pack.ceilingJ ? 1 : 0
+      if (E > pack.ceilingJ) E = pack.ceilingJ
+      t += rowAt(stops[s].lengthS, 0, clock, t)
+    }
+    if (waitS[i] > 0) {
+      const sunW = rowAt(day.harvestW, Math.min(i, pieces - 1) * clock.count, clock, t + waitS[i] / 2)
+      E += storedW(pack, sunW - day.waitingLoadW) * waitS[i]
+      isFull.wait[i] = E >= pack.ceilingJ ? 1 : 0
+      if (E > pack.ceilingJ) E = pack.ceilingJ
+      t += waitS[i]
+    }
+    sweep.atS[i] = t
+    if (i === pieces) break
+    const sunW = rowAt(day.harvestW, i * clock.count, clock, t + timeS[i] / 2)
+    E += storedW(pack, sunW - loadAt(day, i, day.lengthM[i] / timeS[i], load).W) * timeS[i]
+    isFull.piece[i] = E >= pack.ceilingJ ? 1 : 0
+    if (E > pack.ceilingJ) E = pack.ceilingJ
+    t += timeS[i]
+  }
+  sweep.duskJ = E + rowAt(day.duskGainJ, 0, clock, t)
+}
+
+/** What a lack costs beyond its price: quadratic once it is dearer than nothing. [s] */
+function lackS(lackJ: number, price: number, stiffness: number): number {
+  const at = Math.max(price + stiffness * lackJ, 0)
+  return (at * at - price * price) / (2 * stiffness)
+}
+
+/**
+ * Arrival at the end plus what lacks of floor and target cost, for the times that the pieces take.
+ *
+ * @param timeS  time of each piece. [S] (pieces)
+ * @param slope  its exact slope, by one sweep from the end back; overwritten (pieces)
+ * @returns [s]
+ */
+export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, slope: Float64Array): number {
+  forward(day, sweep, timeS)
+  const { pieces: n, pack, clock, stops } = day
+  const { atS, isFull, multiplier, stiffness, spareJ, price, waitS } = sweep
+  const isFullAtDusk = sweep.duskJ >= pack.ceilingJ
+  const duskLackJ = day.targetJ + spareJ - Math.min(sweep.duskJ, pack.ceilingJ)
+  let value = atS[n] + lackS(duskLackJ, multiplier[n + 1], stiffness)
+  let p = isFullAtDusk ? 0 : -Math.max(multiplier[n + 1] + stiffness * duskLackJ, 0)
+  let q = 1 + p * rowSlopeAt(day.duskGainJ, 0, clock, atS[n])
+  let s = stops.length - 1
+  for (let i = n; i >= 0; i--) {
+    if (i < n) {
+      const middleS = atS[i] + timeS[i] / 2
+      const speedMps = day.lengthM[i] / timeS[i]
+      loadAt(day, i, speedMps, load)
+      const netW = rowAt(day.harvestW, i * clock.count, clock, middleS) - load.W
+      const sunSlope = rowSlopeAt(day.harvestW, i * clock.count, clock, middleS)
+      if (isFull.piece[i] === 1) p = 0
+      const worth = p * storedSlope(pack, netW)
+      slope[i] = q + p * storedW(pack, netW) + worth * (0.5 * sunSlope * timeS[i] + load.slope * speedMps)
+      q += worth * sunSlope * timeS[i]
+    }
+    price[i] = -p
+    if (waitS[i] > 0) {
+      if (isFull.wait[i] === 1) p = 0
+      const middleS = atS[i] - waitS[i] / 2
+      const row = Math.min(i, n - 1) * clock.count
+      const netW = rowAt(day.harvestW, row, clock, middleS) - day.waitingLoadW
+      q += p * storedSlope(pack, netW) * rowSlopeAt(day.harvestW, row, clock, middleS) * waitS[i]
+    }
+    for (; s >= 0 && stops[s].beforePiece === i; s--) {
+      if (isFull.stop[s] === 1) p = 0
+      const t = sweep.arrivedS[s]
+      q = q * (1 + rowSlopeAt(stops[s].lengthS, 0, clock, t)) + p * rowSlopeAt(stops[s].gainJ, 0, clock, t)
+    }
+    if (i === 0) break
+    const lackJ = pack.floorJ + spareJ - sweep.arrivalJ[i]
+    value += lackS(lackJ, multiplier[i], stiffness)
+    p -= Math.max(multiplier[i] + stiffness * lackJ, 0)
+  }
+  return value
+}
+
+/** Brings every price to what its lack asked for. */
+export function raisePrices(day: DayTables, sweep: Sweep): void {
+  const { multiplier, stiffness, spareJ, arrivalJ } = sweep
+  const { floorJ, ceilingJ } = day.pack
+  for (let i = 1; i <= day.pieces; i++)
+    multiplier[i] = Math.max(multiplier[i] + stiffness * (floorJ + spareJ - arrivalJ[i]), 0)
+  const lackJ = day.targetJ + spareJ - Math.min(sweep.duskJ, ceilingJ)
+  multiplier[day.pieces + 1] = Math.max(multiplier[day.pieces + 1] + stiffness * lackJ, 0)
+}
