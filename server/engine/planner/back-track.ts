@@ -1,4 +1,4 @@
-import { type DayTables, rowAt, storedW } from './day-tables.ts'
+import { type DayTables, pieceS, rowAt, storedW } from './day-tables.ts'
 import { bestArrival, energyAt, type Frontier } from './frontier.ts'
 import type { Drive } from './simulate.ts'
 
@@ -62,7 +62,7 @@ export function backTrack(day: DayTables, found: Frontier, endS: number): Drive 
       best = bestArrival(day, found, layer, atS)
     }
     drive.speedMps[piece] = best.speedMps
-    atS -= day.lengthM[piece] / best.speedMps
+    atS -= pieceS(day, piece, best.speedMps)
   }
   drive.waitS[0] += Math.max(atS - day.start.atS, 0)
   return drive

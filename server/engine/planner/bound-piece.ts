@@ -1,5 +1,5 @@
 import { type Below, emptyBelow, joinLines, mostBetween } from './below.ts'
-import { type DayTables, type Load, loadAt, storedSlope, storedW } from './day-tables.ts'
+import { type DayTables, type Load, loadAt, pieceMps, pieceS, storedSlope, storedW } from './day-tables.ts'
 
 const FAR = Number.POSITIVE_INFINITY
 
@@ -93,13 +93,17 @@ const tangent = { value: 0, slope: 0, hollow: 0 }
 
 /** Priced energy of a piece driven in a time, and its slope over that time. [s, 1] */
 function tangentAt({ day, piece, price, hollow }: Priced, timeS: number, sunW: number): void {
-  const speedMps = day.lengthM[piece] / timeS
+  const speedMps = pieceMps(day, piece, timeS)
   loadAt(day, piece, speedMps, load)
   const stored = storedW(day.pack, sunW - load.W)
   tangent.value = -price * stored * timeS
-  tangent.slope = -price * (stored + storedSlope(day.pack, sunW - load.W) * load.slope * speedMps)
+  tangent.slope = -price * (stored + storedSlope(day.pack, sunW - load.W) * fallW(day, piece, speedMps, timeS))
   tangent.hollow = 1.1 * price * hollow * speedMps
 }
+
+/** Fall of the last load over the piece's time, times that time. [W] */
+const fallW = (day: DayTables, piece: number, speedMps: number, timeS: number): number =>
+  (load.slope * speedMps * speedMps * timeS) / day.lengthM[piece]
 
 /** What value less `climb` times arrival never falls below in a cell. */
 function footOf(priced: Priced, from: Below, startS: number, endS: number, climb: number): number {
@@ -143,7 +147,7 @@ function lowestOver(priced: Priced, climb: number, climbS: number): number {
 }
 
 function pricedOf(day: DayTables, piece: number, price: number): Priced {
-  const { speeds, lengthM, fastestMps, slowestMps } = day
+  const { speeds, fastestMps, slowestMps } = day
   const fastest = fastestMps[piece]
   const slowest = Math.min(slowestMps, fastest)
   const first = Math.max(Math.floor((slowest - speeds.from) / speeds.step), 0)
@@ -153,15 +157,15 @@ function pricedOf(day: DayTables, piece: number, price: number): Priced {
   for (let j = last; j >= first; j--) {
     const speedMps = speeds.from + j * speeds.step
     loadAt(day, piece, speedMps, load)
-    timeS[last - j] = lengthM[piece] / speedMps
-    slopeW[last - j] = load.W - load.slope * speedMps
+    timeS[last - j] = pieceS(day, piece, speedMps)
+    slopeW[last - j] = load.W - fallW(day, piece, speedMps, timeS[last - j])
   }
   return {
     day,
     piece,
     price,
-    shortestS: lengthM[piece] / fastest,
-    longestS: lengthM[piece] / slowest,
+    shortestS: pieceS(day, piece, fastest),
+    longestS: pieceS(day, piece, slowest),
     timeS,
     slopeW,
     hollow: hollowOf(day, piece, first, last),
@@ -215,5 +219,15 @@ function hollowOf(day: DayTables, piece: number, first: number, last: number): n
       sum -= (0.5 * lowest * lowest) / (Math.max(bend0, bend1) - lowest)
     }
   }
-  return Math.max(sum, 0) / speeds.step
+  return Math.max(sum, 0) / speeds.step + fallingWhereLonger(day, piece, first, last)
+}
+
+/** The same for time that comes on top: where load falls over speed, that time's energy is hollow too. [W·s/m] */
+function fallingWhereLonger(day: DayTables, piece: number, first: number, last: number): number {
+  const extraS = day.extraS[piece]
+  if (!(extraS > 0)) return 0
+  const row = piece * day.speeds.count
+  let fallW = 0
+  for (let j = first; j < last; j++) fallW += Math.max(day.loadW[row + j] - day.loadW[row + j + 1], 0)
+  return (3 * extraS * fallW) / day.lengthM[piece]
 }

@@ -1,7 +1,7 @@
 import { type Below, emptyBelow, leastAtEnd, waiting } from './below.ts'
 import { behindPiece } from './bound-piece.ts'
 import { behindStop } from './bound-stop.ts'
-import type { DayTables } from './day-tables.ts'
+import { type DayTables, pieceS } from './day-tables.ts'
 
 /**
  * A proven lower limit on the arrival, from prices of energy along the road.
@@ -20,7 +20,7 @@ import type { DayTables } from './day-tables.ts'
 export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: number, stepS: number): number {
   const { pieces, pack, stops } = day
   const price = pricesOf(day, sPerJ)
-  const shortest = day.lengthM.map((m, i) => m / day.fastestMps[i])
+  const shortest = day.fastestMps.map((v, i) => pieceS(day, i, v))
   const stopS = stops.map((stop) => stop.lengthS.reduce((least, s) => Math.min(least, s), Number.POSITIVE_INFINITY))
   let leftS = shortest.reduce((sum, s) => sum + s, 0) + stopS.reduce((sum, s) => sum + s, 0)
   let below: Below = emptyBelow(day.start.atS, latestS - leftS, stepS)

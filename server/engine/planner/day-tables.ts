@@ -36,6 +36,8 @@ export interface TablePack {
 export interface DayTables {
   pieces: number
   lengthM: Float64Array
+  /** Time that a piece takes on top of its length at the speed: halts, speeding up, slowing down. [S] (pieces) */
+  extraS: Float64Array
   /** Highest speed allowed and held by the motor. [Mps] (pieces) */
   fastestMps: Float64Array
   slowestMps: number
@@ -83,6 +85,14 @@ export function rowSlopeAt(row: Float64Array, first: number, axis: Axis, at: num
   const i = x | 0
   return (row[first + i + 1] - row[first + i]) / axis.step
 }
+
+/** Time that a piece takes at a speed. [S] */
+export const pieceS = (day: DayTables, piece: number, speedMps: number): number =>
+  day.lengthM[piece] / speedMps + day.extraS[piece]
+
+/** Speed at which a piece takes a time. [Mps] */
+export const pieceMps = (day: DayTables, piece: number, timeS: number): number =>
+  day.lengthM[piece] / (timeS - day.extraS[piece])
 
 /** Load of a piece at a speed and its slope over speed. */
 export interface Load {

@@ -1,4 +1,4 @@
-import { type DayTables, type Load, loadAt, rowAt, storedW } from './day-tables.ts'
+import { type DayTables, type Load, loadAt, pieceMps, pieceS, rowAt, storedW } from './day-tables.ts'
 
 /** Most energy at every place and time, and the earliest that each place can be reached. */
 export interface Frontier {
@@ -180,7 +180,7 @@ function alongPiece(day: DayTables, found: Frontier, layer: number, stepMps: num
   for (let k = 0; k < bins; k++) sunW[k] = rowAt(day.harvestW, piece * day.clock.count, day.clock, fromS + k * stepS)
   const load: Load = { W: 0, slope: 0 }
   for (const speedMps of triedSpeeds(day, piece, stepMps)) {
-    const durationS = day.lengthM[piece] / speedMps
+    const durationS = pieceS(day, piece, speedMps)
     shiftedBy(day, found, layer, { durationS, loadW: loadAt(day, piece, speedMps, load).W, sunW })
   }
   fanFromKnot(day, found, layer)
@@ -233,13 +233,12 @@ function shiftedBy(
 function fanFromKnot(day: DayTables, found: Frontier, layer: number): void {
   const { fromS, stepS, bins, mostJ, knotS, legs } = found
   const { piece } = legs[layer]
-  const lengthM = day.lengthM[piece]
-  const earliestS = knotS[layer] + lengthM / day.fastestMps[piece]
-  const latestS = knotS[layer] + lengthM / Math.min(day.slowestMps, day.fastestMps[piece])
+  const earliestS = knotS[layer] + pieceS(day, piece, day.fastestMps[piece])
+  const latestS = knotS[layer] + pieceS(day, piece, Math.min(day.slowestMps, day.fastestMps[piece]))
   for (let k = Math.max(Math.ceil((earliestS - fromS) / stepS), 0); k < bins; k++) {
     const t = fromS + k * stepS
     if (t > latestS) break
-    const J = drivenJ(day, found, layer, t, lengthM / (t - knotS[layer]))
+    const J = drivenJ(day, found, layer, t, pieceMps(day, piece, t - knotS[layer]))
     const at = (layer + 1) * bins + k
     if (J > mostJ[at]) mostJ[at] = J
   }
@@ -250,7 +249,7 @@ const scratch: Load = { W: 0, slope: 0 }
 /** Energy at an instant behind a piece driven at a speed, before ceiling and floor. [J] */
 export function drivenJ(day: DayTables, found: Frontier, layer: number, atS: number, speedMps: number): number {
   const { piece } = found.legs[layer]
-  const durationS = day.lengthM[piece] / speedMps
+  const durationS = pieceS(day, piece, speedMps)
   const J = energyAt(found, layer, atS - durationS)
   if (J === NEVER) return NEVER
   const sunW = rowAt(day.harvestW, piece * day.clock.count, day.clock, atS - durationS / 2)
@@ -262,7 +261,7 @@ function nextKnot(day: DayTables, found: Frontier, layer: number): void {
   const { knotS, knotJ, legs, mostJ, bins, fromS, stepS } = found
   const { ceilingJ, floorJ } = day.pack
   const { piece } = legs[layer]
-  const earliestS = knotS[layer] + day.lengthM[piece] / day.fastestMps[piece]
+  const earliestS = knotS[layer] + pieceS(day, piece, day.fastestMps[piece])
   const atOnceJ = drivenJ(day, found, layer, earliestS, day.fastestMps[piece])
   const settle = (S: number, J: number): void => {
     knotS[layer + 1] = S
@@ -296,11 +295,10 @@ const GOLDEN = (Math.sqrt(5) - 1) / 2
 /** The speed over a piece with which most energy is left at an instant behind it, and that energy. */
 export function bestArrival(day: DayTables, found: Frontier, layer: number, atS: number): { J: number; speedMps: number } {
   const { piece } = found.legs[layer]
-  const lengthM = day.lengthM[piece]
   const fastest = day.fastestMps[piece]
   const slowest = Math.min(day.slowestMps, fastest)
-  const fromKnotMps = lengthM / (atS - found.knotS[layer])
-  const lowest = Math.max(slowest, Math.min(fromKnotMps, fastest))
+  const fromKnotMps = pieceMps(day, piece, atS - found.knotS[layer])
+  const lowest = fromKnotMps > 0 ? Math.max(slowest, Math.min(fromKnotMps, fastest)) : fastest
   let best = { J: drivenJ(day, found, layer, atS, lowest), speedMps: lowest }
   const STEPS = 24
   let at = 0

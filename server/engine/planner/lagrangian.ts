@@ -1,4 +1,4 @@
-import { type DayTables, type Load, loadAt, rowAt, rowSlopeAt, storedSlope, storedW } from './day-tables.ts'
+import { type DayTables, type Load, loadAt, pieceMps, rowAt, rowSlopeAt, storedSlope, storedW } from './day-tables.ts'
 
 /** Multipliers of what must hold, and the last drive's course; everything that the sweeps write. */
 export interface Sweep {
@@ -66,7 +66,7 @@ function forward(day: DayTables, sweep: Sweep, timeS: Float64Array): void {
     sweep.atS[i] = t
     if (i === pieces) break
     const sunW = rowAt(day.harvestW, i * clock.count, clock, t + timeS[i] / 2)
-    E += storedW(pack, sunW - loadAt(day, i, day.lengthM[i] / timeS[i], load).W) * timeS[i]
+    E += storedW(pack, sunW - loadAt(day, i, pieceMps(day, i, timeS[i]), load).W) * timeS[i]
     isFull.piece[i] = E >= pack.ceilingJ ? 1 : 0
     if (E > pack.ceilingJ) E = pack.ceilingJ
     t += timeS[i]
@@ -100,13 +100,13 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
   for (let i = n; i >= 0; i--) {
     if (i < n) {
       const middleS = atS[i] + timeS[i] / 2
-      const speedMps = day.lengthM[i] / timeS[i]
+      const speedMps = pieceMps(day, i, timeS[i])
       loadAt(day, i, speedMps, load)
       const netW = rowAt(day.harvestW, i * clock.count, clock, middleS) - load.W
       const sunSlope = rowSlopeAt(day.harvestW, i * clock.count, clock, middleS)
       if (isFull.piece[i] === 1) p = 0
       const worth = p * storedSlope(pack, netW)
-      slope[i] = q + p * storedW(pack, netW) + worth * (0.5 * sunSlope * timeS[i] + load.slope * speedMps)
+      slope[i] = q + p * storedW(pack, netW) + worth * timeS[i] * (0.5 * sunSlope + (load.slope * speedMps * speedMps) / day.lengthM[i])
       q += worth * sunSlope * timeS[i]
     }
     price[i] = -p

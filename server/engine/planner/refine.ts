@@ -1,4 +1,4 @@
-import { type DayTables, type Load, loadAt } from './day-tables.ts'
+import { type DayTables, type Load, loadAt, pieceMps, pieceS } from './day-tables.ts'
 import { descend } from './descent.ts'
 import { lagrangian, newSweep, raisePrices } from './lagrangian.ts'
 import { type Drive, simulate, type Track } from './simulate.ts'
@@ -29,10 +29,10 @@ const FIRST_STIFFNESS = FIRST_PRICE / 108_000
  * @source Nocedal & Wright, Numerical Optimization, 2nd ed., §17.3–17.4 (from memory)
  */
 export function refine(day: DayTables, start: Drive, rounds = ROUNDS): Refined {
-  const { lengthM, fastestMps, slowestMps } = day
-  const low = lengthM.map((m, i) => m / fastestMps[i])
-  const high = lengthM.map((m, i) => m / Math.min(slowestMps, fastestMps[i]))
-  const timeS = lengthM.map((m, i) => Math.min(Math.max(m / start.speedMps[i], low[i]), high[i]))
+  const { fastestMps, slowestMps } = day
+  const low = fastestMps.map((v, i) => pieceS(day, i, v))
+  const high = fastestMps.map((v, i) => pieceS(day, i, Math.min(slowestMps, v)))
+  const timeS = start.speedMps.map((v, i) => Math.min(Math.max(pieceS(day, i, v), low[i]), high[i]))
   const sweep = newSweep(day, start.waitS)
   sweep.multiplier[day.pieces + 1] = FIRST_PRICE
   sweep.stiffness = FIRST_STIFFNESS
@@ -55,7 +55,7 @@ export function refine(day: DayTables, start: Drive, rounds = ROUNDS): Refined {
 }
 
 function held(day: DayTables, timeS: Float64Array, waitS: Float64Array): { drive: Drive; track: Track } {
-  const drive = { speedMps: day.lengthM.map((m, i) => m / timeS[i]), waitS }
+  const drive = { speedMps: timeS.map((s, i) => pieceMps(day, i, s)), waitS }
   return { drive, track: simulate(day, drive) }
 }
 
@@ -70,7 +70,7 @@ export function isBetter(one: Track, other: Track): boolean {
 function curvature(day: DayTables, timeS: Float64Array, price: number): Float64Array {
   const load: Load = { W: 0, slope: 0 }
   return timeS.map((s, i) => {
-    const v = day.lengthM[i] / s
+    const v = pieceMps(day, i, s)
     const bend = (loadAt(day, i, v * 1.03, load).slope - loadAt(day, i, v * 0.97, load).slope) / (0.06 * v)
     return Math.max(price, FIRST_PRICE / 10) * Math.max(bend, 1) * (v ** 3 / day.lengthM[i])
   })

@@ -1,4 +1,4 @@
-import { type DayTables, loadAt, rowAt, storedW } from './day-tables.ts'
+import { type DayTables, loadAt, pieceS, rowAt, storedW } from './day-tables.ts'
 
 /** Speeds of a day and where the car waits. */
 export interface Drive {
@@ -59,7 +59,7 @@ export function simulate(day: DayTables, drive: Drive): Track {
     atS[i] = t
     energyJ[i] = E
     if (i === pieces) break
-    const durationS = day.lengthM[i] / drive.speedMps[i]
+    const durationS = pieceS(day, i, drive.speedMps[i])
     const sunW = rowAt(day.harvestW, i * clock.count, clock, t + durationS / 2)
     E = Math.min(pack.ceilingJ, E + storedW(pack, sunW - loadAt(day, i, drive.speedMps[i], load).W) * durationS)
     t += durationS

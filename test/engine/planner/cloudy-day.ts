@@ -92,6 +92,7 @@ export function dayOf(parts: DayParts): DayTables {
   return {
     pieces,
     lengthM: new Float64Array(pieces).fill(PIECE_M),
+    extraS: new Float64Array(pieces),
     fastestMps: Float64Array.from({ length: pieces }, (_, i) => parts.limitKmh(i + 0.5) / 3.6),
     slowestMps: 30 / 3.6,
     speeds,
