@@ -47,6 +47,8 @@ export interface DayForecast {
   /** The pack's temperature when the day opens. [C] */
   openingPackC: number
   timetable: Timetable
+  /** The road with the air met on it and the speeds held. */
+  road: DrivenRoad
   steps: Steps
   weather: Weather
   air: Air
@@ -95,6 +97,7 @@ export function forecastDay(
     openingJ: storedJ(car.pack, opening.charge),
     openingPackC: packC,
     timetable: laid.timetable,
+    road,
     steps: laid.steps,
     weather: laid.weather,
     air: laid.air,

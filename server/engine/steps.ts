@@ -64,7 +64,8 @@ export function steps(course: Course, { spans, moves }: Pick<Timetable, 'spans' 
   return out
 }
 
-function emptySteps(most: number): Steps {
+/** Room for so many steps; every array is full of zeros. */
+export function emptySteps(most: number): Steps {
   const floats = Object.fromEntries(FLOATS.map((name) => [name, new Float64Array(most)]))
   const marks = { lifted: new Uint8Array(most), charging: new Uint8Array(most) }
   return { count: 0, ...floats, ...marks, span: new Int32Array(most), piece: new Int32Array(most) } as unknown as Steps

@@ -17,7 +17,7 @@ export function earliestEnd(day: DayTables, found: Frontier): number {
   const layer = found.legs.length
   const holds = (atS: number): boolean => {
     const J = energyAt(found, layer, atS)
-    return J >= day.pack.floorJ && duskJ(day, J, atS) >= day.targetJ
+    return J >= day.floorJ[day.pieces] && duskJ(day, J, atS) >= day.targetJ
   }
   let low = found.knotS[layer]
   if (!(low <= day.latestS)) return Number.POSITIVE_INFINITY

@@ -59,8 +59,8 @@ const WAIT_S = 60
 
 /** Least of arrival, value and what the evening leaves wanting, over all ends. */
 export function leastAtEnd(day: DayTables, { atS, value }: Below, price: number): number {
-  const { clock, duskGainJ, targetJ, pack } = day
-  const wantedAt = (s: number): number => price * Math.max(targetJ - rowAt(duskGainJ, 0, clock, s), pack.floorJ)
+  const { clock, duskGainJ, targetJ, floorJ, pieces } = day
+  const wantedAt = (s: number): number => price * Math.max(targetJ - rowAt(duskGainJ, 0, clock, s), floorJ[pieces])
   let least = atS[0] + value[0] + wantedAt(atS[0])
   for (let j = 1; j < atS.length; j++) {
     least = Math.min(least, atS[j] + value[j] + wantedAt(atS[j]))

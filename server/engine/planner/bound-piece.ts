@@ -27,7 +27,8 @@ export function behindPiece(
   const priced = pricedOf(day, of.piece, of.price)
   const lowS = from.atS[0] + priced.shortestS
   const to = emptyBelow(lowS, of.latestS, stepS)
-  const nodes = to.atS.map((atS) => leastAt(priced, from, atS))
+  const near = { cell: 0, isKnown: false }
+  const nodes = to.atS.map((atS) => leastAt(priced, from, atS, near))
   const cells = to.atS.length - 1
   if (cells === 0) to.value[0] = nodes[0]
   const climb = new Float64Array(cells)
@@ -70,12 +71,21 @@ function latestCell(from: Below, priced: Priced, atS: number): number {
   return low
 }
 
-/** Value at an instant behind the piece, near enough to take slopes from. */
-function leastAt(priced: Priced, from: Below, atS: number): number {
+/** Cells around that of the node before in which a node looks for its least. */
+const NEAR_CELLS = 2
+
+/**
+ * Value at an instant behind the piece, near enough to take slopes from: looked for around the cell that the node
+ * before came from.
+ */
+function leastAt(priced: Priced, from: Below, atS: number, near: { cell: number; isKnown: boolean }): number {
   let least = FAR
   pair.startS = atS
   pair.endS = atS
-  for (let c = latestCell(from, priced, atS); c >= 0; c--) {
+  const latest = latestCell(from, priced, atS)
+  const first = near.isKnown ? Math.max(near.cell - NEAR_CELLS, 0) : 0
+  const last = near.isKnown ? Math.min(near.cell + NEAR_CELLS, latest) : latest
+  for (let c = last; c >= first; c--) {
     takePair(priced, from, c)
     if (atS - pair.untilS > priced.longestS) break
     const low = Math.max(atS - pair.untilS, priced.shortestS)
@@ -83,7 +93,10 @@ function leastAt(priced: Priced, from: Below, atS: number): number {
     const timeS = Math.min(Math.max(pair.wantedS, low), Math.max(high, low))
     tangentAt(priced, timeS, pair.sunW)
     const value = pair.left + pair.grows * (atS - timeS - pair.fromS) + tangent.value
-    if (value < least) least = value
+    if (value >= least) continue
+    least = value
+    near.cell = c
+    near.isKnown = true
   }
   return least
 }

@@ -34,9 +34,10 @@ export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: n
     waiting(day, below, Math.min(i, pieces - 1), price[i])
     if (i === pieces) break
     leftS -= shortest[i]
+    worthS += price[i] * day.extraJ[i]
     below = behindPiece(day, stepS, below, { piece: i, price: price[i], latestS: latestS - leftS })
     const drop = price[i] - price[i + 1]
-    if (i + 1 < pieces) worthS += drop * (drop > 0 ? pack.floorJ : pack.ceilingJ)
+    if (i + 1 < pieces) worthS += drop * (drop > 0 ? day.floorJ[i + 1] : pack.ceilingJ)
   }
   return Math.min(worthS + leastAtEnd(day, below, price[pieces]), latestS)
 }

@@ -17,12 +17,10 @@ export interface TableStop {
   closesS: number
 }
 
-/** The pack between floor and ceiling. */
+/** What the pack holds and loses. */
 export interface TablePack {
   /** Energy that it can hold. [J] */
   ceilingJ: number
-  /** Energy that must be left everywhere. [J] */
-  floorJ: number
   /** Resistance over voltage squared: power `n` at the terminals loses `n²` times this. [1/W] */
   lossPerW: number
   /** Share of what flows in that stays. */
@@ -38,6 +36,8 @@ export interface DayTables {
   lengthM: Float64Array
   /** Time that a piece takes on top of its length at the speed: halts, speeding up, slowing down. [S] (pieces) */
   extraS: Float64Array
+  /** What a piece takes from the pack on top of its load: changes of speed, halts. [J] (pieces) */
+  extraJ: Float64Array
   /** Highest speed allowed and held by the motor. [Mps] (pieces) */
   fastestMps: Float64Array
   slowestMps: number
@@ -53,6 +53,8 @@ export interface DayTables {
   /** What the pack gains from an arrival at the end until dusk, before its ceiling. [J] (clock) */
   duskGainJ: Float64Array
   pack: TablePack
+  /** Energy that must be left on arrival at each edge; the first is not asked. [J] (pieces + 1) */
+  floorJ: Float64Array
   start: { atS: number; energyJ: number }
   /** Latest arrival at the end. [S] */
   latestS: number

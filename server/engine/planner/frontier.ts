@@ -13,6 +13,8 @@ export interface Frontier {
   /** The exact earliest instant of each layer and the energy then. (layers) */
   knotS: Float64Array
   knotJ: Float64Array
+  /** Last bin of each layer from which the end can be reached in time. (layers) */
+  lastBin: Int32Array
 }
 
 /** What leads from one layer to the next: a piece of road, or a stop. */
@@ -42,8 +44,9 @@ export function triedSpeeds(day: DayTables, piece: number, stepMps: number): num
  *
  * @param stepS    width of a bin; divides the clock's step and the lengths of the stops. [S]
  * @param stepMps  step of the speeds. [Mps]
+ * @param untilS   ends after this are of no interest. [S]
  */
-export function frontier(day: DayTables, stepS: number, stepMps: number): Frontier {
+export function frontier(day: DayTables, stepS: number, stepMps: number, untilS = day.latestS): Frontier {
   const legs = legsOf(day)
   const bins = Math.floor((day.latestS - day.start.atS) / stepS + 1e-9) + 1
   const layers = legs.length + 1
@@ -55,6 +58,7 @@ export function frontier(day: DayTables, stepS: number, stepMps: number): Fronti
     mostJ: new Float64Array(layers * bins).fill(NEVER),
     knotS: new Float64Array(layers).fill(Number.POSITIVE_INFINITY),
     knotJ: new Float64Array(layers).fill(NEVER),
+    lastBin: lastBins(day, legs, { fromS: day.start.atS, stepS, bins, untilS }),
   }
   found.knotS[0] = day.start.atS
   found.knotJ[0] = day.start.energyJ
@@ -80,9 +84,34 @@ function legsOf(day: DayTables): Leg[] {
   return legs
 }
 
+/** Later bins lead to ends later than wanted. */
+function lastBins(
+  day: DayTables,
+  legs: Leg[],
+  of: { fromS: number; stepS: number; bins: number; untilS: number },
+): Int32Array {
+  const last = new Int32Array(legs.length + 1)
+  let latestS = of.untilS
+  for (let layer = legs.length; layer >= 0; layer--) {
+    last[layer] = Math.min(Math.ceil((latestS - of.fromS) / of.stepS) + SPARE_BINS, of.bins - 1)
+    if (layer === 0) break
+    const { piece, stop } = legs[layer - 1]
+    latestS -= stop >= 0 ? leastOf(day.stops[stop].lengthS) : pieceS(day, piece, day.fastestMps[piece])
+  }
+  return last
+}
+
+/** Bins beyond the last that cubics may touch. */
+const SPARE_BINS = 3
+const leastOf = (row: Float64Array): number => row.reduce((least, value) => Math.min(least, value), Infinity)
+
 /** Piece whose sun a car waiting in a layer has. */
 const waitingPiece = (day: DayTables, { legs }: Frontier, layer: number): number =>
   Math.min(layer < legs.length ? legs[layer].piece : day.pieces - 1, day.pieces - 1)
+
+/** Edge that a layer stands at. */
+const edgeOf = (day: DayTables, { legs }: Frontier, layer: number): number =>
+  layer < legs.length ? legs[layer].piece : day.pieces
 
 /** Energy while waiting from one instant to another. [J] */
 function waitedJ(day: DayTables, piece: number, fromS: number, toS: number): number {
@@ -93,11 +122,12 @@ function waitedJ(day: DayTables, piece: number, fromS: number, toS: number): num
 /** Lets every bin be reached by waiting in the one before; from the knot first. */
 function waitInLayer(day: DayTables, found: Frontier, layer: number): void {
   const { fromS, stepS, bins, mostJ, knotS, knotJ } = found
-  const { ceilingJ, floorJ } = day.pack
+  const { ceilingJ } = day.pack
+  const floorJ = day.floorJ[edgeOf(day, found, layer)]
   const piece = waitingPiece(day, found, layer)
   let atS = knotS[layer]
   let J = knotJ[layer]
-  for (let k = Math.max(Math.ceil((atS - fromS) / stepS - 1e-9), 0); k < bins; k++) {
+  for (let k = Math.max(Math.ceil((atS - fromS) / stepS - 1e-9), 0); k <= found.lastBin[layer]; k++) {
     const t = fromS + k * stepS
     const heldJ = Math.min(ceilingJ, J + waitedJ(day, piece, atS, t))
     const at = layer * bins + k
@@ -117,7 +147,7 @@ function throughStop(day: DayTables, found: Frontier, layer: number): void {
   if (knotS[layer] > stop.closesS) return
   knotS[layer + 1] = leave(knotS[layer])
   knotJ[layer + 1] = gained(knotJ[layer], knotS[layer])
-  for (let k = 0; k < bins; k++) {
+  for (let k = 0; k <= found.lastBin[layer + 1]; k++) {
     const arrivalS = arrivalFor(leave, fromS + k * stepS, knotS[layer])
     if (!(arrivalS <= stop.closesS)) continue
     const J = energyAt(found, layer, arrivalS)
@@ -175,13 +205,14 @@ function betweenFour(a: number, b: number, c: number, d: number, u: number): num
 function alongPiece(day: DayTables, found: Frontier, layer: number, stepMps: number): void {
   const { fromS, stepS, bins, mostJ, legs } = found
   const { piece } = legs[layer]
-  const { ceilingJ, floorJ } = day.pack
+  const { ceilingJ } = day.pack
+  const floorJ = day.floorJ[piece + 1]
   const sunW = new Float64Array(bins)
   for (let k = 0; k < bins; k++) sunW[k] = rowAt(day.harvestW, piece * day.clock.count, day.clock, fromS + k * stepS)
   const load: Load = { W: 0, slope: 0 }
   for (const speedMps of triedSpeeds(day, piece, stepMps)) {
     const durationS = pieceS(day, piece, speedMps)
-    shiftedBy(day, found, layer, { durationS, loadW: loadAt(day, piece, speedMps, load).W, sunW })
+    shiftedBy(day, found, layer, { durationS, loadW: loadAt(day, piece, speedMps, load).W, extraJ: day.extraJ[piece], sunW })
   }
   fanFromKnot(day, found, layer)
   const row = (layer + 1) * bins
@@ -197,10 +228,10 @@ function shiftedBy(
   day: DayTables,
   found: Frontier,
   layer: number,
-  by: { durationS: number; loadW: number; sunW: Float64Array },
+  by: { durationS: number; loadW: number; extraJ: number; sunW: Float64Array },
 ): void {
   const { fromS, stepS, bins, mostJ, knotS } = found
-  const { durationS, loadW, sunW } = by
+  const { durationS, loadW, extraJ, sunW } = by
   const { lossPerW, coulombic } = day.pack
   const from = layer * bins
   const to = from + bins
@@ -211,7 +242,8 @@ function shiftedBy(
   const h = half - back / 2
   const first = Math.max(Math.ceil((knotS[layer] + durationS - fromS) / stepS - 1e-9), whole)
   const firstNode = Math.ceil((knotS[layer] - fromS) / stepS - 1e-9)
-  for (let k = first; k < bins; k++) {
+  const last = found.lastBin[layer + 1]
+  for (let k = first; k <= last; k++) {
     const j = k - whole
     let J = NEVER
     if (j - 1 >= firstNode && j + 2 < bins) {
@@ -224,7 +256,7 @@ function shiftedBy(
     if (J === NEVER) continue
     const m = k - half
     const netW = sunW[m] + (sunW[m + 1] - sunW[m]) * h - loadW
-    J += ((netW > 0 ? netW * coulombic : netW) - netW * netW * lossPerW) * durationS
+    J += ((netW > 0 ? netW * coulombic : netW) - netW * netW * lossPerW) * durationS - extraJ
     if (J > mostJ[to + k]) mostJ[to + k] = J
   }
 }
@@ -253,14 +285,15 @@ export function drivenJ(day: DayTables, found: Frontier, layer: number, atS: num
   const J = energyAt(found, layer, atS - durationS)
   if (J === NEVER) return NEVER
   const sunW = rowAt(day.harvestW, piece * day.clock.count, day.clock, atS - durationS / 2)
-  return J + storedW(day.pack, sunW - loadAt(day, piece, speedMps, scratch).W) * durationS
+  return J + storedW(day.pack, sunW - loadAt(day, piece, speedMps, scratch).W) * durationS - day.extraJ[piece]
 }
 
 /** The earliest instant behind a piece: at the fastest speed, or as much later as the floor asks. */
 function nextKnot(day: DayTables, found: Frontier, layer: number): void {
   const { knotS, knotJ, legs, mostJ, bins, fromS, stepS } = found
-  const { ceilingJ, floorJ } = day.pack
+  const { ceilingJ } = day.pack
   const { piece } = legs[layer]
+  const floorJ = day.floorJ[piece + 1]
   const earliestS = knotS[layer] + pieceS(day, piece, day.fastestMps[piece])
   const atOnceJ = drivenJ(day, found, layer, earliestS, day.fastestMps[piece])
   const settle = (S: number, J: number): void => {

@@ -66,7 +66,7 @@ function forward(day: DayTables, sweep: Sweep, timeS: Float64Array): void {
     sweep.atS[i] = t
     if (i === pieces) break
     const sunW = rowAt(day.harvestW, i * clock.count, clock, t + timeS[i] / 2)
-    E += storedW(pack, sunW - loadAt(day, i, pieceMps(day, i, timeS[i]), load).W) * timeS[i]
+    E += storedW(pack, sunW - loadAt(day, i, pieceMps(day, i, timeS[i]), load).W) * timeS[i] - day.extraJ[i]
     isFull.piece[i] = E >= pack.ceilingJ ? 1 : 0
     if (E > pack.ceilingJ) E = pack.ceilingJ
     t += timeS[i]
@@ -123,7 +123,7 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
       q = q * (1 + rowSlopeAt(stops[s].lengthS, 0, clock, t)) + p * rowSlopeAt(stops[s].gainJ, 0, clock, t)
     }
     if (i === 0) break
-    const lackJ = pack.floorJ + spareJ - sweep.arrivalJ[i]
+    const lackJ = day.floorJ[i] + spareJ - sweep.arrivalJ[i]
     value += lackS(lackJ, multiplier[i], stiffness)
     p -= Math.max(multiplier[i] + stiffness * lackJ, 0)
   }
@@ -133,9 +133,9 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
 /** Brings every price to what its lack asked for. */
 export function raisePrices(day: DayTables, sweep: Sweep): void {
   const { multiplier, stiffness, spareJ, arrivalJ } = sweep
-  const { floorJ, ceilingJ } = day.pack
+  const { ceilingJ } = day.pack
   for (let i = 1; i <= day.pieces; i++)
-    multiplier[i] = Math.max(multiplier[i] + stiffness * (floorJ + spareJ - arrivalJ[i]), 0)
+    multiplier[i] = Math.max(multiplier[i] + stiffness * (day.floorJ[i] + spareJ - arrivalJ[i]), 0)
   const lackJ = day.targetJ + spareJ - Math.min(sweep.duskJ, ceilingJ)
   multiplier[day.pieces + 1] = Math.max(multiplier[day.pieces + 1] + stiffness * lackJ, 0)
 }

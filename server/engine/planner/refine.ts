@@ -8,10 +8,14 @@ export interface Refined {
   track: Track
   /** What a joule more on leaving each edge saves. [s/J] (pieces + 1) */
   sPerJ: Float64Array
+  /** Prices that floor and target ended with, to go on from. [s/J] (pieces + 2) */
+  multiplier: Float64Array
 }
 
 const ROUNDS = 10
-const STEPS = 150
+const STEPS = 60
+/** A drive is left when no step promises more. [S] */
+const CLOSE_S = 1e-3
 /** How close to floor and target a drive is brought. [J] */
 const SPARE_J = 36
 /** A price to start from: 2bv³ at 80 km/h of a light car. [s/J] */
@@ -25,23 +29,26 @@ const FIRST_STIFFNESS = FIRST_PRICE / 108_000
  * Augmented Lagrangian over the times of the pieces, its slope by an exact backward sweep; waits stay as they are.
  * The drive given back is the fastest met on the way that holds, else the one that lacks least.
  *
- * @param start  a drive within the pieces' limits; it need not hold
+ * @param start       a drive within the pieces' limits; it need not hold
+ * @param multiplier  prices of an earlier refinement of nearly the same day, to start from
  * @source Nocedal & Wright, Numerical Optimization, 2nd ed., §17.3–17.4 (from memory)
  */
-export function refine(day: DayTables, start: Drive, rounds = ROUNDS): Refined {
+export function refine(day: DayTables, start: Drive, multiplier?: Float64Array): Refined {
   const { fastestMps, slowestMps } = day
   const low = fastestMps.map((v, i) => pieceS(day, i, v))
   const high = fastestMps.map((v, i) => pieceS(day, i, Math.min(slowestMps, v)))
   const timeS = start.speedMps.map((v, i) => Math.min(Math.max(pieceS(day, i, v), low[i]), high[i]))
   const sweep = newSweep(day, start.waitS)
   sweep.multiplier[day.pieces + 1] = FIRST_PRICE
+  if (multiplier !== undefined) sweep.multiplier.set(multiplier)
+  const least = multiplier === undefined ? 3 : 1
   sweep.stiffness = FIRST_STIFFNESS
   sweep.spareJ = SPARE_J
   let best = held(day, timeS, start.waitS)
   let lastLackJ = Number.POSITIVE_INFINITY
-  for (let round = 0; round < rounds; round++) {
+  for (let round = 0; round < ROUNDS; round++) {
     const box = { low, high, scale: curvature(day, timeS, sweep.multiplier[day.pieces + 1]) }
-    descend((x, slope) => lagrangian(day, sweep, x, slope), timeS, box, STEPS, 1e-6)
+    descend((x, slope) => lagrangian(day, sweep, x, slope), timeS, box, STEPS, CLOSE_S)
     lagrangian(day, sweep, timeS, new Float64Array(day.pieces))
     const now = held(day, timeS, start.waitS)
     if (isBetter(now.track, best.track)) best = now
@@ -49,9 +56,9 @@ export function refine(day: DayTables, start: Drive, rounds = ROUNDS): Refined {
     const lackJ = Math.max(now.track.shortJ + SPARE_J, 0)
     if (lackJ > 0.25 * lastLackJ) sweep.stiffness *= 4
     lastLackJ = lackJ
-    if (round > 2 && Math.abs(now.track.shortJ + SPARE_J) < SPARE_J / 4) break
+    if (round >= least && Math.abs(now.track.shortJ + SPARE_J) < SPARE_J) break
   }
-  return { ...best, sPerJ: sweep.price.slice() }
+  return { ...best, sPerJ: sweep.price.slice(), multiplier: sweep.multiplier.slice() }
 }
 
 function held(day: DayTables, timeS: Float64Array, waitS: Float64Array): { drive: Drive; track: Track } {

@@ -43,7 +43,7 @@ export function simulate(day: DayTables, drive: Drive): Track {
   let nextStop = 0
   for (let i = 0; i <= pieces; i++) {
     arrivalJ[i] = E
-    if (i > 0) shortJ = Math.max(shortJ, pack.floorJ - E)
+    if (i > 0) shortJ = Math.max(shortJ, day.floorJ[i] - E)
     while (nextStop < stops.length && stops[nextStop].beforePiece === i) {
       const stop = stops[nextStop++]
       lateS = Math.max(lateS, t - stop.closesS)
@@ -61,7 +61,7 @@ export function simulate(day: DayTables, drive: Drive): Track {
     if (i === pieces) break
     const durationS = pieceS(day, i, drive.speedMps[i])
     const sunW = rowAt(day.harvestW, i * clock.count, clock, t + durationS / 2)
-    E = Math.min(pack.ceilingJ, E + storedW(pack, sunW - loadAt(day, i, drive.speedMps[i], load).W) * durationS)
+    E = Math.min(pack.ceilingJ, E + storedW(pack, sunW - loadAt(day, i, drive.speedMps[i], load).W) * durationS - day.extraJ[i])
     t += durationS
   }
   const duskJ = Math.min(pack.ceilingJ, E + rowAt(day.duskGainJ, 0, clock, t))

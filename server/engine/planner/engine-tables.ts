@@ -1,0 +1,249 @@
+import { openCircuitV, storedJ } from '../battery.ts'
+import type { DayRules, StopRule } from '../day-rules.ts'
+import { attainableSpeedMps, wheelToBus } from '../drive.ts'
+import type { DayForecast, Race } from '../forecast.ts'
+import { type Going, holdingN } from '../road.ts'
+import { emptySteps } from '../steps.ts'
+import type { SunPath } from '../sun.ts'
+import type { Axis, DayTables, TablePack, TableStop } from './day-tables.ts'
+import { eveningGainJ, parkedSun, stopGainJ } from './standing-gain.ts'
+import { sunPowerW } from './sun-power.ts'
+
+/** A day to be planned, with a forecast of it that the tables are taken along. */
+export interface Along {
+  race: Race
+  dayIndex: number
+  base: DayForecast
+  path: SunPath
+  /** Usable charge wanted when the day closes, 0..1. */
+  targetCharge: number
+}
+
+/** Which pieces of the course the day may drive. */
+export interface Reach {
+  first: number
+  count: number
+}
+
+/** Step of the clock: light between is straight. [S] */
+const CLOCK_S = 600
+/** How far from the base forecast's passage the sun on a piece is worked out; beyond, its last value holds. [S] */
+const WINDOW_S = 7200
+const SLOWEST_MPS = 25 / 3.6
+const SPEED_STEP_MPS = 2 / 3.6
+/** Speeds beyond this are not planned. [Mps] */
+const FASTEST_MPS = 140 / 3.6
+
+/** The pieces from where the car stands to the end of the last stage that the day may drive. */
+export function reachOf({ race, dayIndex, base }: Along): Reach {
+  const { course, days } = race
+  const placeM = base.timetable.spans[0]?.fromM ?? 0
+  const endPiece = days[dayIndex].lastStage < 0 ? 0 : course.stages[days[dayIndex].lastStage].endPiece
+  const { fromM, lengthM } = course.pieces
+  let first = 0
+  while (first < endPiece && fromM[first] + lengthM[first] <= placeM + 1e-6) first++
+  return { first, count: endPiece - first }
+}
+
+/**
+ * The tables of a day, taken from the engine along a forecast: light, wind and the pack's voltage as they are where
+ * and when that forecast passes.
+ */
+export function tablesAlong(along: Along, reach: Reach): DayTables {
+  const { race, dayIndex, base, targetCharge } = along
+  const { car, course, days } = race
+  const day = days[dayIndex]
+  const at = (ms: number): number => (ms - day.opensMs) / 1000
+  const firstDrive = base.timetable.spans.findIndex((span) => span.kind === 'drive')
+  const startS = at(firstDrive < 0 ? day.drivingFromMs : base.timetable.spans[firstDrive].fromMs)
+  const clock = clockFrom(startS, at(day.closesMs))
+  const pack = packOf(race, base)
+  const placeM = base.timetable.spans[0]?.fromM ?? 0
+  const lengthM = course.pieces.lengthM.slice(reach.first, reach.first + reach.count)
+  if (reach.count > 0) lengthM[0] = course.pieces.fromM[reach.first] + lengthM[0] - placeM
+  const speeds = { from: SLOWEST_MPS, step: SPEED_STEP_MPS, count: Math.ceil((FASTEST_MPS - SLOWEST_MPS) / SPEED_STEP_MPS) + 1 }
+  return {
+    pieces: reach.count,
+    lengthM,
+    extraS: new Float64Array(reach.count),
+    extraJ: new Float64Array(reach.count),
+    slowestMps: SLOWEST_MPS,
+    speeds,
+    ...loads(along, reach, speeds),
+    clock,
+    harvestW: harvests(along, reach, clock, startS),
+    waitingLoadW: car.auxDrivingW,
+    stops: stopsOf(along, reach, clock, pack),
+    duskGainJ: evening(along, reach, clock, pack),
+    pack,
+    floorJ: new Float64Array(reach.count + 1).fill(Math.min(storedJ(car.pack, car.reserveCharge), base.openingJ)),
+    start: { atS: startS, energyJ: energyBefore(base, firstDrive) },
+    latestS: at(day.drivingToMs),
+    targetJ: storedJ(car.pack, targetCharge),
+  }
+}
+
+function clockFrom(startS: number, closesS: number): Axis {
+  return { from: startS, step: CLOCK_S, count: Math.max(Math.ceil((closesS - startS) / CLOCK_S) + 1, 2) }
+}
+
+/** One resistance and one voltage for all the day: what they leave out is set right along the forecast. */
+function packOf({ car }: Race, base: DayForecast): TablePack {
+  const { pack } = car
+  const volts = openCircuitV(pack, base.openingCharge)
+  return {
+    ceilingJ: storedJ(pack, 1),
+    lossPerW: pack.resistanceOhm / (volts * volts),
+    coulombic: pack.coulombicEfficiency,
+  }
+}
+
+function energyBefore(base: DayForecast, span: number): number {
+  const step = span < 0 ? base.steps.count : base.steps.span.indexOf(span)
+  return step > 0 ? base.balance.storedJ[step - 1] : base.openingJ
+}
+
+/** When the base forecast passes each piece, and the pack's voltage then; beyond its end at the pace before. */
+function passages({ base, race, dayIndex }: Along, reach: Reach): { atS: Float64Array; packV: Float64Array } {
+  const { steps, balance } = base
+  const { opensMs } = race.days[dayIndex]
+  const atS = new Float64Array(reach.count).fill(Number.NaN)
+  const packV = new Float64Array(reach.count)
+  for (let i = 0; i < steps.count; i++) {
+    const piece = steps.piece[i] - reach.first
+    if (steps.speedMps[i] === 0 || piece < 0 || piece >= reach.count) continue
+    if (Number.isNaN(atS[piece])) atS[piece] = (steps.atMs[i] - opensMs) / 1000
+    packV[piece] = balance.packV[i]
+  }
+  let lastS = (race.days[dayIndex].drivingFromMs - opensMs) / 1000
+  let lastV = openCircuitV(race.car.pack, base.openingCharge)
+  for (let piece = 0; piece < reach.count; piece++) {
+    if (Number.isNaN(atS[piece])) {
+      atS[piece] = lastS + race.course.pieces.lengthM[reach.first + piece] / SOME_SPEED_MPS
+      packV[piece] = lastV
+    }
+    lastS = atS[piece]
+    lastV = packV[piece]
+  }
+  return { atS, packV }
+}
+
+/** Pace at which the road beyond the base forecast's end is met. [Mps] */
+const SOME_SPEED_MPS = 20
+
+function harvests(along: Along, reach: Reach, clock: Axis, startS: number): Float64Array {
+  const { race, dayIndex, path, base } = along
+  const { opensMs } = race.days[dayIndex]
+  const { pieces } = race.course
+  const { atS, packV } = passages(along, reach)
+  const nodes = (piece: number): [number, number] => {
+    const low = Math.floor((Math.max(atS[piece] - WINDOW_S, startS) - clock.from) / clock.step)
+    const high = Math.ceil((atS[piece] + WINDOW_S - clock.from) / clock.step)
+    return [Math.min(Math.max(low, 0), clock.count - 1), Math.min(Math.max(high, 0), clock.count - 1)]
+  }
+  let count = 0
+  for (let i = 0; i < reach.count; i++) count += nodes(i)[1] - nodes(i)[0] + 1
+  const steps = emptySteps(count)
+  steps.count = count
+  const volts = new Float64Array(count)
+  let n = 0
+  for (let i = 0; i < reach.count; i++) {
+    const piece = reach.first + i
+    const [low, high] = nodes(i)
+    for (let k = low; k <= high; k++, n++) {
+      steps.atMs[n] = opensMs + (clock.from + k * clock.step) * 1000
+      steps.piece[n] = piece
+      steps.latRad[n] = pieces.latRad[piece]
+      steps.lonRad[n] = pieces.lonRad[piece]
+      steps.altM[n] = pieces.altM[piece]
+      steps.headingRad[n] = pieces.headingRad[piece]
+      steps.gradeRad[n] = pieces.gradeRad[piece]
+      steps.speedMps[n] = Math.max(base.road.heldMps[piece], SLOWEST_MPS)
+      volts[n] = packV[i]
+    }
+  }
+  const sunW = sunPowerW(race, path, steps, volts)
+  const harvestW = new Float64Array(reach.count * clock.count)
+  n = 0
+  for (let i = 0; i < reach.count; i++) {
+    const [low, high] = nodes(i)
+    const row = i * clock.count
+    harvestW.fill(sunW[n], row, row + low)
+    for (let k = low; k <= high; k++, n++) harvestW[row + k] = sunW[n]
+    harvestW.fill(sunW[n - 1], row + high + 1, row + clock.count)
+  }
+  return harvestW
+}
+
+/** Power from the bus at each speed in the air that the base forecast met, and the fastest that is allowed and held. */
+function loads({ race, base }: Along, reach: Reach, speeds: Axis): { loadW: Float64Array; fastestMps: Float64Array } {
+  const { car, course } = race
+  const { road } = base
+  const loadW = new Float64Array(reach.count * speeds.count)
+  const fastestMps = new Float64Array(reach.count)
+  const bus = { busW: 0, lossW: 0, brakedW: 0 }
+  const going: Going = { gradeRad: 0, surfaceFactor: 1, headwindMps: 0, crosswindMps: 0, densityKgM3: 1.2 }
+  for (let i = 0; i < reach.count; i++) {
+    const piece = reach.first + i
+    going.gradeRad = course.pieces.gradeRad[piece]
+    going.surfaceFactor = road.surfaceFactor[piece]
+    going.headwindMps = road.headwindMps[piece]
+    going.crosswindMps = road.crosswindMps[piece]
+    going.densityKgM3 = road.densityKgM3[piece]
+    const wantedMps = Math.min(course.pieces.limitMps[piece], car.drive.topMps ?? FASTEST_MPS, FASTEST_MPS)
+    fastestMps[i] = Math.max(attainableSpeedMps(car.load, car.drive, going, wantedMps), 1)
+    const slope = 1 / Math.cos(going.gradeRad)
+    for (let j = 0; j < speeds.count; j++) {
+      const speedMps = speeds.from + j * speeds.step
+      wheelToBus(car.drive, holdingN(car.load, speedMps, going) * speedMps, speedMps, bus)
+      loadW[i * speeds.count + j] = bus.busW * slope + car.auxDrivingW
+    }
+  }
+  return { loadW, fastestMps }
+}
+
+function stopsOf(along: Along, reach: Reach, clock: Axis, pack: TablePack): TableStop[] {
+  const { race, dayIndex, path, base } = along
+  const day = race.days[dayIndex]
+  const packV = openCircuitV(race.car.pack, base.openingCharge)
+  return race.course.stages.flatMap(({ endPiece }, s) => {
+    const rule = race.stages[s].stop
+    const beforePiece = endPiece - reach.first
+    if (rule === null || beforePiece <= 0 || beforePiece > reach.count) return []
+    const place = { piece: endPiece - 1, isAtEnd: true, horizon: rule.horizon }
+    const sun = parkedSun(race, path, place, { clock, opensMs: day.opensMs, pack, packV })
+    const lengthS = new Float64Array(clock.count)
+    const gainJ = new Float64Array(clock.count)
+    for (let k = 0; k < clock.count; k++) {
+      const arrivalS = clock.from + k * clock.step
+      lengthS[k] = stopLengthS(rule, day, dayIndex, arrivalS)
+      gainJ[k] = stopGainJ(sun, rule, arrivalS, lengthS[k])
+    }
+    const closesMs = rule.closesMs[dayIndex]
+    const closesS = Number.isNaN(closesMs) ? Number.POSITIVE_INFINITY : (closesMs - day.opensMs) / 1000
+    return [{ beforePiece, lengthS, gainJ, closesS }]
+  })
+}
+
+/** From arrival to departure, as the timetable has it. [S] */
+function stopLengthS(rule: StopRule, day: DayRules, dayIndex: number, arrivalS: number): number {
+  const opensMs = rule.opensMs[dayIndex]
+  const earlyS = Number.isNaN(opensMs) ? 0 : Math.max((opensMs - day.opensMs) / 1000 - arrivalS, 0)
+  return rule.runsFromOpening ? earlyS + rule.lengthS : Math.max(earlyS, rule.lengthS)
+}
+
+function evening(along: Along, reach: Reach, clock: Axis, pack: TablePack): Float64Array {
+  const { race, dayIndex, path, base } = along
+  const day = race.days[dayIndex]
+  if (reach.count === 0) return new Float64Array(clock.count)
+  const packV = openCircuitV(race.car.pack, base.openingCharge)
+  const place = { piece: reach.first + reach.count - 1, isAtEnd: true }
+  const of = { clock, opensMs: day.opensMs, pack, packV }
+  const open = parkedSun(race, path, place, of)
+  const suns = day.charging.map(({ horizon }) =>
+    horizon === undefined ? open : parkedSun(race, path, { ...place, horizon }, of),
+  )
+  return Float64Array.from({ length: clock.count }, (_, k) =>
+    eveningGainJ(suns.length > 0 ? suns : [open], day, clock.from + k * clock.step),
+  )
+}
