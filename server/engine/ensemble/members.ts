@@ -1,0 +1,153 @@
+import { type DayTables, type Load, loadAt, pieceS, rowAt } from '../planner/day-tables.ts'
+import type { Drive } from '../planner/simulate.ts'
+import { normals } from './normals.ts'
+import { CAUSES, type Cause, type Spreads } from './spread.ts'
+
+/** A day driven at fixed speeds, laid out for many members. Arrays have one entry per piece. */
+export interface Course {
+  day: DayTables
+  durationS: Float64Array
+  harvestW: Float64Array
+  loadW: Float64Array
+  /** Change of load with the headwind. [W·s/m] */
+  perHeadwind: Float64Array
+  /** Most that a factor on the sun can be: the clear sky over the forecast. */
+  mostSun: Float64Array
+  /** How much of the wandering factor is remembered from the piece before. */
+  memory: Float64Array
+  /** Stop in front of each piece: what it brings; 0 where there is none. [J] (pieces + 1) */
+  stopJ: Float64Array
+  duskJ: number
+  endS: number
+}
+
+/** What the members of an ensemble did. */
+export interface Members {
+  count: number
+  /** Energy at each edge, a row a member. [J] (count × (pieces + 1)) */
+  energyJ: Float32Array
+  /** Energy at the close. [J] (count) */
+  duskJ: Float64Array
+  /** Harvest on the road. [J] (count) */
+  harvestJ: Float64Array
+  /** Least spare over the floor, and the edge where it is. [J] (count) */
+  spareJ: Float64Array
+  spareEdge: Int32Array
+}
+
+/**
+ * Lays a drive out for an ensemble.
+ *
+ * @param clearW        what the sun would bring under a clear sky as each piece is passed. [W] (pieces)
+ * @param perHeadwind   change of each piece's load with the headwind at its speed. [W·s/m] (pieces)
+ */
+export function courseOf(
+  day: DayTables,
+  drive: Drive,
+  of: { clearW: Float64Array; perHeadwind: Float64Array; spreads: Spreads },
+): Course {
+  const n = day.pieces
+  const column = () => new Float64Array(n)
+  const course: Course = {
+    day,
+    durationS: column(),
+    harvestW: column(),
+    loadW: column(),
+    perHeadwind: of.perHeadwind,
+    mostSun: column(),
+    memory: column(),
+    stopJ: new Float64Array(n + 1),
+    duskJ: 0,
+    endS: 0,
+  }
+  const load: Load = { W: 0, slope: 0 }
+  let t = day.start.atS
+  const stand = (edge: number): number => {
+    const before = t
+    for (const stop of day.stops) {
+      if (stop.beforePiece !== edge) continue
+      course.stopJ[edge] += rowAt(stop.gainJ, 0, day.clock, t)
+      t += rowAt(stop.lengthS, 0, day.clock, t)
+    }
+    t += drive.waitS[edge]
+    return t - before
+  }
+  for (let i = 0; i < n; i++) {
+    const stoodS = stand(i)
+    course.durationS[i] = pieceS(day, i, drive.speedMps[i])
+    course.harvestW[i] = rowAt(day.harvestW, i * day.clock.count, day.clock, t + course.durationS[i] / 2)
+    course.loadW[i] = loadAt(day, i, drive.speedMps[i], load).W
+    course.mostSun[i] = Math.max(course.harvestW[i] > 1 ? of.clearW[i] / course.harvestW[i] : 1, 1)
+    const goneS = stoodS + course.durationS[i]
+    course.memory[i] = Math.exp(-goneS / of.spreads.wanderS - day.lengthM[i] / of.spreads.wanderM)
+    t += course.durationS[i]
+  }
+  stand(n)
+  course.endS = t
+  course.duskJ = rowAt(day.duskGainJ, 0, day.clock, t)
+  return course
+}
+
+const LEAST_SUN = 0.02
+
+/**
+ * Drives the same speeds through many days that differ as the spreads say.
+ *
+ * The sun's factor is a day's own plus one that wanders (an Ornstein–Uhlenbeck process over time and place), never
+ * above the clear sky; wind, road, trackers and opening differ once a day.
+ *
+ * @param only  one cause alone, with the numbers that it would have among all
+ * @source Uhlenbeck & Ornstein 1930, Physical Review 36, 823 (the process; sampled exactly at the edges)
+ */
+export function members(course: Course, spreads: Spreads, count: number, seed: number, only?: Cause): Members {
+  const { day } = course
+  const { pieces: n, pack, floorJ } = day
+  const out: Members = {
+    count,
+    energyJ: new Float32Array(count * (n + 1)),
+    duskJ: new Float64Array(count),
+    harvestJ: new Float64Array(count),
+    spareJ: new Float64Array(count),
+    spareEdge: new Int32Array(count),
+  }
+  const on = (cause: Cause): number => (only === undefined || only === cause ? 1 : 0)
+  const [sun, wind, road, trackers, opening] = CAUSES.map(on)
+  const next = normals(seed)
+  const { coulombic, lossPerW, ceilingJ } = pack
+  for (let m = 0; m < count; m++) {
+    const sunDay = sun * spreads.sunDay * next()
+    const headwindMps = wind * spreads.headwindMps * next()
+    const roadFactor = 1 + road * spreads.roadLoad * next()
+    const trackerFactor = Math.max(1 + trackers * spreads.trackers * next(), 0)
+    let E = Math.min(Math.max(day.start.energyJ + opening * spreads.openingJ * next(), 0), ceilingJ)
+    let wander = next()
+    let harvestJ = 0
+    let spareJ = Number.POSITIVE_INFINITY
+    let spareEdge = 0
+    const row = m * (n + 1)
+    let factor = 1
+    for (let i = 0; i <= n; i++) {
+      if (i > 0 && E - floorJ[i] < spareJ) {
+        spareJ = E - floorJ[i]
+        spareEdge = i
+      }
+      if (course.stopJ[i] !== 0) E = Math.min(E + course.stopJ[i] * factor * trackerFactor, ceilingJ)
+      out.energyJ[row + i] = E
+      if (i === n) break
+      const memory = course.memory[i]
+      wander = memory * wander + Math.sqrt(1 - memory * memory) * next()
+      const wanted = 1 + sunDay + sun * spreads.sunWander * wander
+      factor = wanted < LEAST_SUN ? LEAST_SUN : wanted > course.mostSun[i] ? course.mostSun[i] : wanted
+      const harvestW = course.harvestW[i] * factor * trackerFactor
+      const netW = harvestW - course.loadW[i] * roadFactor - course.perHeadwind[i] * headwindMps
+      E += ((netW > 0 ? netW * coulombic : netW) - netW * netW * lossPerW) * course.durationS[i] - day.extraJ[i]
+      if (E > ceilingJ) E = ceilingJ
+      harvestJ += harvestW * course.durationS[i]
+    }
+    out.duskJ[m] = Math.min(E + course.duskJ * factor * trackerFactor, ceilingJ)
+    out.harvestJ[m] = harvestJ
+    out.spareJ[m] = spareJ
+    out.spareEdge[m] = spareEdge
+  }
+  return out
+}
