@@ -149,7 +149,7 @@ const outcome = z.strictObject({
   km: km('where it happens').nullable(),
 })
 
-const dayBudget = z.strictObject({
+export const dayBudgetDocument = z.strictObject({
   date: z.string(),
   zone: z.string(),
   utcOffsetMin: z.number().describe('offset of local time when the day opens [min]'),
@@ -189,7 +189,7 @@ export const budgetDocument = z
     sky: z.strictObject({ name: z.string(), source: skySource, issuedAt: z.string() }),
     assumptions: z.array(z.string()).describe('what was assumed where the documents are silent'),
     lengthKm: z.number().describe('length of the race [km]'),
-    days: z.array(dayBudget),
+    days: z.array(dayBudgetDocument),
   })
   .meta({ title: 'Budget' })
 

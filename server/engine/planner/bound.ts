@@ -18,7 +18,8 @@ import { type DayTables, pieceS } from './day-tables.ts'
  * @returns earliest arrival that cannot be excluded, not above `latestS`. [S]
  */
 export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: number, stepS: number): number {
-  const { pieces, pack, stops } = day
+  const { pieces, stops } = day
+  const ceilingJ = day.pack.ceilingJ + mostMotionJ(day)
   const price = pricesOf(day, sPerJ)
   const shortest = day.fastestMps.map((v, i) => pieceS(day, i, v))
   const stopS = stops.map((stop) => stop.lengthS.reduce((least, s) => Math.min(least, s), Number.POSITIVE_INFINITY))
@@ -37,9 +38,18 @@ export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: n
     worthS += price[i] * day.extraJ[i]
     below = behindPiece(day, stepS, below, { piece: i, price: price[i], latestS: latestS - leftS })
     const drop = price[i] - price[i + 1]
-    if (i + 1 < pieces) worthS += drop * (drop > 0 ? day.floorJ[i + 1] : pack.ceilingJ)
+    if (i + 1 < pieces) worthS += drop * (drop > 0 ? day.floorJ[i + 1] : ceilingJ)
   }
   return Math.min(worthS + leastAtEnd(day, below, price[pieces]), latestS)
+}
+
+/**
+ * Most that the motion of the car gives back: counted with the pack, so that changes of speed cost no less than
+ * nothing and may be left out.
+ */
+function mostMotionJ({ kinetic, fastestMps }: DayTables): number {
+  const fastest = fastestMps.reduce((most, v) => Math.max(most, v), 0)
+  return kinetic.perLost * 0.5 * kinetic.massKg * fastest * fastest
 }
 
 /** Prices of at least 0, the last one twice: nothing is bought behind the last piece but the evening. */

@@ -17,6 +17,15 @@ export interface TableStop {
   closesS: number
 }
 
+/** What changes of speed cost. */
+export interface Kinetic {
+  /** Mass with what turns; 0 where changes of speed are free. [kg] */
+  massKg: number
+  /** Energy from the bus for each joule of motion gained, and back to it for each joule lost. */
+  perGained: number
+  perLost: number
+}
+
 /** What the pack holds and loses. */
 export interface TablePack {
   /** Energy that it can hold. [J] */
@@ -49,6 +58,7 @@ export interface DayTables {
   harvestW: Float64Array
   /** Drawn while the car waits on the road. [W] */
   waitingLoadW: number
+  kinetic: Kinetic
   stops: TableStop[]
   /** What the pack gains from an arrival at the end until dusk, before its ceiling. [J] (clock) */
   duskGainJ: Float64Array
@@ -95,6 +105,29 @@ export const pieceS = (day: DayTables, piece: number, speedMps: number): number 
 /** Speed at which a piece takes a time. [Mps] */
 export const pieceMps = (day: DayTables, piece: number, timeS: number): number =>
   day.lengthM[piece] / (timeS - day.extraS[piece])
+
+/** Change of motion over which a gain passes smoothly into a loss. [J] */
+const SMOOTH_J = 150
+
+/** Whether the car stands in front of a piece, or behind the last. */
+export const standsAt = (day: DayTables, edge: number): boolean =>
+  edge === 0 || edge === day.pieces || day.stops.some(({ beforePiece }) => beforePiece === edge)
+
+/**
+ * Energy from the bus for a change of speed; smooth where gains turn to losses.
+ *
+ * @returns [J]
+ */
+export function changeJ({ massKg, perGained, perLost }: Kinetic, fromMps: number, toMps: number): number {
+  const J = 0.5 * massKg * (toMps * toMps - fromMps * fromMps)
+  return perLost * J + (perGained - perLost) * 0.5 * (J + Math.sqrt(J * J + SMOOTH_J * SMOOTH_J) - SMOOTH_J)
+}
+
+/** Slope of `changeJ` over the motion gained. */
+export function changeSlope({ massKg, perGained, perLost }: Kinetic, fromMps: number, toMps: number): number {
+  const J = 0.5 * massKg * (toMps * toMps - fromMps * fromMps)
+  return perLost + (perGained - perLost) * 0.5 * (1 + J / Math.sqrt(J * J + SMOOTH_J * SMOOTH_J))
+}
 
 /** Load of a piece at a speed and its slope over speed. */
 export interface Load {

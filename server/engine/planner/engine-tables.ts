@@ -4,8 +4,8 @@ import { attainableSpeedMps, wheelToBus } from '../drive.ts'
 import type { DayForecast, Race } from '../forecast.ts'
 import { type Going, holdingN } from '../road.ts'
 import { emptySteps } from '../steps.ts'
-import type { SunPath } from '../sun.ts'
-import type { Axis, DayTables, TablePack, TableStop } from './day-tables.ts'
+import { type SunPath, sunPath } from '../sun.ts'
+import type { Axis, DayTables, Kinetic, TablePack, TableStop } from './day-tables.ts'
 import { eveningGainJ, parkedSun, stopGainJ } from './standing-gain.ts'
 import { sunPowerW } from './sun-power.ts'
 
@@ -33,6 +33,9 @@ const SLOWEST_MPS = 25 / 3.6
 const SPEED_STEP_MPS = 2 / 3.6
 /** Speeds beyond this are not planned. [Mps] */
 const FASTEST_MPS = 140 / 3.6
+
+/** The sun over a day and the last step of the clock. */
+export const planSun = (day: DayRules): SunPath => sunPath(day.opensMs, day.closesMs + CLOCK_S * 1000)
 
 /** The pieces from where the car stands to the end of the last stage that the day may drive. */
 export function reachOf({ race, dayIndex, base }: Along): Reach {
@@ -73,6 +76,7 @@ export function tablesAlong(along: Along, reach: Reach): DayTables {
     clock,
     harvestW: harvests(along, reach, clock, startS),
     waitingLoadW: car.auxDrivingW,
+    kinetic: kineticOf(race),
     stops: stopsOf(along, reach, clock, pack),
     duskGainJ: evening(along, reach, clock, pack),
     pack,
@@ -175,22 +179,52 @@ function harvests(along: Along, reach: Reach, clock: Axis, startS: number): Floa
   return harvestW
 }
 
+/** Speed at which changes of speed are priced. [Mps] */
+const USUAL_MPS = 80 / 3.6
+
+/** What changes of speed cost at the bounds that the driver keeps to, on a level road in still air. */
+function kineticOf({ car }: Race): Kinetic {
+  const massKg = car.load.massKg * car.load.rotatingFactor
+  const going: Going = { gradeRad: 0, surfaceFactor: 1, headwindMps: 0, crosswindMps: 0, densityKgM3: 1.1 }
+  const heldW = holdingN(car.load, USUAL_MPS, going) * USUAL_MPS
+  const bus = { busW: 0, lossW: 0, brakedW: 0 }
+  const busW = (wheelW: number): number => wheelToBus(car.drive, wheelW, USUAL_MPS, bus).busW
+  const changeW = (mps2: number): number => massKg * mps2 * USUAL_MPS
+  const { accelerationMps2, brakingMps2 } = car.bounds
+  const perGained = (busW(heldW + changeW(accelerationMps2)) - busW(heldW)) / changeW(accelerationMps2)
+  const perLost = (busW(heldW) - busW(heldW - changeW(brakingMps2))) / changeW(brakingMps2)
+  return { massKg, perGained, perLost: Math.min(perLost, perGained) }
+}
+
+/** Fastest that the motor holds on each piece where no limit is posted. [Mps] (pieces of the day) */
+export function motorMps({ race, base }: Along, reach: Reach): Float64Array {
+  const { car } = race
+  return Float64Array.from({ length: reach.count }, (_, i) =>
+    Math.max(attainableSpeedMps(car.load, car.drive, goingOn(race, base, reach.first + i), topMps(race)), 1),
+  )
+}
+
+const topMps = ({ car }: Race): number => Math.min(car.drive.topMps ?? FASTEST_MPS, FASTEST_MPS)
+
+function goingOn({ course }: Race, { road }: DayForecast, piece: number): Going {
+  return {
+    gradeRad: course.pieces.gradeRad[piece],
+    surfaceFactor: road.surfaceFactor[piece],
+    headwindMps: road.headwindMps[piece],
+    crosswindMps: road.crosswindMps[piece],
+    densityKgM3: road.densityKgM3[piece],
+  }
+}
+
 /** Power from the bus at each speed in the air that the base forecast met, and the fastest that is allowed and held. */
 function loads({ race, base }: Along, reach: Reach, speeds: Axis): { loadW: Float64Array; fastestMps: Float64Array } {
   const { car, course } = race
-  const { road } = base
   const loadW = new Float64Array(reach.count * speeds.count)
   const fastestMps = new Float64Array(reach.count)
   const bus = { busW: 0, lossW: 0, brakedW: 0 }
-  const going: Going = { gradeRad: 0, surfaceFactor: 1, headwindMps: 0, crosswindMps: 0, densityKgM3: 1.2 }
   for (let i = 0; i < reach.count; i++) {
-    const piece = reach.first + i
-    going.gradeRad = course.pieces.gradeRad[piece]
-    going.surfaceFactor = road.surfaceFactor[piece]
-    going.headwindMps = road.headwindMps[piece]
-    going.crosswindMps = road.crosswindMps[piece]
-    going.densityKgM3 = road.densityKgM3[piece]
-    const wantedMps = Math.min(course.pieces.limitMps[piece], car.drive.topMps ?? FASTEST_MPS, FASTEST_MPS)
+    const going = goingOn(race, base, reach.first + i)
+    const wantedMps = Math.min(course.pieces.limitMps[reach.first + i], topMps(race))
     fastestMps[i] = Math.max(attainableSpeedMps(car.load, car.drive, going, wantedMps), 1)
     const slope = 1 / Math.cos(going.gradeRad)
     for (let j = 0; j < speeds.count; j++) {

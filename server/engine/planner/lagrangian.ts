@@ -1,4 +1,16 @@
-import { type DayTables, type Load, loadAt, pieceMps, rowAt, rowSlopeAt, storedSlope, storedW } from './day-tables.ts'
+import {
+  changeSlope,
+  type DayTables,
+  type Load,
+  loadAt,
+  pieceMps,
+  rowAt,
+  rowSlopeAt,
+  standsAt,
+  storedSlope,
+  storedW,
+} from './day-tables.ts'
+import { motionJ } from './simulate.ts'
 
 /** Multipliers of what must hold, and the last drive's course; everything that the sweeps write. */
 export interface Sweep {
@@ -12,6 +24,7 @@ export interface Sweep {
   spareJ: number
   /** Instant of leaving each edge. [S] (pieces + 1) */
   atS: Float64Array
+  speedMps: Float64Array
   /** Energy on arrival at each edge. [J] (pieces + 1) */
   arrivalJ: Float64Array
   /** Energy when the day closes. [J] */
@@ -28,6 +41,7 @@ export const newSweep = (day: DayTables, waitS: Float64Array): Sweep => ({
   stiffness: 0,
   spareJ: 0,
   atS: new Float64Array(day.pieces + 1),
+  speedMps: new Float64Array(day.pieces),
   arrivalJ: new Float64Array(day.pieces + 1),
   duskJ: 0,
   price: new Float64Array(day.pieces + 1),
@@ -42,8 +56,9 @@ export const newSweep = (day: DayTables, waitS: Float64Array): Sweep => ({
 const load: Load = { W: 0, slope: 0 }
 
 function forward(day: DayTables, sweep: Sweep, timeS: Float64Array): void {
-  const { pieces, pack, clock, stops } = day
+  const { pieces, pack, clock, stops, kinetic } = day
   const { isFull, waitS } = sweep
+  for (let i = 0; i < pieces; i++) sweep.speedMps[i] = pieceMps(day, i, timeS[i])
   let t = day.start.atS
   let E = day.start.energyJ
   let s = 0
@@ -66,7 +81,8 @@ function forward(day: DayTables, sweep: Sweep, timeS: Float64Array): void {
     sweep.atS[i] = t
     if (i === pieces) break
     const sunW = rowAt(day.harvestW, i * clock.count, clock, t + timeS[i] / 2)
-    E += storedW(pack, sunW - loadAt(day, i, pieceMps(day, i, timeS[i]), load).W) * timeS[i] - day.extraJ[i]
+    E += storedW(pack, sunW - loadAt(day, i, sweep.speedMps[i], load).W) * timeS[i] - day.extraJ[i]
+    if (kinetic.massKg > 0) E -= motionJ(day, sweep.speedMps, i)
     isFull.piece[i] = E >= pack.ceilingJ ? 1 : 0
     if (E > pack.ceilingJ) E = pack.ceilingJ
     t += timeS[i]
@@ -89,6 +105,7 @@ function lackS(lackJ: number, price: number, stiffness: number): number {
  */
 export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, slope: Float64Array): number {
   forward(day, sweep, timeS)
+  slope.fill(0)
   const { pieces: n, pack, clock, stops } = day
   const { atS, isFull, multiplier, stiffness, spareJ, price, waitS } = sweep
   const isFullAtDusk = sweep.duskJ >= pack.ceilingJ
@@ -100,14 +117,15 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
   for (let i = n; i >= 0; i--) {
     if (i < n) {
       const middleS = atS[i] + timeS[i] / 2
-      const speedMps = pieceMps(day, i, timeS[i])
+      const speedMps = sweep.speedMps[i]
       loadAt(day, i, speedMps, load)
       const netW = rowAt(day.harvestW, i * clock.count, clock, middleS) - load.W
       const sunSlope = rowSlopeAt(day.harvestW, i * clock.count, clock, middleS)
       if (isFull.piece[i] === 1) p = 0
       const worth = p * storedSlope(pack, netW)
-      slope[i] = q + p * storedW(pack, netW) + worth * timeS[i] * (0.5 * sunSlope + (load.slope * speedMps * speedMps) / day.lengthM[i])
+      slope[i] += q + p * storedW(pack, netW) + worth * timeS[i] * (0.5 * sunSlope + (load.slope * speedMps * speedMps) / day.lengthM[i])
       q += worth * sunSlope * timeS[i]
+      if (day.kinetic.massKg > 0) addMotion(day, sweep, slope, i, p)
     }
     price[i] = -p
     if (waitS[i] > 0) {
@@ -128,6 +146,18 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
     p -= Math.max(multiplier[i] + stiffness * lackJ, 0)
   }
   return value
+}
+
+/** Slopes of the changes of speed that a piece brings, over its own time and that of the piece before. */
+function addMotion(day: DayTables, { speedMps }: Sweep, slope: Float64Array, i: number, p: number): void {
+  const { kinetic, lengthM } = day
+  const v = speedMps[i]
+  const before = standsAt(day, i) ? 0 : speedMps[i - 1]
+  const gained = changeSlope(kinetic, before, v)
+  const lost = standsAt(day, i + 1) ? changeSlope(kinetic, v, 0) : 0
+  // Over its time a piece's motion falls by m·v·v²/length.
+  slope[i] += (p * (gained - lost) * kinetic.massKg * v * v * v) / lengthM[i]
+  if (before > 0) slope[i - 1] -= (p * gained * kinetic.massKg * before * before * before) / lengthM[i - 1]
 }
 
 /** Brings every price to what its lack asked for. */

@@ -1,9 +1,9 @@
-import { storedJ } from '../battery.ts'
-import { daySun, type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
+import { type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
+import type { SunPath } from '../sun.ts'
 import { backTrack, earliestEnd } from './back-track.ts'
 import { earliestPossible } from './bound.ts'
 import type { DayTables } from './day-tables.ts'
-import { type Along, type Reach, reachOf, tablesAlong } from './engine-tables.ts'
+import { motorMps, planSun, type Reach, reachOf, tablesAlong } from './engine-tables.ts'
 import { frontier } from './frontier.ts'
 import { holds, isBetterVerdict, judge, type Verdict } from './judge.ts'
 import { refine, type Refined } from './refine.ts'
@@ -37,6 +37,8 @@ export interface DayPlan {
   reach: Reach
   /** The tables along the best plan. */
   tables: DayTables
+  /** Fastest that the motor would hold without posted limits. [Mps] (pieces of the day) */
+  heldMps: Float64Array
   /** What a joule more on leaving each piece saves. [s/J] (pieces of the day + 1) */
   sPerJ: Float64Array
   /** No drive of one speed a piece arrives earlier, as the tables have it. [ms] */
@@ -46,7 +48,11 @@ export interface DayPlan {
 const BIN_S = 60
 const SPEED_STEP_MPS = 4 / 3.6
 const BOUND_STEP_S = 20
-const MOST_ROUNDS = 6
+const MOST_ROUNDS = 8
+const LAST_ROUNDS = 4
+const WHOLE_ROUNDS = 3
+/** Speeds for people may leave so much unused. [J] */
+const PEOPLE_CLOSE_J = 18_000
 /** Speed of the first forecast, and of pieces that the day does not reach. [Mps] */
 const SOME_MPS = 70 / 3.6
 /** Aimed at beyond reserve and target, so that the forecast keeps them too. [J] */
@@ -65,49 +71,84 @@ const SETTLED_MS = 300
  */
 export function planDay(task: DayTask): DayPlan | null {
   const { race, dayIndex, opening, targetCharge } = task
-  const path = daySun(race.days[dayIndex])
+  const path = planSun(race.days[dayIndex])
   const drive = (speedMps: Float64Array): Judged => {
     const forecast = forecastDay(race, dayIndex, opening, speedMps, path)
     return { speedMps, forecast, verdict: judge(race, forecast, targetCharge) }
   }
-  let now = drive(new Float64Array(race.course.pieces.count).fill(SOME_MPS))
-  const reach = reachOf({ race, dayIndex, base: now.forecast, path, targetCharge })
+  const first = drive(new Float64Array(race.course.pieces.count).fill(SOME_MPS))
+  const reach = reachOf({ race, dayIndex, base: first.forecast, path, targetCharge })
   if (reach.count <= 0) return null
-  let best: Judged | null = null
-  let settled: { tables: DayTables; refined: Refined } | null = null
-  for (let round = 0; round < MOST_ROUNDS; round++) {
-    const along = { race, dayIndex, base: now.forecast, path, targetCharge }
-    const { tables, heldMps } = settledTables(along, reach, now)
-    const refined: Refined | null =
-      settled === null
-        ? fromFrontier(tables)
-        : refine(tables, { speedMps: heldMps, waitS: noWaits(reach) }, settled.refined.multiplier)
-    if (refined === null) return null
-    const before = now.verdict
-    now = drive(onCourse(race, reach, refined.drive.speedMps))
-    settled = { tables, refined }
-    if (best === null || isBetterVerdict(now.verdict, best.verdict)) best = now
-    const isSame = Math.abs(now.verdict.arrivalMs - before.arrivalMs) < SETTLED_MS
-    if (isSame && holds(now.verdict) && now.verdict.lackJ > -SETTLED_J - SPARE_J) break
-  }
-  if (best === null || settled === null) return null
-  const along = { race, dayIndex, base: best.forecast, path, targetCharge }
-  const { tables, heldMps } = settledTables(along, reach, best)
-  const { sPerJ } = settled.refined
-  const endS = (best.verdict.arrivalMs - race.days[dayIndex].opensMs) / 1000
+  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive }
+  const found = settleDown(day, first, null, MOST_ROUNDS)
+  if (found === null) return null
+  const forPeople = peoplePlan(day, found.best)
+  // Whole speeds in sections change less often and may do better: then they are what is bettered.
+  const better = isBetterVerdict(forPeople.verdict, found.best.verdict)
+    ? settleDown(day, forPeople, found.refined, LAST_ROUNDS)
+    : null
+  const { best, refined } = better ?? found
+  const { tables } = settledTables(day, best)
+  const { opensMs } = race.days[dayIndex]
+  const endS = (best.verdict.arrivalMs - opensMs) / 1000
   return {
     best,
-    forPeople: peoplePlan(along, reach, tables, heldMps, drive),
+    forPeople,
     reach,
     tables,
-    sPerJ,
-    boundMs: race.days[dayIndex].opensMs + 1000 * earliestPossible(tables, sPerJ, endS, BOUND_STEP_S),
+    heldMps: motorMps({ ...day, base: best.forecast }, reach),
+    sPerJ: refined.sPerJ,
+    boundMs: opensMs + 1000 * earliestPossible(tables, refined.sPerJ, endS, BOUND_STEP_S),
   }
+}
+
+/** What stays the same while a day is planned. */
+interface DayAtWork {
+  race: Race
+  dayIndex: number
+  targetCharge: number
+  path: SunPath
+  reach: Reach
+  drive: (speedMps: Float64Array) => Judged
+}
+
+/**
+ * Tables along a forecast, better speeds by them, the forecast of those: until both agree. Late rounds go half the
+ * way, so that what one round sets right is not undone by the next.
+ *
+ * @param before  the last refinement, to go on from; null starts with the frontier
+ * @returns the best that any forecast found; null where the tables know no drive that holds
+ */
+function settleDown(
+  day: DayAtWork,
+  start: Judged,
+  before: Refined | null,
+  rounds: number,
+): { best: Judged; refined: Refined } | null {
+  let now = start
+  let refined = before
+  let best: Judged | null = before === null ? null : start
+  for (let round = 0; round < rounds; round++) {
+    const { tables, heldMps } = settledTables(day, now)
+    refined = refined === null ? fromFrontier(tables) : refine(tables, { speedMps: heldMps, waitS: noWaits(day.reach) }, refined.multiplier)
+    if (refined === null) return null
+    const wayOn = round < WHOLE_ROUNDS ? 1 : 0.5
+    const speedMps = refined.drive.speedMps.map((v, i) => heldMps[i] + wayOn * (v - heldMps[i]))
+    const { arrivalMs } = now.verdict
+    now = day.drive(onCourse(day, speedMps))
+    if (best === null || isBetterVerdict(now.verdict, best.verdict)) best = now
+    const isSame = Math.abs(now.verdict.arrivalMs - arrivalMs) < SETTLED_MS
+    if (isSame && holds(now.verdict) && now.verdict.lackJ > -SETTLED_J - SPARE_J) break
+  }
+  return best === null || refined === null ? null : { best, refined }
 }
 
 const noWaits = (reach: Reach): Float64Array => new Float64Array(reach.count + 1)
 
-function settledTables(along: Along, reach: Reach, now: Judged): { tables: DayTables; heldMps: Float64Array } {
+/** Tables set right along a drive, a little more asked than is wanted. */
+function settledTables(day: DayAtWork, now: Judged): { tables: DayTables; heldMps: Float64Array } {
+  const { reach } = day
+  const along = { ...day, base: now.forecast }
   const tables = tablesAlong(along, reach)
   const heldMps = tables.fastestMps.map((fastest, i) => Math.min(now.speedMps[reach.first + i], fastest))
   settle(tables, along, reach, now.forecast, heldMps)
@@ -116,14 +157,62 @@ function settledTables(along: Along, reach: Reach, now: Judged): { tables: DayTa
   return { tables, heldMps }
 }
 
+function fromFrontier(tables: DayTables): Refined | null {
+  const found = frontier(tables, BIN_S, SPEED_STEP_MPS, someEndS(tables))
+  const endS = earliestEnd(tables, found)
+  return endS === Number.POSITIVE_INFINITY ? null : refine(tables, backTrack(tables, found, endS))
+}
+
+function onCourse({ race, reach }: DayAtWork, speedMps: Float64Array): Float64Array {
+  const all = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
+  all.set(speedMps, reach.first)
+  return all
+}
+
+const PEOPLE_ROUNDS = 4
+
+/** Whole speeds in sections, aimed higher or lower until the forecast itself finds that they just hold. */
+function peoplePlan(day: DayAtWork, best: Judged): DayPlan['forPeople'] {
+  const { race, dayIndex, reach } = day
+  const { tables, heldMps } = settledTables(day, best)
+  const stageEnds = race.course.stages
+    .slice(0, race.days[dayIndex].lastStage + 1)
+    .map(({ endPiece }) => endPiece - reach.first)
+    .filter((end) => end > 0)
+  const waitS = noWaits(reach)
+  let kept: DayPlan['forPeople'] | null = null
+  for (let round = 0; round < PEOPLE_ROUNDS; round++) {
+    const sections = sectionsFor(tables, stageEnds, heldMps, waitS)
+    const judged = day.drive(onCourse(day, driveOf(tables, sections, waitS).speedMps))
+    if (kept === null || isBetterVerdict(judged.verdict, kept.verdict)) kept = { ...judged, sections }
+    const missJ = judged.verdict.lackJ
+    if (missJ <= 0 && missJ > -PEOPLE_CLOSE_J) break
+    tables.targetJ += missJ + SPARE_J
+    raiseFloor(tables, missJ + SPARE_J)
+  }
+  return kept as DayPlan['forPeople']
+}
+
+/** Tables of a day along a forecast at an ordinary speed; null where the day drives nothing. */
+export function someTables({ race, dayIndex, opening, targetCharge }: DayTask): { tables: DayTables; reach: Reach } | null {
+  const path = planSun(race.days[dayIndex])
+  const speedMps = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
+  const base = forecastDay(race, dayIndex, opening, speedMps, path)
+  const along = { race, dayIndex, base, path, targetCharge }
+  const reach = reachOf(along)
+  if (reach.count <= 0) return null
+  const now = { speedMps, forecast: base, verdict: judge(race, base, targetCharge) }
+  const drive = () => now
+  const { tables } = settledTables({ race, dayIndex, targetCharge, path, reach, drive }, now)
+  return { tables, reach }
+}
+
 /** The end of the fastest constant speed that holds; the day's where none does. [S] */
 function someEndS(tables: DayTables): number {
   const waitS = new Float64Array(tables.pieces + 1)
   for (let kmh = 130; kmh >= 30; kmh -= 2) {
-    const { shortJ, lateS, atS } = simulate(tables, {
-      speedMps: tables.fastestMps.map((fastest) => Math.min(fastest, kmh / 3.6)),
-      waitS,
-    })
+    const speedMps = tables.fastestMps.map((fastest) => Math.min(fastest, kmh / 3.6))
+    const { shortJ, lateS, atS } = simulate(tables, { speedMps, waitS })
     if (shortJ <= 0 && lateS <= 0) return atS[tables.pieces]
   }
   return tables.latestS
@@ -132,48 +221,3 @@ function someEndS(tables: DayTables): number {
 function raiseFloor(tables: DayTables, byJ: number): void {
   for (let i = 0; i < tables.floorJ.length; i++) tables.floorJ[i] += byJ
 }
-
-function fromFrontier(tables: DayTables): Refined | null {
-  const found = frontier(tables, BIN_S, SPEED_STEP_MPS, someEndS(tables))
-  const endS = earliestEnd(tables, found)
-  return endS === Number.POSITIVE_INFINITY ? null : refine(tables, backTrack(tables, found, endS))
-}
-
-function onCourse(race: Race, reach: Reach, speedMps: Float64Array): Float64Array {
-  const all = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
-  all.set(speedMps, reach.first)
-  return all
-}
-
-const PEOPLE_ROUNDS = 3
-
-/** Whole speeds in sections, slowed until the forecast itself finds that they hold. */
-function peoplePlan(
-  along: Along,
-  reach: Reach,
-  tables: DayTables,
-  bestMps: Float64Array,
-  drive: (speedMps: Float64Array) => Judged,
-): DayPlan['forPeople'] {
-  const { race, dayIndex } = along
-  const stageEnds = race.course.stages
-    .slice(0, race.days[dayIndex].lastStage + 1)
-    .map(({ endPiece }) => endPiece - reach.first)
-    .filter((end) => end > 0)
-  const waitS = noWaits(reach)
-  const aimed = { ...tables, floorJ: tables.floorJ.slice() }
-  let kept: DayPlan['forPeople'] | null = null
-  for (let round = 0; round < PEOPLE_ROUNDS; round++) {
-    const sections = sectionsFor(aimed, stageEnds, bestMps, waitS)
-    const judged = drive(onCourse(race, reach, driveOf(aimed, sections, waitS).speedMps))
-    if (kept === null || isBetterVerdict(judged.verdict, kept.verdict)) kept = { ...judged, sections }
-    const missJ = judged.verdict.lackJ
-    if (missJ <= 0) break
-    aimed.targetJ += missJ + SPARE_J
-    raiseFloor(aimed, missJ + SPARE_J)
-  }
-  return kept as DayPlan['forPeople']
-}
-
-/** Energy stored at a charge, for those who read a plan. [J] */
-export const wantedJ = ({ race, targetCharge }: DayTask): number => storedJ(race.car.pack, targetCharge)

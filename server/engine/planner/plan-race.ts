@@ -1,8 +1,8 @@
 import { chargeAtStoredJ, storedJ } from '../battery.ts'
-import { daySun, type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
+import { type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
 import { earliestEnd } from './back-track.ts'
 import type { DayTables } from './day-tables.ts'
-import { reachOf, tablesAlong } from './engine-tables.ts'
+import { planSun, reachOf, tablesAlong } from './engine-tables.ts'
 import { frontier } from './frontier.ts'
 import { type DayPlan, planDay } from './plan-day.ts'
 import { settle } from './settle.ts'
@@ -59,7 +59,7 @@ export function closingCharges(task: RaceTask): number[] {
 }
 
 function costOf({ race, opening, targetCharge }: RaceTask, d: number): DayCost | null {
-  const path = daySun(race.days[d])
+  const path = planSun(race.days[d])
   const standing = standingOn(race, d)
   if (standing === null) return null
   const charge = 0.6

@@ -1,6 +1,7 @@
 import type { DayForecast } from '../forecast.ts'
 import { type Along, type Reach } from './engine-tables.ts'
 import { type DayTables, loadAt, pieceS, rowAt, storedW } from './day-tables.ts'
+import { motionJ } from './simulate.ts'
 
 /** What a forecast did on one piece of the road. */
 interface Driven {
@@ -25,7 +26,7 @@ export function settle(tables: DayTables, along: Along, reach: Reach, base: DayF
     const timeS = pieceS(tables, i, speedMps[i])
     const sunW = rowAt(tables.harvestW, i * tables.clock.count, tables.clock, driven.fromS + timeS / 2)
     const { W } = loadAt(tables, i, speedMps[i], { W: 0, slope: 0 })
-    tables.extraJ[i] = storedW(tables.pack, sunW - W) * timeS - driven.storedJ
+    tables.extraJ[i] = storedW(tables.pack, sunW - W) * timeS - driven.storedJ - motionJ(tables, speedMps, i)
   })
   settleStands(tables, base, reach, opensMs)
   const end = base.steps.count - 1

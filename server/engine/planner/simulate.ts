@@ -1,4 +1,4 @@
-import { type DayTables, loadAt, pieceS, rowAt, storedW } from './day-tables.ts'
+import { changeJ, type DayTables, loadAt, pieceS, rowAt, standsAt, storedW } from './day-tables.ts'
 
 /** Speeds of a day and where the car waits. */
 export interface Drive {
@@ -6,6 +6,15 @@ export interface Drive {
   speedMps: Float64Array
   /** Waiting in front of each piece and, last, at the end, stops not counted. [S] (pieces + 1) */
   waitS: Float64Array
+}
+
+/** Energy of the changes of speed that a piece brings: from the piece before, and to rest in front of a stop. [J] */
+export function motionJ(day: DayTables, speedMps: Float64Array, piece: number): number {
+  const { kinetic } = day
+  if (!(kinetic.massKg > 0)) return 0
+  const v = speedMps[piece]
+  const started = changeJ(kinetic, standsAt(day, piece) ? 0 : speedMps[piece - 1], v)
+  return standsAt(day, piece + 1) ? started + changeJ(kinetic, v, 0) : started
 }
 
 /** A drive through the tables: clock and energy at every edge between pieces, stops and waits behind them. */
@@ -25,8 +34,7 @@ export interface Track {
 }
 
 /**
- * Drives a day through its tables, piece by piece: harvest at the middle of each piece, one speed a piece, no
- * kinetic energy.
+ * Drives a day through its tables, piece by piece: harvest at the middle of each piece, one speed a piece.
  *
  * @param drive  speeds within the pieces' limits
  */
@@ -61,7 +69,7 @@ export function simulate(day: DayTables, drive: Drive): Track {
     if (i === pieces) break
     const durationS = pieceS(day, i, drive.speedMps[i])
     const sunW = rowAt(day.harvestW, i * clock.count, clock, t + durationS / 2)
-    E = Math.min(pack.ceilingJ, E + storedW(pack, sunW - loadAt(day, i, drive.speedMps[i], load).W) * durationS - day.extraJ[i])
+    E = Math.min(pack.ceilingJ, E + storedW(pack, sunW - loadAt(day, i, drive.speedMps[i], load).W) * durationS - day.extraJ[i] - motionJ(day, drive.speedMps, i))
     t += durationS
   }
   const duskJ = Math.min(pack.ceilingJ, E + rowAt(day.duskGainJ, 0, clock, t))

@@ -101,6 +101,7 @@ export function dayOf(parts: DayParts): DayTables {
     clock,
     harvestW,
     waitingLoadW: 10,
+    kinetic: { massKg: 0, perGained: 1, perLost: 1 },
     stops: parts.stopsKm.map((km) => ({
       beforePiece: km,
       lengthS: row(() => 1800),

@@ -1,0 +1,206 @@
+import { chargeAtStoredJ, storedJ } from '../engine/battery.ts'
+import { whyImpossible } from '../engine/planner/impossible.ts'
+import { type DayPlan, type Judged, planDay, someTables } from '../engine/planner/plan-day.ts'
+import { limitCosts } from '../engine/planner/limit-costs.ts'
+import { fastestThatMeets } from '../engine/search.ts'
+import { ENGINE_VERSION } from '../engine/version.ts'
+import { dayBudget, dayKm } from './budget-day.ts'
+import { type DrivenDay, drivenRace } from './forecast.ts'
+import { clock, localIso } from './local-time.ts'
+import type { PlanDocument } from './plan.ts'
+import { planRanges } from './plan-ranges.ts'
+import type { PlanRequest } from './plan-request.ts'
+import { bestSpeeds, sectionSpeeds } from './plan-speeds.ts'
+
+const WH = 1 / 3600
+const MIN_MS = 60_000
+/** A price every so often along the road. [M] */
+const PRICE_EVERY_M = 10_000
+
+/**
+ * The plan of one day.
+ *
+ * @throws InputError when the documents do not fit together: field, value and what was expected
+ */
+export function planDocuments(request: PlanRequest): PlanDocument {
+  const { days, assumptions } = drivenRace({ ...request, speeds: QUICK }, (day) => day)
+  const day = days[0]
+  const targetCharge = request.targetPct === undefined ? (day.targetCharge ?? day.race.car.reserveCharge) : request.targetPct / 100
+  const head = {
+    engineVersion: ENGINE_VERSION,
+    race: request.race.name,
+    car: request.car.name,
+    date: day.date,
+    zone: day.zone,
+    assumptions,
+    target: { wh: storedJ(day.race.car.pack, targetCharge) * WH, chargePct: targetCharge * 100 },
+  }
+  const task = { race: day.race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }
+  const plan = planDay(task)
+  if (plan === null) return { ...head, ...notPlanned(day, targetCharge) }
+  return { ...head, ...planned(request, day, plan, targetCharge) }
+}
+
+/** A speed to lay the day out with before it is planned. */
+const QUICK = { kind: 'constant' as const, speedKmh: 70 }
+
+const NOTHING = {
+  best: null,
+  forPeople: null,
+  constant: null,
+  bound: null,
+  prices: [],
+  limits: [],
+  ranges: null,
+  steady: null,
+  impossible: null,
+}
+
+function planned(request: PlanRequest, day: DrivenDay, plan: DayPlan, targetCharge: number): Omit<PlanDocument, keyof Head> {
+  const { best, forPeople } = plan
+  const bestMs = best.verdict.arrivalMs
+  const withinMin = Math.max(bestMs - plan.boundMs, 0) / MIN_MS
+  const of = asDay(day, forPeople, targetCharge)
+  const place = best.verdict.isFinished ? 'The last stop' : 'The end'
+  return {
+    ...NOTHING,
+    outcome: {
+      kind: 'planned',
+      text: `${finishName(day)} is reached ${clock(bestMs, day.zone)} at the earliest, and no plan can be more than ${Math.max(Math.ceil(withinMin * 60), 1)} s earlier.`.replace('The last stop', place),
+    },
+    best: { speeds: bestSpeeds(day, plan), ...figures(day, best) },
+    forPeople: {
+      speeds: sectionSpeeds(day, plan),
+      ...figures(day, forPeople),
+      sections: forPeople.sections.map((section) => ({
+        stage: stageOf(day, plan.reach.first + section.firstPiece),
+        fromKm: edgeKm(day, plan.reach.first + section.firstPiece),
+        toKm: edgeKm(day, plan.reach.first + section.endPiece),
+        speedKmh: section.speedKmh,
+      })),
+      costMin: (forPeople.verdict.arrivalMs - bestMs) / MIN_MS,
+      budget: dayBudget(of),
+    },
+    constant: constantOf(day, targetCharge, bestMs),
+    bound: { arriveAt: localIso(plan.boundMs, day.zone), withinMin },
+    prices: pricesOf(day, plan),
+    limits: limitCosts(plan).map(({ what, costS }) => ({ what, label: LIMIT_LABELS[what], costMin: costS / 60 })),
+    ...planRanges(request, day, plan),
+  }
+}
+
+type Head = Pick<PlanDocument, 'engineVersion' | 'race' | 'car' | 'date' | 'zone' | 'assumptions' | 'target'>
+
+const LIMIT_LABELS = { limits: 'Speed limits', reserve: 'Reserve on the way', target: 'Charge wanted at the close' }
+
+const finishName = (day: DrivenDay): string => day.race.stages[day.race.days[day.dayIndex].lastStage]?.finish ?? 'The end'
+
+/** The day with another forecast of it. */
+const asDay = (day: DrivenDay, judged: Judged, targetCharge: number): DrivenDay => ({
+  ...day,
+  forecast: judged.forecast,
+  wantedMps: judged.speedMps,
+  heldKmh: null,
+  search: null,
+  targetCharge,
+})
+
+function figures(day: DrivenDay, { forecast, verdict }: Judged) {
+  const { pack, reserveCharge } = day.race.car
+  const { spans } = forecast.timetable
+  const setOffMs = spans.find((span) => span.kind === 'drive')?.fromMs ?? verdict.arrivalMs
+  const lowestJ = forecast.lowestStep < 0 ? forecast.openingJ : forecast.balance.storedJ[forecast.lowestStep]
+  return {
+    arriveAt: localIso(verdict.arrivalMs, day.zone),
+    drivingMin: (verdict.arrivalMs - setOffMs) / MIN_MS,
+    closingWh: forecast.closingJ * WH,
+    closingPct: forecast.closing.charge * 100,
+    leastSpareWh: (lowestJ - storedJ(pack, reserveCharge)) * WH,
+  }
+}
+
+function constantOf(day: DrivenDay, targetCharge: number, bestMs: number): PlanDocument['constant'] {
+  const found = fastestThatMeets(day.race, day.dayIndex, day.opening, targetCharge, { lowestKmh: 30, highestKmh: 130 })
+  const arrivalMs = found.forecast.timetable.spans.findLast((span) => span.kind === 'drive')?.toMs
+  if (!found.meetsTarget || arrivalMs === undefined || found.forecast.timetable.isCutOff) return null
+  return {
+    speedKmh: found.speedKmh,
+    arriveAt: localIso(arrivalMs, day.zone),
+    laterMin: (arrivalMs - bestMs) / MIN_MS,
+  }
+}
+
+/** Distance of a piece's start from where the day starts. [km] */
+function edgeKm(day: DrivenDay, piece: number): number {
+  const { pieces } = day.race.course
+  const M = piece < pieces.count ? pieces.fromM[piece] : day.race.course.lengthM
+  return Math.max(dayKm(day, M), 0)
+}
+
+const stageOf = (day: DrivenDay, piece: number): string =>
+  day.race.stages[day.race.course.stages.findIndex((stage) => piece < stage.endPiece)]?.name ?? ''
+
+function pricesOf(day: DrivenDay, { sPerJ, reach }: DayPlan): PlanDocument['prices'] {
+  const { pieces } = day.race.course
+  let nextM = Number.NEGATIVE_INFINITY
+  const prices: PlanDocument['prices'] = []
+  for (let i = 0; i < reach.count; i++) {
+    const fromM = pieces.fromM[reach.first + i]
+    if (fromM < nextM) continue
+    prices.push({ km: edgeKm(day, reach.first + i), sPerWh: sPerJ[i] * 3600 })
+    nextM = fromM + PRICE_EVERY_M
+  }
+  return prices
+}
+
+/** Why no speeds keep what is wanted, in words. */
+function notPlanned(day: DrivenDay, targetCharge: number): Omit<PlanDocument, keyof Head> {
+  const found = someTables({ race: day.race, dayIndex: day.dayIndex, opening: day.opening, targetCharge })
+  if (found === null)
+    return { ...NOTHING, outcome: { kind: 'parked', text: 'The car is not driven on this day.' } }
+  const { tables, reach } = found
+  const why = whyImpossible(tables)
+  const { pack } = day.race.car
+  const reachedKm = edgeKm(day, reach.first + why.farthestEdge)
+  const mostPct = chargeAtStoredJ(pack, why.mostAtCloseJ) * 100
+  const floorPct = chargeAtStoredJ(pack, why.floorJ) * 100
+  const laterMin = why.laterS / 60
+  const nearest = [
+    ...(Number.isNaN(why.mostAtCloseJ)
+      ? []
+      : [{ what: 'target' as const, value: mostPct, text: `Close with ${Math.floor(mostPct)} % instead of ${Math.round(targetCharge * 100)} %.` }]),
+    ...(Number.isNaN(why.floorJ)
+      ? []
+      : [{ what: 'reserve' as const, value: floorPct, text: `Lower the reserve to ${Math.floor(floorPct)} %.` }]),
+    ...(Number.isNaN(why.laterS)
+      ? []
+      : [{ what: 'later' as const, value: laterMin, text: `Drive ${Math.ceil(laterMin)} min longer, if the event allows it.` }]),
+  ]
+  return {
+    ...NOTHING,
+    outcome: { kind: 'impossible', text: sentence(day, why, { reachedKm, mostPct, targetCharge, tables }) },
+    impossible: {
+      why: why.why,
+      reachedKm,
+      mostAtCloseWh: Number.isNaN(why.mostAtCloseJ) ? null : why.mostAtCloseJ * WH,
+      nearest,
+    },
+  }
+}
+
+function sentence(
+  day: DrivenDay,
+  why: ReturnType<typeof whyImpossible>,
+  of: { reachedKm: number; mostPct: number; targetCharge: number; tables: { targetJ: number } },
+): string {
+  const name = finishName(day)
+  if (why.why === 'target') {
+    const shortWh = Math.round((of.tables.targetJ - why.mostAtCloseJ) * WH)
+    return `${name} can be reached, but the day then closes with ${Math.floor(of.mostPct)} % at most: ${shortWh} Wh short of ${Math.round(of.targetCharge * 100)} %.`
+  }
+  const endsAt = clock(day.race.days[day.dayIndex].drivingToMs, day.zone)
+  if (why.why === 'reserve')
+    return `${name} cannot be reached by ${endsAt} with the reserve untouched: the car comes to km ${of.reachedKm.toFixed(0)}.`
+  return `${name} cannot be reached by ${endsAt}: the sun and the pack bring the car to km ${of.reachedKm.toFixed(0)}.`
+}
+
