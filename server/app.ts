@@ -26,6 +26,8 @@ import { guardChanges } from './api/guard.ts'
 import { healthRoutes } from './api/health.ts'
 import { KINDS } from './api/kinds.ts'
 import { describeApi } from './api/openapi.ts'
+import { planDesk } from './api/plan-desk.ts'
+import { keptPlanRoutes, planRoutes, statelessPlanRoute } from './api/plans.ts'
 import { pointingRoute, statelessPointingRoute } from './api/pointing.ts'
 import { previewRoute } from './api/previews.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
@@ -147,6 +149,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => statelessForecastRoute(scope, needs))
   void api.register(async (scope: Api) => statelessTrackerRoute(scope, needs))
   void api.register(async (scope: Api) => statelessPointingRoute(scope, needs))
+  void api.register(async (scope: Api) => statelessPlanRoute(scope, needs))
   void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
   void api.register(async (scope: Api) => coastDownRoute(scope, needs))
   dayRoutes(api, needs)
@@ -165,6 +168,10 @@ function addCrewRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => beliefRoute(scope, needs, turns))
   void api.register(async (scope: Api) => shareRoutes(scope, needs, publicOrigin))
   void api.register(async (scope: Api) => eventRoutes(scope, needs))
+  const desk = planDesk(needs, (error) => api.log.error(error))
+  api.addHook('preClose', () => desk.close())
+  void api.register(async (scope: Api) => planRoutes(scope, needs, desk))
+  keptPlanRoutes(api, needs)
   keptReadingRoutes(api, needs, turns)
   followedRoute(api, needs)
   pointingRoute(api, needs)

@@ -19,6 +19,7 @@ export const ERRORS = {
   'no-such-version': { status: 404, title: 'There is no such version' },
   'no-such-day': { status: 404, title: 'The race has no such day' },
   'no-such-forecast': { status: 404, title: 'There is no such forecast' },
+  'no-such-plan': { status: 404, title: 'There is no such plan' },
   'no-such-reading': { status: 404, title: 'There is no such reading' },
   'no-such-share': { status: 404, title: 'There is no such share link' },
   'nothing-followed': { status: 404, title: 'No budget is followed yet' },

@@ -15,7 +15,7 @@ const stream = {
   mediaType: 'text/event-stream',
 }
 
-const ALL_KINDS = ['forecast', 'reading', 'choice']
+const ALL_KINDS = ['forecast', 'reading', 'choice', 'plan']
 /** A share link tells of the budget alone. */
 const SHARED_KINDS = ['forecast']
 
@@ -27,7 +27,7 @@ export function eventRoutes(api: Api, needs: Needs): void {
   api.addHook('preClose', async () => open.forEach((raw) => raw.end()))
   const schema = {
     tags: ['following'],
-    summary: 'Watch a day: events "forecast", "reading" and "choice"',
+    summary: 'Watch a day: events "forecast", "reading", "choice" and "plan"',
     params: dayParams,
     querystring: z.strictObject({}),
     response: answers({ 200: stream }, ['bad-id', 'bad-query', 'no-such-document', 'no-such-day', ...STORE_ERRORS]),

@@ -37,14 +37,18 @@ export const openRequest = z
 export type OpenRequest = z.output<typeof openRequest>
 
 /** The forecast request in a body, checked; documents that it only names are left as `{ id }`. */
-export function readForecastRequest(input: { bytes: Uint8Array }): OpenRequest {
-  const body = readJson(input.bytes)
-  const schema = openRequest.extend({
+export const readForecastRequest = (input: { bytes: Uint8Array }): OpenRequest =>
+  readOpenRequest(openRequest, input.bytes, 'forecast request')
+
+/** A request in a body, checked by a schema with car, race and sky in it, each whole or named. */
+export function readOpenRequest<S extends z.ZodObject>(schema: S, bytes: Uint8Array, what: string): z.output<S> {
+  const body = readJson(bytes)
+  const whole = {
     car: meant(body, 'car', carDocument),
     race: meant(body, 'race', raceDocument),
     sky: meant(body, 'sky', skyDocument),
-  })
-  return checked(schema, body, 'forecast request')
+  }
+  return checked(schema.extend(whole), body, what) as z.output<S>
 }
 
 /** A union would name the problems of both its sides; which one is meant shows at a glance. */

@@ -1,6 +1,7 @@
 import { coastDownJob, readCoastDown } from './coast-jobs.ts'
 import { type BodyInput, readDocument } from './file-jobs.ts'
 import { forecastJson, inputsHash, pointingJson, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
+import { planHash, planJson, readPlanRequest } from './plan-jobs.ts'
 import type { ComputePool } from './pool.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 import { compareJson, readComparison } from './sky-jobs.ts'
@@ -11,6 +12,9 @@ export const JOBS = {
   'read-forecast-request': readForecastRequest,
   'inputs-hash': inputsHash,
   forecast: forecastJson,
+  'read-plan-request': readPlanRequest,
+  'plan-hash': planHash,
+  plan: planJson,
   point: pointingJson,
   'read-coast-down': readCoastDown,
   'coast-down': coastDownJob,

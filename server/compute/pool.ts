@@ -1,5 +1,5 @@
 import { Fault } from '../errors.ts'
-import type { Jobs } from './serve-jobs.ts'
+import type { Jobs, Progress } from './serve-jobs.ts'
 import { type SlotOptions, type Task, workerSlot } from './slot.ts'
 
 export interface PoolOptions extends Omit<SlotOptions, 'heapLimitMb'> {
@@ -17,10 +17,16 @@ export interface ComputePool<J extends Jobs> {
    * The job's answer.
    *
    * @param signal  takes the job back: out of the queue, or by ending the worker that does it
+   * @param told    is told how far a long job is
    * @throws Fault 'busy', 'took-too-long', 'too-complex', 'compute-failed', 'stopping', or what the job itself refuses;
    *         the signal's reason when it was taken back
    */
-  run<K extends string & keyof J>(kind: K, input: Parameters<J[K]>[0], signal?: AbortSignal): Promise<ReturnType<J[K]>>
+  run<K extends string & keyof J>(
+    kind: K,
+    input: Parameters<J[K]>[0],
+    signal?: AbortSignal,
+    told?: (progress: Progress) => void,
+  ): Promise<ReturnType<J[K]>>
   /** Whether a worker has loaded its code. */
   isReady(): boolean
   close(): Promise<void>
@@ -59,12 +65,13 @@ export function computePool<J extends Jobs>(options: PoolOptions): ComputePool<J
   }
 
   return {
-    run(kind, input, signal) {
+    run(kind, input, signal, told) {
       return new Promise((done, failed) => {
         const stop = () => takeBack(task, reasonOf(signal))
         const settled = () => signal?.removeEventListener('abort', stop)
         const task: Task = {
           message: { kind, input },
+          told,
           done(answer) {
             settled()
             done(answer)

@@ -8,17 +8,27 @@ import { type ErrorCode, Fault } from '../errors.ts'
  */
 export type Reply<Answer = never> =
   | { kind: 'loaded' }
+  | { kind: 'progress'; progress: Progress }
   | { kind: 'answer'; answer: Answer }
   | { kind: 'fault'; code: ErrorCode; detail: string; errors: Problem[] }
   | { kind: 'crash'; stack: string }
 
-/** The work of each kind: its input and its answer are copied between threads. */
-export type Jobs = { [kind: string]: (input: never) => unknown }
+/** How far a job is, in words for people and as a share. */
+export interface Progress {
+  step: string
+  /** 0..1 */
+  share: number
+}
+
+/** The work of each kind: its input and its answer are copied between threads; long work may tell how far it is. */
+export type Jobs = { [kind: string]: (input: never, tell: (progress: Progress) => void) => unknown }
 
 /** Lets this worker thread do the jobs, one after another. */
 export function serveJobs(jobs: Jobs): void {
   parentPort?.on('message', ({ kind, input }: { kind: string; input: never }) => {
-    const reply = outcome(() => jobs[kind](input))
+    const tell = (progress: Progress): void =>
+      parentPort?.postMessage({ kind: 'progress', progress } satisfies Reply, [])
+    const reply = outcome(() => jobs[kind](input, tell))
     parentPort?.postMessage(reply, [])
   })
   parentPort?.postMessage({ kind: 'loaded' } satisfies Reply, [])

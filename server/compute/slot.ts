@@ -1,11 +1,13 @@
 import { Worker } from 'node:worker_threads'
 import { Fault } from '../errors.ts'
-import type { Reply } from './serve-jobs.ts'
+import type { Progress, Reply } from './serve-jobs.ts'
 
 export interface Task {
   message: { kind: string; input: unknown }
   done(answer: never): void
   failed(error: Error): void
+  /** Told whenever the job says how far it is. */
+  told?(progress: Progress): void
 }
 
 export interface SlotOptions {
@@ -55,6 +57,10 @@ export function workerSlot(options: SlotOptions, onFree: () => void): Slot {
   function settle(reply: Reply): void {
     if (reply.kind === 'loaded') {
       isLoaded = true
+      return
+    }
+    if (reply.kind === 'progress') {
+      current?.task.told?.(reply.progress)
       return
     }
     const task = take()

@@ -22,10 +22,12 @@ const PRICE_EVERY_M = 10_000
  *
  * @throws InputError when the documents do not fit together: field, value and what was expected
  */
-export function planDocuments(request: PlanRequest): PlanDocument {
+export function planDocuments(request: PlanRequest, tell: Tell = () => {}): PlanDocument {
+  tell({ step: 'Laying out the day', share: 0 })
   const { days, assumptions } = drivenRace({ ...request, speeds: QUICK }, (day) => day)
   const day = days[0]
-  const targetCharge = request.targetPct === undefined ? (day.targetCharge ?? day.race.car.reserveCharge) : request.targetPct / 100
+  const targetCharge =
+    request.targetPct === undefined ? (day.targetCharge ?? day.race.car.reserveCharge) : request.targetPct / 100
   const head = {
     engineVersion: ENGINE_VERSION,
     race: request.race.name,
@@ -36,10 +38,15 @@ export function planDocuments(request: PlanRequest): PlanDocument {
     target: { wh: storedJ(day.race.car.pack, targetCharge) * WH, chargePct: targetCharge * 100 },
   }
   const task = { race: day.race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }
+  tell({ step: 'Looking for the best speeds', share: 0.1 })
   const plan = planDay(task)
   if (plan === null) return { ...head, ...notPlanned(day, targetCharge) }
+  tell({ step: 'Drawing days that differ', share: 0.6 })
   return { ...head, ...planned(request, day, plan, targetCharge) }
 }
+
+/** Is told how far the work is. */
+type Tell = (progress: { step: string; share: number }) => void
 
 /** A speed to lay the day out with before it is planned. */
 const QUICK = { kind: 'constant' as const, speedKmh: 70 }
@@ -56,7 +63,12 @@ const NOTHING = {
   impossible: null,
 }
 
-function planned(request: PlanRequest, day: DrivenDay, plan: DayPlan, targetCharge: number): Omit<PlanDocument, keyof Head> {
+function planned(
+  request: PlanRequest,
+  day: DrivenDay,
+  plan: DayPlan,
+  targetCharge: number,
+): Omit<PlanDocument, keyof Head> {
   const { best, forPeople } = plan
   const bestMs = best.verdict.arrivalMs
   const withinMin = Math.max(bestMs - plan.boundMs, 0) / MIN_MS
@@ -66,7 +78,10 @@ function planned(request: PlanRequest, day: DrivenDay, plan: DayPlan, targetChar
     ...NOTHING,
     outcome: {
       kind: 'planned',
-      text: `${finishName(day)} is reached ${clock(bestMs, day.zone)} at the earliest, and no plan can be more than ${Math.max(Math.ceil(withinMin * 60), 1)} s earlier.`.replace('The last stop', place),
+      text: `${finishName(day)} is reached ${clock(bestMs, day.zone)} at the earliest, and no plan can be more than ${Math.max(Math.ceil(withinMin * 60), 1)} s earlier.`.replace(
+        'The last stop',
+        place,
+      ),
     },
     best: { speeds: bestSpeeds(day, plan), ...figures(day, best) },
     forPeople: {
@@ -93,7 +108,8 @@ type Head = Pick<PlanDocument, 'engineVersion' | 'race' | 'car' | 'date' | 'zone
 
 const LIMIT_LABELS = { limits: 'Speed limits', reserve: 'Reserve on the way', target: 'Charge wanted at the close' }
 
-const finishName = (day: DrivenDay): string => day.race.stages[day.race.days[day.dayIndex].lastStage]?.finish ?? 'The end'
+const finishName = (day: DrivenDay): string =>
+  day.race.stages[day.race.days[day.dayIndex].lastStage]?.finish ?? 'The end'
 
 /** The day with another forecast of it. */
 const asDay = (day: DrivenDay, judged: Judged, targetCharge: number): DrivenDay => ({
@@ -156,8 +172,7 @@ function pricesOf(day: DrivenDay, { sPerJ, reach }: DayPlan): PlanDocument['pric
 /** Why no speeds keep what is wanted, in words. */
 function notPlanned(day: DrivenDay, targetCharge: number): Omit<PlanDocument, keyof Head> {
   const found = someTables({ race: day.race, dayIndex: day.dayIndex, opening: day.opening, targetCharge })
-  if (found === null)
-    return { ...NOTHING, outcome: { kind: 'parked', text: 'The car is not driven on this day.' } }
+  if (found === null) return { ...NOTHING, outcome: { kind: 'parked', text: 'The car is not driven on this day.' } }
   const { tables, reach } = found
   const why = whyImpossible(tables)
   const { pack } = day.race.car
@@ -168,13 +183,25 @@ function notPlanned(day: DrivenDay, targetCharge: number): Omit<PlanDocument, ke
   const nearest = [
     ...(Number.isNaN(why.mostAtCloseJ)
       ? []
-      : [{ what: 'target' as const, value: mostPct, text: `Close with ${Math.floor(mostPct)} % instead of ${Math.round(targetCharge * 100)} %.` }]),
+      : [
+          {
+            what: 'target' as const,
+            value: mostPct,
+            text: `Close with ${Math.floor(mostPct)} % instead of ${Math.round(targetCharge * 100)} %.`,
+          },
+        ]),
     ...(Number.isNaN(why.floorJ)
       ? []
       : [{ what: 'reserve' as const, value: floorPct, text: `Lower the reserve to ${Math.floor(floorPct)} %.` }]),
     ...(Number.isNaN(why.laterS)
       ? []
-      : [{ what: 'later' as const, value: laterMin, text: `Drive ${Math.ceil(laterMin)} min longer, if the event allows it.` }]),
+      : [
+          {
+            what: 'later' as const,
+            value: laterMin,
+            text: `Drive ${Math.ceil(laterMin)} min longer, if the event allows it.`,
+          },
+        ]),
   ]
   return {
     ...NOTHING,
@@ -203,4 +230,3 @@ function sentence(
     return `${name} cannot be reached by ${endsAt} with the reserve untouched: the car comes to km ${of.reachedKm.toFixed(0)}.`
   return `${name} cannot be reached by ${endsAt}: the sun and the pack bring the car to km ${of.reachedKm.toFixed(0)}.`
 }
-

@@ -30,7 +30,11 @@ const LABELS: Record<Cause, string> = {
 }
 
 /** Ranges of the plan for people, and a plan that seldom touches the reserve. */
-export function planRanges(request: PlanRequest, day: DrivenDay, plan: DayPlan): Pick<PlanDocument, 'ranges' | 'steady'> {
+export function planRanges(
+  request: PlanRequest,
+  day: DrivenDay,
+  plan: DayPlan,
+): Pick<PlanDocument, 'ranges' | 'steady'> {
   const { tables, reach, forPeople, best } = plan
   const { race, dayIndex } = day
   const path = daySun(race.days[dayIndex])
@@ -40,7 +44,11 @@ export function planRanges(request: PlanRequest, day: DrivenDay, plan: DayPlan):
   const held = (speedMps: Float64Array): Float64Array =>
     tables.fastestMps.map((fastest, i) => Math.min(speedMps[reach.first + i], fastest))
   const lay = (speedMps: Float64Array) =>
-    courseOf(tables, { speedMps, waitS }, { clearW, perHeadwind: loadPerHeadwind(race, best.forecast, reach, speedMps), spreads })
+    courseOf(
+      tables,
+      { speedMps, waitS },
+      { clearW, perHeadwind: loadPerHeadwind(race, best.forecast, reach, speedMps), spreads },
+    )
   const course = lay(held(forPeople.speedMps))
   const drawn = members(course, spreads, request.members, request.seed)
   const touch = touching(drawn)
@@ -49,7 +57,11 @@ export function planRanges(request: PlanRequest, day: DrivenDay, plan: DayPlan):
   const closing = rangeOf(drawn.duskJ)
   const planned = forPeople.forecast.closingJ
   const lateS = rangeOf(drawn.duskJ.map((J) => (planned - J) * price))
-  const wh = ({ p10, p50, p90 }: { p10: number; p50: number; p90: number }) => ({ p10: p10 * WH, p50: p50 * WH, p90: p90 * WH })
+  const wh = ({ p10, p50, p90 }: { p10: number; p50: number; p90: number }) => ({
+    p10: p10 * WH,
+    p50: p50 * WH,
+    p90: p90 * WH,
+  })
   const ranges = {
     members: request.members,
     seed: request.seed,
@@ -116,7 +128,10 @@ const edgeM = (day: DrivenDay, piece: number): number => {
 const edgeKm = (day: DrivenDay, piece: number): number => Math.max(dayKm(day, edgeM(day, piece)), 0)
 
 /** Edges at which the battery is compared: every stop, every 25 km and the end, with what the plan for people has there. */
-function gatesOf(day: DrivenDay, { reach, tables, forPeople }: DayPlan): { edge: number; atMs: number; plannedJ: number }[] {
+function gatesOf(
+  day: DrivenDay,
+  { reach, tables, forPeople }: DayPlan,
+): { edge: number; atMs: number; plannedJ: number }[] {
   const { steps, balance } = forPeople.forecast
   const stops = new Set(tables.stops.map(({ beforePiece }) => beforePiece))
   const gates: { edge: number; atMs: number; plannedJ: number }[] = []

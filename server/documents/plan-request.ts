@@ -5,8 +5,14 @@ import { count, date, quantity } from './quantity.ts'
 /** Standard deviations of what may differ from the forecast; what is left out is assumed. */
 export const spreadsDocument = z
   .strictObject({
-    sunDayPct: quantity(0, 50, 'of a factor on the sun that holds all day: haze, a forecast that is off [%]').default(3),
-    sunWanderPct: quantity(0, 100, 'of a factor on the sun that wanders: clouds; left out: by the sky’s lead time and clearness [%]').optional(),
+    sunDayPct: quantity(0, 50, 'of a factor on the sun that holds all day: haze, a forecast that is off [%]').default(
+      3,
+    ),
+    sunWanderPct: quantity(
+      0,
+      100,
+      'of a factor on the sun that wanders: clouds; left out: by the sky’s lead time and clearness [%]',
+    ).optional(),
     wanderMin: quantity(5, 1440, 'time over which that factor forgets [min]').default(90),
     wanderKm: quantity(1, 2000, 'way over which it forgets [km]').default(150),
     headwindMps: quantity(0, 10, 'of the headwind at the car, all day [m/s]').default(0.8),

@@ -85,10 +85,21 @@ export const planDocument = z
       })
       .nullable(),
     prices: z
-      .array(z.strictObject({ km: km('where'), sPerWh: z.number().describe('time that a watt-hour more there saves [s/Wh]') }))
+      .array(
+        z.strictObject({
+          km: km('where'),
+          sPerWh: z.number().describe('time that a watt-hour more there saves [s/Wh]'),
+        }),
+      )
       .describe('price of energy along the road'),
     limits: z
-      .array(z.strictObject({ what: z.enum(['limits', 'reserve', 'target']), label: z.string(), costMin: min('earlier without it') }))
+      .array(
+        z.strictObject({
+          what: z.enum(['limits', 'reserve', 'target']),
+          label: z.string(),
+          costMin: min('earlier without it'),
+        }),
+      )
       .describe('what each want costs: how much earlier the best plan would arrive without it'),
     ranges: ranges.nullable(),
     steady: z
@@ -108,7 +119,9 @@ export const planDocument = z
         mostAtCloseWh: wh('most that the day can close with').nullable(),
         nearest: z
           .array(z.strictObject({ what: z.enum(['target', 'reserve', 'later']), text: z.string(), value: z.number() }))
-          .describe('what would have to give, one at a time: target or reserve [% of charge], later end of driving [min]'),
+          .describe(
+            'what would have to give, one at a time: target or reserve [% of charge], later end of driving [min]',
+          ),
       })
       .nullable(),
   })

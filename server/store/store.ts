@@ -6,12 +6,14 @@ import { type ForecastStore, forecastStore } from './forecast-store.ts'
 import type { Sql } from './guarded-sql.ts'
 import { type LinkStore, linkStore } from './link-store.ts'
 import { type MoveStore, moveStore } from './move-store.ts'
+import { type PlanStore, planStore } from './plan-store.ts'
 import { type ReadingStore, readingStore } from './reading-store.ts'
 import { type SessionStore, sessionStore } from './session-store.ts'
 
 export interface Store {
   documents: DocumentStore
   forecasts: ForecastStore
+  plans: PlanStore
   choices: ChoiceStore
   readings: ReadingStore
   beliefs: BeliefStore
@@ -29,6 +31,7 @@ export interface Store {
 export const store = (sql: Sql): Store => ({
   documents: documentStore(sql),
   forecasts: forecastStore(sql),
+  plans: planStore(sql),
   choices: choiceStore(sql),
   readings: readingStore(sql),
   beliefs: beliefStore(sql),

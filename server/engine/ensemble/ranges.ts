@@ -45,7 +45,10 @@ export function touching(of: Members): { share: number; edge: number } {
 export function sharesOfSpread(course: Course, spreads: Spreads, count: number, seed: number): Record<Cause, number> {
   const alone = CAUSES.map((cause) => variance(members(course, spreads, count, seed, cause).duskJ))
   const total = alone.reduce((sum, value) => sum + value, 0)
-  return Object.fromEntries(CAUSES.map((cause, c) => [cause, total > 0 ? alone[c] / total : 0])) as Record<Cause, number>
+  return Object.fromEntries(CAUSES.map((cause, c) => [cause, total > 0 ? alone[c] / total : 0])) as Record<
+    Cause,
+    number
+  >
 }
 
 function variance(values: Float64Array): number {

@@ -66,7 +66,8 @@ function marginsFor(of: Members, plannedJ: Float64Array, pieces: number, promise
     for (let m = 0; m < of.count; m++) column[m] = of.energyJ[m * edges + i] - plannedJ[i]
     return column.sort()
   })
-  const at = (share: number): Float64Array => Float64Array.from(sorted, (column) => Math.max(-quantile(column, share), 0))
+  const at = (share: number): Float64Array =>
+    Float64Array.from(sorted, (column) => Math.max(-quantile(column, share), 0))
   let low = 0
   let high = promise
   let margins = at(low)

@@ -64,7 +64,11 @@ export function tablesAlong(along: Along, reach: Reach): DayTables {
   const placeM = base.timetable.spans[0]?.fromM ?? 0
   const lengthM = course.pieces.lengthM.slice(reach.first, reach.first + reach.count)
   if (reach.count > 0) lengthM[0] = course.pieces.fromM[reach.first] + lengthM[0] - placeM
-  const speeds = { from: SLOWEST_MPS, step: SPEED_STEP_MPS, count: Math.ceil((FASTEST_MPS - SLOWEST_MPS) / SPEED_STEP_MPS) + 1 }
+  const speeds = {
+    from: SLOWEST_MPS,
+    step: SPEED_STEP_MPS,
+    count: Math.ceil((FASTEST_MPS - SLOWEST_MPS) / SPEED_STEP_MPS) + 1,
+  }
   return {
     pieces: reach.count,
     lengthM,

@@ -212,7 +212,12 @@ function alongPiece(day: DayTables, found: Frontier, layer: number, stepMps: num
   const load: Load = { W: 0, slope: 0 }
   for (const speedMps of triedSpeeds(day, piece, stepMps)) {
     const durationS = pieceS(day, piece, speedMps)
-    shiftedBy(day, found, layer, { durationS, loadW: loadAt(day, piece, speedMps, load).W, extraJ: day.extraJ[piece], sunW })
+    shiftedBy(day, found, layer, {
+      durationS,
+      loadW: loadAt(day, piece, speedMps, load).W,
+      extraJ: day.extraJ[piece],
+      sunW,
+    })
   }
   fanFromKnot(day, found, layer)
   const row = (layer + 1) * bins
@@ -326,7 +331,12 @@ function nextKnot(day: DayTables, found: Frontier, layer: number): void {
 const GOLDEN = (Math.sqrt(5) - 1) / 2
 
 /** The speed over a piece with which most energy is left at an instant behind it, and that energy. */
-export function bestArrival(day: DayTables, found: Frontier, layer: number, atS: number): { J: number; speedMps: number } {
+export function bestArrival(
+  day: DayTables,
+  found: Frontier,
+  layer: number,
+  atS: number,
+): { J: number; speedMps: number } {
   const { piece } = found.legs[layer]
   const fastest = day.fastestMps[piece]
   const slowest = Math.min(day.slowestMps, fastest)

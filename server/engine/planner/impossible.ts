@@ -26,7 +26,10 @@ const ends = (day: DayTables): { found: Frontier; endS: number } => {
   return { found, endS: earliestEnd(day, found) }
 }
 const isFinite = (s: number): boolean => s < Number.POSITIVE_INFINITY
-const withFloor = (day: DayTables, J: number): DayTables => ({ ...day, floorJ: new Float64Array(day.pieces + 1).fill(J) })
+const withFloor = (day: DayTables, J: number): DayTables => ({
+  ...day,
+  floorJ: new Float64Array(day.pieces + 1).fill(J),
+})
 
 /**
  * What stands in the way of a day that no drive through its tables can keep.

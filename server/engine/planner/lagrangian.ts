@@ -123,7 +123,10 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
       const sunSlope = rowSlopeAt(day.harvestW, i * clock.count, clock, middleS)
       if (isFull.piece[i] === 1) p = 0
       const worth = p * storedSlope(pack, netW)
-      slope[i] += q + p * storedW(pack, netW) + worth * timeS[i] * (0.5 * sunSlope + (load.slope * speedMps * speedMps) / day.lengthM[i])
+      slope[i] +=
+        q +
+        p * storedW(pack, netW) +
+        worth * timeS[i] * (0.5 * sunSlope + (load.slope * speedMps * speedMps) / day.lengthM[i])
       q += worth * sunSlope * timeS[i]
       if (day.kinetic.massKg > 0) addMotion(day, sweep, slope, i, p)
     }

@@ -8,7 +8,10 @@ import type { Reach } from './engine-tables.ts'
 import { sunPowerW } from './sun-power.ts'
 
 /** What the sky could be at most: the same air without clouds. */
-const cleared = (sky: Sky): Sky => ({ ...sky, places: sky.places.map((place) => ({ ...place, light: { kind: 'clear' } })) })
+const cleared = (sky: Sky): Sky => ({
+  ...sky,
+  places: sky.places.map((place) => ({ ...place, light: { kind: 'clear' } })),
+})
 
 /**
  * What the sun would bring under a clear sky as a forecast passes each piece.

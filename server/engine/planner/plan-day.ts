@@ -130,7 +130,10 @@ function settleDown(
   let best: Judged | null = before === null ? null : start
   for (let round = 0; round < rounds; round++) {
     const { tables, heldMps } = settledTables(day, now)
-    refined = refined === null ? fromFrontier(tables) : refine(tables, { speedMps: heldMps, waitS: noWaits(day.reach) }, refined.multiplier)
+    refined =
+      refined === null
+        ? fromFrontier(tables)
+        : refine(tables, { speedMps: heldMps, waitS: noWaits(day.reach) }, refined.multiplier)
     if (refined === null) return null
     const wayOn = round < WHOLE_ROUNDS ? 1 : 0.5
     const speedMps = refined.drive.speedMps.map((v, i) => heldMps[i] + wayOn * (v - heldMps[i]))
@@ -194,7 +197,12 @@ function peoplePlan(day: DayAtWork, best: Judged): DayPlan['forPeople'] {
 }
 
 /** Tables of a day along a forecast at an ordinary speed; null where the day drives nothing. */
-export function someTables({ race, dayIndex, opening, targetCharge }: DayTask): { tables: DayTables; reach: Reach } | null {
+export function someTables({
+  race,
+  dayIndex,
+  opening,
+  targetCharge,
+}: DayTask): { tables: DayTables; reach: Reach } | null {
   const path = planSun(race.days[dayIndex])
   const speedMps = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
   const base = forecastDay(race, dayIndex, opening, speedMps, path)

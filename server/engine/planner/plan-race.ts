@@ -93,7 +93,13 @@ function dayTimes(cost: DayCost | null, openJ: number, closeJs: number[]): numbe
 type Times = (d: number, openJ: number, closeJs: number[]) => number[]
 
 /** Energies at the opening and at each close with the least sum of times over the grids of the days. */
-function leastPath(first: number, last: number, openJ: number, wanted: (d: number) => number[], times: Times): number[] {
+function leastPath(
+  first: number,
+  last: number,
+  openJ: number,
+  wanted: (d: number) => number[],
+  times: Times,
+): number[] {
   let ends: { J: number; totalS: number; path: number[] }[] = [{ J: openJ, totalS: 0, path: [openJ] }]
   for (let d = first; d <= last; d++) {
     const closes = wanted(d)
@@ -108,7 +114,9 @@ function leastPath(first: number, last: number, openJ: number, wanted: (d: numbe
     ends = next
   }
   const best = ends.reduce((a, b) => (b.totalS < a.totalS ? b : a))
-  return best.path.length > 0 ? best.path : [openJ, ...Array.from({ length: last - first + 1 }, (_, i) => wanted(first + i)[0])]
+  return best.path.length > 0
+    ? best.path
+    : [openJ, ...Array.from({ length: last - first + 1 }, (_, i) => wanted(first + i)[0])]
 }
 
 /** Moves each free closing energy to the lowest point of a parabola through itself and its neighbours. */

@@ -21,14 +21,22 @@ const MOST_MOVES = 400
  * @param stageEnds  pieces at which a section must end, ascending; the last is the day's end
  * @param bestMps    the best speeds. [Mps] (pieces)
  */
-export function sectionsFor(day: DayTables, stageEnds: number[], bestMps: Float64Array, waitS: Float64Array): Section[] {
+export function sectionsFor(
+  day: DayTables,
+  stageEnds: number[],
+  bestMps: Float64Array,
+  waitS: Float64Array,
+): Section[] {
   const sections = cut(day, stageEnds).map((one) => ({ ...one, speedKmh: Math.round(paceKmh(day, one, bestMps)) }))
   const trackOf = () => simulate(day, driveOf(day, sections, waitS))
   let now = trackOf()
   for (let move = 0; move < MOST_MOVES && now.shortJ > 0; move++) {
     const slower = best(sections, -1, (before) => {
       const after = trackOf()
-      return { worth: (now.shortJ - after.shortJ) / Math.max(endOf(after) - endOf(now), 1e-3), isOpen: after.shortJ < now.shortJ && before > 5 }
+      return {
+        worth: (now.shortJ - after.shortJ) / Math.max(endOf(after) - endOf(now), 1e-3),
+        isOpen: after.shortJ < now.shortJ && before > 5,
+      }
     })
     if (slower === null) break
     slower.speedKmh--

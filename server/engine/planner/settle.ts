@@ -22,7 +22,10 @@ export function settle(tables: DayTables, along: Along, reach: Reach, base: DayF
   const { opensMs } = along.race.days[along.dayIndex]
   drivenOf(base, reach, opensMs).forEach((driven, i) => {
     if (driven?.isWhole !== true) return
-    tables.extraS[i] = Math.max(driven.durationS - tables.lengthM[i] / speedMps[i], -0.4 * tables.lengthM[i] / speedMps[i])
+    tables.extraS[i] = Math.max(
+      driven.durationS - tables.lengthM[i] / speedMps[i],
+      (-0.4 * tables.lengthM[i]) / speedMps[i],
+    )
     const timeS = pieceS(tables, i, speedMps[i])
     const sunW = rowAt(tables.harvestW, i * tables.clock.count, tables.clock, driven.fromS + timeS / 2)
     const { W } = loadAt(tables, i, speedMps[i], { W: 0, slope: 0 })
@@ -35,7 +38,8 @@ export function settle(tables: DayTables, along: Along, reach: Reach, base: DayF
   const lastStep = base.steps.span.lastIndexOf(last)
   const arrivedS = (base.steps.toMs[lastStep] - opensMs) / 1000
   const gainedJ = base.balance.storedJ[end] - base.balance.storedJ[lastStep]
-  if (base.balance.charge[end] < 1) shift(tables.duskGainJ, gainedJ - rowAt(tables.duskGainJ, 0, tables.clock, arrivedS))
+  if (base.balance.charge[end] < 1)
+    shift(tables.duskGainJ, gainedJ - rowAt(tables.duskGainJ, 0, tables.clock, arrivedS))
 }
 
 function shift(row: Float64Array, by: number): void {
@@ -51,7 +55,12 @@ function drivenOf(base: DayForecast, reach: Reach, opensMs: number): (Driven | u
     const piece = steps.piece[i] - reach.first
     if (piece < 0 || piece >= reach.count) continue
     const endM = pieces.fromM[steps.piece[i]] + pieces.lengthM[steps.piece[i]]
-    const driven = (all[piece] ??= { fromS: (steps.fromMs[i] - opensMs) / 1000, durationS: 0, storedJ: 0, isWhole: false })
+    const driven = (all[piece] ??= {
+      fromS: (steps.fromMs[i] - opensMs) / 1000,
+      durationS: 0,
+      storedJ: 0,
+      isWhole: false,
+    })
     driven.durationS += (steps.toMs[i] - steps.fromMs[i]) / 1000
     driven.storedJ += balance.storedJ[i] - (i > 0 ? balance.storedJ[i - 1] : openingJ)
     driven.isWhole = steps.toM[i] >= endM - 0.01
@@ -65,7 +74,9 @@ function settleStands(tables: DayTables, base: DayForecast, reach: Reach, opensM
     if (span.kind !== 'stop') return
     const first = steps.span.indexOf(index)
     if (first <= 0) return
-    const stop = tables.stops.find(({ beforePiece }) => beforePiece === base.road.course.stages[span.stage].endPiece - reach.first)
+    const stop = tables.stops.find(
+      ({ beforePiece }) => beforePiece === base.road.course.stages[span.stage].endPiece - reach.first,
+    )
     const last = steps.span.lastIndexOf(index)
     if (stop === undefined || balance.charge[last] >= 1) return
     const gainedJ = balance.storedJ[last] - balance.storedJ[first - 1]

@@ -69,7 +69,13 @@ export function simulate(day: DayTables, drive: Drive): Track {
     if (i === pieces) break
     const durationS = pieceS(day, i, drive.speedMps[i])
     const sunW = rowAt(day.harvestW, i * clock.count, clock, t + durationS / 2)
-    E = Math.min(pack.ceilingJ, E + storedW(pack, sunW - loadAt(day, i, drive.speedMps[i], load).W) * durationS - day.extraJ[i] - motionJ(day, drive.speedMps, i))
+    E = Math.min(
+      pack.ceilingJ,
+      E +
+        storedW(pack, sunW - loadAt(day, i, drive.speedMps[i], load).W) * durationS -
+        day.extraJ[i] -
+        motionJ(day, drive.speedMps, i),
+    )
     t += durationS
   }
   const duskJ = Math.min(pack.ceilingJ, E + rowAt(day.duskGainJ, 0, clock, t))

@@ -77,7 +77,12 @@ function between(sum: Float64Array, clock: Axis, fromS: number, toS: number): nu
 }
 
 /** What a stand of the car stores: flat while it is raised and lowered, lifted in between. [J] */
-function liftedJ(sun: ParkedSun, fromS: number, toS: number, by: { lifts: boolean; raiseS: number; lowerS: number }): number {
+function liftedJ(
+  sun: ParkedSun,
+  fromS: number,
+  toS: number,
+  by: { lifts: boolean; raiseS: number; lowerS: number },
+): number {
   const upS = fromS + by.raiseS
   const downS = toS - by.lowerS
   if (!by.lifts || downS <= upS) return between(sun.flatJ, sun.clock, fromS, toS)

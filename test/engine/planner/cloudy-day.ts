@@ -63,7 +63,11 @@ export function carLoadW(speedMps: number, grade: number, headwindMps: number): 
 /** A day as tables. */
 export function dayOf(parts: DayParts): DayTables {
   const pieces = Math.round(parts.lengthKm)
-  const clock = { from: STARTS_S, step: parts.clockStepS, count: Math.round((DUSK_S - STARTS_S) / parts.clockStepS) + 1 }
+  const clock = {
+    from: STARTS_S,
+    step: parts.clockStepS,
+    count: Math.round((DUSK_S - STARTS_S) / parts.clockStepS) + 1,
+  }
   const speeds = { from: 20 / 3.6, step: 2 / 3.6, count: 56 }
   const at = (k: number): number => clock.from + k * clock.step
   const sunW = (m: number, s: number): number =>

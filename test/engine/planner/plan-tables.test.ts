@@ -44,7 +44,8 @@ describe('the planner on flat road under constant sun', () => {
     expect(Math.max(...speeds) * 3.6 - mean).toBeLessThan(0.05)
     expect(mean - Math.min(...speeds) * 3.6).toBeLessThan(0.05)
     // By hand: (30 + (F0 + b v²) v/0.96 − 800 W) × 500 km / v = 2,500 Wh, with F0 = 250·9.80665·0.0035 N, b = ½·1.17·0.1.
-    const drawnWh = (v: number) => ((30 + ((250 * 9.80665 * 0.0035 + 0.0585 * v * v) * v) / 0.96 - 800) * (500_000 / v)) / 3600
+    const drawnWh = (v: number) =>
+      ((30 + ((250 * 9.80665 * 0.0035 + 0.0585 * v * v) * v) / 0.96 - 800) * (500_000 / v)) / 3600
     let [low, high] = [10, 30]
     for (let i = 0; i < 60; i++) {
       const v = (low + high) / 2

@@ -1,0 +1,41 @@
+import { planDocuments } from '../documents/plan-day.ts'
+import { planRequest } from '../documents/plan-request.ts'
+import { InputError } from '../engine/input-error.ts'
+import { Fault } from '../errors.ts'
+import { fingerprint } from './fingerprint.ts'
+import { readOpenRequest, openRequest } from './forecast-jobs.ts'
+import { checked } from './read-json.ts'
+import type { Progress } from './serve-jobs.ts'
+
+/** One hash over the content of everything that a plan is made from. */
+export const planHash = (input: Record<string, unknown>): string => fingerprint(input)
+
+/** A plan request whose documents stand in it or are named by their ids. */
+export const openPlanRequest = openRequest
+  .omit({ speeds: true })
+  .extend(
+    planRequest.pick({ date: true, targetPct: true, spreads: true, promisePct: true, members: true, seed: true }).shape,
+  )
+  .meta({ title: 'Open plan request' })
+
+/** The plan request in a body, checked: documents that it only names are left as `{ id }`, what is wanted stands apart. */
+export function readPlanRequest(input: { bytes: Uint8Array }) {
+  const { car, race, sky, routes, date, ...wanted } = readOpenRequest(openPlanRequest, input.bytes, 'plan request')
+  return { car, race, sky, routes, date, wanted }
+}
+
+/**
+ * The plan of whole documents, as JSON.
+ *
+ * @throws Fault 'invalid-document', or 'cannot-forecast' where the documents do not fit together
+ */
+export function planJson(input: unknown, tell?: (progress: Progress) => void): string {
+  const request = checked(planRequest, input, 'plan request')
+  try {
+    return JSON.stringify(planDocuments(request, tell))
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error
+    const { field, detail } = error
+    throw new Fault('cannot-forecast', `${field}: ${detail}.`, { errors: [{ field, detail }] })
+  }
+}

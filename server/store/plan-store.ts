@@ -1,0 +1,104 @@
+import type { Fragment, Sql } from './guarded-sql.ts'
+import { isUuid, json, saving, utc } from './storable.ts'
+
+/** What a plan is made from. The id follows from all of it, so that the same question is one plan. */
+export interface NewPlan {
+  id: string
+  raceId: string
+  /** YYYY-MM-DD */
+  date: string
+  carId: string
+  skyId: string
+  /** Target, spreads and the like, as they were asked for. */
+  wanted: unknown
+  inputsHash: string
+  engineVersion: string
+}
+
+export type PlanState = 'working' | 'done' | 'failed' | 'cancelled'
+
+/** A plan without its body; instants are ISO 8601 in UTC. */
+export interface PlanEntry extends NewPlan {
+  state: PlanState
+  startedAt: string
+  endedAt: string | null
+  /** Why it failed: a code and a sentence. */
+  fault: { code: string; detail: string } | null
+}
+
+export interface StoredPlan extends PlanEntry {
+  plan: unknown
+}
+
+export interface PlanStore {
+  /** Marks a plan as being worked on. @returns false where it is done, or another works on it */
+  begin(plan: NewPlan): Promise<boolean>
+  /** Keeps the result, unless the plan was cancelled meanwhile. @returns whether it was kept */
+  finish(id: string, plan: unknown): Promise<boolean>
+  fail(id: string, fault: { code: string; detail: string }): Promise<void>
+  /** @returns whether it was being worked on */
+  cancel(id: string): Promise<boolean>
+  get(id: string): Promise<StoredPlan | null>
+  /** The race's last 50, newest first. */
+  list(raceId: string): Promise<PlanEntry[]>
+}
+
+/** Plans as they were worked out, never changed once done. */
+export function planStore(sql: Sql): PlanStore {
+  const entry = (): Fragment => sql`
+    id, race_id as "raceId", to_char(date, 'YYYY-MM-DD') as date, car_id as "carId", sky_id as "skyId", wanted,
+    inputs_hash as "inputsHash", engine_version as "engineVersion", state, fault,
+    ${utc(sql, 'started_at')} as "startedAt", ${utc(sql, 'ended_at')} as "endedAt"`
+
+  return {
+    async begin(plan) {
+      const rows = await saving(
+        { ...plan },
+        () => sql<{ id: string }[]>`
+        insert into plans (id, race_id, date, car_id, sky_id, wanted, inputs_hash, engine_version, state)
+        values (
+          ${plan.id}, ${plan.raceId}, ${plan.date}, ${plan.carId}, ${plan.skyId},
+          ${json(sql, 'wanted', plan.wanted)}, ${plan.inputsHash}, ${plan.engineVersion}, 'working'
+        )
+        on conflict (id) do update set state = 'working', started_at = clock_timestamp(), ended_at = null, fault = null
+        where plans.state in ('failed', 'cancelled')
+          or (plans.state = 'working' and plans.started_at < clock_timestamp() - interval '5 minutes')
+        returning id`,
+      )
+      return rows.length > 0
+    },
+
+    async finish(id, plan) {
+      const rows = await sql<{ id: string }[]>`
+        update plans set state = 'done', ended_at = clock_timestamp(), plan = ${json(sql, 'plan', plan)}
+        where id = ${id} and state = 'working' returning id`
+      return rows.length > 0
+    },
+
+    async fail(id, fault) {
+      await sql`
+        update plans set state = 'failed', ended_at = clock_timestamp(), fault = ${json(sql, 'fault', fault)}
+        where id = ${id} and state = 'working'`
+    },
+
+    async cancel(id) {
+      if (!isUuid(id)) return false
+      const rows = await sql<{ id: string }[]>`
+        update plans set state = 'cancelled', ended_at = clock_timestamp()
+        where id = ${id} and state = 'working' returning id`
+      return rows.length > 0
+    },
+
+    async get(id) {
+      if (!isUuid(id)) return null
+      const rows = await sql<StoredPlan[]>`select ${entry()}, plan from plans where id = ${id}`
+      return rows[0] ?? null
+    },
+
+    async list(raceId) {
+      const rows = await sql<PlanEntry[]>`
+        select ${entry()} from plans where race_id = ${raceId} order by save_number desc limit 50`
+      return rows
+    },
+  }
+}

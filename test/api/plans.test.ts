@@ -1,0 +1,89 @@
+import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { EXAMPLES } from '../../server/api/examples/all.ts'
+import { saving, type Service, startService } from './service.ts'
+
+let service: Service
+beforeAll(async () => {
+  service = await startService()
+  await service.ask(saving('car', 'weaver-2'))
+  await service.ask(saving('route', 'saltpan-twin-wells'))
+  await service.ask(saving('sky', 'friday'))
+  await service.ask(saving('race', 'plateau'))
+})
+afterAll(() => service.close())
+
+const post = (url: string, body: object) =>
+  service.ask({ method: 'POST', url, headers: { 'content-type': 'application/json' }, payload: JSON.stringify(body) })
+const order = (body: object) => post('/api/v1/races/plateau/plans', body)
+const wanted = { carId: 'weaver-2', skyId: 'friday', date: '2026-10-17', members: 200 }
+
+/** The plan once it is no longer worked on. */
+async function settled(id: string) {
+  for (;;) {
+    const plan = (await service.ask({ method: 'GET', url: `/api/v1/plans/${id}` })).json()
+    if (plan.state !== 'working') return plan
+    await new Promise((done) => setTimeout(done, 50))
+  }
+}
+
+describe('a plan of stored documents', () => {
+  test('is worked out in the background and kept; the same order is the same plan', async () => {
+    const first = await order(wanted)
+    expect(first.statusCode).toBe(202)
+    const { id } = first.json()
+    expect(first.headers.location).toBe(`/api/v1/plans/${id}`)
+    const plan = await settled(id)
+    expect(plan).toMatchObject({ id, state: 'done', fault: null, raceId: 'plateau', date: '2026-10-17' })
+    const again = await order(wanted)
+    expect(again.statusCode).toBe(200)
+    expect(again.json().id).toBe(id)
+    expect(again.json().plan).toEqual(plan.plan)
+    const listed = (await service.ask({ method: 'GET', url: '/api/v1/races/plateau/plans' })).json()
+    expect(listed.items.map((one: { id: string }) => one.id)).toContain(id)
+  })
+
+  test('forecast anew at its speeds gives the same balance and arrival', async () => {
+    const { id } = (await order(wanted)).json()
+    const { plan } = await settled(id)
+    for (const choice of [plan.best, plan.forPeople]) {
+      const { speeds } = choice
+      const made = (
+        await post('/api/v1/races/plateau/forecasts', { carId: 'weaver-2', skyId: 'friday', speeds, date: wanted.date })
+      ).json()
+      const [day] = made.budget.days
+      expect(Math.abs(day.closing.wh - choice.closingWh)).toBeLessThan(1)
+      const arrival = day.stages[day.stages.length - 1].arriveAt
+      expect(Math.abs(Date.parse(arrival) - Date.parse(choice.arriveAt))).toBeLessThanOrEqual(1000)
+    }
+  })
+
+  test('says in words what stands in the way of a target that cannot be met', async () => {
+    const { id } = (await order({ ...wanted, targetPct: 100 })).json()
+    const { plan } = await settled(id)
+    expect(plan.outcome.kind).toBe('impossible')
+    expect(plan.outcome.text).toMatch(/at most/)
+    expect(plan.impossible.nearest.map((one: { what: string }) => one.what)).toContain('target')
+  })
+
+  test('can be taken back while it is worked on, and ordered again', async () => {
+    const { id } = (await order({ ...wanted, seed: 99 })).json()
+    const answer = await service.ask({ method: 'DELETE', url: `/api/v1/plans/${id}` })
+    expect(answer.statusCode).toBe(200)
+    expect(answer.json().state).toBe('cancelled')
+    expect((await order({ ...wanted, seed: 99 })).json().state).toBe('working')
+    expect((await settled(id)).state).toBe('done')
+  })
+
+  test('refuses a day that the race does not have', async () => {
+    expect((await order({ ...wanted, date: '2026-12-01' })).json().code).toBe('no-such-day')
+  })
+})
+
+describe('a plan of whole documents', () => {
+  test('needs nothing saved', async () => {
+    const { speeds: _speeds, ...request } = EXAMPLES['forecast-request'].document as { speeds: unknown }
+    const answer = await post('/api/v1/plan', { ...request, date: '2026-10-17', members: 100 })
+    expect(answer.statusCode).toBe(200)
+    expect(answer.json().outcome.kind).toBe('planned')
+  })
+})
