@@ -114,7 +114,7 @@ export function planRoutes(api: Api, needs: Needs, desk: PlanDesk): void {
       race.version,
       car.version,
       sky.version,
-      [...routes].map(([id, { version }]) => [id, version]).sort(),
+      [...routes].map(([id, { version }]) => `${id} ${version}`).sort((a, b) => (a < b ? -1 : 1)),
     ]
     const id = await desk.order({ raceId, date, carId, skyId, versions, wanted, inputs })
     const plan = await planOf(needs, id)

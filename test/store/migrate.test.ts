@@ -23,6 +23,7 @@ const OWN_FILES = [
   '006-beliefs.sql',
   '007-moves.sql',
   '008-events.sql',
+  '009-plans.sql',
 ]
 
 function migrateSuite(open: () => Promise<TestDatabase>): void {
@@ -118,6 +119,7 @@ function migrateSuite(open: () => Promise<TestDatabase>): void {
       'events',
       'forecasts',
       'migrations',
+      'plans',
       'reading_judgements',
       'reading_marks',
       'readings',
