@@ -1,6 +1,7 @@
 import { signal } from '@preact/signals'
+import type { SpeedsInput } from '../server/documents/speeds.ts'
 import { documentOf, type Refusal } from './api.ts'
-import { followedOf, movesOf, type RaceDay, trackersOf } from './crew.ts'
+import { followedOf, movesOf, type RaceDay, trackersOf, trackersTried } from './crew.ts'
 import type { FollowedChoice, Move, Trackers } from './crew-types.ts'
 import { type LogCar, logCar } from './log-reading.ts'
 
@@ -32,15 +33,38 @@ export const trackers = signal<Trackers | null>(null)
 export const moves = signal<Move[]>([])
 export const trackersRefusal = signal<Refusal | null>(null)
 
-/** Reads what Log and Trackers show; what was shown before stays until it is there. */
-export async function loadTrackers(day: RaceDay, carId: string): Promise<void> {
-  const [document, report] = await Promise.all([documentOf('cars', carId), trackersOf(day, carId)])
+/**
+ * Reads what Log and Trackers show; what was shown before stays until it is there.
+ *
+ * @param tried sky and speeds of a day that nobody follows; left out where no day is to be driven
+ */
+export async function loadTrackers(
+  day: RaceDay,
+  carId: string,
+  tried?: { sky: string; speeds: SpeedsInput },
+): Promise<void> {
+  const work = tried === undefined ? 'no' : 'yes'
+  const [document, report] = await Promise.all([documentOf('cars', carId), trackersOf(day, carId, work)])
   if (document.value !== undefined) {
     const read: Parameters<typeof logCar>[0] = JSON.parse(JSON.stringify(document.value.document))
     car.value = { id: carId, ...logCar(read) }
   }
-  if (report.value !== undefined) trackers.value = report.value
+  if (report.value !== undefined) {
+    trackers.value = report.value
+    if (tried !== undefined && report.value.work === null) await addTried(day, { car: carId, ...tried }, report.value)
+  }
   trackersRefusal.value = report.refusal ?? document.refusal ?? null
+}
+
+/** Adds the day at the speeds being tried to a report without one. */
+async function addTried(
+  day: RaceDay,
+  tried: { car: string; sky: string; speeds: SpeedsInput },
+  shown: Trackers,
+): Promise<void> {
+  const { value } = await trackersTried(day, tried)
+  if (value !== undefined && trackers.value === shown)
+    trackers.value = { ...shown, work: value.days[0] ?? null, isTried: true }
 }
 
 export async function loadMoves(race: string): Promise<void> {

@@ -46,6 +46,8 @@ export interface Trackers {
   items: TrackerReport[]
   /** The followed day driven again; null where none is followed. */
   work: TrackerDayWork | null
+  /** Set where that day is tried, not followed. */
+  isTried?: boolean
 }
 
 /** The budget that the crew follows, as somebody chose it. */

@@ -1,4 +1,5 @@
 import { type Answer, ask, BASE, itemsOf, json, tell } from './api.ts'
+import type { SpeedsInput } from '../server/documents/speeds.ts'
 import type {
   FollowedBudget,
   FollowedChoice,
@@ -8,6 +9,7 @@ import type {
   ReadingAnswer,
   ReadingDocument,
   Share,
+  TrackerDayWork,
   Trackers,
 } from './crew-types.ts'
 
@@ -41,8 +43,18 @@ export const pointingOf = (day: RaceDay): Promise<Answer<FollowedPointing>> => a
 
 export const eventsAt = (day: RaceDay): string => `${dayAt(day)}/events`
 
-export const trackersOf = ({ race, date }: RaceDay, car: string): Promise<Answer<Trackers>> =>
-  ask(`${raceAt(race)}/trackers?${new URLSearchParams({ date, car })}`)
+/** Every tracker; the day is driven again for its parts where that is asked for. */
+export const trackersOf = ({ race, date }: RaceDay, car: string, work: 'yes' | 'no'): Promise<Answer<Trackers>> =>
+  ask(`${raceAt(race)}/trackers?${new URLSearchParams({ date, car, work })}`)
+
+/** The trackers through a day that nobody follows yet, at the speeds being tried. */
+export const trackersTried = (
+  { race, date }: RaceDay,
+  tried: { car: string; sky: string; speeds: SpeedsInput },
+): Promise<Answer<{ days: TrackerDayWork[] }>> => {
+  const [car, sky] = [{ id: tried.car }, { id: tried.sky }]
+  return ask(`${BASE}/tracker-report`, post({ car, sky, race: { id: race }, speeds: tried.speeds, date }))
+}
 
 /** Sends a reading; the same one sent again is harmless. */
 export const send = (race: string, car: string, reading: ReadingDocument): Promise<Answer<ReadingAnswer>> =>

@@ -24,13 +24,16 @@ const widen = quantity(1, 100, 'factor on the spread of every bench')
 const reportQuery = z.strictObject({
   date: date('day whose followed budget tells where the energy fell').optional(),
   car: slug('the car; left out: the car of the budget that is followed').optional(),
+  work: z.enum(['yes', 'no']).describe('whether to drive the day again for its parts').default('yes'),
 })
 const report = z.strictObject({
   carId: z.string(),
   uses,
   widen,
   items: z.array(trackerReport),
-  work: trackerDay.nullable().describe('the day and its parts, driven again; null where no budget of it is followed'),
+  work: trackerDay
+    .nullable()
+    .describe('the day and its parts, driven again; null where no budget of it is followed, or with work=no'),
 })
 
 /** Every tracker of a car before and after its readings, and what moved the budgets. */
@@ -62,7 +65,8 @@ export function trackerRoutes(api: Api, needs: Needs): void {
     const input = { car: car.body, readings: own, widen: use.widen, day }
     const signal = clientGone(reply)
     const items = await compute.run('report-trackers', input, signal)
-    const work = forecast === null ? null : await dayAgain(needs, forecast, day.date, signal)
+    const isWanted = forecast !== null && query.work === 'yes'
+    const work = !isWanted ? null : await dayAgain(needs, forecast, day.date, signal)
     return { carId, uses: use.which, widen: use.widen, items, work }
   })
 

@@ -236,6 +236,12 @@ describe('the trackers', () => {
     expect(deck.day.sharePct + items[1].day.sharePct).toBeCloseTo(100, 9)
   })
 
+  test('are shown without the day driven again where nobody asks for that', async () => {
+    const { items, work } = await get(`${RACE}/trackers?date=${DAY}&work=no`)
+    expect(items).toHaveLength(2)
+    expect(work).toBeNull()
+  })
+
   test('of a race that follows nothing are shown for a car by name', async () => {
     await service.ask(saving('race', 'other', noonRace()))
     expect(await get('/api/v1/races/other/trackers')).toMatchObject({ code: 'nothing-followed' })

@@ -121,4 +121,28 @@ describe('the car in the engine’s units', () => {
     expect(losses.standingW).toBeCloseTo(1, 6)
     expect(losses.conductionOhm).toBeCloseTo(0.08, 6)
   })
+
+  test('what readings show stands in for a bench and its table, and leaves standby and heat', () => {
+    const bench = [20, 60, 150, 400].map((inputW) => ({ inputV: 70, outputV: 110, inputW, efficiencyPct: 95 }))
+    const derating = { fullToC: 65, leastFromC: 85 }
+    const { window } = someCar().trackers[0]
+    const car = carDocument.parse({
+      ...someCar(),
+      trackers: ['deck tracker', 'nose tracker'].map((name) => ({
+        name,
+        window,
+        bench,
+        benchUse: 'table',
+        standbyW: 0.4,
+        derating,
+      })),
+    })
+    const learned = { standingW: 2, switchingFraction: 0.01, conductionOhm: 0.05, rectifierV: 0.3 }
+    const of = (by: Record<string, typeof learned>) =>
+      carModel(car, { groundAlbedo: 0.2, skyModel: 'perez' }, by).trackers[0]
+    expect(of({}).table?.extraW).toHaveLength(4)
+    expect(of({ 'deck tracker': learned })).toMatchObject({ losses: learned, standbyW: 0.4 })
+    expect(of({ 'deck tracker': learned })).not.toHaveProperty('table')
+    expect(of({ 'deck tracker': learned }).derating).toMatchObject({ fullToC: 65, leastShare: 0, parkedCPerW: 2 })
+  })
 })

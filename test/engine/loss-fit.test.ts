@@ -87,7 +87,6 @@ describe('losses from a bench', () => {
   })
 
   it('a curve that wants a negative slope gets none: efficiencies 0.93, 0.975, 0.97 of 1000 W', () => {
-    // The exact polynomial through these has b = −0.00041667, worked by hand.
     const points = [
       [0.1, 0.93],
       [0.5, 0.975],
@@ -99,7 +98,17 @@ describe('losses from a bench', () => {
       inputW: 1000 * share,
       efficiency,
     }))
+    // Losses .007, .0125, .03 of 1000 W: divided differences give the polynomial through them, worked by hand.
+    const [first, second] = [(0.0125 - 0.007) / 0.4, (0.03 - 0.0125) / 0.5]
+    const c = (second - first) / 0.9
+    const b = first - c * 0.6
+    expect([0.007 - b * 0.1 - c * 0.01, b, c]).toEqual([
+      expect.closeTo(0.006_805_6, 7),
+      expect.closeTo(-0.000_416_67, 8),
+      expect.closeTo(0.023_611_1, 7),
+    ])
     const { losses } = fitLosses(points)
+    for (const term of Object.values(losses)) expect(term).toBeGreaterThanOrEqual(0)
     expect(losses.switchingFraction).toBe(0)
     expect(losses.standingW / 1000).toBeCloseTo(0.0068, 3)
     expect((losses.conductionOhm * 1000) / 80 ** 2).toBeCloseTo(0.0233, 3)

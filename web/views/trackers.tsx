@@ -19,13 +19,13 @@ import { Worth } from './worth.tsx'
 
 /** Each tracker as bench and readings show it: its curve, where the day's energy fell, what a point is worth. */
 export function TrackersView() {
-  const { race, date, car } = choice.value
+  const { race, date, car, sky, speeds } = choice.value
   const isKnown = race !== '' && date !== '' && car !== ''
   useEffect(() => {
     if (!isKnown) return
-    void loadTrackers({ race, date }, car)
+    void loadTrackers({ race, date }, car, { sky, speeds })
     void loadMoves(race)
-  }, [race, date, car, news.value])
+  }, [race, date, car, sky, JSON.stringify(speeds), news.value])
   const { value: all } = trackers
   const { value: why } = trackersRefusal
   return (
@@ -108,6 +108,7 @@ function Part({ all, part }: { all: Trackers; part: Signal<number> }) {
         onChange={(value) => (part.value = Number(value))}
       />
       {all.work !== null && <p class="note">{priceText(all.work.price)}</p>}
+      {all.isTried === true && <p class="note">Nobody follows this day yet: as tried at the speeds of Day.</p>}
     </>
   )
 }
@@ -161,7 +162,8 @@ function One({ report, all, race, part, onChange }: OneProps) {
 /** A tracker over a part of the day: where it worked, and what that is worth. */
 function Day({ report, all, part }: Pick<OneProps, 'report' | 'all' | 'part'>) {
   const work = workOf(report.name, all.work)
-  if (all.work === null || work === null) return <p class="note gap">What it is worth shows once a day is followed.</p>
+  if (all.work === null || work === null)
+    return <p class="note gap">What it is worth shows once the day is worked out.</p>
   const at = Math.min(part, work.parts.length - 1)
   return (
     <>
