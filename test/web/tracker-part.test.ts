@@ -143,15 +143,7 @@ describe('the window of a tracker, drawn', () => {
     expect(plot.stops).toHaveLength(1)
     expect(plot.stops[0].x).toBeCloseTo(34 + 364 / 3, 6)
     expect(plot.stops[0].width).toBeCloseTo(364 / 3, 6)
-    expect(plot.timeTicks.map(({ text }) => text)).toEqual([
-      '07:00',
-      '07:30',
-      '08:00',
-      '08:30',
-      '09:00',
-      '09:30',
-      '10:00',
-    ])
+    expect(plot.timeTicks.map(({ text }) => text)).toEqual(['07:00', '07:30', '08:00', '08:30', '09:00', '09:30'])
   })
 
   it('hatches below the lowest voltage where the string comes near it', () => {

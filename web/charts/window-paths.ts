@@ -40,6 +40,8 @@ const MIN_MS = 60_000
 /** An edge farther than this from all that was held stays off the plot. [V] */
 const NEAR_V = 15
 const LEAST_PX = 2
+/** Half a time of day, which must not leave the plot. [px] */
+const TEXT_PX = 17
 /** Room for the bars of times at an edge and their figure. [px] */
 const BARS_PX = 24
 
@@ -121,6 +123,7 @@ function timeTicks(
   const ticks: WindowPlot['timeTicks'] = []
   for (let local = Math.ceil((first + offsetMs) / stepMs) * stepMs; local <= last + offsetMs; local += stepMs) {
     const clock = clockAt(local - offsetMs, utcOffsetMin)
+    if (x(local - offsetMs) > width - TEXT_PX) break
     ticks.push({ x: x(local - offsetMs), text: stepMs >= HOUR_MS ? clock.slice(0, 2) : clock })
   }
   return ticks
