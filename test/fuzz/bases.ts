@@ -22,6 +22,12 @@ const BODY = { kind: 'car-body' as const, lengthM: 3, laminarStart: true, heatCa
 
 const HEAT = { fullToC: 65, leastFromC: 85, leastPct: 40, parkedCPerW: 2, movingCPerW: 1 }
 
+const FAULTS: CarInput['strings'][number]['faults'] = [
+  { kind: 'weak', panel: 'deck', underDiode: 2, cells: 2, lightPct: 35 },
+  { kind: 'open', panel: 'deck', underDiode: 3, cells: 1 },
+  { kind: 'shorted', panel: 'deck' },
+]
+
 const CANOPY = [
   { bearingDeg: 10, heightDeg: 20, lostPct: 15 },
   { bearingDeg: 350, heightDeg: 30, lostPct: 25 },
@@ -50,6 +56,8 @@ const fullCar = (): CarInput => {
     strings: car.strings.map((s, i) => ({
       ...s,
       inParallel: 1,
+      cells: s.cells.map((group) => ({ ...group, bypassDiodes: 4 })),
+      faults: i === 0 ? FAULTS : [],
       soilingPct: 3,
       bypassDropV: 0.4,
       alsoTrackers: i === 0 ? ['second deck tracker'] : [],

@@ -28,11 +28,14 @@ const shade = around((bearingDeg) =>
 
 const horizon = around((azimuthDeg) => fc.record({ azimuthDeg: fc.constant(azimuthDeg), heightDeg: number(0, 90) }))
 
-/** Panels, strings and trackers of all sorts: steep, spanning, narrow windows, lossy, hot, shared, dead. */
+/** Panels, strings and trackers of all sorts: steep, spanning, faulty, narrow windows, lossy, hot, shared, dead. */
 const array = fc.record({
   pitches: fc.array(number(-30, 30), { minLength: 1, maxLength: 3 }),
   cells: fc.array(fc.integer({ min: 5, max: 200 }), { minLength: 1, maxLength: 3 }),
   spans: fc.boolean(),
+  bypassDiodes: fc.integer({ min: 0, max: 5 }),
+  fault: seldom(fc.constantFrom('weak', 'shorted', 'open')),
+  lightPct: number(0, 100),
   lifts: fc.boolean(),
   shade,
   heatCapacityKjM2C: number(0, 20),
@@ -53,6 +56,15 @@ const array = fc.record({
   dead: seldom(fc.integer({ min: 0, max: 2 })),
   glass: fc.constantFrom('martin-ruiz' as const, 'physical' as const, 'ashrae' as const, 'none' as const),
 })
+
+/** One cell under the first diode of a panel that is at fault, or none. */
+const faultsOn = (
+  panel: string,
+  { fault, lightPct }: { fault?: 'weak' | 'shorted' | 'open'; lightPct: number },
+): CarInput['strings'][number]['faults'] => {
+  if (fault === undefined) return []
+  return [fault === 'weak' ? { kind: fault, panel, lightPct } : { kind: fault, panel }]
+}
 
 /** Names of the channels beside the first on a string. */
 const besides = (channels: number, i: number): string[] =>
@@ -150,9 +162,12 @@ export const anyCar: fc.Arbitrary<CarInput> = fc
         alsoTrackers: besides(a.array.channels, i),
         cellType: 'silicon',
         soilingPct: a.array.soilingPct,
-        cells: spans
-          ? pitches.map((_, p) => ({ panel: `panel ${p + 1}`, inSeries: cells[i] }))
-          : [{ panel: `panel ${(i % pitches.length) + 1}`, inSeries: cells[i] }],
+        cells: (spans ? pitches.map((_, p) => p + 1) : [(i % pitches.length) + 1]).map((p) => ({
+          panel: `panel ${p}`,
+          inSeries: cells[i],
+          bypassDiodes: a.array.bypassDiodes,
+        })),
+        faults: faultsOn(`panel ${spans ? 1 : (i % pitches.length) + 1}`, a.array),
       })),
       trackers: names
         .flatMap((_, i) => [`tracker ${i + 1}`, ...besides(a.array.channels, i)])
