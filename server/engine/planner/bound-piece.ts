@@ -1,5 +1,5 @@
 import { type Below, emptyBelow, joinLines, mostBetween } from './below.ts'
-import { type DayTables, type Load, loadAt, pieceMps, pieceS, storedSlope, storedW } from './day-tables.ts'
+import { type DayTables, type Load, loadAt, pieceMps, pieceS, rowAt, storedSlope, storedW } from './day-tables.ts'
 
 const FAR = Number.POSITIVE_INFINITY
 
@@ -13,6 +13,8 @@ interface Priced {
   /** Speeds of the table from fast to slow, and the slope of load energy over time there. [s/m … W] */
   timeS: Float64Array
   slopeW: Float64Array
+  /** About the time that suits the slope of each cell before the piece. [S] (cells) */
+  guessS: Float64Array
   /** By how much the load's slope falls over speed, all falls together: 0 where the load is convex. [W·s/m] */
   hollow: number
 }
@@ -28,6 +30,7 @@ export function behindPiece(
   const lowS = from.atS[0] + priced.shortestS
   const to = emptyBelow(lowS, of.latestS, stepS)
   const near = { cell: 0, isKnown: false }
+  guessTimes(priced, from)
   const nodes = to.atS.map((atS) => leastAt(priced, from, atS, near))
   const cells = to.atS.length - 1
   if (cells === 0) to.value[0] = nodes[0]
@@ -40,6 +43,18 @@ export function behindPiece(
   }
   joinLines(to, climb, foot)
   return to
+}
+
+/** Fills in about which time suits each cell, in the sun half a usual passage later; any tangent holds. */
+function guessTimes(priced: Priced, from: Below): void {
+  const { day, piece, shortestS } = priced
+  const { atS, value } = from
+  const row = piece * day.clock.count
+  priced.guessS = new Float64Array(Math.max(atS.length - 1, 1))
+  for (let c = 0; c < priced.guessS.length; c++) {
+    const grows = c + 1 < atS.length ? (value[c + 1] - value[c]) / (atS[c + 1] - atS[c]) : 0
+    priced.guessS[c] = timeOfSlope(priced, grows, rowAt(day.harvestW, row, day.clock, atS[c] + shortestS), 0)
+  }
 }
 
 /** A cell that is left and one that is reached, and the sun between them; scratch, filled for each pair. */
@@ -55,7 +70,7 @@ function takePair(priced: Priced, from: Below, c: number): void {
   pair.grows = pair.untilS > pair.fromS ? (from.value[c + 1] - pair.left) / (pair.untilS - pair.fromS) : 0
   const row = piece * day.clock.count
   pair.sunW = mostBetween(day, day.harvestW, row, (pair.fromS + pair.startS) / 2, (pair.untilS + pair.endS) / 2)
-  pair.wantedS = timeOfSlope(priced, pair.grows, pair.sunW, 0)
+  pair.wantedS = priced.guessS[c]
 }
 
 /** Last cell from which an instant can be reached at the shortest time. */
@@ -123,10 +138,12 @@ function footOf(priced: Priced, from: Below, startS: number, endS: number, climb
   let least = FAR
   pair.startS = startS
   pair.endS = endS
+  let climbS = Number.NaN
   for (let c = latestCell(from, priced, endS); c >= 0; c--) {
     takePair(priced, from, c)
     if (startS - pair.untilS > priced.longestS) break
-    if (!(lowestOver(priced, climb, timeOfSlope(priced, climb, pair.sunW, 0)) < least)) continue
+    if (climbS !== climbS) climbS = timeOfSlope(priced, climb, pair.sunW, 0)
+    if (!(lowestOver(priced, climb, climbS) < least)) continue
     pair.wantedS = timeOfSlope(priced, pair.grows, pair.sunW, 2)
     const lowest = lowestOver(priced, climb, timeOfSlope(priced, climb, pair.sunW, 2))
     if (lowest < least) least = lowest
@@ -181,6 +198,7 @@ function pricedOf(day: DayTables, piece: number, price: number): Priced {
     longestS: pieceS(day, piece, slowest),
     timeS,
     slopeW,
+    guessS: new Float64Array(0),
     hollow: hollowOf(day, piece, first, last),
   }
 }
