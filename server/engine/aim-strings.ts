@@ -1,5 +1,6 @@
 import { deSoto, maximumPower } from './cell.ts'
 import type { LitPanel } from './panel-light.ts'
+import type { Pose } from './stand.ts'
 import type { StringModel } from './substrings.ts'
 
 /** Panels with one orientation, one cover and no shade of their own: they see the same light. */
@@ -20,6 +21,8 @@ export interface AimStrings {
   /** All strings whose cells lie on this one face. [W per W/m²] (faces) */
   perFaceW: Float64Array
   spanning: SpanningString[]
+  /** Poses found before, by the sky that they were found under: a day is forecast again and again. */
+  known: Map<string, Pose>
 }
 
 const REFERENCE_WM2 = 1000
@@ -52,7 +55,7 @@ export function aimStrings(panels: LitPanel[], strings: StringModel[]): AimStrin
     if (parts.faces.length === 1) perFaceW[parts.faces[0]] += parts.cellsW[0]
     else spanning.push(parts)
   }
-  return { faces, perFaceW, spanning }
+  return { faces, perFaceW, spanning, known: new Map() }
 }
 
 function partsOf(string: StringModel, faceOf: number[]): SpanningString {

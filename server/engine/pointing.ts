@@ -79,6 +79,21 @@ function takeUp(light: PoseLight, array: PreparedArray, { steps, sky, from, to }
   light.hold({ sky, from, to, headingRad: steps.headingRad[from], albedo: array.model.albedo })
 }
 
+/** What a pose depends on, besides heading and length of the hold. */
+const SKY_PARTS = [
+  'sunEast',
+  'sunNorth',
+  'sunUp',
+  'beamWm2',
+  'aroundSunWm2',
+  'domeWm2',
+  'horizonWm2',
+  'groundWm2',
+] as const satisfies (keyof SkyBlock)[]
+
+/** Poses that an array keeps in mind at most. */
+const MOST_KNOWN = 4000
+
 /**
  * Poses of the lifted array, hold by hold: most light on the cells, or most of the sun's beam, as the stand's aim says.
  *
@@ -99,8 +114,15 @@ export function aimAlong(array: PreparedArray, stand: Stand, steps: LiftedSteps,
     }
     const atSun = aimAtSun(stand, sum(sky.sunEast), sum(sky.sunNorth), sum(sky.sunUp))
     if (light === null) return atSun
+    const { known } = array.aim
+    const asked = `${steps.headingRad[from]} ${to - from} ${SKY_PARTS.map((part) => sum(sky[part])).join(' ')}`
+    const before = known.get(asked)
+    if (before !== undefined) return before
     takeUp(light, array, held)
-    return bestPose(stand, (tiltRad, azimuthRad) => light.powerW(tiltRad, azimuthRad), atSun)
+    const pose = bestPose(stand, (tiltRad, azimuthRad) => light.powerW(tiltRad, azimuthRad), atSun)
+    if (known.size >= MOST_KNOWN) known.clear()
+    known.set(asked, pose)
+    return pose
   })
 }
 

@@ -47,7 +47,7 @@ export interface DayPlan {
 
 const BIN_S = 60
 const SPEED_STEP_MPS = 4 / 3.6
-const BOUND_STEP_S = 20
+const BOUND_STEP_S = 40
 const MOST_ROUNDS = 8
 const LAST_ROUNDS = 4
 const WHOLE_ROUNDS = 3
