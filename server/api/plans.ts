@@ -19,7 +19,15 @@ import { STATELESS_ERRORS, wholeRequest } from './stateless-forecast.ts'
 const DESCRIPTION =
   'The earliest arrival that keeps reserve, stops and target, the same in sections of 10 to 20 km and whole km/h for people, a proven bound on any better plan, the price of energy, and ranges over days drawn from the spreads given. Plans are estimates: posted limits, the event’s rules and the battery management system come first.'
 
-const wantedFields = planRequest.pick({ targetPct: true, spreads: true, promisePct: true, members: true, seed: true })
+const wantedFields = planRequest.pick({
+  targetPct: true,
+  spreads: true,
+  promisePct: true,
+  members: true,
+  seed: true,
+  from: true,
+  until: true,
+})
 const newPlan = wantedFields
   .extend({
     carId: slug('id of a stored car'),

@@ -83,7 +83,8 @@ export async function wholeRequest(needs: Needs, request: OpenRequest, signal: A
   const stored = await routesOf(store, raceDocument.parse(race), given)
   const routes = { ...Object.fromEntries([...stored].map(([id, { body }]) => [id, body])), ...given }
   const learned = await learnedFor(needs, request, signal)
-  return { car, race, sky, routes, speeds: request.speeds, date: request.date, learned }
+  const { speeds, date, from, until } = request
+  return { car, race, sky, routes, speeds, date, from, until, learned }
 }
 
 /** Where car and race are stored, their readings count as in every forecast of that race. */

@@ -31,6 +31,8 @@ export const openRequest = z
       .optional(),
     speeds: speedsDocument,
     date: date('the one day wanted; earlier days are still worked out for its opening').optional(),
+    from: forecastRequest.shape.from,
+    until: forecastRequest.shape.until,
   })
   .meta({ title: 'Forecast request' })
 
@@ -70,6 +72,8 @@ export interface ForecastInputs {
   sky: unknown
   speeds: unknown
   date?: string
+  from?: unknown
+  until?: unknown
   /** Losses by tracker as its readings show them; left out where nothing was learned. */
   learned?: LearnedLosses
 }
@@ -124,5 +128,7 @@ export const inputsHash = (input: ForecastInputs): string =>
     sky: input.sky,
     speeds: input.speeds,
     date: input.date,
+    from: input.from,
+    until: input.until,
     learned: input.learned,
   })

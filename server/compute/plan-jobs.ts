@@ -20,8 +20,12 @@ export const openPlanRequest = openRequest
 
 /** The plan request in a body, checked: documents that it only names are left as `{ id }`, what is wanted stands apart. */
 export function readPlanRequest(input: { bytes: Uint8Array }) {
-  const { car, race, sky, routes, date, ...wanted } = readOpenRequest(openPlanRequest, input.bytes, 'plan request')
-  return { car, race, sky, routes, date, wanted }
+  const { car, race, sky, routes, date, from, until, ...wanted } = readOpenRequest(
+    openPlanRequest,
+    input.bytes,
+    'plan request',
+  )
+  return { car, race, sky, routes, date, from, until, wanted }
 }
 
 /**

@@ -14,7 +14,8 @@ export interface SpanZones {
 export function spanZones({ forecast, race, stages, zone }: ForecastDay): SpanZones[] {
   let here = zone
   return forecast.timetable.spans.map(({ kind, stage, toM }) => {
-    const finish = stages[stage]?.stage.stop?.zone ?? zone
+    const isCamp = stages[stage]?.stage.stop !== undefined && race.stages[stage].stop === null
+    const finish = isCamp ? here : (stages[stage]?.stage.stop?.zone ?? zone)
     if (kind === 'stop') here = finish
     const start = here
     if (kind === 'drive' && toM >= race.course.stages[stage].toM - 1e-6) here = finish

@@ -11,6 +11,8 @@ import { carDocument } from './car.ts'
 import { carModel } from './car-model.ts'
 import { fieldName } from './check.ts'
 import { horizonNotes, rackNotes } from './forecast-notes.ts'
+import { campDocument, hereDocument } from './here.ts'
+import { type Begun, begunDay, campedDay } from './here-model.ts'
 import { learnedLosses } from './learned.ts'
 import { date, slug } from './quantity.ts'
 import { measuredCharge, measuredWarmth } from './opening-model.ts'
@@ -35,6 +37,10 @@ export const forecastRequest = z
     date: date(
       'the one day wanted; the days before it are driven at the fastest speed that meets their targets',
     ).optional(),
+    from: hereDocument
+      .describe('where the car is in the middle of a day, to go on from there; the days before are left out')
+      .optional(),
+    until: campDocument.describe('where the car is parked on the last day wanted, before its hours end').optional(),
     learned: learnedLosses
       .describe('losses by tracker as its readings show them, in place of the car’s own')
       .optional(),
@@ -81,15 +87,18 @@ export function drivenRace<T>(
   const { car, race: document, sky: skyDoc } = request
   const lastDay = dayWanted(document, request.date)
   const { sky, assumptions } = skyModel(skyDoc, document.turbidityByMonth)
-  const course = raceCourse(document, request.routes, sectionCutsKm(request.speeds))
+  const course = raceCourse(document, request.routes, cutsKm(request))
   const model = carModel(
     car,
     { groundAlbedo: meanAlbedo(request), skyModel: skyDoc.diffuse ?? 'perez' },
     request.learned,
   )
   checkWindHeight(request)
-  const race: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
-  const { days, notes } = drivenDays(race, request, lastDay, of)
+  const whole: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
+  const asFar = request.until === undefined ? whole : campedDay(whole, document, request.until, lastDay)
+  const begun = request.from === undefined ? null : begunDay(asFar, document, request.from, request.date)
+  const race = begun?.race ?? asFar
+  const { days, notes } = drivenDays(race, request, lastDay, { begun, of })
   return {
     race,
     days,
@@ -111,18 +120,22 @@ export function drivenRace<T>(
 const AS_TARGETED = speedsDocument.parse({ kind: 'meet-target' })
 
 /** The days up to the last wanted, each opening where the one before closed; one alone where one was asked for. */
-function drivenDays<T>(race: Race, request: ForecastRequest, lastDay: number, of: (day: DrivenDay) => T) {
+function drivenDays<T>(
+  race: Race,
+  request: ForecastRequest,
+  lastDay: number,
+  { begun, of }: { begun: Begun | null; of: (day: DrivenDay) => T },
+) {
   const { race: document } = request
   const stages = placedStages(document)
   const days: T[] = []
-  const first = firstDay(race, document, lastDay)
-  const notes = first > 0 ? ['The sky does not reach the days before: their stages are taken as driven.'] : []
-  let opening = openingOf(race, stages, first)
+  const first = begun?.dayIndex ?? firstDay(race, document, lastDay)
+  const isSkipped = first > 0 && begun === null
+  const notes = isSkipped ? ['The sky does not reach the days before: their stages are taken as driven.'] : []
+  let opening = begun?.opening ?? openingOf(race, stages, first)
   for (let d = first; d <= lastDay; d++) {
     const { date: on, targetPct } = document.days[d]
-    if (d === 0) opening = asMeasured(race, opening, { dayIndex: d, measured: document, field: 'race' }, notes)
-    const field = fieldName(['race', 'days', d])
-    opening = asMeasured(race, opening, { dayIndex: d, measured: document.days[d], field }, notes)
+    if (d !== begun?.dayIndex) opening = asOpened(race, document, { opening, dayIndex: d }, notes)
     const zone = zoneOf(document, d)
     notes.push(...coverageNotes(race.sky, race.days[d], zone))
     const isBefore = request.date !== undefined && d < lastDay
@@ -136,6 +149,21 @@ function drivenDays<T>(race: Race, request: ForecastRequest, lastDay: number, of
     days.push(of({ race, stages, dayIndex: d, date: on, zone, targetCharge, penalties, opening: opened, ...driven }))
   }
   return { days, notes }
+}
+
+/** A day's opening with what the race and the day say was measured then. */
+function asOpened(race: Race, document: RaceDocument, day: { opening: Opening; dayIndex: number }, notes: string[]) {
+  const { dayIndex } = day
+  const first = { dayIndex, measured: document, field: 'race' }
+  const opening = dayIndex === 0 ? asMeasured(race, day.opening, first, notes) : day.opening
+  const field = fieldName(['race', 'days', dayIndex])
+  return asMeasured(race, opening, { dayIndex, measured: document.days[dayIndex], field }, notes)
+}
+
+/** Places inside stages at which pieces of road must end. [km] */
+function cutsKm({ speeds, until }: ForecastRequest): (stage: string) => number[] {
+  const sections = sectionCutsKm(speeds)
+  return (stage) => (until?.stage === stage ? [...sections(stage), until.km] : sections(stage))
 }
 
 /** The first day to work out: the race's first, or one with a measured charge after days that the sky does not reach. */

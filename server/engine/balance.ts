@@ -127,8 +127,17 @@ export function balance(car: Car, day: BalanceDay, opening: { charge: number; pa
     out.outW[i] = out.inW[i] + (pack.step.shortJ - pack.heldJ + heldJ) / durationS
     note(out, i, pack)
   }
+  bookMotion(car, steps, out)
   out.packLimits = pack.limits()
   return out
+}
+
+/** Motion that the car brings along when the day begins on the road counts as height that is already climbed. */
+function bookMotion({ load }: Car, { fromMps, speedMps, span, count }: Steps, out: Balance): void {
+  let first = 0
+  while (first < count && speedMps[first] === 0) first++
+  if (first === count || fromMps[first] === 0) return
+  out.spans[span[first]].climbing -= 0.5 * load.massKg * load.rotatingFactor * fromMps[first] ** 2
 }
 
 function note(out: Balance, i: number, { charge, heldJ, packV, tempC, step }: PackDay): void {

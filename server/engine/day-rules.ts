@@ -29,6 +29,8 @@ export interface ChargingWindow {
   lifts: boolean
   /** What stands around the car then; left out, nothing. */
   horizon?: Horizon
+  /** For a car that stands in it from its start: time to lift the array; left out, the day's. [S] */
+  raiseS?: number
 }
 
 /** The hours of one day. */
@@ -53,4 +55,6 @@ export interface Standing {
   placeM: number
   /** What is left of a stop that the end of the day cut in two. [S] */
   stopLeftS: number
+  /** How fast it is as the driving hours begin, where they begin on the road; left out, at rest. [Mps] */
+  speedMps?: number
 }

@@ -29,19 +29,20 @@ const ONE_MOMENT_S = 0.001
 const PLACE_M = 1e-6
 
 /**
- * The fastest drive from rest to rest that keeps to held speeds and bounds; one that the time cuts off brakes so
+ * The fastest drive to rest that keeps to held speeds and bounds; one that the time cuts off brakes so
  * that it stands when the time ends.
  *
  * A lower speed ahead is reached by the edge of its piece. Speed squared is linear in distance under one
  * acceleration, so that each part is in closed form.
  *
- * @param leg  from and to where, on which piece it starts, and the time it may take. [M, S]
+ * @param leg  from and to where, on which piece it starts, and the time it may take [M, S]; how fast the car comes,
+ *   where it does not start from rest: no faster than is wanted there, and so that it can stop [Mps]
  * @param out  the drive's moves are added to it
  * @source forward and backward passes under bounds of acceleration (common practice)
  */
 export function driveLeg(
   road: DrivenRoad,
-  leg: { fromM: number; toM: number; piece: number; withinS: number },
+  leg: { fromM: number; toM: number; piece: number; withinS: number; speedMps?: number },
   out: Moves,
 ): Leg {
   const plan = layPlan(road, leg)
@@ -53,7 +54,7 @@ export function driveLeg(
 }
 
 /** Edges, and backwards from the end the most with which each may be passed. */
-function layPlan(road: DrivenRoad, leg: { fromM: number; toM: number; piece: number }): Plan {
+function layPlan(road: DrivenRoad, leg: { fromM: number; toM: number; piece: number; speedMps?: number }): Plan {
   const { fromM, count: pieces } = road.course.pieces
   let end = leg.piece + 1
   while (end < pieces && fromM[end] < leg.toM) end++
@@ -75,6 +76,8 @@ function layPlan(road: DrivenRoad, leg: { fromM: number; toM: number; piece: num
     const capMps = Math.min(road.capMps[leg.piece + k - 1], road.capMps[leg.piece + k])
     plan.most[k] = Math.min(capMps * capMps, stoppable(road, plan, k, plan.edgesM[k + 1], plan.most[k + 1]))
   }
+  const comesMps = Math.min(leg.speedMps ?? 0, road.capMps[leg.piece])
+  plan.squared[0] = Math.min(comesMps * comesMps, stoppable(road, plan, 0, plan.edgesM[1], plan.most[1]))
   return plan
 }
 

@@ -1,5 +1,5 @@
 import type { Course } from './course.ts'
-import type { DayRules, Standing, StageRule, StopRule } from './day-rules.ts'
+import type { ChargingWindow, DayRules, Standing, StageRule, StopRule } from './day-rules.ts'
 import { CRAWL_MPS } from './driven-road.ts'
 import type { DrivenRoad } from './driven-road.ts'
 import type { Horizon } from './horizon.ts'
@@ -158,7 +158,9 @@ function drive(spans: Span[], moves: Moves, road: DrivenRoad, day: DayRules, now
   const spareMs = day.drivingToMs - fromMs
   if (endM <= fromM || spareMs < LEAST_DRIVE_MS) return endM >= toM && endM <= fromM
   const firstMove = moves.count
-  const leg = driveLeg(road, { fromM, toM: endM, piece, withinS: spareMs / 1000 }, moves)
+  const { speedMps } = now
+  now.speedMps = 0
+  const leg = driveLeg(road, { fromM, toM: endM, piece, withinS: spareMs / 1000, speedMps }, moves)
   if (moves.count === firstMove) return false
   now.placeM = leg.reachedM
   now.nowMs = leg.reachedM < endM ? day.drivingToMs : Math.min(fromMs + leg.durationS * 1000, day.drivingToMs)
@@ -188,15 +190,19 @@ export function pieceAt(course: Course, placeM: number, first = 0): number {
   return low
 }
 
+/** How a car is parked: in a charging window, or between them. */
+type Parking = Pick<ChargingWindow, 'lifts' | 'horizon' | 'raiseS'> & { fromMs?: number }
+
 const FLAT_UNDER_OPEN_SKY = { lifts: false }
 
 /** The car stands still until an instant: charging windows and the time between them. */
 function park(spans: Span[], day: DayRules, now: Now, until: { untilMs: number; kind: SpanKind }): void {
   const { placeM, piece } = now
-  const push = (kind: SpanKind, toMs: number, { lifts, horizon }: { lifts: boolean; horizon?: Horizon }): void => {
+  const push = (kind: SpanKind, toMs: number, { lifts, horizon, ...window }: Parking): void => {
     const fromMs = now.nowMs
     if (toMs <= fromMs) return
-    const lifted = lifts ? liftedBetween(fromMs, toMs, day.raiseS, day.lowerS) : FLAT
+    const raiseS = fromMs === window.fromMs ? (window.raiseS ?? day.raiseS) : day.raiseS
+    const lifted = lifts ? liftedBetween(fromMs, toMs, raiseS, day.lowerS) : FLAT
     spans.push({ kind, stage: -1, fromMs, toMs, fromM: placeM, toM: placeM, piece, horizon, ...lifted, ...STILL })
     now.nowMs = toMs
   }

@@ -40,7 +40,7 @@ export const planSun = (day: DayRules): SunPath => sunPath(day.opensMs, day.clos
 /** The pieces from where the car stands to the end of the last stage that the day may drive. */
 export function reachOf({ race, dayIndex, base }: Along): Reach {
   const { course, days } = race
-  const placeM = base.timetable.spans[0]?.fromM ?? 0
+  const placeM = base.timetable.spans[0]?.fromM ?? base.timetable.evening.placeM
   const endPiece = days[dayIndex].lastStage < 0 ? 0 : course.stages[days[dayIndex].lastStage].endPiece
   const { fromM, lengthM } = course.pieces
   let first = 0
@@ -61,7 +61,7 @@ export function tablesAlong(along: Along, reach: Reach): DayTables {
   const startS = at(firstDrive < 0 ? day.drivingFromMs : base.timetable.spans[firstDrive].fromMs)
   const clock = clockFrom(startS, at(day.closesMs))
   const pack = packOf(race, base)
-  const placeM = base.timetable.spans[0]?.fromM ?? 0
+  const placeM = base.timetable.spans[0]?.fromM ?? base.timetable.evening.placeM
   const lengthM = course.pieces.lengthM.slice(reach.first, reach.first + reach.count)
   if (reach.count > 0) lengthM[0] = course.pieces.fromM[reach.first] + lengthM[0] - placeM
   const speeds = {

@@ -108,7 +108,8 @@ export function eveningGainJ(suns: ParkedSun[], day: DayRules, arrivalS: number)
     const toS = at(window.toMs)
     if (toS <= fromS) return
     J += between(resting.restingJ, resting.clock, nowS, fromS)
-    J += liftedJ(suns[w], fromS, toS, { lifts: window.lifts, raiseS: day.raiseS, lowerS: day.lowerS })
+    const raiseS = fromS === at(window.fromMs) ? (window.raiseS ?? day.raiseS) : day.raiseS
+    J += liftedJ(suns[w], fromS, toS, { lifts: window.lifts, raiseS, lowerS: day.lowerS })
     nowS = toS
   })
   return J + between(resting.restingJ, resting.clock, nowS, at(day.closesMs))
