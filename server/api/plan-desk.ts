@@ -1,4 +1,6 @@
 import { createHash } from 'node:crypto'
+import type { PlanDocument } from '../documents/plan.ts'
+import { gistOf } from '../documents/plan-gist.ts'
 import type { PlanRequest } from '../documents/plan-request.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
 import { Fault } from '../errors.ts'
@@ -49,7 +51,8 @@ export function planDesk({ store, compute, live }: Needs, failed: (error: unknow
   async function work(plan: NewPlan, inputs: Record<string, unknown>, signal: AbortSignal): Promise<void> {
     try {
       const json = await compute.run('plan', inputs, signal, (progress) => tell(plan, 'working', progress))
-      if (await store.plans.finish(plan.id, JSON.parse(json))) tell(plan, 'done')
+      const made: PlanDocument = JSON.parse(json)
+      if (await store.plans.finish(plan.id, made, gistOf(made))) tell(plan, 'done')
     } catch (error) {
       if (signal.aborted) return
       if (!(error instanceof Fault)) failed(error)

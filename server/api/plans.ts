@@ -2,6 +2,7 @@ import { z } from 'zod'
 import { openPlanRequest } from '../compute/plan-jobs.ts'
 import { checked, readJson } from '../compute/read-json.ts'
 import { planDocument } from '../documents/plan.ts'
+import { type PlanGist, planGist } from '../documents/plan-gist.ts'
 import { planRequest } from '../documents/plan-request.ts'
 import { slug } from '../documents/quantity.ts'
 import { Fault } from '../errors.ts'
@@ -49,6 +50,7 @@ const planEntry = z.strictObject({
   fault: z.strictObject({ code: z.string(), detail: z.string() }).nullable().describe('why it failed'),
   startedAt: z.string().describe('instant (ISO 8601, UTC)'),
   endedAt: z.string().nullable().describe('instant (ISO 8601, UTC)'),
+  gist: planGist.nullable().describe('the plan in short; null until it is done'),
 })
 const planAnswer = planEntry.extend({ plan: planDocument.nullable() })
 
@@ -190,8 +192,9 @@ export function keptPlanRoutes(api: Api, needs: Needs): void {
   })
 }
 
-const entryOf = ({ wanted, ...entry }: PlanEntry): z.input<typeof planEntry> => ({
+const entryOf = ({ wanted, gist, ...entry }: PlanEntry): z.input<typeof planEntry> => ({
   ...entry,
+  gist: gist as PlanGist | null,
   wanted: wanted as z.input<typeof wantedFields>,
 })
 

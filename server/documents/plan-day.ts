@@ -78,7 +78,7 @@ function planned(
     ...NOTHING,
     outcome: {
       kind: 'planned',
-      text: `${finishName(day)} is reached ${clock(bestMs, day.zone)} at the earliest, and no plan can be more than ${Math.max(Math.ceil(withinMin * 60), 1)} s earlier.`.replace(
+      text: `${finishName(day)} is reached ${clock(Math.round(bestMs / MIN_MS) * MIN_MS, day.zone)} at the earliest, and no plan can be more than ${Math.max(Math.ceil(withinMin * 60), 1)} s earlier.`.replace(
         'The last stop',
         place,
       ),

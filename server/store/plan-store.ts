@@ -24,6 +24,8 @@ export interface PlanEntry extends NewPlan {
   endedAt: string | null
   /** Why it failed: a code and a sentence. */
   fault: { code: string; detail: string } | null
+  /** The plan in short; null until it is done. */
+  gist: unknown
 }
 
 export interface StoredPlan extends PlanEntry {
@@ -34,7 +36,7 @@ export interface PlanStore {
   /** Marks a plan as being worked on. @returns false where it is done, or another works on it */
   begin(plan: NewPlan): Promise<boolean>
   /** Keeps the result, unless the plan was cancelled meanwhile. @returns whether it was kept */
-  finish(id: string, plan: unknown): Promise<boolean>
+  finish(id: string, plan: unknown, gist: unknown): Promise<boolean>
   fail(id: string, fault: { code: string; detail: string }): Promise<void>
   /** @returns whether it was being worked on */
   cancel(id: string): Promise<boolean>
@@ -47,7 +49,7 @@ export interface PlanStore {
 export function planStore(sql: Sql): PlanStore {
   const entry = (): Fragment => sql`
     id, race_id as "raceId", to_char(date, 'YYYY-MM-DD') as date, car_id as "carId", sky_id as "skyId", wanted,
-    inputs_hash as "inputsHash", engine_version as "engineVersion", state, fault,
+    inputs_hash as "inputsHash", engine_version as "engineVersion", state, fault, gist,
     ${utc(sql, 'started_at')} as "startedAt", ${utc(sql, 'ended_at')} as "endedAt"`
 
   return {
@@ -68,9 +70,10 @@ export function planStore(sql: Sql): PlanStore {
       return rows.length > 0
     },
 
-    async finish(id, plan) {
+    async finish(id, plan, gist) {
       const rows = await sql<{ id: string }[]>`
-        update plans set state = 'done', ended_at = clock_timestamp(), plan = ${json(sql, 'plan', plan)}
+        update plans set state = 'done', ended_at = clock_timestamp(), plan = ${json(sql, 'plan', plan)},
+          gist = ${json(sql, 'gist', gist)}
         where id = ${id} and state = 'working' returning id`
       return rows.length > 0
     },

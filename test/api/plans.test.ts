@@ -39,7 +39,15 @@ describe('a plan of stored documents', () => {
     expect(again.json().id).toBe(id)
     expect(again.json().plan).toEqual(plan.plan)
     const listed = (await service.ask({ method: 'GET', url: '/api/v1/races/plateau/plans' })).json()
-    expect(listed.items.map((one: { id: string }) => one.id)).toContain(id)
+    const entry = listed.items.find((one: { id: string }) => one.id === id)
+    expect(entry.gist).toEqual({
+      outcome: 'planned',
+      targetPct: plan.plan.target.chargePct,
+      arriveAt: plan.plan.forPeople.arriveAt,
+      closingWh: plan.plan.forPeople.closingWh,
+      closingPct: plan.plan.forPeople.closingPct,
+      touchesReservePct: plan.plan.ranges.touchesReservePct,
+    })
   })
 
   test('forecast anew at its speeds gives the same balance and arrival', async () => {
@@ -54,6 +62,16 @@ describe('a plan of stored documents', () => {
       expect(Math.abs(day.closing.wh - choice.closingWh)).toBeLessThan(1)
       const arrival = day.stages[day.stages.length - 1].arriveAt
       expect(Math.abs(Date.parse(arrival) - Date.parse(choice.arriveAt))).toBeLessThanOrEqual(1000)
+    }
+  })
+
+  test('compares battery and range at one moment at every gate: on arrival where there is a stop', async () => {
+    const { id } = (await order(wanted)).json()
+    const { gates } = (await settled(id)).plan.ranges
+    expect(gates.map(({ name }: { name: string }) => name)).toContain('Twin Wells')
+    for (const { plannedWh, wh } of gates) {
+      expect(wh.p10).toBeLessThan(plannedWh)
+      expect(wh.p90).toBeGreaterThan(plannedWh)
     }
   })
 

@@ -24,8 +24,11 @@ export interface Course {
 /** What the members of an ensemble did. */
 export interface Members {
   count: number
-  /** Energy at each edge, a row a member. [J] (count × (pieces + 1)) */
+  /** Energy at each edge, after the stop that may stand there, a row a member. [J] (count × (pieces + 1)) */
   energyJ: Float32Array
+  /** Edges with a stop, and the energy on arrival there, a row a member. [J] (count × stops) */
+  stopEdges: Int32Array
+  arriveJ: Float32Array
   /** Energy at the close. [J] (count) */
   duskJ: Float64Array
   /** Harvest on the road. [J] (count) */
@@ -90,6 +93,9 @@ export function courseOf(
 
 const LEAST_SUN = 0.02
 
+const edgesWithStop = ({ stopJ }: Course): Int32Array =>
+  Int32Array.from([...stopJ.keys()].filter((edge) => stopJ[edge] !== 0))
+
 /**
  * Drives the same speeds through many days that differ as the spreads say.
  *
@@ -102,9 +108,12 @@ const LEAST_SUN = 0.02
 export function members(course: Course, spreads: Spreads, count: number, seed: number, only?: Cause): Members {
   const { day } = course
   const { pieces: n, pack, floorJ } = day
+  const stopEdges = edgesWithStop(course)
   const out: Members = {
     count,
     energyJ: new Float32Array(count * (n + 1)),
+    stopEdges,
+    arriveJ: new Float32Array(count * stopEdges.length),
     duskJ: new Float64Array(count),
     harvestJ: new Float64Array(count),
     spareJ: new Float64Array(count),
@@ -126,12 +135,16 @@ export function members(course: Course, spreads: Spreads, count: number, seed: n
     let spareEdge = 0
     const row = m * (n + 1)
     let factor = 1
+    let stop = m * stopEdges.length
     for (let i = 0; i <= n; i++) {
       if (i > 0 && E - floorJ[i] < spareJ) {
         spareJ = E - floorJ[i]
         spareEdge = i
       }
-      if (course.stopJ[i] !== 0) E = Math.min(E + course.stopJ[i] * factor * trackerFactor, ceilingJ)
+      if (course.stopJ[i] !== 0) {
+        out.arriveJ[stop++] = E
+        E = Math.min(E + course.stopJ[i] * factor * trackerFactor, ceilingJ)
+      }
       out.energyJ[row + i] = E
       if (i === n) break
       const memory = course.memory[i]

@@ -21,10 +21,13 @@ export function rangeOf(values: ArrayLike<number>): Range {
   return { p10: quantile(sorted, 0.1), p50: quantile(sorted, 0.5), p90: quantile(sorted, 0.9) }
 }
 
-/** Energy over the members at one edge. [J] */
+/** Energy over the members as they come to an edge: before the stop that may stand there. [J] */
 export function rangeAt(of: Members, pieces: number, edge: number): Range {
+  const stops = of.stopEdges.length
+  const stop = of.stopEdges.indexOf(edge)
   const values = new Float64Array(of.count)
-  for (let m = 0; m < of.count; m++) values[m] = of.energyJ[m * (pieces + 1) + edge]
+  for (let m = 0; m < of.count; m++)
+    values[m] = stop < 0 ? of.energyJ[m * (pieces + 1) + edge] : of.arriveJ[m * stops + stop]
   return rangeOf(values)
 }
 
