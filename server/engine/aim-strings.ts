@@ -1,17 +1,20 @@
 import { deSoto, maximumPower } from './cell.ts'
 import type { LitPanel } from './panel-light.ts'
 import type { Pose } from './stand.ts'
-import type { StringModel } from './substrings.ts'
+import { type StringModel, substringsOf } from './substrings.ts'
 
 /** Panels with one orientation, one cover and no shade of their own: they see the same light. */
 export type Face = Pick<LitPanel, 'pitchRad' | 'rollRad' | 'lifts' | 'beamTable' | 'losesDiffuse' | 'shade'>
 
 /** Cells in series over several faces, as the search for a pose weighs them. */
 export interface SpanningString {
+  /** Face of each part: cells that give way together, in one light. */
   faces: number[]
-  /** Power of a face's cells per light on them. [W per W/m²] */
+  /** Share of the face's light that its weakest cells get: dust and faults. */
+  shares: number[]
+  /** Power of its cells per light on them. [W per W/m²] */
   cellsW: number[]
-  /** What their bypass diodes take when the string's current goes past them. [W per W/m²] */
+  /** What its bypass diodes take when the string's current goes past them; Infinity without. [W per W/m²] */
   pastW: number[]
 }
 
@@ -52,25 +55,28 @@ export function aimStrings(panels: LitPanel[], strings: StringModel[]): AimStrin
   const spanning: SpanningString[] = []
   for (const string of strings) {
     const parts = partsOf(string, faceOf)
-    if (parts.faces.length === 1) perFaceW[parts.faces[0]] += parts.cellsW[0]
-    else spanning.push(parts)
+    const [face] = parts.faces
+    if (parts.faces.some((other) => other !== face)) spanning.push(parts)
+    else if (face !== undefined) perFaceW[face] += spanningW(parts, new Float64Array(faces.length).fill(1), 0, 1)
   }
   return { faces, perFaceW, spanning, known: new Map() }
 }
 
 function partsOf(string: StringModel, faceOf: number[]): SpanningString {
   const best = maximumPower(deSoto(string.cell, REFERENCE_WM2, REFERENCE_C))
-  const perWm2 = (string.cellsInParallel * (1 - string.soilingFraction)) / REFERENCE_WM2
-  const parts: SpanningString = { faces: [], cellsW: [], pastW: [] }
-  for (const { panel, cellsInSeries, bypassDiodes = 1 } of string.groups) {
+  const rows = string.cellsInParallel / REFERENCE_WM2
+  const all: SpanningString = { faces: [], shares: [], cellsW: [], pastW: [] }
+  for (const { panel, parts, dropV } of substringsOf(string)) {
     const face = faceOf[panel]
-    const known = parts.faces.indexOf(face)
-    const at = known < 0 ? parts.faces.push(face) - 1 : known
-    parts.cellsW[at] = (parts.cellsW[at] ?? 0) + perWm2 * best.W * cellsInSeries
-    const pastV = bypassDiodes === 0 ? Infinity : string.bypassV * bypassDiodes
-    parts.pastW[at] = (parts.pastW[at] ?? 0) + perWm2 * best.A * pastV
+    const share = Math.min(...parts.map(({ lightShare }) => lightShare))
+    const cells = parts.reduce((sum, part) => sum + part.cells, 0)
+    const known = all.faces.findIndex((other, i) => other === face && all.shares[i] === share)
+    const at = known < 0 ? all.faces.push(face) - 1 : known
+    all.shares[at] = share
+    all.cellsW[at] = (all.cellsW[at] ?? 0) + rows * best.W * cells
+    all.pastW[at] = (all.pastW[at] ?? 0) + rows * best.A * dropV
   }
-  return parts
+  return all
 }
 
 /**
@@ -85,27 +91,46 @@ function partsOf(string: StringModel, faceOf: number[]): SpanningString {
  * @source Bucciarelli 1979, Power loss in photovoltaic arrays due to mismatch in cell characteristics (from memory)
  */
 export function spanningW(string: SpanningString, lightWm2: Float64Array, at: number, stride: number): number {
-  const { faces, cellsW, pastW } = string
-  let best = 0
+  const { faces, shares } = string
+  let darkest = 0
+  let least = Number.POSITIVE_INFINITY
   for (let k = 0; k < faces.length; k++) {
-    const weakest = lightWm2[at + faces[k] * stride]
-    if (!(weakest > 0)) continue
-    let cells = 0
-    let held = 0
-    let past = 0
-    for (let j = 0; j < faces.length; j++) {
-      const light = lightWm2[at + faces[j] * stride]
-      if (light < weakest) {
-        past += pastW[j]
-        continue
-      }
-      const share2 = (weakest / light) ** 2
-      const share8 = share2 * share2 * share2 * share2
-      cells += cellsW[j]
-      held += cellsW[j] * share8 * share8
-    }
-    const current = weakest * Math.sqrt(Math.sqrt(Math.sqrt(Math.sqrt(cells / held))))
-    best = Math.max(best, current * (cells - past))
+    const light = lightWm2[at + faces[k] * stride] * shares[k]
+    if (!(light < least)) continue
+    darkest = k
+    least = light
   }
+  let best = carriedW(string, lightWm2, { at, stride, weakest: darkest, floorW: 0 })
+  for (let k = 0; k < faces.length; k++)
+    if (k !== darkest) best = Math.max(best, carriedW(string, lightWm2, { at, stride, weakest: k, floorW: best }))
   return best
+}
+
+const root16 = (x: number): number => Math.sqrt(Math.sqrt(Math.sqrt(Math.sqrt(x))))
+
+/** Power when the parts no darker than one carry the string; 0 where it cannot be above a floor. [W] */
+function carriedW(
+  { faces, shares, cellsW, pastW }: SpanningString,
+  lightWm2: Float64Array,
+  of: { at: number; stride: number; weakest: number; floorW: number },
+): number {
+  const { at, stride } = of
+  const weakest = lightWm2[at + faces[of.weakest] * stride] * shares[of.weakest]
+  let cells = 0
+  let past = 0
+  for (let j = 0; j < faces.length; j++)
+    if (lightWm2[at + faces[j] * stride] * shares[j] < weakest) past += pastW[j]
+    else cells += cellsW[j]
+  // However bright the others are, the mean is above the weakest by no more than its own cells allow.
+  if (!(weakest * root16(cells / cellsW[of.weakest]) * (cells - past) > of.floorW)) return 0
+  let held = 0
+  for (let j = 0; j < faces.length; j++) {
+    const light = lightWm2[at + faces[j] * stride] * shares[j]
+    if (light < weakest) continue
+    const share = weakest / light
+    const share2 = share * share
+    const share8 = share2 * share2 * share2 * share2
+    held += cellsW[j] * share8 * share8
+  }
+  return weakest * root16(cells / held) * (cells - past)
 }

@@ -139,7 +139,7 @@ export function liftedNormal(
 /**
  * Light on one panel and light that reaches its cells, at steps from..to−1.
  *
- * The normal is worked out only when heading or grade change; the angle between sun and panel is a dot product.
+ * The normal is worked out only when heading, grade or pose change; the angle between sun and panel is a dot product.
  *
  * @param block   sky of the same steps
  * @param albedo  share of light that the ground throws back, 0..1
@@ -153,6 +153,7 @@ export function panelLight(
   out: PanelLight,
 ): void {
   const { headingRad, gradeRad, lifted } = steps.pose
+  const { tiltRad, azimuthRad } = steps.aim
   const { from, to, block, albedo, lit } = range
   const { beamTable, losesDiffuse, lifts } = panel
   const evenShare = panel.shade?.evenShare ?? 1
@@ -161,15 +162,20 @@ export function panelLight(
   let [sinTilt, keptSky, keptGround] = [0, 1, 1]
   let lastHeading = Number.NaN
   let lastGrade = Number.NaN
+  let lastTilt = Number.NaN
+  let lastAzimuth = Number.NaN
   let wasUp = false
   for (let i = from, b = 0; i < to; i++, b++) {
     const isUp = lifts && lifted[i] === 1
-    if (isUp || wasUp || headingRad[i] !== lastHeading || gradeRad[i] !== lastGrade) {
+    const isTurned = isUp && (tiltRad[i] !== lastTilt || azimuthRad[i] !== lastAzimuth)
+    if (isTurned || isUp !== wasUp || headingRad[i] !== lastHeading || gradeRad[i] !== lastGrade) {
       lastHeading = headingRad[i]
       lastGrade = gradeRad[i]
+      lastTilt = tiltRad[i]
+      lastAzimuth = azimuthRad[i]
       wasUp = isUp
       normal = isUp
-        ? liftedNormal(panel, lastHeading, steps.aim.tiltRad[i], steps.aim.azimuthRad[i])
+        ? liftedNormal(panel, lastHeading, lastTilt, lastAzimuth)
         : panelNormal(panel.pitchRad, panel.rollRad, lastHeading, lastGrade)
       east = normal[0]
       north = normal[1]

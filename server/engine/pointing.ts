@@ -75,8 +75,52 @@ function poseHolds(array: PreparedArray, steps: LiftedSteps, out: AimAlong, find
   }
 }
 
+/** Steps whose light is searched as one: in ten minutes the sun moves by 2.5°. */
+const AT_ONCE = 10
+
 function takeUp(light: PoseLight, array: PreparedArray, { steps, sky, from, to }: Held): void {
-  light.hold({ sky, from, to, headingRad: steps.headingRad[from], albedo: array.model.albedo })
+  const count = condense(sky, to - from)
+  light.hold({ sky, count, headingRad: steps.headingRad[from], albedo: array.model.albedo })
+}
+
+/**
+ * Sums a block of sky by every few steps, in place: beam and light around the sun as vectors, the rest as it is.
+ *
+ * @returns how many sums there are
+ */
+function condense(sky: SkyBlock, steps: number): number {
+  const parts = Math.ceil(steps / AT_ONCE)
+  for (let part = 0; part < parts; part++)
+    sumSky(sky, part, Math.floor((part * steps) / parts), Math.floor(((part + 1) * steps) / parts))
+  return parts
+}
+
+function sumSky(sky: SkyBlock, to: number, from: number, end: number): void {
+  if (end - from === 1 && from === to) return
+  const { sunEast, sunNorth, sunUp, beamWm2, aroundSunWm2, domeWm2, horizonWm2, groundWm2 } = sky
+  let [east, north, up, beam, around, dome, horizon, ground] = [0, 0, 0, 0, 0, 0, 0, 0]
+  for (let b = from; b < end; b++) {
+    // A trace of light that is not there keeps the direction where there is no beam.
+    const weight = beamWm2[b] + aroundSunWm2[b] + 1e-9
+    east += weight * sunEast[b]
+    north += weight * sunNorth[b]
+    up += weight * sunUp[b]
+    beam += beamWm2[b]
+    around += aroundSunWm2[b]
+    dome += domeWm2[b]
+    horizon += horizonWm2[b]
+    ground += groundWm2[b]
+  }
+  const length = Math.hypot(east, north, up)
+  const kept = Math.min(1, length / (beam + around + 1e-9 * (end - from)))
+  sunEast[to] = east / length
+  sunNorth[to] = north / length
+  sunUp[to] = up / length
+  beamWm2[to] = beam * kept
+  aroundSunWm2[to] = around * kept
+  domeWm2[to] = dome
+  horizonWm2[to] = horizon
+  groundWm2[to] = ground
 }
 
 /** What a pose depends on, besides heading and length of the hold. */

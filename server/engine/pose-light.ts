@@ -7,10 +7,9 @@ import { type Frame, frameOf, liftedFrame, litShare } from './shade.ts'
 
 /** Steps with one heading in which one pose is held. */
 export interface Hold {
-  /** Sky of the hold's steps from 0 on. */
+  /** Sky of the hold's steps from 0 on, or of sums of them. */
   sky: SkyBlock
-  from: number
-  to: number
+  count: number
   headingRad: number
   /** Share of light that the ground throws back, 0..1. */
   albedo: number
@@ -77,7 +76,7 @@ export function poseLight(strings: AimStrings): PoseLight {
       facing.east = lain * sinA + aside * cosA
       facing.north = lain * cosA - aside * sinA
       facing.up = up * cosT - towards * sinT
-      sum += perFaceW[f] * faceLight(faces[f], hold, facing, lightWm2, f * (hold.to - hold.from))
+      sum += perFaceW[f] * faceLight(faces[f], hold, facing, lightWm2, f * hold.count)
     }
     return sum
   }
@@ -85,7 +84,7 @@ export function poseLight(strings: AimStrings): PoseLight {
   return {
     hold(next) {
       now = next
-      const steps = next.to - next.from
+      const steps = next.count
       if (lightWm2.length < faces.length * steps) lightWm2 = new Float64Array(faces.length * steps)
       stillW = 0
       const frame = frameOf(next.headingRad, 0)
@@ -96,8 +95,7 @@ export function poseLight(strings: AimStrings): PoseLight {
           stillW += perFaceW[f] * faceLight(face, next, { east, north, up, frame }, lightWm2, f * steps)
       })
     },
-    powerW: (tiltRad, azimuthRad) =>
-      now === null ? 0 : light(now, tiltRad, azimuthRad) + spanningSumW(now.to - now.from),
+    powerW: (tiltRad, azimuthRad) => (now === null ? 0 : light(now, tiltRad, azimuthRad) + spanningSumW(now.count)),
   }
 }
 
@@ -109,7 +107,7 @@ function faceLight(
   out: Float64Array,
   at: number,
 ): number {
-  const { sky, from, to, albedo } = hold
+  const { sky, count, albedo } = hold
   const evenShare = shade?.evenShare ?? 1
   const { sunEast, sunNorth, sunUp, beamWm2, aroundSunWm2, domeWm2, horizonWm2, groundWm2 } = sky
   const half = Math.sqrt(0.5 * Math.max(0, 1 - up))
@@ -119,7 +117,7 @@ function faceLight(
   const dome = keptSky * (1 - half * half)
   const horizon = keptSky * sinTilt
   let sum = 0
-  for (let b = 0; b < to - from; b++) {
+  for (let b = 0; b < count; b++) {
     const cos = Math.min(1, Math.max(0, east * sunEast[b] + north * sunNorth[b] + up * sunUp[b]))
     const lit = shade === null ? cos : cos * litShare(shade, frame, sunEast[b], sunNorth[b], sunUp[b])
     const through = beamTable === null ? lit : lit * tableAt(beamTable, cos * INCIDENCE_STEPS)

@@ -2,10 +2,10 @@ import { arcRad, nearestAzimuthRad, type Pose, type Stand, turn } from './stand.
 
 const RAD = Math.PI / 180
 /** Widest gaps of the grid: light lies on a plane by cosines, whose hills are wider. [rad] */
-const TILT_GAP_RAD = 15 * RAD
-const AZIMUTH_GAP_RAD = 30 * RAD
+const TILT_GAP_RAD = 20 * RAD
+const AZIMUTH_GAP_RAD = 40 * RAD
 /** First and last reach of the climb, each a quarter of the one before. [rad] */
-const FIRST_REACH_RAD = 8 * RAD
+const FIRST_REACH_RAD = 10 * RAD
 const LAST_REACH_RAD = 0.1 * RAD
 /** A hill that starts lower than this share of the highest is not climbed. */
 const NEARLY = 0.95

@@ -85,7 +85,10 @@ describe('being off', () => {
 
 describe('the table of a day', () => {
   it('has a window for the morning, the stop and the evening, cut into holds of ten minutes', () => {
-    const { forecast, windows } = tableOf(some())
+    const race = someRace()
+    // 2.35 minutes to lift leave 25.65 minutes, which no whole number of equal steps of a minute cuts at ten.
+    for (const stage of race.days[0].stages ?? []) stage.stop = { minutes: 30, raiseMin: 2.35 }
+    const { forecast, windows } = tableOf(some({ race }))
     const kinds = windows.map(({ span }) => forecast.timetable.spans[span].kind)
     expect(kinds).toEqual(['morning-charge', 'stop', 'evening-charge'])
     const [morning, stop] = windows
@@ -96,7 +99,7 @@ describe('the table of a day', () => {
     for (const [got, want] of [
       [first, 10],
       [second, 10],
-      [last, 6],
+      [last, 5.65],
     ])
       expect(got).toBeCloseTo(want, 6)
     expect(stop.holds.length).toBe(3)
@@ -148,9 +151,9 @@ describe('the table of a day', () => {
     const [morning] = windows
     expect(morning.best.stringsW).toBeGreaterThan(100)
     expect(morning.flat.stringsW).toBeLessThan(0.7 * morning.best.stringsW)
-    // What is left is the trackers' own draw, less than 0.1 Wh.
+    // By hand: what is left is that trackers in more light wake earlier: two that draw 1 W each, for some minutes.
     for (const { takenJ, storedJ } of [morning.flat, ...morning.off]) {
-      expect(Math.abs(takenJ - morning.best.takenJ)).toBeLessThan(360)
+      expect(Math.abs(takenJ - morning.best.takenJ)).toBeLessThan(600)
       expect(Math.abs(storedJ - morning.best.storedJ)).toBeLessThan(1)
     }
   })

@@ -8,6 +8,7 @@ import { holdsAlong } from '../../server/engine/pointing.ts'
 import { poseLight } from '../../server/engine/pose-light.ts'
 import { apartRad } from '../../server/engine/pose-search.ts'
 import { aimAtSun, arcRad, type Pose, type Stand } from '../../server/engine/stand.ts'
+import type { StringModel } from '../../server/engine/substrings.ts'
 import {
   ANY_POSE,
   anyArray,
@@ -282,7 +283,7 @@ function lightOf(model: ArrayModel, moment: Moment): (pose: Pose) => number {
   const sky = skyBlock(1)
   fillSky(model.skyModel, weather, 0, 1, sky)
   const light = poseLight(prepared.aim)
-  light.hold({ sky, from: 0, to: 1, headingRad: headingRad[0], albedo: model.albedo })
+  light.hold({ sky, count: 1, headingRad: headingRad[0], albedo: model.albedo })
   return ({ tiltRad, azimuthRad }) => light.powerW(tiltRad, azimuthRad)
 }
 
@@ -339,6 +340,33 @@ describe('the light that the search weighs', () => {
     // Warm cells give less than cells at 25 °C: 39 K at 0.35 %/K (common practice, no source).
     expect(bestW / whole).toBeGreaterThan(0.83)
     expect(bestW / whole).toBeLessThan(0.9)
+  })
+})
+
+describe('a string with a fault', () => {
+  const watts = (faults: StringModel['faults'], groups: StringModel['groups']): number =>
+    lightOf(array({ strings: [string(groups, faults === undefined ? {} : { faults })] }), { ...SUN, dni: 1000 })({
+      tiltRad: 60 * RAD,
+      azimuthRad: 70 * RAD,
+    })
+  const whole = watts(undefined, [{ panel: 0, cellsInSeries: 40, bypassDiodes: 2 }])
+
+  // Source: by hand: half the string at full light beats all of it at 0.3; its diode drops 0.5 V of the other half's 11 V.
+  it('goes past cells that are weak where that is worth more, and is held by them where nothing lets it past', () => {
+    const weak = [{ group: 0, diode: 0, cells: 1, kind: 'weak' as const, lightShare: 0.3 }]
+    const past = watts(weak, [{ panel: 0, cellsInSeries: 40, bypassDiodes: 2 }])
+    expect(past / whole).toBeGreaterThan(0.46)
+    expect(past / whole).toBeLessThan(0.5)
+    const held = watts(
+      weak,
+      [{ panel: 0, cellsInSeries: 40, bypassDiodes: 0 }].map((group) => ({ ...group })),
+    )
+    expect(held / whole).toBeCloseTo(0.3, 6)
+  })
+
+  it('is worth nothing where a cell is open and no diode lets current past', () => {
+    const open = [{ group: 0, diode: 0, cells: 1, kind: 'open' as const, lightShare: 0 }]
+    expect(watts(open, [{ panel: 0, cellsInSeries: 40, bypassDiodes: 0 }])).toBe(0)
   })
 })
 
