@@ -4,6 +4,7 @@ import closeWithGrace from 'close-with-grace'
 import { hashOf, newToken } from './api/access.ts'
 import { type Api } from './api/api.ts'
 import { loadDemo, ownDoor } from './api/demo-load.ts'
+import { renewOutdated } from './api/followed.ts'
 import { buildApp } from './app.ts'
 import type { JOBS } from './compute/jobs.ts'
 import { computePool } from './compute/pool.ts'
@@ -69,6 +70,9 @@ async function serve(config: Config): Promise<Started> {
   open.push(() => app.close())
   await loadDemo(ownDoor(app, ownToken), store, join(ROOT, 'server', 'demo'), warn)
   await listen(app, config)
+  renewOutdated(parts).catch((error: unknown) =>
+    warn(`Budgets of an earlier engine were not renewed: ${String(error)}`),
+  )
   return { address: publicOrigin ?? addressOf(app, config), ownerToken: await firstOwner(store) }
 }
 

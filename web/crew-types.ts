@@ -29,7 +29,7 @@ export interface Moved {
 /** One entry of the history: what moved a day’s budget, and where to. */
 export interface Move {
   date: string
-  cause: 'reading' | 'set-aside' | 'take-back' | 'use-bench' | 'use-learned' | 'choice'
+  cause: 'reading' | 'set-aside' | 'take-back' | 'use-bench' | 'use-learned' | 'choice' | 'engine'
   readingId: string | null
   closingWhBefore: number | null
   closingWhAfter: number | null

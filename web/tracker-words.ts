@@ -105,6 +105,7 @@ const CAUSES: Record<Move['cause'], string> = {
   'use-bench': 'Back to the bench',
   'use-learned': 'Bench and readings',
   choice: 'Choice',
+  engine: 'Newer models',
 }
 
 /** What moved a day, in one line: the cause, whose tracker, by how much, to where. */

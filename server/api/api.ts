@@ -23,11 +23,18 @@ export const SPEEDS_LIMIT = 1_000_000
 /** Largest body elsewhere. [bytes] */
 export const SMALL_LIMIT = 64_000
 
+/** Why a computation ends for which nobody waits any more: nothing that the service did wrong. */
+export class ClientGone extends Error {
+  constructor() {
+    super('the client went away')
+  }
+}
+
 /** Aborts when the client goes away before its answer is out. */
 export function clientGone(reply: FastifyReply): AbortSignal {
   const gone = new AbortController()
   reply.raw.once('close', () => {
-    if (!reply.raw.writableFinished) gone.abort(new Error('the client went away'))
+    if (!reply.raw.writableFinished) gone.abort(new ClientGone())
   })
   return gone.signal
 }

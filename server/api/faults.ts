@@ -1,7 +1,7 @@
 import type { Socket } from 'node:net'
 import type { FastifyBaseLogger, FastifyReply, FastifyRequest } from 'fastify'
 import { ERRORS, Fault, PROBLEM_TYPE, problemAnswer } from '../errors.ts'
-import type { Api } from './api.ts'
+import { type Api, ClientGone } from './api.ts'
 import { faultOf } from './fault-of.ts'
 
 /** Answers every error as application/problem+json; what the service itself did wrong is logged once. */
@@ -14,7 +14,7 @@ export function answerFaults(app: Api): void {
 export function sendFault(error: unknown, request: FastifyRequest, reply: FastifyReply): void {
   const fault = faultOf(error)
   const { status } = ERRORS[fault.code]
-  if (status >= 500) logFault(request.log, fault)
+  if (status >= 500 && !(error instanceof ClientGone)) logFault(request.log, fault)
   void reply
     .code(status)
     .headers({ ...fault.headers, 'cache-control': 'no-store' })

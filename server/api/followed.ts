@@ -1,5 +1,6 @@
 import { z } from 'zod'
 import { budgetDocument, type DayBudget } from '../documents/budget.ts'
+import { ENGINE_VERSION } from '../engine/version.ts'
 import { ERRORS, Fault } from '../errors.ts'
 import { dayTopic } from '../live/topics.ts'
 import type { StoredChoice } from '../store/choice-store.ts'
@@ -45,7 +46,8 @@ export async function followed(
 
 /** The one day of a forecast's budget. */
 export function dayIn({ budget }: StoredForecast, date: string): DayBudget | null {
-  return budgetDocument.parse(budget).days.find((day) => day.date === date) ?? null
+  const read = budgetDocument.safeParse(budget)
+  return read.data?.days.find((day) => day.date === date) ?? null
 }
 
 /** Whether a day's followed budget is made with what the readings of its car show. */
@@ -72,6 +74,12 @@ export async function makeAnew(needs: Needs, raceId: string, cause: Cause): Prom
     if (state === (await stateOf(needs.store, raceId))) break
   }
   return [...all.values()]
+}
+
+/** Makes every followed budget anew that another engine made; one that no longer can be stays as it is. */
+export async function renewOutdated(needs: Needs): Promise<void> {
+  for (const raceId of await needs.store.choices.outdated(ENGINE_VERSION))
+    await makeAnew(needs, raceId, { cause: 'engine', readingId: null, by: null })
 }
 
 /** All that budgets are made anew for, as text. */

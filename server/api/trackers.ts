@@ -90,7 +90,7 @@ export function trackerRoutes(api: Api, needs: Needs): void {
 
 const move = z.strictObject({
   date: z.string(),
-  cause: z.enum(['reading', 'set-aside', 'take-back', 'use-bench', 'use-learned', 'choice']),
+  cause: z.enum(['reading', 'set-aside', 'take-back', 'use-bench', 'use-learned', 'choice', 'engine']),
   readingId: z.string().nullable(),
   pointsPct: z.record(z.string(), z.number()).describe('efficiency over the day, by tracker [points]'),
   closingWhBefore: z.number().nullable().describe('closing balance before; null for the first budget of a day [Wh]'),

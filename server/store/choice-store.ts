@@ -22,6 +22,8 @@ export interface ChoiceStore {
   get(raceId: string, date: string): Promise<StoredChoice | null>
   /** The choice that holds on each day of a race, by date. */
   list(raceId: string): Promise<StoredChoice[]>
+  /** Races with a choice that holds whose forecast another engine made. */
+  outdated(engineVersion: string): Promise<string[]>
   /**
    * Chooses for a day, starting from the version that holds, null for the first.
    *
@@ -67,6 +69,18 @@ export function choiceStore(sql: Sql): ChoiceStore {
       if (!isSlug(raceId)) return []
       const rows = await sql<StoredChoice[]>`${current(sql`race_id = ${raceId}`)}`
       return rows
+    },
+
+    async outdated(engineVersion) {
+      const rows = await sql<{ raceId: string }[]>`
+        select distinct c.race_id as "raceId"
+        from (
+          select distinct on (race_id, date) race_id, forecast_id from day_choices order by race_id, date, version desc
+        ) c
+        join forecasts f on f.id = c.forecast_id
+        where f.engine_version <> ${engineVersion}
+        order by 1`
+      return rows.map((row) => row.raceId)
     },
 
     async put({ raceId, date }, expectedVersion, { carId, skyId, speeds, forecastId }, by) {

@@ -1,7 +1,7 @@
 import type { Sql } from './guarded-sql.ts'
 import { checkBy, checkField, isDay, isSlug, isUuid, json, saving, utc } from './storable.ts'
 
-export type MoveCause = 'reading' | 'set-aside' | 'take-back' | 'use-bench' | 'use-learned' | 'choice'
+export type MoveCause = 'reading' | 'set-aside' | 'take-back' | 'use-bench' | 'use-learned' | 'choice' | 'engine'
 
 /** What moved a day's closing balance, and by how much. */
 export interface NewMove {

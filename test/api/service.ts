@@ -29,6 +29,7 @@ export interface Service {
   store: Store
   database: Database
   compute: Compute
+  live: Parts['live']
   /** The answer to a request, checked against the description of the API. */
   ask(request: Request): Promise<LightMyRequestResponse>
   /** Another application on the same store and workers. */
@@ -77,6 +78,7 @@ export async function startService(settings: { timeLimitMs?: number } = {}): Pro
     store,
     database,
     compute,
+    live,
     async ask(request) {
       const answer = await app.inject(request)
       const type = String(answer.headers['content-type'])

@@ -5,7 +5,10 @@ import type { Problem } from '../../server/documents/problem.ts'
 import { raceDocument } from '../../server/documents/race.ts'
 import { routeDocument } from '../../server/documents/route.ts'
 import { someCar, someRace, someRoute } from '../support/scenario.ts'
-import { CASES } from './wrong-documents.ts'
+import { WRONG_CARS } from './wrong-cars.ts'
+import { WRONG_DOCUMENTS } from './wrong-documents.ts'
+
+const CASES = [...WRONG_CARS, ...WRONG_DOCUMENTS]
 
 type Change = (document: Record<string, never>) => void
 

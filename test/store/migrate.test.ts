@@ -24,6 +24,7 @@ const OWN_FILES = [
   '007-moves.sql',
   '008-events.sql',
   '009-plans.sql',
+  '010-engine-moves.sql',
 ]
 
 function migrateSuite(open: () => Promise<TestDatabase>): void {
