@@ -1,4 +1,4 @@
-import { type DayTables, rowAt, storedW } from './day-tables.ts'
+import { type DayTables, rowAt, storedW, WAIT_PART_S } from './day-tables.ts'
 
 /**
  * A function of time at one edge, from below: straight between its nodes, which stand evenly from the earliest instant
@@ -43,32 +43,42 @@ export function mostBetween(day: DayTables, row: Float64Array, first: number, fr
   return most
 }
 
-/** Lets the car wait at an edge, in the best sun of the minutes around: the lower of two lines in each cell. */
-export function waiting(day: DayTables, below: Below, piece: number, price: number): void {
+/**
+ * Lets the car wait at an edge, in the best sun of the minutes around: the lower of two lines in each cell. At the end
+ * no wait is held to cost energy, since the floor is asked on arrival.
+ */
+export function waiting(day: DayTables, below: Below, edge: number, price: number): void {
   const { atS, value } = below
+  const row = Math.min(edge, day.pieces - 1) * day.clock.count
+  const leastW = edge === day.pieces ? 0 : Number.NEGATIVE_INFINITY
   for (let j = 1; j < atS.length; j++) {
-    const row = piece * day.clock.count
-    const sunW = mostBetween(day, day.harvestW, row, atS[j - 1] - WAIT_S, atS[j] + WAIT_S)
-    const waited = value[j - 1] - price * storedW(day.pack, sunW - day.waitingLoadW) * (atS[j] - atS[j - 1])
+    const sunW = mostBetween(day, day.harvestW, row, atS[j - 1] - WAIT_PART_S, atS[j] + WAIT_PART_S)
+    const gainedW = Math.max(storedW(day.pack, sunW - day.waitingLoadW), leastW)
+    const waited = value[j - 1] - price * gainedW * (atS[j] - atS[j - 1])
     if (waited < value[j]) value[j] = waited
   }
 }
 
-/** A wait is reckoned with the sun at its middle, which lies no farther off. [S] */
-const WAIT_S = 60
-
-/** Least of arrival, value and what the evening leaves wanting, over all ends. */
+/**
+ * Least of arrival, value and what the evening leaves wanting, over all ends: at every node, every step of the clock,
+ * and where the floor takes over from the target.
+ */
 export function leastAtEnd(day: DayTables, { atS, value }: Below, price: number): number {
   const { clock, duskGainJ, targetJ, floorJ, pieces } = day
-  const wantedAt = (s: number): number => price * Math.max(targetJ - rowAt(duskGainJ, 0, clock, s), floorJ[pieces])
-  let least = atS[0] + value[0] + wantedAt(atS[0])
+  const wantJ = (s: number): number => targetJ - rowAt(duskGainJ, 0, clock, s)
+  const floor = floorJ[pieces]
+  const total = (s: number, before: number): number => s + before + price * Math.max(wantJ(s), floor)
+  let least = total(atS[0], value[0])
   for (let j = 1; j < atS.length; j++) {
-    least = Math.min(least, atS[j] + value[j] + wantedAt(atS[j]))
     const slope = (value[j] - value[j - 1]) / (atS[j] - atS[j - 1])
-    for (let n = Math.max(Math.ceil((atS[j - 1] - clock.from) / clock.step), 0); n < clock.count; n++) {
-      const s = clock.from + n * clock.step
-      if (s >= atS[j]) break
-      least = Math.min(least, s + value[j - 1] + slope * (s - atS[j - 1]) + wantedAt(s))
+    let fromS = atS[j - 1]
+    while (fromS < atS[j]) {
+      const node = clock.from + (Math.floor((fromS - clock.from) / clock.step + 1e-9) + 1) * clock.step
+      const toS = Math.min(node, atS[j])
+      const [from, to] = [wantJ(fromS) - floor, wantJ(toS) - floor]
+      const bendS = from * to < 0 ? fromS + ((toS - fromS) * from) / (from - to) : toS
+      for (const s of [bendS, toS]) least = Math.min(least, total(s, value[j - 1] + slope * (s - atS[j - 1])))
+      fromS = toS
     }
   }
   return least

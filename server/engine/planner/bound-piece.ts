@@ -1,4 +1,5 @@
 import { type Below, emptyBelow, joinLines, mostBetween } from './below.ts'
+import { fallsOf, mostLoadOf } from './bound-hollow.ts'
 import { type DayTables, type Load, loadAt, pieceMps, pieceS, rowAt, storedSlope, storedW } from './day-tables.ts'
 
 const FAR = Number.POSITIVE_INFINITY
@@ -15,8 +16,10 @@ interface Priced {
   slopeW: Float64Array
   /** About the time that suits the slope of each cell before the piece. [S] (cells) */
   guessS: Float64Array
-  /** By how much the load's slope falls over speed, all falls together: 0 where the load is convex. [W·s/m] */
-  hollow: number
+  /** By how much the slope of its energy over time falls between two of these times; empty where it is convex. [W] */
+  fallW: Float64Array
+  /** Most that the load can be. [W] */
+  mostLoadW: number
 }
 
 /** Behind a piece: from every instant before it, at every speed. */
@@ -117,16 +120,15 @@ function leastAt(priced: Priced, from: Below, atS: number, near: { cell: number;
 }
 
 const load: Load = { W: 0, slope: 0 }
-const tangent = { value: 0, slope: 0, hollow: 0 }
+const tangent = { value: 0, slope: 0 }
 
 /** Priced energy of a piece driven in a time, and its slope over that time. [s, 1] */
-function tangentAt({ day, piece, price, hollow }: Priced, timeS: number, sunW: number): void {
+function tangentAt({ day, piece, price }: Priced, timeS: number, sunW: number): void {
   const speedMps = pieceMps(day, piece, timeS)
   loadAt(day, piece, speedMps, load)
   const stored = storedW(day.pack, sunW - load.W)
   tangent.value = -price * stored * timeS
   tangent.slope = -price * (stored + storedSlope(day.pack, sunW - load.W) * fallW(day, piece, speedMps, timeS))
-  tangent.hollow = 1.1 * price * hollow * speedMps
 }
 
 /** Fall of the last load over the piece's time, times that time. [W] */
@@ -164,6 +166,7 @@ function lowestOver(priced: Priced, climb: number, climbS: number): number {
   const leaveS = Math.min(Math.max(reachS - wantedS, fromS), untilS)
   const timeS = Math.min(Math.max(reachS - leaveS, least), most)
   tangentAt(priced, timeS, sunW)
+  const hollow = hollowBetween(priced, timeS, least, most, sunW)
   const perLeaving = grows - climb
   const perTime = tangent.slope - climb
   const atLeast = Math.max(fromS, startS - most)
@@ -173,7 +176,24 @@ function lowestOver(priced: Priced, climb: number, climbS: number): number {
   const bend = perTime >= 0 ? startS - least : endS - most
   let lowest = Math.min(at(atLeast), at(atMost))
   if (bend > atLeast && bend < atMost) lowest = Math.min(lowest, at(bend))
-  return left - grows * fromS + tangent.value - tangent.slope * timeS + lowest - tangent.hollow * (most - least)
+  return left - grows * fromS + tangent.value - tangent.slope * timeS + lowest - hollow
+}
+
+/**
+ * Most by which priced energy can lie below its tangent between two times: each fall of its slope counts from where it
+ * is nearest to the tangent's point. 0 where energy is convex.
+ */
+function hollowBetween(priced: Priced, atS: number, leastS: number, mostS: number, sunW: number): number {
+  const { timeS, fallW, day, price, mostLoadW } = priced
+  if (fallW.length === 0) return 0
+  let before = 0
+  let behind = 0
+  for (let k = 0; k < fallW.length; k++) {
+    if (fallW[k] === 0) continue
+    if (timeS[k] < atS) before += fallW[k] * Math.max(Math.min(timeS[k + 1], atS) - leastS, 0)
+    if (timeS[k + 1] > atS) behind += fallW[k] * Math.max(mostS - Math.max(timeS[k], atS), 0)
+  }
+  return price * Math.max(before, behind) * storedSlope(day.pack, Math.min(sunW, 0) - mostLoadW)
 }
 
 function pricedOf(day: DayTables, piece: number, price: number): Priced {
@@ -199,7 +219,8 @@ function pricedOf(day: DayTables, piece: number, price: number): Priced {
     timeS,
     slopeW,
     guessS: new Float64Array(0),
-    hollow: hollowOf(day, piece, first, last),
+    fallW: fallsOf(day, piece, first, last),
+    mostLoadW: mostLoadOf(day, piece),
   }
 }
 
@@ -228,37 +249,4 @@ function timeOfSlope(priced: Priced, grows: number, sunW: number, steps: number)
     at += (grows - tangent.slope) / (price * bendW)
   }
   return Math.min(Math.max(at, shortestS), longestS)
-}
-
-/** All falls of the load's slope over the speeds between two entries of its table: exact, a cubic's bend is straight. */
-function hollowOf(day: DayTables, piece: number, first: number, last: number): number {
-  const { speeds, loadW } = day
-  const at = (j: number): number => loadW[piece * speeds.count + j]
-  const end = speeds.count - 1
-  let sum = 0
-  for (let j = first; j < last; j++) {
-    const p1 = at(j)
-    const p2 = at(j + 1)
-    const p0 = j > 0 ? at(j - 1) : 2 * p1 - p2
-    const p3 = j + 2 <= end ? at(j + 2) : 2 * p2 - p1
-    const bend0 = 2 * p0 - 5 * p1 + 4 * p2 - p3
-    const bend1 = 4 * p1 - p0 - 5 * p2 + 2 * p3
-    if (bend0 >= 0 && bend1 >= 0) continue
-    if (bend0 <= 0 && bend1 <= 0) sum -= (bend0 + bend1) / 2
-    else {
-      const lowest = Math.min(bend0, bend1)
-      sum -= (0.5 * lowest * lowest) / (Math.max(bend0, bend1) - lowest)
-    }
-  }
-  return Math.max(sum, 0) / speeds.step + fallingWhereLonger(day, piece, first, last)
-}
-
-/** The same for time that comes on top: where load falls over speed, that time's energy is hollow too. [W·s/m] */
-function fallingWhereLonger(day: DayTables, piece: number, first: number, last: number): number {
-  const extraS = day.extraS[piece]
-  if (!(extraS > 0)) return 0
-  const row = piece * day.speeds.count
-  let fallW = 0
-  for (let j = first; j < last; j++) fallW += Math.max(day.loadW[row + j] - day.loadW[row + j + 1], 0)
-  return (3 * extraS * fallW) / day.lengthM[piece]
 }

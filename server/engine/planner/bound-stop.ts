@@ -13,10 +13,10 @@ export function behindStop(
   const cells = to.atS.length - 1
   const climb = new Float64Array(cells)
   const foot = new Float64Array(cells).fill(Number.POSITIVE_INFINITY)
-  if (cells === 0) to.value[0] = path[0].value
+  if (cells === 0) to.value[0] = leastTogether(path)
   for (let c = 0, p = 0; c < cells; c++) {
     const [startS, endS] = [to.atS[c], to.atS[c + 1]]
-    while (p + 1 < path.length && path[p + 1].atS <= startS) p++
+    while (p + 1 < path.length && path[p + 1].atS < startS) p++
     const inside = [pointAt(path, startS)]
     for (let n = p; n < path.length && path[n].atS <= endS; n++) if (path[n].atS >= startS) inside.push(path[n])
     inside.push(pointAt(path, endS))
@@ -35,13 +35,18 @@ interface Point {
   value: number
 }
 
-/** Departures in time, with the value behind the stop: straight in between. */
+/**
+ * Departures in time, with the value behind the stop: straight in between. Behind the last piece no stop is held to
+ * cost energy, since the floor is asked on arrival.
+ */
 function leaving(day: DayTables, { atS, value }: Below, stop: TableStop, price: number): Point[] {
-  const { clock } = day
-  const point = (s: number, before: number): Point => ({
-    atS: s + rowAt(stop.lengthS, 0, clock, s),
-    value: before - price * rowAt(stop.gainJ, 0, clock, s),
-  })
+  const { clock, pieces } = day
+  const leastJ = stop.beforePiece === pieces ? 0 : Number.NEGATIVE_INFINITY
+  let leftS = Number.NEGATIVE_INFINITY
+  const point = (s: number, before: number): Point => {
+    leftS = Math.max(s + rowAt(stop.lengthS, 0, clock, s), leftS)
+    return { atS: leftS, value: before - price * Math.max(rowAt(stop.gainJ, 0, clock, s), leastJ) }
+  }
   const path = [point(atS[0], value[0])]
   for (let j = 1; j < atS.length; j++) {
     const endS = Math.min(atS[j], stop.closesS)
@@ -57,7 +62,11 @@ function leaving(day: DayTables, { atS, value }: Below, stop: TableStop, price: 
   return path
 }
 
-/** The lowest point of the path at an instant; null beyond its ends. */
+/** The lowest of the points that leave with the first. */
+const leastTogether = (path: Point[]): number =>
+  path.reduce((least, { atS, value }) => (atS === path[0].atS ? Math.min(least, value) : least), path[0].value)
+
+/** A point of the path at an instant; null beyond its ends. */
 function pointAt(path: Point[], atS: number): Point | null {
   let low = 0
   let high = path.length - 1

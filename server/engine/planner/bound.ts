@@ -32,7 +32,7 @@ export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: n
       leftS -= stopS[s]
       below = behindStop(day, stepS, below, { stop: stops[s], price: price[i], latestS: latestS - leftS })
     }
-    waiting(day, below, Math.min(i, pieces - 1), price[i])
+    waiting(day, below, i, price[i])
     if (i === pieces) break
     leftS -= shortest[i]
     worthS += price[i] * day.extraJ[i]
@@ -44,12 +44,13 @@ export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: n
 }
 
 /**
- * Most that the motion of the car gives back: counted with the pack, so that changes of speed cost no less than
- * nothing and may be left out.
+ * Most that the motion of the car is worth: counted with the pack, so that changes of speed may be left out. What a
+ * change costs is convex in the motion gained, so never under its tangent at no change, half way between gains and
+ * losses.
  */
 function mostMotionJ({ kinetic, fastestMps }: DayTables): number {
   const fastest = fastestMps.reduce((most, v) => Math.max(most, v), 0)
-  return kinetic.perLost * 0.5 * kinetic.massKg * fastest * fastest
+  return ((kinetic.perGained + kinetic.perLost) / 2) * 0.5 * kinetic.massKg * fastest * fastest
 }
 
 /** Prices of at least 0, the last one twice: nothing is bought behind the last piece but the evening. */

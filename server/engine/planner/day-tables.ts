@@ -80,6 +80,34 @@ export const storedW = (pack: TablePack, netW: number): number =>
 export const storedSlope = (pack: TablePack, netW: number): number =>
   (netW > 0 ? pack.coulombic : 1) - 2 * netW * pack.lossPerW
 
+/** A wait is reckoned in parts no longer than this, each in the sun of its middle. [S] */
+export const WAIT_PART_S = 60
+
+/** Energy that waiting at an edge stores, before the ceiling. [J] */
+export function waitedJ(day: DayTables, edge: number, fromS: number, lengthS: number): number {
+  const row = Math.min(edge, day.pieces - 1) * day.clock.count
+  const parts = Math.ceil(lengthS / WAIT_PART_S)
+  let W = 0
+  for (let k = 0; k < parts; k++) {
+    const sunW = rowAt(day.harvestW, row, day.clock, fromS + ((k + 0.5) * lengthS) / parts)
+    W += storedW(day.pack, sunW - day.waitingLoadW)
+  }
+  return (W * lengthS) / parts
+}
+
+/** Slope of `waitedJ` over the instant at which the wait begins. [W] */
+export function waitedSlope(day: DayTables, edge: number, fromS: number, lengthS: number): number {
+  const row = Math.min(edge, day.pieces - 1) * day.clock.count
+  const parts = Math.ceil(lengthS / WAIT_PART_S)
+  let slope = 0
+  for (let k = 0; k < parts; k++) {
+    const middleS = fromS + ((k + 0.5) * lengthS) / parts
+    const netW = rowAt(day.harvestW, row, day.clock, middleS) - day.waitingLoadW
+    slope += storedSlope(day.pack, netW) * rowSlopeAt(day.harvestW, row, day.clock, middleS)
+  }
+  return (slope * lengthS) / parts
+}
+
 /** Value of a row at a place on its axis, straight between entries, held beyond the ends. */
 export function rowAt(row: Float64Array, first: number, axis: Axis, at: number): number {
   const x = (at - axis.from) / axis.step

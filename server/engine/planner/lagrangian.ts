@@ -9,6 +9,8 @@ import {
   standsAt,
   storedSlope,
   storedW,
+  waitedJ,
+  waitedSlope,
 } from './day-tables.ts'
 import { motionJ } from './simulate.ts'
 
@@ -72,8 +74,7 @@ function forward(day: DayTables, sweep: Sweep, timeS: Float64Array): void {
       t += rowAt(stops[s].lengthS, 0, clock, t)
     }
     if (waitS[i] > 0) {
-      const sunW = rowAt(day.harvestW, Math.min(i, pieces - 1) * clock.count, clock, t + waitS[i] / 2)
-      E += storedW(pack, sunW - day.waitingLoadW) * waitS[i]
+      E += waitedJ(day, i, t, waitS[i])
       isFull.wait[i] = E >= pack.ceilingJ ? 1 : 0
       if (E > pack.ceilingJ) E = pack.ceilingJ
       t += waitS[i]
@@ -133,10 +134,7 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
     price[i] = -p
     if (waitS[i] > 0) {
       if (isFull.wait[i] === 1) p = 0
-      const middleS = atS[i] - waitS[i] / 2
-      const row = Math.min(i, n - 1) * clock.count
-      const netW = rowAt(day.harvestW, row, clock, middleS) - day.waitingLoadW
-      q += p * storedSlope(pack, netW) * rowSlopeAt(day.harvestW, row, clock, middleS) * waitS[i]
+      q += p * waitedSlope(day, i, atS[i] - waitS[i], waitS[i])
     }
     for (; s >= 0 && stops[s].beforePiece === i; s--) {
       if (isFull.stop[s] === 1) p = 0

@@ -1,7 +1,7 @@
 import { type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
 import type { SunPath } from '../sun.ts'
 import { backTrack, earliestEnd } from './back-track.ts'
-import { earliestPossible } from './bound.ts'
+import { earliestArrival } from './bound-day.ts'
 import type { DayTables } from './day-tables.ts'
 import { motorMps, planSun, type Reach, reachOf, tablesAlong } from './engine-tables.ts'
 import { frontier } from './frontier.ts'
@@ -35,7 +35,7 @@ export interface DayPlan {
   /** The same for people: whole km/h, few sections. Pieces count from the first of the day. */
   forPeople: Judged & { sections: Section[] }
   reach: Reach
-  /** The tables along the best plan. */
+  /** The tables along the best plan, reserve and target as they are wanted. */
   tables: DayTables
   /** Fastest that the motor would hold without posted limits. [Mps] (pieces of the day) */
   heldMps: Float64Array
@@ -88,7 +88,7 @@ export function planDay(task: DayTask): DayPlan | null {
     ? settleDown(day, forPeople, found.refined, LAST_ROUNDS)
     : null
   const { best, refined } = better ?? found
-  const { tables } = settledTables(day, best)
+  const { tables } = settledTables(day, best, 0)
   const { opensMs } = race.days[dayIndex]
   const endS = (best.verdict.arrivalMs - opensMs) / 1000
   return {
@@ -98,7 +98,7 @@ export function planDay(task: DayTask): DayPlan | null {
     tables,
     heldMps: motorMps({ ...day, base: best.forecast }, reach),
     sPerJ: refined.sPerJ,
-    boundMs: opensMs + 1000 * earliestPossible(tables, refined.sPerJ, endS, BOUND_STEP_S),
+    boundMs: opensMs + 1000 * earliestArrival(tables, refined.sPerJ, endS, BOUND_STEP_S),
   }
 }
 
@@ -148,15 +148,15 @@ function settleDown(
 
 const noWaits = (reach: Reach): Float64Array => new Float64Array(reach.count + 1)
 
-/** Tables set right along a drive, a little more asked than is wanted. */
-function settledTables(day: DayAtWork, now: Judged): { tables: DayTables; heldMps: Float64Array } {
+/** Tables set right along a drive, with so much more asked than is wanted. */
+function settledTables(day: DayAtWork, now: Judged, spareJ = SPARE_J): { tables: DayTables; heldMps: Float64Array } {
   const { reach } = day
   const along = { ...day, base: now.forecast }
   const tables = tablesAlong(along, reach)
   const heldMps = tables.fastestMps.map((fastest, i) => Math.min(now.speedMps[reach.first + i], fastest))
   settle(tables, along, reach, now.forecast, heldMps)
-  tables.targetJ += SPARE_J
-  raiseFloor(tables, SPARE_J)
+  tables.targetJ += spareJ
+  raiseFloor(tables, spareJ)
   return { tables, heldMps }
 }
 

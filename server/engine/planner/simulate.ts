@@ -1,4 +1,4 @@
-import { changeJ, type DayTables, loadAt, pieceS, rowAt, standsAt, storedW } from './day-tables.ts'
+import { changeJ, type DayTables, loadAt, pieceS, rowAt, standsAt, storedW, waitedJ } from './day-tables.ts'
 
 /** Speeds of a day and where the car waits. */
 export interface Drive {
@@ -60,8 +60,7 @@ export function simulate(day: DayTables, drive: Drive): Track {
     }
     const waitS = drive.waitS[i]
     if (waitS > 0) {
-      const sunW = rowAt(day.harvestW, Math.min(i, pieces - 1) * clock.count, clock, t + waitS / 2)
-      E = Math.min(pack.ceilingJ, E + storedW(pack, sunW - day.waitingLoadW) * waitS)
+      E = Math.min(pack.ceilingJ, E + waitedJ(day, i, t, waitS))
       t += waitS
     }
     atS[i] = t

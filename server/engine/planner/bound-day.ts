@@ -1,0 +1,31 @@
+import { earliestPossible } from './bound.ts'
+import { type DayTables, rowAt } from './day-tables.ts'
+
+const BISECTIONS = 50
+
+/**
+ * A proven lower limit on the arrival at the last place of a day, stops that are held there left out.
+ *
+ * The tables end when those stops are over, the plan when the car arrives: the limit is the first arrival from which
+ * they are not over before the tables' own limit.
+ *
+ * @param sPerJ     price of energy on leaving each edge. [s/J] (pieces + 1)
+ * @param arrivalS  arrival of a drive that holds. [S]
+ * @param stepS     width of a cell. [S]
+ * @returns not above `arrivalS` [S]
+ */
+export function earliestArrival(day: DayTables, sPerJ: Float64Array, arrivalS: number, stepS: number): number {
+  const over = (atS: number): number =>
+    day.stops.reduce((s, stop) => (stop.beforePiece === day.pieces ? s + rowAt(stop.lengthS, 0, day.clock, s) : s), atS)
+  const overS = over(arrivalS)
+  const earliestS = earliestPossible(day, sPerJ, overS, stepS)
+  if (overS === arrivalS) return earliestS
+  let low = Math.min(day.start.atS, arrivalS)
+  let high = arrivalS
+  for (let n = 0; n < BISECTIONS && high - low > 1e-6; n++) {
+    const middle = (low + high) / 2
+    if (over(middle) < earliestS) low = middle
+    else high = middle
+  }
+  return low
+}
