@@ -1,15 +1,13 @@
 import { type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
 import type { SunPath } from '../sun.ts'
-import { backTrack, earliestEnd } from './back-track.ts'
+import { bestDrive } from './best-drive.ts'
 import { earliestArrival } from './bound-day.ts'
 import type { DayTables } from './day-tables.ts'
 import { motorMps, planSun, type Reach, reachOf, tablesAlong } from './engine-tables.ts'
-import { frontier } from './frontier.ts'
 import { holds, isBetterVerdict, judge, type Verdict } from './judge.ts'
 import { refine, type Refined } from './refine.ts'
 import { driveOf, type Section, sectionsFor } from './sections.ts'
 import { settle } from './settle.ts'
-import { simulate } from './simulate.ts'
 
 /** A day to plan. */
 export interface DayTask {
@@ -45,8 +43,6 @@ export interface DayPlan {
   boundMs: number
 }
 
-const BIN_S = 60
-const SPEED_STEP_MPS = 4 / 3.6
 const BOUND_STEP_S = 40
 const MOST_ROUNDS = 8
 const LAST_ROUNDS = 4
@@ -132,7 +128,7 @@ function settleDown(
     const { tables, heldMps } = settledTables(day, now)
     refined =
       refined === null
-        ? fromFrontier(tables)
+        ? bestDrive(tables)
         : refine(tables, { speedMps: heldMps, waitS: noWaits(day.reach) }, refined.multiplier)
     if (refined === null) return null
     const wayOn = round < WHOLE_ROUNDS ? 1 : 0.5
@@ -158,12 +154,6 @@ function settledTables(day: DayAtWork, now: Judged, spareJ = SPARE_J): { tables:
   tables.targetJ += spareJ
   raiseFloor(tables, spareJ)
   return { tables, heldMps }
-}
-
-function fromFrontier(tables: DayTables): Refined | null {
-  const found = frontier(tables, BIN_S, SPEED_STEP_MPS, someEndS(tables))
-  const endS = earliestEnd(tables, found)
-  return endS === Number.POSITIVE_INFINITY ? null : refine(tables, backTrack(tables, found, endS))
 }
 
 function onCourse({ race, reach }: DayAtWork, speedMps: Float64Array): Float64Array {
@@ -213,17 +203,6 @@ export function someTables({
   const drive = () => now
   const { tables } = settledTables({ race, dayIndex, targetCharge, path, reach, drive }, now)
   return { tables, reach }
-}
-
-/** The end of the fastest constant speed that holds; the day's where none does. [S] */
-function someEndS(tables: DayTables): number {
-  const waitS = new Float64Array(tables.pieces + 1)
-  for (let kmh = 130; kmh >= 30; kmh -= 2) {
-    const speedMps = tables.fastestMps.map((fastest) => Math.min(fastest, kmh / 3.6))
-    const { shortJ, lateS, atS } = simulate(tables, { speedMps, waitS })
-    if (shortJ <= 0 && lateS <= 0) return atS[tables.pieces]
-  }
-  return tables.latestS
 }
 
 function raiseFloor(tables: DayTables, byJ: number): void {
