@@ -24,7 +24,8 @@ const OWN_FILES = [
   '007-moves.sql',
   '008-events.sql',
   '009-plans.sql',
-  '010-engine-moves.sql',
+  '010-plan-gist.sql',
+  '011-engine-moves.sql',
 ]
 
 function migrateSuite(open: () => Promise<TestDatabase>): void {
