@@ -2,6 +2,10 @@ import { earliestPossible } from './bound.ts'
 import { type DayTables, rowAt } from './day-tables.ts'
 
 const BISECTIONS = 50
+/** A limit that lies farther below, as a share of the day's time, is looked for at other prices too. */
+const FAR = 0.004
+const FACTORS = [1.25, 0.8]
+const MOST_TRIES = 4
 
 /**
  * A proven lower limit on the arrival at the last place of a day, stops that are held there left out.
@@ -18,7 +22,7 @@ export function earliestArrival(day: DayTables, sPerJ: Float64Array, arrivalS: n
   const over = (atS: number): number =>
     day.stops.reduce((s, stop) => (stop.beforePiece === day.pieces ? s + rowAt(stop.lengthS, 0, day.clock, s) : s), atS)
   const overS = over(arrivalS)
-  const earliestS = earliestPossible(day, sPerJ, overS, stepS)
+  const earliestS = tightestLimit(day, sPerJ, overS, stepS)
   if (overS === arrivalS) return earliestS
   let low = Math.min(day.start.atS, arrivalS)
   let high = arrivalS
@@ -28,4 +32,30 @@ export function earliestArrival(day: DayTables, sPerJ: Float64Array, arrivalS: n
     else high = middle
   }
   return low
+}
+
+/**
+ * The limit at the prices given or, where that is far below, at all of them dearer or cheaper: the prices of a drive are
+ * right for small changes, and the limit may want others where the frontier is not concave. Over a common factor the
+ * limit has one summit, and each is valid.
+ */
+function tightestLimit(day: DayTables, sPerJ: Float64Array, overS: number, stepS: number): number {
+  const farS = FAR * (overS - day.start.atS)
+  const atPrices = earliestPossible(day, sPerJ, overS, stepS)
+  let best = atPrices
+  for (const way of FACTORS) {
+    if (best > atPrices) break
+    let factor = way
+    for (let n = 0; n < MOST_TRIES && overS - best > farS; n++, factor *= way) {
+      const tried = earliestPossible(
+        day,
+        sPerJ.map((price) => price * factor),
+        overS,
+        stepS,
+      )
+      if (!(tried > best)) break
+      best = tried
+    }
+  }
+  return best
 }

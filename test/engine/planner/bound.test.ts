@@ -124,4 +124,15 @@ describe('the bound', () => {
       if (!opensLate) expect(boundS + 600).toBeCloseTo(fastestS[3], 3)
     }
   })
+
+  it('looks for other prices where those of the drive leave it far below', () => {
+    const day = cloudyDay(6)
+    const speedMps = day.fastestMps.map((fastest) => Math.min(fastest, 70 / 3.6))
+    const { track, sPerJ } = refine(day, { speedMps, waitS: new Float64Array(day.pieces + 1) })
+    const endS = track.atS[day.pieces]
+    expect(endS - earliestPossible(day, sPerJ, endS, 60)).toBeGreaterThan(1000)
+    const boundS = earliestArrival(day, sPerJ, endS, 60)
+    expect(boundS).toBeLessThan(endS)
+    expect(endS - boundS).toBeLessThan(700)
+  })
 })
