@@ -61,21 +61,12 @@ export function poseLight(strings: AimStrings): PoseLight {
 
   /** Turns the faces to a pose. @returns what strings on one face give. [W] */
   const light = (hold: Hold, tiltRad: number, azimuthRad: number): number => {
-    const sinA = Math.sin(azimuthRad)
-    const cosA = Math.cos(azimuthRad)
-    const sinT = Math.sin(tiltRad)
-    const cosT = Math.cos(tiltRad)
+    const turns = turnsOf(tiltRad, azimuthRad)
     if (isShaded) facing.frame = liftedFrame(hold.headingRad, tiltRad, azimuthRad)
     let sum = stillW
     for (let f = 0; f < faces.length; f++) {
       if (!counts[f] || !faces[f].lifts) continue
-      const [east, north, up] = level[f]
-      const towards = east * sinA + north * cosA
-      const aside = east * cosA - north * sinA
-      const lain = towards * cosT + up * sinT
-      facing.east = lain * sinA + aside * cosA
-      facing.north = lain * cosA - aside * sinA
-      facing.up = up * cosT - towards * sinT
+      tip(level[f], turns, facing)
       sum += perFaceW[f] * faceLight(faces[f], hold, facing, lightWm2, f * hold.count)
     }
     return sum
@@ -97,6 +88,27 @@ export function poseLight(strings: AimStrings): PoseLight {
     },
     powerW: (tiltRad, azimuthRad) => (now === null ? 0 : light(now, tiltRad, azimuthRad) + spanningSumW(now.count)),
   }
+}
+
+const turnsOf = (tiltRad: number, azimuthRad: number) => ({
+  sinA: Math.sin(azimuthRad),
+  cosA: Math.cos(azimuthRad),
+  sinT: Math.sin(tiltRad),
+  cosT: Math.cos(tiltRad),
+})
+
+/** Tilts a normal of the level array towards an azimuth, as `liftedNormal` does, without a new list. */
+function tip(
+  [east, north, up]: [number, number, number],
+  { sinA, cosA, sinT, cosT }: ReturnType<typeof turnsOf>,
+  out: Facing,
+): void {
+  const towards = east * sinA + north * cosA
+  const aside = east * cosA - north * sinA
+  const lain = towards * cosT + up * sinT
+  out.east = lain * sinA + aside * cosA
+  out.north = lain * cosA - aside * sinA
+  out.up = up * cosT - towards * sinT
 }
 
 /** Light past the cover on one face, step by step into `out` from `at` on. @returns its sum. [W/m²] */

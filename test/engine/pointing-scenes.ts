@@ -1,6 +1,15 @@
 import * as fc from 'fast-check'
-import type { ArrayModel, ArraySteps, Panel } from '../../server/engine/array.ts'
-import type { Stand } from '../../server/engine/stand.ts'
+import {
+  type ArrayHarvest,
+  type ArrayModel,
+  type ArraySteps,
+  arrayHarvest,
+  type Panel,
+  prepareArray,
+} from '../../server/engine/array.ts'
+import { fillSky, skyBlock } from '../../server/engine/panel-light.ts'
+import { poseLight } from '../../server/engine/pose-light.ts'
+import type { Pose, Stand } from '../../server/engine/stand.ts'
 import type { StringModel } from '../../server/engine/substrings.ts'
 
 export const RAD = Math.PI / 180
@@ -155,3 +164,35 @@ export const anyArray = (steepDeg: number): fc.Arbitrary<ArrayModel> =>
       skyModel,
       stand,
     }))
+
+export const SUN: Moment = { zenithDeg: 60, azimuthDeg: 70, dni: 800, dhi: 0, headingDeg: 33 }
+
+export const powerW = (harvest: ArrayHarvest, i: number): number =>
+  harvest.bestW.reduce((sum, watts) => sum + watts[i], 0)
+
+/** Power of the array at given poses in one moment. [W] */
+export function powersW(model: ArrayModel, moment: Moment, poses: Pose[]): number[] {
+  const aim = {
+    tiltRad: Float64Array.from(poses, (pose) => pose.tiltRad),
+    azimuthRad: Float64Array.from(poses, (pose) => pose.azimuthRad),
+  }
+  const harvest = arrayHarvest(prepareArray(model), { ...liftedSteps(poses.map(() => moment)), aim })
+  return poses.map((_, i) => powerW(harvest, i))
+}
+
+/** What the search holds a pose to be worth in one moment. [W] */
+export function lightOf(model: ArrayModel, moment: Moment): (pose: Pose) => number {
+  const prepared = prepareArray(model)
+  const { weather, headingRad } = liftedSteps([moment])
+  const sky = skyBlock(1)
+  fillSky(model.skyModel, weather, 0, 1, sky)
+  const light = poseLight(prepared.aim)
+  light.hold({ sky, count: 1, headingRad: headingRad[0], albedo: model.albedo })
+  return ({ tiltRad, azimuthRad }) => light.powerW(tiltRad, azimuthRad)
+}
+
+/** A canopy that takes up to 0.4 of the beam of a sun that is less than 50° over the deck, ahead more than behind. */
+export const CANOPY = [
+  { bearingRad: 0, heightRad: 50 * RAD, lostShare: 0.4 },
+  { bearingRad: Math.PI, heightRad: 20 * RAD, lostShare: 0.1 },
+]

@@ -3,28 +3,28 @@ import { describe, expect, it } from 'vitest'
 import { arrayHarvest, type ArrayModel, type ArrayHarvest, prepareArray } from '../../server/engine/array.ts'
 import { clearSkyWm2, relativeAirMass } from '../../server/engine/clear-sky.ts'
 import { horizon } from '../../server/engine/horizon.ts'
-import { fillSky, skyBlock } from '../../server/engine/panel-light.ts'
 import { holdsAlong } from '../../server/engine/pointing.ts'
-import { poseLight } from '../../server/engine/pose-light.ts'
 import { apartRad } from '../../server/engine/pose-search.ts'
 import { aimAtSun, arcRad, type Pose, type Stand } from '../../server/engine/stand.ts'
-import type { StringModel } from '../../server/engine/substrings.ts'
 import {
   ANY_POSE,
   anyArray,
   anyMoment,
   anyStand,
   array,
+  CANOPY,
   EXTRA_WM2,
   ghiOf,
   liftedSteps,
+  lightOf,
   type Moment,
   panel,
+  powersW,
+  powerW,
   RAD,
   string,
+  SUN,
 } from './pointing-scenes.ts'
-
-const SUN: Moment = { zenithDeg: 60, azimuthDeg: 70, dni: 800, dhi: 0, headingDeg: 33 }
 
 const poseAt = ({ aimTiltRad, aimAzimuthRad }: ArrayHarvest, i = 0): Pose => ({
   tiltRad: aimTiltRad[i],
@@ -32,7 +32,6 @@ const poseAt = ({ aimTiltRad, aimAzimuthRad }: ArrayHarvest, i = 0): Pose => ({
 })
 const poseOf = (model: ArrayModel, moments: Moment[]): Pose =>
   poseAt(arrayHarvest(prepareArray(model), liftedSteps(moments, true)))
-const powerW = (harvest: ArrayHarvest, i: number): number => harvest.bestW.reduce((sum, watts) => sum + watts[i], 0)
 
 /** Poses over all of a stand's range. */
 function gridOf(stand: Stand, gapRad: number): Pose[] {
@@ -44,16 +43,6 @@ function gridOf(stand: Stand, gapRad: number): Pose[] {
   return span(stand.tiltMinRad, stand.tiltMaxRad - stand.tiltMinRad).flatMap((tiltRad) =>
     azimuths.map((azimuthRad) => ({ tiltRad, azimuthRad })),
   )
-}
-
-/** Power of the array at given poses in one moment. [W] */
-function powersW(model: ArrayModel, moment: Moment, poses: Pose[]): number[] {
-  const aim = {
-    tiltRad: Float64Array.from(poses, (pose) => pose.tiltRad),
-    azimuthRad: Float64Array.from(poses, (pose) => pose.azimuthRad),
-  }
-  const harvest = arrayHarvest(prepareArray(model), { ...liftedSteps(poses.map(() => moment)), aim })
-  return poses.map((_, i) => powerW(harvest, i))
 }
 
 describe('the best pose', () => {
@@ -273,100 +262,6 @@ describe('the best pose', () => {
       expect(tiltRad).toBeLessThanOrEqual(ANY_POSE.tiltMaxRad)
       expect(Number.isFinite(azimuthRad)).toBe(true)
     }
-  })
-})
-
-/** What the search holds a pose to be worth in one moment. [W] */
-function lightOf(model: ArrayModel, moment: Moment): (pose: Pose) => number {
-  const prepared = prepareArray(model)
-  const { weather, headingRad } = liftedSteps([moment])
-  const sky = skyBlock(1)
-  fillSky(model.skyModel, weather, 0, 1, sky)
-  const light = poseLight(prepared.aim)
-  light.hold({ sky, count: 1, headingRad: headingRad[0], albedo: model.albedo })
-  return ({ tiltRad, azimuthRad }) => light.powerW(tiltRad, azimuthRad)
-}
-
-/** A canopy that takes up to 0.4 of the beam of a sun that is less than 50° over the deck, ahead more than behind. */
-const CANOPY = [
-  { bearingRad: 0, heightRad: 50 * RAD, lostShare: 0.4 },
-  { bearingRad: Math.PI, heightRad: 20 * RAD, lostShare: 0.1 },
-]
-
-describe('the light that the search weighs', () => {
-  it('is the light that the panels get, within 5e-6, the car’s own shade too', () => {
-    let [counted, shades] = [0, 0]
-    fc.assert(
-      fc.property(anyArray(45), anyMoment, anyMoment, fc.nat(3), (bare, moment, at, shaded) => {
-        const model = {
-          ...bare,
-          panels: bare.panels.map((each, p) => (p === shaded ? { ...each, shade: CANOPY } : each)),
-        }
-        const pose = { tiltRad: at.zenithDeg * RAD, azimuthRad: at.azimuthDeg * RAD }
-        const prepared = prepareArray(model)
-        const aim = { tiltRad: Float64Array.of(pose.tiltRad), azimuthRad: Float64Array.of(pose.azimuthRad) }
-        const { effectiveWm2 } = arrayHarvest(prepared, { ...liftedSteps([moment]), aim })
-        const { faces, perFaceW } = prepared.aim
-        const want = faces.reduce((sum, face, f) => {
-          const p = model.panels.findIndex(
-            ({ pitchRad, rollRad, lifts }, at) =>
-              pitchRad === face.pitchRad &&
-              rollRad === face.rollRad &&
-              lifts === face.lifts &&
-              (face.shade !== null) === (at === shaded),
-          )
-          return sum + perFaceW[f] * effectiveWm2[p][0]
-        }, 0)
-        expect(Math.abs(lightOf(model, moment)(pose) - want)).toBeLessThan(5e-6 * want + 1e-12)
-        counted++
-        if (shaded < model.panels.length) shades++
-      }),
-      { numRuns: 300 },
-    )
-    expect(counted).toBe(300)
-    expect(shades).toBeGreaterThan(100)
-  })
-
-  // Source: by hand: 38 cells of 3.6 W at 1000 W/m² and 25 °C, half of their light lost to dust.
-  it('counts clean cells at their best power', () => {
-    const [whole, dusty] = [0, 0.5].map((soilingFraction) =>
-      lightOf(array({ strings: [string([{ panel: 0, cellsInSeries: 38 }], { soilingFraction })] }), {
-        ...SUN,
-        dni: 1000,
-      })({ tiltRad: 60 * RAD, azimuthRad: 70 * RAD }),
-    )
-    const bestW = powersW(array(), { ...SUN, dni: 1000 }, [{ tiltRad: 60 * RAD, azimuthRad: 70 * RAD }])[0]
-    expect(dusty).toBeCloseTo(whole / 2, 9)
-    // Warm cells give less than cells at 25 °C: 39 K at 0.35 %/K (common practice, no source).
-    expect(bestW / whole).toBeGreaterThan(0.83)
-    expect(bestW / whole).toBeLessThan(0.9)
-  })
-})
-
-describe('a string with a fault', () => {
-  const watts = (faults: StringModel['faults'], groups: StringModel['groups']): number =>
-    lightOf(array({ strings: [string(groups, faults === undefined ? {} : { faults })] }), { ...SUN, dni: 1000 })({
-      tiltRad: 60 * RAD,
-      azimuthRad: 70 * RAD,
-    })
-  const whole = watts(undefined, [{ panel: 0, cellsInSeries: 40, bypassDiodes: 2 }])
-
-  // Source: by hand: half the string at full light beats all of it at 0.3; its diode drops 0.5 V of the other half's 11 V.
-  it('goes past cells that are weak where that is worth more, and is held by them where nothing lets it past', () => {
-    const weak = [{ group: 0, diode: 0, cells: 1, kind: 'weak' as const, lightShare: 0.3 }]
-    const past = watts(weak, [{ panel: 0, cellsInSeries: 40, bypassDiodes: 2 }])
-    expect(past / whole).toBeGreaterThan(0.46)
-    expect(past / whole).toBeLessThan(0.5)
-    const held = watts(
-      weak,
-      [{ panel: 0, cellsInSeries: 40, bypassDiodes: 0 }].map((group) => ({ ...group })),
-    )
-    expect(held / whole).toBeCloseTo(0.3, 6)
-  })
-
-  it('is worth nothing where a cell is open and no diode lets current past', () => {
-    const open = [{ group: 0, diode: 0, cells: 1, kind: 'open' as const, lightShare: 0 }]
-    expect(watts(open, [{ panel: 0, cellsInSeries: 40, bypassDiodes: 0 }])).toBe(0)
   })
 })
 
