@@ -22,6 +22,8 @@ const DESCRIPTION =
 
 const wantedFields = planRequest.pick({
   targetPct: true,
+  objective: true,
+  byTime: true,
   spreads: true,
   promisePct: true,
   members: true,

@@ -14,7 +14,16 @@ export const planHash = (input: Record<string, unknown>): string => fingerprint(
 export const openPlanRequest = openRequest
   .omit({ speeds: true })
   .extend(
-    planRequest.pick({ date: true, targetPct: true, spreads: true, promisePct: true, members: true, seed: true }).shape,
+    planRequest.pick({
+      date: true,
+      targetPct: true,
+      objective: true,
+      byTime: true,
+      spreads: true,
+      promisePct: true,
+      members: true,
+      seed: true,
+    }).shape,
   )
   .meta({ title: 'Open plan request' })
 

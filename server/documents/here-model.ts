@@ -75,11 +75,14 @@ export function campedDay(race: Race, document: RaceDocument, camp: CampDocument
   const stage = stageIndex(document, camp.stage, 'until.stage')
   const { fromM, toM, firstPiece, endPiece } = race.course.stages[stage]
   const placeM = fromM + camp.km * 1000
-  const edge = race.course.pieces.fromM.findIndex((M, i) => i > firstPiece && i < endPiece && Math.abs(M - placeM) < 1)
+  const isHere = (M: number): boolean => Math.abs(M - placeM) < 1
+  const inside = race.course.pieces.fromM.findIndex((M, i) => i > firstPiece && i < endPiece && isHere(M))
+  const edge = isHere(toM) ? endPiece : inside
   if (edge < 0) throw offStage('until.km', camp.km, toM - fromM)
   if (stage > race.days[dayIndex].lastStage)
     throw new InputError('unknown-stage', 'until.stage', `${camp.stage} given; expected a stage of that day or before`)
-  return dayUntil(race, dayIndex, edge, `Camp at km ${camp.km.toFixed(0)} of ${race.stages[stage].name}`)
+  const { name, finish } = race.stages[stage]
+  return dayUntil(race, dayIndex, edge, edge === endPiece ? finish : `Camp at km ${camp.km.toFixed(0)} of ${name}`)
 }
 
 function stageIndex(document: RaceDocument, id: string, field: string): number {

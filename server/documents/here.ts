@@ -24,7 +24,7 @@ export type HereDocument = z.output<typeof hereDocument>
 export const campDocument = z
   .strictObject({
     stage: slug('id of the stage on which it is'),
-    km: quantity(0, 50_000, 'from the start of the stage, more than 0 and before its end [km]'),
+    km: quantity(0, 50_000, 'from the start of the stage, more than 0 and not beyond its end [km]'),
   })
   .meta({ title: 'Camp' })
 

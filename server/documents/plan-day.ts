@@ -1,15 +1,17 @@
 import { chargeAtStoredJ, storedJ } from '../engine/battery.ts'
 import { whyImpossible } from '../engine/planner/impossible.ts'
 import { type DayPlan, type Judged, planDay, someTables } from '../engine/planner/plan-day.ts'
+import { furthestDay } from '../engine/planner/furthest.ts'
 import { limitCosts } from '../engine/planner/limit-costs.ts'
 import { fastestThatMeets } from '../engine/search.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
-import { dayBudget, dayKm } from './budget-day.ts'
+import { dayBudget } from './budget-day.ts'
 import { type DrivenDay, drivenRace } from './forecast.ts'
 import { clock, localIso } from './local-time.ts'
 import type { PlanDocument } from './plan.ts'
 import { planRanges } from './plan-ranges.ts'
 import type { PlanRequest } from './plan-request.ts'
+import { campName, campOf, edgeKm, endedBy } from './plan-camp.ts'
 import { bestSpeeds, sectionSpeeds } from './plan-speeds.ts'
 
 const WH = 1 / 3600
@@ -37,12 +39,24 @@ export function planDocuments(request: PlanRequest, tell: Tell = () => {}): Plan
     assumptions,
     target: { wh: storedJ(day.race.car.pack, targetCharge) * WH, chargePct: targetCharge * 100 },
   }
-  const task = { race: day.race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }
+  const timed = { ...day, race: endedBy(day, request.byTime) }
+  const task = { race: timed.race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }
   tell({ step: 'Looking for the best speeds', share: 0.1 })
   const plan = planDay(task)
-  if (plan === null) return { ...head, ...notPlanned(day, targetCharge) }
-  tell({ step: 'Drawing days that differ', share: 0.6 })
-  return { ...head, ...planned(request, day, plan, targetCharge) }
+  if (plan?.best.verdict.isFinished === true) {
+    tell({ step: 'Drawing days that differ', share: 0.6 })
+    return { ...head, ...planned(request, timed, plan, targetCharge) }
+  }
+  const why = notPlanned(timed, targetCharge)
+  if (why.impossible === null || (why.impossible.why === 'target' && request.objective === 'earliest'))
+    return { ...head, ...why }
+  tell({ step: 'Looking how far the day can come', share: 0.3 })
+  const furthest = furthestDay(task, (piece) => campName(timed, piece))
+  if (furthest === null) return { ...head, ...why }
+  tell({ step: 'Drawing days that differ', share: 0.8 })
+  const cut = { ...timed, race: furthest.race }
+  const { impossible } = why
+  return { ...head, ...planned(request, cut, furthest.plan, targetCharge), ...campOf(timed, furthest), impossible }
 }
 
 /** Is told how far the work is. */
@@ -56,6 +70,7 @@ const NOTHING = {
   forPeople: null,
   constant: null,
   bound: null,
+  camp: null,
   prices: [],
   limits: [],
   ranges: null,
@@ -144,13 +159,6 @@ function constantOf(day: DrivenDay, targetCharge: number, bestMs: number): PlanD
     arriveAt: localIso(arrivalMs, day.zone),
     laterMin: (arrivalMs - bestMs) / MIN_MS,
   }
-}
-
-/** Distance of a piece's start from where the day starts. [km] */
-function edgeKm(day: DrivenDay, piece: number): number {
-  const { pieces } = day.race.course
-  const M = piece < pieces.count ? pieces.fromM[piece] : day.race.course.lengthM
-  return Math.max(dayKm(day, M), 0)
 }
 
 const stageOf = (day: DrivenDay, piece: number): string =>

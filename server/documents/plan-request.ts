@@ -1,6 +1,6 @@
 import { z } from 'zod'
 import { forecastRequest } from './forecast.ts'
-import { count, date, quantity } from './quantity.ts'
+import { count, date, quantity, timeOfDay } from './quantity.ts'
 
 /** Standard deviations of what may differ from the forecast; what is left out is assumed. */
 export const spreadsDocument = z
@@ -29,6 +29,13 @@ export const planRequest = forecastRequest
     date: date('the day to plan'),
     targetPct: quantity(0, 100, 'charge wanted when the day closes, in place of the race’s [% of charge]').optional(),
     spreads: spreadsDocument.default(spreadsDocument.parse({})),
+    objective: z
+      .enum(['earliest', 'furthest'])
+      .describe('the earliest arrival at the end of the day’s stages, or the longest way')
+      .default('earliest'),
+    byTime: timeOfDay(
+      'when the driving must end, local time of the day, within its driving hours; left out: with them',
+    ).optional(),
     promisePct: quantity(0.5, 50, 'share of the days drawn that a steady plan may touch the reserve on [%]').default(5),
     members: count(50, 5000, 'days drawn for the ranges; fewer than 2,000 are for a quick look').default(2000),
     seed: count(0, 2_147_483_647, 'where the drawing starts; the same seed gives the same days').default(1),

@@ -1,5 +1,6 @@
 import { z } from 'zod'
 import { dayBudgetDocument } from './budget.ts'
+import { campDocument } from './here.ts'
 import { speedsDocument } from './speeds.ts'
 
 const wh = (meaning: string) => z.number().describe(`${meaning} [Wh]`)
@@ -54,9 +55,20 @@ export const planDocument = z
     zone: z.string(),
     assumptions: z.array(z.string()),
     outcome: z.strictObject({
-      kind: z.enum(['planned', 'impossible', 'parked']),
+      kind: z
+        .enum(['planned', 'furthest', 'impossible', 'parked'])
+        .describe('furthest: the day’s road is not finished, and no plan comes further'),
       text: z.string().describe('one sentence that can be read aloud'),
     }),
+    camp: z
+      .strictObject({
+        until: campDocument.describe('for forecasts at these speeds'),
+        km: km('where the car is parked'),
+        leftKm: z.number().describe('from there to the end of the day’s stages [km]'),
+        goesOn: z.boolean().describe('whether another day of the race follows'),
+      })
+      .nullable()
+      .describe('where a day ends that does not finish its road'),
     target: z.strictObject({ wh: wh('wanted at the close'), chargePct: z.number() }),
     best: choice.nullable().describe('earliest arrival, one speed for each kilometre or so'),
     forPeople: choice

@@ -92,6 +92,24 @@ describe('a plan of stored documents', () => {
     expect((await settled(id)).state).toBe('done')
   })
 
+  test('can begin where the car is, and ends where its hours let it come', async () => {
+    const from = { at: '2026-10-17T10:00:00+02:00', stage: 'saltpan-old-pump', km: 20, chargePct: 60, speedKmh: 70 }
+    const anew = await settled((await order({ ...wanted, members: 50, from })).json().id)
+    expect(anew).toMatchObject({ state: 'done', wanted: { from } })
+    expect(anew.plan.outcome.kind).toBe('planned')
+    expect(anew.plan.forPeople.budget.opening.chargePct).toBe(60)
+    const short = await settled((await order({ ...wanted, members: 50, from, byTime: '10:20' })).json().id)
+    expect(short.plan.outcome.kind).toBe('furthest')
+    expect(short.plan.camp.leftKm).toBeGreaterThan(0)
+  })
+
+  test('refuses an instant that is not on its day, by its field', async () => {
+    const from = { at: '2026-10-18T10:00:00+02:00', stage: 'saltpan-old-pump', km: 20, chargePct: 60 }
+    const failed = await settled((await order({ ...wanted, from })).json().id)
+    expect(failed).toMatchObject({ state: 'failed', fault: { code: 'cannot-forecast' } })
+    expect(failed.fault.detail).toMatch(/^from\.at: /)
+  })
+
   test('refuses a day that the race does not have', async () => {
     expect((await order({ ...wanted, date: '2026-12-01' })).json().code).toBe('no-such-day')
   })

@@ -22,7 +22,8 @@ const MOST_LATER_S = 7200
 const HALVINGS = 6
 
 const ends = (day: DayTables): { found: Frontier; endS: number } => {
-  const found = frontier(day, BIN_S, SPEED_STEP_MPS)
+  // Bins from which the end cannot be reached in time count too: how far the car comes is asked.
+  const found = frontier(day, BIN_S, SPEED_STEP_MPS, Number.POSITIVE_INFINITY)
   return { found, endS: earliestEnd(day, found) }
 }
 const isFinite = (s: number): boolean => s < Number.POSITIVE_INFINITY

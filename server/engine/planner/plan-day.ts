@@ -16,6 +16,8 @@ export interface DayTask {
   opening: Opening
   /** Usable charge wanted when the day closes, 0..1. */
   targetCharge: number
+  /** Speeds that the first tables are taken along; left out, an ordinary one everywhere. [Mps] (pieces of the course) */
+  startMps?: Float64Array
 }
 
 /** Speeds of a day with the forecast that judges them. */
@@ -66,18 +68,11 @@ const SETTLED_MS = 300
  * @returns null where the tables know no drive that holds
  */
 export function planDay(task: DayTask): DayPlan | null {
-  const { race, dayIndex, opening, targetCharge } = task
-  const path = planSun(race.days[dayIndex])
-  const drive = (speedMps: Float64Array): Judged => {
-    const forecast = forecastDay(race, dayIndex, opening, speedMps, path)
-    return { speedMps, forecast, verdict: judge(race, forecast, targetCharge) }
-  }
-  const first = drive(new Float64Array(race.course.pieces.count).fill(SOME_MPS))
-  const reach = reachOf({ race, dayIndex, base: first.forecast, path, targetCharge })
-  if (reach.count <= 0) return null
-  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive }
-  const found = settleDown(day, first, null, MOST_ROUNDS)
-  if (found === null) return null
+  const { race, dayIndex } = task
+  const begun = bestDay(task)
+  if (begun === null) return null
+  const { day, found } = begun
+  const { reach } = day
   const forPeople = peoplePlan(day, found.best)
   // Whole speeds in sections change less often and may do better: then they are what is bettered.
   const better = isBetterVerdict(forPeople.verdict, found.best.verdict)
@@ -98,8 +93,28 @@ export function planDay(task: DayTask): DayPlan | null {
   }
 }
 
+/**
+ * The best speeds of a day alone, one a piece.
+ *
+ * @returns null where the tables know no drive that holds
+ */
+export function bestDay(task: DayTask): { day: DayAtWork; found: { best: Judged; refined: Refined } } | null {
+  const { race, dayIndex, opening, targetCharge } = task
+  const path = planSun(race.days[dayIndex])
+  const drive = (speedMps: Float64Array): Judged => {
+    const forecast = forecastDay(race, dayIndex, opening, speedMps, path)
+    return { speedMps, forecast, verdict: judge(race, forecast, targetCharge) }
+  }
+  const first = drive(task.startMps ?? new Float64Array(race.course.pieces.count).fill(SOME_MPS))
+  const reach = reachOf({ race, dayIndex, base: first.forecast, path, targetCharge })
+  if (reach.count <= 0) return null
+  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive }
+  const found = settleDown(day, first, null, MOST_ROUNDS)
+  return found === null ? null : { day, found }
+}
+
 /** What stays the same while a day is planned. */
-interface DayAtWork {
+export interface DayAtWork {
   race: Race
   dayIndex: number
   targetCharge: number
@@ -124,8 +139,9 @@ function settleDown(
   let now = start
   let refined = before
   let best: Judged | null = before === null ? null : start
+  let spareJ = SPARE_J
   for (let round = 0; round < rounds; round++) {
-    const { tables, heldMps } = settledTables(day, now)
+    const { tables, heldMps } = settledTables(day, now, spareJ)
     refined =
       refined === null
         ? bestDrive(tables)
@@ -136,6 +152,8 @@ function settleDown(
     const { arrivalMs } = now.verdict
     now = day.drive(onCourse(day, speedMps))
     if (best === null || isBetterVerdict(now.verdict, best.verdict)) best = now
+    // What tables cannot see, as a dip inside a piece, is kept free everywhere.
+    if (round >= WHOLE_ROUNDS) spareJ += Math.max(now.verdict.lackJ, 0)
     const isSame = Math.abs(now.verdict.arrivalMs - arrivalMs) < SETTLED_MS
     if (isSame && holds(now.verdict) && now.verdict.lackJ > -SETTLED_J - SPARE_J) break
   }

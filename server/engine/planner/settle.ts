@@ -38,8 +38,17 @@ export function settle(tables: DayTables, along: Along, reach: Reach, base: DayF
   const lastStep = base.steps.span.lastIndexOf(last)
   const arrivedS = (base.steps.toMs[lastStep] - opensMs) / 1000
   const gainedJ = base.balance.storedJ[end] - base.balance.storedJ[lastStep]
+  // A parked car draws on its pack until it may charge: that much more must be left on arrival.
+  tables.floorJ[tables.pieces] += sinksJ(base.balance.storedJ, lastStep)
   if (base.balance.charge[end] < 1)
     shift(tables.duskGainJ, gainedJ - rowAt(tables.duskGainJ, 0, tables.clock, arrivedS))
+}
+
+/** How far a balance sinks below what it is after a step. [J] */
+function sinksJ(storedJ: Float64Array, step: number): number {
+  let least = storedJ[step]
+  for (let i = step + 1; i < storedJ.length; i++) if (storedJ[i] < least) least = storedJ[i]
+  return storedJ[step] - least
 }
 
 function shift(row: Float64Array, by: number): void {
