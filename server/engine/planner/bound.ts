@@ -19,6 +19,7 @@ import { type DayTables, pieceS } from './day-tables.ts'
  */
 export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: number, stepS: number): number {
   const { pieces, stops } = day
+  if (pieces === 0) return Math.min(day.start.atS, latestS)
   const ceilingJ = day.pack.ceilingJ + mostMotionJ(day)
   const price = pricesOf(day, sPerJ)
   const shortest = day.fastestMps.map((v, i) => pieceS(day, i, v))

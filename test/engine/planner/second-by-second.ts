@@ -25,10 +25,11 @@ export function drivenByTheSecond(day: DayTables, drive: Drive): { endS: number;
       J = Math.min(J + lookUp(stop.gainJ, clock.from, clock.step, now), pack.ceilingJ)
       now += lookUp(stop.lengthS, clock.from, clock.step, now)
     }
-    for (let left = drive.waitS[piece]; left > 0; left = 0) {
-      const sunW = lookUp(row(day.harvestW, piece, clock.count), clock.from, clock.step, now + left / 2)
-      J = Math.min(J + kept(sunW - day.waitingLoadW) * left, pack.ceilingJ)
-      now += left
+    for (let left = drive.waitS[piece]; left > 0; left -= Math.min(left, 1)) {
+      const second = Math.min(left, 1)
+      const sunW = lookUp(row(day.harvestW, piece, clock.count), clock.from, clock.step, now + second / 2)
+      J = Math.min(J + kept(sunW - day.waitingLoadW) * second, pack.ceilingJ)
+      now += second
     }
     const speed = drive.speedMps[piece]
     const wholeS = day.lengthM[piece] / speed + day.extraS[piece]
