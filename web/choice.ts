@@ -2,7 +2,7 @@ import type { SpeedsInput } from '../server/documents/speeds.ts'
 import type { FollowedChoice } from './crew-types.ts'
 import { dateIn } from './format.ts'
 
-export const VIEWS = ['day', 'stop', 'log', 'trackers', 'set-up', 'coast-down'] as const
+export const VIEWS = ['day', 'tonight', 'stop', 'log', 'trackers', 'set-up', 'coast-down'] as const
 export type View = (typeof VIEWS)[number]
 
 /** What a page of the client shows: kept in its address, so that a crew can send it and a reload keeps it. */
@@ -40,6 +40,8 @@ export function hashOf(choice: Choice): string {
   for (const name of ['race', 'car', 'sky', 'date'] as const) if (choice[name] !== '') params.set(name, choice[name])
   const { speeds } = choice
   if (speeds.kind === 'constant' || speeds.kind === 'legs') params.set('kmh', String(speeds.speedKmh))
+  // A plan's speeds are too long for an address: whoever opens it sees what the crew follows.
+  if (speeds.kind === 'sections') params.set('speeds', 'followed')
   if (speeds.kind === 'legs') params.set('legs', speeds.legs.map((leg) => `${leg.stage}:${leg.speedKmh}`).join(','))
   const query = params.toString()
   return `#/${choice.view}${query === '' ? '' : `?${query}`}`
@@ -60,7 +62,26 @@ function speedsOf(kmh: string, legs: string): SpeedsInput {
 export function isSame(shown: Choice, choice: FollowedChoice | null | undefined): boolean {
   if (choice === null || choice === undefined) return false
   const { carId: car, skyId: sky, speeds } = choice
-  return hashOf({ ...shown, view: 'day' }) === hashOf({ ...shown, view: 'day', car, sky, speeds })
+  return (
+    hashOf({ ...shown, view: 'day' }) === hashOf({ ...shown, view: 'day', car, sky, speeds }) &&
+    sectionsOf(shown.speeds) === sectionsOf(speeds)
+  )
+}
+
+/** Sections in one order of their fields, which a store does not keep; empty for other speeds. */
+export const sectionsOf = (speeds: SpeedsInput): string =>
+  speeds.kind !== 'sections'
+    ? ''
+    : [
+        speeds.speedKmh,
+        ...speeds.sections.map(({ stage, fromKm, toKm, speedKmh }) => [stage, fromKm, toKm, speedKmh].join(' ')),
+      ].join()
+
+/** What is followed in a few words. */
+export function wayOf(speeds: SpeedsInput): string {
+  if (speeds.kind === 'constant') return `${speeds.speedKmh} km/h`
+  if (speeds.kind === 'meet-target') return 'the fastest speed'
+  return speeds.kind === 'sections' ? 'the speeds of a plan' : 'other speeds'
 }
 
 /** Whether a number is a speed that may be asked for. */

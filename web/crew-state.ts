@@ -13,6 +13,8 @@ export interface Followed extends RaceDay {
 export const followed = signal<Followed | null>(null)
 /** Counts what the service told about the day: a reading, a forecast, a choice. */
 export const news = signal(0)
+/** What the service told last about a plan of the day, as JSON. */
+export const planNews = signal('')
 
 /** Reads the followed choice of a day; a lost request leaves the one that is known. */
 export async function loadFollowed(day: RaceDay): Promise<Followed | null> {

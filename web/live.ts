@@ -9,13 +9,14 @@ const AGAIN_MS = 5000
  *
  * A stream that was refused is asked for again after a while: the service may have been starting.
  */
-export function listenTo(day: RaceDay, onNews: () => void): () => void {
+export function listenTo(day: RaceDay, onNews: () => void, onPlan: (told: string) => void): () => void {
   let source: EventSource | null = null
   let timer: ReturnType<typeof setTimeout> | undefined
   let wasLost = false
   const open = (): void => {
     source = new EventSource(eventsAt(day))
     for (const kind of KINDS) source.addEventListener(kind, onNews)
+    source.addEventListener('plan', ({ data }: MessageEvent<string>) => onPlan(data))
     source.addEventListener('open', () => {
       // What happened while nobody listened may be more than the service keeps.
       if (wasLost) onNews()

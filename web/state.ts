@@ -18,7 +18,7 @@ import {
 import { type Choice, choiceOf, dayToShow, hashOf, isSame } from './choice.ts'
 import { standing } from './session.ts'
 import { followedBudget } from './crew.ts'
-import { followedOn, loadFollowed, news } from './crew-state.ts'
+import { followedOn, loadFollowed, news, planNews } from './crew-state.ts'
 import { listenTo } from './live.ts'
 import { stageId, tick } from './shown.ts'
 
@@ -61,8 +61,8 @@ export function choose(change: Partial<Choice>): void {
   else location.hash = hash
 }
 
-/** An address that names a car says what to show; any other shows what the crew follows. */
-let isOwnChoice = /[?&]car=/.test(location.hash)
+/** An address that names a car and its speeds says what to show; any other shows what the crew follows. */
+let isOwnChoice = /[?&]car=/.test(location.hash) && !/[?&]speeds=/.test(location.hash)
 let triedMs = 0
 
 export function trySpeeds(speeds: SpeedsInput): void {
@@ -219,7 +219,8 @@ export function start(): void {
   effect(() => {
     const [race, date]: string[] = JSON.parse(day.value)
     if (standing.value !== 'inside' || race === '' || date === '') return undefined
-    return listenTo({ race, date }, () => void hearNews({ race, date }))
+    const hearPlan = (told: string): void => void (planNews.value = told)
+    return listenTo({ race, date }, () => void hearNews({ race, date }), hearPlan)
   })
   void loadLists()
 }

@@ -186,6 +186,8 @@ function notPlanned(day: DrivenDay, targetCharge: number): Omit<PlanDocument, ke
   const { pack } = day.race.car
   const reachedKm = edgeKm(day, reach.first + why.farthestEdge)
   const mostPct = chargeAtStoredJ(pack, why.mostAtCloseJ) * 100
+  // The tables may reach what the day itself just misses: then the next whole per cent below is asked for.
+  const lessPct = Math.max(Math.ceil(targetCharge * 100) - 1, 0)
   const floorPct = chargeAtStoredJ(pack, why.floorJ) * 100
   const laterMin = why.laterS / 60
   const nearest = [
@@ -194,8 +196,8 @@ function notPlanned(day: DrivenDay, targetCharge: number): Omit<PlanDocument, ke
       : [
           {
             what: 'target' as const,
-            value: mostPct,
-            text: `Close with ${Math.floor(mostPct)} % instead of ${Math.round(targetCharge * 100)} %.`,
+            value: Math.min(mostPct, lessPct),
+            text: `Close with ${Math.floor(Math.min(mostPct, lessPct))} % instead of ${Math.round(targetCharge * 100)} %.`,
           },
         ]),
     ...(Number.isNaN(why.floorJ)
@@ -231,6 +233,8 @@ function sentence(
   const name = finishName(day)
   if (why.why === 'target') {
     const shortWh = Math.round((of.tables.targetJ - why.mostAtCloseJ) * WH)
+    if (shortWh < 1)
+      return `${name} can be reached, but the day then closes just short of ${Math.round(of.targetCharge * 100)} %.`
     return `${name} can be reached, but the day then closes with ${Math.floor(of.mostPct)} % at most: ${shortWh} Wh short of ${Math.round(of.targetCharge * 100)} %.`
   }
   const endsAt = clock(day.race.days[day.dayIndex].drivingToMs, day.zone)

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest'
 import { speedsDocument } from '../../server/documents/speeds.ts'
-import { choiceOf, dayToShow, hashOf, typedSpeed } from '../../web/choice.ts'
+import { choiceOf, dayToShow, hashOf, isSame, typedSpeed } from '../../web/choice.ts'
 import { legSpeed, ownSpeed, withLeg } from '../../web/legs.ts'
 
 describe('the address of a page', () => {
@@ -42,6 +42,31 @@ describe('the address of a page', () => {
   it('always gives speeds that the service takes', () => {
     for (const hash of ['#/day?kmh=5', '#/day?kmh=200&legs=a:1,b:60,c', '#/day?kmh=4', '#/day?kmh=70&legs=a:70'])
       expect(speedsDocument.safeParse(choiceOf(hash).speeds).success).toBe(true)
+  })
+})
+
+describe('what the crew follows', () => {
+  const sections = [{ stage: 'out', fromKm: 0, toKm: 15, speedKmh: 80 }]
+  const shown = {
+    view: 'tonight' as const,
+    race: 'plateau-run',
+    car: 'weaver-2',
+    sky: 'forecast-1',
+    date: '2026-10-17',
+    speeds: { kind: 'sections' as const, speedKmh: 70, sections },
+  }
+  const followed = { carId: 'weaver-2', skyId: 'forecast-1', speeds: shown.speeds, version: 1, savedAt: '' }
+
+  it('is told apart from the fastest speed and from another plan, however a store orders its fields', () => {
+    const turned = [{ toKm: 15, stage: 'out', speedKmh: 80, fromKm: 0 }]
+    expect(isSame(shown, { ...followed, speeds: { sections: turned, kind: 'sections', speedKmh: 70 } })).toBe(true)
+    const faster = [{ ...sections[0], speedKmh: 81 }]
+    expect(isSame(shown, { ...followed, speeds: { ...shown.speeds, sections: faster } })).toBe(false)
+    expect(isSame({ ...shown, speeds: { kind: 'meet-target' } }, followed)).toBe(false)
+  })
+
+  it('is what an address of a plan leads to: its speeds are too long to stand in it', () => {
+    expect(hashOf(shown)).toBe('#/tonight?race=plateau-run&car=weaver-2&sky=forecast-1&date=2026-10-17&speeds=followed')
   })
 })
 

@@ -43,6 +43,7 @@ for (const load of [loadLog, loadStop]) setTimeout(() => load().catch(() => unde
 /** Screens that are not needed at once are fetched when they are opened. */
 const VIEWS = {
   day: DayView,
+  tonight: late(async () => (await import('./tonight.tsx')).TonightView),
   stop: late(loadStop),
   log: late(loadLog),
   trackers: late(async () => (await import('./trackers.tsx')).TrackersView),
@@ -130,6 +131,7 @@ const standsUnder = (view: View): View => (view === 'coast-down' ? 'set-up' : vi
 
 const TABS = [
   { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },
+  { view: 'tonight', name: 'Tonight', icon: 'M21 16A9 9 0 1 1 11 4a7 7 0 0 0 10 12z' },
   { view: 'stop', name: 'Stop', icon: 'M4 22h18M13 22v-6M5 16l14-9 2 3L7 19z' },
   { view: 'log', name: 'Log', icon: 'M5 21l1-5L17 5l4 4L10 20zM14 8l4 4M4 24h18' },
   { view: 'trackers', name: 'Trackers', icon: 'M4 3v20h19M5 21C8 8 12 8 22 7M15 15l3 3-3 3-3-3z' },

@@ -3,7 +3,7 @@ import type { ComponentType } from 'preact'
 import type { DayBudget } from '../../server/documents/budget.ts'
 import type { Refusal } from '../api.ts'
 import { follow } from '../crew.ts'
-import { isSame } from '../choice.ts'
+import { isSame, wayOf } from '../choice.ts'
 import { followedOn, loadFollowed } from '../crew-state.ts'
 import type { FollowedChoice } from '../crew-types.ts'
 import { clockAt } from '../format.ts'
@@ -51,14 +51,7 @@ function wordsOf(followed: FollowedChoice | null, isShown: boolean, offsetMin: n
     return 'Nothing is followed on this day yet: readings move, and shared links show, what is followed.'
   const since = `since ${clockAt(Date.parse(followed.savedAt), offsetMin)}`
   if (isShown) return `The crew follows this, ${since}.`
-  const { speeds } = followed
-  const way =
-    speeds.kind === 'constant'
-      ? `${speeds.speedKmh} km/h`
-      : speeds.kind === 'meet-target'
-        ? 'the fastest speed'
-        : 'other speeds'
-  return `A try. The crew follows ${way}, ${since}.`
+  return `A try. The crew follows ${wayOf(followed.speeds)}, ${since}.`
 }
 
 /** The dialog with its QR code is fetched when it is first asked for. */
