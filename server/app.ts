@@ -33,6 +33,7 @@ import { previewRoute } from './api/previews.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
 import { sessionRoutes } from './api/sessions.ts'
 import { sharedRoute, shareRoutes } from './api/shares.ts'
+import { whatIfRoute } from './api/what-if.ts'
 import { skyComparisonRoute } from './api/sky-comparison.ts'
 import { statelessForecastRoute, statelessTrackerRoute } from './api/stateless-forecast.ts'
 import { inTurn } from './api/take-readings.ts'
@@ -150,6 +151,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => statelessTrackerRoute(scope, needs))
   void api.register(async (scope: Api) => statelessPointingRoute(scope, needs))
   void api.register(async (scope: Api) => statelessPlanRoute(scope, needs))
+  void api.register(async (scope: Api) => whatIfRoute(scope, needs))
   void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
   void api.register(async (scope: Api) => coastDownRoute(scope, needs))
   dayRoutes(api, needs)

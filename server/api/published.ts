@@ -2,6 +2,7 @@ import { z } from 'zod'
 import { DOCUMENTS } from '../compute/documents.ts'
 import { openRequest } from '../compute/forecast-jobs.ts'
 import { openComparison } from '../compute/sky-jobs.ts'
+import { openWhatIf } from '../compute/what-if-jobs.ts'
 import { coastDownRequest } from '../documents/coast-down.ts'
 import { coastDownDocument } from '../documents/coast-down-result.ts'
 import { budgetDocument } from '../documents/budget.ts'
@@ -11,6 +12,7 @@ import { skyComparison } from '../documents/sky-comparison.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { trackerDay } from '../documents/tracker-day.ts'
 import { trackerDays } from '../documents/tracker-days.ts'
+import { whatIfDocument } from '../documents/what-if.ts'
 import { problemSchema } from './answers.ts'
 
 type JsonSchema = Record<string, unknown>
@@ -34,6 +36,8 @@ export const COMPONENTS: Record<string, Component> = {
   ForecastRequest: { schema: openRequest, direction: 'input', example: 'forecast-request' },
   SkyComparisonRequest: { schema: openComparison, direction: 'input', example: 'sky-comparison' },
   SkyComparison: { schema: skyComparison, direction: 'output' },
+  WhatIfRequest: { schema: openWhatIf, direction: 'input', example: 'what-if-request' },
+  WhatIf: { schema: whatIfDocument, direction: 'output' },
   CoastDownTest: { schema: coastDownRequest, direction: 'input', example: 'coast-down' },
   CoastDownResult: { schema: coastDownDocument, direction: 'output' },
   Budget: { schema: budgetDocument, direction: 'output' },

@@ -9,8 +9,7 @@ import { routeDocument } from '../documents/route.ts'
 import { skyDocument } from '../documents/sky.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { type TrackerDaysDocument, trackerDaysOf } from '../documents/tracker-days.ts'
-import { InputError } from '../engine/input-error.ts'
-import { Fault } from '../errors.ts'
+import { fitting } from './fitting.ts'
 import { fingerprint } from './fingerprint.ts'
 import { checked, readJson } from './read-json.ts'
 
@@ -85,7 +84,7 @@ export interface ForecastInputs {
  */
 export function forecastJson(input: ForecastInputs): string {
   const request = checked(forecastRequest, input, 'forecast request')
-  return forecasting(() => JSON.stringify(forecastDocuments(request)))
+  return fitting(() => JSON.stringify(forecastDocuments(request)))
 }
 
 /**
@@ -95,7 +94,7 @@ export function forecastJson(input: ForecastInputs): string {
  */
 export function trackerDaysJob(input: ForecastInputs): TrackerDaysDocument {
   const request = checked(forecastRequest, input, 'forecast request')
-  return forecasting(() => trackerDaysOf(request))
+  return fitting(() => trackerDaysOf(request))
 }
 
 /**
@@ -105,18 +104,7 @@ export function trackerDaysJob(input: ForecastInputs): TrackerDaysDocument {
  */
 export function pointingJson(input: ForecastInputs): string {
   const request = checked(forecastRequest, input, 'forecast request')
-  return forecasting(() => JSON.stringify(pointingDocuments(request)))
-}
-
-/** Documents that do not fit together are a fault of the request, not of the service. */
-function forecasting<T>(work: () => T): T {
-  try {
-    return work()
-  } catch (error) {
-    if (!(error instanceof InputError)) throw error
-    const { field, detail } = error
-    throw new Fault('cannot-forecast', `${field}: ${detail}.`, { errors: [{ field, detail }] })
-  }
+  return fitting(() => JSON.stringify(pointingDocuments(request)))
 }
 
 /** One hash over the content of everything that a forecast is made from. */

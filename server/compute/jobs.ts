@@ -5,6 +5,7 @@ import { planHash, planJson, readPlanRequest } from './plan-jobs.ts'
 import type { ComputePool } from './pool.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 import { compareJson, readComparison } from './sky-jobs.ts'
+import { readWhatIf, whatIfJson } from './what-if-jobs.ts'
 
 /** Everything that is too heavy for the event loop, by name. */
 export const JOBS = {
@@ -15,6 +16,8 @@ export const JOBS = {
   'read-plan-request': readPlanRequest,
   'plan-hash': planHash,
   plan: planJson,
+  'read-what-if': readWhatIf,
+  'what-if': whatIfJson,
   point: pointingJson,
   'read-coast-down': readCoastDown,
   'coast-down': coastDownJob,

@@ -1,7 +1,6 @@
 import { planDocuments } from '../documents/plan-day.ts'
 import { planRequest } from '../documents/plan-request.ts'
-import { InputError } from '../engine/input-error.ts'
-import { Fault } from '../errors.ts'
+import { fitting } from './fitting.ts'
 import { fingerprint } from './fingerprint.ts'
 import { readOpenRequest, openRequest } from './forecast-jobs.ts'
 import { checked } from './read-json.ts'
@@ -44,11 +43,5 @@ export function readPlanRequest(input: { bytes: Uint8Array }) {
  */
 export function planJson(input: unknown, tell?: (progress: Progress) => void): string {
   const request = checked(planRequest, input, 'plan request')
-  try {
-    return JSON.stringify(planDocuments(request, tell))
-  } catch (error) {
-    if (!(error instanceof InputError)) throw error
-    const { field, detail } = error
-    throw new Fault('cannot-forecast', `${field}: ${detail}.`, { errors: [{ field, detail }] })
-  }
+  return fitting(() => JSON.stringify(planDocuments(request, tell)))
 }

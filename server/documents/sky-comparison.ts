@@ -1,5 +1,6 @@
 import { z } from 'zod'
 import { carDocument } from './car.ts'
+import { forecastRequest } from './forecast.ts'
 import { learnedLosses } from './learned.ts'
 import { date, slug, zoneName } from './quantity.ts'
 import { raceDocument } from './race.ts'
@@ -23,6 +24,8 @@ export const comparisonRequest = z.strictObject({
       routes: z.record(slug('id of a route that a stage names'), routeDocument),
       speeds: speedsDocument,
       date: date('the day'),
+      from: forecastRequest.shape.from,
+      until: forecastRequest.shape.until,
       learned: learnedLosses.optional(),
     })
     .optional(),

@@ -4,6 +4,7 @@ import { Ajv2020 } from 'ajv/dist/2020.js'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { EXAMPLES } from '../../server/api/examples/all.ts'
 import { DOCUMENTS } from '../../server/compute/documents.ts'
+import { openWhatIf } from '../../server/compute/what-if-jobs.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
 import { checkDocument } from '../../server/documents/check.ts'
@@ -60,6 +61,7 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/forecast': ['post'],
   '/api/v1/tracker-report': ['post'],
   '/api/v1/plan': ['post'],
+  '/api/v1/what-if': ['post'],
   '/api/v1/pointing': ['post'],
   '/api/v1/sky-comparison': ['post'],
   '/api/v1/coast-down': ['post'],
@@ -149,6 +151,7 @@ describe('the worked examples', () => {
     speeds: speedsDocument,
     'coast-down': coastDownRequest,
     'forecast-request': openRequest,
+    'what-if-request': openWhatIf,
     'sky-comparison': openComparison,
   }
 

@@ -181,6 +181,23 @@ export const REQUESTS: object[] = [
   ...several(anyRequest(), 6).map((request) => ({ ...Object(request) })),
 ]
 
+const { speeds: _speeds, ...WHOLE_DAY } = WHOLE
+const FROM = { at: '2026-10-17T10:00:00+02:00', stage: String(WHOLE.race.days[0].stages?.[0].id), km: 1, chargePct: 55 }
+
+/** Days with what might be otherwise, from the morning and from the road. */
+export const WHAT_IFS: object[] = [
+  { ...WHOLE_DAY, date: '2026-10-17', targetPct: 20, variants: [{ name: 'Less sun', change: { sunPct: 90 } }] },
+  {
+    ...WHOLE_DAY,
+    date: '2026-10-17',
+    from: { ...FROM, speedKmh: 60, packC: 25 },
+    variants: [
+      { name: 'Wind', change: { headwindMps: 2, massKg: 5, dragAreaPct: 101, rollingPct: 99, openingPct: -2 } },
+      { name: 'Rules', change: { stopMinutes: 5, reservePct: 12, targetPct: 15 } },
+    ],
+  },
+]
+
 /** Comparisons of two skies, with and without a day. */
 export const COMPARISONS = [
   { forecast: someSky(20), measured: fullSky() },

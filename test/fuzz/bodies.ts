@@ -2,6 +2,7 @@ import type { z } from 'zod'
 import { DOCUMENTS as SCHEMAS } from '../../server/compute/documents.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
+import { openWhatIf } from '../../server/compute/what-if-jobs.ts'
 import { coastDownRequest } from '../../server/documents/coast-down.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
 import type { Kind } from './attempt.ts'
@@ -15,6 +16,7 @@ import {
   ROUTE_TABLES,
   SKY_TABLES,
   SPEEDS,
+  WHAT_IFS,
 } from './bases.ts'
 import { oneByte, otherBytes } from './byte-mutation.ts'
 import type { Chance } from './chance.ts'
@@ -53,6 +55,9 @@ export const wrongRequest = (by: Chance): WrongBody => wrongJson(by, by.pick(REQ
 
 export const wrongComparison = (by: Chance): WrongBody =>
   wrongJson(by, by.pick<unknown>(COMPARISONS), publishedOnce(openComparison))
+
+export const wrongWhatIf = (by: Chance): WrongBody =>
+  wrongJson(by, by.pick<unknown>(WHAT_IFS), publishedOnce(openWhatIf))
 
 const NEW_FORECASTS = SPEEDS.flatMap((speeds) => [
   { carId: 'fuzz-car', skyId: 'fuzz-sky', speeds },

@@ -13,6 +13,7 @@ import {
   ROUTE_TABLES,
   SKY_TABLES,
   SPEEDS,
+  WHAT_IFS,
   WHOLE,
 } from './bases.ts'
 import { DOCUMENT_DOORS } from './document-doors.ts'
@@ -71,6 +72,14 @@ describe('what is sound is accepted, so that one wrong field is what a refusal i
     }
     for (const { text, query } of COAST_TABLES) {
       const attempt = sent('POST', `/api/v1/coast-down?${query}`, 'text/csv', { ...sound, body: text }, rest)
+      expect(await soundComplaint(service, attempt)).toBeNull()
+    }
+  })
+
+  test('every what-if', async () => {
+    for (const request of WHAT_IFS) {
+      const wrong = { ...sound, body: JSON.stringify(request) }
+      const attempt = sent('POST', '/api/v1/what-if', 'application/json', wrong, { touches: null, yields: null })
       expect(await soundComplaint(service, attempt)).toBeNull()
     }
   })

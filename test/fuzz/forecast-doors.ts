@@ -1,5 +1,5 @@
 import { sent } from './attempt.ts'
-import { wrongComparison, wrongNewForecast, wrongRequest } from './bodies.ts'
+import { wrongComparison, wrongNewForecast, wrongRequest, wrongWhatIf } from './bodies.ts'
 import type { Door } from './document-doors.ts'
 
 /** Attempts that run at once; each has a race of its own, so that its forecasts can be watched. */
@@ -41,6 +41,13 @@ export const FORECAST_DOORS: Door[] = [
       const rest = { touches: { kind: 'forecast', id }, yields: 'budget' } as const
       return sent('POST', `/api/v1/races/${id}/forecasts`, 'application/json', wrongNewForecast(by), rest)
     },
+  },
+  {
+    name: 'POST what-if',
+    count: 80,
+    takesDocuments: true,
+    attempt: (by) =>
+      sent('POST', '/api/v1/what-if', 'application/json', wrongWhatIf(by), { touches: null, yields: null }),
   },
   {
     name: 'POST sky-comparison',

@@ -30,6 +30,21 @@ export const EXAMPLES: Record<string, Example> = {
       speeds: speedsExample,
     },
   },
+  'what-if-request': {
+    title: 'Less sun, a headwind and a longer stop beside the day’s best plan',
+    document: {
+      car: carExample,
+      race: raceExample,
+      routes: { 'saltpan-twin-wells': routeExample },
+      sky: skyExample,
+      date: '2026-10-17',
+      variants: [
+        { name: 'A tenth less sun', change: { sunPct: 90 } },
+        { name: 'Headwind of 2 m/s more', change: { headwindMps: 2 } },
+        { name: 'A flat tyre', change: { stopMinutes: 8, rollingPct: 103 } },
+      ],
+    },
+  },
   'sky-comparison': {
     title: 'A forecast beside what was measured',
     document: { forecast: skyExample, measured: measuredExample },

@@ -44,11 +44,14 @@ export function touching(of: Members): { share: number; edge: number } {
   return { share: touched / of.count, edge: most?.[0] ?? -1 }
 }
 
+/** Variances that sum to less are rounding. [J²] */
+const NOTHING_J2 = 1e-3
+
 /** Each cause's share of the spread of the closing balance: its variance alone over all variances alone. */
 export function sharesOfSpread(course: Course, spreads: Spreads, count: number, seed: number): Record<Cause, number> {
   const alone = CAUSES.map((cause) => variance(members(course, spreads, count, seed, cause).duskJ))
   const total = alone.reduce((sum, value) => sum + value, 0)
-  return Object.fromEntries(CAUSES.map((cause, c) => [cause, total > 0 ? alone[c] / total : 0])) as Record<
+  return Object.fromEntries(CAUSES.map((cause, c) => [cause, total > NOTHING_J2 ? alone[c] / total : 0])) as Record<
     Cause,
     number
   >

@@ -187,7 +187,7 @@ function harvests(along: Along, reach: Reach, clock: Axis, startS: number): Floa
 const USUAL_MPS = 80 / 3.6
 
 /** What changes of speed cost at the bounds that the driver keeps to, on a level road in still air. */
-function kineticOf({ car }: Race): Kinetic {
+export function kineticOf({ car }: Race): Kinetic {
   const massKg = car.load.massKg * car.load.rotatingFactor
   const going: Going = { gradeRad: 0, surfaceFactor: 1, headwindMps: 0, crosswindMps: 0, densityKgM3: 1.1 }
   const heldW = holdingN(car.load, USUAL_MPS, going) * USUAL_MPS
@@ -210,7 +210,7 @@ export function motorMps({ race, base }: Along, reach: Reach): Float64Array {
 
 const topMps = ({ car }: Race): number => Math.min(car.drive.topMps ?? FASTEST_MPS, FASTEST_MPS)
 
-function goingOn({ course }: Race, { road }: DayForecast, piece: number): Going {
+function goingOn({ course }: Race, { road }: Pick<DayForecast, 'road'>, piece: number): Going {
   return {
     gradeRad: course.pieces.gradeRad[piece],
     surfaceFactor: road.surfaceFactor[piece],
@@ -221,7 +221,11 @@ function goingOn({ course }: Race, { road }: DayForecast, piece: number): Going 
 }
 
 /** Power from the bus at each speed in the air that the base forecast met, and the fastest that is allowed and held. */
-function loads({ race, base }: Along, reach: Reach, speeds: Axis): { loadW: Float64Array; fastestMps: Float64Array } {
+export function loads(
+  { race, base }: { race: Race; base: Pick<DayForecast, 'road'> },
+  reach: Reach,
+  speeds: Axis,
+): { loadW: Float64Array; fastestMps: Float64Array } {
   const { car, course } = race
   const loadW = new Float64Array(reach.count * speeds.count)
   const fastestMps = new Float64Array(reach.count)

@@ -163,7 +163,11 @@ function settleDown(
 const noWaits = (reach: Reach): Float64Array => new Float64Array(reach.count + 1)
 
 /** Tables set right along a drive, with so much more asked than is wanted. */
-function settledTables(day: DayAtWork, now: Judged, spareJ = SPARE_J): { tables: DayTables; heldMps: Float64Array } {
+export function settledTables(
+  day: DayAtWork,
+  now: Judged,
+  spareJ = SPARE_J,
+): { tables: DayTables; heldMps: Float64Array } {
   const { reach } = day
   const along = { ...day, base: now.forecast }
   const tables = tablesAlong(along, reach)

@@ -1,0 +1,85 @@
+import { describe, expect, test } from 'vitest'
+import type { RoadLoad } from '../../../server/engine/road.ts'
+import { bestDay, type DayTask } from '../../../server/engine/planner/plan-day.ts'
+import { type Change, quickBase, quickWhatIf } from '../../../server/engine/planner/what-if.ts'
+import { demoDay } from '../../support/demo-race.ts'
+
+const NOTHING: Change = { sun: 1, dragArea: 1, rolling: 1, massKg: 0, headwindMps: 0, openingCharge: 0, stopS: 0 }
+const { race, dayIndex, opening, targetCharge } = demoDay('2026-10-17')
+const task: DayTask = { race, dayIndex, opening, targetCharge: targetCharge ?? race.car.reserveCharge }
+const found = quickBase(task)
+if (found === null) throw new Error('the demo has no plan')
+const base = found
+const arrivalMs = (of: DayTask): number => bestDay(of)?.found.best.verdict.arrivalMs ?? Number.NaN
+const plannedMs = arrivalMs(task)
+
+const withLoad = (change: Partial<RoadLoad>): DayTask => ({
+  ...task,
+  race: { ...race, car: { ...race.car, load: { ...race.car.load, ...change } } },
+})
+const { load } = race.car
+
+describe('a quick answer', { timeout: 60_000 }, () => {
+  test('without any change is the base', () => {
+    const { laterS, lacksJ } = quickWhatIf(base, NOTHING)
+    expect(Math.abs(laterS)).toBeLessThan(0.5)
+    expect(lacksJ).toBe(0)
+  })
+
+  // The other side of each is a whole plan of the changed car or day, which knows nothing of the tables of the base.
+  test.each<[string, Partial<Change>, DayTask]>([
+    ['more drag', { dragArea: 1.05 }, withLoad({ dragAreaM2: load.dragAreaM2 * 1.05 })],
+    [
+      'less rolling',
+      { rolling: 0.9 },
+      withLoad({ rollingCoefficient: load.rollingCoefficient * 0.9, rollingPerMps: load.rollingPerMps * 0.9 }),
+    ],
+    ['more mass', { massKg: 20 }, withLoad({ massKg: load.massKg + 20 })],
+    ['less charge', { openingCharge: -0.02 }, { ...task, opening: { ...opening, charge: opening.charge - 0.02 } }],
+    ['more wanted at the close', { targetCharge: 0.45 }, { ...task, targetCharge: 0.45 }],
+    [
+      'longer stops',
+      { stopS: 480 },
+      {
+        ...task,
+        race: {
+          ...race,
+          stages: race.stages.map((stage) => ({
+            ...stage,
+            stop: stage.stop && { ...stage.stop, lengthS: stage.stop.lengthS + 480 },
+          })),
+        },
+      },
+    ],
+  ])('to %s is within 2 % of a whole plan', (_name, change, changed) => {
+    const { laterS } = quickWhatIf(base, { ...NOTHING, ...change })
+    const wholeS = (arrivalMs(changed) - plannedMs) / 1000
+    expect(Math.abs(wholeS)).toBeGreaterThan(100)
+    expect(Math.abs(laterS / wholeS - 1)).toBeLessThan(0.02)
+  })
+
+  test('is later with less sun, more wind or a dead tracker, the more the later', () => {
+    const later = (change: Partial<Change>): number => quickWhatIf(base, { ...NOTHING, ...change }).laterS
+    expect(later({ sun: 0.95 })).toBeGreaterThan(60)
+    expect(later({ sun: 0.9 })).toBeGreaterThan(later({ sun: 0.95 }))
+    expect(later({ sun: 1.05 })).toBeLessThan(-60)
+    expect(later({ headwindMps: 1 })).toBeGreaterThan(60)
+    expect(later({ headwindMps: 2 })).toBeGreaterThan(later({ headwindMps: 1 }))
+    expect(later({ trackerOff: 2 })).toBeGreaterThan(60)
+  })
+
+  test('a joule at the start is worth its price: 2 % less charge against the price of energy there', () => {
+    // The price is the slope at nothing; over so small a step the whole difference is the slope times the energy.
+    const lessJ = base.forecast.openingJ * 0.02
+    const share = 0.02
+    const { laterS } = quickWhatIf(base, { ...NOTHING, openingCharge: -share * base.forecast.openingCharge })
+    expect(Math.abs(laterS / (lessJ * base.refined.sPerJ[0]) - 1)).toBeLessThan(0.15)
+  })
+
+  test('says what is missing where no speeds near those of the base hold', () => {
+    const { laterS, closingJ, lacksJ } = quickWhatIf(base, { ...NOTHING, targetCharge: 1 })
+    expect(laterS).toBeNaN()
+    expect(closingJ).toBeNaN()
+    expect(lacksJ).toBeGreaterThan(0)
+  })
+})
