@@ -66,7 +66,8 @@ describe('the planner on flat road under constant sun', () => {
 
 describe('the slope of the priced arrival', () => {
   it('is that of small changes', () => {
-    const day = cloudyDay(3)
+    // A target that is missed, so that energy has its price everywhere.
+    const day = { ...cloudyDay(3), targetJ: 4900 * 3600 }
     const sweep = newSweep(day, new Float64Array(day.pieces + 1))
     sweep.waitS[100] = 120
     sweep.multiplier.fill(1e-6)
@@ -86,6 +87,7 @@ describe('the slope of the priced arrival', () => {
       expect(Math.abs(measured - slope[i])).toBeLessThan(1e-6 * (1 + Math.abs(slope[i])))
       checked++
     }
+    expect(sweep.price[day.pieces]).toBeGreaterThan(1 / 1300)
     expect(checked).toBeGreaterThan(60)
   })
 })
