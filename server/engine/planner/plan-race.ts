@@ -1,9 +1,11 @@
 import { chargeAtStoredJ, storedJ } from '../battery.ts'
 import { type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
+import { standingBefore } from '../until-there.ts'
 import { earliestEnd } from './back-track.ts'
 import type { DayTables } from './day-tables.ts'
 import { planSun, reachOf, tablesAlong } from './engine-tables.ts'
 import { frontier } from './frontier.ts'
+import { furthestDay } from './furthest.ts'
 import { type DayPlan, planDay } from './plan-day.ts'
 import { settle } from './settle.ts'
 
@@ -24,12 +26,14 @@ const GRID = 8
 const SHARPENINGS = 3
 const SOME_MPS = 70 / 3.6
 
-/** A day seen from the others: how long it takes from one charge to another. */
-interface DayCost {
-  tables: DayTables
-  /** Energy that the morning adds to the opening. [J] */
-  morningJ: number
-}
+/** A day seen from the others: how long it takes from one charge to another, or what a parked car gains. */
+type DayCost =
+  | {
+      tables: DayTables
+      /** Energy that the morning adds to the opening. [J] */
+      morningJ: number
+    }
+  | { parkedJ: number }
 
 /**
  * Closing charges of the days between with which the days together take least time.
@@ -43,7 +47,7 @@ export function closingCharges(task: RaceTask): number[] {
   const { race, dayIndex, targetCharge } = task
   const { pack, reserveCharge } = race.car
   const last = race.days.length - 1
-  const costs = race.days.map((_, d) => (d < dayIndex ? null : costOf(task, d)))
+  const costs = race.days.map((_, d) => (d < dayIndex ? { parkedJ: 0 } : costOf(task, d)))
   const floorJ = storedJ(pack, reserveCharge)
   const ceilingJ = storedJ(pack, 1)
   const grid = Array.from({ length: GRID + 1 }, (_, k) => floorJ + ((ceilingJ - floorJ) * k) / GRID)
@@ -58,32 +62,30 @@ export function closingCharges(task: RaceTask): number[] {
   return race.days.map((_, d) => (d < dayIndex ? Number.NaN : chargeAtStoredJ(pack, path[d - dayIndex + 1])))
 }
 
-function costOf({ race, opening, targetCharge }: RaceTask, d: number): DayCost | null {
+function costOf({ race, opening, targetCharge }: RaceTask, d: number): DayCost {
   const path = planSun(race.days[d])
   const standing = standingOn(race, d)
-  if (standing === null) return null
   const charge = 0.6
   const speedMps = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
   const base: DayForecast = forecastDay(race, d, { ...opening, standing, charge }, speedMps, path)
   const along = { race, dayIndex: d, base, path, targetCharge: targetCharge[d] ?? charge }
   const reach = reachOf(along)
-  if (reach.count <= 0) return null
+  if (reach.count <= 0) return { parkedJ: base.closingJ - base.openingJ }
   const tables = tablesAlong(along, reach)
   const held = tables.fastestMps.map((fastest) => Math.min(fastest, SOME_MPS))
   settle(tables, along, reach, base, held)
   return { tables, morningJ: tables.start.energyJ - base.openingJ }
 }
 
-/** The start of the first stage that a day may start; null where it may start none. */
-function standingOn(race: Race, d: number): Opening['standing'] | null {
-  const first = d === 0 ? 0 : race.days[d - 1].lastStage + 1
-  if (first > race.days[d].lastStage) return null
-  return { stage: first, placeM: race.course.stages[first].fromM, stopLeftS: 0 }
+/** The start of the first stage that a day may start, or where the last one ended. */
+function standingOn({ course, days }: Race, d: number): Opening['standing'] {
+  const stage = d === 0 ? 0 : days[d - 1].lastStage + 1
+  return { stage, placeM: course.stages[stage]?.fromM ?? course.lengthM, stopLeftS: 0 }
 }
 
 /** Driving time of a day from an opening energy to each closing energy; Infinity where it cannot be. [S] */
-function dayTimes(cost: DayCost | null, openJ: number, closeJs: number[]): number[] {
-  if (cost === null) return closeJs.map((J) => (J <= openJ ? 0 : Number.POSITIVE_INFINITY))
+function dayTimes(cost: DayCost, openJ: number, closeJs: number[]): number[] {
+  if ('parkedJ' in cost) return closeJs.map((J) => (J <= openJ + cost.parkedJ ? 0 : Number.POSITIVE_INFINITY))
   const energyJ = Math.min(openJ + cost.morningJ, cost.tables.pack.ceilingJ)
   const day = { ...cost.tables, start: { ...cost.tables.start, energyJ } }
   const found = frontier(day, BIN_S, SPEED_STEP_MPS)
@@ -139,17 +141,47 @@ function sharpen(path: number[], task: RaceTask, stepJ: number, times: Times): v
   }
 }
 
-/** Plans of all days in turn, each from where the one before closes; null from the first on that cannot be kept. */
-export function planRace(task: RaceTask): { targets: number[]; days: (DayPlan | null)[] } {
+/** One day of a planned race. */
+export interface RaceDay {
+  /** Null where the car is parked all day, or where nothing can be planned any more. */
+  plan: DayPlan | null
+  isParked: boolean
+  /** The race as it was planned: its road ends where the day's hours let the car come. */
+  race: Race
+  /** How the next day opens; null where the day cannot be planned. */
+  closing: Opening | null
+}
+
+/**
+ * Plans of all days in turn, each from where the one before closes. A day whose stages the hours do not let finish
+ * ends where they let the car come, and the next one goes on from there.
+ */
+export function planRace(task: RaceTask): { targets: number[]; days: RaceDay[] } {
   const { race, dayIndex } = task
   const targets = closingCharges(task)
-  const days: (DayPlan | null)[] = []
+  const days: RaceDay[] = []
   let opening: Opening | null = task.opening
   for (let d = dayIndex; d < race.days.length; d++) {
-    const plan: DayPlan | null =
-      opening === null ? null : planDay({ race, dayIndex: d, opening, targetCharge: targets[d] })
-    days.push(plan)
-    opening = plan === null ? null : plan.best.forecast.closing
+    const day: RaceDay =
+      opening === null ? { plan: null, isParked: false, race, closing: null } : planNext(race, d, opening, targets[d])
+    days.push(day)
+    opening = day.closing
   }
   return { targets, days }
+}
+
+function planNext(race: Race, dayIndex: number, opening: Opening, targetCharge: number): RaceDay {
+  if (opening.standing.stage > race.days[dayIndex].lastStage) {
+    const speedMps = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
+    return { plan: null, isParked: true, race, closing: forecastDay(race, dayIndex, opening, speedMps).closing }
+  }
+  const task = { race, dayIndex, opening, targetCharge }
+  const plan = planDay(task)
+  if (plan?.best.verdict.isFinished === true)
+    return { plan, isParked: false, race, closing: plan.best.forecast.closing }
+  const furthest = furthestDay(task, () => 'Camp')
+  if (furthest === null) return { plan: null, isParked: false, race, closing: null }
+  const standing = standingBefore(race, furthest.endPiece)
+  const closing = { ...furthest.plan.best.forecast.closing, standing }
+  return { plan: furthest.plan, isParked: false, race: furthest.race, closing }
 }

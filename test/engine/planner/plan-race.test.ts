@@ -1,0 +1,62 @@
+import { describe, expect, test } from 'vitest'
+import { storedJ } from '../../../server/engine/battery.ts'
+import type { DayPlan } from '../../../server/engine/planner/plan-day.ts'
+import { planDay } from '../../../server/engine/planner/plan-day.ts'
+import { planRace } from '../../../server/engine/planner/plan-race.ts'
+import { demoDay } from '../../support/demo-race.ts'
+
+const saturday = demoDay('2026-10-17')
+const { race, opening } = saturday
+const FREE = [Number.NaN, Number.NaN, Number.NaN]
+const LAST = 2
+
+function drivingMin(plan: DayPlan | null): number {
+  if (plan === null) throw new Error('a day has no plan')
+  const { spans } = plan.best.forecast.timetable
+  return (plan.best.verdict.arrivalMs - (spans.find(({ kind }) => kind === 'drive')?.fromMs ?? 0)) / 60_000
+}
+const total = (days: { plan: DayPlan | null }[]) => days.reduce((sum, { plan }) => sum + drivingMin(plan), 0)
+
+describe('a race of two days, the night between them free', { timeout: 120_000 }, () => {
+  const free = planRace({ race, dayIndex: 1, opening, targetCharge: FREE })
+
+  test('keeps reserve and every closing charge, and opens each day where the one before closed', () => {
+    for (const { plan } of free.days) expect(plan?.best.verdict.lackJ).toBeLessThanOrEqual(0)
+    const [first, second] = free.days
+    expect(second.plan?.best.forecast.openingJ).toBeCloseTo(storedJ(race.car.pack, first.closing?.charge ?? 0), 0)
+    expect(free.targets[LAST]).toBeCloseTo(race.car.reserveCharge, 6)
+  })
+
+  test('has one price of energy on both sides of the night, within 4 %', () => {
+    const [first, second] = free.days
+    const evening = first.plan?.sPerJ[first.plan.reach.count] ?? Number.NaN
+    const morning = second.plan?.sPerJ[0] ?? Number.NaN
+    expect(Math.abs(evening / morning - 1)).toBeLessThan(0.04)
+  })
+
+  test('takes no longer than with the night given, whatever is given', () => {
+    for (const charge of [0.35, 0.65]) {
+      const given = planRace({ race, dayIndex: 1, opening, targetCharge: [Number.NaN, charge, Number.NaN] })
+      expect(total(free.days), `${charge}`).toBeLessThan(total(given.days))
+    }
+  })
+})
+
+test('a race of one day is that day', { timeout: 60_000 }, () => {
+  const sunday = demoDay('2026-10-18')
+  const { days } = planRace({ race, dayIndex: LAST, opening: sunday.opening, targetCharge: [NaN, NaN, 0.3] })
+  const alone = planDay({ race, dayIndex: LAST, opening: sunday.opening, targetCharge: 0.3 })
+  expect(days.length).toBe(1)
+  expect(days[0].plan?.best.verdict.arrivalMs).toBeCloseTo(alone?.best.verdict.arrivalMs ?? 0, 0)
+})
+
+test('what a short day does not reach is driven on the next', { timeout: 120_000 }, () => {
+  const drivingToMs = race.days[1].drivingFromMs + 4 * 3_600_000
+  const days = race.days.map((day, d) => (d === 1 ? { ...day, drivingToMs } : day))
+  const short = planRace({ race: { ...race, days }, dayIndex: 1, opening, targetCharge: [NaN, 0.4, NaN] })
+  const [first, second] = short.days
+  const reachedM = first.closing?.standing.placeM ?? 0
+  expect(reachedM).toBeGreaterThan(race.course.stages[1].fromM + 250_000)
+  expect(reachedM).toBeLessThan(race.course.stages[3].toM)
+  expect(second.plan?.best.forecast.timetable.spans[0].fromM).toBeCloseTo(reachedM, 3)
+})
