@@ -43,7 +43,7 @@ const isAlike = (one: Face, other: Face): boolean =>
  * Weighs the strings for `poseLight`: a cell's best power at 1000 W/m² and 25 °C stands for its power at any light.
  *
  * Cells get less efficient in weak light and in heat, all of them alike; the pose that is found so is short of the
- * best by less than 0.1 % of the power.
+ * best by 0.002 % of the power for panels within 20° of the deck, by 0.2 % at worst within 45°.
  */
 export function aimStrings(panels: LitPanel[], strings: StringModel[]): AimStrings {
   const faces: Face[] = []

@@ -10,6 +10,8 @@ const LAST_REACH_RAD = 0.1 * RAD
 /** A hill that starts lower than this share of the highest is not climbed. */
 const NEARLY = 0.95
 const MOST_ROUNDS = 40
+/** A hill that starts so near to a top belongs to it. [rad] */
+const SAME_TOP_RAD = 4 * RAD
 /** Hills that are climbed at most. */
 const MOST_HILLS = 3
 
@@ -36,7 +38,7 @@ export function bestPose(stand: Stand, worth: Worth, first: Pose): Pose {
   if (!(highest.worth > 0)) return first
   const tops = [climb(stand, worth, highest)]
   for (const hill of hills.slice(0, MOST_HILLS)) {
-    if (hill.worth < NEARLY * tops[0].worth || tops.some((top) => apartRad(hill, top) < TILT_GAP_RAD)) continue
+    if (hill.worth < NEARLY * tops[0].worth || tops.some((top) => apartRad(hill, top) < SAME_TOP_RAD)) continue
     tops.push(climb(stand, worth, hill))
   }
   const { tiltRad, azimuthRad } = tops.reduce((best, top) => (top.worth > best.worth ? top : best))
