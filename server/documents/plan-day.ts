@@ -187,7 +187,7 @@ function notPlanned(day: DrivenDay, targetCharge: number): Omit<PlanDocument, ke
   const reachedKm = edgeKm(day, reach.first + why.farthestEdge)
   const mostPct = chargeAtStoredJ(pack, why.mostAtCloseJ) * 100
   // The tables may reach what the day itself just misses: then the next whole per cent below is asked for.
-  const lessPct = Math.max(Math.ceil(targetCharge * 100) - 1, 0)
+  const lessPct = Math.max(Math.ceil(targetCharge * 100 - 1e-6) - 1, 0)
   const floorPct = chargeAtStoredJ(pack, why.floorJ) * 100
   const laterMin = why.laterS / 60
   const nearest = [

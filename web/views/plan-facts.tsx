@@ -12,7 +12,10 @@ export function PlanFacts({ plan }: { plan: Planned }) {
       <div>
         <dt>{camp === null ? 'Arrive' : `Camp at km ${grouped(camp.km)}`}</dt>
         <dd data-at={forPeople.arriveAt}>{clock(forPeople.arriveAt)}</dd>
-        <dd class="note">{arrival !== null && `${arrival.earliest}–${arrival.latest}, closing as planned`}</dd>
+        <dd class="note">
+          {camp !== null && `${grouped(camp.leftKm)}${THIN}km of the day’s road are left`}
+          {camp === null && arrival !== null && `${arrival.earliest}–${arrival.latest}, closing as planned`}
+        </dd>
       </div>
       <div>
         <dt>Close with</dt>

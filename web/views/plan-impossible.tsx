@@ -9,7 +9,7 @@ type Way = NonNullable<PlanDocument['impossible']>['nearest'][number]
 
 /** Why the day cannot be planned so, and the nearest ways out of it. */
 export function Impossible({ plan, day }: { plan: PlanDocument; day: RacePlanDay }) {
-  const { impossible, target } = plan
+  const { impossible, target, camp } = plan
   if (impossible === null) return null
   const { nearest, mostAtCloseWh } = impossible
   return (
@@ -21,8 +21,11 @@ export function Impossible({ plan, day }: { plan: PlanDocument; day: RacePlanDay
           <Wh text={whText(mostAtCloseWh)} unit="Wh" wh={mostAtCloseWh} /> can be left.
         </p>
       )}
-      <h2>{nearest.length > 0 ? 'Any one of these would do' : 'Nothing near it would do'}</h2>
-      {nearest.length === 0 && <p>Shorten the day, carry more charge into it, or wait for another sky.</p>}
+      {camp !== null && <p>The plan below goes as far as hours, reserve and target allow.</p>}
+      {nearest.length > 0 && <h2>Any one of these would do</h2>}
+      {nearest.length === 0 && camp === null && (
+        <p>Nothing near it would do: shorten the day, carry more charge into it, or wait for another sky.</p>
+      )}
       <ul class="ways">
         {nearest.map((way) => (
           <li>

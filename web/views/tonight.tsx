@@ -62,6 +62,9 @@ function Shown({ day }: { day: RacePlanDay }) {
         {plan !== null && entry !== null && isPlanned(plan) && plan.camp === null && (
           <PlanPublish key={entry.id} entry={entry} plan={plan} />
         )}
+        {plan !== null && plan.camp !== null && (
+          <p class="note pad gap">A plan that ends on the road is for reading: what the crew follows knows no camp.</p>
+        )}
       </div>
       <div class="middle">
         {plan !== null && entry !== null && isPlanned(plan) && <PlanRoad entry={entry} plan={plan} />}
