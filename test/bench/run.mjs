@@ -12,6 +12,7 @@ const { chainBench } = await import('./chain.mjs')
 const { coastBench } = await import('./coast.mjs')
 const { dayBench } = await import('./day.mjs')
 const { pointingBench } = await import('./pointing.mjs')
+const { plannerBench } = await import('./planner.mjs')
 const { startUpBench } = await import('./start-up.mjs')
 const { stringsBench } = await import('./strings.mjs')
 const { streamsBench } = await import('./streams.mjs')
@@ -80,6 +81,21 @@ const pointing = pointingBench()
 say('poses of a morning, aimed anew every 10 min', ms(pointing.holdMs), `${pointing.steps} steps of a minute, 3 panels`)
 say('the same, following all the time', ms(pointing.followMs), '')
 say('pointing table of the 600 km day', ms(pointing.tableMs), '4 windows, flat and 3 angles off')
+const plan = plannerBench()
+say(
+  'plan of a 600 km day, CPU',
+  ms(plan.planMs),
+  `${plan.pieces} pieces; bound ${plan.boundS.toFixed(0)} s before, for people ${plan.peopleS.toFixed(0)} s after`,
+)
+say('the same again from half way', ms(plan.againMs), '')
+say('its tables', ms(plan.tablesMs), `bound ${ms(plan.boundMs)}`)
+say(
+  'its frontier, 60 s bins',
+  ms(plan.frontierMs),
+  `written plainly ${ms(plan.plainMs)}; refinement ${ms(plan.refineMs)}`,
+)
+say('200 members', ms(plan.fewMs), `2,000 ${ms(plan.manyMs)}`)
+say('robust plan', ms(plan.robustMs), `touches the reserve on ${plan.touchesPct.toFixed(1)} % of fresh days`)
 const { firstS, secondS } = await startUpBench()
 say('first start, demo race loaded', `${firstS.toFixed(1)} s`, 'empty data folder, already built')
 say('second start', `${secondS.toFixed(1)} s`, '')

@@ -3,7 +3,7 @@ import { type DayTables, rowAt } from './day-tables.ts'
 
 const BISECTIONS = 50
 /** A limit that lies farther below, as a share of the day's time, is looked for at other prices too. */
-const FAR = 0.004
+const FAR = 0.008
 const FACTORS = [1.25, 0.8]
 const MOST_TRIES = 4
 
