@@ -20,7 +20,7 @@ const isOf = (day: PlanDay, { date, carId, skyId, wanted }: PlanEntry): boolean 
   carId === day.carId &&
   skyId === day.skyId &&
   wanted.objective !== 'furthest' &&
-  wanted.byTime === undefined
+  (['byTime', 'from', 'until'] as const).every((part) => wanted[part] === undefined)
 
 /** The newest plan of each want, by the charge wanted at the close, least first. */
 export function variants(entries: PlanEntry[], day: PlanDay): PlanEntry[] {

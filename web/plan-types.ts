@@ -13,6 +13,9 @@ export interface Wanted {
   objective?: 'earliest' | 'furthest'
   /** When the driving must end, in place of the day's hours. */
   byTime?: string
+  /** Where the car is in the middle of the day, and where it is parked before its hours end. */
+  from?: object
+  until?: object
 }
 
 /** A plan without its body. */

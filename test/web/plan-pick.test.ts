@@ -33,6 +33,8 @@ describe('plans of a day', () => {
       entry('old-40', 40),
       entry('sure', 40, { wanted: { targetPct: 40, promisePct: 1 } }),
       entry('by-noon', 35, { wanted: { targetPct: 35, promisePct: 5, byTime: '12:00' } }),
+      entry('from-here', 45, { wanted: { targetPct: 45, promisePct: 5, from: { km: 120 } } }),
+      entry('furthest', 50, { wanted: { targetPct: 50, promisePct: 5, objective: 'furthest' } }),
       entry('other-day', 30, { date: '2026-10-18' }),
       entry('other-car', 30, { carId: 'weaver-1' }),
       entry('failed', 30, { state: 'failed', gist: null }),
