@@ -41,7 +41,7 @@ function between({ bins, knot }, j, at) {
 export function plainEarliestEnd(day, stepS, stepMps) {
   const times = []
   for (let t = day.start.atS; t <= day.latestS + 1e-9; t += stepS) times.push(t)
-  const row = (table, i, count) => [...table.slice(i * count, (i + 1) * count)]
+  const row = (table, i, count) => Array.from(table.subarray(i * count, (i + 1) * count))
   const ceiling = day.pack.ceilingJ
   const indexOf = (t) => Math.floor((t - day.start.atS) / stepS + 1e-9)
   const at = (layer, t) => (t < layer.knot.t - 1e-6 ? undefined : between(layer, indexOf(t), t))
