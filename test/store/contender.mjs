@@ -22,7 +22,8 @@ const takes = {
 }
 
 let letGo = async () => {}
-process.on('message', async (message) => {
+
+async function take(message) {
   if (message.letGo) {
     await letGo()
     process.send({ outcome: 'let go' })
@@ -34,6 +35,8 @@ process.on('message', async (message) => {
   } catch (error) {
     process.send({ outcome: error.message, code: error.code })
   }
-})
+}
+
+process.on('message', (message) => void take(message))
 process.on('disconnect', () => process.exit(0))
 process.send({ outcome: 'here' })

@@ -66,7 +66,11 @@ export function smallDay(seed: number, wants: SmallWants): DayTables {
         ? [{ beforePiece, lengthS, gainJ: lengthS.map((s) => s * gainPerS), closesS: Number.POSITIVE_INFINITY }]
         : [],
     duskGainJ: row((s) => 900_000 - between(20, 120) * (s - START_S) * 0.3),
-    pack: { ceilingJ: wants.hasMotion === true ? CEILING_J / 3 : CEILING_J, lossPerW: 0.1164 / (109.8 * 109.8), coulombic: between(0.97, 1) },
+    pack: {
+      ceilingJ: wants.hasMotion === true ? CEILING_J / 3 : CEILING_J,
+      lossPerW: 0.1164 / (109.8 * 109.8),
+      coulombic: between(0.97, 1),
+    },
     floorJ,
     start: { atS: START_S, energyJ: between(700_000, 1_300_000) },
     latestS: START_S + 3 * longest,
