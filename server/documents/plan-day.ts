@@ -1,5 +1,6 @@
 import { chargeAtStoredJ, storedJ } from '../engine/battery.ts'
 import { whyImpossible } from '../engine/planner/impossible.ts'
+import { holds } from '../engine/planner/judge.ts'
 import { type DayPlan, type Judged, planDay, someTables } from '../engine/planner/plan-day.ts'
 import { furthestDay } from '../engine/planner/furthest.ts'
 import { limitCosts } from '../engine/planner/limit-costs.ts'
@@ -9,6 +10,7 @@ import { dayBudget } from './budget-day.ts'
 import { type DrivenDay, drivenRace } from './forecast.ts'
 import { clock, localIso } from './local-time.ts'
 import type { PlanDocument } from './plan.ts'
+import { plannedText } from './plan-outcome.ts'
 import { planRanges } from './plan-ranges.ts'
 import type { PlanRequest } from './plan-request.ts'
 import { campName, campOf, edgeKm, endedBy } from './plan-camp.ts'
@@ -88,16 +90,10 @@ function planned(
   const bestMs = best.verdict.arrivalMs
   const withinMin = Math.max(bestMs - plan.boundMs, 0) / MIN_MS
   const of = asDay(day, forPeople, targetCharge)
-  const place = best.verdict.isFinished ? 'The last stop' : 'The end'
+  const at = clock(Math.round(bestMs / MIN_MS) * MIN_MS, day.zone)
   return {
     ...NOTHING,
-    outcome: {
-      kind: 'planned',
-      text: `${finishName(day)} is reached ${clock(Math.round(bestMs / MIN_MS) * MIN_MS, day.zone)} at the earliest, and no plan can be more than ${Math.max(Math.ceil(withinMin * 60), 1)} s earlier.`.replace(
-        'The last stop',
-        place,
-      ),
-    },
+    outcome: { kind: 'planned', text: plannedText(finishName(day), at, best.verdict, withinMin * 60) },
     best: { speeds: bestSpeeds(day, plan), ...figures(day, best) },
     forPeople: {
       speeds: sectionSpeeds(day, plan),
@@ -112,7 +108,7 @@ function planned(
       budget: dayBudget(of),
     },
     constant: constantOf(day, targetCharge, bestMs),
-    bound: { arriveAt: localIso(plan.boundMs, day.zone), withinMin },
+    bound: holds(best.verdict) ? { arriveAt: localIso(plan.boundMs, day.zone), withinMin } : null,
     prices: pricesOf(day, plan),
     limits: limitCosts(plan).map(({ what, costS }) => ({ what, label: LIMIT_LABELS[what], costMin: costS / 60 })),
     ...planRanges(request, day, plan),
