@@ -196,4 +196,3 @@ export const budgetDocument = z
 export type BudgetDocument = z.output<typeof budgetDocument>
 export type DayBudget = BudgetDocument['days'][number]
 export type LedgerDocument = z.output<typeof ledger>
-export type SeriesDocument = z.output<typeof series>

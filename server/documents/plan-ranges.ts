@@ -8,6 +8,7 @@ import { judge } from '../engine/planner/judge.ts'
 import { clearPowerW, loadPerHeadwind } from '../engine/planner/passing.ts'
 import type { DayPlan } from '../engine/planner/plan-day.ts'
 import { refine, type Refined } from '../engine/planner/refine.ts'
+import { type Drive, driveAlong } from '../engine/planner/simulate.ts'
 import { dayKm, placeName } from './budget-day.ts'
 import type { DrivenDay } from './forecast.ts'
 import { localIso } from './local-time.ts'
@@ -40,16 +41,11 @@ export function planRanges(
   const path = daySun(race.days[dayIndex])
   const clearW = clearPowerW(race, path, best.forecast, reach)
   const spreads = spreadsOf(request, plan, clearW)
-  const waitS = new Float64Array(tables.pieces + 1)
-  const held = (speedMps: Float64Array): Float64Array =>
-    tables.fastestMps.map((fastest, i) => Math.min(speedMps[reach.first + i], fastest))
-  const lay = (speedMps: Float64Array) =>
-    courseOf(
-      tables,
-      { speedMps, waitS },
-      { clearW, perHeadwind: loadPerHeadwind(race, best.forecast, reach, speedMps), spreads },
-    )
-  const course = lay(held(forPeople.speedMps))
+  const lay = (drive: Drive) => {
+    const perHeadwind = loadPerHeadwind(race, best.forecast, reach, drive.speedMps)
+    return courseOf(tables, drive, { clearW, perHeadwind, spreads })
+  }
+  const course = lay(driveAlong(tables, forPeople.speedMps, reach.first))
   const drawn = members(course, spreads, request.members, request.seed)
   const touch = touching(drawn)
   const shares = sharesOfSpread(course, spreads, CAUSE_MEMBERS, request.seed)
@@ -82,7 +78,7 @@ export function planRanges(
       (a, b) => b.sharePct - a.sharePct,
     ),
   }
-  return { ranges, steady: steadyOf(request, day, plan, spreads, (refined) => lay(refined.drive.speedMps)) }
+  return { ranges, steady: steadyOf(request, day, plan, spreads, ({ drive }) => lay(drive)) }
 }
 
 function spreadsOf({ spreads: of, sky }: PlanRequest, { tables, best }: DayPlan, clearW: Float64Array): Spreads {
@@ -161,10 +157,7 @@ function steadyOf(
   lay: (refined: Refined) => ReturnType<typeof courseOf>,
 ): PlanDocument['steady'] {
   const { tables, reach, best } = plan
-  const start = {
-    speedMps: tables.fastestMps.map((fastest, i) => Math.min(best.speedMps[reach.first + i], fastest)),
-    waitS: new Float64Array(tables.pieces + 1),
-  }
+  const start = driveAlong(tables, best.speedMps, reach.first)
   const of = { spreads, promise: request.promisePct / 100, seed: request.seed }
   const robust = robustPlan(tables, refine(tables, start), lay, of)
   if (robust.refined.track.shortJ > 0 || robust.touches > of.promise) return null

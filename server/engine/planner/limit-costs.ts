@@ -1,6 +1,7 @@
 import type { DayTables } from './day-tables.ts'
 import type { DayPlan } from './plan-day.ts'
 import { refine } from './refine.ts'
+import { driveAlong } from './simulate.ts'
 
 /** How much earlier the best plan would arrive without one of the things that bind it. */
 export interface LimitCost {
@@ -14,10 +15,7 @@ const OPEN_ROAD_MPS = 130 / 3.6
 /** What limits, reserve and target cost the best plan, by its tables, one at a time. */
 export function limitCosts(plan: DayPlan): LimitCost[] {
   const { tables, best, reach } = plan
-  const start = {
-    speedMps: tables.fastestMps.map((fastest, i) => Math.min(best.speedMps[reach.first + i], fastest)),
-    waitS: new Float64Array(tables.pieces + 1),
-  }
+  const start = driveAlong(tables, best.speedMps, reach.first)
   const endS = (day: DayTables): number => refine(day, start).track.atS[tables.pieces]
   const nowS = endS(tables)
   const without: [LimitCost['what'], DayTables][] = [

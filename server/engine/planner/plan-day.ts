@@ -8,6 +8,7 @@ import { holds, isBetterVerdict, judge, type Verdict } from './judge.ts'
 import { refine, type Refined } from './refine.ts'
 import { driveOf, type Section, sectionsFor } from './sections.ts'
 import { settle } from './settle.ts'
+import { driveAlong } from './simulate.ts'
 
 /** A day to plan. */
 export interface DayTask {
@@ -171,7 +172,7 @@ export function settledTables(
   const { reach } = day
   const along = { ...day, base: now.forecast }
   const tables = tablesAlong(along, reach)
-  const heldMps = tables.fastestMps.map((fastest, i) => Math.min(now.speedMps[reach.first + i], fastest))
+  const { speedMps: heldMps } = driveAlong(tables, now.speedMps, reach.first)
   settle(tables, along, reach, now.forecast, heldMps)
   tables.targetJ += spareJ
   raiseFloor(tables, spareJ)

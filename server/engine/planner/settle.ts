@@ -3,6 +3,9 @@ import { type Along, type Reach } from './engine-tables.ts'
 import { type DayTables, loadAt, pieceS, rowAt, storedW } from './day-tables.ts'
 import { motionJ } from './simulate.ts'
 
+/** Share of a piece's time that a car which comes to it faster can save at most. */
+const MOST_SAVED = 0.4
+
 /** What a forecast did on one piece of the road. */
 interface Driven {
   fromS: number
@@ -24,7 +27,7 @@ export function settle(tables: DayTables, along: Along, reach: Reach, base: DayF
     if (driven?.isWhole !== true) return
     tables.extraS[i] = Math.max(
       driven.durationS - tables.lengthM[i] / speedMps[i],
-      (-0.4 * tables.lengthM[i]) / speedMps[i],
+      (-MOST_SAVED * tables.lengthM[i]) / speedMps[i],
     )
     const timeS = pieceS(tables, i, speedMps[i])
     const sunW = rowAt(tables.harvestW, i * tables.clock.count, tables.clock, driven.fromS + timeS / 2)

@@ -17,6 +17,17 @@ export function motionJ(day: DayTables, speedMps: Float64Array, piece: number): 
   return standsAt(day, piece + 1) ? started + changeJ(kinetic, v, 0) : started
 }
 
+/**
+ * The drive that speeds of the course mean on a day's tables: within what each piece allows, without waiting.
+ *
+ * @param courseMps  [Mps] (pieces of the course)
+ * @param first      the day's first piece on the course
+ */
+export const driveAlong = (day: DayTables, courseMps: Float64Array, first: number): Drive => ({
+  speedMps: day.fastestMps.map((fastest, i) => Math.min(courseMps[first + i], fastest)),
+  waitS: new Float64Array(day.pieces + 1),
+})
+
 /** A drive through the tables: clock and energy at every edge between pieces, stops and waits behind them. */
 export interface Track {
   /** Instant at which each piece is entered and, last, the end is reached. [S] (pieces + 1) */

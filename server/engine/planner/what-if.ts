@@ -4,6 +4,7 @@ import type { DayTables, TableStop } from './day-tables.ts'
 import { kineticOf, loads, type Reach } from './engine-tables.ts'
 import { bestDay, type DayTask, settledTables } from './plan-day.ts'
 import { refine, type Refined } from './refine.ts'
+import { driveAlong } from './simulate.ts'
 
 /** What is taken to be otherwise than planned; factors are 1 and all else is left out where nothing changes. */
 export interface Change {
@@ -51,9 +52,8 @@ export function quickBase(task: DayTask): QuickBase | null {
   const { day, found } = begun
   const { tables } = settledTables(day, found.best, 0)
   const { reach } = day
-  const speedMps = tables.fastestMps.map((fastest, i) => Math.min(found.best.speedMps[reach.first + i], fastest))
-  const waitS = new Float64Array(reach.count + 1)
-  const refined = refine(tables, { speedMps, waitS }, found.refined.multiplier)
+  const start = driveAlong(tables, found.best.speedMps, reach.first)
+  const refined = refine(tables, start, found.refined.multiplier)
   return { race: task.race, forecast: found.best.forecast, reach, tables, refined }
 }
 
