@@ -7,7 +7,7 @@ import { emptySteps } from '../steps.ts'
 import { type SunPath, sunPath } from '../sun.ts'
 import type { Axis, DayTables, Kinetic, TablePack, TableStop } from './day-tables.ts'
 import { eveningGainJ, parkedSun, stopGainJ } from './standing-gain.ts'
-import { sunPowerW } from './sun-power.ts'
+import { sunOnBusW } from './sun-on-bus.ts'
 
 /** A day to be planned, with a forecast of it that the tables are taken along. */
 export interface Along {
@@ -170,7 +170,7 @@ function harvests(along: Along, reach: Reach, clock: Axis, startS: number): Floa
       volts[n] = packV[i]
     }
   }
-  const sunW = sunPowerW(race, path, steps, volts)
+  const sunW = sunOnBusW(race, path, steps, volts)
   const harvestW = new Float64Array(reach.count * clock.count)
   n = 0
   for (let i = 0; i < reach.count; i++) {

@@ -5,7 +5,7 @@ import type { Sky } from '../sky.ts'
 import { emptySteps } from '../steps.ts'
 import type { SunPath } from '../sun.ts'
 import type { Reach } from './engine-tables.ts'
-import { sunPowerW } from './sun-power.ts'
+import { sunOnBusW } from './sun-on-bus.ts'
 
 /** What the sky could be at most: the same air without clouds. */
 const cleared = (sky: Sky): Sky => ({
@@ -32,7 +32,7 @@ export function clearPowerW(race: Race, path: SunPath, forecast: DayForecast, re
   }
   for (last++; last < reach.count; last++) set(last, driven.count - 1)
   steps.count = reach.count
-  return sunPowerW({ ...race, sky: cleared(race.sky) }, path, steps, packV)
+  return sunOnBusW({ ...race, sky: cleared(race.sky) }, path, steps, packV)
 
   function set(piece: number, i: number): void {
     const at = reach.first + piece

@@ -4,7 +4,7 @@ import type { Horizon } from '../horizon.ts'
 import { emptySteps } from '../steps.ts'
 import type { SunPath } from '../sun.ts'
 import { type Axis, storedW, type TablePack } from './day-tables.ts'
-import { sunPowerW } from './sun-power.ts'
+import { sunOnBusW } from './sun-on-bus.ts'
 
 /** Energy that a parked car has stored since the clock began, lying flat and lifted. [J] (clock) */
 export interface ParkedSun {
@@ -50,7 +50,7 @@ export function parkedSun(
     steps.headingRad[i] = pieces.headingRad[place.piece]
     steps.lifted[i] = canLift && i >= clock.count ? 1 : 0
   }
-  const sunW = sunPowerW(race, path, steps, new Float64Array(steps.count).fill(packV), place.horizon)
+  const sunW = sunOnBusW(race, path, steps, new Float64Array(steps.count).fill(packV), place.horizon)
   const sum = (powerW: (k: number) => number): Float64Array => {
     const J = new Float64Array(clock.count)
     for (let k = 1; k < clock.count; k++)

@@ -177,6 +177,14 @@ describe('the sky’s spread', () => {
     expect(skySpread(86_400, 0.5)).toBeGreaterThan(4 * skySpread(86_400, 1))
     expect(skySpread(86_400, 0.5)).toBeLessThanOrEqual(0.3)
   })
+
+  // Common practice, no source: under broken cloud some 10 % an hour ahead, 25 to 30 % a day ahead.
+  it('is as commonly found under broken cloud, and a stamp from the future counts as one of now', () => {
+    expect(skySpread(3600, 0.5)).toBeGreaterThan(0.09)
+    expect(skySpread(3600, 0.5)).toBeLessThan(0.14)
+    expect(skySpread(86_400, 0.5)).toBeGreaterThan(0.25)
+    expect(skySpread(-3600, 0.5)).toBe(skySpread(0, 0.5))
+  })
 })
 
 describe('a robust plan', () => {

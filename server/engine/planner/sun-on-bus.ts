@@ -17,7 +17,7 @@ import { takers } from '../takers.ts'
  * @param horizon  what stands around the car at all of them, if anything
  * @returns [W] (steps)
  */
-export function sunPowerW(
+export function sunOnBusW(
   { car, course, sky }: Race,
   path: SunPath,
   steps: Steps,
