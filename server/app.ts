@@ -30,6 +30,7 @@ import { planDesk } from './api/plan-desk.ts'
 import { keptPlanRoutes, planRoutes, statelessPlanRoute } from './api/plans.ts'
 import { pointingRoute, statelessPointingRoute } from './api/pointing.ts'
 import { previewRoute } from './api/previews.ts'
+import { raceDocumentsRoute } from './api/race-documents.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
 import { sessionRoutes } from './api/sessions.ts'
 import { sharedRoute, shareRoutes } from './api/shares.ts'
@@ -155,6 +156,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
   void api.register(async (scope: Api) => coastDownRoute(scope, needs))
   dayRoutes(api, needs)
+  raceDocumentsRoute(api, needs)
   exampleRoutes(api)
   addCrewRoutes(api, needs)
 }

@@ -2,7 +2,7 @@ import type { Kind } from '../compute/documents.ts'
 import type { Problem } from '../documents/problem.ts'
 import type { RaceDocument } from '../documents/race.ts'
 import { counted, Fault } from '../errors.ts'
-import type { StoredDocument } from '../store/document-store.ts'
+import type { DocumentText, StoredDocument } from '../store/document-store.ts'
 import type { Store } from '../store/store.ts'
 
 /**
@@ -11,8 +11,14 @@ import type { Store } from '../store/store.ts'
  * @throws Fault 'missing-document', naming the field
  */
 export async function named(store: Store, kind: Kind, id: string, field: string): Promise<StoredDocument> {
-  const stored = await store.documents.get(kind, id)
-  if (stored !== null) return stored
+  return (await store.documents.get(kind, id)) ?? missing(kind, id, field)
+}
+
+/** The same as text, for handing on. */
+export const namedText = async (store: Store, kind: Kind, id: string, field: string): Promise<DocumentText> =>
+  (await store.documents.text(kind, id)) ?? missing(kind, id, field)
+
+function missing(kind: Kind, id: string, field: string): never {
   throw new Fault('missing-document', `There is no ${kind} "${id}".`, {
     errors: [{ field, value: JSON.stringify(id), detail: `expected the id of a stored ${kind}` }],
   })
@@ -24,12 +30,24 @@ export async function routesOf(
   race: RaceDocument,
   given: Record<string, unknown>,
 ): Promise<Map<string, StoredDocument>> {
+  return found(race, given, (id) => store.documents.get('route', id))
+}
+
+/** The same as text, for handing on. */
+export const routeTextsOf = (store: Store, race: RaceDocument): Promise<Map<string, DocumentText>> =>
+  found(race, {}, (id) => store.documents.text('route', id))
+
+async function found<D extends { id: string }>(
+  race: RaceDocument,
+  given: Record<string, unknown>,
+  get: (id: string) => Promise<D | null>,
+): Promise<Map<string, D>> {
   const ids = new Set(race.days.flatMap((day) => day.stages.map((stage) => stage.route)))
   const wanted = [...ids].filter((id) => !Object.hasOwn(given, id))
-  const found = await Promise.all(wanted.map((id) => store.documents.get('route', id)))
-  const missing = wanted.filter((_, i) => found[i] === null)
-  if (missing.length > 0) throw missingRoutes(race, new Set(missing))
-  return new Map(found.flatMap((stored) => (stored === null ? [] : [[stored.id, stored]])))
+  const routes = await Promise.all(wanted.map(get))
+  const unknown = wanted.filter((_, i) => routes[i] === null)
+  if (unknown.length > 0) throw missingRoutes(race, new Set(unknown))
+  return new Map(routes.flatMap((route) => (route === null ? [] : [[route.id, route]])))
 }
 
 function missingRoutes(race: RaceDocument, missing: Set<string>): Fault {

@@ -1,6 +1,6 @@
 import { InputError } from '../engine/input-error.ts'
 import type { Change } from '../engine/planner/what-if.ts'
-import { quickBase, quickWhatIf } from '../engine/planner/what-if.ts'
+import { type QuickBase, quickBase, quickWhatIf } from '../engine/planner/what-if.ts'
 import { channelsOf } from '../engine/tracker.ts'
 import { drivenRace, type DrivenDay } from './forecast.ts'
 import { clock, localIso } from './local-time.ts'
@@ -11,22 +11,37 @@ const WH = 1 / 3600
 const METHOD =
   'Approximate: the base’s tables with the change in them, refined from its speeds and prices. Plan a variant in full before you rely on it.'
 
+/** A day planned once, to be asked again and again. */
+export interface WhatIfDay {
+  day: DrivenDay
+  /** The best plan without any change; null where there is none. */
+  base: QuickBase | null
+}
+
 /**
- * Quick answers on a day: what each change does to the best plan.
+ * The day that changes are asked of.
  *
  * @throws InputError when the documents do not fit together: field, value and what was expected
  */
-export function whatIfDocuments({ variants, ...request }: WhatIfRequest): WhatIfDocument {
+export function whatIfDay(request: Omit<WhatIfRequest, 'variants'>): WhatIfDay {
   const day = drivenRace({ ...request, speeds: { kind: 'constant', speedKmh: 70 } }, (one) => one).days[0]
-  const changes = variants.map(({ change }, i) => changeOf(day, change, `variants[${i}].change`))
   const targetCharge =
     request.targetPct === undefined ? (day.targetCharge ?? day.race.car.reserveCharge) : request.targetPct / 100
   const race = endedBy(day, request.byTime)
-  const base = quickBase({ race, dayIndex: day.dayIndex, opening: day.opening, targetCharge })
+  return { day, base: quickBase({ race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }) }
+}
+
+/**
+ * What each change does to the best plan of a day.
+ *
+ * @throws InputError when a change does not fit the car
+ */
+export function whatIfAnswers({ day, base }: WhatIfDay, variants: WhatIfRequest['variants']): WhatIfDocument {
+  const changes = variants.map(({ change }, i) => changeOf(day, change, `variants[${i}].change`))
   const head = { date: day.date, zone: day.zone, method: METHOD }
   if (base === null)
     return { ...head, base: null, variants: [], text: 'There is no plan for this day that anything could change.' }
-  const { refined, forecast } = base
+  const { race, refined, forecast } = base
   const arrivalMs = race.days[day.dayIndex].opensMs + 1000 * refined.track.atS[base.reach.count]
   return {
     ...head,
@@ -46,6 +61,14 @@ export function whatIfDocuments({ variants, ...request }: WhatIfRequest): WhatIf
     }),
   }
 }
+
+/**
+ * Quick answers on a day: what each change does to the best plan.
+ *
+ * @throws InputError when the documents do not fit together: field, value and what was expected
+ */
+export const whatIfDocuments = ({ variants, ...request }: WhatIfRequest): WhatIfDocument =>
+  whatIfAnswers(whatIfDay(request), variants)
 
 const share = (pct: number | undefined): number => (pct ?? 100) / 100
 

@@ -15,6 +15,11 @@ export interface StoredDocument extends DocumentEntry {
   body: unknown
 }
 
+/** A saved version with its body as the JSON text that it is kept as. */
+export interface DocumentText extends DocumentEntry {
+  text: string
+}
+
 export interface Saved {
   version: number
   savedAt: string
@@ -31,6 +36,8 @@ export interface DocumentStore {
   list(kind: DocumentKind): Promise<DocumentEntry[]>
   /** The version that holds now, or any version ever saved, a removed document's too. */
   get(kind: DocumentKind, id: string, version?: number): Promise<StoredDocument | null>
+  /** The version that holds now, for handing on without reading it. */
+  text(kind: DocumentKind, id: string): Promise<DocumentText | null>
   /** Version 1; a removed document's id may be used again and its versions go on. */
   create(kind: DocumentKind, id: string, name: string, body: unknown): Promise<Saved | Conflict>
   replace(
@@ -101,6 +108,15 @@ export function documentStore(sql: Sql): DocumentStore {
         from documents d join document_versions v using (kind, id)
         where kind = ${kind} and id = ${id}
         and ${version === undefined ? sql`v.version = d.version and d.removed_at is null` : sql`v.version = ${version}`}`
+      return rows[0] ?? null
+    },
+
+    async text(kind, id) {
+      if (!isSlug(id)) return null
+      const rows = await sql<DocumentText[]>`
+        select id, v.name, version, ${savedAt()}, v.body::text as text
+        from documents d join document_versions v using (kind, id, version)
+        where kind = ${kind} and id = ${id} and d.removed_at is null`
       return rows[0] ?? null
     },
 

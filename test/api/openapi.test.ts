@@ -39,6 +39,7 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/races/{id}/days': ['get'],
   '/api/v1/races/{id}/days/{date}': ['get'],
   '/api/v1/races/{id}/days/{date}/stages': ['get'],
+  '/api/v1/races/{id}/documents': ['get'],
   '/api/v1/races/{id}/forecasts': ['get', 'post'],
   '/api/v1/races/{id}/plans': ['get', 'post'],
   '/api/v1/plans/{id}': ['delete', 'get'],
