@@ -18,6 +18,7 @@ export interface ComputePool<J extends Jobs> {
    *
    * @param signal  takes the job back: out of the queue, or by ending the worker that does it
    * @param told    is told how far a long job is
+   * @param parts   computations that the job is made of, each of which may take the time limit
    * @throws Fault 'busy', 'took-too-long', 'too-complex', 'compute-failed', 'stopping', or what the job itself refuses;
    *         the signal's reason when it was taken back
    */
@@ -26,6 +27,7 @@ export interface ComputePool<J extends Jobs> {
     input: Parameters<J[K]>[0],
     signal?: AbortSignal,
     told?: (progress: Progress) => void,
+    parts?: number,
   ): Promise<ReturnType<J[K]>>
   /** Whether a worker has loaded its code. */
   isReady(): boolean
@@ -65,13 +67,14 @@ export function computePool<J extends Jobs>(options: PoolOptions): ComputePool<J
   }
 
   return {
-    run(kind, input, signal, told) {
+    run(kind, input, signal, told, parts = 1) {
       return new Promise((done, failed) => {
         const stop = () => takeBack(task, reasonOf(signal))
         const settled = () => signal?.removeEventListener('abort', stop)
         const task: Task = {
           message: { kind, input },
           told,
+          parts,
           done(answer) {
             settled()
             done(answer)

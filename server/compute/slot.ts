@@ -8,12 +8,14 @@ export interface Task {
   failed(error: Error): void
   /** Told whenever the job says how far it is. */
   told?(progress: Progress): void
+  /** Computations that it is made of, each of which may take the time limit. */
+  parts: number
 }
 
 export interface SlotOptions {
   /** The compiled worker. */
   workerUrl: URL
-  /** Longest time that a job may run. [ms] */
+  /** Longest time that a job of one part may run. [ms] */
   timeLimitMs: number
   /** Largest heap of the worker. [MB] */
   heapLimitMb: number
@@ -106,7 +108,8 @@ export function workerSlot(options: SlotOptions, onFree: () => void): Slot {
     isFree: () => current === null && !isEnding && !isClosed,
     isReady: () => isLoaded && !isEnding,
     start(task) {
-      const limit = setTimeout(() => giveUp(task, tookTooLong(options.timeLimitMs)), options.timeLimitMs)
+      const limitMs = options.timeLimitMs * task.parts
+      const limit = setTimeout(() => giveUp(task, tookTooLong(limitMs)), limitMs)
       current = { task, limit }
       const thread = worker ?? spawn()
       thread.postMessage(task.message, [])

@@ -60,6 +60,13 @@ describe('a pool of workers', () => {
     expect(await pool.run('double', 21)).toBe(42)
   })
 
+  test('gives a job of several parts the limit for each', async () => {
+    const pool = poolOf({ timeLimitMs: 2000 })
+    await pool.run('double', 1)
+    expect(await pool.run('slow', 2500, undefined, undefined, 3)).toBe('done')
+    await expect(pool.run('slow', 2500)).rejects.toEqual(fault('took-too-long'))
+  })
+
   test.each([
     ['throws', 'bug', 'compute-failed'],
     ['ends its worker', 'leave', 'compute-failed'],
