@@ -40,7 +40,10 @@ export function campName(day: DrivenDay, piece: number): string {
 }
 
 /** Where a day ends that does not finish its road, and the sentence for it. */
-export function campOf(day: DrivenDay, { endPiece }: Furthest): Pick<PlanDocument, 'camp' | 'outcome'> {
+export function campOf(
+  day: DrivenDay,
+  { endPiece }: Pick<Furthest, 'endPiece'>,
+): Pick<PlanDocument, 'camp' | 'outcome'> {
   const { course, stages, days } = day.race
   const s = course.stages.findIndex((stage) => endPiece <= stage.endPiece)
   const { fromM, endPiece: stageEnd, toM } = course.stages[s]

@@ -1,7 +1,6 @@
-import { chargeAtStoredJ, storedJ } from '../engine/battery.ts'
-import { whyImpossible } from '../engine/planner/impossible.ts'
+import { storedJ } from '../engine/battery.ts'
 import { holds } from '../engine/planner/judge.ts'
-import { type DayPlan, type Judged, planDay, someTables } from '../engine/planner/plan-day.ts'
+import { type DayPlan, type Judged, planDay } from '../engine/planner/plan-day.ts'
 import { furthestDay } from '../engine/planner/furthest.ts'
 import { limitCosts } from '../engine/planner/limit-costs.ts'
 import { fastestThatMeets } from '../engine/search.ts'
@@ -15,6 +14,7 @@ import { planRanges } from './plan-ranges.ts'
 import type { PlanRequest } from './plan-request.ts'
 import { campName, campOf, edgeKm, endedBy } from './plan-camp.ts'
 import { bestSpeeds, sectionSpeeds } from './plan-speeds.ts'
+import { finishName, whyNotPlanned } from './plan-why.ts'
 
 const WH = 1 / 3600
 const MIN_MS = 60_000
@@ -49,7 +49,7 @@ export function planDocuments(request: PlanRequest, tell: Tell = () => {}): Plan
     tell({ step: 'Drawing days that differ', share: 0.6 })
     return { ...head, ...planned(request, timed, plan, targetCharge) }
   }
-  const why = notPlanned(timed, targetCharge)
+  const why = { ...NOTHING, ...whyNotPlanned(timed, targetCharge) }
   if (why.impossible === null || (why.impossible.why === 'target' && request.objective === 'earliest'))
     return { ...head, ...why }
   tell({ step: 'Looking how far the day can come', share: 0.3 })
@@ -98,12 +98,7 @@ function planned(
     forPeople: {
       speeds: sectionSpeeds(day, plan),
       ...figures(day, forPeople),
-      sections: forPeople.sections.map((section) => ({
-        stage: stageOf(day, plan.reach.first + section.firstPiece),
-        fromKm: edgeKm(day, plan.reach.first + section.firstPiece),
-        toKm: edgeKm(day, plan.reach.first + section.endPiece),
-        speedKmh: section.speedKmh,
-      })),
+      sections: sectionsOn(day, plan),
       costMin: (forPeople.verdict.arrivalMs - bestMs) / MIN_MS,
       budget: dayBudget(of),
     },
@@ -119,11 +114,8 @@ type Head = Pick<PlanDocument, 'engineVersion' | 'race' | 'car' | 'date' | 'zone
 
 const LIMIT_LABELS = { limits: 'Speed limits', reserve: 'Reserve on the way', target: 'Charge wanted at the close' }
 
-const finishName = (day: DrivenDay): string =>
-  day.race.stages[day.race.days[day.dayIndex].lastStage]?.finish ?? 'The end'
-
 /** The day with another forecast of it. */
-const asDay = (day: DrivenDay, judged: Judged, targetCharge: number): DrivenDay => ({
+export const asDay = (day: DrivenDay, judged: Judged, targetCharge: number): DrivenDay => ({
   ...day,
   forecast: judged.forecast,
   wantedMps: judged.speedMps,
@@ -132,7 +124,8 @@ const asDay = (day: DrivenDay, judged: Judged, targetCharge: number): DrivenDay 
   targetCharge,
 })
 
-function figures(day: DrivenDay, { forecast, verdict }: Judged) {
+/** Arrival, driving and battery of a judged day. */
+export function figures(day: DrivenDay, { forecast, verdict }: Judged) {
   const { pack, reserveCharge } = day.race.car
   const { spans } = forecast.timetable
   const setOffMs = spans.find((span) => span.kind === 'drive')?.fromMs ?? verdict.arrivalMs
@@ -157,6 +150,15 @@ function constantOf(day: DrivenDay, targetCharge: number, bestMs: number): PlanD
   }
 }
 
+/** The sections for people, from where the day starts. */
+export const sectionsOn = (day: DrivenDay, { reach, forPeople }: DayPlan) =>
+  forPeople.sections.map(({ firstPiece, endPiece, speedKmh }) => ({
+    stage: stageOf(day, reach.first + firstPiece),
+    fromKm: edgeKm(day, reach.first + firstPiece),
+    toKm: edgeKm(day, reach.first + endPiece),
+    speedKmh,
+  }))
+
 const stageOf = (day: DrivenDay, piece: number): string =>
   day.race.stages[day.race.course.stages.findIndex((stage) => piece < stage.endPiece)]?.name ?? ''
 
@@ -171,70 +173,4 @@ function pricesOf(day: DrivenDay, { sPerJ, reach }: DayPlan): PlanDocument['pric
     nextM = fromM + PRICE_EVERY_M
   }
   return prices
-}
-
-/** Why no speeds keep what is wanted, in words. */
-function notPlanned(day: DrivenDay, targetCharge: number): Omit<PlanDocument, keyof Head> {
-  const found = someTables({ race: day.race, dayIndex: day.dayIndex, opening: day.opening, targetCharge })
-  if (found === null) return { ...NOTHING, outcome: { kind: 'parked', text: 'The car is not driven on this day.' } }
-  const { tables, reach } = found
-  const why = whyImpossible(tables)
-  const { pack } = day.race.car
-  const reachedKm = edgeKm(day, reach.first + why.farthestEdge)
-  const mostPct = chargeAtStoredJ(pack, why.mostAtCloseJ) * 100
-  // The tables may reach what the day itself just misses: then the next whole per cent below is asked for.
-  const lessPct = Math.max(Math.ceil(targetCharge * 100 - 1e-6) - 1, 0)
-  const floorPct = chargeAtStoredJ(pack, why.floorJ) * 100
-  const laterMin = why.laterS / 60
-  const nearest = [
-    ...(Number.isNaN(why.mostAtCloseJ)
-      ? []
-      : [
-          {
-            what: 'target' as const,
-            value: Math.min(mostPct, lessPct),
-            text: `Close with ${Math.floor(Math.min(mostPct, lessPct))} % instead of ${Math.round(targetCharge * 100)} %.`,
-          },
-        ]),
-    ...(Number.isNaN(why.floorJ)
-      ? []
-      : [{ what: 'reserve' as const, value: floorPct, text: `Lower the reserve to ${Math.floor(floorPct)} %.` }]),
-    ...(Number.isNaN(why.laterS)
-      ? []
-      : [
-          {
-            what: 'later' as const,
-            value: laterMin,
-            text: `Drive ${Math.ceil(laterMin)} min longer, if the event allows it.`,
-          },
-        ]),
-  ]
-  return {
-    ...NOTHING,
-    outcome: { kind: 'impossible', text: sentence(day, why, { reachedKm, mostPct, targetCharge, tables }) },
-    impossible: {
-      why: why.why,
-      reachedKm,
-      mostAtCloseWh: Number.isNaN(why.mostAtCloseJ) ? null : why.mostAtCloseJ * WH,
-      nearest,
-    },
-  }
-}
-
-function sentence(
-  day: DrivenDay,
-  why: ReturnType<typeof whyImpossible>,
-  of: { reachedKm: number; mostPct: number; targetCharge: number; tables: { targetJ: number } },
-): string {
-  const name = finishName(day)
-  if (why.why === 'target') {
-    const shortWh = Math.round((of.tables.targetJ - why.mostAtCloseJ) * WH)
-    if (shortWh < 1)
-      return `${name} can be reached, but the day then closes just short of ${Math.round(of.targetCharge * 100)} %.`
-    return `${name} can be reached, but the day then closes with ${Math.floor(of.mostPct)} % at most: ${shortWh} Wh short of ${Math.round(of.targetCharge * 100)} %.`
-  }
-  const endsAt = clock(day.race.days[day.dayIndex].drivingToMs, day.zone)
-  if (why.why === 'reserve')
-    return `${name} cannot be reached by ${endsAt} with the reserve untouched: the car comes to km ${of.reachedKm.toFixed(0)}.`
-  return `${name} cannot be reached by ${endsAt}: the sun and the pack bring the car to km ${of.reachedKm.toFixed(0)}.`
 }

@@ -30,14 +30,12 @@ const LABELS: Record<Cause, string> = {
   opening: 'Charge at the start',
 }
 
-/** Ranges of the plan for people, and a plan that seldom touches the reserve. */
-export function planRanges(
-  request: PlanRequest,
-  day: DrivenDay,
-  plan: DayPlan,
-): Pick<PlanDocument, 'ranges' | 'steady'> {
+/** What days are drawn by. */
+export type Drawing = Pick<PlanRequest, 'sky' | 'spreads' | 'members' | 'seed'>
+
+/** Days that differ from the forecast as its spreads say, driven at the plan for people. */
+export function drawDays(request: Drawing, { race, dayIndex }: DrivenDay, plan: DayPlan) {
   const { tables, reach, forPeople, best } = plan
-  const { race, dayIndex } = day
   const path = daySun(race.days[dayIndex])
   const clearW = clearPowerW(race, path, best.forecast, reach)
   const spreads = spreadsOf(request, plan, clearW)
@@ -46,23 +44,35 @@ export function planRanges(
     return courseOf(tables, drive, { clearW, perHeadwind, spreads })
   }
   const course = lay(driveAlong(tables, forPeople.speedMps, reach.first))
-  const drawn = members(course, spreads, request.members, request.seed)
+  return { spreads, lay, course, drawn: members(course, spreads, request.members, request.seed) }
+}
+
+/** A range of energies in watt-hours. */
+export const whRange = ({ p10, p50, p90 }: { p10: number; p50: number; p90: number }) => ({
+  p10: p10 * WH,
+  p50: p50 * WH,
+  p90: p90 * WH,
+})
+
+/** Ranges of the plan for people, and a plan that seldom touches the reserve. */
+export function planRanges(
+  request: PlanRequest,
+  day: DrivenDay,
+  plan: DayPlan,
+): Pick<PlanDocument, 'ranges' | 'steady'> {
+  const { tables, reach, forPeople } = plan
+  const { spreads, lay, course, drawn } = drawDays(request, day, plan)
   const touch = touching(drawn)
   const shares = sharesOfSpread(course, spreads, CAUSE_MEMBERS, request.seed)
   const price = plan.sPerJ[0]
   const closing = rangeOf(drawn.duskJ)
   const planned = forPeople.forecast.closingJ
   const lateS = rangeOf(drawn.duskJ.map((J) => (planned - J) * price))
-  const wh = ({ p10, p50, p90 }: { p10: number; p50: number; p90: number }) => ({
-    p10: p10 * WH,
-    p50: p50 * WH,
-    p90: p90 * WH,
-  })
   const ranges = {
     members: request.members,
     seed: request.seed,
-    closingWh: wh(closing),
-    harvestWh: wh(rangeOf(drawn.harvestJ)),
+    closingWh: whRange(closing),
+    harvestWh: whRange(rangeOf(drawn.harvestJ)),
     lateMin: { p10: lateS.p10 / 60, p50: lateS.p50 / 60, p90: lateS.p90 / 60 },
     touchesReservePct: touch.share * 100,
     touchesMostKm: touch.edge < 0 ? null : edgeKm(day, reach.first + touch.edge),
@@ -72,7 +82,7 @@ export function planRanges(
       km: edgeKm(day, reach.first + edge),
       at: localIso(atMs, day.zone),
       plannedWh: plannedJ * WH,
-      wh: wh(rangeAt(drawn, tables.pieces, edge)),
+      wh: whRange(rangeAt(drawn, tables.pieces, edge)),
     })),
     causes: CAUSES.map((cause) => ({ cause, label: LABELS[cause], sharePct: shares[cause] * 100 })).sort(
       (a, b) => b.sharePct - a.sharePct,
@@ -81,7 +91,7 @@ export function planRanges(
   return { ranges, steady: steadyOf(request, day, plan, spreads, ({ drive }) => lay(drive)) }
 }
 
-function spreadsOf({ spreads: of, sky }: PlanRequest, { tables, best }: DayPlan, clearW: Float64Array): Spreads {
+function spreadsOf({ spreads: of, sky }: Drawing, { tables, best }: DayPlan, clearW: Float64Array): Spreads {
   const { spans } = best.forecast.timetable
   const middleMs = (spans[0].fromMs + spans[spans.length - 1].toMs) / 2
   const given = sum(best.forecast.balance.outW.subarray(0, best.forecast.steps.count))
