@@ -26,5 +26,13 @@ export const localIso = (atMs: number, zone: string): string =>
 /** A time of day for a sentence, HH:MM. */
 export const clock = (atMs: number, zone: string): string => DateTime.fromMillis(atMs, { zone }).toFormat('HH:mm')
 
+/** Time of day, to the nearest minute, of an instant that carries its offset: HH:MM. */
+export const clockOf = (at: string): string =>
+  DateTime.fromISO(at, { setZone: true }).plus({ seconds: 30 }).toFormat('HH:mm')
+
+/** A day of the calendar for a sentence: Sat 17 Oct. */
+export const dayName = (date: string): string =>
+  DateTime.fromISO(date, { zone: 'utc' }).setLocale('en-GB').toFormat('ccc d LLL')
+
 /** Offset of local time from UTC. [min] */
 export const offsetMin = (atMs: number, zone: string): number => DateTime.fromMillis(atMs, { zone }).offset

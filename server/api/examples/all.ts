@@ -4,6 +4,7 @@ import { coastExample } from './coast-down.ts'
 import { raceExample } from './race.ts'
 import { routeExample } from './route.ts'
 import { measuredExample, skyExample } from './sky.ts'
+import { twoDayRace, twoDaySky } from './two-days.ts'
 
 export interface Example {
   title: string
@@ -43,6 +44,16 @@ export const EXAMPLES: Record<string, Example> = {
         { name: 'Headwind of 2 m/s more', change: { headwindMps: 2 } },
         { name: 'A flat tyre', change: { stopMinutes: 8, rollingPct: 103 } },
       ],
+    },
+  },
+  'race-plan-request': {
+    title: 'Two days together: how much to carry over the night',
+    document: {
+      car: carExample,
+      race: twoDayRace,
+      routes: { 'saltpan-twin-wells': routeExample },
+      sky: twoDaySky,
+      members: 500,
     },
   },
   'sky-comparison': {
