@@ -26,12 +26,13 @@ import { guardChanges } from './api/guard.ts'
 import { healthRoutes } from './api/health.ts'
 import { KINDS } from './api/kinds.ts'
 import { describeApi } from './api/openapi.ts'
-import { planDesk } from './api/plan-desk.ts'
-import { keptPlanRoutes, planRoutes, statelessPlanRoute } from './api/plans.ts'
+import { planDesk, type PlanTrade } from './api/plan-desk.ts'
+import { DAY_PLANS, keptPlanRoutes, planRoutes, statelessPlanRoute } from './api/plans.ts'
 import { pointingRoute, statelessPointingRoute } from './api/pointing.ts'
 import { previewRoute } from './api/previews.ts'
 import { raceDocumentsRoute } from './api/race-documents.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
+import { keptRacePlanRoutes, RACE_PLANS, racePlanRoutes, statelessRacePlanRoute } from './api/race-plans.ts'
 import { sessionRoutes } from './api/sessions.ts'
 import { sharedRoute, shareRoutes } from './api/shares.ts'
 import { whatIfRoute } from './api/what-if.ts'
@@ -152,6 +153,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => statelessTrackerRoute(scope, needs))
   void api.register(async (scope: Api) => statelessPointingRoute(scope, needs))
   void api.register(async (scope: Api) => statelessPlanRoute(scope, needs))
+  void api.register(async (scope: Api) => statelessRacePlanRoute(scope, needs))
   void api.register(async (scope: Api) => whatIfRoute(scope, needs))
   void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
   void api.register(async (scope: Api) => coastDownRoute(scope, needs))
@@ -172,15 +174,27 @@ function addCrewRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => beliefRoute(scope, needs, turns))
   void api.register(async (scope: Api) => shareRoutes(scope, needs, publicOrigin))
   void api.register(async (scope: Api) => eventRoutes(scope, needs))
-  const desk = planDesk(needs, (error) => api.log.error(error))
-  api.addHook('preClose', () => desk.close())
-  void api.register(async (scope: Api) => planRoutes(scope, needs, desk))
-  keptPlanRoutes(api, needs)
+  addPlanRoutes(api, needs)
   keptReadingRoutes(api, needs, turns)
   followedRoute(api, needs)
   pointingRoute(api, needs)
   trackerRoutes(api, needs)
   sharedRoute(api, needs)
+}
+
+/** Plans of days and races, each worked out at a desk that closes with the service. */
+function addPlanRoutes(api: Api, needs: Parts): void {
+  const deskOf = (trade: PlanTrade) => {
+    const desk = planDesk(needs, trade, (error) => api.log.error(error))
+    api.addHook('preClose', () => desk.close())
+    return desk
+  }
+  const dayDesk = deskOf(DAY_PLANS)
+  const raceDesk = deskOf(RACE_PLANS)
+  void api.register(async (scope: Api) => planRoutes(scope, needs, dayDesk))
+  void api.register(async (scope: Api) => racePlanRoutes(scope, needs, raceDesk))
+  keptPlanRoutes(api, needs)
+  keptRacePlanRoutes(api, needs)
 }
 
 /** The client: files with a hash in their name never change, everything else is asked for again. */

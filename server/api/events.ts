@@ -1,12 +1,13 @@
 import type { ServerResponse } from 'node:http'
 import { z } from 'zod'
-import { dayTopic } from '../live/topics.ts'
+import { dayTopic, raceTopic } from '../live/topics.ts'
 import { linkOf } from './access.ts'
 import { answers, STORE_ERRORS } from './answers.ts'
 import type { Api, Needs } from './api.ts'
 import { dayParams, oneDay } from './days.ts'
 import { streamEvents } from './event-stream.ts'
 import { findRace } from './find.ts'
+import { idParam } from './kinds.ts'
 import { sharedDay } from './shares.ts'
 
 const stream = {
@@ -36,6 +37,20 @@ export function eventRoutes(api: Api, needs: Needs): void {
     const { id, date } = request.params
     oneDay((await findRace(store, id)).race, date)
     const listens = { topic: dayTopic(id, date), kinds: ALL_KINDS, linkId: linkOf(request) }
+    await streamEvents({ live: needs.live, open }, request, reply, listens)
+  })
+
+  const raceSchema = {
+    tags: ['following'],
+    summary: 'Watch a race as a whole: event "race-plan"',
+    params: idParam('race'),
+    querystring: z.strictObject({}),
+    response: answers({ 200: stream }, ['bad-id', 'bad-query', 'no-such-document', ...STORE_ERRORS]),
+  }
+  api.get('/races/:id/events', { schema: raceSchema, exposeHeadRoute: false }, async (request, reply) => {
+    const { id } = request.params
+    await findRace(store, id)
+    const listens = { topic: raceTopic(id), kinds: ['race-plan'], linkId: linkOf(request) }
     await streamEvents({ live: needs.live, open }, request, reply, listens)
   })
 

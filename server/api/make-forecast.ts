@@ -22,6 +22,14 @@ export interface Wanted {
   date?: string
 }
 
+/** The versions of all that was gathered, in one order. */
+export const versionsOf = ({ race, car, sky, routes }: Gathered) => [
+  race.version,
+  car.version,
+  sky.version,
+  [...routes].map(([id, { version }]) => `${id} ${version}`).sort((a, b) => (a < b ? -1 : 1)),
+]
+
 /**
  * The documents that a request names, as they are now.
  *

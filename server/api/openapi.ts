@@ -20,7 +20,10 @@ export async function describeApi(app: Api, version: string): Promise<void> {
         { name: 'races', description: 'Races, their days and stages' },
         { name: 'skies', description: 'Weather along the route' },
         { name: 'forecasts', description: 'Budgets' },
-        { name: 'plans', description: 'The best speeds of a day, for people, with bound and ranges' },
+        {
+          name: 'plans',
+          description: 'The best speeds of a day, or of the days of a race together, for people, with bound and ranges',
+        },
         { name: 'coast-down', description: 'Rolling and drag from logged runs' },
         { name: 'following', description: 'The budget that the crew follows on a day' },
         { name: 'readings', description: 'Trackers read in the car, and what they teach' },

@@ -1,11 +1,8 @@
 import { createHash } from 'node:crypto'
-import type { PlanDocument } from '../documents/plan.ts'
-import { gistOf } from '../documents/plan-gist.ts'
-import type { PlanRequest } from '../documents/plan-request.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
 import { Fault } from '../errors.ts'
-import { dayTopic } from '../live/topics.ts'
-import type { NewPlan } from '../store/plan-store.ts'
+import type { NewPlan, PlanStore } from '../store/plan-store.ts'
+import type { Store } from '../store/store.ts'
 import type { Needs } from './api.ts'
 
 /** Everything that a plan is worked out from, with the ids that it is kept under. */
@@ -17,8 +14,20 @@ export interface PlanOrder {
   /** Versions of the documents. */
   versions: unknown
   /** Target, spreads and the like. */
-  wanted: Omit<PlanRequest, 'car' | 'race' | 'sky' | 'routes' | 'date' | 'learned'>
+  wanted: object
   inputs: Record<string, unknown>
+  /** Computations that it is made of; left out, one. */
+  parts?: number
+}
+
+/** What a desk makes, and whom it tells. */
+export interface PlanTrade {
+  /** The job that makes a plan; the name of its ids too. */
+  job: 'plan' | 'race-plan'
+  kept: (store: Store) => PlanStore
+  /** The plan and, for lists, the same in short. */
+  read: (json: string) => { plan: unknown; gist: object }
+  topic: (plan: NewPlan) => string
 }
 
 /** Plans being worked out by this service. */
@@ -32,33 +41,39 @@ export interface PlanDesk {
 }
 
 /** A UUID (version 8, RFC 9562) made of what the plan is made of, so that the same question is one plan. */
-function idOf({ raceId, carId, skyId, versions }: PlanOrder, inputsHash: string): string {
-  const parts = ['plan', raceId, carId, skyId, versions, inputsHash, ENGINE_VERSION]
+function idOf(job: string, { raceId, carId, skyId, versions }: PlanOrder, inputsHash: string): string {
+  const parts = [job, raceId, carId, skyId, versions, inputsHash, ENGINE_VERSION]
   const hex = createHash('sha256').update(JSON.stringify(parts)).digest('hex')
   const variant = '89ab'[Number.parseInt(hex[16], 16) % 4]
   return `${hex.slice(0, 8)}-${hex.slice(8, 12)}-8${hex.slice(13, 16)}-${variant}${hex.slice(17, 20)}-${hex.slice(20, 32)}`
 }
 
-/** A desk that works plans out in the compute threads and tells the day's stream how far they are. */
-export function planDesk({ store, compute, live }: Needs, failed: (error: unknown) => void): PlanDesk {
+/** A desk that works plans out in the compute threads and tells a stream how far they are. */
+export function planDesk(
+  { store, compute, live }: Needs,
+  trade: PlanTrade,
+  failed: (error: unknown) => void,
+): PlanDesk {
+  const { job } = trade
+  const kept = trade.kept(store)
   const working = new Map<string, { stop: AbortController; done: Promise<void> }>()
 
   const tell = (plan: NewPlan, state: string, more: object = {}): void =>
     void live
-      .publish(dayTopic(plan.raceId, plan.date), 'plan', { planId: plan.id, state, ...more })
+      .publish(trade.topic(plan), job, { planId: plan.id, state, ...more })
       .catch((error: unknown) => failed(error))
 
-  async function work(plan: NewPlan, inputs: Record<string, unknown>, signal: AbortSignal): Promise<void> {
+  async function work(plan: NewPlan, { inputs, parts }: PlanOrder, signal: AbortSignal): Promise<void> {
     try {
-      const json = await compute.run('plan', inputs, signal, (progress) => tell(plan, 'working', progress))
-      const made: PlanDocument = JSON.parse(json)
-      if (await store.plans.finish(plan.id, made, gistOf(made))) tell(plan, 'done')
+      const told = (progress: object): void => tell(plan, 'working', progress)
+      const made = trade.read(await compute.run(job, inputs, signal, told, parts))
+      if (await kept.finish(plan.id, made.plan, made.gist)) tell(plan, 'done')
     } catch (error) {
       if (signal.aborted) return
       if (!(error instanceof Fault)) failed(error)
       const { code, message } =
         error instanceof Fault ? error : new Fault('internal', 'The plan could not be worked out.')
-      await store.plans.fail(plan.id, { code, detail: message })
+      await kept.fail(plan.id, { code, detail: message })
       tell(plan, 'failed', { code, detail: message })
     }
   }
@@ -67,20 +82,20 @@ export function planDesk({ store, compute, live }: Needs, failed: (error: unknow
     async order(order) {
       const { raceId, date, carId, skyId, wanted, inputs } = order
       const inputsHash = await compute.run('plan-hash', inputs)
-      const id = idOf(order, inputsHash)
+      const id = idOf(job, order, inputsHash)
       const plan: NewPlan = { id, raceId, date, carId, skyId, wanted, inputsHash, engineVersion: ENGINE_VERSION }
-      if (!(await store.plans.begin(plan))) return id
+      if (!(await kept.begin(plan))) return id
       const stop = new AbortController()
       tell(plan, 'working', { step: 'Waiting its turn', share: 0 })
-      const done = work(plan, inputs, stop.signal)
+      const done = work(plan, order, stop.signal)
         .catch(failed)
         .finally(() => working.delete(id))
       working.set(id, { stop, done })
       return id
     },
     async cancel(id) {
-      const plan = await store.plans.get(id)
-      const was = await store.plans.cancel(id)
+      const plan = await kept.get(id)
+      const was = await kept.cancel(id)
       working.get(id)?.stop.abort(new Error('the plan was cancelled'))
       if (was && plan !== null) tell(plan, 'cancelled')
       return was
@@ -88,7 +103,7 @@ export function planDesk({ store, compute, live }: Needs, failed: (error: unknow
     async close() {
       await Promise.all(
         [...working].map(async ([id, { stop, done }]) => {
-          await store.plans.cancel(id).catch(failed)
+          await kept.cancel(id).catch(failed)
           stop.abort(new Error('the service is stopping'))
           await done
         }),

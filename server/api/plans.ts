@@ -1,20 +1,21 @@
 import { z } from 'zod'
 import { openPlanRequest } from '../compute/plan-jobs.ts'
 import { checked, readJson } from '../compute/read-json.ts'
-import { planDocument } from '../documents/plan.ts'
-import { type PlanGist, planGist } from '../documents/plan-gist.ts'
+import { type PlanDocument, planDocument } from '../documents/plan.ts'
+import { gistOf, type PlanGist, planGist } from '../documents/plan-gist.ts'
 import { planRequest } from '../documents/plan-request.ts'
 import { slug } from '../documents/quantity.ts'
 import { Fault } from '../errors.ts'
+import { dayTopic } from '../live/topics.ts'
 import type { PlanEntry } from '../store/plan-store.ts'
 import { answers, COMPUTE_ERRORS, listOf, STORE_ERRORS, WRITE_ERRORS } from './answers.ts'
 import { type Api, clientGone, DOCUMENT_LIMIT, type Needs } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { oneDay } from './days.ts'
 import { findRace } from './find.ts'
-import { gather, learnedLosses } from './make-forecast.ts'
+import { gather, learnedLosses, versionsOf } from './make-forecast.ts'
 import { idParam } from './kinds.ts'
-import type { PlanDesk } from './plan-desk.ts'
+import type { PlanDesk, PlanTrade } from './plan-desk.ts'
 import { STATELESS_ERRORS, wholeRequest } from './stateless-forecast.ts'
 
 const DESCRIPTION =
@@ -55,6 +56,17 @@ const planEntry = z.strictObject({
   gist: planGist.nullable().describe('the plan in short; null until it is done'),
 })
 const planAnswer = planEntry.extend({ plan: planDocument.nullable() })
+
+/** Plans of a day: its stream is told of them. */
+export const DAY_PLANS: PlanTrade = {
+  job: 'plan',
+  kept: ({ plans }) => plans,
+  read(json) {
+    const plan: PlanDocument = JSON.parse(json)
+    return { plan, gist: gistOf(plan) }
+  },
+  topic: ({ raceId, date }) => dayTopic(raceId, date),
+}
 
 const noQuery = z.strictObject({})
 const planId = z.strictObject({ id: z.uuid({ error: 'a UUID' }).describe('the plan’s id') })
@@ -122,12 +134,7 @@ export function planRoutes(api: Api, needs: Needs, desk: PlanDesk): void {
     const bodies = Object.fromEntries([...routes].map(([id, route]) => [id, route.body]))
     const learned = await learnedLosses(needs, race.id, car)
     const inputs = { car: car.body, race: race.body, sky: sky.body, routes: bodies, date, learned, ...wanted }
-    const versions = [
-      race.version,
-      car.version,
-      sky.version,
-      [...routes].map(([id, { version }]) => `${id} ${version}`).sort((a, b) => (a < b ? -1 : 1)),
-    ]
+    const versions = versionsOf({ race, car, sky, routes })
     const id = await desk.order({ raceId, date, carId, skyId, versions, wanted, inputs })
     const plan = await planOf(needs, id)
     return reply

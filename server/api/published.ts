@@ -1,12 +1,14 @@
 import { z } from 'zod'
 import { DOCUMENTS } from '../compute/documents.ts'
 import { openRequest } from '../compute/forecast-jobs.ts'
+import { openRacePlanRequest } from '../compute/race-plan-jobs.ts'
 import { openComparison } from '../compute/sky-jobs.ts'
 import { openWhatIf } from '../compute/what-if-jobs.ts'
 import { coastDownRequest } from '../documents/coast-down.ts'
 import { coastDownDocument } from '../documents/coast-down-result.ts'
 import { budgetDocument } from '../documents/budget.ts'
 import { pointingDocument } from '../documents/pointing.ts'
+import { racePlanDocument } from '../documents/race-plan.ts'
 import { readingDocument } from '../documents/reading.ts'
 import { skyComparison } from '../documents/sky-comparison.ts'
 import { speedsDocument } from '../documents/speeds.ts'
@@ -38,6 +40,8 @@ export const COMPONENTS: Record<string, Component> = {
   SkyComparison: { schema: skyComparison, direction: 'output' },
   WhatIfRequest: { schema: openWhatIf, direction: 'input', example: 'what-if-request' },
   WhatIf: { schema: whatIfDocument, direction: 'output' },
+  RacePlanRequest: { schema: openRacePlanRequest, direction: 'input', example: 'race-plan-request' },
+  RacePlan: { schema: racePlanDocument, direction: 'output' },
   CoastDownTest: { schema: coastDownRequest, direction: 'input', example: 'coast-down' },
   CoastDownResult: { schema: coastDownDocument, direction: 'output' },
   Budget: { schema: budgetDocument, direction: 'output' },

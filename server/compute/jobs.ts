@@ -3,6 +3,7 @@ import { type BodyInput, readDocument } from './file-jobs.ts'
 import { forecastJson, inputsHash, pointingJson, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
 import { planHash, planJson, readPlanRequest } from './plan-jobs.ts'
 import type { ComputePool } from './pool.ts'
+import { racePlanJson, readRacePlanRequest } from './race-plan-jobs.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 import { compareJson, readComparison } from './sky-jobs.ts'
 import { readWhatIf, whatIfJson } from './what-if-jobs.ts'
@@ -16,6 +17,8 @@ export const JOBS = {
   'read-plan-request': readPlanRequest,
   'plan-hash': planHash,
   plan: planJson,
+  'read-race-plan-request': readRacePlanRequest,
+  'race-plan': racePlanJson,
   'read-what-if': readWhatIf,
   'what-if': whatIfJson,
   point: pointingJson,

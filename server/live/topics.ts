@@ -1,6 +1,9 @@
 /** What a stream is told: the events of one race day. */
 export const dayTopic = (raceId: string, date: string): string => `${raceId}/${date}`
 
+/** What a stream is told of a race as a whole; no date has this name. */
+export const raceTopic = (raceId: string): string => `${raceId}/race`
+
 /** Links that were revoked, for the processes that have streams open; no race day has this name. */
 export const LINKS = '$links'
 

@@ -1,11 +1,14 @@
 import type { Fragment, Sql } from './guarded-sql.ts'
 import { isUuid, json, saving, utc } from './storable.ts'
 
+/** What plans are of: one day, or the days of a race together. */
+export type PlanKind = 'day' | 'race'
+
 /** What a plan is made from. The id follows from all of it, so that the same question is one plan. */
 export interface NewPlan {
   id: string
   raceId: string
-  /** YYYY-MM-DD */
+  /** Its day, the first one of a race. YYYY-MM-DD */
   date: string
   carId: string
   skyId: string
@@ -45,8 +48,11 @@ export interface PlanStore {
   list(raceId: string): Promise<PlanEntry[]>
 }
 
-/** Plans as they were worked out, never changed once done. */
-export function planStore(sql: Sql): PlanStore {
+/** Nobody works on a plan that began so long ago: whoever did is gone. */
+const GONE_AFTER: Record<PlanKind, string> = { day: '5 minutes', race: '30 minutes' }
+
+/** Plans of one kind as they were worked out, never changed once done. */
+export function planStore(sql: Sql, kind: PlanKind): PlanStore {
   const entry = (): Fragment => sql`
     id, race_id as "raceId", to_char(date, 'YYYY-MM-DD') as date, car_id as "carId", sky_id as "skyId", wanted,
     inputs_hash as "inputsHash", engine_version as "engineVersion", state, fault, gist,
@@ -57,14 +63,14 @@ export function planStore(sql: Sql): PlanStore {
       const rows = await saving(
         { ...plan },
         () => sql<{ id: string }[]>`
-        insert into plans (id, race_id, date, car_id, sky_id, wanted, inputs_hash, engine_version, state)
+        insert into plans (id, kind, race_id, date, car_id, sky_id, wanted, inputs_hash, engine_version, state)
         values (
-          ${plan.id}, ${plan.raceId}, ${plan.date}, ${plan.carId}, ${plan.skyId},
+          ${plan.id}, ${kind}, ${plan.raceId}, ${plan.date}, ${plan.carId}, ${plan.skyId},
           ${json(sql, 'wanted', plan.wanted)}, ${plan.inputsHash}, ${plan.engineVersion}, 'working'
         )
         on conflict (id) do update set state = 'working', started_at = clock_timestamp(), ended_at = null, fault = null
         where plans.state in ('failed', 'cancelled')
-          or (plans.state = 'working' and plans.started_at < clock_timestamp() - interval '5 minutes')
+          or (plans.state = 'working' and plans.started_at < clock_timestamp() - ${GONE_AFTER[kind]}::interval)
         returning id`,
       )
       return rows.length > 0
@@ -74,33 +80,34 @@ export function planStore(sql: Sql): PlanStore {
       const rows = await sql<{ id: string }[]>`
         update plans set state = 'done', ended_at = clock_timestamp(), plan = ${json(sql, 'plan', plan)},
           gist = ${json(sql, 'gist', gist)}
-        where id = ${id} and state = 'working' returning id`
+        where id = ${id} and kind = ${kind} and state = 'working' returning id`
       return rows.length > 0
     },
 
     async fail(id, fault) {
       await sql`
         update plans set state = 'failed', ended_at = clock_timestamp(), fault = ${json(sql, 'fault', fault)}
-        where id = ${id} and state = 'working'`
+        where id = ${id} and kind = ${kind} and state = 'working'`
     },
 
     async cancel(id) {
       if (!isUuid(id)) return false
       const rows = await sql<{ id: string }[]>`
         update plans set state = 'cancelled', ended_at = clock_timestamp()
-        where id = ${id} and state = 'working' returning id`
+        where id = ${id} and kind = ${kind} and state = 'working' returning id`
       return rows.length > 0
     },
 
     async get(id) {
       if (!isUuid(id)) return null
-      const rows = await sql<StoredPlan[]>`select ${entry()}, plan from plans where id = ${id}`
+      const rows = await sql<StoredPlan[]>`select ${entry()}, plan from plans where id = ${id} and kind = ${kind}`
       return rows[0] ?? null
     },
 
     async list(raceId) {
       const rows = await sql<PlanEntry[]>`
-        select ${entry()} from plans where race_id = ${raceId} order by save_number desc limit 50`
+        select ${entry()} from plans where race_id = ${raceId} and kind = ${kind}
+        order by save_number desc limit 50`
       return rows
     },
   }

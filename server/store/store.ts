@@ -14,6 +14,7 @@ export interface Store {
   documents: DocumentStore
   forecasts: ForecastStore
   plans: PlanStore
+  racePlans: PlanStore
   choices: ChoiceStore
   readings: ReadingStore
   beliefs: BeliefStore
@@ -31,7 +32,8 @@ export interface Store {
 export const store = (sql: Sql): Store => ({
   documents: documentStore(sql),
   forecasts: forecastStore(sql),
-  plans: planStore(sql),
+  plans: planStore(sql, 'day'),
+  racePlans: planStore(sql, 'race'),
   choices: choiceStore(sql),
   readings: readingStore(sql),
   beliefs: beliefStore(sql),

@@ -48,7 +48,7 @@ const OPEN = ['GET /*', 'GET /share', 'GET /api/health', 'GET /api/ready', 'POST
 /** What a share link opens. */
 const SHARED = ['GET /api/v1/share/budget', 'GET /api/v1/share/events']
 /** An answer that does not end; streams.test.ts asks them. */
-const STREAMS = ['GET /api/v1/races/:id/days/:date/events', 'GET /api/v1/share/events']
+const STREAMS = ['GET /api/v1/races/:id/days/:date/events', 'GET /api/v1/races/:id/events', 'GET /api/v1/share/events']
 
 interface Route {
   method: HTTPMethods

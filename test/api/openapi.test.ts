@@ -4,6 +4,7 @@ import { Ajv2020 } from 'ajv/dist/2020.js'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { EXAMPLES } from '../../server/api/examples/all.ts'
 import { DOCUMENTS } from '../../server/compute/documents.ts'
+import { openRacePlanRequest } from '../../server/compute/race-plan-jobs.ts'
 import { openWhatIf } from '../../server/compute/what-if-jobs.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
@@ -43,6 +44,9 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/races/{id}/forecasts': ['get', 'post'],
   '/api/v1/races/{id}/plans': ['get', 'post'],
   '/api/v1/plans/{id}': ['delete', 'get'],
+  '/api/v1/races/{id}/race-plans': ['get', 'post'],
+  '/api/v1/race-plans/{id}': ['delete', 'get'],
+  '/api/v1/races/{id}/events': ['get'],
   '/api/v1/races/{id}/days/{date}/choice': ['get', 'put'],
   '/api/v1/races/{id}/days/{date}/budget': ['get'],
   '/api/v1/races/{id}/days/{date}/pointing': ['get'],
@@ -62,6 +66,7 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/forecast': ['post'],
   '/api/v1/tracker-report': ['post'],
   '/api/v1/plan': ['post'],
+  '/api/v1/race-plan': ['post'],
   '/api/v1/what-if': ['post'],
   '/api/v1/pointing': ['post'],
   '/api/v1/sky-comparison': ['post'],
@@ -153,6 +158,7 @@ describe('the worked examples', () => {
     'coast-down': coastDownRequest,
     'forecast-request': openRequest,
     'what-if-request': openWhatIf,
+    'race-plan-request': openRacePlanRequest,
     'sky-comparison': openComparison,
   }
 

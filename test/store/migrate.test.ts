@@ -26,6 +26,7 @@ const OWN_FILES = [
   '009-plans.sql',
   '010-plan-gist.sql',
   '011-engine-moves.sql',
+  '012-race-plans.sql',
 ]
 
 function migrateSuite(open: () => Promise<TestDatabase>): void {

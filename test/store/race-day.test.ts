@@ -5,6 +5,7 @@ import { choiceSuite } from './choice-suite.ts'
 import { embeddedDatabase, serverDatabase, type TestDatabase } from './engines.ts'
 import { eventSuite } from './event-suite.ts'
 import { historySuite } from './history-suite.ts'
+import { planSuite } from './plan-suite.ts'
 import { readingSuite } from './reading-suite.ts'
 
 const SUITES: [name: string, suite: (open: () => Promise<TestDatabase>) => void][] = [
@@ -13,6 +14,7 @@ const SUITES: [name: string, suite: (open: () => Promise<TestDatabase>) => void]
   ['the choice of a day', choiceSuite],
   ['the history', historySuite],
   ['events', eventSuite],
+  ['kept plans', planSuite],
 ]
 
 for (const [name, suite] of SUITES) {
