@@ -6,7 +6,7 @@ import { CAUSES, type Cause, skySpread, type Spreads } from '../engine/ensemble/
 import { forecastDay } from '../engine/forecast.ts'
 import { judge } from '../engine/planner/judge.ts'
 import { clearPowerW, loadPerHeadwind } from '../engine/planner/passing.ts'
-import type { DayPlan } from '../engine/planner/plan-day.ts'
+import type { DayPlan, Judged } from '../engine/planner/plan-day.ts'
 import { refine, type Refined } from '../engine/planner/refine.ts'
 import { type Drive, driveAlong } from '../engine/planner/simulate.ts'
 import { dayKm, placeName } from './budget-day.ts'
@@ -31,10 +31,16 @@ const LABELS: Record<Cause, string> = {
 }
 
 /** What days are drawn by. */
-export type Drawing = Pick<PlanRequest, 'sky' | 'spreads' | 'members' | 'seed'>
+export type Drawing = Pick<PlanRequest, 'sky' | 'spreads' | 'members' | 'seed'> & {
+  /** Spread of the wandering factor on the sun, where it is that of another plan, 0..1. */
+  sunWander?: number
+}
+
+/** A plan as far as days are drawn for it. */
+type Drawn = Pick<DayPlan, 'tables' | 'reach' | 'best'> & { forPeople: Judged }
 
 /** Days that differ from the forecast as its spreads say, driven at the plan for people. */
-export function drawDays(request: Drawing, { race, dayIndex }: DrivenDay, plan: DayPlan) {
+export function drawDays(request: Drawing, { race, dayIndex }: DrivenDay, plan: Drawn) {
   const { tables, reach, forPeople, best } = plan
   const path = daySun(race.days[dayIndex])
   const clearW = clearPowerW(race, path, best.forecast, reach)
@@ -91,14 +97,14 @@ export function planRanges(
   return { ranges, steady: steadyOf(request, day, plan, spreads, ({ drive }) => lay(drive)) }
 }
 
-function spreadsOf({ spreads: of, sky }: Drawing, { tables, best }: DayPlan, clearW: Float64Array): Spreads {
+function spreadsOf({ spreads: of, sky, sunWander }: Drawing, { tables, best }: Drawn, clearW: Float64Array): Spreads {
   const { spans } = best.forecast.timetable
   const middleMs = (spans[0].fromMs + spans[spans.length - 1].toMs) / 2
   const given = sum(best.forecast.balance.outW.subarray(0, best.forecast.steps.count))
   const brightness = Math.min(Math.max(sunShare(best, clearW), 0), 1)
   const wander =
     of.sunWanderPct === undefined
-      ? skySpread((middleMs - Date.parse(sky.issuedAt)) / 1000, given > 0 ? brightness : 0)
+      ? (sunWander ?? skySpread((middleMs - Date.parse(sky.issuedAt)) / 1000, given > 0 ? brightness : 0))
       : of.sunWanderPct / 100
   return {
     sunDay: of.sunDayPct / 100,
