@@ -27,6 +27,7 @@ import { healthRoutes } from './api/health.ts'
 import { KINDS } from './api/kinds.ts'
 import { describeApi } from './api/openapi.ts'
 import { planDesk, type PlanTrade } from './api/plan-desk.ts'
+import { planVariantRoutes } from './api/plan-variants.ts'
 import { DAY_PLANS, keptPlanRoutes, planRoutes, statelessPlanRoute } from './api/plans.ts'
 import { pointingRoute, statelessPointingRoute } from './api/pointing.ts'
 import { previewRoute } from './api/previews.ts'
@@ -35,6 +36,8 @@ import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
 import { keptRacePlanRoutes, RACE_PLANS, racePlanRoutes, statelessRacePlanRoute } from './api/race-plans.ts'
 import { sessionRoutes } from './api/sessions.ts'
 import { sharedRoute, shareRoutes } from './api/shares.ts'
+import { variantDesk } from './api/variant-desk.ts'
+import { statelessVariantsRoute } from './api/variants.ts'
 import { whatIfRoute } from './api/what-if.ts'
 import { skyComparisonRoute } from './api/sky-comparison.ts'
 import { statelessForecastRoute, statelessTrackerRoute } from './api/stateless-forecast.ts'
@@ -155,6 +158,7 @@ function addRoutes(api: Api, needs: Parts): void {
   void api.register(async (scope: Api) => statelessPlanRoute(scope, needs))
   void api.register(async (scope: Api) => statelessRacePlanRoute(scope, needs))
   void api.register(async (scope: Api) => whatIfRoute(scope, needs))
+  void api.register(async (scope: Api) => statelessVariantsRoute(scope, needs))
   void api.register(async (scope: Api) => skyComparisonRoute(scope, needs))
   void api.register(async (scope: Api) => coastDownRoute(scope, needs))
   dayRoutes(api, needs)
@@ -182,7 +186,7 @@ function addCrewRoutes(api: Api, needs: Parts): void {
   sharedRoute(api, needs)
 }
 
-/** Plans of days and races, each worked out at a desk that closes with the service. */
+/** Plans of days and races and variants of plans, each worked out at a desk that closes with the service. */
 function addPlanRoutes(api: Api, needs: Parts): void {
   const deskOf = (trade: PlanTrade) => {
     const desk = planDesk(needs, trade, (error) => api.log.error(error))
@@ -193,6 +197,9 @@ function addPlanRoutes(api: Api, needs: Parts): void {
   const raceDesk = deskOf(RACE_PLANS)
   void api.register(async (scope: Api) => planRoutes(scope, needs, dayDesk))
   void api.register(async (scope: Api) => racePlanRoutes(scope, needs, raceDesk))
+  const variants = variantDesk(needs, (error) => api.log.error(error))
+  api.addHook('preClose', () => variants.close())
+  void api.register(async (scope: Api) => planVariantRoutes(scope, needs, variants))
   keptPlanRoutes(api, needs)
   keptRacePlanRoutes(api, needs)
 }

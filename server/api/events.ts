@@ -16,7 +16,7 @@ const stream = {
   mediaType: 'text/event-stream',
 }
 
-const ALL_KINDS = ['forecast', 'reading', 'choice', 'plan']
+const ALL_KINDS = ['forecast', 'reading', 'choice', 'plan', 'variant']
 /** A share link tells of the budget alone. */
 const SHARED_KINDS = ['forecast']
 
@@ -28,7 +28,7 @@ export function eventRoutes(api: Api, needs: Needs): void {
   api.addHook('preClose', async () => open.forEach((raw) => raw.end()))
   const schema = {
     tags: ['following'],
-    summary: 'Watch a day: events "forecast", "reading", "choice" and "plan"',
+    summary: 'Watch a day: events "forecast", "reading", "choice", "plan" and "variant"',
     params: dayParams,
     querystring: z.strictObject({}),
     response: answers({ 200: stream }, ['bad-id', 'bad-query', 'no-such-document', 'no-such-day', ...STORE_ERRORS]),

@@ -13,9 +13,9 @@ import { type Api, clientGone, DOCUMENT_LIMIT, type Needs } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { oneDay } from './days.ts'
 import { findRace } from './find.ts'
-import { gather, learnedLosses, versionsOf } from './make-forecast.ts'
 import { idParam } from './kinds.ts'
 import type { PlanDesk, PlanTrade } from './plan-desk.ts'
+import { planInputs } from './plan-inputs.ts'
 import { STATELESS_ERRORS, wholeRequest } from './stateless-forecast.ts'
 
 const DESCRIPTION =
@@ -130,11 +130,7 @@ export function planRoutes(api: Api, needs: Needs, desk: PlanDesk): void {
     const raceId = request.params.id
     const { carId, skyId, date, ...wanted } = checked(newPlan, readJson(bytesOf(request.body)), 'plan request')
     oneDay((await findRace(store, raceId)).race, date)
-    const { race, car, sky, routes } = await gather(needs, raceId, { carId, skyId })
-    const bodies = Object.fromEntries([...routes].map(([id, route]) => [id, route.body]))
-    const learned = await learnedLosses(needs, race.id, car)
-    const inputs = { car: car.body, race: race.body, sky: sky.body, routes: bodies, date, learned, ...wanted }
-    const versions = versionsOf({ race, car, sky, routes })
+    const { inputs, versions } = await planInputs(needs, { raceId, carId, skyId, date, wanted })
     const id = await desk.order({ raceId, date, carId, skyId, versions, wanted, inputs })
     const plan = await planOf(needs, id)
     return reply

@@ -3,6 +3,7 @@ import { DOCUMENTS } from '../compute/documents.ts'
 import { openRequest } from '../compute/forecast-jobs.ts'
 import { openRacePlanRequest } from '../compute/race-plan-jobs.ts'
 import { openComparison } from '../compute/sky-jobs.ts'
+import { openVariants } from '../compute/variant-jobs.ts'
 import { openWhatIf } from '../compute/what-if-jobs.ts'
 import { coastDownRequest } from '../documents/coast-down.ts'
 import { coastDownDocument } from '../documents/coast-down-result.ts'
@@ -14,6 +15,7 @@ import { skyComparison } from '../documents/sky-comparison.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { trackerDay } from '../documents/tracker-day.ts'
 import { trackerDays } from '../documents/tracker-days.ts'
+import { variantAnswer } from '../documents/variant.ts'
 import { whatIfDocument } from '../documents/what-if.ts'
 import { problemSchema } from './answers.ts'
 
@@ -42,6 +44,8 @@ export const COMPONENTS: Record<string, Component> = {
   WhatIf: { schema: whatIfDocument, direction: 'output' },
   RacePlanRequest: { schema: openRacePlanRequest, direction: 'input', example: 'race-plan-request' },
   RacePlan: { schema: racePlanDocument, direction: 'output' },
+  VariantsRequest: { schema: openVariants, direction: 'input', example: 'variants-request' },
+  VariantAnswer: { schema: variantAnswer, direction: 'output' },
   CoastDownTest: { schema: coastDownRequest, direction: 'input', example: 'coast-down' },
   CoastDownResult: { schema: coastDownDocument, direction: 'output' },
   Budget: { schema: budgetDocument, direction: 'output' },

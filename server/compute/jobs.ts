@@ -6,6 +6,7 @@ import type { ComputePool } from './pool.ts'
 import { racePlanJson, readRacePlanRequest } from './race-plan-jobs.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 import { compareJson, readComparison } from './sky-jobs.ts'
+import { checkVariants, readVariants, variantBaseJob, variantJob } from './variant-jobs.ts'
 import { readWhatIf, whatIfJson } from './what-if-jobs.ts'
 
 /** Everything that is too heavy for the event loop, by name. */
@@ -21,6 +22,10 @@ export const JOBS = {
   'race-plan': racePlanJson,
   'read-what-if': readWhatIf,
   'what-if': whatIfJson,
+  'read-variants': readVariants,
+  'check-variants': checkVariants,
+  'variant-base': variantBaseJob,
+  variant: variantJob,
   point: pointingJson,
   'read-coast-down': readCoastDown,
   'coast-down': coastDownJob,

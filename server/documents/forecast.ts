@@ -78,11 +78,13 @@ export interface DrivenDay extends ForecastDay {
 /**
  * The race in the engine's terms and what is wanted of its days, one after the other as they are driven.
  *
+ * @param opened  how the last day wanted opens, where that is known: the days before are then left out
  * @throws InputError when the documents do not fit together: field, value and what was expected
  */
 export function drivenRace<T>(
   request: ForecastRequest,
   of: (day: DrivenDay) => T,
+  opened?: Opening,
 ): { race: Race; days: T[]; assumptions: string[] } {
   const { car, race: document, sky: skyDoc } = request
   const lastDay = dayWanted(document, request.date)
@@ -96,7 +98,7 @@ export function drivenRace<T>(
   checkWindHeight(request)
   const whole: Race = { car: model, course, stages: stageRules(document), days: dayRules(document), sky }
   const asFar = request.until === undefined ? whole : campedDay(whole, document, request.until, lastDay)
-  const begun = request.from === undefined ? null : begunDay(asFar, document, request.from, request.date)
+  const begun = begunOf(asFar, request, lastDay, opened)
   const race = begun?.race ?? asFar
   const { days, notes } = drivenDays(race, request, lastDay, { begun, of })
   return {
@@ -114,6 +116,12 @@ export function drivenRace<T>(
       ]),
     ],
   }
+}
+
+/** A day that is not opened by the one before: the race from there on; null where the days before are driven. */
+function begunOf(race: Race, { race: document, from, date: on }: ForecastRequest, lastDay: number, opened?: Opening) {
+  if (from !== undefined) return begunDay(race, document, from, on)
+  return opened === undefined ? null : { race, dayIndex: lastDay, opening: opened }
 }
 
 /** How the days before the one wanted are driven: a try on Saturday does not change Friday. */

@@ -72,7 +72,12 @@ export const whatIfDocuments = ({ variants, ...request }: WhatIfRequest): WhatIf
 
 const share = (pct: number | undefined): number => (pct ?? 100) / 100
 
-function changeOf({ race }: DrivenDay, change: ChangeDocument, field: string): Change {
+/**
+ * A change in the engine's terms.
+ *
+ * @throws InputError when it does not fit the car
+ */
+export function changeOf({ race }: DrivenDay, change: ChangeDocument, field: string): Change {
   const { massKg = 0, headwindMps = 0, openingPct = 0, stopMinutes = 0, reservePct, targetPct, trackerOff } = change
   const { load } = race.car
   if (load.massKg + massKg < LEAST_KG)

@@ -25,7 +25,7 @@ export interface Air {
 export function airAtCar(
   course: Course,
   steps: Steps,
-  weather: Pick<Weather, 'windMps' | 'windFromRad' | 'densityKgM3' | 'airC'>,
+  weather: Pick<Weather, 'windMps' | 'windFromRad' | 'densityKgM3' | 'airC' | 'addedHeadwindMps'>,
   windHeightM: number,
 ): Air {
   const n = steps.count
@@ -45,7 +45,8 @@ export function airAtCar(
       share = windShareAtCar(here, windHeightM)
     }
     const windMps = weather.windMps[i] * share
-    const against = headwindMps(windMps, weather.windFromRad[i], steps.headingRad[i])
+    const added = steps.speedMps[i] > 0 ? (weather.addedHeadwindMps?.[i] ?? 0) : 0
+    const against = headwindMps(windMps, weather.windFromRad[i], steps.headingRad[i]) + added
     const across = crosswindMps(windMps, weather.windFromRad[i], steps.headingRad[i])
     air.headwindMps[i] = against
     air.crosswindMps[i] = across

@@ -19,8 +19,18 @@ export interface Sky {
   lapseCPerM: number
   fromMs: number
   toMs: number
+  /** What is taken to be otherwise than told; nothing where left out. */
+  change?: SkyChange
   /** Rows that were not taken as they stood, with the place they belong to. */
   notes: (SkyNote & { place: number })[]
+}
+
+/** What may be otherwise than a sky tells. */
+export interface SkyChange {
+  /** Factor on the sun's light, direct and from the sky. */
+  sun: number
+  /** Added to the headwind at the car while it drives, wherever it heads. [Mps] */
+  headwindMps: number
 }
 
 /** Weather at every step of a drive: sun, light, air and wind at the road. Arrays of `count` numbers. */
@@ -41,6 +51,8 @@ export interface Weather {
   windMps: Float64Array
   windFromRad: Float64Array
   gustMps: Float64Array
+  /** Added to the headwind at the car; nothing where left out. [Mps] */
+  addedHeadwindMps?: Float64Array
 }
 
 /**
@@ -161,7 +173,16 @@ export function weatherAlong(sky: Sky, path: SunPath, along: Along): Weather {
   const { linke, ...air } = airAlong(source, along)
   const clear: ClearSkyAlong = clearSkyAlong(sun, along, { ...air, linke })
   lightAlong(source, along, sun.up, clear)
+  const { change } = sky
+  if (change !== undefined) dim(clear, change.sun)
   const densityKgM3 = new Float64Array(along.count)
   for (let i = 0; i < along.count; i++) densityKgM3[i] = airDensityKgM3(air.pressurePa[i], air.airC[i], air.vapourPa[i])
-  return { sun, ...clear, ...air, densityKgM3, ...windAlong(source, along) }
+  const weather = { sun, ...clear, ...air, densityKgM3, ...windAlong(source, along) }
+  if (change === undefined) return weather
+  return { ...weather, addedHeadwindMps: new Float64Array(along.count).fill(change.headwindMps) }
+}
+
+/** All light by one factor. */
+function dim({ ghiWm2, dniWm2, dhiWm2 }: ClearSkyAlong, factor: number): void {
+  for (const column of [ghiWm2, dniWm2, dhiWm2]) for (let i = 0; i < column.length; i++) column[i] *= factor
 }

@@ -9,12 +9,14 @@ import { type MoveStore, moveStore } from './move-store.ts'
 import { type PlanStore, planStore } from './plan-store.ts'
 import { type ReadingStore, readingStore } from './reading-store.ts'
 import { type SessionStore, sessionStore } from './session-store.ts'
+import { type VariantStore, variantStore } from './variant-store.ts'
 
 export interface Store {
   documents: DocumentStore
   forecasts: ForecastStore
   plans: PlanStore
   racePlans: PlanStore
+  variants: VariantStore
   choices: ChoiceStore
   readings: ReadingStore
   beliefs: BeliefStore
@@ -34,6 +36,7 @@ export const store = (sql: Sql): Store => ({
   forecasts: forecastStore(sql),
   plans: planStore(sql, 'day'),
   racePlans: planStore(sql, 'race'),
+  variants: variantStore(sql),
   choices: choiceStore(sql),
   readings: readingStore(sql),
   beliefs: beliefStore(sql),

@@ -5,6 +5,7 @@ import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { EXAMPLES } from '../../server/api/examples/all.ts'
 import { DOCUMENTS } from '../../server/compute/documents.ts'
 import { openRacePlanRequest } from '../../server/compute/race-plan-jobs.ts'
+import { openVariants } from '../../server/compute/variant-jobs.ts'
 import { openWhatIf } from '../../server/compute/what-if-jobs.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
@@ -68,6 +69,9 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/plan': ['post'],
   '/api/v1/race-plan': ['post'],
   '/api/v1/what-if': ['post'],
+  '/api/v1/variants': ['post'],
+  '/api/v1/plans/{id}/variants': ['get', 'post'],
+  '/api/v1/variants/{id}': ['delete', 'get'],
   '/api/v1/pointing': ['post'],
   '/api/v1/sky-comparison': ['post'],
   '/api/v1/coast-down': ['post'],
@@ -159,6 +163,7 @@ describe('the worked examples', () => {
     'forecast-request': openRequest,
     'what-if-request': openWhatIf,
     'race-plan-request': openRacePlanRequest,
+    'variants-request': openVariants,
     'sky-comparison': openComparison,
   }
 

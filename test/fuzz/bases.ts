@@ -198,6 +198,22 @@ export const WHAT_IFS: object[] = [
   },
 ]
 
+/** Variants by patch, by number and at speeds of their own. */
+export const VARIANTS: object[] = [
+  {
+    ...WHOLE_DAY,
+    date: '2026-10-17',
+    members: 50,
+    variants: [{ name: 'Light', car: { body: { massKg: 240 } }, change: { sunPct: 90 } }],
+  },
+  {
+    ...WHOLE_DAY,
+    date: '2026-10-17',
+    members: 50,
+    variants: [{ name: 'Held', race: { openingPct: 70 }, speeds: { kind: 'constant', speedKmh: 60 } }],
+  },
+]
+
 /** Comparisons of two skies, with and without a day. */
 export const COMPARISONS = [
   { forecast: someSky(20), measured: fullSky() },

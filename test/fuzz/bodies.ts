@@ -2,6 +2,7 @@ import type { z } from 'zod'
 import { DOCUMENTS as SCHEMAS } from '../../server/compute/documents.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
+import { openVariants } from '../../server/compute/variant-jobs.ts'
 import { openWhatIf } from '../../server/compute/what-if-jobs.ts'
 import { coastDownRequest } from '../../server/documents/coast-down.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
@@ -16,6 +17,7 @@ import {
   ROUTE_TABLES,
   SKY_TABLES,
   SPEEDS,
+  VARIANTS,
   WHAT_IFS,
 } from './bases.ts'
 import { oneByte, otherBytes } from './byte-mutation.ts'
@@ -58,6 +60,9 @@ export const wrongComparison = (by: Chance): WrongBody =>
 
 export const wrongWhatIf = (by: Chance): WrongBody =>
   wrongJson(by, by.pick<unknown>(WHAT_IFS), publishedOnce(openWhatIf))
+
+export const wrongVariants = (by: Chance): WrongBody =>
+  wrongJson(by, by.pick<unknown>(VARIANTS), publishedOnce(openVariants))
 
 const NEW_FORECASTS = SPEEDS.flatMap((speeds) => [
   { carId: 'fuzz-car', skyId: 'fuzz-sky', speeds },

@@ -1,5 +1,5 @@
 import { sent } from './attempt.ts'
-import { wrongComparison, wrongNewForecast, wrongRequest, wrongWhatIf } from './bodies.ts'
+import { wrongComparison, wrongNewForecast, wrongRequest, wrongVariants, wrongWhatIf } from './bodies.ts'
 import type { Door } from './document-doors.ts'
 
 /** Attempts that run at once; each has a race of its own, so that its forecasts can be watched. */
@@ -48,6 +48,13 @@ export const FORECAST_DOORS: Door[] = [
     takesDocuments: true,
     attempt: (by) =>
       sent('POST', '/api/v1/what-if', 'application/json', wrongWhatIf(by), { touches: null, yields: null }),
+  },
+  {
+    name: 'POST variants',
+    count: 60,
+    takesDocuments: true,
+    attempt: (by) =>
+      sent('POST', '/api/v1/variants', 'application/json', wrongVariants(by), { touches: null, yields: null }),
   },
   {
     name: 'POST sky-comparison',

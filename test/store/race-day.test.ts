@@ -7,6 +7,7 @@ import { eventSuite } from './event-suite.ts'
 import { historySuite } from './history-suite.ts'
 import { planSuite } from './plan-suite.ts'
 import { readingSuite } from './reading-suite.ts'
+import { variantSuite } from './variant-suite.ts'
 
 const SUITES: [name: string, suite: (open: () => Promise<TestDatabase>) => void][] = [
   ['links and sessions', accessSuite],
@@ -15,6 +16,7 @@ const SUITES: [name: string, suite: (open: () => Promise<TestDatabase>) => void]
   ['the history', historySuite],
   ['events', eventSuite],
   ['kept plans', planSuite],
+  ['variants of plans', variantSuite],
 ]
 
 for (const [name, suite] of SUITES) {

@@ -56,6 +56,21 @@ export const EXAMPLES: Record<string, Example> = {
       members: 500,
     },
   },
+  'variants-request': {
+    title: 'A lighter car, a later start under less sun and one held speed beside the day’s best plan',
+    document: {
+      car: carExample,
+      race: raceExample,
+      routes: { 'saltpan-twin-wells': routeExample },
+      sky: skyExample,
+      date: '2026-10-17',
+      variants: [
+        { name: 'Lighter by 15 kg', car: { body: { massKg: carExample.body.massKg - 15 } } },
+        { name: 'Less sun, flat tyre', change: { sunPct: 90, stopMinutes: 8 } },
+        { name: 'Held at 62 km/h', speeds: speedsExample },
+      ],
+    },
+  },
   'sky-comparison': {
     title: 'A forecast beside what was measured',
     document: { forecast: skyExample, measured: measuredExample },
