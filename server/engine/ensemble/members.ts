@@ -1,5 +1,5 @@
 import { type DayTables, type Load, loadAt, pieceS, rowAt } from '../planner/day-tables.ts'
-import type { Drive } from '../planner/simulate.ts'
+import { type Drive, motionJ } from '../planner/simulate.ts'
 import { normals } from './normals.ts'
 import { CAUSES, type Cause, type Spreads } from './spread.ts'
 
@@ -9,6 +9,8 @@ export interface Course {
   durationS: Float64Array
   harvestW: Float64Array
   loadW: Float64Array
+  /** What a piece takes on top of its load, changes of speed included. [J] */
+  extraJ: Float64Array
   /** Change of load with the headwind. [W·s/m] */
   perHeadwind: Float64Array
   /** Most that a factor on the sun can be: the clear sky over the forecast. */
@@ -56,6 +58,7 @@ export function courseOf(
     durationS: column(),
     harvestW: column(),
     loadW: column(),
+    extraJ: column(),
     perHeadwind: of.perHeadwind,
     mostSun: column(),
     memory: column(),
@@ -80,6 +83,7 @@ export function courseOf(
     course.durationS[i] = pieceS(day, i, drive.speedMps[i])
     course.harvestW[i] = rowAt(day.harvestW, i * day.clock.count, day.clock, t + course.durationS[i] / 2)
     course.loadW[i] = loadAt(day, i, drive.speedMps[i], load).W
+    course.extraJ[i] = day.extraJ[i] + motionJ(day, drive.speedMps, i)
     course.mostSun[i] = Math.max(course.harvestW[i] > 1 ? of.clearW[i] / course.harvestW[i] : 1, 1)
     const goneS = stoodS + course.durationS[i]
     course.memory[i] = Math.exp(-goneS / of.spreads.wanderS - day.lengthM[i] / of.spreads.wanderM)
@@ -153,7 +157,7 @@ export function members(course: Course, spreads: Spreads, count: number, seed: n
       factor = wanted < LEAST_SUN ? LEAST_SUN : wanted > course.mostSun[i] ? course.mostSun[i] : wanted
       const harvestW = course.harvestW[i] * factor * trackerFactor
       const netW = harvestW - course.loadW[i] * roadFactor - course.perHeadwind[i] * headwindMps
-      E += ((netW > 0 ? netW * coulombic : netW) - netW * netW * lossPerW) * course.durationS[i] - day.extraJ[i]
+      E += ((netW > 0 ? netW * coulombic : netW) - netW * netW * lossPerW) * course.durationS[i] - course.extraJ[i]
       if (E > ceilingJ) E = ceilingJ
       harvestJ += harvestW * course.durationS[i]
     }

@@ -33,8 +33,10 @@ export function robustPlan(
   lay: (refined: Refined) => Course,
   of: { spreads: Spreads; promise: number; seed: number },
 ): RobustPlan {
+  const { promise } = of
+  const allowed = promise - Math.sqrt((promise * (1 - promise)) / MEMBERS)
   let refined = start
-  let aimed = of.promise
+  let aimed = allowed
   let best: RobustPlan | null = null
   for (let round = 0; round < ROUNDS; round++) {
     const before = members(lay(refined), of.spreads, MEMBERS, of.seed + 2 * round)
@@ -43,9 +45,9 @@ export function robustPlan(
     const fresh = members(lay(refined), of.spreads, MEMBERS, of.seed + 2 * round + 1)
     const touches = share(fresh)
     const now = { refined, marginJ, touches, costS: endOf(refined) - endOf(start) }
-    if (best === null || isBetter(now, best, of.promise)) best = now
-    if (touches <= of.promise && touches > 0.6 * of.promise) break
-    aimed = Math.min(Math.max((aimed * of.promise) / Math.max(touches, 1 / MEMBERS), of.promise / 20), 0.5)
+    if (best === null || isBetter(now, best, allowed)) best = now
+    if (touches <= allowed && touches > 0.6 * promise) break
+    aimed = Math.min(Math.max((aimed * allowed) / Math.max(touches, 1 / MEMBERS), promise / 20), 0.5)
   }
   return best as RobustPlan
 }
@@ -53,9 +55,9 @@ export function robustPlan(
 const endOf = ({ track }: Refined): number => track.atS[track.atS.length - 1]
 const share = ({ spareJ, count }: Members): number => spareJ.reduce((sum, J) => sum + (J <= 0 ? 1 : 0), 0) / count
 
-function isBetter(one: RobustPlan, other: RobustPlan, promise: number): boolean {
-  if (one.touches <= promise !== other.touches <= promise) return one.touches <= promise
-  return one.touches <= promise ? one.costS < other.costS : one.touches < other.touches
+function isBetter(one: RobustPlan, other: RobustPlan, allowed: number): boolean {
+  if (one.touches <= allowed !== other.touches <= allowed) return one.touches <= allowed
+  return one.touches <= allowed ? one.costS < other.costS : one.touches < other.touches
 }
 
 /** Margins at one common share of each edge's members, such that so many members fall below them somewhere. */

@@ -1,12 +1,13 @@
 import { describe, expect, it } from 'vitest'
 import { courseOf, members } from '../../../server/engine/ensemble/members.ts'
 import { normals } from '../../../server/engine/ensemble/normals.ts'
-import { rangeOf, sharesOfSpread } from '../../../server/engine/ensemble/ranges.ts'
+import { rangeAt, rangeOf, sharesOfSpread } from '../../../server/engine/ensemble/ranges.ts'
 import { robustPlan } from '../../../server/engine/ensemble/robust.ts'
 import { CAUSES, skySpread, type Spreads } from '../../../server/engine/ensemble/spread.ts'
 import { bestDrive } from '../../../server/engine/planner/best-drive.ts'
 import type { DayTables } from '../../../server/engine/planner/day-tables.ts'
 import type { Refined } from '../../../server/engine/planner/refine.ts'
+import { simulate } from '../../../server/engine/planner/simulate.ts'
 import { cloudyDay, dayOf } from './cloudy-day.ts'
 
 const WH = 3600
@@ -162,9 +163,53 @@ describe('the ranges', () => {
     expect(Object.values(sharesOfSpread(course, NONE, 100, 1))).toEqual([0, 0, 0, 0, 0])
   })
 
-  it('are a point where nothing differs, that of the plan itself', () => {
-    const { p10, p90 } = rangeOf(members(course, NONE, 50, 1).duskJ)
-    expect(p90 - p10).toBeLessThan(1e-3)
+  it('are a point where nothing differs, that of the plan itself at every edge: stops, changes of speed, full pack', () => {
+    for (const ceilingWh of [20_000, 4000]) {
+      const cloudy = cloudyDay(9)
+      const day = {
+        ...cloudy,
+        kinetic: { massKg: 260, perGained: 1.1, perLost: 0.5 },
+        pack: { ...cloudy.pack, ceilingJ: ceilingWh * WH },
+        extraJ: cloudy.extraJ.map((_, i) => 50 * (i % 7)),
+      }
+      const drive = {
+        speedMps: day.fastestMps.map((fastest, i) => Math.min(fastest, 17 + 3 * Math.sin(i))),
+        waitS: new Float64Array(day.pieces + 1),
+      }
+      const track = simulate(day, drive)
+      const of = members(lay(day, drive.speedMps, NONE), NONE, 3, 1)
+      for (let edge = 0; edge <= day.pieces; edge++) {
+        // Ranges are of arrivals, and kept in single precision.
+        const { p10, p90 } = rangeAt(of, day.pieces, edge)
+        expect(Math.abs(p10 - track.arrivalJ[edge]) / WH, `edge ${edge}`).toBeLessThan(0.001)
+        expect(p90).toBe(p10)
+      }
+      expect(Math.abs(of.duskJ[1] - track.duskJ) / WH).toBeLessThan(0.001)
+      expect(Math.max(...track.arrivalJ) === day.pack.ceilingJ).toBe(ceilingWh === 4000)
+    }
+  })
+
+  it('of stops, harvest and a cloudy day’s close wander no more from seed to seed', () => {
+    const of = cloudyDay(9)
+    const day = { ...of, pack: { ...of.pack, ceilingJ: 20_000 * WH } }
+    const cloudy = lay(
+      day,
+      day.fastestMps.map((fastest) => Math.min(fastest, 68 / 3.6)),
+      USUAL,
+      1.1,
+    )
+    const all = Array.from({ length: 20 }, (_, seed) => {
+      const drawn = members(cloudy, USUAL, 2000, 100 + seed)
+      const at = (edge: number) => rangeAt(drawn, day.pieces, edge)
+      return [at(180), at(300), rangeOf(drawn.harvestJ), rangeOf(drawn.duskJ)]
+    })
+    for (let figure = 0; figure < 4; figure++) {
+      const ranges = all.map((of) => of[figure])
+      const width = mean(ranges.map(({ p10, p90 }) => p90 - p10))
+      expect(width).toBeGreaterThan(50 * WH)
+      for (const key of ['p10', 'p50', 'p90'] as const)
+        expect(sd(ranges.map((range) => range[key])) / width).toBeLessThan(0.05)
+    }
   })
 })
 
@@ -188,25 +233,29 @@ describe('the sky’s spread', () => {
 })
 
 describe('a robust plan', () => {
-  it('touches the reserve no more often than promised, on days it has not seen', () => {
-    for (const seed of [3, 9]) {
-      const day = { ...cloudyDay(seed), targetJ: 510 * WH }
-      const layOut = (refined: Refined) =>
-        courseOf(day, refined.drive, {
-          clearW: new Float64Array(day.pieces).fill(1050),
-          perHeadwind: new Float64Array(day.pieces).fill(60),
-          spreads: USUAL,
-        })
-      const start = bestDrive(day) as Refined
-      const before = members(layOut(start), USUAL, 2000, 999)
-      expect(before.spareJ.filter((J) => J <= 0).length / 2000).toBeGreaterThan(0.2)
-      const promise = 0.05
-      const robust = robustPlan(day, start, layOut, { spreads: USUAL, promise, seed: 1 })
-      const fresh = members(layOut(robust.refined), USUAL, 2000, 424_242)
-      const touched = fresh.spareJ.filter((J) => J <= 0).length / 2000
-      expect(touched).toBeLessThanOrEqual(promise + 2 * Math.sqrt((promise * (1 - promise)) / 2000))
-      expect(touched).toBeGreaterThan(0.005)
-      expect(robust.costS).toBeGreaterThan(0)
-    }
+  const promise = 0.05
+  const chance = promise + 2 * Math.sqrt((promise * (1 - promise)) / 2000)
+
+  // Days on which plans chosen by the members alone touched it on up to 6.1 % of others.
+  it.each([1, 3, 8, 9, 11])('touches the reserve no more often than promised, on days it has not seen: %i', (seed) => {
+    const kinetic = { massKg: 260, perGained: 1.05, perLost: 0.45 }
+    const cloudy = cloudyDay(seed, seed % 3 === 0)
+    const day = { ...cloudy, targetJ: 510 * WH, kinetic: seed % 2 === 0 ? kinetic : cloudy.kinetic }
+    const layOut = (refined: Refined) =>
+      courseOf(day, refined.drive, {
+        clearW: new Float64Array(day.pieces).fill(1050),
+        perHeadwind: new Float64Array(day.pieces).fill(60),
+        spreads: USUAL,
+      })
+    const touchedBy = (refined: Refined): number =>
+      members(layOut(refined), USUAL, 2000, 424_242).spareJ.filter((J) => J <= 0).length / 2000
+    const start = bestDrive(day) as Refined
+    expect(touchedBy(start)).toBeGreaterThan(0.2)
+    const robust = robustPlan(day, start, layOut, { spreads: USUAL, promise, seed: 1 })
+    expect(touchedBy(robust.refined)).toBeLessThanOrEqual(chance)
+    expect(touchedBy(robust.refined)).toBeGreaterThan(0.005)
+    expect(robust.costS).toBeGreaterThan(0)
+    // Safer than promised by a little, not by driving slowly for nothing.
+    expect(robust.touches).toBeGreaterThan(0.4 * promise)
   })
 })

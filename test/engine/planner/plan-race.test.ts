@@ -3,7 +3,9 @@ import { storedJ } from '../../../server/engine/battery.ts'
 import type { DayPlan } from '../../../server/engine/planner/plan-day.ts'
 import { planDay } from '../../../server/engine/planner/plan-day.ts'
 import { planRace } from '../../../server/engine/planner/plan-race.ts'
+import { driveAlong } from '../../../server/engine/planner/simulate.ts'
 import { demoDay } from '../../support/demo-race.ts'
+import { racedByTheSecond } from './second-by-second.ts'
 
 const saturday = demoDay('2026-10-17')
 const { race, opening } = saturday
@@ -32,6 +34,22 @@ describe('a race of two days, the night between them free', { timeout: 120_000 }
     const evening = first.plan?.sPerJ[first.plan.reach.count] ?? Number.NaN
     const morning = second.plan?.sPerJ[0] ?? Number.NaN
     expect(Math.abs(evening / morning - 1)).toBeLessThan(0.04)
+  })
+
+  test('is what another simulator finds from the first start through the night to the last close, to 0.1 s and 0.1 Wh', () => {
+    const plans = free.days.map(({ plan }) => plan as DayPlan)
+    const days = plans.map(({ tables, best, reach }) => ({
+      day: tables,
+      drive: driveAlong(tables, best.speedMps, reach.first),
+      morningJ: tables.start.energyJ - best.forecast.openingJ,
+    }))
+    racedByTheSecond(days, plans[0].best.forecast.openingJ).forEach(({ endS, duskJ, spareJ }, d) => {
+      const { forecast, verdict } = plans[d].best
+      const arrivalS = (verdict.arrivalMs - race.days[d + 1].opensMs) / 1000
+      expect(Math.abs(endS - arrivalS)).toBeLessThan(0.1)
+      expect(Math.abs(duskJ - forecast.closingJ) / 3600).toBeLessThan(0.1)
+      expect(spareJ / 3600).toBeGreaterThan(-0.1)
+    })
   })
 
   test('takes no longer than with the night given, whatever is given', () => {

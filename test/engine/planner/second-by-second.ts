@@ -9,17 +9,38 @@ function lookUp(values: ArrayLike<number>, from: number, step: number, at: numbe
   return values[left] * (left + 1 - place) + values[left + 1] * (place - left)
 }
 
+/** What a car of the tables pays for a change of speed: dearer to gain than what is given back, rounded over 150 J. */
+function changeOf({ kinetic }: DayTables, fromMps: number, toMps: number): number {
+  if (kinetic.massKg === 0) return 0
+  const gained = (kinetic.massKg / 2) * (toMps ** 2 - fromMps ** 2)
+  const upward = (gained + Math.hypot(gained, 150) - 150) / 2
+  return kinetic.perGained * upward + kinetic.perLost * (gained - upward)
+}
+
+/** How a day went by the second. */
+export interface Driven {
+  endS: number
+  duskJ: number
+  /** Least energy on arrival at an edge, and least over the floor there. [J] */
+  lowestJ: number
+  spareJ: number
+}
+
 /**
  * Another simulator of a day: a loop over seconds with the car's place as its state, stops as a state of their own.
  * It shares no code with the planner but the tables; sun is that of the middle of each piece's passage, as they say.
+ *
+ * @param startJ  energy at the start, where it is not that of the tables. [J]
  */
-export function drivenByTheSecond(day: DayTables, drive: Drive): { endS: number; duskJ: number; lowestJ: number } {
+export function drivenByTheSecond(day: DayTables, drive: Drive, startJ = day.start.energyJ): Driven {
   const { clock, speeds, pack } = day
   const row = (table: Float64Array, index: number, width: number) => table.subarray(index * width, (index + 1) * width)
   const kept = (W: number) => (W > 0 ? W * pack.coulombic : W) - W * W * pack.lossPerW
   let now = day.start.atS
-  let J = day.start.energyJ
+  let J = startJ
+  let goesMps = 0
   let lowestJ = Number.POSITIVE_INFINITY
+  let spareJ = Number.POSITIVE_INFINITY
   for (let piece = 0; piece < day.pieces; piece++) {
     for (const stop of day.stops.filter((one) => one.beforePiece === piece)) {
       J = Math.min(J + lookUp(stop.gainJ, clock.from, clock.step, now), pack.ceilingJ)
@@ -39,15 +60,41 @@ export function drivenByTheSecond(day: DayTables, drive: Drive): { endS: number;
       const second = Math.min(1, wholeS - gone)
       J += kept(sunW - loadW) * second
     }
-    J = Math.min(J - day.extraJ[piece], pack.ceilingJ)
+    J -= day.extraJ[piece] + changeOf(day, goesMps, speed)
+    goesMps = speed
+    const stands = piece + 1 === day.pieces || day.stops.some((one) => one.beforePiece === piece + 1)
+    if (stands) {
+      J -= changeOf(day, goesMps, 0)
+      goesMps = 0
+    }
+    J = Math.min(J, pack.ceilingJ)
     now += wholeS
     lowestJ = Math.min(lowestJ, J)
+    spareJ = Math.min(spareJ, J - day.floorJ[piece + 1])
   }
   for (const stop of day.stops.filter((one) => one.beforePiece === day.pieces)) {
     J = Math.min(J + lookUp(stop.gainJ, clock.from, clock.step, now), pack.ceilingJ)
     now += lookUp(stop.lengthS, clock.from, clock.step, now)
   }
-  return { endS: now, duskJ: Math.min(J + lookUp(day.duskGainJ, clock.from, clock.step, now), pack.ceilingJ), lowestJ }
+  const duskJ = Math.min(J + lookUp(day.duskGainJ, clock.from, clock.step, now), pack.ceilingJ)
+  return { endS: now, duskJ, lowestJ, spareJ }
+}
+
+/** A day of a race, and what the morning adds before it is driven. */
+export interface RacedDay {
+  day: DayTables
+  drive: Drive
+  morningJ: number
+}
+
+/** Several days in turn with the nights between them: each opens with what the one before closed with. */
+export function racedByTheSecond(days: RacedDay[], openingJ: number): Driven[] {
+  let heldJ = openingJ
+  return days.map(({ day, drive, morningJ }) => {
+    const driven = drivenByTheSecond(day, drive, Math.min(heldJ + morningJ, day.pack.ceilingJ))
+    heldJ = driven.duskJ
+    return driven
+  })
 }
 
 /** The cubic of Catmull and Rom by its matrix. */

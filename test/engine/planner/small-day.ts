@@ -1,4 +1,5 @@
-import type { DayTables } from '../../../server/engine/planner/day-tables.ts'
+import { type DayTables, rowAt } from '../../../server/engine/planner/day-tables.ts'
+import { simulate, type Track } from '../../../server/engine/planner/simulate.ts'
 import { uniform } from './cloudy-day.ts'
 
 /** What a small day may bring besides road and sun. */
@@ -77,3 +78,69 @@ export function smallDay(seed: number, wants: SmallWants): DayTables {
     targetJ: between(500_000, 1_500_000),
   }
 }
+
+/** What a tight day holds the car back by, besides its target. */
+export type Bind = 'target' | 'floor' | 'ceiling' | 'all'
+
+/** The same day under a cloud front that passes over the road, by the minute. */
+function underFront(day: DayTables, next: () => number): DayTables {
+  const between = (low: number, high: number): number => low + (high - low) * next()
+  const clock = { from: day.clock.from, step: 60, count: (day.clock.count - 1) * 10 + 1 }
+  const row = (value: (s: number) => number): Float64Array =>
+    Float64Array.from({ length: clock.count }, (_, k) => value(clock.from + k * clock.step))
+  const finer = (of: Float64Array): Float64Array => row((s) => rowAt(of, 0, day.clock, s))
+  const roadM = day.lengthM.reduce((sum, M) => sum + M, 0)
+  const clearW = between(700, 1000)
+  const depth = between(0.4, 0.95)
+  const [atM, atS] = [between(0, roadM), day.start.atS + between(0, roadM / 15)]
+  const driftMps = between(-18, 22)
+  const halfWidthM = between(3000, 12_000)
+  const harvestW = new Float64Array(day.pieces * clock.count)
+  let middleM = 0
+  for (let i = 0; i < day.pieces; i++) {
+    middleM += day.lengthM[i] / 2
+    const M = middleM
+    const offOf = (s: number): number => (M - atM - driftMps * (s - atS)) / halfWidthM
+    harvestW.set(
+      row((s) => clearW * (1 - depth * Math.exp(-(offOf(s) ** 2)))),
+      i * clock.count,
+    )
+    middleM += day.lengthM[i] / 2
+  }
+  const stops = day.stops.map((stop) => ({
+    ...stop,
+    lengthS: finer(stop.lengthS),
+    // A lifted array takes in more than a flat one: nothing is won by waiting in front of the stop.
+    gainJ: finer(stop.lengthS).map((S) => S * 1.1 * clearW),
+  }))
+  return { ...day, clock, harvestW, stops, duskGainJ: finer(day.duskGainJ) }
+}
+
+/**
+ * A small day on which energy is short: its target is what a drive at even speeds just meets; the floor touches that
+ * drive at one place, or its pack is too small for it.
+ */
+export function tightDay(seed: number, wants: SmallWants, bind: Bind): DayTables {
+  const next = uniform(90_000 + seed)
+  const wide = underFront(smallDay(seed, wants), next)
+  const n = wide.pieces
+  const share = 0.25 + 0.5 * next()
+  const speedMps = wide.fastestMps.map((fastest) => wide.slowestMps + share * (fastest - wide.slowestMps))
+  const driven = (day: DayTables): Track => simulate(day, { speedMps, waitS: new Float64Array(n + 1) })
+  const free = { ...wide, floorJ: new Float64Array(n + 1), targetJ: 0, pack: { ...wide.pack, ceilingJ: WIDE_J } }
+  const first = driven(free)
+  const highestJ = first.energyJ.reduce((most, J) => Math.max(most, J), first.duskJ)
+  const isSmall = bind === 'ceiling' || bind === 'all'
+  const ceilingJ = isSmall ? Math.max(highestJ - 150_000 * next(), free.start.energyJ) : WIDE_J
+  const day = { ...free, pack: { ...wide.pack, ceilingJ } }
+  const track = driven(day)
+  const edge = 1 + Math.floor(next() * n)
+  const floorJ =
+    bind === 'floor' || bind === 'all'
+      ? track.arrivalJ.map((J, i) => (i === edge ? J - 1000 : J - 200_000 * next()))
+      : day.floorJ
+  return { ...day, floorJ, targetJ: Math.min(track.duskJ - (bind === 'floor' ? 100_000 : 0), ceilingJ - 20_000) }
+}
+
+/** A ceiling that nothing reaches. [J] */
+const WIDE_J = 7_200_000
