@@ -1,4 +1,5 @@
 import type { BudgetDocument } from '../server/documents/budget.ts'
+import type { CampDocument } from '../server/documents/here.ts'
 import type { JudgementDocument } from '../server/documents/judgement.ts'
 import type { PointingDocument } from '../server/documents/pointing.ts'
 import type { SpeedsInput } from '../server/documents/speeds.ts'
@@ -55,6 +56,8 @@ export interface FollowedChoice {
   carId: string
   skyId: string
   speeds: SpeedsInput
+  /** Where the car is parked before the day's road ends. */
+  until: CampDocument | null
   version: number
   savedAt: string
 }

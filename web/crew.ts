@@ -19,6 +19,9 @@ export interface RaceDay {
   date: string
 }
 
+/** What is put before the crew. */
+export type Chosen = Pick<FollowedChoice, 'carId' | 'skyId' | 'speeds'> & { until?: FollowedChoice['until'] }
+
 const raceAt = (race: string): string => `${BASE}/races/${race}`
 const dayAt = ({ race, date }: RaceDay): string => `${raceAt(race)}/days/${date}`
 const post = (body: unknown): RequestInit => ({ method: 'POST', ...json(body) })
@@ -26,15 +29,15 @@ const post = (body: unknown): RequestInit => ({ method: 'POST', ...json(body) })
 export const followedOf = (day: RaceDay): Promise<Answer<FollowedChoice>> => ask(`${dayAt(day)}/choice`)
 
 /** Puts a choice before the crew: the first one without a version, another one over the version that was seen. */
-export const follow = (
-  day: RaceDay,
-  choice: Pick<FollowedChoice, 'carId' | 'skyId' | 'speeds'>,
-  version: number | null,
-): Promise<Answer<object>> =>
+export const follow = (day: RaceDay, { until, ...choice }: Chosen, version: number | null): Promise<Answer<object>> =>
   ask(`${dayAt(day)}/choice`, {
     method: 'PUT',
-    ...json(choice, version === null ? {} : { 'if-match': `"${version}"` }),
+    ...json(until ? { ...choice, until } : choice, version === null ? {} : { 'if-match': `"${version}"` }),
   })
+
+/** Takes the choice back that was seen: nothing is followed then. */
+export const unfollow = (day: RaceDay, version: number): Promise<Answer<true>> =>
+  tell(`${dayAt(day)}/choice`, { method: 'DELETE', headers: { 'if-match': `"${version}"` } })
 
 export const followedBudget = (day: RaceDay, signal: AbortSignal): Promise<Answer<FollowedBudget>> =>
   ask(`${dayAt(day)}/budget`, { signal })

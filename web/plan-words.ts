@@ -81,9 +81,19 @@ export function arrivalRange(arriveAt: string, { lateMin }: Ranges): { earliest:
   return { earliest: at(lateMin.p10), latest: at(lateMin.p90) }
 }
 
-/** Two energies as a range to 10 Wh; under an empty battery there is nothing to print. */
-export const whRange = ({ p10, p90 }: { p10: number; p90: number }): string =>
-  `${p10 < 5 ? 'empty' : whText(p10)}–${whText(Math.max(p90, 0))}`
+/** Two energies as a range to 10 Wh; below 0 the battery would have given more than it holds. */
+export function whRange({ p10, p90 }: { p10: number; p90: number }): string {
+  if (p90 < 0) return 'below 0'
+  return p10 < 0 ? `below 0 to ${whText(p90)}` : `${whText(p10)}–${whText(p90)}`
+}
+
+/** Where one day in ten, or more, would empty the battery at the plan's speeds; null where none does. */
+export function flatText({ closingWh, gates }: Ranges): string | null {
+  const gate = gates.find(({ wh }) => wh.p10 < 0)
+  if (gate === undefined && closingWh.p10 >= 0) return null
+  const place = gate === undefined ? 'the close' : gate.name
+  return `Below 0: on 1 day in 10, or more, these speeds empty the battery before ${place}; drive slower then.`
+}
 
 /** Where most of the days drawn that touch the reserve come lowest. */
 export function touchPlace({ touchesMostKm: km, gates }: Ranges): string {

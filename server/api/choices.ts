@@ -1,29 +1,40 @@
 import { z } from 'zod'
 import { checked, readJson } from '../compute/read-json.ts'
 import { budgetDocument } from '../documents/budget.ts'
+import { type CampDocument, campDocument } from '../documents/here.ts'
 import { slug } from '../documents/quantity.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { Fault } from '../errors.ts'
 import { dayTopic } from '../live/topics.ts'
+import type { StoredChoice } from '../store/choice-store.ts'
+import type { Conflict } from '../store/document-store.ts'
 import { linkOf } from './access.ts'
 import { answers, COMPUTE_ERRORS, STORE_ERRORS, WRITE_ERRORS } from './answers.ts'
 import { type Api, clientGone, type Needs, SPEEDS_LIMIT } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { dayParams, oneDay } from './days.ts'
 import { findRace } from './find.ts'
-import { followed, isLearned, moved, told } from './followed.ts'
+import { dayIn, followed, isLearned, moved, told } from './followed.ts'
 import { gather, makeForecast } from './make-forecast.ts'
 import { etag, ifMatch } from './preconditions.ts'
 import type { Turns } from './readings.ts'
 
 const newChoice = z
-  .strictObject({ carId: slug('id of a stored car'), skyId: slug('id of a stored sky'), speeds: speedsDocument })
+  .strictObject({
+    carId: slug('id of a stored car'),
+    skyId: slug('id of a stored sky'),
+    speeds: speedsDocument,
+    until: campDocument
+      .describe('where the car is parked before the day’s road ends; left out, the day drives its road')
+      .optional(),
+  })
   .meta({ title: 'Choice' })
 
 const choiceEntry = z.strictObject({
   carId: z.string(),
   skyId: z.string(),
   speeds: speedsDocument,
+  until: campDocument.nullable().describe('where the car is parked before the day’s road ends'),
   version: z.int().describe('counts up with every choice for the day'),
   savedAt: z.string().describe('instant (ISO 8601, UTC)'),
 })
@@ -52,24 +63,26 @@ export function choiceRoutes(api: Api, needs: Needs, turns: Turns): void {
     return entryOf(choice)
   })
   putRoute(api, needs, turns)
+  takeBackRoute(api, needs, turns)
 }
 
-const entryOf = ({ carId, skyId, speeds, version, savedAt }: z.input<typeof choiceEntry> | StoredEntry) => ({
+const entryOf = ({ carId, skyId, speeds, until, version, savedAt }: StoredEntry) => ({
   carId,
   skyId,
   speeds,
+  until: (until ?? null) as CampDocument | null,
   version,
   savedAt,
 })
 
-type StoredEntry = Omit<z.input<typeof choiceEntry>, 'speeds'> & { speeds: unknown }
+type StoredEntry = Pick<StoredChoice, 'carId' | 'skyId' | 'speeds' | 'until' | 'version' | 'savedAt'>
 
 function putRoute(api: Api, needs: Needs, turns: Turns): void {
   const schema = {
     tags: ['following'],
     summary: 'Choose what the crew follows on a day',
     description:
-      'Without If-Match it is the first choice of the day. With If-Match it replaces that version if it still holds.',
+      'Without If-Match it is the first choice of the day, or the first after the last was taken back. With If-Match it replaces that version if it still holds.',
     params: dayParams,
     querystring: noQuery,
     body: newChoice,
@@ -126,20 +139,62 @@ async function choose(needs: Needs, { raceId, date, wanted, ifMatch: named, by, 
   const { store, live } = needs
   const holds = await store.choices.get(raceId, date)
   refuseStale(date, holds?.version ?? null, named)
-  const { carId, skyId, speeds } = wanted
+  const { carId, skyId, speeds, until } = wanted
   const documents = await gather(needs, raceId, wanted)
-  const { forecast } = await makeForecast(needs, documents, { speeds, date }, signal)
-  const choice = { carId, skyId, speeds, forecastId: forecast.id }
+  const { forecast } = await makeForecast(needs, documents, { speeds, date, until }, signal)
+  const choice = { carId, skyId, speeds, until, forecastId: forecast.id }
   const saved = await store.choices.put({ raceId, date }, holds?.version ?? null, choice, by)
-  if (saved === 'missing' || 'conflict' in saved) {
-    const now = saved === 'missing' ? null : saved.conflict
-    throw new Fault('version-changed', `The choice for ${date} has changed${now === null ? '' : ` to version ${now}`}.`)
-  }
+  if (saved === 'missing' || 'conflict' in saved) throw changed(date, saved)
   await live.publish(dayTopic(raceId, date), 'choice', { carId, skyId, version: saved.version, savedAt: saved.savedAt })
   const before = holds === null ? null : await store.forecasts.get(holds.forecastId)
   const change = await told(needs, { raceId, date, before, after: forecast }, { cause: 'choice', readingId: null, by })
-  const { version, savedAt } = saved
-  return { carId, skyId, speeds, version, savedAt, forecastId: forecast.id, moved: change === null ? [] : [change] }
+  const moves = change === null ? [] : [change]
+  return { ...entryOf({ ...choice, ...saved }), forecastId: forecast.id, moved: moves }
+}
+
+function changed(date: string, saved: Conflict | 'missing'): Fault {
+  const now = saved === 'missing' ? '' : ` to version ${saved.conflict}`
+  return new Fault('version-changed', `The choice for ${date} has changed${now}.`)
+}
+
+/** Takes the choice back, so that nothing is followed on the day. */
+function takeBackRoute(api: Api, needs: Needs, turns: Turns): void {
+  const schema = {
+    tags: ['following'],
+    summary: 'Follow nothing on a day any more',
+    description: 'Takes the version named by If-Match back if it still holds; its forecasts and history stay.',
+    params: dayParams,
+    querystring: noQuery,
+    response: answers({ 204: { description: 'nothing is followed on the day now' } }, [
+      ...GET_ERRORS,
+      'bad-precondition',
+      'precondition-required',
+      'version-changed',
+      ...WRITE_ERRORS,
+      ...STORE_ERRORS,
+    ]),
+  }
+  api.delete('/races/:id/days/:date/choice', { schema }, async (request, reply) => {
+    const { id: raceId, date } = request.params
+    oneDay((await findRace(needs.store, raceId)).race, date)
+    const named = ifMatch(request.headers)
+    await turns(raceId, () => takeBack(needs, { raceId, date, ifMatch: named, by: linkOf(request) }))
+    return reply.code(204).send()
+  })
+}
+
+async function takeBack(
+  { store, live }: Needs,
+  { raceId, date, ifMatch: named, by }: Pick<Choosing, 'raceId' | 'date' | 'ifMatch' | 'by'>,
+): Promise<void> {
+  const { choice, forecast } = await followed(store, raceId, date)
+  refuseStale(date, choice.version, named)
+  const saved = await store.choices.takeBack({ raceId, date }, choice.version, by)
+  if (saved === 'missing' || 'conflict' in saved) throw changed(date, saved)
+  const closingWhBefore = dayIn(forecast, date)?.closing.wh ?? null
+  const move = { raceId, date, cause: 'choice' as const, readingId: null, pointsPct: {}, forecastId: forecast.id, by }
+  await store.moves.add({ ...move, closingWhBefore, closingWhAfter: null })
+  await live.publish(dayTopic(raceId, date), 'choice', { carId: null, skyId: null, ...saved })
 }
 
 function refuseStale(date: string, version: number | null, named: ReturnType<typeof ifMatch>): void {

@@ -9,7 +9,7 @@ import type { MoveCause } from '../store/move-store.ts'
 import type { Store } from '../store/store.ts'
 import type { Needs } from './api.ts'
 import { readingsOf } from './held-readings.ts'
-import { gatherAgain, makeForecast } from './make-forecast.ts'
+import { gatherAgain, makeForecast, type Wanted } from './make-forecast.ts'
 
 export const moved = z.strictObject({
   date: z.string().describe('the day whose budget moved'),
@@ -92,15 +92,15 @@ async function dayAnew(needs: Needs, raceId: string, choice: StoredChoice, cause
   const { store } = needs
   const before = await store.forecasts.get(choice.forecastId)
   if (before === null) return null
-  const { date, speeds, version } = choice
-  const made = await anew(needs, before, { speeds, date })
+  const { date, speeds, until, version } = choice
+  const made = await anew(needs, before, { speeds, date, until: until ?? undefined })
   if (made === null || made.id === before.id) return null
   if (!(await store.choices.setForecast(raceId, date, version, made.id))) return null
   return told(needs, { raceId, date, before, after: made }, cause)
 }
 
 /** Null where the documents no longer give a forecast: the budget that is followed stays. */
-async function anew(needs: Needs, before: StoredForecast, wanted: { speeds: unknown; date: string }) {
+async function anew(needs: Needs, before: StoredForecast, wanted: Wanted) {
   try {
     return (await makeForecast(needs, await gatherAgain(needs, before), wanted)).forecast
   } catch (error) {

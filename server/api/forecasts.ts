@@ -1,6 +1,8 @@
 import { z } from 'zod'
 import { readJson, checked } from '../compute/read-json.ts'
 import { budgetDocument } from '../documents/budget.ts'
+import { forecastRequest } from '../documents/forecast.ts'
+import { campDocument, hereDocument } from '../documents/here.ts'
 import { date, slug } from '../documents/quantity.ts'
 import { speedsDocument } from '../documents/speeds.ts'
 import { Fault } from '../errors.ts'
@@ -17,6 +19,8 @@ const newForecast = z
     skyId: slug('id of a stored sky'),
     speeds: speedsDocument,
     date: date('the one day wanted; earlier days are still worked out for its opening').optional(),
+    from: forecastRequest.shape.from,
+    until: forecastRequest.shape.until,
   })
   .meta({ title: 'New forecast' })
 
@@ -33,7 +37,11 @@ const forecastEntry = z.strictObject({
   skyVersion: version('sky'),
   routeVersions: z.record(z.string(), version('route')),
   speeds: speedsDocument,
-  inputsHash: z.string().describe('SHA-256 over the canonical JSON of documents, speeds, date and what readings show'),
+  from: hereDocument.nullable().describe('where in the middle of a day it begins'),
+  until: campDocument.nullable().describe('where it ends before its road does'),
+  inputsHash: z
+    .string()
+    .describe('SHA-256 over the canonical JSON of documents, speeds, date, from, until and what readings show'),
   engineVersion: z.string(),
 })
 const forecastAnswer = forecastEntry.extend({ budget: budgetDocument })

@@ -20,6 +20,9 @@ export interface Gathered {
 export interface Wanted {
   speeds: unknown
   date?: string
+  /** Where in the middle of a day it begins, and where it ends before its road does. */
+  from?: unknown
+  until?: unknown
 }
 
 /** The versions of all that was gathered, in one order. */
@@ -68,11 +71,11 @@ export async function gatherAgain({ store }: Needs, made: StoredForecast): Promi
 export async function makeForecast(
   needs: Needs,
   { race, car, sky, routes }: Gathered,
-  { speeds, date }: Wanted,
+  wanted: Wanted,
   signal?: AbortSignal,
 ): Promise<{ forecast: StoredForecast; isNew: boolean }> {
   const { store, compute } = needs
-  const inputs = await inputsOf(needs, { race, car, sky, routes }, { speeds, date }, signal)
+  const inputs = await inputsOf(needs, { race, car, sky, routes }, wanted, signal)
   const inputsHash = await compute.run('inputs-hash', inputs, signal)
   const made = {
     raceId: race.id,
@@ -82,7 +85,9 @@ export async function makeForecast(
     skyId: sky.id,
     skyVersion: sky.version,
     routeVersions: Object.fromEntries([...routes].map(([id, route]) => [id, route.version])),
-    speeds,
+    speeds: wanted.speeds,
+    from: wanted.from ?? null,
+    until: wanted.until ?? null,
     inputsHash,
     engineVersion: ENGINE_VERSION,
   }
@@ -95,16 +100,24 @@ export async function makeForecast(
 }
 
 /** The documents with the losses that the race's readings show. */
-async function inputsOf(needs: Needs, gathered: Gathered, { speeds, date }: Wanted, signal?: AbortSignal) {
+async function inputsOf(needs: Needs, gathered: Gathered, wanted: Wanted, signal?: AbortSignal) {
+  const { speeds, date, from, until } = wanted
   const { race, car, sky, routes } = gathered
   const bodies = Object.fromEntries([...routes].map(([id, route]) => [id, route.body]))
   const learned = await learnedLosses(needs, race.id, car, signal)
-  return { car: car.body, race: race.body, sky: sky.body, routes: bodies, speeds, date, learned }
+  return { car: car.body, race: race.body, sky: sky.body, routes: bodies, speeds, date, from, until, learned }
 }
 
 /** All that a stored forecast's day is worked out from, its documents in the versions that it used. */
 export const inputsAgain = async (needs: Needs, made: StoredForecast, date: string, signal?: AbortSignal) =>
-  inputsOf(needs, await gatherAgain(needs, made), { speeds: made.speeds, date }, signal)
+  inputsOf(needs, await gatherAgain(needs, made), { ...drivenAs(made), date }, signal)
+
+/** How a stored forecast is driven. */
+export const drivenAs = ({ speeds, from, until }: Pick<StoredForecast, 'speeds' | 'from' | 'until'>): Wanted => ({
+  speeds,
+  from: from ?? undefined,
+  until: until ?? undefined,
+})
 
 /** Losses that a race's forecasts use in place of the car's own; undefined where its bench holds. */
 export async function learnedLosses(

@@ -43,7 +43,10 @@ export function campName(day: DrivenDay, piece: number): string {
 export function campOf(
   day: DrivenDay,
   { endPiece }: Pick<Furthest, 'endPiece'>,
-): Pick<PlanDocument, 'camp' | 'outcome'> {
+): {
+  camp: NonNullable<PlanDocument['camp']>
+  outcome: PlanDocument['outcome']
+} {
   const { course, stages, days } = day.race
   const s = course.stages.findIndex((stage) => endPiece <= stage.endPiece)
   const { fromM, endPiece: stageEnd, toM } = course.stages[s]

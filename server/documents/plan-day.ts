@@ -57,8 +57,10 @@ export function planDocuments(request: PlanRequest, tell: Tell = () => {}): Plan
   if (furthest === null) return { ...head, ...why }
   tell({ step: 'Drawing days that differ', share: 0.8 })
   const cut = { ...timed, race: furthest.race }
-  const { impossible } = why
-  return { ...head, ...planned(request, cut, furthest.plan, targetCharge), ...campOf(timed, furthest), impossible }
+  const { camp, outcome } = campOf(timed, furthest)
+  // Tables guess how far the hours reach; the plan that goes furthest knows.
+  const impossible = { ...why.impossible, reachedKm: camp.km }
+  return { ...head, ...planned(request, cut, furthest.plan, targetCharge), camp, outcome, impossible }
 }
 
 /** Is told how far the work is. */

@@ -127,7 +127,9 @@ export const planDocument = z
     impossible: z
       .strictObject({
         why: z.enum(['hours', 'reserve', 'target']),
-        reachedKm: km('how far the car comes in the hours with the reserve'),
+        reachedKm: km(
+          'how far the car comes: where a plan goes furthest the end of that, else about how far hours and reserve reach',
+        ),
         mostAtCloseWh: wh('most that the day can close with').nullable(),
         nearest: z
           .array(z.strictObject({ what: z.enum(['target', 'reserve', 'later']), text: z.string(), value: z.number() }))

@@ -105,7 +105,7 @@ function driven(request: RacePlanRequest, base: DrivenDay, planned: PlannedDay &
   const text =
     camp === null
       ? drivenText({ date, finish, at, drivingMin, closingPct }, best.verdict)
-      : `${dayName(date)}: ${camp.outcome.text}${camp.camp?.goesOn === true ? ' The next day goes on from there.' : ''}`
+      : `${dayName(date)}: ${camp.outcome.text}${camp.camp.goesOn ? ' The next day goes on from there.' : ''}`
   return {
     state: isCamp ? ('camp' as const) : ('driven' as const),
     text,

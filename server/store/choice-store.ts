@@ -7,6 +7,8 @@ export interface Choice {
   carId: string
   skyId: string
   speeds: unknown
+  /** Where the car is parked before the day's road ends; null or left out where the day drives its road. */
+  until?: unknown
 }
 
 /** A choice with its day, version and newest forecast. `savedAt` is ISO 8601 in UTC. */
@@ -18,14 +20,14 @@ export interface StoredChoice extends Choice {
 }
 
 export interface ChoiceStore {
-  /** The day's choice that holds. */
+  /** The day's choice that holds; null where none was made or the last was taken back. */
   get(raceId: string, date: string): Promise<StoredChoice | null>
   /** The choice that holds on each day of a race, by date. */
   list(raceId: string): Promise<StoredChoice[]>
   /** Races with a choice that holds whose forecast another engine made. */
   outdated(engineVersion: string): Promise<string[]>
   /**
-   * Chooses for a day, starting from the version that holds, null for the first.
+   * Chooses for a day, starting from the version that holds, null where none does.
    *
    * @param forecastId  a saved forecast made from the choice
    */
@@ -33,6 +35,12 @@ export interface ChoiceStore {
     day: { raceId: string; date: string },
     expectedVersion: number | null,
     choice: Choice & { forecastId: string },
+    by: string | null,
+  ): Promise<Saved | Conflict | 'missing'>
+  /** Takes the choice that holds back, so that nothing is followed; its versions stay and count on. */
+  takeBack(
+    day: { raceId: string; date: string },
+    version: number,
     by: string | null,
   ): Promise<Saved | Conflict | 'missing'>
   /** Names a newer forecast of the same choice; false when another choice holds by now. */
@@ -47,9 +55,11 @@ export interface ChoiceStore {
 export function choiceStore(sql: Sql): ChoiceStore {
   const savedAt = (): Fragment => sql`${utc(sql, 'saved_at')} as "savedAt"`
   const current = (where: Fragment): Fragment => sql`
-    select distinct on (date) date, version, car_id as "carId", sky_id as "skyId", speeds,
-      forecast_id as "forecastId", ${savedAt()}
-    from day_choices where ${where} order by date, version desc`
+    select date, version, "carId", "skyId", speeds, until, "forecastId", "savedAt" from (
+      select distinct on (date) date, version, car_id as "carId", sky_id as "skyId", speeds, until_camp as until,
+        forecast_id as "forecastId", is_none, ${savedAt()}
+      from day_choices where ${where} order by date, version desc
+    ) last where not is_none order by date`
 
   const get: ChoiceStore['get'] = async (raceId, date) => {
     if (!isSlug(raceId) || !isDay(date)) return null
@@ -75,15 +85,16 @@ export function choiceStore(sql: Sql): ChoiceStore {
       const rows = await sql<{ raceId: string }[]>`
         select distinct c.race_id as "raceId"
         from (
-          select distinct on (race_id, date) race_id, forecast_id from day_choices order by race_id, date, version desc
+          select distinct on (race_id, date) race_id, forecast_id, is_none
+          from day_choices order by race_id, date, version desc
         ) c
         join forecasts f on f.id = c.forecast_id
-        where f.engine_version <> ${engineVersion}
+        where not c.is_none and f.engine_version <> ${engineVersion}
         order by 1`
       return rows.map((row) => row.raceId)
     },
 
-    async put({ raceId, date }, expectedVersion, { carId, skyId, speeds, forecastId }, by) {
+    async put({ raceId, date }, expectedVersion, { carId, skyId, speeds, until = null, forecastId }, by) {
       checkField('raceId', raceId, isSlug(raceId), '1 to 64 lower-case letters, digits or hyphens')
       checkField('date', date, isDay(date), 'a day as YYYY-MM-DD')
       checkForecast(forecastId)
@@ -91,17 +102,35 @@ export function choiceStore(sql: Sql): ChoiceStore {
       const expected = expectedVersion ?? 0
       if (expectedVersion !== null && !isVersion(expectedVersion)) return conflictOrMissing(raceId, date)
       const rows = await saving(
-        { carId, skyId, speeds },
+        { carId, skyId, speeds, until },
         () => sql<Saved[]>`
-        insert into day_choices (race_id, date, version, car_id, sky_id, speeds, forecast_id, created_by)
-        select ${raceId}, ${date}, ${expected}::integer + 1, ${carId}, ${skyId}, ${json(sql, 'speeds', speeds)},
-          ${forecastId}::uuid, ${by}::uuid
-        where ${expected}::integer = (
-          select coalesce(max(version), 0) from day_choices where race_id = ${raceId} and date = ${date}
-        )
+        insert into day_choices (race_id, date, version, car_id, sky_id, speeds, until_camp, forecast_id, created_by)
+        select ${raceId}, ${date}, last.version + 1, ${carId}, ${skyId}, ${json(sql, 'speeds', speeds)},
+          ${until === null ? null : json(sql, 'until', until)}, ${forecastId}::uuid, ${by}::uuid
+        from (
+          select coalesce(max(version), 0) as version, coalesce(max(version) filter (where not is_none), 0) as held
+          from day_choices where race_id = ${raceId} and date = ${date}
+        ) last
+        where ${expected}::integer = case when last.held = last.version then last.version else 0 end
         on conflict (race_id, date, version) do nothing
         returning version, ${savedAt()}`,
       )
+      return rows.length > 0 ? rows[0] : conflictOrMissing(raceId, date)
+    },
+
+    async takeBack({ raceId, date }, version, by) {
+      checkBy(by)
+      if (!isSlug(raceId) || !isDay(date) || !isVersion(version)) return conflictOrMissing(raceId, date)
+      const rows = await sql<Saved[]>`
+        insert into day_choices
+          (race_id, date, version, car_id, sky_id, speeds, until_camp, forecast_id, created_by, is_none)
+        select race_id, date, version + 1, car_id, sky_id, speeds, until_camp, forecast_id, ${by}::uuid, true
+        from day_choices
+        where race_id = ${raceId} and date = ${date} and version = ${version} and not is_none and version = (
+          select max(version) from day_choices where race_id = ${raceId} and date = ${date}
+        )
+        on conflict (race_id, date, version) do nothing
+        returning version, ${savedAt()}`
       return rows.length > 0 ? rows[0] : conflictOrMissing(raceId, date)
     },
 

@@ -15,6 +15,9 @@ export interface NewForecast {
   /** Version of each route used, by the route's id. */
   routeVersions: Record<string, number>
   speeds: unknown
+  /** Where in the middle of a day it begins, and where it ends before its road does; null where it does neither. */
+  from: unknown
+  until: unknown
   inputsHash: string
   engineVersion: string
   budget: unknown
@@ -56,7 +59,7 @@ export function forecastStore(sql: Sql): ForecastStore {
   const entry = (): Fragment => sql`
     id, race_id as "raceId", race_version as "raceVersion", car_id as "carId", car_version as "carVersion",
     sky_id as "skyId", sky_version as "skyVersion", route_versions as "routeVersions", speeds,
-    inputs_hash as "inputsHash", engine_version as "engineVersion", ${createdAt()}`
+    from_here as "from", until_camp as until, inputs_hash as "inputsHash", engine_version as "engineVersion", ${createdAt()}`
 
   const get = async (id: string): Promise<StoredForecast | null> => {
     if (!isUuid(id)) return null
@@ -71,10 +74,11 @@ export function forecastStore(sql: Sql): ForecastStore {
         sql<SavedForecast[]>`
         insert into forecasts (
           id, race_id, race_version, car_id, car_version, sky_id, sky_version,
-          route_versions, speeds, inputs_hash, engine_version, budget
+          route_versions, speeds, from_here, until_camp, inputs_hash, engine_version, budget
         ) values (
           ${f.id ?? sql`gen_random_uuid()`}, ${f.raceId}, ${f.raceVersion}, ${f.carId}, ${f.carVersion},
           ${f.skyId}, ${f.skyVersion}, ${json(sql, 'routeVersions', f.routeVersions)}, ${json(sql, 'speeds', f.speeds)},
+          ${f.from === null ? null : json(sql, 'from', f.from)}, ${f.until === null ? null : json(sql, 'until', f.until)},
           ${f.inputsHash}, ${f.engineVersion}, ${json(sql, 'budget', f.budget)}
         )
         on conflict (id) do nothing

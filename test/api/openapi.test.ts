@@ -48,7 +48,7 @@ const ADDRESSES: Record<string, string[]> = {
   '/api/v1/races/{id}/race-plans': ['get', 'post'],
   '/api/v1/race-plans/{id}': ['delete', 'get'],
   '/api/v1/races/{id}/events': ['get'],
-  '/api/v1/races/{id}/days/{date}/choice': ['get', 'put'],
+  '/api/v1/races/{id}/days/{date}/choice': ['delete', 'get', 'put'],
   '/api/v1/races/{id}/days/{date}/budget': ['get'],
   '/api/v1/races/{id}/days/{date}/pointing': ['get'],
   '/api/v1/races/{id}/days/{date}/events': ['get'],

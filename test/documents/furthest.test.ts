@@ -35,6 +35,11 @@ describe('a day whose road cannot be finished in its hours', { timeout: 60_000 }
     expect(spareS).toBeLessThan(90)
   })
 
+  test('comes as far as the day is said to reach', () => {
+    expect(made.impossible?.why).toBe('hours')
+    expect(made.impossible?.reachedKm).toBe(camp?.km)
+  })
+
   test('keeps reserve and the charge wanted at the close', () => {
     expect(best?.closingWh).toBeGreaterThanOrEqual(target.wh)
     expect(best?.leastSpareWh).toBeGreaterThanOrEqual(0)

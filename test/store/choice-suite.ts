@@ -31,6 +31,7 @@ export function choiceSuite(open: () => Promise<TestDatabase>): void {
       carId: 'weaver-2',
       skyId: 'saturday',
       speeds: { kmh: 71.5 },
+      until: null,
       forecastId,
     })
     expect(await choices.get('first', '2026-10-11')).toBeNull()
@@ -80,6 +81,40 @@ export function choiceSuite(open: () => Promise<TestDatabase>): void {
     expect(await choices.setForecast('anew', '2026-10-10', 1, anew)).toBe(false)
     expect(await choices.get('anew', '2026-10-10')).toMatchObject({ forecastId, version: 2 })
     expect(await choices.setForecast('anew', '2026-10-11', 1, anew)).toBe(false)
+  })
+
+  it('a choice may end at a camp', async () => {
+    const until = { stage: 'second', km: 31.5 }
+    const choice = { carId: 'weaver-2', skyId: 'saturday', speeds: {}, until, forecastId }
+    await choices.put({ raceId: 'camp', date: '2026-10-10' }, null, choice, null)
+    expect(await choices.get('camp', '2026-10-10')).toMatchObject({ until })
+    await put('camp', 1, {})
+    expect(await choices.get('camp', '2026-10-10')).toMatchObject({ until: null, version: 2 })
+  })
+
+  it('one that is taken back leaves the day without a choice, and versions count on', async () => {
+    const day = { raceId: 'back', date: '2026-10-10' }
+    await put('back', null, { kmh: 70 })
+    await put('back', null, { kmh: 71 }, '2026-10-11')
+    expect(await choices.takeBack(day, 2, null)).toEqual({ conflict: 1 })
+    const outcomes = await Promise.all(Array.from({ length: 10 }, () => choices.takeBack(day, 1, null)))
+    expect(outcomes.filter((one) => typeof one === 'object' && 'version' in one)).toHaveLength(1)
+    expect(outcomes.filter((one) => one === 'missing')).toHaveLength(9)
+    expect(await choices.get('back', day.date)).toBeNull()
+    expect((await choices.list('back')).map(({ date }) => date)).toEqual(['2026-10-11'])
+    expect(await choices.takeBack(day, 2, null)).toBe('missing')
+    expect(await choices.setForecast('back', day.date, 1, await someForecast(database.sql))).toBe(false)
+    expect(await put('back', 1, { kmh: 72 })).toBe('missing')
+    expect(await put('back', null, { kmh: 73 })).toMatchObject({ version: 3 })
+    expect(await choices.get('back', day.date)).toMatchObject({ speeds: { kmh: 73 }, version: 3 })
+    expect(await put('back', null, { kmh: 74 })).toEqual({ conflict: 3 })
+  })
+
+  it('one that is taken back is not made anew for another engine', async () => {
+    await put('gone', null, { kmh: 70 })
+    expect(await choices.outdated('another')).toContain('gone')
+    await choices.takeBack({ raceId: 'gone', date: '2026-10-10' }, 1, null)
+    expect(await choices.outdated('another')).not.toContain('gone')
   })
 
   it('what cannot be kept is refused by the name of its field', async () => {

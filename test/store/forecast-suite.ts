@@ -11,6 +11,8 @@ const forecast = (more: Partial<NewForecast> = {}): NewForecast => ({
   skyId: 'saturday',
   skyVersion: 7,
   routeVersions: { 'saltpan-twin-wells': 1, 'twin-wells-quiver-ridge': 4 },
+  from: null,
+  until: null,
   speeds: { kmh: 72 },
   inputsHash: 'a'.repeat(64),
   engineVersion: '0.1.0',

@@ -11,6 +11,8 @@ export async function someForecast(sql: Sql): Promise<string> {
     skyId: 'saturday',
     skyVersion: 1,
     routeVersions: {},
+    from: null,
+    until: null,
     speeds: { kmh: 72 },
     inputsHash: 'a'.repeat(64),
     engineVersion: '0.1.0',

@@ -55,7 +55,14 @@ describe('what the crew follows', () => {
     date: '2026-10-17',
     speeds: { kind: 'sections' as const, speedKmh: 70, sections },
   }
-  const followed = { carId: 'weaver-2', skyId: 'forecast-1', speeds: shown.speeds, version: 1, savedAt: '' }
+  const followed = {
+    carId: 'weaver-2',
+    skyId: 'forecast-1',
+    speeds: shown.speeds,
+    version: 1,
+    until: null,
+    savedAt: '',
+  }
 
   it('is told apart from the fastest speed and from another plan, however a store orders its fields', () => {
     const turned = [{ toKm: 15, stage: 'out', speedKmh: 80, fromKm: 0 }]

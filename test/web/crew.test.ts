@@ -4,6 +4,7 @@ import { choiceOf, isSame } from '../../web/choice.ts'
 import type { FollowedChoice } from '../../web/crew-types.ts'
 
 const FOLLOWED: FollowedChoice = {
+  until: null,
   carId: 'weaver-2',
   skyId: 'plateau-forecast',
   speeds: { kind: 'constant', speedKmh: 78 },

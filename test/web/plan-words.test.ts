@@ -2,6 +2,7 @@ import { describe, expect, it } from 'vitest'
 import {
   arrivalRange,
   chanceText,
+  flatText,
   lengthText,
   limitText,
   mergedSections,
@@ -77,7 +78,16 @@ describe('the words of a plan', () => {
   it('give ranges with their place: arrival by the clock, the reserve by its gate', () => {
     expect(arrivalRange(plan.forPeople.arriveAt, ranges)).toEqual({ earliest: '13:48', latest: '14:25' })
     expect(plain(whRange({ p10: 1234.9, p90: 2529 }))).toBe('1 230–2 530')
-    expect(whRange({ p10: -50, p90: 640 })).toBe('empty–640')
+    expect(whRange({ p10: -50, p90: 640 })).toBe('below 0 to 640')
+    expect(whRange({ p10: -500, p90: -40 })).toBe('below 0')
+    expect(whRange({ p10: 2, p90: 640 })).toBe('0–640')
+    expect(flatText(ranges)).toBeNull()
+    const [first, ...others] = ranges.gates
+    const low = { ...ranges, gates: [first, ...others.map((gate) => ({ ...gate, wh: { ...gate.wh, p10: -20 } }))] }
+    expect(flatText(low)).toBe(
+      'Below 0: on 1 day in 10, or more, these speeds empty the battery before Twin Wells; drive slower then.',
+    )
+    expect(flatText({ ...ranges, closingWh: { p10: -1, p50: 5, p90: 9 } })).toContain('before the close')
     expect(touchPlace(ranges)).toBe('most often at Blue Gate, km 400')
     expect(touchPlace({ ...ranges, touchesMostKm: 312 })).toBe('most often near km 312')
     expect(touchPlace({ ...ranges, touchesMostKm: null })).toBe('nowhere on the days drawn')

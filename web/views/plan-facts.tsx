@@ -1,6 +1,6 @@
 import { clock, grouped, THIN, whText } from '../format.ts'
 import type { Planned } from '../plan-types.ts'
-import { arrivalRange, chanceText, touchPlace, whRange } from '../plan-words.ts'
+import { arrivalRange, chanceText, flatText, touchPlace, whRange } from '../plan-words.ts'
 import { Wh } from './figures.tsx'
 
 /** Arrival, closing balance and reserve, each with its range. */
@@ -39,7 +39,7 @@ export function PlanFacts({ plan }: { plan: Planned }) {
         <div>
           <dd class="note">
             Ranges are likely ranges: 8 days in 10 fall inside, of {grouped(ranges.members)} days drawn. Below the
-            wanted close: {chanceText(ranges.missesTargetPct)}.
+            wanted close: {chanceText(ranges.missesTargetPct)}. {flatText(ranges)}
           </dd>
         </div>
       )}

@@ -1,9 +1,8 @@
 import { signal, useSignal } from '@preact/signals'
 import { useEffect } from 'preact/hooks'
-import type { SpeedsInput } from '../../server/documents/speeds.ts'
-import type { Refusal } from '../api.ts'
+import type { Answer, Refusal } from '../api.ts'
 import { sectionsOf, wayOf } from '../choice.ts'
-import { follow, type RaceDay } from '../crew.ts'
+import { type Chosen, follow, type RaceDay, unfollow } from '../crew.ts'
 import { followedOn, loadFollowed } from '../crew-state.ts'
 import type { FollowedChoice } from '../crew-types.ts'
 import { clockAt } from '../format.ts'
@@ -12,8 +11,8 @@ import type { PlanAnswer, Planned } from '../plan-types.ts'
 import { steadyText } from '../plan-words.ts'
 import { Conflict } from './conflict.tsx'
 
-/** What was followed before the last publishing from this page. */
-const replaced = signal<(RaceDay & { choice: FollowedChoice }) | null>(null)
+/** What was followed before the last publishing from this page; null where nothing was. */
+const replaced = signal<(RaceDay & { choice: FollowedChoice | null }) | null>(null)
 
 interface PublishProps {
   entry: PlanAnswer
@@ -30,24 +29,28 @@ export function PlanPublish({ entry, plan }: PublishProps) {
   const known = followedOn(day)
   const { text, isOffered } = steadyText(plan)
   const speeds = isSteady.value && plan.steady !== null ? plan.steady.speeds : plan.forPeople.speeds
-  const isRecord = isFollowed(known?.choice ?? null, entry, speeds)
+  const isRecord = isFollowed(known?.choice ?? null, entry, { speeds, until: plan.camp?.until ?? null })
   const before = replaced.value?.race === day.race && replaced.value.date === day.date ? replaced.value : null
 
-  const put = async (choice: Pick<FollowedChoice, 'carId' | 'skyId' | 'speeds'>): Promise<boolean> => {
-    const answer = await follow(day, choice, followedOn(day)?.choice?.version ?? null)
+  const until = plan.camp?.until ?? null
+  const change = async (ask: (version: number | null) => Promise<Answer<unknown>>): Promise<boolean> => {
+    const answer = await ask(followedOn(day)?.choice?.version ?? null)
     refused.value = answer.refusal ?? null
     await loadFollowed(day)
     return answer.refusal === undefined
   }
   const publish = async (): Promise<void> => {
     const was = followedOn(day)?.choice ?? null
-    const isDone = await put({ carId: entry.carId, skyId: entry.skyId, speeds })
-    if (isDone) replaced.value = was === null ? null : { ...day, choice: was }
+    const chosen = { carId: entry.carId, skyId: entry.skyId, speeds, until }
+    if (await change((version) => follow(day, chosen, version))) replaced.value = { ...day, choice: was }
   }
   const undo = async (): Promise<void> => {
     if (before === null) return
-    const { carId, skyId, speeds: those } = before.choice
-    if (await put({ carId, skyId, speeds: those })) replaced.value = null
+    const was = before.choice
+    const isDone = await change((version) =>
+      was === null ? unfollow(day, version ?? 0) : follow(day, chosenOf(was), version),
+    )
+    if (isDone) replaced.value = null
   }
   return (
     <section class="sec pad publish" aria-labelledby="publish-title" id="publish">
@@ -70,6 +73,9 @@ export function PlanPublish({ entry, plan }: PublishProps) {
           ? `This is the plan of record, ${sinceText(known?.choice, plan)}.`
           : standingText(known?.choice, plan)}
       </p>
+      {plan.camp?.goesOn === true && (
+        <p class="note gap">Budgets of the days after it do not start from this camp: plan the race for that.</p>
+      )}
       {refused.value !== null && <Conflict refusal={refused.value} />}
       <div class="steps">
         {known !== null && !isRecord && (
@@ -79,7 +85,7 @@ export function PlanPublish({ entry, plan }: PublishProps) {
         )}
         {before !== null && isRecord && (
           <button type="button" class="btn line" onClick={() => void undo()}>
-            Undo: follow {wayOf(before.choice.speeds)} again
+            Undo: follow {before.choice === null ? 'nothing' : wayOf(before.choice.speeds)} again
           </button>
         )}
       </div>
@@ -87,11 +93,19 @@ export function PlanPublish({ entry, plan }: PublishProps) {
   )
 }
 
-/** Whether the crew follows these speeds with the same car and sky. */
-const isFollowed = (followed: FollowedChoice | null, { carId, skyId }: PlanAnswer, speeds: SpeedsInput): boolean =>
+const chosenOf = ({ carId, skyId, speeds, until }: FollowedChoice): Chosen => ({ carId, skyId, speeds, until })
+
+/** Whether the crew follows these speeds to the same camp with the same car and sky. */
+const isFollowed = (
+  followed: FollowedChoice | null,
+  { carId, skyId }: PlanAnswer,
+  { speeds, until }: Pick<FollowedChoice, 'speeds' | 'until'>,
+): boolean =>
   followed !== null &&
   followed.carId === carId &&
   followed.skyId === skyId &&
+  followed.until?.stage === until?.stage &&
+  followed.until?.km === until?.km &&
   followed.speeds.kind === speeds.kind &&
   sectionsOf(followed.speeds) === sectionsOf(speeds)
 

@@ -59,12 +59,7 @@ function Shown({ day }: { day: RacePlanDay }) {
       </div>
       <div class="left">
         <PlanAsk day={day} />
-        {plan !== null && entry !== null && isPlanned(plan) && plan.camp === null && (
-          <PlanPublish key={entry.id} entry={entry} plan={plan} />
-        )}
-        {plan !== null && plan.camp !== null && (
-          <p class="note pad gap">A plan that ends on the road is for reading: what the crew follows knows no camp.</p>
-        )}
+        {plan !== null && entry !== null && isPlanned(plan) && <PlanPublish key={entry.id} entry={entry} plan={plan} />}
       </div>
       <div class="middle">
         {plan !== null && entry !== null && isPlanned(plan) && <PlanRoad entry={entry} plan={plan} />}
