@@ -1,19 +1,31 @@
 import { type DayTables, rowAt, storedW, WAIT_PART_S } from './day-tables.ts'
 
 /**
- * A function of time at one edge, from below: straight between its nodes, which stand evenly from the earliest instant
- * at which the edge can be passed to the latest. So the nodes move along with a car at the limit, for which nothing
- * is lost between them.
+ * A function of time at one edge, from below: straight between its nodes, which stand from the earliest instant at which
+ * the edge can be passed to the latest.
  */
 export interface Below {
   atS: Float64Array
   value: Float64Array
 }
 
-export function emptyBelow(lowS: number, highS: number, stepS: number): Below {
-  const cells = highS > lowS ? Math.ceil((highS - lowS) / stepS - 1e-9) : 0
-  const atS = Float64Array.from({ length: cells + 1 }, (_, j) => (j === 0 ? lowS : lowS + ((highS - lowS) * j) / cells))
-  return { atS, value: new Float64Array(cells + 1).fill(Number.POSITIVE_INFINITY) }
+/** How wide cells are, and an instant that one of them begins at; NaN for none. [S] */
+export interface Spacing {
+  stepS: number
+  nearS: number
+}
+
+/** A function that is known nowhere yet. Nodes that move along with a drive lose little near it. */
+export function emptyBelow(lowS: number, highS: number, { stepS, nearS }: Spacing): Below {
+  const nodes = [lowS]
+  if (highS > lowS) {
+    const anchorS = Number.isNaN(nearS) ? lowS : nearS
+    const first = Math.floor((lowS - anchorS) / stepS + 0.5) + 1
+    const end = Math.ceil((highS - anchorS) / stepS - 0.5)
+    for (let n = first; n < end; n++) nodes.push(anchorS + n * stepS)
+    nodes.push(highS)
+  }
+  return { atS: Float64Array.from(nodes), value: new Float64Array(nodes.length).fill(Number.POSITIVE_INFINITY) }
 }
 
 /**

@@ -16,13 +16,21 @@ const MOST_TRIES = 4
  * @param sPerJ     price of energy on leaving each edge. [s/J] (pieces + 1)
  * @param arrivalS  arrival of a drive that holds. [S]
  * @param stepS     width of a cell. [S]
+ * @param alongS    when that drive leaves each edge, to lay the cells around; left out, they are even. [S] (pieces + 1)
  * @returns not above `arrivalS` [S]
  */
-export function earliestArrival(day: DayTables, sPerJ: Float64Array, arrivalS: number, stepS: number): number {
+export function earliestArrival(
+  day: DayTables,
+  sPerJ: Float64Array,
+  arrivalS: number,
+  stepS: number,
+  alongS?: Float64Array,
+): number {
   const over = (atS: number): number =>
     day.stops.reduce((s, stop) => (stop.beforePiece === day.pieces ? s + rowAt(stop.lengthS, 0, day.clock, s) : s), atS)
   const overS = over(arrivalS)
-  const earliestS = tightestLimit(day, sPerJ, overS, stepS)
+  const limit = (prices: Float64Array): number => earliestPossible(day, prices, overS, stepS, alongS)
+  const earliestS = tightestLimit(limit, sPerJ, FAR * (overS - day.start.atS), overS)
   if (overS === arrivalS) return earliestS
   let low = Math.min(day.start.atS, arrivalS)
   let high = arrivalS
@@ -39,20 +47,19 @@ export function earliestArrival(day: DayTables, sPerJ: Float64Array, arrivalS: n
  * right for small changes, and the limit may want others where the frontier is not concave. Over a common factor the
  * limit has one summit, and each is valid.
  */
-function tightestLimit(day: DayTables, sPerJ: Float64Array, overS: number, stepS: number): number {
-  const farS = FAR * (overS - day.start.atS)
-  const atPrices = earliestPossible(day, sPerJ, overS, stepS)
+function tightestLimit(
+  limit: (sPerJ: Float64Array) => number,
+  sPerJ: Float64Array,
+  farS: number,
+  overS: number,
+): number {
+  const atPrices = limit(sPerJ)
   let best = atPrices
   for (const way of FACTORS) {
     if (best > atPrices) break
     let factor = way
     for (let n = 0; n < MOST_TRIES && overS - best > farS; n++, factor *= way) {
-      const tried = earliestPossible(
-        day,
-        sPerJ.map((price) => price * factor),
-        overS,
-        stepS,
-      )
+      const tried = limit(sPerJ.map((price) => price * factor))
       if (!(tried > best)) break
       best = tried
     }

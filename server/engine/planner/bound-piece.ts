@@ -1,6 +1,18 @@
-import { type Below, emptyBelow, joinLines, mostBetween } from './below.ts'
+import { type Below, emptyBelow, joinLines, mostBetween, type Spacing } from './below.ts'
 import { fallsOf, mostLoadOf } from './bound-hollow.ts'
-import { type DayTables, type Load, loadAt, pieceMps, pieceS, rowAt, storedSlope, storedW } from './day-tables.ts'
+import {
+  type DayTables,
+  type Load,
+  loadAt,
+  lopsidedJ,
+  lopsidedSlope,
+  pieceMps,
+  pieceS,
+  rowAt,
+  standsAt,
+  storedSlope,
+  storedW,
+} from './day-tables.ts'
 
 const FAR = Number.POSITIVE_INFINITY
 
@@ -20,18 +32,20 @@ interface Priced {
   fallW: Float64Array
   /** Most that the load can be. [W] */
   mostLoadW: number
+  /** How many of its two ends the car stands at. */
+  stands: number
 }
 
 /** Behind a piece: from every instant before it, at every speed. */
 export function behindPiece(
   day: DayTables,
-  stepS: number,
+  spacing: Spacing,
   from: Below,
   of: { piece: number; price: number; latestS: number },
 ): Below {
   const priced = pricedOf(day, of.piece, of.price)
   const lowS = from.atS[0] + priced.shortestS
-  const to = emptyBelow(lowS, of.latestS, stepS)
+  const to = emptyBelow(lowS, of.latestS, spacing)
   const near = { cell: 0, isKnown: false }
   guessTimes(priced, from)
   const nodes = to.atS.map((atS) => leastAt(priced, from, atS, near))
@@ -65,16 +79,18 @@ const pair = { fromS: 0, untilS: 0, left: 0, grows: 0, startS: 0, endS: 0, sunW:
 
 /** Fills the pair for the cell that is left. */
 function takePair(priced: Priced, from: Below, c: number): void {
-  const { day, piece } = priced
   const last = from.atS.length - 1
   pair.fromS = from.atS[c]
   pair.untilS = from.atS[Math.min(c + 1, last)]
   pair.left = from.value[c]
   pair.grows = pair.untilS > pair.fromS ? (from.value[c + 1] - pair.left) / (pair.untilS - pair.fromS) : 0
-  const row = piece * day.clock.count
-  pair.sunW = mostBetween(day, day.harvestW, row, (pair.fromS + pair.startS) / 2, (pair.untilS + pair.endS) / 2)
+  pair.sunW = sunBetween(priced, pair.fromS + pair.startS, pair.untilS + pair.endS)
   pair.wantedS = priced.guessS[c]
 }
+
+/** Most sun half way through the piece, between two sums of entering and leaving it. [W] */
+const sunBetween = ({ day, piece }: Priced, firstS: number, lastS: number): number =>
+  mostBetween(day, day.harvestW, piece * day.clock.count, firstS / 2, lastS / 2)
 
 /** Last cell from which an instant can be reached at the shortest time. */
 function latestCell(from: Below, priced: Priced, atS: number): number {
@@ -123,34 +139,102 @@ const load: Load = { W: 0, slope: 0 }
 const tangent = { value: 0, slope: 0 }
 
 /** Priced energy of a piece driven in a time, and its slope over that time. [s, 1] */
-function tangentAt({ day, piece, price }: Priced, timeS: number, sunW: number): void {
+function tangentAt({ day, piece, price, stands }: Priced, timeS: number, sunW: number): void {
   const speedMps = pieceMps(day, piece, timeS)
   loadAt(day, piece, speedMps, load)
   const stored = storedW(day.pack, sunW - load.W)
   tangent.value = -price * stored * timeS
   tangent.slope = -price * (stored + storedSlope(day.pack, sunW - load.W) * fallW(day, piece, speedMps, timeS))
+  if (stands > 0) addRest(day, piece, speedMps, price * stands)
+}
+
+/** From rest or to rest: what the change of speed costs beyond the middle of gains and losses, convex over the time. */
+function addRest({ kinetic, lengthM }: DayTables, piece: number, speedMps: number, price: number): void {
+  const { massKg } = kinetic
+  tangent.value += price * lopsidedJ(kinetic, speedMps)
+  const perMotion = lopsidedSlope(kinetic, speedMps)
+  tangent.slope -= (price * perMotion * massKg * speedMps * speedMps * speedMps) / lengthM[piece]
 }
 
 /** Fall of the last load over the piece's time, times that time. [W] */
 const fallW = (day: DayTables, piece: number, speedMps: number, timeS: number): number =>
   (load.slope * speedMps * speedMps * timeS) / day.lengthM[piece]
 
-/** What value less `climb` times arrival never falls below in a cell. */
+/** Value less `climb` times instant at the nodes before a piece: the least up to each, and from each on. */
+const least = { before: new Float64Array(0), behind: new Float64Array(0) }
+
+/**
+ * What value less `climb` times arrival never falls below in a cell: pair by pair away from the likeliest, until what is
+ * left of them on that side cannot be less.
+ */
 function footOf(priced: Priced, from: Below, startS: number, endS: number, climb: number): number {
-  let least = FAR
+  const last = latestCell(from, priced, endS)
+  const { atS } = from
+  let first = last
+  while (first > 0 && startS - atS[first] <= priced.longestS) first--
+  const cells = atS.length - 1
+  leastNodes(from, climb, first, Math.min(last + 1, cells))
   pair.startS = startS
   pair.endS = endS
-  let climbS = Number.NaN
-  for (let c = latestCell(from, priced, endS); c >= 0; c--) {
-    takePair(priced, from, c)
-    if (startS - pair.untilS > priced.longestS) break
-    if (climbS !== climbS) climbS = timeOfSlope(priced, climb, pair.sunW, 0)
-    if (!(lowestOver(priced, climb, climbS) < least)) continue
-    pair.wantedS = timeOfSlope(priced, pair.grows, pair.sunW, 2)
-    const lowest = lowestOver(priced, climb, timeOfSlope(priced, climb, pair.sunW, 2))
-    if (lowest < least) least = lowest
+  const sunW = sunBetween(priced, atS[first] + startS, atS[Math.min(last + 1, cells)] + endS)
+  const climbS = timeOfSlope(priced, climb, sunW, 0)
+  let likeliest = last
+  while (likeliest > first && atS[likeliest] + climbS > endS) likeliest--
+  let foot = FAR
+  for (let c = likeliest; c <= last; c++) {
+    if (c > likeliest && slower(priced, endS - atS[c], climb, sunW) + least.behind[c] >= foot) break
+    foot = Math.min(foot, lowestOf(priced, from, c, climb, climbS, foot))
   }
-  return least
+  for (let c = likeliest - 1; c >= first; c--) {
+    if (quicker(priced, startS - atS[c + 1], climb, sunW) + least.before[c + 1] >= foot) break
+    foot = Math.min(foot, lowestOf(priced, from, c, climb, climbS, foot))
+  }
+  return foot
+}
+
+function leastNodes({ atS, value }: Below, climb: number, first: number, last: number): void {
+  if (least.before.length < atS.length) {
+    least.before = new Float64Array(2 * atS.length)
+    least.behind = new Float64Array(2 * atS.length)
+  }
+  let lowest = FAR
+  for (let j = first; j <= last; j++) {
+    lowest = Math.min(lowest, value[j] - climb * atS[j])
+    least.before[j] = lowest
+  }
+  lowest = FAR
+  for (let j = last; j >= first; j--) {
+    lowest = Math.min(lowest, value[j] - climb * atS[j])
+    least.behind[j] = lowest
+  }
+}
+
+/** Least of priced energy less `climb` times the piece's time, over times of no more than `mostS`; −Infinity if unknown. */
+function slower(priced: Priced, mostS: number, climb: number, sunW: number): number {
+  const timeS = Math.min(mostS, priced.longestS)
+  if (timeS < priced.shortestS) return FAR
+  tangentAt(priced, timeS, sunW)
+  if (tangent.slope > climb) return -FAR
+  return tangent.value - climb * timeS - hollowBetween(priced, timeS, priced.shortestS, timeS, sunW)
+}
+
+/** The same over times of no less than `leastS`. */
+function quicker(priced: Priced, leastS: number, climb: number, sunW: number): number {
+  const timeS = Math.max(leastS, priced.shortestS)
+  if (timeS > priced.longestS) return FAR
+  tangentAt(priced, timeS, sunW)
+  if (tangent.slope < climb) return -FAR
+  return tangent.value - climb * timeS - hollowBetween(priced, timeS, timeS, priced.longestS, sunW)
+}
+
+/** Below value less `climb` times arrival over one pair; looked at closely only where it may be less than `foot`. */
+function lowestOf(priced: Priced, from: Below, c: number, climb: number, climbS: number, foot: number): number {
+  takePair(priced, from, c)
+  if (pair.startS - pair.untilS > priced.longestS) return FAR
+  const lowest = lowestOver(priced, climb, climbS)
+  if (!(lowest < foot)) return lowest
+  pair.wantedS = timeOfSlope(priced, pair.grows, pair.sunW, 2)
+  return Math.max(lowest, lowestOver(priced, climb, timeOfSlope(priced, climb, pair.sunW, 2)))
 }
 
 /**
@@ -221,6 +305,7 @@ function pricedOf(day: DayTables, piece: number, price: number): Priced {
     guessS: new Float64Array(0),
     fallW: fallsOf(day, piece, first, last),
     mostLoadW: mostLoadOf(day, piece),
+    stands: day.kinetic.massKg > 0 ? (standsAt(day, piece) ? 1 : 0) + (standsAt(day, piece + 1) ? 1 : 0) : 0,
   }
 }
 

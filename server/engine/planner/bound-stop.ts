@@ -1,15 +1,15 @@
-import { type Below, emptyBelow, joinLines } from './below.ts'
+import { type Below, emptyBelow, joinLines, type Spacing } from './below.ts'
 import { type DayTables, rowAt, type TableStop } from './day-tables.ts'
 
 /** Behind a stop: the function moved by the stop's length, what the stop brings taken off at its price. */
 export function behindStop(
   day: DayTables,
-  stepS: number,
+  spacing: Spacing,
   from: Below,
   of: { stop: TableStop; price: number; latestS: number },
 ): Below {
   const path = leaving(day, from, of.stop, of.price)
-  const to = emptyBelow(path[0].atS, of.latestS, stepS)
+  const to = emptyBelow(path[0].atS, of.latestS, spacing)
   const cells = to.atS.length - 1
   const climb = new Float64Array(cells)
   const foot = new Float64Array(cells).fill(Number.POSITIVE_INFINITY)

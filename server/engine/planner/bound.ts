@@ -1,4 +1,4 @@
-import { type Below, emptyBelow, leastAtEnd, waiting } from './below.ts'
+import { type Below, emptyBelow, leastAtEnd, type Spacing, waiting } from './below.ts'
 import { behindPiece } from './bound-piece.ts'
 import { behindStop } from './bound-stop.ts'
 import { type DayTables, pieceS } from './day-tables.ts'
@@ -15,9 +15,17 @@ import { type DayTables, pieceS } from './day-tables.ts'
  * @param sPerJ   price of energy on leaving each edge. [s/J] (pieces + 1)
  * @param latestS arrival of a drive that holds; only drives up to there are looked at. [S]
  * @param stepS   width of a cell. [S]
+ * @param alongS  when a drive leaves each edge: cells are so narrow at the end of it only, narrower before and wider away
+ *                from it; left out, all are even. [S] (pieces + 1)
  * @returns earliest arrival that cannot be excluded, not above `latestS`. [S]
  */
-export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: number, stepS: number): number {
+export function earliestPossible(
+  day: DayTables,
+  sPerJ: Float64Array,
+  latestS: number,
+  stepS: number,
+  alongS?: Float64Array,
+): number {
   const { pieces, stops } = day
   if (pieces === 0) return Math.min(day.start.atS, latestS)
   const ceilingJ = day.pack.ceilingJ + mostMotionJ(day)
@@ -25,23 +33,32 @@ export function earliestPossible(day: DayTables, sPerJ: Float64Array, latestS: n
   const shortest = day.fastestMps.map((v, i) => pieceS(day, i, v))
   const stopS = stops.map((stop) => stop.lengthS.reduce((least, s) => Math.min(least, s), Number.POSITIVE_INFINITY))
   let leftS = shortest.reduce((sum, s) => sum + s, 0) + stopS.reduce((sum, s) => sum + s, 0)
-  let below: Below = emptyBelow(day.start.atS, latestS - leftS, stepS)
+  const spacing = (edge: number): Spacing => spacingAt(edge, pieces, stepS, alongS)
+  let below: Below = emptyBelow(day.start.atS, latestS - leftS, spacing(0))
   below.value[0] = 0
   let worthS = -price[0] * day.start.energyJ
   for (let i = 0, s = 0; ; i++) {
     for (; s < stops.length && stops[s].beforePiece === i; s++) {
       leftS -= stopS[s]
-      below = behindStop(day, stepS, below, { stop: stops[s], price: price[i], latestS: latestS - leftS })
+      below = behindStop(day, spacing(i), below, { stop: stops[s], price: price[i], latestS: latestS - leftS })
     }
     waiting(day, below, i, price[i])
     if (i === pieces) break
     leftS -= shortest[i]
     worthS += price[i] * day.extraJ[i]
-    below = behindPiece(day, stepS, below, { piece: i, price: price[i], latestS: latestS - leftS })
+    below = behindPiece(day, spacing(i + 1), below, { piece: i, price: price[i], latestS: latestS - leftS })
     const drop = price[i] - price[i + 1]
     if (i + 1 < pieces) worthS += drop * (drop > 0 ? day.floorJ[i + 1] : ceilingJ)
   }
   return Math.min(worthS + leastAtEnd(day, below, price[pieces]), latestS)
+}
+
+/**
+ * Cells at an edge: what straight lines lose grows with their width squared and falls with the way behind, so that equal
+ * pains lose least with widths by its cube root.
+ */
+function spacingAt(edge: number, pieces: number, stepS: number, alongS?: Float64Array): Spacing {
+  return { stepS: stepS * Math.sqrt(Math.max(edge, 1) / pieces), nearS: alongS?.[edge] ?? Number.NaN }
 }
 
 /**

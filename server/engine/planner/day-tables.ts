@@ -151,6 +151,18 @@ export function changeJ({ massKg, perGained, perLost }: Kinetic, fromMps: number
   return perLost * J + (perGained - perLost) * 0.5 * (J + Math.sqrt(J * J + SMOOTH_J * SMOOTH_J) - SMOOTH_J)
 }
 
+/** What a change from rest or to rest costs beyond the middle of gains and losses; it grows with the speed. [J] */
+export function lopsidedJ({ massKg, perGained, perLost }: Kinetic, speedMps: number): number {
+  const J = 0.5 * massKg * speedMps * speedMps
+  return (perGained - perLost) * 0.5 * (Math.sqrt(J * J + SMOOTH_J * SMOOTH_J) - SMOOTH_J)
+}
+
+/** Slope of `lopsidedJ` over the motion. */
+export function lopsidedSlope({ massKg, perGained, perLost }: Kinetic, speedMps: number): number {
+  const J = 0.5 * massKg * speedMps * speedMps
+  return ((perGained - perLost) * 0.5 * J) / Math.sqrt(J * J + SMOOTH_J * SMOOTH_J)
+}
+
 /** Slope of `changeJ` over the motion gained. */
 export function changeSlope({ massKg, perGained, perLost }: Kinetic, fromMps: number, toMps: number): number {
   const J = 0.5 * massKg * (toMps * toMps - fromMps * fromMps)

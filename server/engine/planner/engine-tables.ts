@@ -27,8 +27,14 @@ export interface Reach {
 
 /** Step of the clock: light between is straight. [S] */
 const CLOCK_S = 600
+/** The road's sun is worked out every so many of those steps; it is straight between. */
+const SUN_STEPS = 2
 /** How far from the base forecast's passage the sun on a piece is worked out; beyond, its last value holds. [S] */
 const WINDOW_S = 7200
+/** A forecast that passes a piece nearer than this is met by its sun. [S] */
+const NEAR_S = 1800
+/** What rounding and halts may add to the earliest and the latest passage. [S] */
+const PASSAGE_SPARE_S = 600
 const SLOWEST_MPS = 25 / 3.6
 const SPEED_STEP_MPS = 2 / 3.6
 /** Speeds beyond this are not planned. [Mps] */
@@ -48,47 +54,86 @@ export function reachOf({ race, dayIndex, base }: Along): Reach {
   return { first, count: endPiece - first }
 }
 
+/** What the sun brings over a day: on the road where and when it may be driven, at stops, in the evening. */
+export interface SunAhead extends Pick<DayTables, 'clock' | 'harvestW' | 'stops' | 'duskGainJ'> {
+  /** When the base forecast passed each piece. [S] (pieces of the day) */
+  passedS: Float64Array
+}
+
 /**
- * The tables of a day, taken from the engine along a forecast: light, wind and the pack's voltage as they are where
- * and when that forecast passes.
+ * The sun of a day, from the engine with light, air and the pack's voltage as they are where and when a forecast passes.
+ *
+ * @param untilS  arrivals at the end of the day's road after this are of no interest. [S]
  */
-export function tablesAlong(along: Along, reach: Reach): DayTables {
+export function sunAhead(along: Along, reach: Reach, untilS = Number.POSITIVE_INFINITY): SunAhead {
+  const { race, dayIndex, base } = along
+  const day = race.days[dayIndex]
+  const clock = clockFrom(startOf(along).atS, (day.closesMs - day.opensMs) / 1000)
+  const pack = packOf(race, base)
+  const stops = stopsOf(along, reach, clock, pack)
+  const passed = passages(along, reach)
+  const window = passable(along, reach, stops, Math.min(untilS, (day.drivingToMs - day.opensMs) / 1000))
+  return {
+    clock,
+    passedS: passed.atS,
+    stops,
+    harvestW: harvests(along, reach, clock, { ...passed, ...window }),
+    duskGainJ: evening(along, reach, clock, pack),
+  }
+}
+
+/** Whether a forecast passes everywhere so near the one a sun was worked out along that it holds for it too. */
+export function isNear(sun: SunAhead, along: Along, reach: Reach): boolean {
+  const { atS } = passages(along, reach)
+  return sun.passedS.every((s, i) => Math.abs(s - atS[i]) < NEAR_S)
+}
+
+/**
+ * The tables of a day, taken from the engine along a forecast.
+ *
+ * @param sun  where the forecast passes near enough to the one that it was worked out along
+ */
+export function tablesAlong(along: Along, reach: Reach, sun = sunAhead(along, reach)): DayTables {
   const { race, dayIndex, base, targetCharge } = along
   const { car, course, days } = race
   const day = days[dayIndex]
-  const at = (ms: number): number => (ms - day.opensMs) / 1000
-  const firstDrive = base.timetable.spans.findIndex((span) => span.kind === 'drive')
-  const startS = at(firstDrive < 0 ? day.drivingFromMs : base.timetable.spans[firstDrive].fromMs)
-  const clock = clockFrom(startS, at(day.closesMs))
-  const pack = packOf(race, base)
   const placeM = base.timetable.spans[0]?.fromM ?? base.timetable.evening.placeM
   const lengthM = course.pieces.lengthM.slice(reach.first, reach.first + reach.count)
   if (reach.count > 0) lengthM[0] = course.pieces.fromM[reach.first] + lengthM[0] - placeM
-  const speeds = {
-    from: SLOWEST_MPS,
-    step: SPEED_STEP_MPS,
-    count: Math.ceil((FASTEST_MPS - SLOWEST_MPS) / SPEED_STEP_MPS) + 1,
-  }
   return {
     pieces: reach.count,
     lengthM,
     extraS: new Float64Array(reach.count),
     extraJ: new Float64Array(reach.count),
     slowestMps: SLOWEST_MPS,
-    speeds,
-    ...loads(along, reach, speeds),
-    clock,
-    harvestW: harvests(along, reach, clock, startS),
+    speeds: SPEEDS,
+    ...loads(along, reach, SPEEDS),
+    clock: sun.clock,
+    harvestW: sun.harvestW,
     waitingLoadW: car.auxDrivingW,
     kinetic: kineticOf(race),
-    stops: stopsOf(along, reach, clock, pack),
-    duskGainJ: evening(along, reach, clock, pack),
-    pack,
+    stops: sun.stops.map((stop) => ({ ...stop, gainJ: stop.gainJ.slice() })),
+    duskGainJ: sun.duskGainJ.slice(),
+    pack: packOf(race, base),
     floorJ: new Float64Array(reach.count + 1).fill(Math.min(storedJ(car.pack, car.reserveCharge), base.openingJ)),
-    start: { atS: startS, energyJ: energyBefore(base, firstDrive) },
-    latestS: at(day.drivingToMs),
+    start: startOf(along),
+    latestS: (day.drivingToMs - day.opensMs) / 1000,
     targetJ: storedJ(car.pack, targetCharge),
   }
+}
+
+const SPEEDS: Axis = {
+  from: SLOWEST_MPS,
+  step: SPEED_STEP_MPS,
+  count: Math.ceil((FASTEST_MPS - SLOWEST_MPS) / SPEED_STEP_MPS) + 1,
+}
+
+/** When the car sets off, and with how much. */
+function startOf({ race, dayIndex, base }: Along): DayTables['start'] {
+  const { opensMs, drivingFromMs } = race.days[dayIndex]
+  const firstDrive = base.timetable.spans.findIndex((span) => span.kind === 'drive')
+  const fromMs = firstDrive < 0 ? drivingFromMs : base.timetable.spans[firstDrive].fromMs
+  return { atS: (fromMs - opensMs) / 1000, energyJ: energyBefore(base, firstDrive) }
 }
 
 function clockFrom(startS: number, closesS: number): Axis {
@@ -139,26 +184,62 @@ function passages({ base, race, dayIndex }: Along, reach: Reach): { atS: Float64
 /** Pace at which the road beyond the base forecast's end is met. [Mps] */
 const SOME_SPEED_MPS = 20
 
-function harvests(along: Along, reach: Reach, clock: Axis, startS: number): Float64Array {
-  const { race, dayIndex, path, base } = along
+/** The earliest that each piece can be passed, and the latest with which the end is still reached in time. [S] */
+function passable(
+  along: Along,
+  reach: Reach,
+  stops: TableStop[],
+  untilS: number,
+): { earliestS: Float64Array; latestS: Float64Array } {
+  const { lengthM } = along.race.course.pieces
+  const shortestS = fastestOn(along, reach).map((mps, i) => lengthM[reach.first + i] / mps)
+  const stopS = new Float64Array(reach.count + 1)
+  for (const { beforePiece, lengthS } of stops) stopS[beforePiece] += lengthS.reduce((a, b) => Math.min(a, b))
+  const earliestS = new Float64Array(reach.count)
+  const latestS = new Float64Array(reach.count)
+  let s = startOf(along).atS - PASSAGE_SPARE_S
+  for (let i = 0; i < reach.count; i++) {
+    earliestS[i] = s
+    s += shortestS[i] + stopS[i + 1]
+  }
+  s = untilS + PASSAGE_SPARE_S
+  for (let i = reach.count - 1; i >= 0; i--) {
+    latestS[i] = s
+    s -= shortestS[i] + stopS[i]
+  }
+  return { earliestS, latestS }
+}
+
+/** Steps of the clock at which the sun of a piece is worked out: around its passage, while it may be passed. */
+function sunNodes(clock: Axis, passedS: number, earliestS: number, latestS: number): number[] {
+  const node = (s: number): number => Math.min(Math.max((s - clock.from) / clock.step, 0), clock.count - 1)
+  const low = Math.floor(node(Math.max(passedS - WINDOW_S, Math.min(earliestS, passedS))))
+  const high = Math.ceil(node(Math.min(passedS + WINDOW_S, Math.max(latestS, passedS))))
+  const nodes: number[] = []
+  for (let k = low; k < high; k += SUN_STEPS) nodes.push(k)
+  nodes.push(high)
+  return nodes
+}
+
+function harvests(
+  { race, dayIndex, path, base }: Along,
+  reach: Reach,
+  clock: Axis,
+  by: { atS: Float64Array; packV: Float64Array; earliestS: Float64Array; latestS: Float64Array },
+): Float64Array {
   const { opensMs } = race.days[dayIndex]
   const { pieces } = race.course
-  const { atS, packV } = passages(along, reach)
-  const nodes = (piece: number): [number, number] => {
-    const low = Math.floor((Math.max(atS[piece] - WINDOW_S, startS) - clock.from) / clock.step)
-    const high = Math.ceil((atS[piece] + WINDOW_S - clock.from) / clock.step)
-    return [Math.min(Math.max(low, 0), clock.count - 1), Math.min(Math.max(high, 0), clock.count - 1)]
-  }
-  let count = 0
-  for (let i = 0; i < reach.count; i++) count += nodes(i)[1] - nodes(i)[0] + 1
+  const nodes = Array.from({ length: reach.count }, (_, i) =>
+    sunNodes(clock, by.atS[i], by.earliestS[i], by.latestS[i]),
+  )
+  const count = nodes.reduce((sum, { length }) => sum + length, 0)
   const steps = emptySteps(count)
   steps.count = count
   const volts = new Float64Array(count)
   let n = 0
-  for (let i = 0; i < reach.count; i++) {
+  nodes.forEach((of, i) => {
     const piece = reach.first + i
-    const [low, high] = nodes(i)
-    for (let k = low; k <= high; k++, n++) {
+    for (const k of of) {
       steps.atMs[n] = opensMs + (clock.from + k * clock.step) * 1000
       steps.piece[n] = piece
       steps.latRad[n] = pieces.latRad[piece]
@@ -167,20 +248,29 @@ function harvests(along: Along, reach: Reach, clock: Axis, startS: number): Floa
       steps.headingRad[n] = pieces.headingRad[piece]
       steps.gradeRad[n] = pieces.gradeRad[piece]
       steps.speedMps[n] = Math.max(base.road.heldMps[piece], SLOWEST_MPS)
-      volts[n] = packV[i]
+      volts[n++] = by.packV[i]
     }
-  }
+  })
   const sunW = sunOnBusW(race, path, steps, volts)
   const harvestW = new Float64Array(reach.count * clock.count)
   n = 0
-  for (let i = 0; i < reach.count; i++) {
-    const [low, high] = nodes(i)
-    const row = i * clock.count
-    harvestW.fill(sunW[n], row, row + low)
-    for (let k = low; k <= high; k++, n++) harvestW[row + k] = sunW[n]
-    harvestW.fill(sunW[n - 1], row + high + 1, row + clock.count)
-  }
+  nodes.forEach((of, i) => {
+    const row = harvestW.subarray(i * clock.count, (i + 1) * clock.count)
+    fillBetween(row, of, sunW.subarray(n, n + of.length))
+    n += of.length
+  })
   return harvestW
+}
+
+/** Fills a row from values at some of its entries: straight between them, held beyond. */
+function fillBetween(row: Float64Array, nodes: number[], values: Float64Array): void {
+  row.fill(values[0], 0, nodes[0] + 1)
+  for (let n = 1; n < nodes.length; n++) {
+    const [from, to] = [nodes[n - 1], nodes[n]]
+    for (let k = from + 1; k <= to; k++)
+      row[k] = values[n - 1] + ((values[n] - values[n - 1]) * (k - from)) / (to - from)
+  }
+  row.fill(values[nodes.length - 1], nodes[nodes.length - 1] + 1)
 }
 
 /** Speed at which changes of speed are priced. [Mps] */
@@ -226,14 +316,11 @@ export function loads(
   reach: Reach,
   speeds: Axis,
 ): { loadW: Float64Array; fastestMps: Float64Array } {
-  const { car, course } = race
+  const { car } = race
   const loadW = new Float64Array(reach.count * speeds.count)
-  const fastestMps = new Float64Array(reach.count)
   const bus = { busW: 0, lossW: 0, brakedW: 0 }
   for (let i = 0; i < reach.count; i++) {
     const going = goingOn(race, base, reach.first + i)
-    const wantedMps = Math.min(course.pieces.limitMps[reach.first + i], topMps(race))
-    fastestMps[i] = Math.max(attainableSpeedMps(car.load, car.drive, going, wantedMps), 1)
     const slope = 1 / Math.cos(going.gradeRad)
     for (let j = 0; j < speeds.count; j++) {
       const speedMps = speeds.from + j * speeds.step
@@ -241,7 +328,18 @@ export function loads(
       loadW[i * speeds.count + j] = bus.busW * slope + car.auxDrivingW
     }
   }
-  return { loadW, fastestMps }
+  return { loadW, fastestMps: fastestOn({ race, base }, reach) }
+}
+
+/** Fastest that is allowed and that the motor holds. [Mps] (pieces of the day) */
+function fastestOn({ race, base }: { race: Race; base: Pick<DayForecast, 'road'> }, reach: Reach): Float64Array {
+  const { car, course } = race
+  const top = topMps(race)
+  return Float64Array.from({ length: reach.count }, (_, i) => {
+    const wantedMps = Math.min(course.pieces.limitMps[reach.first + i], top)
+    const going = goingOn(race, base, reach.first + i)
+    return Math.max(attainableSpeedMps(car.load, car.drive, going, wantedMps), 1)
+  })
 }
 
 function stopsOf(along: Along, reach: Reach, clock: Axis, pack: TablePack): TableStop[] {

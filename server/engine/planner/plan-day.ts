@@ -3,12 +3,12 @@ import type { SunPath } from '../sun.ts'
 import { bestDrive } from './best-drive.ts'
 import { earliestArrival } from './bound-day.ts'
 import type { DayTables } from './day-tables.ts'
-import { motorMps, planSun, type Reach, reachOf, tablesAlong } from './engine-tables.ts'
+import { isNear, motorMps, planSun, type Reach, reachOf, type SunAhead, sunAhead, tablesAlong } from './engine-tables.ts'
 import { holds, isBetterVerdict, judge, type Verdict } from './judge.ts'
 import { refine, type Refined } from './refine.ts'
 import { driveOf, type Section, sectionsFor } from './sections.ts'
 import { settle } from './settle.ts'
-import { driveAlong } from './simulate.ts'
+import { driveAlong, simulate } from './simulate.ts'
 
 /** A day to plan. */
 export interface DayTask {
@@ -46,7 +46,7 @@ export interface DayPlan {
   boundMs: number
 }
 
-const BOUND_STEP_S = 40
+const BOUND_STEP_S = 150
 const MOST_ROUNDS = 8
 const LAST_ROUNDS = 4
 const WHOLE_ROUNDS = 3
@@ -83,6 +83,7 @@ export function planDay(task: DayTask): DayPlan | null {
   const { tables } = settledTables(day, best, 0)
   const { opensMs } = race.days[dayIndex]
   const endS = (best.verdict.arrivalMs - opensMs) / 1000
+  const along = simulate(tables, driveAlong(tables, best.speedMps, reach.first))
   return {
     best,
     forPeople,
@@ -90,7 +91,7 @@ export function planDay(task: DayTask): DayPlan | null {
     tables,
     heldMps: motorMps({ ...day, base: best.forecast }, reach),
     sPerJ: refined.sPerJ,
-    boundMs: opensMs + 1000 * earliestArrival(tables, refined.sPerJ, endS, BOUND_STEP_S),
+    boundMs: opensMs + 1000 * earliestArrival(tables, refined.sPerJ, endS, BOUND_STEP_S, along.atS),
   }
 }
 
@@ -109,7 +110,7 @@ export function bestDay(task: DayTask): { day: DayAtWork; found: { best: Judged;
   const first = drive(task.startMps ?? new Float64Array(race.course.pieces.count).fill(SOME_MPS))
   const reach = reachOf({ race, dayIndex, base: first.forecast, path, targetCharge })
   if (reach.count <= 0) return null
-  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive }
+  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive, sun: null }
   const found = settleDown(day, first, null, MOST_ROUNDS)
   return found === null ? null : { day, found }
 }
@@ -122,6 +123,8 @@ export interface DayAtWork {
   path: SunPath
   reach: Reach
   drive: (speedMps: Float64Array) => Judged
+  /** The sun ahead as it was last worked out. */
+  sun: SunAhead | null
 }
 
 /**
@@ -171,12 +174,19 @@ export function settledTables(
 ): { tables: DayTables; heldMps: Float64Array } {
   const { reach } = day
   const along = { ...day, base: now.forecast }
-  const tables = tablesAlong(along, reach)
+  if (day.sun === null || !isNear(day.sun, along, reach)) day.sun = sunAhead(along, reach, soonestS(day, now))
+  const tables = tablesAlong(along, reach, day.sun)
   const { speedMps: heldMps } = driveAlong(tables, now.speedMps, reach.first)
   settle(tables, along, reach, now.forecast, heldMps)
   tables.targetJ += spareJ
   raiseFloor(tables, spareJ)
   return { tables, heldMps }
+}
+
+/** Later arrivals than that of a drive which holds are of no interest. [S] */
+function soonestS({ race, dayIndex }: DayAtWork, { verdict }: Judged): number {
+  const isSound = holds(verdict) && verdict.isFinished
+  return isSound ? (verdict.arrivalMs - race.days[dayIndex].opensMs) / 1000 : Number.POSITIVE_INFINITY
 }
 
 function onCourse({ race, reach }: DayAtWork, speedMps: Float64Array): Float64Array {
@@ -224,7 +234,7 @@ export function someTables({
   if (reach.count <= 0) return null
   const now = { speedMps, forecast: base, verdict: judge(race, base, targetCharge) }
   const drive = () => now
-  const { tables } = settledTables({ race, dayIndex, targetCharge, path, reach, drive }, now)
+  const { tables } = settledTables({ race, dayIndex, targetCharge, path, reach, drive, sun: null }, now)
   return { tables, reach }
 }
 
