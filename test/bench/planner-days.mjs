@@ -20,7 +20,7 @@ const COUNT = Number(process.argv[2] ?? 200)
 const FIRST = Number(process.argv[3] ?? 1)
 const FINE = { binS: 10, speedMps: 1 / 3.6 }
 const STARTS_KMH = [45, 58, 70, 82, 95]
-const BOUND_CELL_S = 20
+const BOUND_CELL_S = 60
 /** What a plan may lose against the best known, and the median bound. [s, share of the driving time] */
 const MOST_LATE_S = 1
 const MOST_GAP = 0.002
@@ -63,7 +63,7 @@ function tried(seed) {
   for (const kmh of STARTS_KMH) rivals.push([`${kmh}`, judgedEndS(day, constantStart(day, kmh))])
   const [by, knownS] = rivals.reduce((a, b) => (b[1] < a[1] - 1e-3 ? b : a))
   const drivingS = planS - day.start.atS - 1800 * day.stops.length
-  const boundS = plan === null ? NaN : earliestArrival(day, plan.sPerJ, planS, BOUND_CELL_S)
+  const boundS = plan === null ? NaN : earliestArrival(day, plan.sPerJ, planS, BOUND_CELL_S, plan.track.atS)
   return { seed, isHard, km: day.pieces, plan, planS, planMs, knownS, by, boundS, drivingS }
 }
 

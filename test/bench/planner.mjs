@@ -11,8 +11,8 @@ import { benchRace, OPENING } from './day.mjs'
 import { plainEarliestEnd } from './planner-plain.mjs'
 
 const BIN_S = 60
-const SPEED_STEP_MPS = 4 / 3.6
-const BOUND_CELL_S = 40
+const SPEED_STEP_MPS = 10 / 3.6
+const BOUND_CELL_S = 150
 const TARGET = 0.35
 const SPREADS = {
   sunDay: 0.03,
@@ -69,7 +69,9 @@ export function plannerBench() {
   const drive = backTrack(day, search.result, endS)
   const better = timed(5, () => refine(day, drive))
   const arrivalS = better.result.track.atS[day.pieces]
-  const bound = timed(3, () => earliestArrival(day, better.result.sPerJ, arrivalS, BOUND_CELL_S))
+  const bound = timed(3, () =>
+    earliestArrival(day, better.result.sPerJ, arrivalS, BOUND_CELL_S, better.result.track.atS),
+  )
   if (!(bound.result <= arrivalS)) throw new Error('a bound above the plan')
   const lay = ({ drive: of }) =>
     courseOf(day, of, {

@@ -5,7 +5,7 @@ import { refine, type Refined } from './refine.ts'
 import { simulate } from './simulate.ts'
 
 const BIN_S = 60
-const SPEED_STEP_MPS = 4 / 3.6
+const SPEED_STEP_MPS = 10 / 3.6
 
 /**
  * The best drive through a day's tables: the frontier's, refined.

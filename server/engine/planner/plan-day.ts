@@ -3,7 +3,16 @@ import type { SunPath } from '../sun.ts'
 import { bestDrive } from './best-drive.ts'
 import { earliestArrival } from './bound-day.ts'
 import type { DayTables } from './day-tables.ts'
-import { isNear, motorMps, planSun, type Reach, reachOf, type SunAhead, sunAhead, tablesAlong } from './engine-tables.ts'
+import {
+  isNear,
+  motorMps,
+  planSun,
+  type Reach,
+  reachOf,
+  type SunAhead,
+  sunAhead,
+  tablesAlong,
+} from './engine-tables.ts'
 import { holds, isBetterVerdict, judge, type Verdict } from './judge.ts'
 import { refine, type Refined } from './refine.ts'
 import { driveOf, type Section, sectionsFor } from './sections.ts'

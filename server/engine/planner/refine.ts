@@ -15,7 +15,7 @@ export interface Refined {
 const ROUNDS = 10
 const STEPS = 60
 /** A drive is left when no step promises more. [S] */
-const CLOSE_S = 1e-3
+const CLOSE_S = 1e-4
 /** How close to floor and target a drive is brought. [J] */
 const SPARE_J = 36
 /** A price to start from: 2bv³ at 80 km/h of a light car. [s/J] */

@@ -90,7 +90,7 @@ describe('the bound', () => {
       const speedMps = day.fastestMps.map((fastest) => Math.min(fastest, 75 / 3.6))
       const made = refine(day, { speedMps, waitS: new Float64Array(day.pieces + 1) })
       const endS = made.track.atS[day.pieces]
-      const [wide, usual, narrow] = [90, 30, 10].map((stepS) => earliestPossible(day, made.sPerJ, endS, stepS))
+      const [wide, usual, narrow] = [120, 60, 30].map((stepS) => earliestPossible(day, made.sPerJ, endS, stepS))
       expect(narrow).toBeGreaterThan(usual)
       expect(usual).toBeGreaterThan(wide)
       expect(endS - narrow).toBeLessThan(0.5 * (endS - wide))
