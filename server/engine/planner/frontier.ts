@@ -1,3 +1,4 @@
+import { firstAbove } from './crossing.ts'
 import { type DayTables, type Load, loadAt, pieceMps, pieceS, rowAt, storedW } from './day-tables.ts'
 
 /** Most energy at every place and time, and the earliest that each place can be reached. */
@@ -316,50 +317,11 @@ function nextKnot(day: DayTables, found: Frontier, layer: number): void {
   const firstBinS = fromS + firstBin * stepS
   const { atS, J } = firstAbove(
     (s) => bestArrival(day, found, layer, s).J - floorJ,
-    { atS: earliestS, J: Math.max(atOnceJ - floorJ, -FAR_UNDER_J) },
+    { atS: earliestS, J: atOnceJ - floorJ },
     { atS: firstBinS, J: mostJ[row + firstBin] - floorJ },
   )
   settle(atS, J + floorJ)
 }
-
-/** Stands for an instant that cannot be reached at all. [J] */
-const FAR_UNDER_J = 1e6
-const CLOSE_S = 1e-3
-
-/**
- * Where something crosses 0 from below, never before it: false position, the end that stays halved (Illinois).
- *
- * @source Dowell & Jarratt, A modified regula falsi method, BIT 11 (1971) (from memory)
- */
-function firstAbove(
-  excessJ: (atS: number) => number,
-  under: { atS: number; J: number },
-  above: { atS: number; J: number },
-): { atS: number; J: number } {
-  let low = under
-  let high = above
-  let lowJ = low.J
-  let highJ = high.J
-  for (let n = 0; n < BISECTIONS && high.atS - low.atS > CLOSE_S; n++) {
-    const share = n % 4 === 3 || !(highJ > lowJ) ? 0.5 : lowJ / (lowJ - highJ)
-    const atS = low.atS + (high.atS - low.atS) * Math.min(Math.max(share, 0.02), 0.98)
-    const J = Math.max(excessJ(atS), -FAR_UNDER_J)
-    if (J >= 0) {
-      if (high !== above) lowJ /= 2
-      high = { atS, J }
-      highJ = J
-    } else {
-      if (low !== under) highJ /= 2
-      low = { atS, J }
-      lowJ = J
-    }
-    if (high.J < CLOSE_J) break
-  }
-  return high
-}
-
-/** An excess under this is at the floor. [J] */
-const CLOSE_J = 1
 
 /** Narrowing of the golden section. */
 const GOLDEN = (Math.sqrt(5) - 1) / 2
