@@ -119,7 +119,7 @@ export function bestDay(task: DayTask): { day: DayAtWork; found: { best: Judged;
   const first = drive(task.startMps ?? new Float64Array(race.course.pieces.count).fill(SOME_MPS))
   const reach = reachOf({ race, dayIndex, base: first.forecast, path, targetCharge })
   if (reach.count <= 0) return null
-  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive, sun: null }
+  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive }
   const found = settleDown(day, first, null, MOST_ROUNDS)
   return found === null ? null : { day, found }
 }
@@ -132,8 +132,8 @@ export interface DayAtWork {
   path: SunPath
   reach: Reach
   drive: (speedMps: Float64Array) => Judged
-  /** The sun ahead as it was last worked out. */
-  sun: SunAhead | null
+  /** The sun ahead as it was last worked out; overwritten. */
+  sun?: SunAhead
 }
 
 /**
@@ -183,7 +183,7 @@ export function settledTables(
 ): { tables: DayTables; heldMps: Float64Array } {
   const { reach } = day
   const along = { ...day, base: now.forecast }
-  if (day.sun === null || !isNear(day.sun, along, reach)) day.sun = sunAhead(along, reach, soonestS(day, now))
+  if (day.sun === undefined || !isNear(day.sun, along, reach)) day.sun = sunAhead(along, reach, soonestS(day, now))
   const tables = tablesAlong(along, reach, day.sun)
   const { speedMps: heldMps } = driveAlong(tables, now.speedMps, reach.first)
   settle(tables, along, reach, now.forecast, heldMps)
@@ -243,7 +243,7 @@ export function someTables({
   if (reach.count <= 0) return null
   const now = { speedMps, forecast: base, verdict: judge(race, base, targetCharge) }
   const drive = () => now
-  const { tables } = settledTables({ race, dayIndex, targetCharge, path, reach, drive, sun: null }, now)
+  const { tables } = settledTables({ race, dayIndex, targetCharge, path, reach, drive }, now)
   return { tables, reach }
 }
 
