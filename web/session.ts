@@ -13,8 +13,10 @@ export async function signIn(): Promise<void> {
   if (standing.value !== 'no-contact') history.replaceState(null, '', location.pathname)
 }
 
-/** Ends this browser's stay; the owner's link opens it again. */
+/** Ends this browser's stay and forgets the race's documents; the owner's link opens it again. */
 export async function signOut(): Promise<void> {
   const answer = await tell(`${BASE}/sessions`, { method: 'DELETE' })
-  if (answer.value !== undefined || answer.refusal.status === 401) location.assign('./')
+  if (answer.value === undefined && answer.refusal.status !== 401) return
+  indexedDB.deleteDatabase('stagewatt')
+  location.assign('./')
 }

@@ -23,7 +23,14 @@ export async function startService(): Promise<Service> {
   const folder = mkdtempSync(join(tmpdir(), 'stagewatt-browser-'))
   const child = spawn(process.execPath, ['server/start.mjs'], {
     cwd: ROOT,
-    env: { ...process.env, DATABASE_URL: '', DATA_DIR: join(folder, 'data'), PORT: '0', HOST: '127.0.0.1' },
+    env: {
+      ...process.env,
+      DATABASE_URL: '',
+      DATA_DIR: join(folder, 'data'),
+      PORT: '0',
+      HOST: '127.0.0.1',
+      COMPUTE_LIMIT_S: '120',
+    },
     stdio: ['ignore', 'pipe', 'pipe'],
   })
   const stop = async (): Promise<void> => {

@@ -3,7 +3,7 @@ import { Mark } from '../charts/mark.tsx'
 import { Rulings } from '../charts/bar.tsx'
 import { ageAmount, clockAt, dayText, offsetText, zoneOffsetMin } from '../format.ts'
 import { nowMs } from '../shown.ts'
-import { choice, days, isHeard, lastHeardMs, lists, worked, workingSinceMs } from '../state.ts'
+import { choice, days, isHeard, lastHeardMs, lists, refusal, worked, workingSinceMs } from '../state.ts'
 import { standing } from '../session.ts'
 import { DayView } from './day.tsx'
 import { Landing } from './landing.tsx'
@@ -19,6 +19,8 @@ const QUIET_MS = 700
 
 export function App() {
   const { value } = standing
+  const isThere = worked.value !== null || refusal.value !== null
+  useEffect(() => (isThere ? fetchRoadside() : undefined), [isThere])
   if (value !== null && value !== 'inside') return <Landing standing={value} />
   const Screen = VIEWS[choice.value.view]
   return (
@@ -36,13 +38,19 @@ export function App() {
 
 const loadLog = async () => (await import('./log.tsx')).LogView
 const loadStop = async () => (await import('./stop.tsx')).StopView
-/** Log and Stop are for the roadside, so they come along once the day is there. [ms] */
+const loadHere = async () => (await import('./here.tsx')).HereView
+const keepOffline = async () => (await import('../phone/offline.ts')).goOffline()
+/** What the roadside needs comes along once the day is there. [ms] */
 const ROADSIDE_AFTER_MS = 4000
-for (const load of [loadLog, loadStop]) setTimeout(() => load().catch(() => undefined), ROADSIDE_AFTER_MS)
+const fetchRoadside = (): void => {
+  for (const load of [loadLog, loadStop, loadHere, keepOffline])
+    setTimeout(() => load().catch(() => undefined), ROADSIDE_AFTER_MS)
+}
 
 /** Screens that are not needed at once are fetched when they are opened. */
 const VIEWS = {
   day: DayView,
+  here: late(loadHere),
   tonight: late(async () => (await import('./tonight.tsx')).TonightView),
   stop: late(loadStop),
   log: late(loadLog),
@@ -127,7 +135,7 @@ function Working({ ms }: { ms: number }) {
 }
 
 /** The tab that a screen without one of its own belongs to. */
-const standsUnder = (view: View): View => (view === 'coast-down' ? 'set-up' : view)
+const standsUnder = (view: View): View => (view === 'coast-down' ? 'set-up' : view === 'here' ? 'day' : view)
 
 const TABS = [
   { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },

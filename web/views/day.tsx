@@ -3,6 +3,7 @@ import { stageId } from '../shown.ts'
 import { choice, choose, days, isComplete, lists, refusal, worked, workingSinceMs, type Worked } from '../state.ts'
 import { daySentence, stageSentence } from '../sentence.ts'
 import { clockAt, dayText } from '../format.ts'
+import { hashOf } from '../choice.ts'
 import { AgeOfData } from './age-of-data.tsx'
 import { Assumptions } from './assumptions.tsx'
 import { DayFacts, StageFacts } from './facts.tsx'
@@ -23,6 +24,7 @@ export function DayView() {
     <>
       <DayTabs />
       {refusal.value !== null && <RefusedDay refusal={refusal.value} last={last} />}
+      {last === null && refusal.value?.code === 'no-contact' && <HereLink />}
       {last === null ? refusal.value === null && <Waiting /> : <Budget last={last} />}
     </>
   )
@@ -60,6 +62,7 @@ function Budget({ last }: { last: Worked }) {
           {stage === undefined ? <DayFacts day={day} /> : <StageFacts stage={stage} day={day} />}
         </div>
         <SpeedPanel day={day} />
+        <HereLink />
         <DayBand day={day} />
         <Stages day={day} />
       </div>
@@ -72,6 +75,13 @@ function Budget({ last }: { last: Worked }) {
     </div>
   )
 }
+
+/** The way to the rest of the day, which works without contact too. */
+const HereLink = () => (
+  <p class="pad links">
+    <a href={hashOf({ ...choice.value, view: 'here' })}>Go on from where the car is; what if</a>
+  </p>
+)
 
 /** Whether another day or race was asked for than the one shown. */
 const isOutdated = (last: Worked): boolean =>
