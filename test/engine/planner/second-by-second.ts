@@ -98,7 +98,7 @@ export function racedByTheSecond(days: RacedDay[], openingJ: number): Driven[] {
 }
 
 /** The cubic of Catmull and Rom by its matrix. */
-function cubicLookUp(values: Float64Array, from: number, step: number, at: number): number {
+export function cubicLookUp(values: Float64Array, from: number, step: number, at: number): number {
   const last = values.length - 1
   const place = Math.min(Math.max((at - from) / step, 0), last)
   const i = Math.min(Math.floor(place), last - 1)
