@@ -1,8 +1,10 @@
-import loadSolver from 'highs'
+import * as highs from 'highs'
 import type { DayTables } from '../../../server/engine/planner/day-tables.ts'
 import { cubicLookUp } from './second-by-second.ts'
 
 const WH = 3600
+/** Its types are those of a CommonJS module, whose default is in the default; what is loaded is not. */
+const loadSolver = highs.default as unknown as typeof highs.default.default
 
 /** What a linear programme finds for a day. */
 export interface Linear {
