@@ -2,7 +2,17 @@ import type { SpeedsInput } from '../server/documents/speeds.ts'
 import type { FollowedChoice } from './crew-types.ts'
 import { dateIn } from './format.ts'
 
-export const VIEWS = ['day', 'here', 'tonight', 'stop', 'log', 'trackers', 'set-up', 'coast-down'] as const
+export const VIEWS = [
+  'day',
+  'here',
+  'tonight',
+  'race-plan',
+  'stop',
+  'log',
+  'trackers',
+  'set-up',
+  'coast-down',
+] as const
 export type View = (typeof VIEWS)[number]
 
 /** What a page of the client shows: kept in its address, so that a crew can send it and a reload keeps it. */
@@ -76,6 +86,19 @@ export const sectionsOf = (speeds: SpeedsInput): string =>
         speeds.speedKmh,
         ...speeds.sections.map(({ stage, fromKm, toKm, speedKmh }) => [stage, fromKm, toKm, speedKmh].join(' ')),
       ].join()
+
+/** Whether the crew follows these speeds to the same camp with the same car and sky. */
+export const isFollowing = (
+  followed: FollowedChoice | null,
+  { carId, skyId, speeds, until }: Pick<FollowedChoice, 'carId' | 'skyId' | 'speeds' | 'until'>,
+): boolean =>
+  followed !== null &&
+  followed.carId === carId &&
+  followed.skyId === skyId &&
+  followed.until?.stage === until?.stage &&
+  followed.until?.km === until?.km &&
+  followed.speeds.kind === speeds.kind &&
+  sectionsOf(followed.speeds) === sectionsOf(speeds)
 
 /** What is followed in a few words. */
 export function wayOf(speeds: SpeedsInput): string {

@@ -48,7 +48,7 @@ export const planAtWork = (entries: PlanEntry[], day: PlanDay): PlanEntry | null
 
 /** Documents behind a plan that were saved after it was ordered. */
 export function savedSince(
-  { raceId, carId, skyId, startedAt }: PlanEntry,
+  { raceId, carId, skyId, startedAt }: Pick<PlanEntry, 'raceId' | 'carId' | 'skyId' | 'startedAt'>,
   lists: Record<'races' | 'cars' | 'skies', Item[]>,
 ): string[] {
   const behind: [string, Item | undefined][] = [

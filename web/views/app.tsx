@@ -52,6 +52,7 @@ const VIEWS = {
   day: DayView,
   here: late(loadHere),
   tonight: late(async () => (await import('./tonight.tsx')).TonightView),
+  'race-plan': late(async () => (await import('./race-plan.tsx')).RacePlanView),
   stop: late(loadStop),
   log: late(loadLog),
   trackers: late(async () => (await import('./trackers.tsx')).TrackersView),
@@ -64,7 +65,8 @@ function Top() {
   const day = days.value.find((item) => item.date === choice.value.date)
   const offsetMin =
     day === undefined ? -new Date(nowMs.value).getTimezoneOffset() : zoneOffsetMin(day.zone, nowMs.value)
-  const where = [race?.name ?? 'Stagewatt', ...(day === undefined ? [] : [dayText(day.date)])].join(', ')
+  const isOfDay = day !== undefined && choice.value.view !== 'race-plan'
+  const where = [race?.name ?? 'Stagewatt', ...(isOfDay ? [dayText(day.date)] : [])].join(', ')
   useEffect(() => {
     document.title = race === undefined ? where : `${where}, Stagewatt`
   }, [where])
@@ -135,7 +137,8 @@ function Working({ ms }: { ms: number }) {
 }
 
 /** The tab that a screen without one of its own belongs to. */
-const standsUnder = (view: View): View => (view === 'coast-down' ? 'set-up' : view === 'here' ? 'day' : view)
+const STANDS_UNDER: Partial<Record<View, View>> = { here: 'day', 'race-plan': 'tonight', 'coast-down': 'set-up' }
+const standsUnder = (view: View): View => STANDS_UNDER[view] ?? view
 
 const TABS = [
   { view: 'day', name: 'Day', icon: 'M3 18h20M3 22h20M4 5l8 8 4-5 6 4' },

@@ -38,7 +38,11 @@ export function PlanAsk({ day }: { day: RacePlanDay }) {
             Plan this day
           </button>
         ) : (
-          <Work of={working} />
+          <Work
+            of={working}
+            note="so far; a long day takes about half a minute."
+            onBack={() => void takeBack(working.id)}
+          />
         )}
       </div>
     </section>
@@ -55,8 +59,15 @@ function usualText(date: string): string {
     : `left empty: the race’s ${grouped(target.chargePct)}${THIN}%`
 }
 
+interface WorkProps {
+  of: Pick<AtWork, 'step' | 'share' | 'sinceMs'>
+  /** What is said behind the time that it has taken. */
+  note: string
+  onBack: () => void
+}
+
 /** How far the work is: solid is done, ruling is to come. */
-function Work({ of }: { of: AtWork }) {
+export function Work({ of, note, onBack }: WorkProps) {
   const { text, unit } = ageAmount(nowMs.value - of.sinceMs)
   const tenths = Math.round(of.share * 10)
   return (
@@ -70,9 +81,9 @@ function Work({ of }: { of: AtWork }) {
       </p>
       <p class="note">
         {text}
-        {THIN + unit} so far; a long day takes about half a minute.
+        {THIN + unit} {note}
       </p>
-      <button type="button" class="btn line small" onClick={() => void takeBack(of.id)}>
+      <button type="button" class="btn line small" onClick={onBack}>
         Take it back
       </button>
     </div>

@@ -1,7 +1,7 @@
 import { signal, useSignal } from '@preact/signals'
 import { useEffect } from 'preact/hooks'
 import type { Answer, Refusal } from '../api.ts'
-import { sectionsOf, wayOf } from '../choice.ts'
+import { isFollowing, wayOf } from '../choice.ts'
 import { type Chosen, follow, type RaceDay, unfollow } from '../crew.ts'
 import { followedOn, loadFollowed } from '../crew-state.ts'
 import type { FollowedChoice } from '../crew-types.ts'
@@ -29,10 +29,11 @@ export function PlanPublish({ entry, plan }: PublishProps) {
   const known = followedOn(day)
   const { text, isOffered } = steadyText(plan)
   const speeds = isSteady.value && plan.steady !== null ? plan.steady.speeds : plan.forPeople.speeds
-  const isRecord = isFollowed(known?.choice ?? null, entry, { speeds, until: plan.camp?.until ?? null })
+  const until = plan.camp?.until ?? null
+  const chosen = { carId: entry.carId, skyId: entry.skyId, speeds, until }
+  const isRecord = isFollowing(known?.choice ?? null, chosen)
   const before = replaced.value?.race === day.race && replaced.value.date === day.date ? replaced.value : null
 
-  const until = plan.camp?.until ?? null
   const change = async (ask: (version: number | null) => Promise<Answer<unknown>>): Promise<boolean> => {
     const answer = await ask(followedOn(day)?.choice?.version ?? null)
     refused.value = answer.refusal ?? null
@@ -41,7 +42,6 @@ export function PlanPublish({ entry, plan }: PublishProps) {
   }
   const publish = async (): Promise<void> => {
     const was = followedOn(day)?.choice ?? null
-    const chosen = { carId: entry.carId, skyId: entry.skyId, speeds, until }
     if (await change((version) => follow(day, chosen, version))) replaced.value = { ...day, choice: was }
   }
   const undo = async (): Promise<void> => {
@@ -94,20 +94,6 @@ export function PlanPublish({ entry, plan }: PublishProps) {
 }
 
 const chosenOf = ({ carId, skyId, speeds, until }: FollowedChoice): Chosen => ({ carId, skyId, speeds, until })
-
-/** Whether the crew follows these speeds to the same camp with the same car and sky. */
-const isFollowed = (
-  followed: FollowedChoice | null,
-  { carId, skyId }: PlanAnswer,
-  { speeds, until }: Pick<FollowedChoice, 'speeds' | 'until'>,
-): boolean =>
-  followed !== null &&
-  followed.carId === carId &&
-  followed.skyId === skyId &&
-  followed.until?.stage === until?.stage &&
-  followed.until?.km === until?.km &&
-  followed.speeds.kind === speeds.kind &&
-  sectionsOf(followed.speeds) === sectionsOf(speeds)
 
 const sinceText = (followed: FollowedChoice | null | undefined, { forPeople }: Planned): string =>
   `since ${clockAt(Date.parse(followed?.savedAt ?? ''), forPeople.budget.utcOffsetMin)}`

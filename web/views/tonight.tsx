@@ -6,6 +6,7 @@ import { isPlanned, tight } from '../plan-words.ts'
 import { choice, choose, days, isComplete, lists } from '../state.ts'
 import '../style/stop.css'
 import '../style/tonight.css'
+import '../style/race.css'
 import { Conflict } from './conflict.tsx'
 import { PlanAge } from './plan-age.tsx'
 import { PlanAsk } from './plan-ask.tsx'
@@ -13,6 +14,7 @@ import { Impossible } from './plan-impossible.tsx'
 import { PlanFacts } from './plan-facts.tsx'
 import { PlanPublish } from './plan-publish.tsx'
 import { PlanRoad, PlanWorth } from './plan-result.tsx'
+import { PlanScope } from './plan-scope.tsx'
 import { PlanVariants } from './plan-variants.tsx'
 import { Tabs } from './tabs.tsx'
 
@@ -28,6 +30,7 @@ export function TonightView() {
   return (
     <div class="tonight">
       <div class="days-row">
+        <PlanScope of="tonight" />
         <Tabs
           label="Days of the race"
           chosen={date}
