@@ -2,17 +2,7 @@ import type { SpeedsInput } from '../server/documents/speeds.ts'
 import type { FollowedChoice } from './crew-types.ts'
 import { dateIn } from './format.ts'
 
-export const VIEWS = [
-  'day',
-  'here',
-  'tonight',
-  'race-plan',
-  'stop',
-  'log',
-  'trackers',
-  'set-up',
-  'coast-down',
-] as const
+export const VIEWS = ['day', 'here', 'tonight', 'race-plan', 'stop', 'log', 'trackers', 'set-up', 'coast-down'] as const
 export type View = (typeof VIEWS)[number]
 
 /** What a page of the client shows: kept in its address, so that a crew can send it and a reload keeps it. */

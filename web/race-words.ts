@@ -1,4 +1,5 @@
 import { clock, dayText, durationText, grouped, THIN, whText } from './format.ts'
+import type { Chosen } from './crew.ts'
 import { lengthText, tight } from './plan-words.ts'
 import type { RacePlanDay, RacePlanDocument } from './race-types.ts'
 
@@ -6,9 +7,13 @@ export type DrivenRaceDay = RacePlanDay & { road: NonNullable<RacePlanDay['road'
 
 export const isDriven = (day: RacePlanDay): day is DrivenRaceDay => day.road !== null
 
-/** Days whose speeds the crew can follow: what it follows knows no camp. */
-export const followable = ({ days }: RacePlanDocument): DrivenRaceDay[] =>
-  days.filter(isDriven).filter(({ state }) => state === 'driven')
+/** What the crew would follow on a day. */
+export const chosenOn = (day: DrivenRaceDay, { carId, skyId }: Pick<Chosen, 'carId' | 'skyId'>) => ({
+  carId,
+  skyId,
+  speeds: day.road.speeds,
+  until: day.camp?.until ?? null,
+})
 
 /** What is in place of a row's figures where a day is not driven. */
 export function stateText({ state }: RacePlanDay): string {

@@ -1,10 +1,11 @@
 import { clock, dayText, grouped, THIN, whText } from '../format.ts'
-import { chanceText, mergedSections, nearestPct, whRange, whyText } from '../plan-words.ts'
-import { orderRace, shownDate, wish } from '../race-plan-state.ts'
+import { chanceText, mergedSections, whRange } from '../plan-words.ts'
+import { shownDate } from '../race-plan-state.ts'
 import type { RaceSetting } from '../race-plans.ts'
 import type { RacePlanDay, RacePlanDocument } from '../race-types.ts'
 import { type DrivenRaceDay, held, isDriven, kindText, pctText, roadText, stateText } from '../race-words.ts'
 import { Wh } from './figures.tsx'
+import { RaceWaysOut } from './race-ways-out.tsx'
 
 /** One row a day; the one that is pressed shows its speeds below. */
 export function RaceDays({ plan }: { plan: RacePlanDocument }) {
@@ -76,7 +77,7 @@ export function RaceDay({ plan, day, setting }: { plan: RacePlanDocument; day: R
         <span class="note">{day.state === 'parked' ? day.from : `${day.from} to ${day.to}`}</span>
       </div>
       <p>{held(day.text)}</p>
-      {day.impossible !== null && <WaysOut day={day} setting={setting} />}
+      {day.state === 'camp' && <RaceWaysOut day={day} setting={setting} />}
       {isDriven(day) && <Figures day={day} />}
       {isDriven(day) && <Speeds day={day} />}
     </section>
@@ -151,39 +152,5 @@ function Speeds({ day: { road } }: { day: DrivenRaceDay }) {
         Kilometres from where the day starts. Limits inside a section are kept: slow down for them.
       </p>
     </details>
-  )
-}
-
-/** Why a day cannot be as it is wanted, and one click that mends its own charge. */
-function WaysOut({ day: { date, impossible }, setting }: { day: RacePlanDay; setting: RaceSetting }) {
-  if (impossible === null) return null
-  const lower = (pct: number): void => {
-    const night = { kind: 'fixed' as const, text: String(pct) }
-    wish.value = { ...wish.value, nights: { ...wish.value.nights, [date]: night } }
-    void orderRace(setting)
-    scrollTo({ top: 0 })
-  }
-  return (
-    <div class="impossible">
-      <p>{whyText(impossible)}</p>
-      {impossible.nearest.length > 0 && <h3>Any one of these would do</h3>}
-      <ul class="ways">
-        {impossible.nearest.map(({ what, text, value }) => (
-          <li>
-            <p>{held(text)}</p>
-            {what === 'target' && (
-              <button
-                type="button"
-                class="btn"
-                data-target-pct={nearestPct(value)}
-                onClick={() => lower(nearestPct(value))}
-              >
-                Plan the race with {pctText(nearestPct(value))} there
-              </button>
-            )}
-          </li>
-        ))}
-      </ul>
-    </div>
   )
 }

@@ -5,7 +5,7 @@ import { savedSince } from '../plan-pick.ts'
 import { atWork, ended, loadRacePlans, opened, refusal, shownDate } from '../race-plan-state.ts'
 import type { RaceSetting } from '../race-plans.ts'
 import type { RacePlanAnswer, RacePlanDocument } from '../race-types.ts'
-import { costsText, finishText, held, roadText } from '../race-words.ts'
+import { costsText, finishText, followable, held, roadText } from '../race-words.ts'
 import { nowMs } from '../shown.ts'
 import { choice, lists } from '../state.ts'
 import '../style/stop.css'
@@ -16,6 +16,7 @@ import { Conflict } from './conflict.tsx'
 import { PlanScope } from './plan-scope.tsx'
 import { RaceAsk } from './race-ask.tsx'
 import { RaceDay, RaceDays } from './race-days.tsx'
+import { RaceWaysOut } from './race-ways-out.tsx'
 import { RaceNights } from './race-nights.tsx'
 import { RacePublish } from './race-publish.tsx'
 
@@ -44,6 +45,7 @@ function Shown({ setting }: { setting: RaceSetting }) {
   const entry = opened.value
   const plan = entry?.plan ?? null
   const day = plan?.days.find(({ date }) => date === shownDate.value) ?? plan?.days[0]
+  const blocked = plan?.days.find(({ state }) => state === 'impossible')
   return (
     <>
       <div class="lead pad">
@@ -55,19 +57,22 @@ function Shown({ setting }: { setting: RaceSetting }) {
           {ended.value}
         </p>
         {entry !== null && plan !== null && <Age entry={entry} plan={plan} />}
+        {blocked !== undefined && <RaceWaysOut day={blocked} setting={setting} />}
         {plan !== null && <Facts plan={plan} />}
       </div>
       <div class="left">
         <RaceAsk setting={setting} hasPlan={plan !== null} />
       </div>
       <div class="middle">
-        {plan !== null && <RaceChart plan={plan} />}
+        {plan?.days.some(({ series }) => series !== null) && <RaceChart plan={plan} />}
         {plan !== null && <RaceDays plan={plan} />}
         {plan !== null && day !== undefined && <RaceDay plan={plan} day={day} setting={setting} />}
       </div>
       <div class="side">
         {plan !== null && <RaceNights plan={plan} setting={setting} />}
-        {entry !== null && plan !== null && <RacePublish key={entry.id} entry={entry} plan={plan} />}
+        {entry !== null && plan !== null && followable(plan).length > 0 && (
+          <RacePublish key={entry.id} entry={entry} plan={plan} />
+        )}
         {plan !== null && <Assumptions items={plan.assumptions} />}
       </div>
     </>

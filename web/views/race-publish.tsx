@@ -40,8 +40,9 @@ export function RacePublish({ entry, plan }: PublishProps) {
     for (const { date } of days) void read(date)
   }, [entry.id])
 
-  const put = async (date: string, choice: Pick<FollowedChoice, 'carId' | 'skyId' | 'speeds'>): Promise<boolean> => {
+  const put = async (date: string, of: Pick<FollowedChoice, 'carId' | 'skyId' | 'speeds'>): Promise<boolean> => {
     busyWith.value = date
+    const choice = { carId: of.carId, skyId: of.skyId, speeds: of.speeds }
     const answer = await follow({ race, date }, choice, known.value[date]?.version ?? null)
     if (answer.refusal !== undefined) refused.value = { date, refusal: answer.refusal }
     await read(date)
@@ -88,7 +89,7 @@ export function RacePublish({ entry, plan }: PublishProps) {
       <div class="steps">
         {open.length > 0 && (
           <button type="button" class="btn" disabled={isBusy} onClick={() => void publish(open)}>
-            {open.length === 1 ? `Follow ${dayText(open[0].date)}` : `Follow all ${open.length} days`}
+            {open.length === 1 ? `Follow ${dayText(open[0].date)}` : allText(open.length)}
           </button>
         )}
         {canUndo && (
@@ -122,6 +123,8 @@ export function RacePublish({ entry, plan }: PublishProps) {
     </section>
   )
 }
+
+const allText = (count: number): string => (count === 2 ? 'Follow both days' : `Follow all ${count} days`)
 
 function standingText(followed: FollowedChoice | null | undefined, isRecord: boolean): string {
   if (isRecord) return 'the crew follows this plan.'
