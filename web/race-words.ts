@@ -1,5 +1,5 @@
 import { clock, dayText, durationText, grouped, THIN, whText } from './format.ts'
-import type { Chosen } from './crew.ts'
+import type { FollowedChoice } from './crew-types.ts'
 import { lengthText, tight } from './plan-words.ts'
 import type { RacePlanDay, RacePlanDocument } from './race-types.ts'
 
@@ -8,7 +8,7 @@ export type DrivenRaceDay = RacePlanDay & { road: NonNullable<RacePlanDay['road'
 export const isDriven = (day: RacePlanDay): day is DrivenRaceDay => day.road !== null
 
 /** What the crew would follow on a day. */
-export const chosenOn = (day: DrivenRaceDay, { carId, skyId }: Pick<Chosen, 'carId' | 'skyId'>) => ({
+export const chosenOn = (day: DrivenRaceDay, { carId, skyId }: Pick<FollowedChoice, 'carId' | 'skyId'>) => ({
   carId,
   skyId,
   speeds: day.road.speeds,

@@ -1,10 +1,11 @@
 import { describe, expect, it } from 'vitest'
 import {
+  chosenOn,
   costsText,
   finishText,
-  followable,
   held,
   isDear,
+  isDriven,
   kindText,
   otherCloses,
   raceChartText,
@@ -54,9 +55,15 @@ describe('the words of a race plan', () => {
     expect(finishText(sampleRace([parked]))).toBeNull()
   })
 
-  it('let the crew follow driven days, not a camp', () => {
-    const camp = sampleRaceDay(SUN, { state: 'camp' })
-    expect(followable(sampleRace([sampleRaceDay(SAT), camp])).map(({ date }) => date)).toEqual([SAT])
+  it('let the crew follow a day to its end, or to its camp', () => {
+    const of = { carId: 'weaver-2', skyId: 'friday' }
+    const driven = sampleRaceDay(SAT)
+    const until = { stage: 'out', km: 320 }
+    const camp = sampleRaceDay(SUN, { state: 'camp', camp: { until, leftKm: 248 } })
+    expect([driven, camp].filter(isDriven).map((day) => chosenOn(day, of))).toEqual([
+      { ...of, speeds: driven.road?.speeds, until: null },
+      { ...of, speeds: camp.road?.speeds, until },
+    ])
   })
 
   it('list the charges that the race says otherwise, or not at all', () => {

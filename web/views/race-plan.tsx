@@ -5,7 +5,7 @@ import { savedSince } from '../plan-pick.ts'
 import { atWork, ended, loadRacePlans, opened, refusal, shownDate } from '../race-plan-state.ts'
 import type { RaceSetting } from '../race-plans.ts'
 import type { RacePlanAnswer, RacePlanDocument } from '../race-types.ts'
-import { costsText, finishText, followable, held, roadText } from '../race-words.ts'
+import { costsText, finishText, held, isDriven, roadText } from '../race-words.ts'
 import { nowMs } from '../shown.ts'
 import { choice, lists } from '../state.ts'
 import '../style/stop.css'
@@ -70,9 +70,7 @@ function Shown({ setting }: { setting: RaceSetting }) {
       </div>
       <div class="side">
         {plan !== null && <RaceNights plan={plan} setting={setting} />}
-        {entry !== null && plan !== null && followable(plan).length > 0 && (
-          <RacePublish key={entry.id} entry={entry} plan={plan} />
-        )}
+        {entry !== null && plan?.days.some(isDriven) && <RacePublish key={entry.id} entry={entry} plan={plan} />}
         {plan !== null && <Assumptions items={plan.assumptions} />}
       </div>
     </>

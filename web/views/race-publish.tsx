@@ -1,13 +1,13 @@
 import { signal, useSignal } from '@preact/signals'
 import { useEffect } from 'preact/hooks'
-import { documentOf, type Refusal, save } from '../api.ts'
+import { type Answer, documentOf, type Refusal, save } from '../api.ts'
 import { isFollowing, wayOf } from '../choice.ts'
-import { follow, followedOf } from '../crew.ts'
+import { type Chosen, follow, followedOf, unfollow } from '../crew.ts'
 import type { FollowedChoice } from '../crew-types.ts'
 import { dayText } from '../format.ts'
 import { loadDates, raceDates } from '../race-plan-state.ts'
 import type { RacePlanAnswer, RacePlanDocument } from '../race-types.ts'
-import { type DrivenRaceDay, followable, otherCloses, pctText } from '../race-words.ts'
+import { chosenOn, type DrivenRaceDay, isDriven, otherCloses, pctText } from '../race-words.ts'
 import { Conflict } from './conflict.tsx'
 
 type Choices = Record<string, FollowedChoice | null>
@@ -27,8 +27,8 @@ export function RacePublish({ entry, plan }: PublishProps) {
   const refused = useSignal<{ date: string; refusal: Refusal } | null>(null)
   const known = useSignal<Choices>({})
   const busyWith = useSignal('')
-  const days = followable(plan)
-  const { raceId: race, carId, skyId } = entry
+  const days = plan.days.filter(isDriven)
+  const { raceId: race } = entry
 
   const read = async (date: string): Promise<FollowedChoice | null | undefined> => {
     const answer = await followedOf({ race, date })
@@ -40,16 +40,14 @@ export function RacePublish({ entry, plan }: PublishProps) {
     for (const { date } of days) void read(date)
   }, [entry.id])
 
-  const put = async (date: string, of: Pick<FollowedChoice, 'carId' | 'skyId' | 'speeds'>): Promise<boolean> => {
+  const change = async (date: string, ask: (version: number | null) => Promise<Answer<unknown>>): Promise<boolean> => {
     busyWith.value = date
-    const choice = { carId: of.carId, skyId: of.skyId, speeds: of.speeds }
-    const answer = await follow({ race, date }, choice, known.value[date]?.version ?? null)
+    const answer = await ask(known.value[date]?.version ?? null)
     if (answer.refusal !== undefined) refused.value = { date, refusal: answer.refusal }
     await read(date)
     return answer.refusal === undefined
   }
-  const isRecord = ({ date, road }: DrivenRaceDay): boolean =>
-    isFollowing(known.value[date] ?? null, { carId, skyId, speeds: road.speeds })
+  const isRecord = (day: DrivenRaceDay): boolean => isFollowing(known.value[day.date] ?? null, chosenOn(day, entry))
 
   const inTurn = async (work: () => Promise<void>): Promise<void> => {
     refused.value = null
@@ -59,9 +57,10 @@ export function RacePublish({ entry, plan }: PublishProps) {
   const publish = (these: DrivenRaceDay[]) =>
     inTurn(async () => {
       const before: Choices = replaced.value?.plan === entry.id ? { ...replaced.value.choices } : {}
-      for (const { date, road } of these) {
+      for (const day of these) {
+        const { date } = day
         const was = known.value[date] ?? null
-        if (!(await put(date, { carId, skyId, speeds: road.speeds }))) break
+        if (!(await change(date, (version) => follow({ race, date }, chosenOn(day, entry), version)))) break
         before[date] = was
         replaced.value = { plan: entry.id, choices: { ...before } }
       }
@@ -69,7 +68,9 @@ export function RacePublish({ entry, plan }: PublishProps) {
   const undo = (choices: Choices) =>
     inTurn(async () => {
       for (const [date, was] of Object.entries(choices)) {
-        if (was !== null && !(await put(date, was))) return
+        const back = (version: number | null): Promise<Answer<unknown>> =>
+          was === null ? unfollow({ race, date }, version ?? 0) : follow({ race, date }, chosenOf(was), version)
+        if (!(await change(date, back))) return
       }
       replaced.value = null
     })
@@ -77,24 +78,20 @@ export function RacePublish({ entry, plan }: PublishProps) {
   const open = days.filter((day) => known.value[day.date] !== undefined && !isRecord(day))
   const before = replaced.value?.plan === entry.id ? replaced.value.choices : {}
   const isBusy = busyWith.value !== ''
-  const canUndo = Object.values(before).some((choice) => choice !== null)
   return (
     <section class="sec pad publish" aria-labelledby="race-publish-title" id="race-publish">
       <div class="sech">
         <h2 id="race-publish-title">Plan of record</h2>
       </div>
-      {days.length < plan.days.filter(({ road }) => road !== null).length && (
-        <p class="note">A day that ends at a camp is for reading: what the crew follows knows no camp.</p>
-      )}
       <div class="steps">
         {open.length > 0 && (
           <button type="button" class="btn" disabled={isBusy} onClick={() => void publish(open)}>
             {open.length === 1 ? `Follow ${dayText(open[0].date)}` : allText(open.length)}
           </button>
         )}
-        {canUndo && (
+        {Object.keys(before).length > 0 && (
           <button type="button" class="btn line" disabled={isBusy} onClick={() => void undo(before)}>
-            Undo: follow what was followed before
+            Undo: follow as before
           </button>
         )}
       </div>
@@ -123,6 +120,8 @@ export function RacePublish({ entry, plan }: PublishProps) {
     </section>
   )
 }
+
+const chosenOf = ({ carId, skyId, speeds, until }: FollowedChoice): Chosen => ({ carId, skyId, speeds, until })
 
 const allText = (count: number): string => (count === 2 ? 'Follow both days' : `Follow all ${count} days`)
 
