@@ -2,7 +2,8 @@ import type { Opening, Race } from '../engine/forecast.ts'
 import { storedJ } from '../engine/battery.ts'
 import { InputError } from '../engine/input-error.ts'
 import { nightCost } from '../engine/planner/night-costs.ts'
-import { planRace, type RaceDay, type RaceTask } from '../engine/planner/plan-race.ts'
+import { planRace, type RaceDay } from '../engine/planner/plan-race.ts'
+import type { RaceTask } from '../engine/planner/race-charges.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
 import { type DrivenDay, drivenRace } from './forecast.ts'
 import { dayName, localIso } from './local-time.ts'
@@ -23,9 +24,6 @@ const COSTED_SHARE = 0.9
 
 type Tell = (progress: { step: string; share: number }) => void
 
-/** The planner, which may tell each day that it has done. */
-const plan: (task: RaceTask, tell?: (day: unknown) => void) => ReturnType<typeof planRace> = planRace
-
 /**
  * The plan of a race: all its days together, so that the nights between them close with what serves the whole.
  *
@@ -37,7 +35,7 @@ export function racePlanDocuments(request: RacePlanRequest, tell: Tell = () => {
   const count = task.race.days.length - task.dayIndex
   tell({ step: 'Looking for the best nights', share: 0.02 })
   let done = 0
-  const planned = plan(task, () => {
+  const planned = planRace(task, () => {
     done = Math.min(done + 1, count)
     tell({ step: `Planning day ${done} of ${count}`, share: (PLANNED_SHARE * done) / (count + 1) })
   })

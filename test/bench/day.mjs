@@ -30,52 +30,66 @@ function road(km) {
   return routeDocument.parse({ name: 'Bench road', points: { latDeg, lonDeg, elevationM } })
 }
 
-/** The demo car and sky on a 600 km Saturday with two stops. */
-export function benchRace() {
-  const stage = (i, fromKm, toKm, more) => ({
-    id: `s${i}`,
-    name: `Stage ${i}`,
-    route: 'road',
-    fromKm,
-    toKm,
-    start: `p${i - 1}`,
-    finish: `p${i}`,
-    ...more,
-  })
-  const race = raceDocument.parse({
-    name: 'Bench',
-    zone: 'Africa/Windhoek',
-    openingPct: 90,
-    days: [
-      {
-        date: '2026-10-17',
-        release: '05:45',
-        driving: { from: '08:00', to: '17:30' },
-        charging: [
-          { from: '06:00', to: '08:00' },
-          { from: '16:30', to: '18:30' },
-        ],
-        targetPct: 35,
-        stages: [
-          stage(1, 0, 200, { stop: { minutes: 30 } }),
-          stage(2, 200, 400, { stop: { minutes: 30 } }),
-          stage(3, 400, 600),
-        ],
-      },
-    ],
-  })
+const stage = (i, fromKm, toKm, more) => ({
+  id: `s${i}`,
+  name: `Stage ${i}`,
+  route: 'road',
+  fromKm,
+  toKm,
+  start: `p${i - 1}`,
+  finish: `p${i}`,
+  ...more,
+})
+
+const day = (date, stages, more) => ({
+  date,
+  release: '05:45',
+  driving: { from: '08:00', to: '17:30' },
+  charging: [
+    { from: '06:00', to: '08:00' },
+    { from: '16:30', to: '18:30' },
+  ],
+  stages,
+  ...more,
+})
+
+/** The demo car and sky on days of this road. */
+function raceOf(km, days) {
+  const race = raceDocument.parse({ name: 'Bench', zone: 'Africa/Windhoek', openingPct: 90, days })
   const { document } = readCsvSky(
     demo('sky.csv'),
     skyTableOptions.parse({ name: 'Bench', source: 'forecast', issuedAt: '2026-10-16T18:00:00+02:00' }),
   )
   return {
     car: carModel(carDocument.parse(JSON.parse(demo('weaver-2.json'))), { groundAlbedo: 0.2, skyModel: 'perez' }),
-    course: raceCourse(race, { road: road(600) }),
+    course: raceCourse(race, { road: road(km) }),
     stages: stageRules(race),
     days: dayRules(race),
     sky: skyModel(document).sky,
   }
 }
+
+/** A 600 km Saturday with two stops. */
+export const benchRace = () =>
+  raceOf(600, [
+    day(
+      '2026-10-17',
+      [stage(1, 0, 200, { stop: { minutes: 30 } }), stage(2, 200, 400, { stop: { minutes: 30 } }), stage(3, 400, 600)],
+      { targetPct: 35 },
+    ),
+  ])
+
+/** Five stages of 560 km on five days, a stop in the middle of each. */
+export const benchWeek = () =>
+  raceOf(
+    2800,
+    Array.from({ length: 5 }, (_, d) =>
+      day(`2026-10-${17 + d}`, [
+        stage(2 * d + 1, 560 * d, 560 * d + 280, { stop: { minutes: 30 } }),
+        stage(2 * d + 2, 560 * d + 280, 560 * d + 560),
+      ]),
+    ),
+  )
 
 export const OPENING = { standing: { stage: 0, placeM: 0, stopLeftS: 0 }, charge: 0.9 }
 

@@ -6,8 +6,10 @@ import { earliestArrival } from '../../dist/server/engine/planner/bound-day.js'
 import { frontier } from '../../dist/server/engine/planner/frontier.js'
 import { holds } from '../../dist/server/engine/planner/judge.js'
 import { planDay, someTables } from '../../dist/server/engine/planner/plan-day.js'
+import { planRace } from '../../dist/server/engine/planner/plan-race.js'
 import { refine } from '../../dist/server/engine/planner/refine.js'
-import { benchRace, OPENING } from './day.mjs'
+import { quickBase, quickWhatIf } from '../../dist/server/engine/planner/what-if.js'
+import { benchRace, benchWeek, OPENING } from './day.mjs'
 import { plainEarliestEnd } from './planner-plain.mjs'
 
 const BIN_S = 60
@@ -49,6 +51,30 @@ function midway({ forecast }) {
   const i = steps.toM.findIndex((M, n) => M >= 300_000 && steps.speedMps[n] > 0)
   const standing = { stage: 1, placeM: steps.toM[i], stopLeftS: 0, speedMps: steps.speedMps[i] }
   return { standing, charge: balance.charge[i], atMs: steps.toMs[i] }
+}
+
+/** A race of five days and 2,800 km, its nights free. */
+function wholeRace() {
+  const race = benchWeek()
+  const targetCharge = [Number.NaN, Number.NaN, Number.NaN, Number.NaN, 0.2]
+  const planned = timed(3, () => planRace({ race, dayIndex: 0, opening: OPENING, targetCharge }))
+  for (const { plan } of planned.result.days) soundPlan(plan)
+  const prices = planned.result.days.flatMap(({ plan }) => [plan.sPerJ[0], plan.sPerJ[plan.reach.count]])
+  return { raceMs: planned.ms, raceApart: Math.max(...prices) / Math.min(...prices) - 1 }
+}
+
+const CHANGE = { sun: 1, dragArea: 1, rolling: 1, massKg: 0, headwindMps: 0, openingCharge: 0, stopS: 0 }
+
+/** The longest of some quick answers about a planned day. */
+function quickAnswers(task) {
+  const base = quickBase(task)
+  const changes = [{ sun: 0.93 }, { dragArea: 1.05 }, { headwindMps: 1 }, { massKg: 10 }, { openingCharge: -0.03 }]
+  const times = changes.map((change) => {
+    const { result, ms } = timed(5, () => quickWhatIf(base, { ...CHANGE, ...change }))
+    if (!Number.isFinite(result.laterS)) throw new Error('a change without an answer')
+    return ms
+  })
+  return { whatIfMs: Math.max(...times) }
 }
 
 /** CPU times of planning the 600 km day and of its parts; refuses plans, bounds and frontiers that are not sound. */
@@ -98,5 +124,7 @@ export function plannerBench() {
     manyMs: many.ms,
     robustMs: robust.ms,
     touchesPct: 100 * robust.result.touches,
+    ...wholeRace(),
+    ...quickAnswers(task),
   }
 }

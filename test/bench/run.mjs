@@ -95,6 +95,12 @@ say(
   `written plainly ${ms(plan.plainMs)}; refinement ${ms(plan.refineMs)}`,
 )
 say('200 members', ms(plan.fewMs), `2,000 ${ms(plan.manyMs)}`)
+say(
+  'race of 2,800 km in five days, CPU',
+  ms(plan.raceMs),
+  `prices of energy ${(100 * plan.raceApart).toFixed(1)} % apart`,
+)
+say('quick what-if', ms(plan.whatIfMs), 'the longest of five changes')
 say('robust plan', ms(plan.robustMs), `touches the reserve on ${plan.touchesPct.toFixed(1)} % of fresh days`)
 const { firstS, secondS } = await startUpBench()
 say('first start, demo race loaded', `${firstS.toFixed(1)} s`, 'empty data folder, already built')

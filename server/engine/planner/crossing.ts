@@ -26,7 +26,7 @@ export function firstAbove(excessJ: (atS: number) => number, under: Excess, abov
   let [lowJ, highJ] = [low.J, high.J]
   let side = 0
   for (let n = 0; n < MOST_STEPS && high.atS - low.atS > CLOSE_S && high.J > CLOSE_J; n++) {
-    const share = n % 4 === 3 ? 0.5 : lowJ / (lowJ - highJ)
+    const share = n % 4 === 3 || low.J === FAR_UNDER_J ? 0.5 : lowJ / (lowJ - highJ)
     const atS = low.atS + (high.atS - low.atS) * Math.min(Math.max(share, 0.02), 0.98)
     const J = Math.max(excessJ(atS), FAR_UNDER_J)
     if (J >= 0) {

@@ -325,6 +325,8 @@ function nextKnot(day: DayTables, found: Frontier, layer: number): void {
 
 /** Narrowing of the golden section. */
 const GOLDEN = (Math.sqrt(5) - 1) / 2
+const TRIED = 12
+const CLOSE_MPS = 1e-3
 
 /** The speed over a piece with which most energy is left at an instant behind it, and that energy. */
 export function bestArrival(
@@ -338,28 +340,45 @@ export function bestArrival(
   const slowest = Math.min(day.slowestMps, fastest)
   const fromKnotMps = pieceMps(day, piece, atS - found.knotS[layer])
   const lowest = fromKnotMps > 0 ? Math.max(slowest, Math.min(fromKnotMps, fastest)) : fastest
-  let best = { J: drivenJ(day, found, layer, atS, lowest), speedMps: lowest }
-  const STEPS = 24
-  let at = 0
-  for (let j = 1; j <= STEPS; j++) {
-    const speedMps = lowest + ((fastest - lowest) * j) / STEPS
+  const best = { J: NEVER, speedMps: lowest }
+  const leftJ = (speedMps: number): number => {
     const J = drivenJ(day, found, layer, atS, speedMps)
     if (J > best.J) {
-      best = { J, speedMps }
-      at = j
+      best.J = J
+      best.speedMps = speedMps
+    }
+    return J
+  }
+  const step = (fastest - lowest) / TRIED
+  if (!(step > 0)) {
+    leftJ(lowest)
+    return best
+  }
+  for (let j = 0; j <= TRIED; j++) leftJ(lowest + step * j)
+  narrow(leftJ, Math.max(best.speedMps - step, lowest), Math.min(best.speedMps + step, fastest))
+  return best
+}
+
+/** Golden section towards the most of a function between two speeds. */
+function narrow(of: (speedMps: number) => number, fromMps: number, toMps: number): void {
+  let low = fromMps
+  let high = toMps
+  let left = high - (high - low) * GOLDEN
+  let right = low + (high - low) * GOLDEN
+  let [atLeft, atRight] = [of(left), of(right)]
+  while (high - low > CLOSE_MPS) {
+    if (atLeft < atRight) {
+      low = left
+      left = right
+      atLeft = atRight
+      right = low + (high - low) * GOLDEN
+      atRight = of(right)
+    } else {
+      high = right
+      right = left
+      atRight = atLeft
+      left = high - (high - low) * GOLDEN
+      atLeft = of(left)
     }
   }
-  let low = lowest + ((fastest - lowest) * Math.max(at - 1, 0)) / STEPS
-  let high = lowest + ((fastest - lowest) * Math.min(at + 1, STEPS)) / STEPS
-  for (let i = 0; i < 30 && high - low > 1e-6; i++) {
-    const left = high - (high - low) * GOLDEN
-    const right = low + (high - low) * GOLDEN
-    const leftJ = drivenJ(day, found, layer, atS, left)
-    const rightJ = drivenJ(day, found, layer, atS, right)
-    if (leftJ > best.J) best = { J: leftJ, speedMps: left }
-    if (rightJ > best.J) best = { J: rightJ, speedMps: right }
-    if (leftJ < rightJ) low = left
-    else high = right
-  }
-  return best
 }

@@ -1,7 +1,8 @@
 import { type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
 import { holds } from './judge.ts'
 import { bestDay } from './plan-day.ts'
-import { closingCharges, type RaceDay, type RaceTask } from './plan-race.ts'
+import type { RaceDay } from './plan-race.ts'
+import { raceCharges, type RaceTask } from './race-charges.ts'
 
 /** Speed on the forecast of a day that drives nothing. [Mps] */
 const SOME_MPS = 70 / 3.6
@@ -42,7 +43,7 @@ export function nightCost(task: RaceTask, days: RaceDay[], night: number): Night
   if (opening === null || !around.every((day) => isComparable(day, race))) return null
   const freed = targetCharge.map((charge, d) => (d === night ? Number.NaN : charge))
   const part = { race: { ...race, days: race.days.slice(0, to + 1) }, dayIndex: from, opening, targetCharge: freed }
-  const charges = closingCharges(part)
+  const { targetCharge: charges } = raceCharges(part)
   const freeS = drivenS(part, charges, around)
   if (freeS === null) return null
   const givenS = around.reduce((sum, { plan }) => sum + (plan === null ? 0 : onTheRoadS(plan.best.forecast)), 0)
