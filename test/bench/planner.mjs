@@ -81,10 +81,10 @@ function quickAnswers(task) {
 export function plannerBench() {
   const race = benchRace()
   const task = { race, dayIndex: 0, opening: OPENING, targetCharge: TARGET }
-  const plan = timed(3, () => planDay(task))
+  const plan = timed(7, () => planDay(task))
   soundPlan(plan.result)
   const later = dayFrom(race, 0, midway(plan.result.best))
-  const again = timed(3, () => planDay({ ...task, ...later, startMps: plan.result.best.speedMps }))
+  const again = timed(7, () => planDay({ ...task, ...later, startMps: plan.result.best.speedMps }))
   soundPlan(again.result)
   const tables = timed(3, () => someTables(task))
   const day = plan.result.tables
@@ -95,7 +95,7 @@ export function plannerBench() {
   const drive = backTrack(day, search.result, endS)
   const better = timed(5, () => refine(day, drive))
   const arrivalS = better.result.track.atS[day.pieces]
-  const bound = timed(3, () =>
+  const bound = timed(5, () =>
     earliestArrival(day, better.result.sPerJ, arrivalS, BOUND_CELL_S, better.result.track.atS),
   )
   if (!(bound.result <= arrivalS)) throw new Error('a bound above the plan')

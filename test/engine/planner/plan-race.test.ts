@@ -29,11 +29,11 @@ describe('a race of two days, the night between them free', { timeout: 120_000 }
     expect(free.targets[LAST]).toBeCloseTo(race.car.reserveCharge, 6)
   })
 
-  test('has one price of energy on both sides of the night, within 4 %', () => {
+  test('has one price of energy on both sides of the night, within 1.5 %', () => {
     const [first, second] = free.days
     const evening = first.plan?.sPerJ[first.plan.reach.count] ?? Number.NaN
     const morning = second.plan?.sPerJ[0] ?? Number.NaN
-    expect(Math.abs(evening / morning - 1)).toBeLessThan(0.04)
+    expect(Math.abs(evening / morning - 1)).toBeLessThan(0.015)
   })
 
   test('is what another simulator finds from the first start through the night to the last close, to 0.1 s and 0.1 Wh', () => {
@@ -65,7 +65,9 @@ test('a race of one day is that day', { timeout: 60_000 }, () => {
   const { days } = planRace({ race, dayIndex: LAST, opening: sunday.opening, targetCharge: [NaN, NaN, 0.3] })
   const alone = planDay({ race, dayIndex: LAST, opening: sunday.opening, targetCharge: 0.3 })
   expect(days.length).toBe(1)
-  expect(days[0].plan?.best.verdict.arrivalMs).toBeCloseTo(alone?.best.verdict.arrivalMs ?? 0, 0)
+  // Started from other speeds, both settle to within 0.3 s.
+  const apartMs = (days[0].plan?.best.verdict.arrivalMs ?? 0) - (alone?.best.verdict.arrivalMs ?? 0)
+  expect(Math.abs(apartMs)).toBeLessThan(300)
 })
 
 test('what a short day does not reach is driven on the next', { timeout: 120_000 }, () => {
