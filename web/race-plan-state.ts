@@ -1,5 +1,6 @@
 import { batch, signal } from '@preact/signals'
 import { documentOf, type Refusal } from './api.ts'
+import { dateIn } from './format.ts'
 import type { PlanNews } from './plan-types.ts'
 import { NO_WISH, type RaceDate, type RaceWish, wantedBy, wishOf } from './race-wish.ts'
 import { cancelRacePlan, orderRacePlan, raceEventsAt, racePlanOf, racePlansOf, type RaceSetting } from './race-plans.ts'
@@ -24,6 +25,11 @@ export const wish = signal<RaceWish>(NO_WISH)
 export const raceDates = signal<RaceDate[]>([])
 /** Day whose speeds are looked at; empty for the first. */
 export const shownDate = signal('')
+
+interface RaceBody {
+  zone: string
+  days: { date: string; targetPct?: number }[]
+}
 
 const ASK_AGAIN_MS = 3000
 let shown = ''
@@ -63,8 +69,11 @@ export async function loadRacePlans(setting: RaceSetting): Promise<void> {
 export async function loadDates(race: string): Promise<void> {
   const { value } = await documentOf('races', race)
   if (value === undefined) return
-  const { days }: { days: { date: string; targetPct?: number }[] } = JSON.parse(JSON.stringify(value.document))
+  const { zone, days }: RaceBody = JSON.parse(JSON.stringify(value.document))
   raceDates.value = days.map(({ date, targetPct }) => ({ date, targetPct: targetPct ?? null }))
+  // While a race is under way, what is left of it is planned.
+  const next = days.find(({ date }) => date >= dateIn(zone, Date.now()))
+  if (wish.value === NO_WISH && next !== undefined) wish.value = { ...NO_WISH, fromDate: next.date }
 }
 
 function take(plan: RacePlanAnswer): void {

@@ -1,4 +1,4 @@
-import type { Opening, Race } from '../engine/forecast.ts'
+import type { Race } from '../engine/forecast.ts'
 import { storedJ } from '../engine/battery.ts'
 import { InputError } from '../engine/input-error.ts'
 import { nightCost } from '../engine/planner/night-costs.ts'
@@ -8,6 +8,7 @@ import { ENGINE_VERSION } from '../engine/version.ts'
 import { type DrivenDay, drivenRace } from './forecast.ts'
 import { dayName, localIso } from './local-time.ts'
 import { zoneOf } from './race-model.ts'
+import type { RaceDocument } from './race.ts'
 import type { RacePlanDay, RacePlanDocument } from './race-plan.ts'
 import { type PlannedDay, racePlanDay } from './race-plan-day.ts'
 import type { RacePlanRequest } from './race-plan-request.ts'
@@ -85,11 +86,13 @@ function costsOf({ race }: RacePlanRequest, task: RaceTask, days: RaceDay[], tel
 
 /** The race in the engine's terms up to the last day wanted, and what is wanted of its nights. */
 function layOut(request: RacePlanRequest): { first: DrivenDay; task: RaceTask; assumptions: string[] } {
-  const { race: document, fromDate, toDate, from } = request
+  const { race: document, fromDate, toDate, from, openingPct } = request
+  if (openingPct !== undefined && from !== undefined)
+    throw new InputError('out-of-range', 'openingPct', `${openingPct} given; expected none where from tells the charge`)
   const lastDay = toDate === undefined ? document.days.length - 1 : indexOf(request, toDate, 'toDate')
   const date = fromDate ?? (from === undefined ? document.days[0].date : undefined)
-  if (date !== undefined) indexOf(request, date, 'fromDate')
-  const { days, assumptions } = drivenRace({ ...request, speeds: QUICK, date }, (day) => day)
+  const given = date === undefined ? document : opened(request, indexOf(request, date, 'fromDate'))
+  const { days, assumptions } = drivenRace({ ...request, race: given, speeds: QUICK, date }, (day) => day)
   const first = days[0]
   if (lastDay < first.dayIndex)
     throw new InputError('out-of-range', 'toDate', `${toDate} given; expected ${first.date}, the first day, or later`)
@@ -98,20 +101,19 @@ function layOut(request: RacePlanRequest): { first: DrivenDay; task: RaceTask; a
   const notes = race.days.flatMap((_, d) =>
     d > dayIndex ? [...skyNotes(request, race, d), ...measuredNotes(request, d)] : [],
   )
-  const task = {
-    race,
-    dayIndex,
-    opening: openingOf(request, first),
-    targetCharge: wantedOf(request, dayIndex, lastDay),
-  }
+  const task = { race, dayIndex, opening: first.opening, targetCharge: wantedOf(request, dayIndex, lastDay) }
   return { first, task, assumptions: [...new Set([...assumptions, ...notes])] }
 }
 
-function openingOf({ openingPct, from }: RacePlanRequest, { opening }: DrivenDay): Opening {
-  if (openingPct === undefined) return opening
-  if (from !== undefined)
-    throw new InputError('out-of-range', 'openingPct', `${openingPct} given; expected none where from tells the charge`)
-  return { ...opening, charge: openingPct / 100 }
+/** The race with the charge that the order gives as measured on the first planned day. */
+function opened({ race, openingPct }: RacePlanRequest, dayIndex: number): RaceDocument {
+  if (openingPct === undefined) return race
+  const days = race.days.map((day, d) => {
+    if (d !== dayIndex) return day
+    const { openingRestV: _volts, openingRestMin: _rest, openingMeterPct: _meter, ...rest } = day
+    return { ...rest, openingPct }
+  })
+  return { ...race, days }
 }
 
 /** Where the sky does not reach so far, the days may still be planned up to the last that it reaches. */

@@ -1,6 +1,6 @@
 import { describe, expect, test } from 'vitest'
 import { EXAMPLES } from '../../server/api/examples/all.ts'
-import { twoDayRace } from '../../server/api/examples/two-days.ts'
+import { twoDayRace, twoDaySky } from '../../server/api/examples/two-days.ts'
 import { checkDocument } from '../../server/documents/check.ts'
 import { forecastDocuments, forecastRequest } from '../../server/documents/forecast.ts'
 import type { RaceInput } from '../../server/documents/race.ts'
@@ -153,6 +153,20 @@ describe('a race plan', { timeout: 60_000 }, () => {
     const made = plan({ fromDate: SUNDAY, openingPct: 45 })
     expect(made.days.map(({ date }) => date)).toEqual([SUNDAY])
     expect(made.days[0].opening?.chargePct).toBeCloseTo(45, 6)
+  })
+
+  test('may begin after days that the sky does not reach, with the charge of the first that it does', () => {
+    const [place] = twoDaySky.places
+    const from = place.at.findIndex((at) => at.startsWith(SUNDAY))
+    const columns = Object.entries(place).map(([name, cells]) => [
+      name,
+      Array.isArray(cells) ? cells.slice(from) : cells,
+    ])
+    const sky = { ...twoDaySky, places: [Object.fromEntries(columns)] }
+    const made = plan({ fromDate: SUNDAY, openingPct: 45, sky })
+    expect(made.days.map(({ state }) => state)).toEqual(['driven'])
+    expect(made.days[0].opening?.chargePct).toBeCloseTo(45, 6)
+    expect(() => plan({ fromDate: SUNDAY, sky })).toThrow(InputError)
   })
 
   test('says that a charge measured on a later day is not used', () => {

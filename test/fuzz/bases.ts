@@ -198,6 +198,15 @@ export const WHAT_IFS: object[] = [
   },
 ]
 
+const ON = '2026-10-17'
+
+/** Days planned together: a night given, one freed, and one begun on the road. */
+export const RACE_PLANS: object[] = [
+  { ...WHOLE_DAY, members: 50, nights: [{ date: ON, kind: 'fixed', chargePct: 20 }] },
+  { ...WHOLE_DAY, members: 50, fromDate: ON, toDate: ON, openingPct: 60, nights: [{ date: ON, kind: 'free' }] },
+  { ...WHOLE_DAY, members: 50, from: { ...FROM, speedKmh: 60, packC: 25 }, spreads: { sunDayPct: 2 }, seed: 3 },
+]
+
 /** Variants by patch, by number and at speeds of their own. */
 export const VARIANTS: object[] = [
   {

@@ -3,6 +3,7 @@ import { DOCUMENTS as SCHEMAS } from '../../server/compute/documents.ts'
 import { openRequest } from '../../server/compute/forecast-jobs.ts'
 import { openComparison } from '../../server/compute/sky-jobs.ts'
 import { openVariants } from '../../server/compute/variant-jobs.ts'
+import { openRacePlanRequest } from '../../server/compute/race-plan-jobs.ts'
 import { openWhatIf } from '../../server/compute/what-if-jobs.ts'
 import { coastDownRequest } from '../../server/documents/coast-down.ts'
 import { speedsDocument } from '../../server/documents/speeds.ts'
@@ -13,6 +14,7 @@ import {
   COMPARISONS,
   DOCUMENTS,
   GPX,
+  RACE_PLANS,
   REQUESTS,
   ROUTE_TABLES,
   SKY_TABLES,
@@ -63,6 +65,9 @@ export const wrongWhatIf = (by: Chance): WrongBody =>
 
 export const wrongVariants = (by: Chance): WrongBody =>
   wrongJson(by, by.pick<unknown>(VARIANTS), publishedOnce(openVariants))
+
+export const wrongRacePlan = (by: Chance): WrongBody =>
+  wrongJson(by, by.pick<unknown>(RACE_PLANS), publishedOnce(openRacePlanRequest))
 
 const NEW_FORECASTS = SPEEDS.flatMap((speeds) => [
   { carId: 'fuzz-car', skyId: 'fuzz-sky', speeds },

@@ -9,6 +9,7 @@ import {
   COAST_TESTS,
   DOCUMENTS,
   GPX,
+  RACE_PLANS,
   REQUESTS,
   ROUTE_TABLES,
   SKY_TABLES,
@@ -80,6 +81,14 @@ describe('what is sound is accepted, so that one wrong field is what a refusal i
     for (const request of WHAT_IFS) {
       const wrong = { ...sound, body: JSON.stringify(request) }
       const attempt = sent('POST', '/api/v1/what-if', 'application/json', wrong, { touches: null, yields: null })
+      expect(await soundComplaint(service, attempt)).toBeNull()
+    }
+  })
+
+  test('every race plan', { timeout: 60_000 }, async () => {
+    for (const request of RACE_PLANS) {
+      const wrong = { ...sound, body: JSON.stringify(request) }
+      const attempt = sent('POST', '/api/v1/race-plan', 'application/json', wrong, { touches: null, yields: null })
       expect(await soundComplaint(service, attempt)).toBeNull()
     }
   })

@@ -1,5 +1,5 @@
 import { sent } from './attempt.ts'
-import { wrongComparison, wrongNewForecast, wrongRequest, wrongVariants, wrongWhatIf } from './bodies.ts'
+import { wrongComparison, wrongNewForecast, wrongRacePlan, wrongRequest, wrongVariants, wrongWhatIf } from './bodies.ts'
 import type { Door } from './document-doors.ts'
 
 /** Attempts that run at once; each has a race of its own, so that its forecasts can be watched. */
@@ -55,6 +55,13 @@ export const FORECAST_DOORS: Door[] = [
     takesDocuments: true,
     attempt: (by) =>
       sent('POST', '/api/v1/variants', 'application/json', wrongVariants(by), { touches: null, yields: null }),
+  },
+  {
+    name: 'POST race-plan',
+    count: 60,
+    takesDocuments: true,
+    attempt: (by) =>
+      sent('POST', '/api/v1/race-plan', 'application/json', wrongRacePlan(by), { touches: null, yields: null }),
   },
   {
     name: 'POST sky-comparison',
