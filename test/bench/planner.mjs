@@ -77,6 +77,15 @@ function quickAnswers(task) {
   return { whatIfMs: Math.max(...times) }
 }
 
+/** The planner's search of a day and the same written plainly; both must find the same end. */
+function searched(day) {
+  const search = timed(5, () => frontier(day, BIN_S, SPEED_STEP_MPS))
+  const endS = earliestEnd(day, search.result)
+  const plain = timed(1, () => plainEarliestEnd(day, BIN_S, SPEED_STEP_MPS))
+  if (!(Math.abs(plain.result - endS) < 1)) throw new Error(`the plain frontier ends ${plain.result - endS} s later`)
+  return { search, endS, plain }
+}
+
 /** CPU times of planning the 600 km day and of its parts; refuses plans, bounds and frontiers that are not sound. */
 export function plannerBench() {
   const race = benchRace()
@@ -88,10 +97,8 @@ export function plannerBench() {
   soundPlan(again.result)
   const tables = timed(3, () => someTables(task))
   const day = plan.result.tables
-  const search = timed(5, () => frontier(day, BIN_S, SPEED_STEP_MPS))
-  const endS = earliestEnd(day, search.result)
-  const plain = timed(1, () => plainEarliestEnd(day, BIN_S, SPEED_STEP_MPS))
-  if (!(Math.abs(plain.result - endS) < 1)) throw new Error(`the plain frontier ends ${plain.result - endS} s later`)
+  const { search, endS, plain } = searched(day)
+  const rest = searched(again.result.tables)
   const drive = backTrack(day, search.result, endS)
   const better = timed(5, () => refine(day, drive))
   const arrivalS = better.result.track.atS[day.pieces]
@@ -118,6 +125,8 @@ export function plannerBench() {
     tablesMs: tables.ms,
     frontierMs: search.ms,
     plainMs: plain.ms,
+    restFrontierMs: rest.search.ms,
+    restPlainMs: rest.plain.ms,
     refineMs: better.ms,
     boundMs: bound.ms,
     fewMs: few.ms,

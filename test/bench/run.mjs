@@ -94,6 +94,8 @@ say(
   ms(plan.frontierMs),
   `written plainly ${ms(plan.plainMs)}; refinement ${ms(plan.refineMs)}`,
 )
+// The yardstick is the search: tables, refinement and forecasts around it would be the same for both.
+say('frontier of the rest of that day', ms(plan.restFrontierMs), `written plainly ${ms(plan.restPlainMs)}`)
 say('200 members', ms(plan.fewMs), `2,000 ${ms(plan.manyMs)}`)
 say(
   'race of 2,800 km in five days, CPU',
