@@ -136,20 +136,4 @@ describe('random cloudy days', () => {
     gaps.sort((a, b) => a - b)
     expect(gaps[gaps.length >> 1]).toBeLessThan(0.002)
   }, 60_000)
-
-  it('is never later with more sun, more energy or less wanted', () => {
-    for (const { day, result } of made.slice(0, 5)) {
-      if (result === null) continue
-      const easier = [
-        { ...day, harvestW: day.harvestW.map((W) => W * 1.02) },
-        { ...day, start: { ...day.start, energyJ: day.start.energyJ + 180_000 } },
-        { ...day, targetJ: day.targetJ - 180_000 },
-      ]
-      for (const other of easier) {
-        const better = plan(other)
-        expect(better).not.toBeNull()
-        expect(endOf(other, better!.track)).toBeLessThan(endOf(day, result.track) + 1)
-      }
-    }
-  }, 60_000)
 })
