@@ -15,6 +15,8 @@ export const followed = signal<Followed | null>(null)
 export const news = signal(0)
 /** What the service told last about a plan of the day, as JSON. */
 export const planNews = signal('')
+/** What it told last about a variant of a plan of the day, as JSON. */
+export const variantNews = signal('')
 
 /** Reads the followed choice of a day; a lost request leaves the one that is known. */
 export async function loadFollowed(day: RaceDay): Promise<Followed | null> {

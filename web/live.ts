@@ -9,14 +9,19 @@ const AGAIN_MS = 5000
  *
  * A stream that was refused is asked for again after a while: the service may have been starting.
  */
-export function listenTo(day: RaceDay, onNews: () => void, onPlan: (told: string) => void): () => void {
+export function listenTo(
+  day: RaceDay,
+  onNews: () => void,
+  onWork: (kind: 'plan' | 'variant', told: string) => void,
+): () => void {
   let source: EventSource | null = null
   let timer: ReturnType<typeof setTimeout> | undefined
   let wasLost = false
   const open = (): void => {
     source = new EventSource(eventsAt(day))
     for (const kind of KINDS) source.addEventListener(kind, onNews)
-    source.addEventListener('plan', ({ data }: MessageEvent<string>) => onPlan(data))
+    for (const kind of ['plan', 'variant'] as const)
+      source.addEventListener(kind, ({ data }: MessageEvent<string>) => onWork(kind, data))
     source.addEventListener('open', () => {
       // What happened while nobody listened may be more than the service keeps.
       if (wasLost) onNews()

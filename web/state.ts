@@ -18,7 +18,7 @@ import {
 import { type Choice, choiceOf, dayToShow, hashOf, isSame } from './choice.ts'
 import { standing } from './session.ts'
 import { followedBudget } from './crew.ts'
-import { followedOn, loadFollowed, news, planNews } from './crew-state.ts'
+import { followedOn, loadFollowed, news, planNews, variantNews } from './crew-state.ts'
 import { listenTo } from './live.ts'
 import { stageId, tick } from './shown.ts'
 
@@ -219,8 +219,12 @@ export function start(): void {
   effect(() => {
     const [race, date]: string[] = JSON.parse(day.value)
     if (standing.value !== 'inside' || race === '' || date === '') return undefined
-    const hearPlan = (told: string): void => void (planNews.value = told)
-    return listenTo({ race, date }, () => void hearNews({ race, date }), hearPlan)
+    const work = { plan: planNews, variant: variantNews }
+    return listenTo(
+      { race, date },
+      () => void hearNews({ race, date }),
+      (kind, told) => void (work[kind].value = told),
+    )
   })
   void loadLists()
 }

@@ -113,7 +113,7 @@ export function moveText(move: Move, { items }: Trackers): string {
   const of = items.find(({ readings }) => readings.some(({ reading }) => reading.id === move.readingId))
   const cause = of === undefined ? CAUSES[move.cause] : `${CAUSES[move.cause]}, ${of.name}`
   const { closingWhBefore: was, closingWhAfter: is } = move
-  if (is === null) return `${cause}.`
+  if (is === null) return move.cause === 'choice' ? `${cause} taken back: nothing is followed.` : `${cause}.`
   const by = was === null ? '' : `${signed(is - was)}${THIN}Wh `
   return `${cause}: ${by}to ${grouped(is)}${THIN}Wh at close.`
 }

@@ -145,4 +145,10 @@ describe('the history', () => {
       'Choice: to 2\u202f069\u202fWh at close.',
     )
   })
+
+  it('tells of a choice that was taken back', () => {
+    expect(moveText({ ...move, cause: 'choice', readingId: null, closingWhAfter: null }, all)).toBe(
+      'Choice taken back: nothing is followed.',
+    )
+  })
 })

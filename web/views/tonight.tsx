@@ -16,7 +16,11 @@ import { PlanPublish } from './plan-publish.tsx'
 import { PlanRoad, PlanWorth } from './plan-result.tsx'
 import { PlanScope } from './plan-scope.tsx'
 import { PlanVariants } from './plan-variants.tsx'
+import { late } from './late.tsx'
 import { Tabs } from './tabs.tsx'
+
+/** Fetched once there is a plan to put variants beside. */
+const Variants = late(async () => (await import('./variants.tsx')).Variants)
 
 /** The plan of a day: what to hold, what it leaves, how sure that is. */
 export function TonightView() {
@@ -68,6 +72,7 @@ function Shown({ day }: { day: RacePlanDay }) {
         {plan !== null && entry !== null && isPlanned(plan) && <PlanRoad entry={entry} plan={plan} />}
       </div>
       <div class="side">
+        {plan !== null && <Variants />}
         <PlanVariants day={day} />
         {plan !== null && isPlanned(plan) && <PlanWorth plan={plan} />}
       </div>
