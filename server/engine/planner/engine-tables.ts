@@ -213,11 +213,12 @@ function passable(
 /** Steps of the clock at which the sun of a piece is worked out: around its passage, while it may be passed. */
 function sunNodes(clock: Axis, passedS: number, earliestS: number, latestS: number): number[] {
   const node = (s: number): number => Math.min(Math.max((s - clock.from) / clock.step, 0), clock.count - 1)
-  const low = Math.floor(node(Math.max(passedS - WINDOW_S, Math.min(earliestS, passedS))))
-  const high = Math.ceil(node(Math.min(passedS + WINDOW_S, Math.max(latestS, passedS))))
+  const first = node(Math.max(passedS - WINDOW_S, Math.min(earliestS, passedS)))
+  const last = node(Math.min(passedS + WINDOW_S, Math.max(latestS, passedS)))
   const nodes: number[] = []
-  for (let k = low; k < high; k += SUN_STEPS) nodes.push(k)
-  nodes.push(high)
+  let k = Math.floor(first / SUN_STEPS) * SUN_STEPS
+  for (; k < last; k += SUN_STEPS) nodes.push(k)
+  nodes.push(Math.min(k, clock.count - 1))
   return nodes
 }
 
