@@ -34,6 +34,7 @@ import { previewRoute } from './api/previews.ts'
 import { raceDocumentsRoute } from './api/race-documents.ts'
 import { keptReadingRoutes, readingRoutes } from './api/readings.ts'
 import { keptRacePlanRoutes, RACE_PLANS, racePlanRoutes, statelessRacePlanRoute } from './api/race-plans.ts'
+import { serialized } from './api/serialized.ts'
 import { sessionRoutes } from './api/sessions.ts'
 import { sharedRoute, shareRoutes } from './api/shares.ts'
 import { variantDesk } from './api/variant-desk.ts'
@@ -79,7 +80,7 @@ export async function buildApp(parts: Parts): Promise<Api> {
     routerOptions: { maxParamLength: 100, ignoreTrailingSlash: false },
   }).withTypeProvider<ZodTypeProvider>()
   app.setValidatorCompiler<ZodType>(({ schema, httpPart }) => checkPart(schema, httpPart))
-  app.setSerializerCompiler(() => (data) => JSON.stringify(data))
+  app.setSerializerCompiler(() => serialized)
   answerFaults(app)
   answerUnknown(app)
   guardChanges(app, parts)

@@ -14,7 +14,7 @@ import { type Api, clientGone, type Needs, SPEEDS_LIMIT } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { dayParams, oneDay } from './days.ts'
 import { findRace } from './find.ts'
-import { dayIn, followed, isLearned, moved, told } from './followed.ts'
+import { dayIn, followed, followedText, isLearned, moved, told } from './followed.ts'
 import { gather, makeForecast } from './make-forecast.ts'
 import { etag, ifMatch } from './preconditions.ts'
 import type { Turns } from './readings.ts'
@@ -231,7 +231,7 @@ export function followedRoute(api: Api, needs: Needs): void {
   }
   api.get('/races/:id/days/:date/budget', { schema }, async ({ params }, reply) => {
     oneDay((await findRace(store, params.id)).race, params.date)
-    const { choice, forecast } = await followed(store, params.id, params.date)
+    const { choice, forecast } = await followedText(store, params.id, params.date)
     reply.header('cache-control', 'no-cache')
     return {
       forecastId: forecast.id,

@@ -5,7 +5,7 @@ import { answers, COMPUTE_ERRORS, entry, listOf, notice, STORE_ERRORS, versionEn
 import { type Api, clientGone, DOCUMENT_LIMIT, type Needs } from './api.ts'
 import { bodyContent, bytesOf, formatOf, takeBodies } from './content.ts'
 import { readerOptions } from './file-options.ts'
-import { find } from './find.ts'
+import { findText } from './find.ts'
 import { idParam, type KindRoutes, versionQuery } from './kinds.ts'
 import { etag, ifMatch, ifNoneMatch } from './preconditions.ts'
 import { remove, save } from './save.ts'
@@ -46,7 +46,7 @@ function getRoute(api: Api, { store }: Needs, { kind, path, schema: document }: 
     ),
   }
   api.get(`/${path}/:id`, { schema }, async (request, reply) => {
-    const { id, name, version, savedAt, body } = await find(store, kind, request.params.id, request.query.version)
+    const { id, name, version, savedAt, body } = await findText(store, kind, request.params.id, request.query.version)
     reply.header('etag', etag(version)).header('cache-control', 'no-cache')
     const known = ifNoneMatch(request.headers)
     if (known === '*' || known?.includes(version)) return reply.code(304).send()

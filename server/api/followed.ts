@@ -33,13 +33,20 @@ export interface Cause {
  *
  * @throws Fault 'nothing-followed'
  */
-export async function followed(
+export const followed = (store: Store, raceId: string, date: string) =>
+  followedAs(store, { raceId, date }, (id) => store.forecasts.get(id))
+
+/** The same for handing on, its budget not read. */
+export const followedText = (store: Store, raceId: string, date: string) =>
+  followedAs(store, { raceId, date }, (id) => store.forecasts.text(id))
+
+async function followedAs<F>(
   store: Store,
-  raceId: string,
-  date: string,
-): Promise<{ choice: StoredChoice; forecast: StoredForecast }> {
+  { raceId, date }: { raceId: string; date: string },
+  get: (forecastId: string) => Promise<F | null>,
+): Promise<{ choice: StoredChoice; forecast: F }> {
   const choice = await store.choices.get(raceId, date)
-  const forecast = choice === null ? null : await store.forecasts.get(choice.forecastId)
+  const forecast = choice === null ? null : await get(choice.forecastId)
   if (choice !== null && forecast !== null) return { choice, forecast }
   throw new Fault('nothing-followed', `No budget is followed on ${date} yet; a planner chooses car, sky and speeds.`)
 }

@@ -128,7 +128,7 @@ function getRoute(api: Api, { store }: Needs): void {
     ),
   }
   api.get('/forecasts/:id', { schema }, async ({ params, headers }, reply) => {
-    const forecast = await store.forecasts.get(params.id)
+    const forecast = await store.forecasts.text(params.id)
     if (forecast === null) throw new Fault('no-such-forecast', `There is no forecast ${params.id}.`)
     const tag = `"${forecast.id}"`
     reply.header('etag', tag).header('cache-control', 'private, max-age=31536000, immutable')

@@ -22,11 +22,11 @@ export interface PlanOrder {
 
 /** What a desk makes, and whom it tells. */
 export interface PlanTrade {
-  /** The job that makes a plan; the name of its ids too. */
+  /** What is made; the name of its ids and events. */
   job: 'plan' | 'race-plan'
+  /** The job that makes a plan as it is kept. */
+  work: 'kept-plan' | 'kept-race-plan'
   kept: (store: Store) => PlanStore
-  /** The plan and, for lists, the same in short. */
-  read: (json: string) => { plan: unknown; gist: object }
   topic: (plan: NewPlan) => string
 }
 
@@ -54,7 +54,7 @@ export function planDesk(
   trade: PlanTrade,
   failed: (error: unknown) => void,
 ): PlanDesk {
-  const { job } = trade
+  const { job, work: making } = trade
   const kept = trade.kept(store)
   const working = new Map<string, { stop: AbortController; done: Promise<void> }>()
 
@@ -66,8 +66,8 @@ export function planDesk(
   async function work(plan: NewPlan, { inputs, parts }: PlanOrder, signal: AbortSignal): Promise<void> {
     try {
       const told = (progress: object): void => tell(plan, 'working', progress)
-      const made = trade.read(await compute.run(job, inputs, signal, told, parts))
-      if (await kept.finish(plan.id, made.plan, made.gist)) tell(plan, 'done')
+      const { text, gist } = await compute.run(making, inputs, signal, told, parts)
+      if (await kept.finish(plan.id, text, gist)) tell(plan, 'done')
     } catch (error) {
       if (signal.aborted) return
       if (!(error instanceof Fault)) failed(error)
@@ -94,7 +94,7 @@ export function planDesk(
       return id
     },
     async cancel(id) {
-      const plan = await kept.get(id)
+      const plan = await kept.entry(id)
       const was = await kept.cancel(id)
       working.get(id)?.stop.abort(new Error('the plan was cancelled'))
       if (was && plan !== null) tell(plan, 'cancelled')

@@ -1,8 +1,8 @@
 import { z } from 'zod'
 import { openPlanRequest } from '../compute/plan-jobs.ts'
 import { checked, readJson } from '../compute/read-json.ts'
-import { type PlanDocument, planDocument } from '../documents/plan.ts'
-import { gistOf, type PlanGist, planGist } from '../documents/plan-gist.ts'
+import { planDocument } from '../documents/plan.ts'
+import { type PlanGist, planGist } from '../documents/plan-gist.ts'
 import { planRequest } from '../documents/plan-request.ts'
 import { slug } from '../documents/quantity.ts'
 import { Fault } from '../errors.ts'
@@ -60,11 +60,8 @@ const planAnswer = planEntry.extend({ plan: planDocument.nullable() })
 /** Plans of a day: its stream is told of them. */
 export const DAY_PLANS: PlanTrade = {
   job: 'plan',
+  work: 'kept-plan',
   kept: ({ plans }) => plans,
-  read(json) {
-    const plan: PlanDocument = JSON.parse(json)
-    return { plan, gist: gistOf(plan) }
-  },
   topic: ({ raceId, date }) => dayTopic(raceId, date),
 }
 
@@ -203,9 +200,9 @@ const entryOf = ({ wanted, gist, ...entry }: PlanEntry): z.input<typeof planEntr
   wanted: wanted as z.input<typeof wantedFields>,
 })
 
-async function planOf({ store }: Needs, id: string): Promise<z.input<typeof planAnswer>> {
+async function planOf({ store }: Needs, id: string) {
   const stored = await store.plans.get(id)
   if (stored === null) throw new Fault('no-such-plan', `There is no plan ${id}.`)
   const { plan, ...entry } = stored
-  return { ...entryOf(entry), plan: plan as z.input<typeof planDocument> | null }
+  return { ...entryOf(entry), plan }
 }

@@ -6,14 +6,16 @@ import { slug } from '../documents/quantity.ts'
 import { raceDocument } from '../documents/race.ts'
 import { routeDocument } from '../documents/route.ts'
 import { skyDocument } from '../documents/sky.ts'
-import { Fault } from '../errors.ts'
 import type { DocumentText } from '../store/document-store.ts'
+import { JsonText } from '../store/json-text.ts'
 import { answers, COMPUTE_ERRORS, STORE_ERRORS } from './answers.ts'
 import { type Api, clientGone, type Needs } from './api.ts'
+import { findText } from './find.ts'
 import { namedText, routeTextsOf } from './gather.ts'
 import { idParam } from './kinds.ts'
 import { learnedLosses } from './make-forecast.ts'
 import { etag } from './preconditions.ts'
+import { serialized } from './serialized.ts'
 
 const query = z.strictObject({ car: slug('id of a stored car'), sky: slug('id of a stored sky') })
 
@@ -51,22 +53,18 @@ export function raceDocumentsRoute(api: Api, needs: Needs): void {
   }
   api.get('/races/:id/documents', { schema }, async ({ params, query: of, headers }, reply) => {
     const { store } = needs
-    const race = await store.documents.text('race', params.id)
-    if (race === null) throw new Fault('no-such-document', `There is no race "${params.id}".`)
+    const race = await findText(store, 'race', params.id)
     const [car, sky, routes] = await Promise.all([
       namedText(store, 'car', of.car, 'car'),
       namedText(store, 'sky', of.sky, 'sky'),
-      routeTextsOf(store, raceDocument.parse(JSON.parse(race.text))),
+      routeTextsOf(store, raceDocument.parse(race.body.toJSON())),
     ])
-    const learned = await learnedLosses(needs, race.id, { ...car, body: JSON.parse(car.text) }, clientGone(reply))
+    const learned = await learnedLosses(needs, race.id, { ...car, body: car.body.toJSON() }, clientGone(reply))
     const tag = etag(editionOf([race, car, sky, ...routes.values()], learned))
     reply.header('etag', tag).header('cache-control', 'private, no-cache')
     if (headers['if-none-match']?.replace(/^W\//, '') === tag) return reply.code(304).send()
-    const roads = [...routes].map(([id, { text }]) => `${JSON.stringify(id)}:${text}`)
-    const more = learned === undefined ? '' : `,"learned":${JSON.stringify(learned)}`
-    return reply
-      .type('application/json; charset=utf-8')
-      .send(`{"car":${car.text},"race":${race.text},"routes":{${roads.join(',')}},"sky":${sky.text}${more}}`)
+    const roads = serialized(Object.fromEntries([...routes].map(([id, { body }]) => [id, body])))
+    return { car: car.body, race: race.body, routes: new JsonText(roads), sky: sky.body, learned }
   })
 }
 

@@ -3,8 +3,8 @@ import { openRacePlanRequest } from '../compute/race-plan-jobs.ts'
 import { checked, readJson } from '../compute/read-json.ts'
 import { slug } from '../documents/quantity.ts'
 import { type RaceDocument, raceDocument } from '../documents/race.ts'
-import { type RacePlanDocument, racePlanDocument } from '../documents/race-plan.ts'
-import { type RacePlanGist, raceGistOf, racePlanGist } from '../documents/race-plan-gist.ts'
+import { racePlanDocument } from '../documents/race-plan.ts'
+import { type RacePlanGist, racePlanGist } from '../documents/race-plan-gist.ts'
 import { racePlanRequest, raceWanted } from '../documents/race-plan-request.ts'
 import { Fault } from '../errors.ts'
 import { raceTopic } from '../live/topics.ts'
@@ -25,11 +25,8 @@ const DESCRIPTION =
 /** Race plans: the race’s own stream is told of them. */
 export const RACE_PLANS: PlanTrade = {
   job: 'race-plan',
+  work: 'kept-race-plan',
   kept: ({ racePlans }) => racePlans,
-  read(json) {
-    const plan: RacePlanDocument = JSON.parse(json)
-    return { plan, gist: raceGistOf(plan) }
-  },
   topic: ({ raceId }) => raceTopic(raceId),
 }
 
@@ -212,9 +209,9 @@ const entryOf = ({ wanted, gist, ...entry }: PlanEntry): z.input<typeof planEntr
   wanted: wanted as z.input<typeof wantedFields>,
 })
 
-async function planOf({ store }: Needs, id: string): Promise<z.input<typeof planAnswer>> {
+async function planOf({ store }: Needs, id: string) {
   const stored = await store.racePlans.get(id)
   if (stored === null) throw new Fault('no-such-plan', `There is no race plan ${id}.`)
   const { plan, ...entry } = stored
-  return { ...entryOf(entry), plan: plan as z.input<typeof racePlanDocument> | null }
+  return { ...entryOf(entry), plan }
 }

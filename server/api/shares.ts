@@ -12,7 +12,7 @@ import type { Api, Needs } from './api.ts'
 import { bytesOf, takeBodies } from './content.ts'
 import { dayParams, oneDay } from './days.ts'
 import { findRace } from './find.ts'
-import { followed, isLearned } from './followed.ts'
+import { followedText, isLearned } from './followed.ts'
 
 const newShare = z.strictObject({ name: label('whom the link is for') })
 
@@ -148,7 +148,7 @@ export function sharedRoute(api: Api, needs: Needs): void {
   api.get('/share/budget', { schema, config: { access: 'share' } }, async (request, reply) => {
     const { raceId, date, name } = sharedDay(request)
     const { stored } = await findRace(store, raceId)
-    const { choice, forecast } = await followed(store, raceId, date)
+    const { choice, forecast } = await followedText(store, raceId, date)
     reply.header('cache-control', 'no-store')
     return {
       name,

@@ -1,9 +1,9 @@
 import { coastDownJob, readCoastDown } from './coast-jobs.ts'
 import { type BodyInput, readDocument } from './file-jobs.ts'
 import { forecastJson, inputsHash, pointingJson, readForecastRequest, trackerDaysJob } from './forecast-jobs.ts'
-import { planHash, planJson, readPlanRequest } from './plan-jobs.ts'
+import { keptPlan, planHash, planJson, readPlanRequest } from './plan-jobs.ts'
 import type { ComputePool } from './pool.ts'
-import { racePlanJson, readRacePlanRequest } from './race-plan-jobs.ts'
+import { keptRacePlan, racePlanJson, readRacePlanRequest } from './race-plan-jobs.ts'
 import { judgeJob, learnJob, readReadings, reportJob } from './reading-jobs.ts'
 import { compareJson, readComparison } from './sky-jobs.ts'
 import { checkVariants, readVariants, variantBaseJob, variantJob } from './variant-jobs.ts'
@@ -18,8 +18,10 @@ export const JOBS = {
   'read-plan-request': readPlanRequest,
   'plan-hash': planHash,
   plan: planJson,
+  'kept-plan': keptPlan,
   'read-race-plan-request': readRacePlanRequest,
   'race-plan': racePlanJson,
+  'kept-race-plan': keptRacePlan,
   'read-what-if': readWhatIf,
   'what-if': whatIfJson,
   'read-variants': readVariants,

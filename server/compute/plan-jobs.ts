@@ -1,4 +1,6 @@
 import { planDocuments } from '../documents/plan-day.ts'
+import type { PlanDocument } from '../documents/plan.ts'
+import { gistOf, type PlanGist } from '../documents/plan-gist.ts'
 import { planRequest } from '../documents/plan-request.ts'
 import { fitting } from './fitting.ts'
 import { fingerprint } from './fingerprint.ts'
@@ -41,7 +43,21 @@ export function readPlanRequest(input: { bytes: Uint8Array }) {
  *
  * @throws Fault 'invalid-document', or 'cannot-forecast' where the documents do not fit together
  */
-export function planJson(input: unknown, tell?: (progress: Progress) => void): string {
+export const planJson = (input: unknown, tell?: Tell): string => JSON.stringify(planOf(input, tell))
+
+/**
+ * The same as it is kept: as JSON and, for lists, in short.
+ *
+ * @throws Fault as planJson
+ */
+export function keptPlan(input: unknown, tell?: Tell): { text: string; gist: PlanGist } {
+  const plan = planOf(input, tell)
+  return { text: JSON.stringify(plan), gist: gistOf(plan) }
+}
+
+type Tell = (progress: Progress) => void
+
+function planOf(input: unknown, tell?: Tell): PlanDocument {
   const request = checked(planRequest, input, 'plan request')
-  return fitting(() => JSON.stringify(planDocuments(request, tell)))
+  return fitting(() => planDocuments(request, tell))
 }

@@ -1,3 +1,5 @@
+import type { RacePlanDocument } from '../documents/race-plan.ts'
+import { raceGistOf, type RacePlanGist } from '../documents/race-plan-gist.ts'
 import { racePlanDocuments } from '../documents/race-plan-model.ts'
 import { racePlanRequest, raceWanted } from '../documents/race-plan-request.ts'
 import { fitting } from './fitting.ts'
@@ -26,7 +28,21 @@ export function readRacePlanRequest(input: { bytes: Uint8Array }) {
  *
  * @throws Fault 'invalid-document', or 'cannot-forecast' where the documents do not fit together
  */
-export function racePlanJson(input: unknown, tell?: (progress: Progress) => void): string {
+export const racePlanJson = (input: unknown, tell?: Tell): string => JSON.stringify(racePlanOf(input, tell))
+
+/**
+ * The same as it is kept: as JSON and, for lists, in short.
+ *
+ * @throws Fault as racePlanJson
+ */
+export function keptRacePlan(input: unknown, tell?: Tell): { text: string; gist: RacePlanGist } {
+  const plan = racePlanOf(input, tell)
+  return { text: JSON.stringify(plan), gist: raceGistOf(plan) }
+}
+
+type Tell = (progress: Progress) => void
+
+function racePlanOf(input: unknown, tell?: Tell): RacePlanDocument {
   const request = checked(racePlanRequest, input, 'race plan request')
-  return fitting(() => JSON.stringify(racePlanDocuments(request, tell)))
+  return fitting(() => racePlanDocuments(request, tell))
 }

@@ -1,3 +1,4 @@
+import { constants, getPriority, setPriority } from 'node:os'
 import { parentPort } from 'node:worker_threads'
 import type { Problem } from '../documents/problem.ts'
 import { type ErrorCode, Fault } from '../errors.ts'
@@ -23,8 +24,22 @@ export interface Progress {
 /** The work of each kind: its input and its answer are copied between threads; long work may tell how far it is. */
 export type Jobs = { [kind: string]: (input: never, tell: (progress: Progress) => void) => unknown }
 
+/** Behind the event loop, which shares the cores and must answer at once. [nice] */
+const BEHIND = 10
+
+/** Linux ranks each thread by itself; elsewhere this would hold back the event loop as well. */
+function stepBack(): void {
+  if (process.platform !== 'linux') return
+  try {
+    setPriority(Math.min(getPriority() + BEHIND, constants.priority.PRIORITY_LOW))
+  } catch {
+    // A container that forbids it works on at the same rank.
+  }
+}
+
 /** Lets this worker thread do the jobs, one after another. */
 export function serveJobs(jobs: Jobs): void {
+  stepBack()
   parentPort?.on('message', ({ kind, input }: { kind: string; input: never }) => {
     const tell = (progress: Progress): void =>
       parentPort?.postMessage({ kind: 'progress', progress } satisfies Reply, [])

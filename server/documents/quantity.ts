@@ -54,7 +54,17 @@ export const withSeconds = (time: string): string => (time.length === 5 ? `${tim
 export const zoneName = (meaning: string) =>
   label(meaning).refine(isZone, 'an IANA time zone, for example Africa/Windhoek')
 
+/** Zones that were asked for before: the library takes a millisecond for each. */
+const known = new Set<string>()
+
 function isZone(name: string): boolean {
+  if (known.has(name)) return true
+  if (!isNewZone(name)) return false
+  known.add(name)
+  return true
+}
+
+function isNewZone(name: string): boolean {
   try {
     return (
       /^(?:UTC|[A-Za-z_]+(?:\/[A-Za-z0-9_+-]+)+)$/.test(name) && Intl.DateTimeFormat('en', { timeZone: name }) !== null

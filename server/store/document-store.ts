@@ -1,4 +1,5 @@
 import type { Fragment, Sql } from './guarded-sql.ts'
+import { JsonText } from './json-text.ts'
 import { checkField, isSlug, isVersion, json, saving, utc } from './storable.ts'
 
 export type DocumentKind = 'car' | 'route' | 'race' | 'sky'
@@ -17,7 +18,7 @@ export interface StoredDocument extends DocumentEntry {
 
 /** A saved version with its body as the JSON text that it is kept as. */
 export interface DocumentText extends DocumentEntry {
-  text: string
+  body: JsonText
 }
 
 export interface Saved {
@@ -36,8 +37,8 @@ export interface DocumentStore {
   list(kind: DocumentKind): Promise<DocumentEntry[]>
   /** The version that holds now, or any version ever saved, a removed document's too. */
   get(kind: DocumentKind, id: string, version?: number): Promise<StoredDocument | null>
-  /** The version that holds now, for handing on without reading it. */
-  text(kind: DocumentKind, id: string): Promise<DocumentText | null>
+  /** The same for handing on, without reading the body. */
+  text(kind: DocumentKind, id: string, version?: number): Promise<DocumentText | null>
   /** Version 1; a removed document's id may be used again and its versions go on. */
   create(kind: DocumentKind, id: string, name: string, body: unknown): Promise<Saved | Conflict>
   replace(
@@ -71,6 +72,14 @@ export function documentStore(sql: Sql): DocumentStore {
     return version === null ? 'missing' : { conflict: version }
   }
 
+  /** Rows of one version, or of the one that holds now. */
+  const at = (kind: DocumentKind, id: string, version: number | undefined): Fragment => sql`
+    from documents d join document_versions v using (kind, id)
+    where kind = ${kind} and id = ${id}
+    and ${version === undefined ? sql`v.version = d.version and d.removed_at is null` : sql`v.version = ${version}`}`
+  const canBe = (id: string, version: number | undefined): boolean =>
+    isSlug(id) && (version === undefined || isVersion(version))
+
   const create: DocumentStore['create'] = async (kind, id, name, body) => {
     checkField('id', id, isSlug(id), '1 to 64 lower-case letters, digits or hyphens')
     return saving({ name, body }, async () => {
@@ -102,22 +111,19 @@ export function documentStore(sql: Sql): DocumentStore {
     },
 
     async get(kind, id, version) {
-      if (!isSlug(id) || (version !== undefined && !isVersion(version))) return null
+      if (!canBe(id, version)) return null
       const rows = await sql<StoredDocument[]>`
-        select id, v.name, v.version, ${savedAt()}, v.body
-        from documents d join document_versions v using (kind, id)
-        where kind = ${kind} and id = ${id}
-        and ${version === undefined ? sql`v.version = d.version and d.removed_at is null` : sql`v.version = ${version}`}`
+        select id, v.name, v.version, ${savedAt()}, v.body ${at(kind, id, version)}`
       return rows[0] ?? null
     },
 
-    async text(kind, id) {
-      if (!isSlug(id)) return null
-      const rows = await sql<DocumentText[]>`
-        select id, v.name, version, ${savedAt()}, v.body::text as text
-        from documents d join document_versions v using (kind, id, version)
-        where kind = ${kind} and id = ${id} and d.removed_at is null`
-      return rows[0] ?? null
+    async text(kind, id, version) {
+      if (!canBe(id, version)) return null
+      const rows = await sql<(DocumentEntry & { text: string })[]>`
+        select id, v.name, v.version, ${savedAt()}, v.body::text as text ${at(kind, id, version)}`
+      if (rows.length === 0) return null
+      const { text, ...entry } = rows[0]
+      return { ...entry, body: new JsonText(text) }
     },
 
     create,

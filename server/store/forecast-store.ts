@@ -1,4 +1,5 @@
 import type { Fragment, Sql } from './guarded-sql.ts'
+import { JsonText } from './json-text.ts'
 import { checkField, isUuid, isVersion, json, saving, utc } from './storable.ts'
 import { StoreError } from './store-error.ts'
 
@@ -33,6 +34,11 @@ export interface StoredForecast extends ForecastEntry {
   budget: unknown
 }
 
+/** The same for handing on, its budget not read. */
+export interface ForecastText extends ForecastEntry {
+  budget: JsonText
+}
+
 export interface SavedForecast {
   id: string
   createdAt: string
@@ -42,6 +48,7 @@ export interface ForecastStore {
   /** Saves once: the same id with the same inputs again gives back what was saved. */
   save(forecast: NewForecast): Promise<SavedForecast>
   get(id: string): Promise<StoredForecast | null>
+  text(id: string): Promise<ForecastText | null>
   /** The race's last 50, newest first. */
   list(raceId: string): Promise<ForecastEntry[]>
   /** The newest forecast from exactly these inputs by this engine. */
@@ -105,6 +112,15 @@ export function forecastStore(sql: Sql): ForecastStore {
     },
 
     get,
+
+    async text(id) {
+      if (!isUuid(id)) return null
+      const rows = await sql<(ForecastEntry & { text: string })[]>`
+        select ${entry()}, budget::text as text from forecasts where id = ${id}`
+      if (rows.length === 0) return null
+      const { text, ...found } = rows[0]
+      return { ...found, budget: new JsonText(text) }
+    },
 
     async list(raceId) {
       const rows = await sql<ForecastEntry[]>`

@@ -1,4 +1,5 @@
 import type { Fragment, Sql } from './guarded-sql.ts'
+import { JsonText } from './json-text.ts'
 import { isUuid, json, saving, utc } from './storable.ts'
 
 /** What plans are of: one day, or the days of a race together. */
@@ -32,18 +33,20 @@ export interface PlanEntry extends NewPlan {
 }
 
 export interface StoredPlan extends PlanEntry {
-  plan: unknown
+  plan: JsonText | null
 }
 
 export interface PlanStore {
   /** Marks a plan as being worked on. @returns false where it is done, or another works on it */
   begin(plan: NewPlan): Promise<boolean>
-  /** Keeps the result, unless the plan was cancelled meanwhile. @returns whether it was kept */
-  finish(id: string, plan: unknown, gist: unknown): Promise<boolean>
+  /** Keeps the result as JSON, unless the plan was cancelled meanwhile. @returns whether it was kept */
+  finish(id: string, planText: string, gist: unknown): Promise<boolean>
   fail(id: string, fault: { code: string; detail: string }): Promise<void>
   /** @returns whether it was being worked on */
   cancel(id: string): Promise<boolean>
   get(id: string): Promise<StoredPlan | null>
+  /** The same without its body. */
+  entry(id: string): Promise<PlanEntry | null>
   /** The race's last 50, newest first. */
   list(raceId: string): Promise<PlanEntry[]>
 }
@@ -76,9 +79,9 @@ export function planStore(sql: Sql, kind: PlanKind): PlanStore {
       return rows.length > 0
     },
 
-    async finish(id, plan, gist) {
+    async finish(id, planText, gist) {
       const rows = await sql<{ id: string }[]>`
-        update plans set state = 'done', ended_at = clock_timestamp(), plan = ${json(sql, 'plan', plan)},
+        update plans set state = 'done', ended_at = clock_timestamp(), plan = ${planText}::text::jsonb,
           gist = ${json(sql, 'gist', gist)}
         where id = ${id} and kind = ${kind} and state = 'working' returning id`
       return rows.length > 0
@@ -100,7 +103,16 @@ export function planStore(sql: Sql, kind: PlanKind): PlanStore {
 
     async get(id) {
       if (!isUuid(id)) return null
-      const rows = await sql<StoredPlan[]>`select ${entry()}, plan from plans where id = ${id} and kind = ${kind}`
+      const rows = await sql<(PlanEntry & { text: string | null })[]>`
+        select ${entry()}, plan::text as text from plans where id = ${id} and kind = ${kind}`
+      if (rows.length === 0) return null
+      const { text, ...found } = rows[0]
+      return { ...found, plan: text === null ? null : new JsonText(text) }
+    },
+
+    async entry(id) {
+      if (!isUuid(id)) return null
+      const rows = await sql<PlanEntry[]>`select ${entry()} from plans where id = ${id} and kind = ${kind}`
       return rows[0] ?? null
     },
 

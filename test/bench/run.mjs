@@ -11,6 +11,7 @@ execFileSync(process.execPath, [START, '--build-only'], { stdio: ['ignore', 'ign
 const { chainBench } = await import('./chain.mjs')
 const { coastBench } = await import('./coast.mjs')
 const { dayBench } = await import('./day.mjs')
+const { eventLoopBench } = await import('./event-loop.mjs')
 const { pointingBench } = await import('./pointing.mjs')
 const { plannerBench } = await import('./planner.mjs')
 const { startUpBench } = await import('./start-up.mjs')
@@ -112,6 +113,17 @@ say(
   '500 open streams hear of a reading, p99',
   ms(streams.p99Ms),
   `from its sending; first ${ms(streams.firstMs)}, p99 of the rest ${ms(streams.spreadMs)} later`,
+)
+const loop = await eventLoopBench(4)
+say(
+  'event loop while 4 race plans are made, p99',
+  ms(loop.work.p99Ms),
+  `longest ${ms(loop.work.maxMs)}; at rest ${ms(loop.rest.p99Ms)} and ${ms(loop.rest.maxMs)}`,
+)
+say(
+  'ordinary answers meanwhile, p99',
+  ms(loop.answerP99Ms),
+  `${loop.answered} in ${loop.tookS.toFixed(0)} s; the event loop waited ${(100 * loop.work.waitedShare).toFixed(0)} % of it for a core`,
 )
 const weight = (files) => files.reduce((sum, name) => sum + gzipSync(readFileSync(new URL(name, ASSETS))).length, 0)
 for (const page of ['index.html', 'share.html']) {

@@ -1,38 +1,8 @@
-import { spawn } from 'node:child_process'
-import { mkdtempSync, rmSync } from 'node:fs'
 import { get } from 'node:http'
-import { tmpdir } from 'node:os'
-import { join } from 'node:path'
-import { fileURLToPath } from 'node:url'
+import { startService } from './service.mjs'
 
-const START = fileURLToPath(new URL('../../server/start.mjs', import.meta.url))
 const RACE = '/api/v1/races/plateau-run'
 const DAY = '2026-10-17'
-
-/** A service on a folder of its own: its address, its owner's token, and how to end it. */
-async function service() {
-  const dataDir = mkdtempSync(join(tmpdir(), 'stagewatt-bench-'))
-  const child = spawn(process.execPath, [START], {
-    env: { ...process.env, DATA_DIR: dataDir, PORT: '0', DATABASE_URL: '' },
-    stdio: ['ignore', 'pipe', 'inherit'],
-  })
-  const ended = new Promise((resolve) => child.once('exit', resolve))
-  let out = ''
-  const [origin, token] = await new Promise((resolve, reject) => {
-    child.once('exit', () => reject(new Error(`the service ended: ${out}`)))
-    child.stdout.on('data', (chunk) => {
-      out += chunk
-      const found = /Stagewatt is at (\S+)\n[\s\S]*#owner=(\S+)\n/.exec(out)
-      if (found !== null) resolve([found[1], found[2]])
-    })
-  })
-  const stop = async () => {
-    child.kill('SIGTERM')
-    await ended
-    rmSync(dataDir, { recursive: true, force: true })
-  }
-  return { origin, headers: { authorization: `Bearer ${token}`, 'content-type': 'application/json' }, stop }
-}
 
 /** An open stream: resolves `heard` with the instant at which a forecast reached it. */
 function listen({ origin, headers }) {
@@ -62,17 +32,9 @@ function listen({ origin, headers }) {
  * @returns ms from the sending to the first stream that heard, from there to the 99th of 100, and both together
  */
 export async function streamsBench(count = 500) {
-  const running = await service()
+  const running = await startService()
+  const send = (method, path, body) => running.ask(method, `${RACE}${path}`, body)
   try {
-    const send = async (method, path, body) => {
-      const answer = await fetch(`${running.origin}${RACE}${path}`, {
-        method,
-        headers: running.headers,
-        body: JSON.stringify(body),
-      })
-      if (!answer.ok) throw new Error(`${method} ${path}: ${answer.status} ${await answer.text()}`)
-      return answer.json()
-    }
     const speeds = { kind: 'constant', speedKmh: 80 }
     await send('PUT', `/days/${DAY}/choice`, { carId: 'weaver-2', skyId: 'plateau-forecast', speeds })
     const streams = Array.from({ length: count }, () => listen(running))

@@ -1,4 +1,5 @@
 // A worker whose jobs go wrong in every way that a job can.
+import { getPriority } from 'node:os'
 import { threadId } from 'node:worker_threads'
 import { Fault } from '../../dist/server/errors.js'
 import { serveJobs } from '../../dist/server/compute/serve-jobs.js'
@@ -8,6 +9,7 @@ const wait = (ms) => Atomics.wait(new Int32Array(new SharedArrayBuffer(4)), 0, 0
 serveJobs({
   double: (n) => n * 2,
   thread: () => threadId,
+  rank: () => getPriority(),
   slow: (ms) => {
     wait(ms)
     return 'done'

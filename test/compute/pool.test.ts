@@ -1,9 +1,11 @@
+import { constants, getPriority } from 'node:os'
 import { afterEach, describe, expect, test } from 'vitest'
 import { type ComputePool, computePool, type PoolOptions } from '../../server/compute/pool.ts'
 
 type OddJobs = {
   double: (n: number) => number
   thread: (nothing: null) => number
+  rank: (nothing: null) => number
   slow: (ms: number) => string
   forever: (nothing: null) => never
   refuse: (field: string) => never
@@ -32,6 +34,13 @@ describe('a pool of workers', () => {
     const answers = await Promise.all(Array.from({ length: 60 }, (_, n) => pool.run('double', n)))
     expect(answers).toEqual(Array.from({ length: 60 }, (_, n) => n * 2))
     expect(pool.isReady()).toBe(true)
+  })
+
+  test.runIf(process.platform === 'linux')('stands behind the event loop where cores are short', async () => {
+    const own = getPriority()
+    const rank = await poolOf().run('rank', null)
+    expect(rank).toBe(Math.min(own + 10, constants.priority.PRIORITY_LOW))
+    expect(getPriority()).toBe(own)
   })
 
   test('works on two jobs at once with two workers', async () => {

@@ -37,10 +37,11 @@ export function documentSuite(open: () => Promise<TestDatabase>): void {
     expect(found?.savedAt).toMatch(/^\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d\.\d{3}Z$/)
     expect(Math.abs(Date.parse(found?.savedAt ?? '') - before)).toBeLessThan(60_000)
     expect(saved).toEqual({ version: 1, savedAt: found?.savedAt })
-    const { text = '', ...entry } = (await documents.text('car', 'weaver-2')) ?? {}
-    expect({ ...entry, body: JSON.parse(text) }).toEqual(found)
+    const text = await documents.text('car', 'weaver-2')
+    expect({ ...text, body: text?.body.toJSON() }).toEqual(found)
     await documents.remove('car', 'weaver-2', 1)
     expect(await documents.text('car', 'weaver-2')).toBeNull()
+    expect((await documents.text('car', 'weaver-2', 1))?.body).toEqual(text?.body)
   })
 
   it('kinds do not meet: a car and a route may have the same id', async () => {

@@ -39,12 +39,15 @@ export function planSuite(open: () => Promise<TestDatabase>): void {
     const [kept, back] = [one('results'), one('results')]
     for (const plan of [kept, back]) await racePlans.begin(plan)
     expect(await racePlans.cancel(back.id)).toBe(true)
-    expect(await racePlans.finish(back.id, { days: [] }, {})).toBe(false)
-    expect(await racePlans.finish(kept.id, { days: [1, 2] }, { drivingMin: 996.4 })).toBe(true)
-    expect(await racePlans.finish(kept.id, { days: [] }, {})).toBe(false)
+    expect(await racePlans.finish(back.id, '{"days":[]}', {})).toBe(false)
+    expect(await racePlans.finish(kept.id, '{"days":[1,2]}', { drivingMin: 996.4 })).toBe(true)
+    expect(await racePlans.finish(kept.id, '{"days":[]}', {})).toBe(false)
     expect(await racePlans.cancel(kept.id)).toBe(false)
     expect(await racePlans.begin(kept)).toBe(false)
-    expect(await racePlans.get(kept.id)).toMatchObject({ state: 'done', plan: { days: [1, 2] } })
+    const got = await racePlans.get(kept.id)
+    expect([got?.state, got?.plan?.toJSON()]).toEqual(['done', { days: [1, 2] }])
+    expect(await racePlans.entry(kept.id)).toEqual({ ...got, plan: undefined })
+    expect(await plans.entry(kept.id)).toBeNull()
     expect((await racePlans.list('results')).map(({ id, gist }) => [id, gist])).toEqual([
       [back.id, null],
       [kept.id, { drivingMin: 996.4 }],
@@ -59,7 +62,7 @@ export function planSuite(open: () => Promise<TestDatabase>): void {
     expect((await racePlans.list('kinds')).map(({ id }) => id)).toEqual([race.id])
     expect(await plans.get(race.id)).toBeNull()
     expect(await plans.cancel(race.id)).toBe(false)
-    expect(await plans.finish(race.id, {}, {})).toBe(false)
+    expect(await plans.finish(race.id, '{}', {})).toBe(false)
     await plans.fail(race.id, { code: 'internal', detail: '' })
     expect(await racePlans.get(race.id)).toMatchObject({ state: 'working' })
   })
