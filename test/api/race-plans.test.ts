@@ -126,7 +126,7 @@ describe('a race plan of stored documents', { timeout: 60_000 }, () => {
     const hurried: Service['compute'] = {
       ...service.compute,
       // Only the plan itself is hurried: what comes before it is no part of the claim.
-      run: (kind, ...rest) => (kind === 'race-plan' ? compute : service.compute).run(kind, ...rest),
+      run: (kind, ...rest) => (kind === 'kept-race-plan' ? compute : service.compute).run(kind, ...rest),
     }
     const other = await service.another({ compute: hurried })
     const payload = JSON.stringify({ ...wanted, seed: 7 })

@@ -16,12 +16,12 @@ const ORDINARY = [
 
 const pause = (ms) => new Promise((over) => setTimeout(over, ms))
 
-/** Asks one ordinary thing after the other until told to stop. @returns how many were answered, and the slowest times */
+/** Asks one ordinary thing after the other. @returns what stops it and gives the time of each answer, shortest first */
 function crew({ ask }) {
   const times = []
-  let isOver = false
+  const over = new AbortController()
   const asking = (async () => {
-    for (let i = 0; !isOver; i++) {
+    for (let i = 0; !over.signal.aborted; i++) {
       const sentMs = performance.now()
       await ask('GET', ORDINARY[i % ORDINARY.length])
       times.push(performance.now() - sentMs)
@@ -29,7 +29,7 @@ function crew({ ask }) {
     }
   })()
   return async () => {
-    isOver = true
+    over.abort()
     await asking
     return times.sort((a, b) => a - b)
   }
