@@ -27,6 +27,8 @@ const OWN_FILES = [
   '010-plan-gist.sql',
   '011-engine-moves.sql',
   '012-race-plans.sql',
+  '013-plan-variants.sql',
+  '014-followed-days.sql',
 ]
 
 function migrateSuite(open: () => Promise<TestDatabase>): void {
@@ -122,6 +124,7 @@ function migrateSuite(open: () => Promise<TestDatabase>): void {
       'events',
       'forecasts',
       'migrations',
+      'plan_variants',
       'plans',
       'reading_judgements',
       'reading_marks',
