@@ -30,7 +30,7 @@ export const CONFIG = [
   { name: 'TLS_KEY', default: '', meaning: 'file of the private key (PEM)', expected: 'a path, together with TLS_CERT' },
   { name: 'LOG_LEVEL', default: 'warn', meaning: 'least level that is logged to standard error', expected: `one of ${LOG_LEVELS.join(', ')}` },
   { name: 'COMPUTE_WORKERS', default: 'cores − 1, 2 to 4', meaning: 'threads that read files and forecast', expected: 'a whole number from 1 to 64' },
-  { name: 'COMPUTE_LIMIT_S', default: '20', meaning: 'longest time for one computation [s]', expected: 'a whole number from 1 to 600' },
+  { name: 'COMPUTE_LIMIT_S', default: '20', meaning: 'longest time for one computation, and twice that for each day of a race plan [s]', expected: 'a whole number from 1 to 600' },
 ] as const
 
 const expected = (name: string): string => CONFIG.find((row) => row.name === name)?.expected ?? ''

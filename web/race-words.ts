@@ -34,6 +34,9 @@ export const isGiven = ({ close }: RacePlanDay): boolean => close.kind === 'race
 /** A closing charge worth a click: it is given, and costs time that people notice. */
 export const isDear = (day: RacePlanDay): boolean => isGiven(day) && (day.close.costMin ?? 0) * 60 >= 1
 
+/** More dear closes than these are counted, not named. */
+const MOST_NAMED = 3
+
 /** What the given charges cost, in one sentence. */
 export function costsText({ days }: RacePlanDocument): string {
   const given = days.filter(isGiven)
@@ -41,6 +44,10 @@ export function costsText({ days }: RacePlanDocument): string {
   const unknown = given.some(({ close }) => close.costMin === null) ? ' Of some it is not known.' : ''
   if (given.length === 0) return 'Every night closes with the charge that was found.'
   if (dear.length === 0) return `Given charges cost no time.${unknown}`
+  if (dear.length > MOST_NAMED) {
+    const most = Math.max(...dear.map(({ close }) => close.costMin ?? 0))
+    return `Given charges cost time on ${dear.length} days: ${lengthText(most)} at most, each alone.${unknown}`
+  }
   const parts = dear.map(({ date, close }) => `${dayText(date)} ${lengthText(close.costMin ?? 0)}`)
   return held(`Given charges cost time: ${parts.join(', ')}${dear.length > 1 ? ', each alone' : ''}.${unknown}`)
 }

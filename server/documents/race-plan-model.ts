@@ -1,9 +1,10 @@
-import type { Race } from '../engine/forecast.ts'
 import { storedJ } from '../engine/battery.ts'
+import type { Race } from '../engine/forecast.ts'
 import { InputError } from '../engine/input-error.ts'
 import { nightCost } from '../engine/planner/night-costs.ts'
 import { planRace, type RaceDay } from '../engine/planner/plan-race.ts'
 import type { RaceTask } from '../engine/planner/race-charges.ts'
+import { skyCoverage } from '../engine/sky.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
 import { type DrivenDay, drivenRace } from './forecast.ts'
 import { dayName, localIso } from './local-time.ts'
@@ -14,7 +15,6 @@ import { type PlannedDay, racePlanDay } from './race-plan-day.ts'
 import type { RacePlanRequest } from './race-plan-request.ts'
 import { raceText } from './race-plan-words.ts'
 import { coverageNotes, isCovered } from './sky-model.ts'
-import { skyCoverage } from '../engine/sky.ts'
 
 const WH = 1 / 3600
 /** A speed to lay the race out with before it is planned. */
@@ -37,8 +37,8 @@ export function racePlanDocuments(request: RacePlanRequest, tell: Tell = () => {
   tell({ step: 'Looking for the best nights', share: 0.02 })
   let done = 0
   const planned = planRace(task, () => {
-    done = Math.min(done + 1, count)
-    tell({ step: `Planning day ${done} of ${count}`, share: (PLANNED_SHARE * done) / (count + 1) })
+    done++
+    tell({ step: `${done} of ${count} days planned`, share: (PLANNED_SHARE * (done + 1)) / (count + 2) })
   })
   const costs = costsOf(request, task, planned.days, tell)
   tell({ step: 'Drawing days that differ', share: COSTED_SHARE })

@@ -24,6 +24,8 @@ describe('the words of a race plan', () => {
     expect(costs(givenClose(), givenClose({ costMin: 0.5 }))).toBe(
       'Given charges cost time: Sat 17 Oct 1 min 12 s, Sun 18 Oct 30 s, each alone.',
     )
+    const five = [1, 2, 3, 4, 5].map((min) => sampleRaceDay(`2026-10-1${min}`, givenClose({ costMin: min })))
+    expect(plain(costsText(sampleRace(five)))).toBe('Given charges cost time on 5 days: 5 min at most, each alone.')
     expect(costs(givenClose({ costMin: 0.01 }))).toBe('Given charges cost no time.')
     expect(costs(givenClose(), givenClose({ costMin: null }))).toMatch(/12 s\. Of some it is not known\.$/)
   })
