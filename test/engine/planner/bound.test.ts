@@ -5,7 +5,8 @@ import type { DayTables } from '../../../server/engine/planner/day-tables.ts'
 import { refine } from '../../../server/engine/planner/refine.ts'
 import { simulate } from '../../../server/engine/planner/simulate.ts'
 import { cloudyDay, uniform } from './cloudy-day.ts'
-import { smallDay, type SmallWants } from './small-day.ts'
+import { everyChoice } from './every-choice.ts'
+import { smallDay, type SmallWants, tightDay } from './small-day.ts'
 
 const KINDS: { name: string; wants: SmallWants }[] = [
   { name: 'plain', wants: { pieces: 4 } },
@@ -38,7 +39,7 @@ function earliestByChance(day: DayTables, seed: number, tries: number): number {
   return best
 }
 
-describe('the bound', () => {
+describe('the bound', { timeout: 120_000 }, () => {
   it.each(KINDS)('is never later than a drive that holds, whatever the prices: $name', ({ wants }) => {
     let checked = 0
     for (let seed = 1; seed <= 20; seed++) {
@@ -82,6 +83,49 @@ describe('the bound', () => {
       }
     }
     expect(checked).toBeGreaterThan(60)
+  })
+
+  /** A load that is hollow again and again: no tangent of its energy over time lies below it by itself. */
+  const hollowDay = (seed: number): DayTables => {
+    const day = tightDay(seed, { pieces: 2 }, 'target')
+    const { from, step, count } = day.speeds
+    return { ...day, loadW: day.loadW.map((W, at) => W + 250 * Math.sin(from + (at % count) * step)) }
+  }
+
+  /** A pack that is full while the car moves: what it carries as motion is worth more than the pack could take. */
+  const fullDay = (seed: number): DayTables => {
+    const day = tightDay(seed, { pieces: 3 }, 'ceiling')
+    const ceilingJ = day.start.energyJ + 2000
+    return {
+      ...day,
+      pack: { ...day.pack, ceilingJ },
+      floorJ: day.floorJ.map(() => ceilingJ - 90_000),
+      targetJ: ceilingJ - 60_000,
+      harvestW: day.harvestW.map((W, at) => (at < day.clock.count ? W + 1500 : W)),
+      duskGainJ: day.duskGainJ.map(() => 0),
+      kinetic: { massKg: 260, perGained: 1.15, perLost: 1 },
+    }
+  }
+
+  it.each([
+    { name: 'over hollow loads', dayOf: hollowDay, grid: 150, rises: false },
+    { name: 'where energy grows dearer behind a full pack in motion', dayOf: fullDay, grid: 40, rises: true },
+  ])('is never later than any choice of grid speeds $name', ({ dayOf, grid, rises }) => {
+    let checked = 0
+    for (let seed = 1; seed <= 40; seed++) {
+      const day = dayOf(seed)
+      const choiceS = everyChoice(day, grid)
+      if (choiceS === Number.POSITIVE_INFINITY) continue
+      const next = uniform(seed)
+      for (let n = 0; n < 12; n++) {
+        const sPerJ = new Float64Array(day.pieces + 1).fill(10 ** (-3.7 + 0.7 * next()))
+        for (let i = 0; i <= day.pieces; i++) sPerJ[i] *= rises && i === 0 ? next() : 0.5 + next()
+        const atS = earliestPossible(day, sPerJ, choiceS + 5, [3, 40, 120][n % 3])
+        expect(atS, `seed ${seed}`).toBeLessThanOrEqual(choiceS + 1e-6)
+        checked++
+      }
+    }
+    expect(checked).toBeGreaterThan(300)
   })
 
   it('is never later than constant speeds or a disturbed plan, and tighter with narrower cells', () => {
