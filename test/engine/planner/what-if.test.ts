@@ -1,7 +1,8 @@
 import { describe, expect, test } from 'vitest'
+import { storedJ } from '../../../server/engine/battery.ts'
 import type { RoadLoad } from '../../../server/engine/road.ts'
 import { bestDay, type DayTask } from '../../../server/engine/planner/plan-day.ts'
-import { type Change, quickBase, quickWhatIf } from '../../../server/engine/planner/what-if.ts'
+import { type Change, changedTables, quickBase, quickWhatIf } from '../../../server/engine/planner/what-if.ts'
 import { demoDay } from '../../support/demo-race.ts'
 
 const NOTHING: Change = { sun: 1, dragArea: 1, rolling: 1, massKg: 0, headwindMps: 0, openingCharge: 0, stopS: 0 }
@@ -68,12 +69,26 @@ describe('a quick answer', { timeout: 60_000 }, () => {
     expect(later({ trackerOff: 2 })).toBeGreaterThan(60)
   })
 
-  test('a joule at the start is worth its price: 2 % less charge against the price of energy there', () => {
-    // The price is the slope at nothing; over so small a step the whole difference is the slope times the energy.
-    const lessJ = base.forecast.openingJ * 0.02
-    const share = 0.02
-    const { laterS } = quickWhatIf(base, { ...NOTHING, openingCharge: -share * base.forecast.openingCharge })
-    expect(Math.abs(laterS / (lessJ * base.refined.sPerJ[0]) - 1)).toBeLessThan(0.15)
+  test('takes less sun off the road, the stops and the evening alike', () => {
+    const { tables } = base
+    const less = changedTables(base, { ...NOTHING, sun: 0.9 })
+    const shares = [
+      ...[...tables.harvestW].map((W, i) => [W, less.harvestW[i]]),
+      ...tables.stops.flatMap(({ gainJ }, s) => [...gainJ].map((J, k) => [J, less.stops[s].gainJ[k]])),
+      ...[...tables.duskGainJ].map((J, k) => [J, less.duskGainJ[k]]),
+    ].filter(([before]) => before > 1)
+    expect(shares.length).toBeGreaterThan(1000)
+    for (const [before, behind] of shares) expect(behind / before).toBeCloseTo(0.9, 9)
+    expect(Math.max(...tables.duskGainJ)).toBeGreaterThan(100 * 3600)
+  })
+
+  test('a joule at the start is worth its price: 0.2 % less charge against the price of energy there, to 0.3 %', () => {
+    const { openingCharge, openingJ } = base.forecast
+    const charge = openingCharge * 0.998
+    const { laterS } = quickWhatIf(base, { ...NOTHING, openingCharge: charge - openingCharge })
+    const lessJ = openingJ - storedJ(race.car.pack, charge)
+    expect(laterS).toBeGreaterThan(5)
+    expect(Math.abs(laterS / (lessJ * base.refined.sPerJ[0]) - 1)).toBeLessThan(0.003)
   })
 
   test('says what is missing where no speeds near those of the base hold', () => {
