@@ -26,6 +26,25 @@ async function settled(id: string) {
   }
 }
 
+/** The day of a forecast at speeds of a plan. */
+async function forecastAt(speeds: unknown) {
+  const body = { carId: 'weaver-2', skyId: 'friday', speeds, date: wanted.date }
+  return (await post('/api/v1/races/plateau/forecasts', body)).json().budget.days[0]
+}
+
+/** Where two documents are apart by more than 1 s in a time, 1 Wh in an energy or in anything else. */
+function apart(one: unknown, other: unknown, at = ''): string[] {
+  if (typeof one === 'object' && one !== null && typeof other === 'object' && other !== null) {
+    const keys = [...new Set([...Object.keys(one), ...Object.keys(other)])]
+    return keys.flatMap((key) => apart(one[key as never], other[key as never], `${at}.${key}`))
+  }
+  const isTime = typeof one === 'string' && /^\d{4}-\d{2}-\d{2}T/.test(one)
+  const off = isTime
+    ? Math.abs(Date.parse(one) - Date.parse(String(other))) / 1000
+    : Math.abs(Number(one) - Number(other))
+  return one === other || off <= 1 ? [] : [`${at}: ${String(one)}, ${String(other)}`]
+}
+
 describe('a plan of stored documents', () => {
   test('is worked out in the background and kept; the same order is the same plan', async () => {
     const first = await order(wanted)
@@ -50,19 +69,32 @@ describe('a plan of stored documents', () => {
     })
   })
 
-  test('forecast anew at its speeds gives the same balance and arrival', async () => {
+  test('forecast anew at its speeds gives every balance within 1 Wh and every time within 1 s, reserve and target kept', async () => {
     const { id } = (await order(wanted)).json()
     const { plan } = await settled(id)
     for (const choice of [plan.best, plan.forPeople]) {
-      const { speeds } = choice
-      const made = (
-        await post('/api/v1/races/plateau/forecasts', { carId: 'weaver-2', skyId: 'friday', speeds, date: wanted.date })
-      ).json()
-      const [day] = made.budget.days
+      const day = await forecastAt(choice.speeds)
       expect(Math.abs(day.closing.wh - choice.closingWh)).toBeLessThan(1)
+      expect(Math.abs(day.marginWh - choice.leastSpareWh)).toBeLessThan(1)
+      expect(day.marginWh).toBeGreaterThan(-0.01)
+      expect(day.closing.wh).toBeGreaterThan(plan.target.wh - 0.01)
       const arrival = day.stages[day.stages.length - 1].arriveAt
       expect(Math.abs(Date.parse(arrival) - Date.parse(choice.arriveAt))).toBeLessThanOrEqual(1000)
     }
+    const [planned, anew] = [plan.forPeople.budget, await forecastAt(plan.forPeople.speeds)]
+    expect(apart(planned.gates, anew.gates)).toEqual([])
+    expect(apart(planned.stages, anew.stages)).toEqual([])
+    expect(planned.gates.length).toBeGreaterThan(4)
+  })
+
+  test('a steady plan is forecast to arrive when it says, with the reserve kept', async () => {
+    const { plan } = await settled((await order(wanted)).json().id)
+    const day = await forecastAt(plan.steady.speeds)
+    const arrival = day.stages[day.stages.length - 1].arriveAt
+    expect(Math.abs(Date.parse(arrival) - Date.parse(plan.steady.arriveAt))).toBeLessThanOrEqual(1000)
+    expect(day.marginWh).toBeGreaterThan(0)
+    expect(day.closing.wh).toBeGreaterThan(plan.target.wh - 5)
+    expect(Date.parse(plan.steady.arriveAt)).toBeGreaterThanOrEqual(Date.parse(plan.best.arriveAt))
   })
 
   test('compares battery and range at one moment at every gate: on arrival where there is a stop', async () => {
