@@ -100,7 +100,7 @@ function Pending({ of: { id, state } }: { of: KeptVariant }) {
         'not worked out'
       ) : (
         <>
-          <span role="status">{told?.step ?? 'Waiting its turn'}</span>
+          <span role="status">{tight(told?.step ?? 'Waiting its turn')}</span>
           <button type="button" onClick={() => void takeBack(id)}>
             Take back
           </button>
