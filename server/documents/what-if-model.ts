@@ -1,4 +1,3 @@
-import { chargeAtStoredJ } from '../engine/battery.ts'
 import { InputError } from '../engine/input-error.ts'
 import type { Change } from '../engine/planner/what-if.ts'
 import { type QuickBase, quickBase, quickWhatIf } from '../engine/planner/what-if.ts'
@@ -49,7 +48,7 @@ export function whatIfAnswers({ day, base }: WhatIfDay, variants: WhatIfRequest[
     base: { arriveAt: localIso(arrivalMs, day.zone), closingWh: forecast.closingJ * WH },
     text: `Without any change the day’s road ends ${clock(arrivalMs, day.zone)} at the earliest.`,
     variants: changes.map((change, i) => {
-      const { laterS, closingJ, lacksJ } = quickWhatIf(base, withMorning(base, change))
+      const { laterS, closingJ, lacksJ } = quickWhatIf(base, change)
       const holds = !Number.isNaN(laterS)
       return {
         name: variants[i].name,
@@ -61,14 +60,6 @@ export function whatIfAnswers({ day, base }: WhatIfDay, variants: WhatIfRequest[
       }
     }),
   }
-}
-
-/** Tables begin as the car sets off: what the sun brought until then changes the charge that they begin with. */
-function withMorning({ race, tables, forecast }: QuickBase, change: Change): Change {
-  const { openingJ, openingCharge } = forecast
-  const morningJ = Math.max(tables.start.energyJ - openingJ, 0)
-  const charge = chargeAtStoredJ(race.car.pack, openingJ + (change.sun - 1) * morningJ)
-  return { ...change, openingCharge: change.openingCharge + charge - openingCharge }
 }
 
 /**

@@ -7,6 +7,8 @@ import { type DayTables, rowAt, storedW, WAIT_PART_S } from './day-tables.ts'
 export interface Below {
   atS: Float64Array
   value: Float64Array
+  /** Steepest fall of any piece so far at its limit: lines are not laid steeper. */
+  steepest: number
 }
 
 /** How wide cells are, and an instant that one of them begins at; NaN for none. [S] */
@@ -16,7 +18,7 @@ export interface Spacing {
 }
 
 /** A function that is known nowhere yet. Nodes that move along with a drive lose little near it. */
-export function emptyBelow(lowS: number, highS: number, { stepS, nearS }: Spacing): Below {
+export function emptyBelow(lowS: number, highS: number, { stepS, nearS }: Spacing, steepest = 0): Below {
   const nodes = [lowS]
   if (highS > lowS) {
     const anchorS = Number.isNaN(nearS) ? lowS : nearS
@@ -25,7 +27,8 @@ export function emptyBelow(lowS: number, highS: number, { stepS, nearS }: Spacin
     for (let n = first; n < end; n++) nodes.push(anchorS + n * stepS)
     nodes.push(highS)
   }
-  return { atS: Float64Array.from(nodes), value: new Float64Array(nodes.length).fill(Number.POSITIVE_INFINITY) }
+  const value = new Float64Array(nodes.length).fill(Number.POSITIVE_INFINITY)
+  return { atS: Float64Array.from(nodes), value, steepest }
 }
 
 /**

@@ -45,7 +45,7 @@ export function behindPiece(
 ): Below {
   const priced = pricedOf(day, of.piece, of.price)
   const lowS = from.atS[0] + priced.shortestS
-  const to = emptyBelow(lowS, of.latestS, spacing)
+  const to = emptyBelow(lowS, of.latestS, spacing, Math.min(from.steepest, slopeAtLimit(priced, lowS)))
   const near = { cell: 0, isKnown: false }
   guessTimes(priced, from)
   const nodes = to.atS.map((atS) => leastAt(priced, from, atS, near))
@@ -55,11 +55,17 @@ export function behindPiece(
   const foot = new Float64Array(cells)
   for (let c = 0; c < cells; c++) {
     climb[c] = (nodes[c + 1] - nodes[c]) / (to.atS[c + 1] - to.atS[c])
-    if (!Number.isFinite(climb[c])) climb[c] = 0
+    climb[c] = Number.isFinite(climb[c]) ? Math.max(climb[c], to.steepest) : 0
     foot[c] = footOf(priced, from, to.atS[c], to.atS[c + 1], climb[c])
   }
   joinLines(to, climb, foot)
   return to
+}
+
+function slopeAtLimit(priced: Priced, atS: number): number {
+  const { day, piece, shortestS } = priced
+  tangentAt(priced, shortestS, rowAt(day.harvestW, piece * day.clock.count, day.clock, atS))
+  return tangent.slope
 }
 
 /** Fills in about which time suits each cell, in the sun half a usual passage later; any tangent holds. */

@@ -9,7 +9,7 @@ export function behindStop(
   of: { stop: TableStop; price: number; latestS: number },
 ): Below {
   const path = leaving(day, from, of.stop, of.price)
-  const to = emptyBelow(path[0].atS, of.latestS, spacing)
+  const to = emptyBelow(path[0].atS, of.latestS, spacing, from.steepest)
   const cells = to.atS.length - 1
   const climb = new Float64Array(cells)
   const foot = new Float64Array(cells).fill(Number.POSITIVE_INFINITY)

@@ -87,7 +87,7 @@ export function changedTables({ race, forecast, reach, tables }: QuickBase, chan
     duskGainJ: tables.duskGainJ.map((J) => gainedJ(J, sun)),
     floorJ: tables.floorJ.map((J) => J + floorJ),
     targetJ: change.targetCharge === undefined ? tables.targetJ : storedJ(pack, change.targetCharge),
-    start: { ...tables.start, energyJ: startJ(race, tables, forecast, change.openingCharge) },
+    start: { ...tables.start, energyJ: startJ(race, tables, forecast, change.openingCharge, sun) },
   }
 }
 
@@ -96,14 +96,16 @@ const ownFloorJ = ({ car }: Race): number => storedJ(car.pack, car.reserveCharge
 /** What a stand loses without sun stays as it is. [J] */
 const gainedJ = (J: number, sun: number): number => (J > 0 ? J * sun : J)
 
+/** Tables begin as the car sets off: with the opening charge and what the sun of the morning added. [J] */
 function startJ(
   { car }: Race,
   { start, pack }: DayTables,
   { openingCharge, openingJ }: DayForecast,
   by: number,
+  sun: number,
 ): number {
   const charge = Math.min(Math.max(openingCharge + by, 0), 1)
-  return Math.min(start.energyJ + storedJ(car.pack, charge) - openingJ, pack.ceilingJ)
+  return Math.min(storedJ(car.pack, charge) + gainedJ(start.energyJ - openingJ, sun), pack.ceilingJ)
 }
 
 function changedStop(stop: TableStop, byS: number, sun: number): TableStop {
