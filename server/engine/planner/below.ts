@@ -11,24 +11,41 @@ export interface Below {
   steepest: number
 }
 
-/** How wide cells are, and an instant that one of them begins at; NaN for none. [S] */
+/** How wide cells are around an instant, and how wide they grow away from it. [S] */
 export interface Spacing {
-  stepS: number
+  /** NaN where all are of the widest. */
   nearS: number
+  stepS: number
+  widestS: number
 }
 
+/** A cell is no wider than this share of its distance, or than the narrowest. */
+const WIDENS = 0.1
+
 /** A function that is known nowhere yet. Nodes that move along with a drive lose little near it. */
-export function emptyBelow(lowS: number, highS: number, { stepS, nearS }: Spacing, steepest = 0): Below {
-  const nodes = [lowS]
-  if (highS > lowS) {
-    const anchorS = Number.isNaN(nearS) ? lowS : nearS
-    const first = Math.floor((lowS - anchorS) / stepS + 0.5) + 1
-    const end = Math.ceil((highS - anchorS) / stepS - 0.5)
-    for (let n = first; n < end; n++) nodes.push(anchorS + n * stepS)
-    nodes.push(highS)
-  }
+export function emptyBelow(lowS: number, highS: number, spacing: Spacing, steepest = 0): Below {
+  const nodes = highS > lowS ? [lowS, ...between(lowS, highS, spacing), highS] : [lowS]
   const value = new Float64Array(nodes.length).fill(Number.POSITIVE_INFINITY)
   return { atS: Float64Array.from(nodes), value, steepest }
+}
+
+/** Nodes between the ends, none nearer to them than half the narrowest cell. [S] */
+function between(lowS: number, highS: number, { nearS, stepS, widestS }: Spacing): number[] {
+  const isEven = Number.isNaN(nearS)
+  const narrowS = isEven ? widestS : stepS
+  const from = isEven ? lowS : nearS
+  const spareS = narrowS / 2
+  const nodes: number[] = []
+  const add = (s: number): void => {
+    if (s > lowS + spareS && s < highS - spareS) nodes.push(s)
+  }
+  const offsets: number[] = []
+  const mostS = Math.max(highS - from, from - lowS)
+  for (let s = narrowS; s < mostS; s += Math.min(Math.max(narrowS, WIDENS * s), widestS)) offsets.push(s)
+  for (let j = offsets.length - 1; j >= 0; j--) add(from - offsets[j])
+  add(from)
+  for (const offset of offsets) add(from + offset)
+  return nodes
 }
 
 /**

@@ -54,11 +54,13 @@ export function earliestPossible(
 }
 
 /**
- * Cells at an edge: what straight lines lose grows with their width squared and falls with the way behind, so that equal
- * pains lose least with widths by its cube root.
+ * Cells at an edge: what straight lines lose grows with their width squared and falls with the way behind, so they are
+ * narrow at first; away from the drive they grow to the full width.
  */
 function spacingAt(edge: number, pieces: number, stepS: number, alongS?: Float64Array): Spacing {
-  return { stepS: stepS * Math.sqrt(Math.max(edge, 1) / pieces), nearS: alongS?.[edge] ?? Number.NaN }
+  const narrowS = stepS * Math.sqrt(Math.max(edge, 1) / pieces)
+  if (alongS === undefined) return { nearS: Number.NaN, stepS: narrowS, widestS: narrowS }
+  return { nearS: alongS[edge], stepS: narrowS, widestS: stepS }
 }
 
 /**
