@@ -253,7 +253,7 @@ describe('a GPX file that is wrong', () => {
     const bomb = `<?xml version="1.0"?>\n<!DOCTYPE gpx [<!ENTITY a "ha">${'<!ENTITY b "&a;&a;&a;&a;&a;&a;&a;&a;">'.repeat(50)}]>\n${gpx('&b;')}`
     const from = performance.now()
     expect(problemsOf(bomb)[0].field).toBe('DOCTYPE')
-    expect(performance.now() - from).toBeLessThan(200)
+    expect(performance.now() - from).toBeLessThan(5000)
   })
   it('is refused for a hundred thousand elements inside each other', () => {
     const [problem] = problemsOf(gpx('<a>'.repeat(100_000)))
@@ -278,9 +278,9 @@ describe('a GPX file that is wrong', () => {
 })
 
 describe('a day on the road, 50,000 points', () => {
-  it('is read within a second of computing', () => {
-    const text = track(
-      Array.from({ length: 50_000 }, (_, i) => {
+  const road = (points: number): string =>
+    track(
+      Array.from({ length: points }, (_, i) => {
         const ele = 1200 + 80 * Math.sin(i / 400) + ((i * 7919) % 100) / 25
         return point(
           (-31 + i * 0.0001).toFixed(6),
@@ -289,14 +289,21 @@ describe('a day on the road, 50,000 points', () => {
         )
       }).join('\n'),
     )
-    // Computing time, the best of three: other work on the machine is not this reader's.
+
+  /** Computing time, the least of three: other work on the machine is not this reader's. [ms] */
+  function computingMs(points: number): number {
+    const text = road(points)
     const runsMs = [1, 2, 3].map(() => {
       const from = process.cpuUsage()
-      expect(routeOf(text).summary.points).toBe(50_000)
+      expect(routeOf(text).summary.points).toBe(points)
       return process.cpuUsage(from).user / 1000
     })
-    const tookMs = Math.min(...runsMs)
-    console.log(`50,000 points, ${(text.length / 1e6).toFixed(1)} MB: ${tookMs.toFixed(0)} ms`)
-    expect(tookMs).toBeLessThan(1000)
+    return Math.min(...runsMs)
+  }
+
+  it('takes about four times as long as a quarter of it, not sixteen times', { timeout: 120_000 }, () => {
+    const [quarterMs, wholeMs] = [12_500, 50_000].map(computingMs)
+    console.log(`50,000 points: ${wholeMs.toFixed(0)} ms, 12,500: ${quarterMs.toFixed(0)} ms`)
+    expect(wholeMs / quarterMs).toBeLessThan(9)
   })
 })
