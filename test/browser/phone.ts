@@ -33,7 +33,7 @@ export async function openPhone(browser: Browser, options: BrowserContextOptions
     ...options,
   })
   const page = await context.newPage()
-  page.setDefaultTimeout(20_000)
+  page.setDefaultTimeout(60_000)
   const complaints: string[] = []
   page.on('console', (message) => {
     // A day that nobody follows yet is told by a 404, which the browser logs by itself.
