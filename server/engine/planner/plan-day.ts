@@ -55,7 +55,9 @@ export interface DayPlan {
   boundMs: number
 }
 
+/** Cells of the bound are no wider, and no wider than that part of the day's way to its end. [S] */
 const BOUND_STEP_S = 150
+const BOUND_PARTS = 100
 const MOST_ROUNDS = 8
 const LAST_ROUNDS = 4
 const WHOLE_ROUNDS = 3
@@ -93,6 +95,7 @@ export function planDay(task: DayTask): DayPlan | null {
   const { opensMs } = race.days[dayIndex]
   const endS = (best.verdict.arrivalMs - opensMs) / 1000
   const along = simulate(tables, driveAlong(tables, best.speedMps, reach.first))
+  const stepS = Math.min(BOUND_STEP_S, (endS - tables.start.atS) / BOUND_PARTS)
   return {
     best,
     forPeople,
@@ -100,7 +103,7 @@ export function planDay(task: DayTask): DayPlan | null {
     tables,
     heldMps: motorMps({ ...day, base: best.forecast }, reach),
     sPerJ: refined.sPerJ,
-    boundMs: opensMs + 1000 * earliestArrival(tables, refined.sPerJ, endS, BOUND_STEP_S, along.atS),
+    boundMs: opensMs + 1000 * earliestArrival(tables, refined.sPerJ, endS, stepS, along.atS),
   }
 }
 
