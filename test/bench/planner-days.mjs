@@ -20,7 +20,7 @@ const COUNT = Number(process.argv[2] ?? 200)
 const FIRST = Number(process.argv[3] ?? 1)
 const FINE = { binS: 10, speedMps: 1 / 3.6 }
 const STARTS_KMH = [45, 58, 70, 82, 95]
-const BOUND_CELL_S = 30
+const BOUND_CELL_S = 20
 /** What a plan may lose against the best known, and the median bound. [s, share of the driving time] */
 const MOST_LATE_S = 1
 const MOST_GAP = 0.002
