@@ -3,6 +3,7 @@ import { rangeOf, touching } from '../engine/ensemble/ranges.ts'
 import { type DayForecast, forecastDay, type Opening } from '../engine/forecast.ts'
 import { holds } from '../engine/planner/judge.ts'
 import { type NightCost, onTheRoadS } from '../engine/planner/night-costs.ts'
+import { ordinarySpeeds } from '../engine/planner/ordinary.ts'
 import type { DayPlan } from '../engine/planner/plan-day.ts'
 import type { RaceDay } from '../engine/planner/plan-race.ts'
 import { placeName } from './budget-day.ts'
@@ -21,8 +22,6 @@ const WH = 1 / 3600
 const MIN_MS = 60_000
 /** Points of the battery's line on a day, about. */
 const POINTS = 60
-/** A speed for the forecast of a day that drives nothing. [Mps] */
-const SOME_MPS = 20
 
 /** A day as the planner left it. */
 export interface PlannedDay {
@@ -74,8 +73,7 @@ function waiting(of: DrivenDay) {
 
 function parked(base: DrivenDay) {
   const { race, dayIndex, opening } = base
-  const still = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
-  const forecast = forecastDay(race, dayIndex, opening, still)
+  const forecast = forecastDay(race, dayIndex, opening, ordinarySpeeds(race))
   const day = { ...base, forecast }
   const place = placeName(day, opening.standing.placeM)
   const text = `${dayName(base.date)}: the car is not driven and closes with ${Math.round(forecast.closing.charge * 100)} %.`

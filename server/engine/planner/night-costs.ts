@@ -1,11 +1,9 @@
 import { type DayForecast, forecastDay, type Opening, type Race } from '../forecast.ts'
 import { holds } from './judge.ts'
+import { ordinarySpeeds } from './ordinary.ts'
 import { bestDay } from './plan-day.ts'
 import type { RaceDay } from './plan-race.ts'
 import { raceCharges, type RaceTask } from './race-charges.ts'
-
-/** Speed on the forecast of a day that drives nothing. [Mps] */
-const SOME_MPS = 70 / 3.6
 
 /** What a given closing charge costs against the one that the days around it would choose. */
 export interface NightCost {
@@ -59,7 +57,7 @@ function drivenS({ race, dayIndex, opening }: RaceTask, charges: number[], befor
   let totalS = 0
   for (const [i, { plan }] of before.entries()) {
     const d = dayIndex + i
-    const startMps = plan?.best.speedMps ?? new Float64Array(race.course.pieces.count).fill(SOME_MPS)
+    const startMps = plan?.best.speedMps ?? ordinarySpeeds(race)
     if (plan === null) {
       open = forecastDay(race, d, open, startMps).closing
       continue

@@ -14,6 +14,7 @@ import {
   tablesAlong,
 } from './engine-tables.ts'
 import { holds, isBetterVerdict, judge, type Verdict } from './judge.ts'
+import { onCourse, ordinarySpeeds } from './ordinary.ts'
 import { refine, type Refined } from './refine.ts'
 import { driveOf, type Section, sectionsFor } from './sections.ts'
 import { settle } from './settle.ts'
@@ -63,8 +64,6 @@ const LAST_ROUNDS = 4
 const WHOLE_ROUNDS = 3
 /** Speeds for people may leave so much unused. [J] */
 const PEOPLE_CLOSE_J = 18_000
-/** Speed of the first forecast, and of pieces that the day does not reach. [Mps] */
-const SOME_MPS = 70 / 3.6
 /** Aimed at beyond reserve and target, so that the forecast keeps them too. [J] */
 const SPARE_J = 720
 /** A plan that its forecast misses by less is settled. [J, ms] */
@@ -119,7 +118,7 @@ export function bestDay(task: DayTask): { day: DayAtWork; found: { best: Judged;
     const forecast = forecastDay(race, dayIndex, opening, speedMps, path)
     return { speedMps, forecast, verdict: judge(race, forecast, targetCharge) }
   }
-  const first = drive(task.startMps ?? new Float64Array(race.course.pieces.count).fill(SOME_MPS))
+  const first = drive(task.startMps ?? ordinarySpeeds(race))
   const reach = reachOf({ race, dayIndex, base: first.forecast, path, targetCharge })
   if (reach.count <= 0) return null
   const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive }
@@ -166,7 +165,7 @@ function settleDown(
     const wayOn = round < WHOLE_ROUNDS ? 1 : 0.5
     const speedMps = refined.drive.speedMps.map((v, i) => heldMps[i] + wayOn * (v - heldMps[i]))
     const { arrivalMs } = now.verdict
-    now = day.drive(onCourse(day, speedMps))
+    now = day.drive(onCourse(day.race, day.reach, speedMps))
     if (best === null || isBetterVerdict(now.verdict, best.verdict)) best = now
     // What tables cannot see, as a dip inside a piece, is kept free everywhere.
     if (round >= WHOLE_ROUNDS) spareJ += Math.max(now.verdict.lackJ, 0)
@@ -201,12 +200,6 @@ function soonestS({ race, dayIndex }: DayAtWork, { verdict }: Judged): number {
   return isSound ? (verdict.arrivalMs - race.days[dayIndex].opensMs) / 1000 : Number.POSITIVE_INFINITY
 }
 
-function onCourse({ race, reach }: DayAtWork, speedMps: Float64Array): Float64Array {
-  const all = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
-  all.set(speedMps, reach.first)
-  return all
-}
-
 const PEOPLE_ROUNDS = 4
 
 /** Whole speeds in sections, aimed higher or lower until the forecast itself finds that they just hold. */
@@ -221,7 +214,7 @@ function peoplePlan(day: DayAtWork, best: Judged): DayPlan['forPeople'] {
   let kept: DayPlan['forPeople'] | null = null
   for (let round = 0; round < PEOPLE_ROUNDS; round++) {
     const sections = sectionsFor(tables, stageEnds, heldMps, waitS)
-    const judged = day.drive(onCourse(day, driveOf(tables, sections, waitS).speedMps))
+    const judged = day.drive(onCourse(race, reach, driveOf(tables, sections, waitS).speedMps))
     if (kept === null || isBetterVerdict(judged.verdict, kept.verdict)) kept = { ...judged, sections }
     const missJ = judged.verdict.lackJ
     if (missJ <= 0 && missJ > -PEOPLE_CLOSE_J) break
@@ -239,7 +232,7 @@ export function someTables({
   targetCharge,
 }: DayTask): { tables: DayTables; reach: Reach } | null {
   const path = planSun(race.days[dayIndex])
-  const speedMps = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
+  const speedMps = ordinarySpeeds(race)
   const base = forecastDay(race, dayIndex, opening, speedMps, path)
   const along = { race, dayIndex, base, path, targetCharge }
   const reach = reachOf(along)

@@ -1,10 +1,9 @@
 import { forecastDay, type Opening, type Race } from '../forecast.ts'
 import { standingBefore } from '../until-there.ts'
 import { furthestDay } from './furthest.ts'
+import { ordinarySpeeds } from './ordinary.ts'
 import { type DayPlan, type DayTask, planDay } from './plan-day.ts'
 import { raceCharges, type RaceTask } from './race-charges.ts'
-
-const SOME_MPS = 70 / 3.6
 
 /** One day of a planned race. */
 export interface RaceDay {
@@ -47,8 +46,12 @@ export function planRace(
 function planNext(task: DayTask): RaceDay {
   const { race, dayIndex, opening } = task
   if (opening.standing.stage > race.days[dayIndex].lastStage) {
-    const speedMps = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
-    return { plan: null, isParked: true, race, closing: forecastDay(race, dayIndex, opening, speedMps).closing }
+    return {
+      plan: null,
+      isParked: true,
+      race,
+      closing: forecastDay(race, dayIndex, opening, ordinarySpeeds(race)).closing,
+    }
   }
   const plan = planDay(task)
   if (plan?.best.verdict.isFinished === true)

@@ -5,6 +5,7 @@ import type { DayTables } from './day-tables.ts'
 import { descend } from './descent.ts'
 import { planSun, type Reach, reachOf, sunAhead, tablesAlong } from './engine-tables.ts'
 import { frontier } from './frontier.ts'
+import { onCourse, ORDINARY_MPS, ordinarySpeeds } from './ordinary.ts'
 import { refine, type Refined } from './refine.ts'
 import { settle } from './settle.ts'
 
@@ -30,7 +31,6 @@ const BIN_S = 180
 const SPEED_STEP_MPS = 14 / 3.6
 /** Even closing charges tried between the reserve and full. */
 const GRID = 8
-const SOME_MPS = 70 / 3.6
 /** Share of usable charge that the tables of a day are taken around. */
 const SOME_CHARGE = 0.6
 const MOST_STEPS = 12
@@ -77,22 +77,20 @@ function given(targetCharge: number[], d: number): number | null {
   return Number.isNaN(charge) ? null : charge
 }
 
-function speedsOf({ course }: Race, cost: RaceDayCost, refined: Refined | null): Float64Array | null {
+function speedsOf(race: Race, cost: RaceDayCost, refined: Refined | null): Float64Array | null {
   if ('parkedJ' in cost || refined === null) return null
-  const all = new Float64Array(course.pieces.count).fill(SOME_MPS)
-  all.set(refined.drive.speedMps, cost.reach.first)
-  return all
+  return onCourse(race, cost.reach, refined.drive.speedMps)
 }
 
 function costOf({ race, opening, targetCharge }: RaceTask, d: number): RaceDayCost {
   const path = planSun(race.days[d])
-  const speedMps = new Float64Array(race.course.pieces.count).fill(SOME_MPS)
+  const speedMps = ordinarySpeeds(race)
   const base = forecastDay(race, d, { ...opening, standing: standingOn(race, d), charge: SOME_CHARGE }, speedMps, path)
   const along = { race, dayIndex: d, base, path, targetCharge: given(targetCharge, d) ?? SOME_CHARGE }
   const reach = reachOf(along)
   if (reach.count <= 0) return { parkedJ: base.closingJ - base.openingJ }
   const tables = tablesAlong(along, reach, sunAhead(along, reach))
-  const held = tables.fastestMps.map((fastest) => Math.min(fastest, SOME_MPS))
+  const held = tables.fastestMps.map((fastest) => Math.min(fastest, ORDINARY_MPS))
   settle(tables, along, reach, base, held)
   return { reach, tables, morningJ: tables.start.energyJ - base.openingJ }
 }
@@ -206,7 +204,7 @@ function refinedDay(cost: RaceDayCost, openJ: number, closeJ: number, before: Re
   const endS = earliestEnd(day, found)
   const drive =
     endS === Number.POSITIVE_INFINITY
-      ? { speedMps: day.fastestMps.map((mps) => Math.min(mps, SOME_MPS)), waitS: new Float64Array(day.pieces + 1) }
+      ? { speedMps: day.fastestMps.map((mps) => Math.min(mps, ORDINARY_MPS)), waitS: new Float64Array(day.pieces + 1) }
       : backTrack(day, found, endS)
   return refine(day, drive)
 }

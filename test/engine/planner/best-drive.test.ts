@@ -18,6 +18,17 @@ const KINDS: [string, SmallWants][] = [
 const SEEDS = Array.from({ length: 20 }, (_, n) => n + 1)
 
 describe('the best drive', () => {
+  it.each<[Bind, number, SmallWants]>([
+    ['floor', 7, { pieces: 4, hasStop: true, hasMotion: true }],
+    ['target', 7, { pieces: 4, hasStop: true, opensLate: true }],
+    ['target', 38, { pieces: 4, hasStop: true, opensLate: true }],
+  ])('does not wait where it need not, held back by %s: seed %i', (bind, seed, wants) => {
+    const day = tightDay(seed, wants, bind)
+    const made = bestDrive(day)
+    expect(made?.track.shortJ).toBeLessThanOrEqual(0)
+    expect(made?.track.atS[day.pieces]).toBeLessThan(everyChoice(day, 24) + 1)
+  })
+
   // The grid is 24 speeds a piece: it ends 1 to 3 s after the best drive on most days.
   describe.each<Bind>(['target', 'floor', 'ceiling', 'all'])('held back by %s', (bind) => {
     it.each(KINDS)('is not beaten by any choice of grid speeds: days %s', (_name, wants) => {

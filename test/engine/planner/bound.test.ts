@@ -154,6 +154,17 @@ describe('the bound', { timeout: 120_000 }, () => {
     }
   })
 
+  it('is about as tight with cells around a drive as with even ones, on a day that wants other prices', () => {
+    const day = cloudyDay(197)
+    const speedMps = day.fastestMps.map((fastest) => Math.min(fastest, 75 / 3.6))
+    const { track, sPerJ } = refine(day, { speedMps, waitS: new Float64Array(day.pieces + 1) })
+    const endS = track.atS[day.pieces]
+    const [evenS, aroundS] = [undefined, track.atS].map(
+      (along) => endS - earliestPossible(day, sPerJ, endS, 150, along),
+    )
+    expect(aroundS).toBeLessThan(1.25 * evenS)
+  })
+
   it('counts to the arrival, not to the end of a stop that is held there', () => {
     for (const opensLate of [false, true]) {
       const day = smallDay(5, { pieces: 3, stopAtEnd: true, opensLate })

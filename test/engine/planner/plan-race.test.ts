@@ -80,3 +80,12 @@ test('what a short day does not reach is driven on the next', { timeout: 120_000
   expect(reachedM).toBeLessThan(race.course.stages[3].toM)
   expect(second.plan?.best.forecast.timetable.spans[0].fromM).toBeCloseTo(reachedM, 3)
 })
+
+test('a drive of less than an hour is bound within half a minute', { timeout: 60_000 }, () => {
+  const friday = demoDay('2026-10-16')
+  const plan = planDay({ race, dayIndex: 0, opening: friday.opening, targetCharge: 0.82 })
+  expect(drivingMin(plan)).toBeLessThan(60)
+  const withinS = ((plan?.best.verdict.arrivalMs ?? Number.NaN) - (plan?.boundMs ?? Number.NaN)) / 1000
+  expect(withinS).toBeGreaterThanOrEqual(0)
+  expect(withinS).toBeLessThan(30)
+})

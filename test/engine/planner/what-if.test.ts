@@ -27,6 +27,16 @@ describe('a quick answer', { timeout: 60_000 }, () => {
     expect(lacksJ).toBe(0)
   })
 
+  test('begins with what the morning would bring in that sun', () => {
+    const { openingJ } = base.forecast
+    const startJ = (sun: number): number => changedTables(base, { ...NOTHING, sun }).start.energyJ
+    const morningJ = base.tables.start.energyJ - openingJ
+    expect(morningJ).toBeGreaterThan(100_000)
+    expect(startJ(1)).toBeCloseTo(openingJ + morningJ, 3)
+    expect(startJ(0.5)).toBeCloseTo(openingJ + morningJ / 2, 3)
+    expect(startJ(0)).toBeCloseTo(openingJ, 3)
+  })
+
   // The other side of each is a whole plan of the changed car or day, which knows nothing of the tables of the base.
   test.each<[string, Partial<Change>, DayTask]>([
     ['more drag', { dragArea: 1.05 }, withLoad({ dragAreaM2: load.dragAreaM2 * 1.05 })],
