@@ -159,9 +159,7 @@ describe('the bound', { timeout: 120_000 }, () => {
     const speedMps = day.fastestMps.map((fastest) => Math.min(fastest, 75 / 3.6))
     const { track, sPerJ } = refine(day, { speedMps, waitS: new Float64Array(day.pieces + 1) })
     const endS = track.atS[day.pieces]
-    const [evenS, aroundS] = [undefined, track.atS].map(
-      (along) => endS - earliestPossible(day, sPerJ, endS, 150, along),
-    )
+    const [evenS, aroundS] = [undefined, track.atS].map((along) => endS - earliestPossible(day, sPerJ, endS, 40, along))
     expect(aroundS).toBeLessThan(1.25 * evenS)
   })
 
