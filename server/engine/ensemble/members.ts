@@ -15,8 +15,9 @@ export interface Course {
   perHeadwind: Float64Array
   /** Most that a factor on the sun can be: the clear sky over the forecast. */
   mostSun: Float64Array
-  /** How much of the wandering factor is remembered from the piece before. */
+  /** How much of the wandering factor is remembered from the piece before, and how much of it is new. */
   memory: Float64Array
+  novelty: Float64Array
   /** Stop in front of each piece: what it brings; 0 where there is none. [J] (pieces + 1) */
   stopJ: Float64Array
   duskJ: number
@@ -62,6 +63,7 @@ export function courseOf(
     perHeadwind: of.perHeadwind,
     mostSun: column(),
     memory: column(),
+    novelty: column(),
     stopJ: new Float64Array(n + 1),
     duskJ: 0,
     endS: 0,
@@ -87,6 +89,7 @@ export function courseOf(
     course.mostSun[i] = Math.max(course.harvestW[i] > 1 ? of.clearW[i] / course.harvestW[i] : 1, 1)
     const goneS = stoodS + course.durationS[i]
     course.memory[i] = Math.exp(-goneS / of.spreads.wanderS - day.lengthM[i] / of.spreads.wanderM)
+    course.novelty[i] = Math.sqrt(1 - course.memory[i] * course.memory[i])
     t += course.durationS[i]
   }
   stand(n)
@@ -96,6 +99,8 @@ export function courseOf(
 }
 
 const LEAST_SUN = 0.02
+/** Normal numbers that a member draws before it sets off; then one a piece. */
+const DAY_DRAWS = 6
 
 const edgesWithStop = ({ stopJ }: Course): Int32Array =>
   Int32Array.from([...stopJ.keys()].filter((edge) => stopJ[edge] !== 0))
@@ -125,15 +130,17 @@ export function members(course: Course, spreads: Spreads, count: number, seed: n
   }
   const on = (cause: Cause): number => (only === undefined || only === cause ? 1 : 0)
   const [sun, wind, road, trackers, opening] = CAUSES.map(on)
-  const next = normals(seed)
+  const draw = normals(seed)
+  const drawn = new Float64Array(DAY_DRAWS + n)
   const { coulombic, lossPerW, ceilingJ } = pack
   for (let m = 0; m < count; m++) {
-    const sunDay = sun * spreads.sunDay * next()
-    const headwindMps = wind * spreads.headwindMps * next()
-    const roadFactor = 1 + road * spreads.roadLoad * next()
-    const trackerFactor = Math.max(1 + trackers * spreads.trackers * next(), 0)
-    let E = Math.min(Math.max(day.start.energyJ + opening * spreads.openingJ * next(), 0), ceilingJ)
-    let wander = next()
+    draw(drawn)
+    const sunDay = sun * spreads.sunDay * drawn[0]
+    const headwindMps = wind * spreads.headwindMps * drawn[1]
+    const roadFactor = 1 + road * spreads.roadLoad * drawn[2]
+    const trackerFactor = Math.max(1 + trackers * spreads.trackers * drawn[3], 0)
+    let E = Math.min(Math.max(day.start.energyJ + opening * spreads.openingJ * drawn[4], 0), ceilingJ)
+    let wander = drawn[5]
     let harvestJ = 0
     let spareJ = Number.POSITIVE_INFINITY
     let spareEdge = 0
@@ -151,8 +158,7 @@ export function members(course: Course, spreads: Spreads, count: number, seed: n
       }
       out.energyJ[row + i] = E
       if (i === n) break
-      const memory = course.memory[i]
-      wander = memory * wander + Math.sqrt(1 - memory * memory) * next()
+      wander = course.memory[i] * wander + course.novelty[i] * drawn[DAY_DRAWS + i]
       const wanted = 1 + sunDay + sun * spreads.sunWander * wander
       factor = wanted < LEAST_SUN ? LEAST_SUN : wanted > course.mostSun[i] ? course.mostSun[i] : wanted
       const harvestW = course.harvestW[i] * factor * trackerFactor

@@ -30,8 +30,8 @@ export function fallsOf(day: DayTables, piece: number, first: number, last: numb
   return fallW.some((W) => W > 0) ? fallW : new Float64Array(0)
 }
 
-/** Between its entries a load rises over the highest by at most an eighth of their range. [W] */
-export function mostLoadOf({ speeds, loadW }: DayTables, piece: number): number {
+/** Most and least that a load can be: between its entries it passes them by at most an eighth of their range. [W] */
+export function loadsOf({ speeds, loadW }: DayTables, piece: number): { mostLoadW: number; leastLoadW: number } {
   let most = 0
   let least = 0
   for (let j = 0; j < speeds.count; j++) {
@@ -39,7 +39,8 @@ export function mostLoadOf({ speeds, loadW }: DayTables, piece: number): number 
     most = Math.max(most, W)
     least = Math.min(least, W)
   }
-  return most + (most - least) / 8
+  const besideW = (most - least) / 8
+  return { mostLoadW: most + besideW, leastLoadW: least - besideW }
 }
 
 /** How far a parabola a·u² + b·u + c lies below 0, summed over u from 0 to 1. */

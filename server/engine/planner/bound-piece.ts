@@ -1,5 +1,5 @@
 import { type Below, emptyBelow, joinLines, mostBetween, type Spacing } from './below.ts'
-import { fallsOf, mostLoadOf } from './bound-hollow.ts'
+import { fallsOf, loadsOf } from './bound-hollow.ts'
 import {
   type DayTables,
   type Load,
@@ -30,8 +30,11 @@ interface Priced {
   guessS: Float64Array
   /** By how much the slope of its energy over time falls between two of these times; empty where it is convex. [W] */
   fallW: Float64Array
-  /** Most that the load can be. [W] */
+  /** By how much in all. [W] */
+  fallsW: number
+  /** Most and least that the load can be. [W] */
   mostLoadW: number
+  leastLoadW: number
   /** How many of its two ends the car stands at. */
   stands: number
 }
@@ -80,18 +83,36 @@ function guessTimes(priced: Priced, from: Below): void {
   }
 }
 
-/** A cell that is left and one that is reached, and the sun between them; scratch, filled for each pair. */
-const pair = { fromS: 0, untilS: 0, left: 0, grows: 0, startS: 0, endS: 0, sunW: 0, wantedS: 0 }
+/** A cell that is left and one that is reached; scratch, filled for each pair. */
+const pair = { fromS: 0, untilS: 0, left: 0, grows: 0, startS: 0, endS: 0, wantedS: 0 }
+/** A line over the sun half way through the piece, for the pair: never under it. [S, W, W/s] */
+const sun = { middleS: 0, halfS: 0, W: 0, slope: 0 }
 
-/** Fills the pair for the cell that is left. */
-function takePair(priced: Priced, from: Below, c: number): void {
+/** Fills the pair and the sun for the cell that is left. */
+function takePair({ day, piece, guessS }: Priced, from: Below, c: number): void {
   const last = from.atS.length - 1
   pair.fromS = from.atS[c]
   pair.untilS = from.atS[Math.min(c + 1, last)]
   pair.left = from.value[c]
   pair.grows = pair.untilS > pair.fromS ? (from.value[c + 1] - pair.left) / (pair.untilS - pair.fromS) : 0
-  pair.sunW = sunBetween(priced, pair.fromS + pair.startS, pair.untilS + pair.endS)
-  pair.wantedS = priced.guessS[c]
+  pair.wantedS = guessS[c]
+  lineOver(day, piece * day.clock.count, (pair.fromS + pair.startS) / 2, (pair.untilS + pair.endS) / 2)
+}
+
+/** Lays the line through the sun of both instants, lifted over what stands out between them. */
+function lineOver({ harvestW, clock }: DayTables, row: number, fromS: number, toS: number): void {
+  const fromW = rowAt(harvestW, row, clock, fromS)
+  const toW = rowAt(harvestW, row, clock, toS)
+  sun.middleS = (fromS + toS) / 2
+  sun.halfS = (toS - fromS) / 2
+  sun.slope = toS > fromS ? (toW - fromW) / (toS - fromS) : 0
+  let out = 0
+  for (let k = Math.max(Math.ceil((fromS - clock.from) / clock.step), 0); k < clock.count; k++) {
+    const s = clock.from + k * clock.step
+    if (s >= toS) break
+    out = Math.max(out, harvestW[row + k] - fromW - sun.slope * (s - fromS))
+  }
+  sun.W = (fromW + toW) / 2 + out
 }
 
 /** Most sun half way through the piece, between two sums of entering and leaving it. [W] */
@@ -131,7 +152,7 @@ function leastAt(priced: Priced, from: Below, atS: number, near: { cell: number;
     const low = Math.max(atS - pair.untilS, priced.shortestS)
     const high = Math.min(atS - pair.fromS, priced.longestS)
     const timeS = Math.min(Math.max(pair.wantedS, low), Math.max(high, low))
-    tangentAt(priced, timeS, pair.sunW)
+    tangentAt(priced, timeS, sun.W + sun.slope * (atS - timeS / 2 - sun.middleS))
     const value = pair.left + pair.grows * (atS - timeS - pair.fromS) + tangent.value
     if (value >= least) continue
     least = value
@@ -141,16 +162,22 @@ function leastAt(priced: Priced, from: Below, atS: number, near: { cell: number;
   return least
 }
 
-const load: Load = { W: 0, slope: 0 }
-const tangent = { value: 0, slope: 0 }
+const NEWTON = 2
+/** How far from a tangent's time the slope is first looked at. [S] */
+const FIRST_AWAY_S = 0.1
 
-/** Priced energy of a piece driven in a time, and its slope over that time. [s, 1] */
+const load: Load = { W: 0, slope: 0 }
+const tangent = { value: 0, slope: 0, keptS: 0 }
+
+/** Priced energy of a piece driven in a time, its slope over that time, and what a watt more would store. [s, 1, S] */
 function tangentAt({ day, piece, price, stands }: Priced, timeS: number, sunW: number): void {
   const speedMps = pieceMps(day, piece, timeS)
   loadAt(day, piece, speedMps, load)
   const stored = storedW(day.pack, sunW - load.W)
+  const kept = storedSlope(day.pack, sunW - load.W)
   tangent.value = -price * stored * timeS
-  tangent.slope = -price * (stored + storedSlope(day.pack, sunW - load.W) * fallW(day, piece, speedMps, timeS))
+  tangent.slope = -price * (stored + kept * fallW(day, piece, speedMps, timeS))
+  tangent.keptS = kept * timeS
   if (stands > 0) addRest(day, piece, speedMps, price * stands)
 }
 
@@ -237,37 +264,90 @@ function quicker(priced: Priced, leastS: number, climb: number, sunW: number): n
 function lowestOf(priced: Priced, from: Below, c: number, climb: number, climbS: number, foot: number): number {
   takePair(priced, from, c)
   if (pair.startS - pair.untilS > priced.longestS) return FAR
-  const lowest = lowestOver(priced, climb, climbS)
-  if (!(lowest < foot)) return lowest
-  pair.wantedS = timeOfSlope(priced, pair.grows, pair.sunW, 2)
-  return Math.max(lowest, lowestOver(priced, climb, timeOfSlope(priced, climb, pair.sunW, 2)))
+  if (foot < FAR) {
+    const lowest = lowestOver(priced, climb, climbS, foot)
+    if (!(lowest < foot)) return lowest
+  }
+  pair.wantedS = timeOfSlope(priced, pair.grows, sun.W, NEWTON)
+  return lowestOver(priced, climb, timeOfSlope(priced, climb, sun.W, NEWTON), foot)
 }
 
 /**
- * Below value less `climb` times arrival over a pair of cells, by the tangent of priced energy where the least is
- * expected: linear in the time taken and the instant left, so least at a corner of what the pair allows.
+ * Below value less `climb` times arrival over a pair of cells, by the tangent of priced energy in the middle sun where
+ * the least is expected, and by the line of the sun, at what its watts are worth in that time: linear in the time taken
+ * and the instant left, so least at a corner of what the pair allows.
+ *
+ * @param foot  a value that is not under it need not be exact
  */
-function lowestOver(priced: Priced, climb: number, climbS: number): number {
-  const { fromS, untilS, startS, endS, grows, left, sunW, wantedS } = pair
+function lowestOver(priced: Priced, climb: number, climbS: number, foot: number): number {
+  const { fromS, untilS, startS, endS, grows, left, wantedS } = pair
   const least = Math.max(priced.shortestS, startS - untilS)
   const most = Math.min(priced.longestS, endS - fromS)
   if (least > most) return FAR
   const reachS = climb > grows ? Math.min(endS, untilS + climbS) : Math.max(startS, fromS + climbS)
   const leaveS = Math.min(Math.max(reachS - wantedS, fromS), untilS)
   const timeS = Math.min(Math.max(reachS - leaveS, least), most)
-  tangentAt(priced, timeS, sunW)
-  const hollow = hollowBetween(priced, timeS, least, most, sunW)
-  const perLeaving = grows - climb
-  const perTime = tangent.slope - climb
-  const atLeast = Math.max(fromS, startS - most)
-  const atMost = Math.min(untilS, endS - least)
-  const at = (s: number): number =>
-    perLeaving * s + perTime * (perTime >= 0 ? Math.max(least, startS - s) : Math.min(most, endS - s))
-  const bend = perTime >= 0 ? startS - least : endS - most
-  let lowest = Math.min(at(atLeast), at(atMost))
-  if (bend > atLeast && bend < atMost) lowest = Math.min(lowest, at(bend))
-  return left - grows * fromS + tangent.value - tangent.slope * timeS + lowest - hollow
+  tangentAt(priced, timeS, sun.W)
+  const hollow = hollowBetween(priced, timeS, least, most, sun.W)
+  const perMiddle = priced.price * sun.slope * tangent.keptS
+  const lowest = leastCorner(grows - climb - perMiddle, tangent.slope - climb - perMiddle / 2, least, most)
+  const flat = left - grows * fromS + tangent.value - tangent.slope * timeS + perMiddle * sun.middleS
+  const value = flat + lowest - hollow
+  const coarse = value - sunBeside(priced, timeS, Math.max(most - timeS, timeS - least))
+  return coarse >= foot ? coarse : value - sunBeside(priced, timeS, risesWithin(priced, timeS, least, most))
 }
+
+/**
+ * Most that the line of the sun can be worth beside what the tangent's time makes of it: in times up to so far away it
+ * counts for longer or shorter, and other shares of a watt are kept.
+ */
+function sunBeside({ day, price, mostLoadW, leastLoadW }: Priced, timeS: number, awayS: number): number {
+  const mostKept = storedSlope(day.pack, sun.W - mostLoadW)
+  const leastKept = storedSlope(day.pack, sun.W - leastLoadW)
+  return price * Math.abs(sun.slope) * sun.halfS * (timeS * (mostKept - leastKept) + mostKept * awayS)
+}
+
+/**
+ * How far from the tangent's time other times count: until the slope has changed by more to both sides than the sun's
+ * line is worth in longer or shorter times, and than it can fall again, or until the ends. [S]
+ */
+function risesWithin(priced: Priced, timeS: number, least: number, most: number): number {
+  const { day, price, mostLoadW, fallsW } = priced
+  const { slope } = tangent
+  const worth = Math.abs(sun.slope) * sun.halfS * storedSlope(day.pack, sun.W - mostLoadW)
+  const rise = price * (worth + fallsW * storedSlope(day.pack, Math.min(sun.W, 0) - mostLoadW))
+  let awayS = FIRST_AWAY_S
+  for (; timeS + awayS < most || timeS - awayS > least; awayS *= 4) {
+    let isRisen = true
+    if (timeS + awayS < most) {
+      tangentAt(priced, timeS + awayS, sun.W)
+      isRisen = tangent.slope >= slope + rise
+    }
+    if (isRisen && timeS - awayS > least) {
+      tangentAt(priced, timeS - awayS, sun.W)
+      isRisen = tangent.slope <= slope - rise
+    }
+    if (isRisen) return awayS
+  }
+  return Math.max(most - timeS, timeS - least)
+}
+
+/** Least over what the pair allows of so much per instant left and so much per time taken. */
+function leastCorner(perLeaving: number, perTime: number, least: number, most: number): number {
+  const first = Math.max(pair.fromS, pair.startS - most)
+  const last = Math.min(pair.untilS, pair.endS - least)
+  const bend = perTime >= 0 ? pair.startS - least : pair.endS - most
+  const lowest = Math.min(
+    perLeaving * first + perTime * bestTime(first, perTime, least, most),
+    perLeaving * last + perTime * bestTime(last, perTime, least, most),
+  )
+  if (!(bend > first && bend < last)) return lowest
+  return Math.min(lowest, perLeaving * bend + perTime * bestTime(bend, perTime, least, most))
+}
+
+/** Shortest time from an instant into the cell that is reached where time costs, longest where it pays. [S] */
+const bestTime = (leftS: number, perTime: number, least: number, most: number): number =>
+  perTime >= 0 ? Math.max(least, pair.startS - leftS) : Math.min(most, pair.endS - leftS)
 
 /**
  * Most by which priced energy can lie below its tangent between two times: each fall of its slope counts from where it
@@ -300,6 +380,7 @@ function pricedOf(day: DayTables, piece: number, price: number): Priced {
     timeS[last - j] = pieceS(day, piece, speedMps)
     slopeW[last - j] = load.W - fallW(day, piece, speedMps, timeS[last - j])
   }
+  const falls = fallsOf(day, piece, first, last)
   return {
     day,
     piece,
@@ -309,8 +390,9 @@ function pricedOf(day: DayTables, piece: number, price: number): Priced {
     timeS,
     slopeW,
     guessS: new Float64Array(0),
-    fallW: fallsOf(day, piece, first, last),
-    mostLoadW: mostLoadOf(day, piece),
+    fallW: falls,
+    fallsW: falls.reduce((sum, W) => sum + W, 0),
+    ...loadsOf(day, piece),
     stands: day.kinetic.massKg > 0 ? (standsAt(day, piece) ? 1 : 0) + (standsAt(day, piece + 1) ? 1 : 0) : 0,
   }
 }

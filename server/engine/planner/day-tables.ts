@@ -138,8 +138,11 @@ export const pieceMps = (day: DayTables, piece: number, timeS: number): number =
 const SMOOTH_J = 150
 
 /** Whether the car stands in front of a piece, or behind the last. */
-export const standsAt = (day: DayTables, edge: number): boolean =>
-  edge === 0 || edge === day.pieces || day.stops.some(({ beforePiece }) => beforePiece === edge)
+export function standsAt({ pieces, stops }: DayTables, edge: number): boolean {
+  if (edge === 0 || edge === pieces) return true
+  for (let s = 0; s < stops.length; s++) if (stops[s].beforePiece === edge) return true
+  return false
+}
 
 /**
  * Energy from the bus for a change of speed; smooth where gains turn to losses.

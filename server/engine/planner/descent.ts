@@ -88,12 +88,15 @@ function remember(
   slope: Float64Array,
   nextSlope: Float64Array,
 ): void {
-  const s = next.map((value, i) => value - x[i])
-  const y = nextSlope.map((value, i) => value - slope[i])
+  const n = x.length
+  const oldest = moves.length === MEMORY ? moves.shift() : undefined
+  const { s, y } = oldest ?? { s: new Float64Array(n), y: new Float64Array(n) }
+  for (let i = 0; i < n; i++) {
+    s[i] = next[i] - x[i]
+    y[i] = nextSlope[i] - slope[i]
+  }
   const curved = dot(s, y)
-  if (!(curved > 1e-12 * Math.sqrt(dot(s, s) * dot(y, y)))) return
-  moves.push({ s, y, rho: 1 / curved })
-  if (moves.length > MEMORY) moves.shift()
+  if (curved > 1e-12 * Math.sqrt(dot(s, s) * dot(y, y))) moves.push({ s, y, rho: 1 / curved })
 }
 
 /** Step against the slope, by what the last moves told of the curvature. */

@@ -29,6 +29,8 @@ export interface Reach {
 const CLOCK_S = 600
 /** The road's sun is worked out every so many of those steps; it is straight between. */
 const SUN_STEPS = 2
+/** The same where plans are only begun. */
+const ROUGH_SUN_STEPS = 6
 /** How far from the base forecast's passage the sun on a piece is worked out; beyond, its last value holds. [S] */
 const WINDOW_S = 7200
 /** A forecast that passes a piece nearer than this is met by its sun. [S] */
@@ -58,14 +60,16 @@ export function reachOf({ race, dayIndex, base }: Along): Reach {
 export interface SunAhead extends Pick<DayTables, 'clock' | 'harvestW' | 'stops' | 'duskGainJ'> {
   /** When the base forecast passed each piece. [S] (pieces of the day) */
   passedS: Float64Array
+  isRough: boolean
 }
 
 /**
  * The sun of a day, from the engine with light, air and the pack's voltage as they are where and when a forecast passes.
  *
- * @param untilS  arrivals at the end of the day's road after this are of no interest. [S]
+ * @param untilS   arrivals at the end of the day's road after this are of no interest. [S]
+ * @param isRough  in wider steps, for a plan that is only begun
  */
-export function sunAhead(along: Along, reach: Reach, untilS = Number.POSITIVE_INFINITY): SunAhead {
+export function sunAhead(along: Along, reach: Reach, untilS = Number.POSITIVE_INFINITY, isRough = false): SunAhead {
   const { race, dayIndex, base } = along
   const day = race.days[dayIndex]
   const clock = clockFrom(startOf(along).atS, (day.closesMs - day.opensMs) / 1000)
@@ -77,13 +81,15 @@ export function sunAhead(along: Along, reach: Reach, untilS = Number.POSITIVE_IN
     clock,
     passedS: passed.atS,
     stops,
-    harvestW: harvests(along, reach, clock, { ...passed, ...window }),
+    harvestW: harvests(along, reach, clock, { ...passed, ...window }, isRough ? ROUGH_SUN_STEPS : SUN_STEPS),
     duskGainJ: evening(along, reach, clock, pack),
+    isRough,
   }
 }
 
 /** Whether a forecast passes everywhere so near the one a sun was worked out along that it holds for it too. */
 export function isNear(sun: SunAhead, along: Along, reach: Reach): boolean {
+  if (sun.isRough) return false
   const { atS } = passages(along, reach)
   return sun.passedS.every((s, i) => Math.abs(s - atS[i]) < NEAR_S)
 }
@@ -211,13 +217,13 @@ function passable(
 }
 
 /** Steps of the clock at which the sun of a piece is worked out: around its passage, while it may be passed. */
-function sunNodes(clock: Axis, passedS: number, earliestS: number, latestS: number): number[] {
+function sunNodes(clock: Axis, steps: number, passedS: number, earliestS: number, latestS: number): number[] {
   const node = (s: number): number => Math.min(Math.max((s - clock.from) / clock.step, 0), clock.count - 1)
   const first = node(Math.max(passedS - WINDOW_S, Math.min(earliestS, passedS)))
   const last = node(Math.min(passedS + WINDOW_S, Math.max(latestS, passedS)))
   const nodes: number[] = []
-  let k = Math.floor(first / SUN_STEPS) * SUN_STEPS
-  for (; k < last; k += SUN_STEPS) nodes.push(k)
+  let k = Math.floor(first / steps) * steps
+  for (; k < last; k += steps) nodes.push(k)
   nodes.push(Math.min(k, clock.count - 1))
   return nodes
 }
@@ -227,11 +233,12 @@ function harvests(
   reach: Reach,
   clock: Axis,
   by: { atS: Float64Array; packV: Float64Array; earliestS: Float64Array; latestS: Float64Array },
+  clockSteps: number,
 ): Float64Array {
   const { opensMs } = race.days[dayIndex]
   const { pieces } = race.course
   const nodes = Array.from({ length: reach.count }, (_, i) =>
-    sunNodes(clock, by.atS[i], by.earliestS[i], by.latestS[i]),
+    sunNodes(clock, clockSteps, by.atS[i], by.earliestS[i], by.latestS[i]),
   )
   const count = nodes.reduce((sum, { length }) => sum + length, 0)
   const steps = emptySteps(count)

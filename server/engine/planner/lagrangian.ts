@@ -27,6 +27,10 @@ export interface Sweep {
   /** Instant of leaving each edge. [S] (pieces + 1) */
   atS: Float64Array
   speedMps: Float64Array
+  /** Net power at the pack on each piece, how the sun changes over time there, and the load over speed. [W, W/s, J/m] */
+  netW: Float64Array
+  sunSlope: Float64Array
+  loadSlope: Float64Array
   /** Energy on arrival at each edge. [J] (pieces + 1) */
   arrivalJ: Float64Array
   /** Energy when the day closes. [J] */
@@ -44,6 +48,9 @@ export const newSweep = (day: DayTables, waitS: Float64Array): Sweep => ({
   spareJ: 0,
   atS: new Float64Array(day.pieces + 1),
   speedMps: new Float64Array(day.pieces),
+  netW: new Float64Array(day.pieces),
+  sunSlope: new Float64Array(day.pieces),
+  loadSlope: new Float64Array(day.pieces),
   arrivalJ: new Float64Array(day.pieces + 1),
   duskJ: 0,
   price: new Float64Array(day.pieces + 1),
@@ -81,8 +88,13 @@ function forward(day: DayTables, sweep: Sweep, timeS: Float64Array): void {
     }
     sweep.atS[i] = t
     if (i === pieces) break
-    const sunW = rowAt(day.harvestW, i * clock.count, clock, t + timeS[i] / 2)
-    E += storedW(pack, sunW - loadAt(day, i, sweep.speedMps[i], load).W) * timeS[i] - day.extraJ[i]
+    const middleS = t + timeS[i] / 2
+    loadAt(day, i, sweep.speedMps[i], load)
+    const netW = rowAt(day.harvestW, i * clock.count, clock, middleS) - load.W
+    sweep.netW[i] = netW
+    sweep.sunSlope[i] = rowSlopeAt(day.harvestW, i * clock.count, clock, middleS)
+    sweep.loadSlope[i] = load.slope
+    E += storedW(pack, netW) * timeS[i] - day.extraJ[i]
     if (kinetic.massKg > 0) E -= motionJ(day, sweep.speedMps, i)
     isFull.piece[i] = E >= pack.ceilingJ ? 1 : 0
     if (E > pack.ceilingJ) E = pack.ceilingJ
@@ -117,17 +129,15 @@ export function lagrangian(day: DayTables, sweep: Sweep, timeS: Float64Array, sl
   let s = stops.length - 1
   for (let i = n; i >= 0; i--) {
     if (i < n) {
-      const middleS = atS[i] + timeS[i] / 2
       const speedMps = sweep.speedMps[i]
-      loadAt(day, i, speedMps, load)
-      const netW = rowAt(day.harvestW, i * clock.count, clock, middleS) - load.W
-      const sunSlope = rowSlopeAt(day.harvestW, i * clock.count, clock, middleS)
+      const netW = sweep.netW[i]
+      const sunSlope = sweep.sunSlope[i]
       if (isFull.piece[i] === 1) p = 0
       const worth = p * storedSlope(pack, netW)
       slope[i] +=
         q +
         p * storedW(pack, netW) +
-        worth * timeS[i] * (0.5 * sunSlope + (load.slope * speedMps * speedMps) / day.lengthM[i])
+        worth * timeS[i] * (0.5 * sunSlope + (sweep.loadSlope[i] * speedMps * speedMps) / day.lengthM[i])
       q += worth * sunSlope * timeS[i]
       if (day.kinetic.massKg > 0) addMotion(day, sweep, slope, i, p)
     }

@@ -66,7 +66,7 @@ const WHOLE_ROUNDS = 3
 const PEOPLE_CLOSE_J = 18_000
 /** Aimed at beyond reserve and target, so that the forecast keeps them too. [J] */
 const SPARE_J = 720
-/** A plan that its forecast misses by less is settled. [J, ms] */
+/** A plan whose forecast misses what the tables told by less is settled. [J, ms] */
 const SETTLED_J = 900
 const SETTLED_MS = 300
 
@@ -121,7 +121,7 @@ export function bestDay(task: DayTask): { day: DayAtWork; found: { best: Judged;
   const first = drive(task.startMps ?? ordinarySpeeds(race))
   const reach = reachOf({ race, dayIndex, base: first.forecast, path, targetCharge })
   if (reach.count <= 0) return null
-  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive }
+  const day: DayAtWork = { race, dayIndex, targetCharge, path, reach, drive, isGuessed: task.startMps === undefined }
   const found = settleDown(day, first, null, MOST_ROUNDS)
   return found === null ? null : { day, found }
 }
@@ -134,6 +134,8 @@ export interface DayAtWork {
   path: SunPath
   reach: Reach
   drive: (speedMps: Float64Array) => Judged
+  /** Whether the first speeds are a guess, so that their sun need only be rough. */
+  isGuessed?: boolean
   /** The sun ahead as it was last worked out; overwritten. */
   sun?: SunAhead
 }
@@ -164,16 +166,20 @@ function settleDown(
     if (refined === null) return null
     const wayOn = round < WHOLE_ROUNDS ? 1 : 0.5
     const speedMps = refined.drive.speedMps.map((v, i) => heldMps[i] + wayOn * (v - heldMps[i]))
-    const { arrivalMs } = now.verdict
+    const toldMs = now.verdict.arrivalMs + 1000 * (endS(tables, speedMps) - endS(tables, heldMps))
     now = day.drive(onCourse(day.race, day.reach, speedMps))
     if (best === null || isBetterVerdict(now.verdict, best.verdict)) best = now
     // What tables cannot see, as a dip inside a piece, is kept free everywhere.
     if (round >= WHOLE_ROUNDS) spareJ += Math.max(now.verdict.lackJ, 0)
-    const isSame = Math.abs(now.verdict.arrivalMs - arrivalMs) < SETTLED_MS
+    const isSame = Math.abs(now.verdict.arrivalMs - toldMs) < SETTLED_MS && day.sun?.isRough === false
     if (isSame && holds(now.verdict) && now.verdict.lackJ > -SETTLED_J - SPARE_J) break
   }
   return best === null || refined === null ? null : { best, refined }
 }
+
+/** When a drive without waits is over, by the tables. [S] */
+const endS = (tables: DayTables, speedMps: Float64Array): number =>
+  simulate(tables, { speedMps, waitS: new Float64Array(tables.pieces + 1) }).atS[tables.pieces]
 
 const noWaits = (reach: Reach): Float64Array => new Float64Array(reach.count + 1)
 
@@ -185,7 +191,8 @@ export function settledTables(
 ): { tables: DayTables; heldMps: Float64Array } {
   const { reach } = day
   const along = { ...day, base: now.forecast }
-  if (day.sun === undefined || !isNear(day.sun, along, reach)) day.sun = sunAhead(along, reach, soonestS(day, now))
+  if (day.sun === undefined || !isNear(day.sun, along, reach))
+    day.sun = sunAhead(along, reach, soonestS(day, now), day.sun === undefined && day.isGuessed)
   const tables = tablesAlong(along, reach, day.sun)
   const { speedMps: heldMps } = driveAlong(tables, now.speedMps, reach.first)
   settle(tables, along, reach, now.forecast, heldMps)
