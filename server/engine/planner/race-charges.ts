@@ -89,7 +89,7 @@ function costOf({ race, opening, targetCharge }: RaceTask, d: number): RaceDayCo
   const along = { race, dayIndex: d, base, path, targetCharge: given(targetCharge, d) ?? SOME_CHARGE }
   const reach = reachOf(along)
   if (reach.count <= 0) return { parkedJ: base.closingJ - base.openingJ }
-  const tables = tablesAlong(along, reach, sunAhead(along, reach, Number.POSITIVE_INFINITY, true))
+  const tables = tablesAlong(along, reach, sunAhead(along, reach))
   const held = tables.fastestMps.map((fastest) => Math.min(fastest, ORDINARY_MPS))
   settle(tables, along, reach, base, held)
   return { reach, tables, morningJ: tables.start.energyJ - base.openingJ }

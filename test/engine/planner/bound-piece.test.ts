@@ -7,13 +7,18 @@ import { smallDay } from './small-day.ts'
 
 const PRICE = 1 / 1300
 
-/** A day under a sun that jumps by so much between minutes some steps apart. */
-function jumpy(seed: number, { swingW, stepS }: { swingW: number; stepS: number }): DayTables {
+/** A day under a sun that jumps by so much every so often, with loads that are hollow again and again by so much. */
+function jumpy(
+  seed: number,
+  { swingW, stepS, hollowW }: { swingW: number; stepS: number; hollowW: number },
+): DayTables {
   const day = smallDay(seed, { pieces: 2, hasExtra: seed % 3 === 0 })
   const next = uniform(900 + seed)
   const clock = { from: day.clock.from, step: stepS, count: Math.ceil(24_000 / stepS) }
   const harvestW = Float64Array.from({ length: day.pieces * clock.count }, () => 600 + swingW * (next() - 0.5))
-  return { ...day, clock, harvestW, pack: { ...day.pack, coulombic: 0.9 } }
+  const { from, step, count } = day.speeds
+  const loadW = day.loadW.map((W, at) => W + hollowW * Math.sin(from + (at % count) * step))
+  return { ...day, clock, harvestW, loadW, pack: { ...day.pack, coulombic: 0.9 } }
 }
 
 /** What stands before the piece: straight between nodes so far apart, as it comes or convex. */
@@ -68,13 +73,15 @@ function gaps(day: DayTables, from: Below, stepS: number, seed: number): { least
 
 describe('what is behind a piece', () => {
   it.each([
-    { name: 'a sun that changes slowly', swingW: 200, stepS: 1200, mostS: 4 },
-    { name: 'a sun that comes and goes', swingW: 1200, stepS: 600, mostS: 14 },
-    { name: 'a sun that flickers', swingW: 1200, stepS: 60, mostS: 130 },
-  ])('lies under every drive over it, and not far: $name', ({ swingW, stepS, mostS }) => {
+    { name: 'a sun that changes slowly', swingW: 200, stepS: 1200, hollowW: 0, mostS: 4 },
+    { name: 'a sun that comes and goes', swingW: 1200, stepS: 600, hollowW: 0, mostS: 14 },
+    { name: 'a sun that flickers', swingW: 1200, stepS: 60, hollowW: 0, mostS: 130 },
+    { name: 'hollow loads', swingW: 0, stepS: 600, hollowW: 20, mostS: 60 },
+    { name: 'hollow loads and a sun that comes and goes', swingW: 1200, stepS: 600, hollowW: 20, mostS: 60 },
+  ])('lies under every drive over it, and not far: $name', ({ swingW, stepS, hollowW, mostS }) => {
     const middles: number[] = []
     for (let seed = 1; seed <= 120; seed++) {
-      const day = jumpy(seed, { swingW, stepS })
+      const day = jumpy(seed, { swingW, stepS, hollowW })
       const cellS = [30, 90, 250][seed % 3]
       const { leastS, middleS } = gaps(day, before(seed, day, cellS), cellS, seed)
       expect(leastS, `seed ${seed}`).toBeGreaterThan(-1e-9)
