@@ -2,10 +2,11 @@ import { daySun } from '../engine/forecast.ts'
 import { courseOf, members } from '../engine/ensemble/members.ts'
 import { rangeAt, rangeOf, sharesOfSpread, touching } from '../engine/ensemble/ranges.ts'
 import { robustPlan } from '../engine/ensemble/robust.ts'
-import { CAUSES, type Cause, skySpread, type Spreads } from '../engine/ensemble/spread.ts'
+import { type DayCause, type DayEffect, dayEffects } from '../engine/ensemble/day-effects.ts'
+import { type Cause, skySpread, type Spreads } from '../engine/ensemble/spread.ts'
 import { forecastDay } from '../engine/forecast.ts'
 import { judge } from '../engine/planner/judge.ts'
-import { clearPowerW, loadPerHeadwind } from '../engine/planner/passing.ts'
+import { clearPowerW, loadPerHeadwind, sunShare } from '../engine/planner/passing.ts'
 import type { DayPlan, Judged } from '../engine/planner/plan-day.ts'
 import { refine, type Refined } from '../engine/planner/refine.ts'
 import { type Drive, driveAlong } from '../engine/planner/simulate.ts'
@@ -22,11 +23,14 @@ const GATE_EVERY_M = 25_000
 /** Members drawn for each cause alone. */
 const CAUSE_MEMBERS = 500
 
-const LABELS: Record<Cause, string> = {
+const LABELS: Record<Cause | DayCause, string> = {
   sun: 'Sky',
+  haze: 'Haze',
+  warmth: 'Air temperature',
   wind: 'Wind',
   road: 'Road load',
-  trackers: 'Trackers',
+  trackers: 'All trackers',
+  'tracker-loss': 'Losses of',
   opening: 'Charge at the start',
 }
 
@@ -40,14 +44,19 @@ export type Drawing = Pick<PlanRequest, 'sky' | 'spreads' | 'members' | 'seed'> 
 type Drawn = Pick<DayPlan, 'tables' | 'reach' | 'best'> & { forPeople: Judged }
 
 /** Days that differ from the forecast as its spreads say, driven at the plan for people. */
-export function drawDays(request: Drawing, { race, dayIndex }: DrivenDay, plan: Drawn) {
+export function drawDays(request: Drawing, { race, dayIndex, opening }: DrivenDay, plan: Drawn) {
   const { tables, reach, forPeople, best } = plan
+  const { linke, airC, trackerLossPct } = request.spreads
+  const effects = dayEffects(
+    { race, dayIndex, opening, reach, forecast: forPeople.forecast, speedMps: forPeople.speedMps },
+    { linke, airC, trackerLoss: trackerLossPct / 100 },
+  )
   const path = daySun(race.days[dayIndex])
   const clearW = clearPowerW(race, path, best.forecast, reach)
   const spreads = spreadsOf(request, plan, clearW)
   const lay = (drive: Drive) => {
     const perHeadwind = loadPerHeadwind(race, best.forecast, reach, drive.speedMps)
-    return courseOf(tables, drive, { clearW, perHeadwind, spreads })
+    return courseOf(tables, drive, { clearW, perHeadwind, spreads, effects })
   }
   const course = lay(driveAlong(tables, forPeople.speedMps, reach.first))
   return { spreads, lay, course, drawn: members(course, spreads, request.members, request.seed) }
@@ -90,21 +99,32 @@ export function planRanges(
       plannedWh: plannedJ * WH,
       wh: whRange(rangeAt(drawn, tables.pieces, edge)),
     })),
-    causes: CAUSES.map((cause) => ({ cause, label: LABELS[cause], sharePct: shares[cause] * 100 })).sort(
-      (a, b) => b.sharePct - a.sharePct,
-    ),
+    causes: shares
+      .map(({ cause, share }) => ({ ...named(cause), sharePct: share * 100 }))
+      .sort((a, b) => b.sharePct - a.sharePct),
   }
   return { ranges, steady: steadyOf(request, day, plan, spreads, ({ drive }) => lay(drive)) }
 }
 
-function spreadsOf({ spreads: of, sky, sunWander }: Drawing, { tables, best }: Drawn, clearW: Float64Array): Spreads {
+function named(of: Cause | DayEffect): { cause: string; label: string } {
+  if (typeof of === 'string') return { cause: of, label: LABELS[of] }
+  const { cause, tracker } = of
+  return tracker === undefined
+    ? { cause, label: LABELS[cause] }
+    : { cause: `${cause} ${tracker}`, label: `${LABELS[cause]} ${tracker}` }
+}
+
+function spreadsOf(
+  { spreads: of, sky, sunWander }: Drawing,
+  { tables, reach, best }: Drawn,
+  clearW: Float64Array,
+): Spreads {
   const { spans } = best.forecast.timetable
   const middleMs = (spans[0].fromMs + spans[spans.length - 1].toMs) / 2
-  const given = sum(best.forecast.balance.outW.subarray(0, best.forecast.steps.count))
-  const brightness = Math.min(Math.max(sunShare(best, clearW), 0), 1)
+  const clearness = sunShare(best.forecast, clearW, reach)
   const wander =
     of.sunWanderPct === undefined
-      ? (sunWander ?? skySpread((middleMs - Date.parse(sky.issuedAt)) / 1000, given > 0 ? brightness : 0))
+      ? (sunWander ?? skySpread((middleMs - Date.parse(sky.issuedAt)) / 1000, clearness))
       : of.sunWanderPct / 100
   return {
     sunDay: of.sunDayPct / 100,
@@ -118,21 +138,6 @@ function spreadsOf({ spreads: of, sky, sunWander }: Drawing, { tables, best }: D
   }
 }
 
-/** Sun on the road over what a clear sky would have brought there. */
-function sunShare({ forecast }: DayPlan['best'], clearW: Float64Array): number {
-  const { steps, balance } = forecast
-  let drivenW = 0
-  let count = 0
-  for (let i = 0; i < steps.count; i++)
-    if (steps.speedMps[i] > 0) {
-      drivenW += balance.outW[i]
-      count++
-    }
-  const clear = sum(clearW) / Math.max(clearW.length, 1)
-  return clear > 0 ? drivenW / Math.max(count, 1) / clear : 1
-}
-
-const sum = (values: Float64Array): number => values.reduce((total, value) => total + value, 0)
 const edgeM = (day: DrivenDay, piece: number): number => {
   const { pieces, lengthM } = day.race.course
   return piece < pieces.count ? pieces.fromM[piece] : lengthM

@@ -5,9 +5,7 @@ import { count, date, quantity, timeOfDay } from './quantity.ts'
 /** Standard deviations of what may differ from the forecast; what is left out is assumed. */
 export const spreadsDocument = z
   .strictObject({
-    sunDayPct: quantity(0, 50, 'of a factor on the sun that holds all day: haze, a forecast that is off [%]').default(
-      3,
-    ),
+    sunDayPct: quantity(0, 50, 'of a factor on the sun that holds all day: a forecast that is off [%]').default(3),
     sunWanderPct: quantity(
       0,
       100,
@@ -15,9 +13,16 @@ export const spreadsDocument = z
     ).optional(),
     wanderMin: quantity(5, 1440, 'time over which that factor forgets [min]').default(90),
     wanderKm: quantity(1, 2000, 'way over which it forgets [km]').default(150),
+    linke: quantity(
+      0,
+      3,
+      'of the Linke turbidity, all day; counts where no irradiance is given: there the sky says the light itself',
+    ).default(0.5),
+    airC: quantity(0, 10, 'of the air’s temperature, all day [°C]').default(1.5),
     headwindMps: quantity(0, 10, 'of the headwind at the car, all day [m/s]').default(0.8),
     roadPct: quantity(0, 30, 'of a factor on what road and air take [%]').default(3),
     trackersPct: quantity(0, 20, 'of a factor on what the trackers let through [%]').default(0.5),
+    trackerLossPct: quantity(0, 100, 'of a factor on what a tracker loses, each for itself [%]').default(15),
     openingPct: quantity(0, 20, 'of the charge at the start [% of charge]').default(1),
   })
   .meta({ title: 'Spreads' })

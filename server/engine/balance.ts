@@ -70,7 +70,9 @@ export interface TrackerDay {
 
 /** The day's energy, step by step and summed by span. Arrays have one entry per step. */
 export interface Balance {
+  /** Taken by the trackers. */
   inW: Float64Array
+  /** Spent, all spendings together. */
   outW: Float64Array
   deniedW: Float64Array
   charge: Float64Array
@@ -88,6 +90,10 @@ export interface Balance {
   firstShortLimit: PackLimit | null
   packLimits: PackLimitSum[]
 }
+
+/** What all trackers bring to the bus in a step. [W] */
+export const broughtW = ({ trackers }: Pick<Balance, 'trackers'>, step: number): number =>
+  trackers.reduce((sum, { steps }) => sum + steps.outputW[step], 0)
 
 /**
  * The pack's charge through the steps of a day, with every joule booked.

@@ -1,4 +1,4 @@
-import { airAlong, windAlong } from './air-along.ts'
+import { airAlong, type RoadAir, windAlong } from './air-along.ts'
 import { airDensityKgM3, LAPSE_C_PER_M } from './air.ts'
 import { type ClearSkyAlong, clearSkyAlong } from './clear-sky-along.ts'
 import { InputError } from './input-error.ts'
@@ -31,6 +31,10 @@ export interface SkyChange {
   sun: number
   /** Added to the headwind at the car while it drives, wherever it heads. [Mps] */
   headwindMps: number
+  /** Added to the air's temperature; nothing where left out. [C] */
+  airC?: number
+  /** Added to the Linke turbidity; nothing where left out. */
+  linke?: number
 }
 
 /** Weather at every step of a drive: sun, light, air and wind at the road. Arrays of `count` numbers. */
@@ -170,10 +174,10 @@ export const skyCoverage = (sky: Sky): { fromMs: number; toMs: number } => ({ fr
 export function weatherAlong(sky: Sky, path: SunPath, along: Along): Weather {
   const source = { ...sky, weights: placeWeights(sky.places, along) }
   const sun = sunAlong(path, along)
-  const { linke, ...air } = airAlong(source, along)
+  const { change } = sky
+  const { linke, ...air } = changedAir(airAlong(source, along), change)
   const clear: ClearSkyAlong = clearSkyAlong(sun, along, { ...air, linke })
   lightAlong(source, along, sun.up, clear)
-  const { change } = sky
   if (change !== undefined) dim(clear, change.sun)
   const densityKgM3 = new Float64Array(along.count)
   for (let i = 0; i < along.count; i++) densityKgM3[i] = airDensityKgM3(air.pressurePa[i], air.airC[i], air.vapourPa[i])
@@ -181,6 +185,21 @@ export function weatherAlong(sky: Sky, path: SunPath, along: Along): Weather {
   if (change === undefined) return weather
   return { ...weather, addedHeadwindMps: new Float64Array(along.count).fill(change.headwindMps) }
 }
+
+const LEAST_LINKE = 1
+
+function changedAir(air: RoadAir, change: SkyChange | undefined): RoadAir {
+  const { airC = 0, linke = 0 } = change ?? {}
+  return {
+    ...air,
+    airC: airC === 0 ? air.airC : air.airC.map((C) => C + airC),
+    linke: linke === 0 ? air.linke : air.linke.map((of) => Math.max(of + linke, LEAST_LINKE)),
+  }
+}
+
+/** Whether turbidity says how much light there is: all of it comes from a clear sky, or one dimmed by a share of cloud. */
+export const isLitByTurbidity = ({ places }: Sky): boolean =>
+  places.every(({ light }) => light.kind === 'clear' || light.kind === 'cloud')
 
 /** All light by one factor. */
 function dim({ ghiWm2, dniWm2, dhiWm2 }: ClearSkyAlong, factor: number): void {

@@ -1,4 +1,5 @@
 // Prints the planner's figures as JSON. In one thread, collector and compiler included: node --single-threaded
+import { dayEffects } from '../../dist/server/engine/ensemble/day-effects.js'
 import { courseOf, members } from '../../dist/server/engine/ensemble/members.js'
 import { robustPlan } from '../../dist/server/engine/ensemble/robust.js'
 import { dayFrom } from '../../dist/server/engine/from-here.js'
@@ -110,8 +111,12 @@ function plannerBench() {
     earliestArrival(day, better.result.sPerJ, arrivalS, BOUND_CELL_S, better.result.track.atS),
   )
   if (!(bound.result <= arrivalS)) throw new Error('a bound above the plan')
+  const { reach, best } = plan.result
+  const driven = { ...task, reach, forecast: best.forecast, speedMps: best.speedMps }
+  const effects = timed(5, () => dayEffects(driven, { linke: 0.5, airC: 1.5, trackerLoss: 0.15 }))
   const lay = ({ drive: of }) =>
     courseOf(day, of, {
+      effects: effects.result,
       clearW: new Float64Array(day.pieces).fill(1050),
       perHeadwind: new Float64Array(day.pieces).fill(60),
       spreads: SPREADS,
@@ -134,6 +139,8 @@ function plannerBench() {
     restPlainMs: rest.plain.ms,
     refineMs: better.ms,
     boundMs: bound.ms,
+    effectsMs: effects.ms,
+    effects: effects.result.length,
     fewMs: few.ms,
     manyMs: many.ms,
     robustMs: robust.ms,

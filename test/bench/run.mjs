@@ -97,7 +97,11 @@ say(
 )
 // The yardstick is the search: tables, refinement and forecasts around it would be the same for both.
 say('frontier of the rest of that day', ms(plan.restFrontierMs), `written plainly ${ms(plan.restPlainMs)}`)
-say('200 members', ms(plan.fewMs), `2,000 ${ms(plan.manyMs)}`)
+say(
+  '200 members',
+  ms(plan.fewMs),
+  `2,000 ${ms(plan.manyMs)}, with ${plan.effects} effects that took ${ms(plan.effectsMs)}`,
+)
 say('race of 2,800 km in five days', ms(plan.raceMs), `prices of energy ${(100 * plan.raceApart).toFixed(1)} % apart`)
 say('quick what-if', ms(plan.whatIfMs), 'the longest of five changes')
 say('robust plan', ms(plan.robustMs), `touches the reserve on ${plan.touchesPct.toFixed(1)} % of fresh days`)

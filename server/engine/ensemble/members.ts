@@ -1,6 +1,7 @@
 import { type DayTables, type Load, loadAt, pieceS, rowAt } from '../planner/day-tables.ts'
 import { type Drive, motionJ } from '../planner/simulate.ts'
 import { normals } from './normals.ts'
+import type { DayEffect } from './day-effects.ts'
 import { CAUSES, type Cause, type Spreads } from './spread.ts'
 
 /** A day driven at fixed speeds, laid out for many members. Arrays have one entry per piece. */
@@ -22,6 +23,8 @@ export interface Course {
   stopJ: Float64Array
   duskJ: number
   endS: number
+  /** What else holds all day, each with a number of its own. */
+  effects: DayEffect[]
 }
 
 /** What the members of an ensemble did. */
@@ -46,11 +49,12 @@ export interface Members {
  *
  * @param clearW        what the sun would bring under a clear sky as each piece is passed. [W] (pieces)
  * @param perHeadwind   change of each piece's load with the headwind at its speed. [W·s/m] (pieces)
+ * @param effects       what else holds all day; none where left out
  */
 export function courseOf(
   day: DayTables,
   drive: Drive,
-  of: { clearW: Float64Array; perHeadwind: Float64Array; spreads: Spreads },
+  of: { clearW: Float64Array; perHeadwind: Float64Array; spreads: Spreads; effects?: DayEffect[] },
 ): Course {
   const n = day.pieces
   const column = () => new Float64Array(n)
@@ -67,6 +71,7 @@ export function courseOf(
     stopJ: new Float64Array(n + 1),
     duskJ: 0,
     endS: 0,
+    effects: of.effects ?? [],
   }
   const load: Load = { W: 0, slope: 0 }
   let t = day.start.atS
@@ -109,12 +114,18 @@ const edgesWithStop = ({ stopJ }: Course): Int32Array =>
  * Drives the same speeds through many days that differ as the spreads say.
  *
  * The sun's factor is a day's own plus one that wanders (an Ornstein–Uhlenbeck process over time and place), never
- * above the clear sky; wind, road, trackers and opening differ once a day.
+ * above the clear sky; wind, road, trackers, opening and the course's effects differ once a day.
  *
- * @param only  one cause alone, with the numbers that it would have among all
+ * @param only  one cause or one of the course's effects alone, with the numbers that it would have among all
  * @source Uhlenbeck & Ornstein 1930, Physical Review 36, 823 (the process; sampled exactly at the edges)
  */
-export function members(course: Course, spreads: Spreads, count: number, seed: number, only?: Cause): Members {
+export function members(
+  course: Course,
+  spreads: Spreads,
+  count: number,
+  seed: number,
+  only?: Cause | DayEffect,
+): Members {
   const { day } = course
   const { pieces: n, pack, floorJ } = day
   const stopEdges = edgesWithStop(course)
@@ -130,8 +141,12 @@ export function members(course: Course, spreads: Spreads, count: number, seed: n
   }
   const on = (cause: Cause): number => (only === undefined || only === cause ? 1 : 0)
   const [sun, wind, road, trackers, opening] = CAUSES.map(on)
+  const effects = course.effects.filter((effect) => only === undefined || only === effect)
+  const firstEffect = only === undefined ? DAY_DRAWS : DAY_DRAWS + course.effects.indexOf(effects[0])
+  const firstPiece = DAY_DRAWS + course.effects.length
   const draw = normals(seed)
-  const drawn = new Float64Array(DAY_DRAWS + n)
+  const drawn = new Float64Array(firstPiece + n)
+  const besideJ = new Float64Array(n)
   const { coulombic, lossPerW, ceilingJ } = pack
   for (let m = 0; m < count; m++) {
     draw(drawn)
@@ -139,9 +154,18 @@ export function members(course: Course, spreads: Spreads, count: number, seed: n
     const headwindMps = wind * spreads.headwindMps * drawn[1]
     const roadFactor = 1 + road * spreads.roadLoad * drawn[2]
     const trackerFactor = Math.max(1 + trackers * spreads.trackers * drawn[3], 0)
-    let E = Math.min(Math.max(day.start.energyJ + opening * spreads.openingJ * drawn[4], 0), ceilingJ)
-    let wander = drawn[5]
+    besideJ.set(course.extraJ)
+    let startJ = day.start.energyJ + opening * spreads.openingJ * drawn[4]
     let harvestJ = 0
+    for (let e = 0; e < effects.length; e++) {
+      const { pieceJ } = effects[e]
+      const times = drawn[firstEffect + e]
+      startJ += times * effects[e].morningJ
+      harvestJ += times * effects[e].harvestJ
+      for (let i = 0; i < n; i++) besideJ[i] -= times * pieceJ[i]
+    }
+    let E = Math.min(Math.max(startJ, 0), ceilingJ)
+    let wander = drawn[5]
     let spareJ = Number.POSITIVE_INFINITY
     let spareEdge = 0
     const row = m * (n + 1)
@@ -154,20 +178,24 @@ export function members(course: Course, spreads: Spreads, count: number, seed: n
       }
       if (course.stopJ[i] !== 0) {
         out.arriveJ[stop++] = E
-        E = Math.min(E + course.stopJ[i] * factor * trackerFactor, ceilingJ)
+        E += course.stopJ[i] * factor * trackerFactor
+        for (let e = 0; e < effects.length; e++) E += drawn[firstEffect + e] * effects[e].stopJ[i]
+        if (E > ceilingJ) E = ceilingJ
       }
       out.energyJ[row + i] = E
       if (i === n) break
-      wander = course.memory[i] * wander + course.novelty[i] * drawn[DAY_DRAWS + i]
+      wander = course.memory[i] * wander + course.novelty[i] * drawn[firstPiece + i]
       const wanted = 1 + sunDay + sun * spreads.sunWander * wander
       factor = wanted < LEAST_SUN ? LEAST_SUN : wanted > course.mostSun[i] ? course.mostSun[i] : wanted
       const harvestW = course.harvestW[i] * factor * trackerFactor
       const netW = harvestW - course.loadW[i] * roadFactor - course.perHeadwind[i] * headwindMps
-      E += ((netW > 0 ? netW * coulombic : netW) - netW * netW * lossPerW) * course.durationS[i] - course.extraJ[i]
+      E += ((netW > 0 ? netW * coulombic : netW) - netW * netW * lossPerW) * course.durationS[i] - besideJ[i]
       if (E > ceilingJ) E = ceilingJ
       harvestJ += harvestW * course.durationS[i]
     }
-    out.duskJ[m] = Math.min(E + course.duskJ * factor * trackerFactor, ceilingJ)
+    E += course.duskJ * factor * trackerFactor
+    for (let e = 0; e < effects.length; e++) E += drawn[firstEffect + e] * effects[e].duskJ
+    out.duskJ[m] = Math.min(E, ceilingJ)
     out.harvestJ[m] = harvestJ
     out.spareJ[m] = spareJ
     out.spareEdge[m] = spareEdge

@@ -1,3 +1,4 @@
+import type { DayEffect } from './day-effects.ts'
 import type { Course, Members } from './members.ts'
 import { members } from './members.ts'
 import { CAUSES, type Cause, type Spreads } from './spread.ts'
@@ -48,13 +49,16 @@ export function touching(of: Members): { share: number; edge: number } {
 const NOTHING_J2 = 1e-3
 
 /** Each cause's share of the spread of the closing balance: its variance alone over all variances alone. */
-export function sharesOfSpread(course: Course, spreads: Spreads, count: number, seed: number): Record<Cause, number> {
-  const alone = CAUSES.map((cause) => variance(members(course, spreads, count, seed, cause).duskJ))
+export function sharesOfSpread(
+  course: Course,
+  spreads: Spreads,
+  count: number,
+  seed: number,
+): { cause: Cause | DayEffect; share: number }[] {
+  const causes = [...CAUSES, ...course.effects]
+  const alone = causes.map((cause) => variance(members(course, spreads, count, seed, cause).duskJ))
   const total = alone.reduce((sum, value) => sum + value, 0)
-  return Object.fromEntries(CAUSES.map((cause, c) => [cause, total > NOTHING_J2 ? alone[c] / total : 0])) as Record<
-    Cause,
-    number
-  >
+  return causes.map((cause, c) => ({ cause, share: total > NOTHING_J2 ? alone[c] / total : 0 }))
 }
 
 function variance(values: Float64Array): number {

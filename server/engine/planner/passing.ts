@@ -1,3 +1,4 @@
+import { broughtW } from '../balance.ts'
 import { wheelToBus } from '../drive.ts'
 import type { DayForecast, Race } from '../forecast.ts'
 import { type Going, holdingN } from '../road.ts'
@@ -46,6 +47,25 @@ export function clearPowerW(race: Race, path: SunPath, forecast: DayForecast, re
     steps.speedMps[piece] = driven.speedMps[i]
     packV[piece] = balance.packV[i]
   }
+}
+
+/**
+ * Share of a clear sky's energy that a forecast has on the road: what trackers bring, and what a full pack refuses.
+ *
+ * @param clearW  as `clearPowerW` has it. [W] (pieces of the day)
+ * @returns 0..1; 0 where a clear sky brings nothing either
+ */
+export function sunShare({ steps, balance }: DayForecast, clearW: Float64Array, reach: Reach): number {
+  let broughtJ = 0
+  let clearJ = 0
+  for (let i = 0; i < steps.count; i++) {
+    if (steps.speedMps[i] === 0) continue
+    const durationS = (steps.toMs[i] - steps.fromMs[i]) / 1000
+    const refusedW = balance.trackers.reduce((sum, tracker) => sum + tracker.steps.fullW[i], 0)
+    broughtJ += (broughtW(balance, i) + refusedW) * durationS
+    clearJ += clearW[steps.piece[i] - reach.first] * durationS
+  }
+  return clearJ > 0 ? Math.min(Math.max(broughtJ / clearJ, 0), 1) : 0
 }
 
 /**

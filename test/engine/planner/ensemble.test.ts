@@ -157,11 +157,14 @@ describe('the ranges', () => {
   })
 
   it('part into causes that sum to 1; a cause alone is all of it; nothing is nothing', () => {
-    const shares = sharesOfSpread(course, USUAL, 500, 1)
-    expect(CAUSES.reduce((sum, cause) => sum + shares[cause], 0)).toBeCloseTo(1, 12)
-    for (const cause of CAUSES) expect(shares[cause]).toBeGreaterThan(0)
-    expect(sharesOfSpread(course, { ...NONE, headwindMps: 1 }, 200, 1).wind).toBe(1)
-    expect(Object.values(sharesOfSpread(course, NONE, 100, 1))).toEqual([0, 0, 0, 0, 0])
+    const sharesOf = (spreads: Spreads, count: number) => sharesOfSpread(course, spreads, count, 1)
+    const usual = sharesOf(USUAL, 500)
+    expect(usual.map(({ cause }) => cause)).toEqual([...CAUSES])
+    expect(usual.reduce((sum, { share }) => sum + share, 0)).toBeCloseTo(1, 12)
+    for (const { share } of usual) expect(share).toBeGreaterThan(0)
+    for (const { cause, share } of sharesOf({ ...NONE, headwindMps: 1 }, 200))
+      expect(share).toBeCloseTo(cause === 'wind' ? 1 : 0, 9)
+    expect(sharesOf(NONE, 100).map(({ share }) => share)).toEqual([0, 0, 0, 0, 0])
   })
 
   it('are a point where nothing differs, that of the plan itself at every edge: stops, changes of speed, full pack', () => {
