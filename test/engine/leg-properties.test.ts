@@ -56,7 +56,7 @@ describe('whatever the road, the speeds and the bounds', () => {
           const mps2 = (m.toMps ** 2 - m.fromMps ** 2) / (2 * slopeM)
           expect(mps2).toBeLessThanOrEqual(bounds.accelerationMps2 * (1 + 1e-6))
           expect(mps2).toBeGreaterThanOrEqual(-bounds.brakingMps2 * (1 + 1e-6))
-          expect(Math.max(m.fromMps, m.toMps)).toBeLessThanOrEqual(on.capMps[m.piece] * (1 + 1e-12))
+          expect(Math.max(m.fromMps, m.toMps)).toBeLessThanOrEqual(on.capMps[m.piece] * (1 + 1e-9))
           expect(m.durationS).toBeCloseTo((2 * slopeM) / (m.fromMps + m.toMps), 9)
           heldS += slopeM / on.capMps[m.piece]
         })
