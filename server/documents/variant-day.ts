@@ -64,12 +64,13 @@ export function variantDay(base: PlanRequest, variant: VariantDocument, opening?
   const opened = variant.race === undefined ? opening : undefined
   const { days, assumptions } = drivenRace({ ...request, speeds: variant.speeds ?? QUICK }, (day) => day, opened)
   const own = days[0]
-  const { targetCharge: wanted, ...by } = changeOf(own, change, 'change')
+  const asked = request.targetPct === undefined ? undefined : request.targetPct / 100
+  const planned = asked ?? own.targetCharge ?? own.race.car.reserveCharge
+  const { targetCharge: wanted, ...by } = changeOf(own, change, planned, 'change')
   const { race, opening: opens } = changedDay(own.race, own.dayIndex, own.opening, {
     ...by,
     trackerLoss: trackerLossPct / 100,
   })
-  const asked = request.targetPct === undefined ? undefined : request.targetPct / 100
   const targetCharge = wanted ?? asked ?? own.targetCharge ?? race.car.reserveCharge
   const ended = endedOf({ ...own, race }, request.byTime, byTime)
   return { request, day: { ...own, race: ended, opening: opens, targetCharge }, targetCharge, assumptions }

@@ -24,6 +24,7 @@ const CHANGES: {
   stopMinutes: { none: 0, text: (min) => `Stops ${signed(min)} min` },
   reservePct: { text: (pct) => `Reserve ${pct} %` },
   targetPct: { text: (pct) => `Charge at the close ${pct} %` },
+  closePct: { none: 0, text: (pct) => `Charge at the close ${signed(pct)} %` },
   byTime: { text: (time) => `Driving ends ${time}` },
 }
 

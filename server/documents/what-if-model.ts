@@ -16,6 +16,8 @@ export interface WhatIfDay {
   day: DrivenDay
   /** The best plan without any change; null where there is none. */
   base: QuickBase | null
+  /** Usable charge wanted at the close, 0..1. */
+  targetCharge: number
 }
 
 /**
@@ -28,7 +30,7 @@ export function whatIfDay(request: Omit<WhatIfRequest, 'variants'>): WhatIfDay {
   const targetCharge =
     request.targetPct === undefined ? (day.targetCharge ?? day.race.car.reserveCharge) : request.targetPct / 100
   const race = endedBy(day, request.byTime)
-  return { day, base: quickBase({ race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }) }
+  return { day, base: quickBase({ race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }), targetCharge }
 }
 
 /**
@@ -36,8 +38,8 @@ export function whatIfDay(request: Omit<WhatIfRequest, 'variants'>): WhatIfDay {
  *
  * @throws InputError when a change does not fit the car
  */
-export function whatIfAnswers({ day, base }: WhatIfDay, variants: WhatIfRequest['variants']): WhatIfDocument {
-  const changes = variants.map(({ change }, i) => changeOf(day, change, `variants[${i}].change`))
+export function whatIfAnswers({ day, base, targetCharge }: WhatIfDay, variants: WhatIfRequest['variants']): WhatIfDocument {
+  const changes = variants.map(({ change }, i) => changeOf(day, change, targetCharge, `variants[${i}].change`))
   const head = { date: day.date, zone: day.zone, method: METHOD }
   if (base === null)
     return { ...head, base: null, variants: [], text: 'There is no plan for this day that anything could change.' }
@@ -75,10 +77,13 @@ const share = (pct: number | undefined): number => (pct ?? 100) / 100
 /**
  * A change in the engine's terms.
  *
+ * @param targetCharge  wanted at the close without it, 0..1
  * @throws InputError when it does not fit the car
  */
-export function changeOf({ race }: DrivenDay, change: ChangeDocument, field: string): Change {
-  const { massKg = 0, headwindMps = 0, openingPct = 0, stopMinutes = 0, reservePct, targetPct, trackerOff } = change
+export function changeOf({ race }: DrivenDay, change: ChangeDocument, targetCharge: number, field: string): Change {
+  const { massKg = 0, headwindMps = 0, openingPct = 0, stopMinutes = 0, reservePct, trackerOff } = change
+  const { targetPct, closePct } = change
+  const closes = (targetPct === undefined ? targetCharge : targetPct / 100) + (closePct ?? 0) / 100
   const { load } = race.car
   if (load.massKg + massKg < LEAST_KG)
     throw new InputError(
@@ -95,7 +100,7 @@ export function changeOf({ race }: DrivenDay, change: ChangeDocument, field: str
     openingCharge: openingPct / 100,
     stopS: stopMinutes * 60,
     ...(reservePct === undefined ? {} : { reserveCharge: reservePct / 100 }),
-    ...(targetPct === undefined ? {} : { targetCharge: targetPct / 100 }),
+    ...(targetPct === undefined && closePct === undefined ? {} : { targetCharge: Math.min(Math.max(closes, 0), 1) }),
     ...(trackerOff === undefined ? {} : { trackerOff: trackerIndex(race, trackerOff, `${field}.trackerOff`) }),
   }
 }

@@ -14,6 +14,7 @@ export const changeDocument = z
     stopMinutes: quantity(-60, 180, 'added to each stop of the day [min]').optional(),
     reservePct: quantity(0, 100, 'reserve in place of the car’s [% of charge]').optional(),
     targetPct: quantity(0, 100, 'charge wanted at the close in place of the day’s [% of charge]').optional(),
+    closePct: quantity(-100, 100, 'added to the charge wanted at the close [% of charge]').optional(),
     trackerOff: label('name of a tracker that gives nothing').optional(),
   })
   .meta({ title: 'Change' })

@@ -36,6 +36,23 @@ describe('changes to a day', () => {
     expect(variants[2].laterMin).toBeGreaterThan(0)
   })
 
+  test('take a close that is wanted by so much more for the close that it comes to', async () => {
+    const variants = [
+      { name: 'By', change: { closePct: 3 } },
+      { name: 'To', change: { targetPct: 83 } },
+      { name: 'Both', change: { targetPct: 80, closePct: 3 } },
+      { name: 'Less', change: { closePct: -3 } },
+    ]
+    const answer = await ask({ ...example, targetPct: 80, variants })
+    const [by, to, both, less] = answer.json().variants
+    expect(by.laterMin).toBeGreaterThan(0.5)
+    for (const same of [to, both]) {
+      expect(same.laterMin).toBeCloseTo(by.laterMin, 4)
+      expect(same.closingWh).toBeCloseTo(by.closingWh, 2)
+    }
+    expect(less.laterMin).toBeLessThan(-0.5)
+  })
+
   test('may name stored documents', async () => {
     const answer = await ask({ ...example, car: { id: 'weaver-2' } })
     expect(answer.statusCode).toBe(200)

@@ -122,7 +122,14 @@ describe('a variant', { timeout: 120_000 }, () => {
   })
 
   test('agrees with the quick answer', () => {
-    const changes = [{ sunPct: 85 }, { headwindMps: 2 }, { dragAreaPct: 110 }, { openingPct: -4 }, { targetPct: 86 }]
+    const changes = [
+      { sunPct: 85 },
+      { headwindMps: 2 },
+      { dragAreaPct: 110 },
+      { openingPct: -4 },
+      { targetPct: 86 },
+      { closePct: 2 },
+    ]
     const quick = whatIfDocuments(
       whatIfRequest.parse({
         ...demoRequest({ date: DATE }),

@@ -37,6 +37,7 @@ export const SLIDERS: Slider[] = [
   share('sunPct', 'Sun, of the forecast', 40, 130),
   added('headwindMps', 'Headwind', 'm/s', [-8, 8, 0.5]),
   added('openingPct', 'Charge', '% of charge', [-20, 20, 1]),
+  added('closePct', 'Wanted at the close', '% of charge', [-20, 20, 1]),
   added('stopMinutes', 'Each stop', 'min', [-10, 60, 1]),
   share('rollingPct', 'Rolling', 80, 150),
   share('dragAreaPct', 'Drag', 80, 150),
