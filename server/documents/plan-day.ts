@@ -144,7 +144,7 @@ export function figures(day: DrivenDay, { forecast, verdict }: Judged) {
 function constantOf(day: DrivenDay, targetCharge: number, bestMs: number): PlanDocument['constant'] {
   const found = fastestThatMeets(day.race, day.dayIndex, day.opening, targetCharge, { lowestKmh: 30, highestKmh: 130 })
   const arrivalMs = found.forecast.timetable.spans.findLast((span) => span.kind === 'drive')?.toMs
-  if (!found.meetsTarget || arrivalMs === undefined || found.forecast.timetable.isCutOff) return null
+  if (!found.meetsTarget || arrivalMs === undefined || found.forecast.timetable.isRoadLeft) return null
   return {
     speedKmh: found.speedKmh,
     arriveAt: localIso(arrivalMs, day.zone),

@@ -38,7 +38,10 @@ export function whatIfDay(request: Omit<WhatIfRequest, 'variants'>): WhatIfDay {
  *
  * @throws InputError when a change does not fit the car
  */
-export function whatIfAnswers({ day, base, targetCharge }: WhatIfDay, variants: WhatIfRequest['variants']): WhatIfDocument {
+export function whatIfAnswers(
+  { day, base, targetCharge }: WhatIfDay,
+  variants: WhatIfRequest['variants'],
+): WhatIfDocument {
   const changes = variants.map(({ change }, i) => changeOf(day, change, targetCharge, `variants[${i}].change`))
   const head = { date: day.date, zone: day.zone, method: METHOD }
   if (base === null)

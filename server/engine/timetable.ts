@@ -42,6 +42,8 @@ export interface Timetable {
   early: { stage: number; byS: number; atMs: number }[]
   /** Whether the clock, not the road, ended the driving. */
   isCutOff: boolean
+  /** Whether it leaves road of the day; a stop at its end may go on the next morning. */
+  isRoadLeft: boolean
 }
 
 /**
@@ -93,6 +95,7 @@ export function timetable(
     late,
     early,
     isCutOff: stage <= day.lastStage || stopLeftS > 0,
+    isRoadLeft: stage <= day.lastStage,
   }
 }
 

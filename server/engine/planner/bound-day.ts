@@ -1,5 +1,5 @@
 import { earliestPossible } from './bound.ts'
-import { type DayTables, rowAt } from './day-tables.ts'
+import { type DayTables, pieceS, rowAt } from './day-tables.ts'
 
 const BISECTIONS = 50
 /** A limit that lies farther below, as a share of the day's time, is looked for at other prices too. */
@@ -31,7 +31,8 @@ export function earliestArrival(
   const overS = over(arrivalS)
   const limit = (prices: Float64Array): number => earliestPossible(day, prices, overS, stepS, alongS)
   const earliestS = tightestLimit(limit, sPerJ, FAR * (overS - day.start.atS), overS)
-  if (overS === arrivalS) return earliestS
+  const byRoadS = Math.min(shortestS(day), arrivalS)
+  if (overS === arrivalS) return Math.max(earliestS, byRoadS)
   let low = Math.min(day.start.atS, arrivalS)
   let high = arrivalS
   for (let n = 0; n < BISECTIONS && high - low > 1e-6; n++) {
@@ -39,7 +40,14 @@ export function earliestArrival(
     if (over(middle) < earliestS) low = middle
     else high = middle
   }
-  return low
+  return Math.max(low, byRoadS)
+}
+
+/** Arrival if all is driven as fast as is allowed, with the stops before the end at their shortest. [S] */
+function shortestS(day: DayTables): number {
+  const driven = day.fastestMps.reduce((s, v, i) => s + pieceS(day, i, v), day.start.atS)
+  const before = day.stops.filter(({ beforePiece }) => beforePiece < day.pieces)
+  return before.reduce((s, { lengthS }) => s + lengthS.reduce((a, b) => Math.min(a, b)), driven)
 }
 
 /**

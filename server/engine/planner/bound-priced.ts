@@ -40,8 +40,9 @@ export function pricedOf(day: DayTables, piece: number, price: number): Priced {
   const { speeds, fastestMps, slowestMps } = day
   const fastest = fastestMps[piece]
   const slowest = Math.min(slowestMps, fastest)
-  const first = Math.max(Math.floor((slowest - speeds.from) / speeds.step), 0)
-  const last = Math.min(Math.ceil((fastest - speeds.from) / speeds.step), speeds.count - 1)
+  // At least two entries: a piece may be too steep for the slowest of the table.
+  const first = Math.min(Math.max(Math.floor((slowest - speeds.from) / speeds.step), 0), speeds.count - 2)
+  const last = Math.min(Math.max(Math.ceil((fastest - speeds.from) / speeds.step), first + 1), speeds.count - 1)
   const timeS = new Float64Array(last - first + 1)
   const slopeW = new Float64Array(last - first + 1)
   for (let j = last; j >= first; j--) {
@@ -129,12 +130,13 @@ export function timeOfSlope(priced: Priced, grows: number, sunW: number, steps: 
     else high = middle
   }
   const bendW = (slopeW[high] - slopeW[low]) / (timeS[high] - timeS[low])
-  if (!(bendW > 0)) return timeS[low]
+  const within = (s: number): number => Math.min(Math.max(s, shortestS), longestS)
+  if (!(bendW > 0)) return within(timeS[low])
   let at = timeS[low] + (wantedW - slopeW[low]) / bendW
   for (let step = 0; step < steps; step++) {
-    at = Math.min(Math.max(at, shortestS), longestS)
+    at = within(at)
     tangentAt(priced, at, sunW)
     at += (grows - tangent.slope) / (price * bendW)
   }
-  return Math.min(Math.max(at, shortestS), longestS)
+  return within(at)
 }

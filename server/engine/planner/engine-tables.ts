@@ -354,17 +354,21 @@ function stopsOf(along: Along, reach: Reach, clock: Axis, pack: TablePack): Tabl
   const { race, dayIndex, path, base } = along
   const day = race.days[dayIndex]
   const packV = openCircuitV(race.car.pack, base.openingCharge)
+  const hoursEndS = (day.drivingToMs - day.opensMs) / 1000
   return race.course.stages.flatMap(({ endPiece }, s) => {
     const rule = race.stages[s].stop
     const beforePiece = endPiece - reach.first
     if (rule === null || beforePiece <= 0 || beforePiece > reach.count) return []
     const place = { piece: endPiece - 1, isAtEnd: true, horizon: rule.horizon }
     const sun = parkedSun(race, path, place, { clock, opensMs: day.opensMs, pack, packV })
+    const isAtEnd = beforePiece === reach.count
     const lengthS = new Float64Array(clock.count)
     const gainJ = new Float64Array(clock.count)
     for (let k = 0; k < clock.count; k++) {
       const arrivalS = clock.from + k * clock.step
       lengthS[k] = stopLengthS(rule, day, dayIndex, arrivalS)
+      // What the driving hours leave of the day's last stop is held the next morning.
+      if (isAtEnd) lengthS[k] = Math.min(lengthS[k], Math.max(hoursEndS - arrivalS, 0))
       gainJ[k] = stopGainJ(sun, rule, arrivalS, lengthS[k])
     }
     const closesMs = rule.closesMs[dayIndex]

@@ -31,14 +31,17 @@ export function judge({ car }: Pick<Race, 'car'>, forecast: DayForecast, targetC
   return {
     lackJ: missingJ > 0 ? Math.max(lackJ, missingJ) : lackJ,
     lateS: timetable.late.reduce((sum, { byS }) => sum + byS, 0),
-    isFinished: !timetable.isCutOff,
+    isFinished: !timetable.isRoadLeft,
     arrivalMs: lastDrive?.toMs ?? Number.NaN,
     reachedM: timetable.evening.placeM,
   }
 }
 
+/** A lack of less is rounding. [J] */
+const ROUNDING_J = 1e-3
+
 /** Whether reserve, target and stops are kept. */
-export const holds = (verdict: Verdict): boolean => verdict.lackJ <= 0 && verdict.lateS <= 0
+export const holds = (verdict: Verdict): boolean => verdict.lackJ <= ROUNDING_J && verdict.lateS <= 0
 
 /** A verdict that holds before one that does not; then the farther, then the earlier; else the one that lacks less. */
 export function isBetterVerdict(one: Verdict, other: Verdict): boolean {

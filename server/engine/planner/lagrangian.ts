@@ -171,12 +171,17 @@ function addMotion(day: DayTables, { speedMps }: Sweep, slope: Float64Array, i: 
   if (before > 0) slope[i - 1] -= (p * gained * kinetic.massKg * before * before * before) / lengthM[i - 1]
 }
 
+/** No price is taken for more: 10 W more on the road win no time any more. [s/J] */
+export const MOST_S_PER_J = 0.1
+
 /** Brings every price to what its lack asked for. */
 export function raisePrices(day: DayTables, sweep: Sweep): void {
   const { multiplier, stiffness, spareJ, arrivalJ } = sweep
   const { ceilingJ } = day.pack
   for (let i = 1; i <= day.pieces; i++)
-    multiplier[i] = Math.max(multiplier[i] + stiffness * (day.floorJ[i] + spareJ - arrivalJ[i]), 0)
+    multiplier[i] = priceWithin(multiplier[i] + stiffness * (day.floorJ[i] + spareJ - arrivalJ[i]))
   const lackJ = day.targetJ + spareJ - Math.min(sweep.duskJ, ceilingJ)
-  multiplier[day.pieces + 1] = Math.max(multiplier[day.pieces + 1] + stiffness * lackJ, 0)
+  multiplier[day.pieces + 1] = priceWithin(multiplier[day.pieces + 1] + stiffness * lackJ)
 }
+
+const priceWithin = (sPerJ: number): number => Math.min(Math.max(sPerJ, 0), MOST_S_PER_J)

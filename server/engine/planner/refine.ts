@@ -1,6 +1,6 @@
 import { type DayTables, type Load, loadAt, pieceMps, pieceS } from './day-tables.ts'
 import { descend } from './descent.ts'
-import { lagrangian, newSweep, raisePrices } from './lagrangian.ts'
+import { lagrangian, MOST_S_PER_J, newSweep, raisePrices } from './lagrangian.ts'
 import { type Drive, simulate, type Track } from './simulate.ts'
 
 export interface Refined {
@@ -58,7 +58,7 @@ export function refine(day: DayTables, start: Drive, multiplier?: Float64Array):
     lastLackJ = lackJ
     if (round >= least && Math.abs(now.track.shortJ + SPARE_J) < SPARE_J) break
   }
-  return { ...best, sPerJ: sweep.price.slice(), multiplier: sweep.multiplier.slice() }
+  return { ...best, sPerJ: sweep.price.map((s) => Math.min(s, MOST_S_PER_J)), multiplier: sweep.multiplier.slice() }
 }
 
 function held(day: DayTables, timeS: Float64Array, waitS: Float64Array): { drive: Drive; track: Track } {

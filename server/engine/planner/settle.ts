@@ -37,7 +37,7 @@ export function settle(tables: DayTables, along: Along, reach: Reach, base: DayF
   settleStands(tables, base, reach, opensMs)
   const end = base.steps.count - 1
   const last = base.timetable.spans.findLastIndex((span) => span.kind === 'drive' || span.kind === 'stop')
-  if (last < 0 || base.timetable.isCutOff) return
+  if (last < 0 || base.timetable.isRoadLeft) return
   const lastStep = base.steps.span.lastIndexOf(last)
   const arrivedS = (base.steps.toMs[lastStep] - opensMs) / 1000
   const gainedJ = base.balance.storedJ[end] - base.balance.storedJ[lastStep]
