@@ -123,7 +123,8 @@ export function tablesAlong(along: Along, reach: Reach, sun = sunAhead(along, re
     pack: packOf(race, base),
     floorJ: new Float64Array(reach.count + 1).fill(Math.min(storedJ(car.pack, car.reserveCharge), base.openingJ)),
     start: startOf(along),
-    latestS: (day.drivingToMs - day.opensMs) / 1000,
+    // A stop at the end is asked on arrival; between two steps of the clock it may seem to go on past the hours.
+    latestS: (day.drivingToMs - day.opensMs) / 1000 + (sun.stops.some(isAtEnd(reach)) ? CLOCK_S : 0),
     targetJ: storedJ(car.pack, targetCharge),
   }
 }
@@ -361,21 +362,26 @@ function stopsOf(along: Along, reach: Reach, clock: Axis, pack: TablePack): Tabl
     if (rule === null || beforePiece <= 0 || beforePiece > reach.count) return []
     const place = { piece: endPiece - 1, isAtEnd: true, horizon: rule.horizon }
     const sun = parkedSun(race, path, place, { clock, opensMs: day.opensMs, pack, packV })
-    const isAtEnd = beforePiece === reach.count
+    const isLast = beforePiece === reach.count
     const lengthS = new Float64Array(clock.count)
     const gainJ = new Float64Array(clock.count)
     for (let k = 0; k < clock.count; k++) {
       const arrivalS = clock.from + k * clock.step
       lengthS[k] = stopLengthS(rule, day, dayIndex, arrivalS)
       // What the driving hours leave of the day's last stop is held the next morning.
-      if (isAtEnd) lengthS[k] = Math.min(lengthS[k], Math.max(hoursEndS - arrivalS, 0))
+      if (isLast) lengthS[k] = Math.min(lengthS[k], Math.max(hoursEndS - arrivalS, 0))
       gainJ[k] = stopGainJ(sun, rule, arrivalS, lengthS[k])
     }
     const closesMs = rule.closesMs[dayIndex]
-    const closesS = Number.isNaN(closesMs) ? Number.POSITIVE_INFINITY : (closesMs - day.opensMs) / 1000
-    return [{ beforePiece, lengthS, gainJ, closesS }]
+    const ownS = Number.isNaN(closesMs) ? Number.POSITIVE_INFINITY : (closesMs - day.opensMs) / 1000
+    return [{ beforePiece, lengthS, gainJ, closesS: isLast ? Math.min(ownS, hoursEndS) : ownS }]
   })
 }
+
+const isAtEnd =
+  ({ count }: Reach) =>
+  ({ beforePiece }: TableStop): boolean =>
+    beforePiece === count
 
 /** From arrival to departure, as the timetable has it. [S] */
 function stopLengthS(rule: StopRule, day: DayRules, dayIndex: number, arrivalS: number): number {
