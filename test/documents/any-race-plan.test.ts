@@ -8,14 +8,15 @@ import { racePlanDocuments } from '../../server/documents/race-plan-model.ts'
 import { type RacePlanRequest, racePlanRequest } from '../../server/documents/race-plan-request.ts'
 import { anyTourRequest } from '../support/arbitrary-tour.ts'
 
-const RUNS = Number(process.env.ANY_RUNS ?? 30)
-const SEED = Number(process.env.ANY_SEED ?? 20261201)
+const RUNS = 80
 /** What a day may differ by from its forecast: its battery counted again from the whole speeds of all days before. [Wh] */
 const OFF_WH = 1
+/** What whole speeds may lack where the best ones just keep all. [Wh] */
+const LACK_WH = 5
 const seen = new Map<string, number>()
 
 /** Any race, its last day's close as it is, those before free or fixed. */
-export const anyRequest = fc
+const anyRequest = fc
   .record({
     tour: anyTourRequest,
     fixedPct: fc.array(fc.option(fc.integer({ min: 10, max: 90 })), { minLength: 3, maxLength: 3 }),
@@ -81,11 +82,11 @@ function expectSound(request: RacePlanRequest, days: RacePlanDay[]): void {
   if (!road.keepsAll) return
   if (again.ledger.shortWh === 0) expect(road.drivingMin).toBeGreaterThanOrEqual(road.bestMin - 0.02)
   const reserveWh = again.reserve.wh
-  expect(road.leastSpareWh).toBeGreaterThan(Math.min(again.opening.wh - reserveWh, 0) - OFF_WH)
-  expect(close.closing?.wh).toBeGreaterThan(close.wanted.wh - OFF_WH)
+  expect(road.leastSpareWh).toBeGreaterThan(Math.min(again.opening.wh - reserveWh, 0) - LACK_WH)
+  expect(close.closing?.wh).toBeGreaterThan(close.wanted.wh - LACK_WH)
 }
 
-describe('for any race of several days', { timeout: 600_000 }, () => {
+describe('for any race of several days', { timeout: 120_000 }, () => {
   test('every day of its plan is what a forecast of the race says, and keeps what it says', () => {
     fc.assert(
       fc.property(anyRequest, (input) => {
@@ -96,9 +97,13 @@ describe('for any race of several days', { timeout: 600_000 }, () => {
         })
         seen.set(plan.outcome.kind, (seen.get(plan.outcome.kind) ?? 0) + 1)
       }),
-      { numRuns: RUNS, seed: SEED, endOnFailure: true },
+      { numRuns: RUNS, seed: 20261201, endOnFailure: true },
     )
   })
 
-  afterAll(() => console.log(seen))
+  afterAll(() => {
+    for (const what of ['driven', 'camp', 'impossible', 'parked', 'planned', 'unfinished'])
+      expect(seen.get(what), what).toBeGreaterThan(2)
+    expect(seen.get('compared')).toBeGreaterThan(20)
+  })
 })

@@ -16,7 +16,7 @@ import {
 import { holds, isBetterVerdict, judge, type Verdict } from './judge.ts'
 import { onCourse, ordinarySpeeds } from './ordinary.ts'
 import { refine, type Refined } from './refine.ts'
-import { driveOf, type Section, sectionsFor } from './sections.ts'
+import { namedMps, type Section, sectionsFor } from './sections.ts'
 import { settle } from './settle.ts'
 import { driveAlong, simulate } from './simulate.ts'
 
@@ -221,7 +221,8 @@ function peoplePlan(day: DayAtWork, best: Judged): DayPlan['forPeople'] {
   let kept: DayPlan['forPeople'] | null = null
   for (let round = 0; round < PEOPLE_ROUNDS; round++) {
     const sections = sectionsFor(tables, stageEnds, heldMps, waitS)
-    const judged = day.drive(onCourse(race, reach, driveOf(tables, sections, waitS).speedMps))
+    // As it is told: a climb that the motor cannot hold is come to at speed, not braked for.
+    const judged = day.drive(onCourse(race, reach, namedMps(reach.count, sections)))
     if (kept === null || isBetterVerdict(judged.verdict, kept.verdict)) kept = { ...judged, sections }
     const missJ = judged.verdict.lackJ
     if (missJ <= 0 && missJ > -PEOPLE_CLOSE_J) break

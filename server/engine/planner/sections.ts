@@ -76,12 +76,16 @@ function best(
   return found
 }
 
+/** The speeds that sections name, whatever limits and the motor make of them. [Mps] (pieces) */
+export function namedMps(pieces: number, sections: Section[]): Float64Array {
+  const speedMps = new Float64Array(pieces)
+  for (const { firstPiece, endPiece, speedKmh } of sections) speedMps.fill(speedKmh / 3.6, firstPiece, endPiece)
+  return speedMps
+}
+
 /** The drive that sections mean, within each piece's own limit. */
-export function driveOf(day: DayTables, sections: Section[], waitS: Float64Array): Drive {
-  const speedMps = new Float64Array(day.pieces)
-  for (const { firstPiece, endPiece, speedKmh } of sections)
-    for (let i = firstPiece; i < endPiece; i++) speedMps[i] = Math.min(speedKmh / 3.6, day.fastestMps[i])
-  return { speedMps, waitS }
+function driveOf(day: DayTables, sections: Section[], waitS: Float64Array): Drive {
+  return { speedMps: namedMps(day.pieces, sections).map((v, i) => Math.min(v, day.fastestMps[i])), waitS }
 }
 
 /** Even sections of each stage. */
