@@ -2,7 +2,6 @@ import { describe, expect, it } from 'vitest'
 import { type DayEffect, dayEffects, type DrivenSo } from '../../../server/engine/ensemble/day-effects.ts'
 import { courseOf, members } from '../../../server/engine/ensemble/members.ts'
 import { rangeOf, sharesOfSpread } from '../../../server/engine/ensemble/ranges.ts'
-import type { Spreads } from '../../../server/engine/ensemble/spread.ts'
 import { broughtW } from '../../../server/engine/balance.ts'
 import { type DayForecast, forecastDay } from '../../../server/engine/forecast.ts'
 import { planSun, reachOf, tablesAlong } from '../../../server/engine/planner/engine-tables.ts'
@@ -10,6 +9,7 @@ import { settle } from '../../../server/engine/planner/settle.ts'
 import { driveAlong } from '../../../server/engine/planner/simulate.ts'
 import type { Sky, SkyChange } from '../../../server/engine/sky.ts'
 import { demoDay } from '../../support/demo-race.ts'
+import { SURE } from './sure.ts'
 
 const WH = 3600
 const { race, dayIndex, opening } = demoDay('2026-10-17')
@@ -35,16 +35,6 @@ function drivenUnder(sky: Sky): DrivenSo {
 }
 
 const NOTHING = { linke: 0, airC: 0, trackerLoss: 0 }
-const SURE: Spreads = {
-  sunDay: 0,
-  sunWander: 0,
-  wanderS: 5400,
-  wanderM: 150_000,
-  headwindMps: 0,
-  roadLoad: 0,
-  trackers: 0,
-  openingJ: 0,
-}
 const sum = (values: Float64Array): number => values.reduce((total, value) => total + value, 0)
 const closesBy = ({ morningJ, pieceJ, stopJ, duskJ }: DayEffect): number => morningJ + sum(pieceJ) + sum(stopJ) + duskJ
 const sd = (values: Float64Array): number => {

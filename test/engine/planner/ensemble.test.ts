@@ -9,20 +9,11 @@ import type { DayTables } from '../../../server/engine/planner/day-tables.ts'
 import type { Refined } from '../../../server/engine/planner/refine.ts'
 import { simulate } from '../../../server/engine/planner/simulate.ts'
 import { cloudyDay, dayOf } from './cloudy-day.ts'
+import { SURE } from './sure.ts'
 
 const WH = 3600
-const NONE: Spreads = {
-  sunDay: 0,
-  sunWander: 0,
-  wanderS: 5400,
-  wanderM: 150_000,
-  headwindMps: 0,
-  roadLoad: 0,
-  trackers: 0,
-  openingJ: 0,
-}
 const USUAL: Spreads = {
-  ...NONE,
+  ...SURE,
   sunDay: 0.03,
   sunWander: 0.15,
   headwindMps: 0.8,
@@ -97,7 +88,7 @@ describe('normal numbers', () => {
 })
 
 describe('the sun of the members', () => {
-  const spreads = { ...NONE, sunDay: 0.05, sunWander: 0.12 }
+  const spreads = { ...SURE, sunDay: 0.05, sunWander: 0.12 }
 
   it('has the forecast for its mean and both spreads together, at every piece', () => {
     for (const piece of [0, 90, 199]) {
@@ -108,16 +99,16 @@ describe('the sun of the members', () => {
   })
 
   it('forgets over time and way as it should: e^(−Δt/90 min − Δx/150 km)', () => {
-    const first = factorsAt({ ...NONE, sunWander: 0.12 }, 60, 8000)
+    const first = factorsAt({ ...SURE, sunWander: 0.12 }, 60, 8000)
     for (const ahead of [10, 40, 100]) {
-      const later = factorsAt({ ...NONE, sunWander: 0.12 }, 60 + ahead, 8000)
+      const later = factorsAt({ ...SURE, sunWander: 0.12 }, 60 + ahead, 8000)
       const expected = Math.exp((-ahead * 50) / 5400 - (ahead * 1000) / 150_000)
       expect(Math.abs(correlation(first, later) - expected)).toBeLessThan(0.03)
     }
   })
 
   it('never outshines the clear sky', () => {
-    const factors = factorsAt({ ...NONE, sunWander: 0.3 }, 80, 4000, 1.1)
+    const factors = factorsAt({ ...SURE, sunWander: 0.3 }, 80, 4000, 1.1)
     expect(Math.max(...factors)).toBeLessThan(1.1 + 1e-3)
     // A normal of 0.3 around 1 lies above 1.1 with 36.9 % (tables): all of them stand at the clear sky.
     const clipped = factors.filter((factor) => factor > 1.0985).length / factors.length
@@ -162,9 +153,9 @@ describe('the ranges', () => {
     expect(usual.map(({ cause }) => cause)).toEqual([...CAUSES])
     expect(usual.reduce((sum, { share }) => sum + share, 0)).toBeCloseTo(1, 12)
     for (const { share } of usual) expect(share).toBeGreaterThan(0)
-    for (const { cause, share } of sharesOf({ ...NONE, headwindMps: 1 }, 200))
+    for (const { cause, share } of sharesOf({ ...SURE, headwindMps: 1 }, 200))
       expect(share).toBeCloseTo(cause === 'wind' ? 1 : 0, 9)
-    expect(sharesOf(NONE, 100).map(({ share }) => share)).toEqual([0, 0, 0, 0, 0])
+    expect(sharesOf(SURE, 100).map(({ share }) => share)).toEqual([0, 0, 0, 0, 0])
   })
 
   it('are a point where nothing differs, that of the plan itself at every edge: stops, changes of speed, full pack', () => {
@@ -181,7 +172,7 @@ describe('the ranges', () => {
         waitS: new Float64Array(day.pieces + 1),
       }
       const track = simulate(day, drive)
-      const of = members(lay(day, drive.speedMps, NONE), NONE, 3, 1)
+      const of = members(lay(day, drive.speedMps, SURE), SURE, 3, 1)
       for (let edge = 0; edge <= day.pieces; edge++) {
         // Ranges are of arrivals, and kept in single precision.
         const { p10, p90 } = rangeAt(of, day.pieces, edge)
