@@ -36,7 +36,7 @@ const inYears = (atMs: number): boolean => atMs >= Date.UTC(1950, 0, 1) && atMs 
 /** A day of the calendar, years 1950 to 2100. */
 export const date = (meaning: string) =>
   z.iso
-    .date({ error: 'a date as YYYY-MM-DD' })
+    .date({ error: 'a date as YYYY-MM-DD', abort: true })
     .refine((text) => inYears(Date.parse(text)), 'a date between the years 1950 and 2100')
     .describe(meaning)
 
