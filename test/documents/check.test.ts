@@ -35,6 +35,12 @@ describe('a wrong document is refused with field, value and expectation', () => 
     for (const problem of problems) expect(problem.detail).not.toMatch(/undefined|NaN|\[object/)
   })
 
+  test('a month that no year has is told once', () => {
+    const problems = problemsOf(raceDocument, someRace(), set(['days', 0, 'date'], '2026-13-40'))
+    const told = problems.filter(({ field }) => field === 'days[0].date')
+    expect(told.map(({ detail }) => detail)).toEqual(['expected a date as YYYY-MM-DD'])
+  })
+
   test('the same time written with and without seconds is the same time', () => {
     const race = someRace()
     race.days[0].release = '06:00:00'

@@ -59,14 +59,6 @@ export const WRONG_DOCUMENTS: WrongCase[] = [
     { field: 'days[0].date', value: '"2026-02-30"', detail: 'expected a date as YYYY-MM-DD' },
   ],
   [
-    'a month that no year has, told once',
-    raceDocument,
-    someRace(),
-    ['days', 0, 'date'],
-    '2026-13-40',
-    { field: 'days[0].date', value: '"2026-13-40"', detail: 'expected a date as YYYY-MM-DD' },
-  ],
-  [
     'driving hours that end before they start',
     raceDocument,
     someRace(),
