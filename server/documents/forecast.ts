@@ -127,6 +127,12 @@ function begunOf(race: Race, { race: document, from, date: on }: ForecastRequest
 /** How the days before the one wanted are driven: a try on Saturday does not change Friday. */
 const AS_TARGETED = speedsDocument.parse({ kind: 'meet-target' })
 
+/** The charge that a plan of a day is to close with: asked for, else the race's, else the reserve. 0..1 */
+export const wantedCharge = (
+  { targetCharge, race }: Pick<DrivenDay, 'targetCharge' | 'race'>,
+  askedPct: number | undefined,
+): number => (askedPct === undefined ? (targetCharge ?? race.car.reserveCharge) : askedPct / 100)
+
 /** The days up to the last wanted, each opening where the one before closed; one alone where one was asked for. */
 function drivenDays<T>(
   race: Race,

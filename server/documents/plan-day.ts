@@ -6,7 +6,7 @@ import { limitCosts } from '../engine/planner/limit-costs.ts'
 import { fastestThatMeets } from '../engine/search.ts'
 import { ENGINE_VERSION } from '../engine/version.ts'
 import { dayBudget } from './budget-day.ts'
-import { type DrivenDay, drivenRace } from './forecast.ts'
+import { type DrivenDay, drivenRace, wantedCharge } from './forecast.ts'
 import { clock, localIso } from './local-time.ts'
 import type { PlanDocument } from './plan.ts'
 import { plannedText } from './plan-outcome.ts'
@@ -30,8 +30,7 @@ export function planDocuments(request: PlanRequest, tell: Tell = () => {}): Plan
   tell({ step: 'Laying out the day', share: 0 })
   const { days, assumptions } = drivenRace({ ...request, speeds: QUICK }, (day) => day)
   const day = days[0]
-  const targetCharge =
-    request.targetPct === undefined ? (day.targetCharge ?? day.race.car.reserveCharge) : request.targetPct / 100
+  const targetCharge = wantedCharge(day, request.targetPct)
   const head = {
     engineVersion: ENGINE_VERSION,
     race: request.race.name,

@@ -4,7 +4,7 @@ import { InputError } from '../engine/input-error.ts'
 import { changedDay } from '../engine/planner/changed-day.ts'
 import { carDocument } from './car.ts'
 import { checkDocument } from './check.ts'
-import { type DrivenDay, drivenRace } from './forecast.ts'
+import { type DrivenDay, drivenRace, wantedCharge } from './forecast.ts'
 import { merged } from './merge-patch.ts'
 import { endedBy } from './plan-camp.ts'
 import type { PlanRequest } from './plan-request.ts'
@@ -64,14 +64,13 @@ export function variantDay(base: PlanRequest, variant: VariantDocument, opening?
   const opened = variant.race === undefined ? opening : undefined
   const { days, assumptions } = drivenRace({ ...request, speeds: variant.speeds ?? QUICK }, (day) => day, opened)
   const own = days[0]
-  const asked = request.targetPct === undefined ? undefined : request.targetPct / 100
-  const planned = asked ?? own.targetCharge ?? own.race.car.reserveCharge
+  const planned = wantedCharge(own, request.targetPct)
   const { targetCharge: wanted, ...by } = changeOf(own, change, planned, 'change')
   const { race, opening: opens } = changedDay(own.race, own.dayIndex, own.opening, {
     ...by,
     trackerLoss: trackerLossPct / 100,
   })
-  const targetCharge = wanted ?? asked ?? own.targetCharge ?? race.car.reserveCharge
+  const targetCharge = wanted ?? wantedCharge({ ...own, race }, request.targetPct)
   const ended = endedOf({ ...own, race }, request.byTime, byTime)
   return { request, day: { ...own, race: ended, opening: opens, targetCharge }, targetCharge, assumptions }
 }

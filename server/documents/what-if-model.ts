@@ -2,7 +2,7 @@ import { InputError } from '../engine/input-error.ts'
 import type { Change } from '../engine/planner/what-if.ts'
 import { type QuickBase, quickBase, quickWhatIf } from '../engine/planner/what-if.ts'
 import { channelsOf } from '../engine/tracker.ts'
-import { drivenRace, type DrivenDay } from './forecast.ts'
+import { drivenRace, type DrivenDay, wantedCharge } from './forecast.ts'
 import { clock, localIso } from './local-time.ts'
 import { endedBy } from './plan-camp.ts'
 import type { ChangeDocument, WhatIfDocument, WhatIfRequest } from './what-if.ts'
@@ -27,8 +27,7 @@ export interface WhatIfDay {
  */
 export function whatIfDay(request: Omit<WhatIfRequest, 'variants'>): WhatIfDay {
   const day = drivenRace({ ...request, speeds: { kind: 'constant', speedKmh: 70 } }, (one) => one).days[0]
-  const targetCharge =
-    request.targetPct === undefined ? (day.targetCharge ?? day.race.car.reserveCharge) : request.targetPct / 100
+  const targetCharge = wantedCharge(day, request.targetPct)
   const race = endedBy(day, request.byTime)
   return { day, base: quickBase({ race, dayIndex: day.dayIndex, opening: day.opening, targetCharge }), targetCharge }
 }

@@ -171,7 +171,7 @@ function addMotion(day: DayTables, { speedMps }: Sweep, slope: Float64Array, i: 
   if (before > 0) slope[i - 1] -= (p * gained * kinetic.massKg * before * before * before) / lengthM[i - 1]
 }
 
-/** No price is taken for more: 10 W more on the road win no time any more. [s/J] */
+/** No price is taken for more: it is 1/(2bv³ + S), and even a light car at 25 km/h without sun has 40 W there. [s/J] */
 export const MOST_S_PER_J = 0.1
 
 /** Brings every price to what its lack asked for. */

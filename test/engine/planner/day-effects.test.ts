@@ -64,7 +64,7 @@ describe('what else holds all day', () => {
     let roadJ = 0
     for (let i = 0; i < steps.count; i++)
       if (steps.speedMps[i] > 0) roadJ += (broughtW(balance, i) * (steps.toMs[i] - steps.fromMs[i])) / 1000
-    // Clear-sky light falls by 3 to 6 % a unit of Linke turbidity around noon (Ineichen & Perez 2002, worked at TL 3, AM 1 to 2).
+    // Clear-sky light falls by 3 to 6 % a unit of Linke turbidity around noon (Ineichen & Perez 2002, from memory, worked at TL 3, AM 1 to 2).
     const haze = of('haze')[0].harvestJ / roadJ / 0.5
     expect(haze).toBeLessThan(-0.025)
     expect(haze).toBeGreaterThan(-0.07)
